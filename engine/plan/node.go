@@ -1,0 +1,138 @@
+// Package plan holds the logical plan of a query and the rules that improve it,
+// one file a rule. A plan is plain data: it computes nothing.
+package plan
+
+import (
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/function"
+	"nearcell/engine/problem"
+	"nearcell/engine/relation"
+)
+
+// Node is a step of a plan. Schema lists the columns that it gives; the
+// expressions of a node refer by index to the columns of its input (for a Join:
+// the left columns, then the right ones).
+type Node interface {
+	Schema() column.Schema
+	Inputs() []Node
+}
+
+// One is a single row without columns: the input of a SELECT without FROM.
+type One struct{}
+
+// Values is a list of constant rows.
+type Values struct {
+	Fields column.Schema
+	Rows   [][]expr.Expr // evaluated against One
+}
+
+// Scan reads columns of a stored table or campaign. Use lists the columns that
+// are needed, as indices into Table.Schema; Fields are those columns.
+type Scan struct {
+	Name   string
+	Kind   string // "campaign" or "table"
+	Table  *column.Table
+	Use    []int
+	Fields column.Schema
+}
+
+// Relation is a geometric relation over the sites that Input gives. Its Schema
+// is relation.Bound.Columns(); Need says which of them are asked for (the others
+// come out as NULL and must not be read), Wanted, where not nil, is a condition
+// over the columns of Input that says which rows are shown. It never says which
+// sites partition.
+type Relation struct {
+	Bound  *relation.Bound
+	Input  Node
+	Need   []bool
+	Wanted expr.Expr
+	Place  problem.Place
+}
+
+// Filter keeps the rows for which Cond is TRUE. Clause is "WHERE", "HAVING", "ON".
+type Filter struct {
+	Input  Node
+	Cond   expr.Expr
+	Clause string
+}
+
+// Project computes expressions.
+type Project struct {
+	Input  Node
+	Exprs  []expr.Expr
+	Fields column.Schema
+}
+
+// Aggregate groups by Keys (none: one group, also of no rows) and computes
+// Calls. Its columns are the keys, then the calls.
+type Aggregate struct {
+	Input  Node
+	Keys   []expr.Expr
+	Calls  []Call
+	Fields column.Schema
+}
+
+// Call is one aggregate of an Aggregate.
+type Call struct {
+	Fn       *function.Aggregate
+	Args     []expr.Expr // COUNT(*) has none
+	Distinct bool
+	Filter   expr.Expr // nil: all rows
+	Weight   expr.Expr // nil: each row counts once
+	OrderBy  []SortKey // FIRST(x ORDER BY t)
+	Place    problem.Place
+	Text     string // as a heading and in notes: AVG(temp) WEIGHTED BY volume
+}
+
+// JoinKind is the kind of a join.
+type JoinKind uint8
+
+// The joins there are; a cross join is an inner one without any condition.
+const (
+	Inner JoinKind = iota
+	Left
+)
+
+// Join matches rows: where there are key pairs by hash, else by a nested loop.
+// LeftKeys refer to the columns of Left, RightKeys to those of Right, Rest to
+// both. NULL keys match nothing.
+type Join struct {
+	Kind                JoinKind
+	Left, Right         Node
+	LeftKeys, RightKeys []expr.Expr
+	Rest                expr.Expr
+}
+
+// SortKey is one key of ORDER BY. NULLs sort last unless said.
+type SortKey struct {
+	Expr       expr.Expr
+	Descending bool
+	NullsFirst bool
+}
+
+// Sort orders the rows; rows with equal keys keep their order. Top > 0: only so
+// many first rows are wanted.
+type Sort struct {
+	Input Node
+	Keys  []SortKey
+	Top   int64
+}
+
+// Limit passes Count rows after the first Offset ones. Count < 0: no limit.
+type Limit struct {
+	Input         Node
+	Count, Offset int64
+}
+
+// Distinct keeps the first of equal rows; NULLs count as equal.
+type Distinct struct {
+	Input Node
+}
+
+// Union puts the rows of one input after those of another (UNION ALL); the
+// columns have equal types.
+type Union struct {
+	Parts  []Node
+	Fields column.Schema
+}
