@@ -1,0 +1,178 @@
+package plan
+
+import (
+	"fmt"
+	"strings"
+
+	"nearcell/engine/expr"
+)
+
+// Format writes a plan as an indented tree, one node a line, the source last.
+// Columns are written as the expressions write themselves; node lines say what
+// the rules have done: which columns a scan reads, what a relation computes.
+func Format(n Node) string {
+	var b strings.Builder
+	formatInto(&b, n, 0)
+	return b.String()
+}
+
+func formatInto(b *strings.Builder, n Node, depth int) {
+	b.WriteString(strings.Repeat("  ", depth))
+	b.WriteString(Line(n))
+	b.WriteByte('\n')
+	for _, in := range n.Inputs() {
+		formatInto(b, in, depth+1)
+	}
+}
+
+// Line is the text of one node, without its inputs.
+func Line(n Node) string {
+	switch n := n.(type) {
+	case *One:
+		return "one row"
+	case *Values:
+		return fmt.Sprintf("values: %s", count(len(n.Rows), "row"))
+	case *Scan:
+		return scanLine(n)
+	case *Relation:
+		return relationLine(n)
+	case *Filter:
+		return fmt.Sprintf("filter %s: %s", strings.ToLower(n.Clause), n.Cond)
+	case *Project:
+		return "project: " + projections(n)
+	case *Aggregate:
+		return aggregateLine(n)
+	case *Join:
+		return joinLine(n)
+	case *Sort:
+		line := "sort: " + sortKeys(n.Keys)
+		if n.Top > 0 {
+			line += fmt.Sprintf(", first %d", n.Top)
+		}
+		return line
+	case *Limit:
+		return limitLine(n)
+	case *Distinct:
+		return "distinct"
+	case *Union:
+		return "union"
+	}
+	return fmt.Sprintf("%T", n)
+}
+
+func count(n int, noun string) string {
+	if n == 1 {
+		return "1 " + noun
+	}
+	return fmt.Sprintf("%d %ss", n, noun)
+}
+
+func scanLine(n *Scan) string {
+	names := make([]string, len(n.Fields))
+	for i, f := range n.Fields {
+		names[i] = f.Name
+	}
+	cols := strings.Join(names, ", ")
+	if len(names) == 0 {
+		cols = "no columns"
+	}
+	return fmt.Sprintf("scan %s %s: %s", n.Kind, n.Name, cols)
+}
+
+func relationLine(n *Relation) string {
+	var names []string
+	for i, c := range n.Bound.Columns {
+		if n.Need == nil || n.Need[i] {
+			names = append(names, c.Name)
+		}
+	}
+	cols := strings.Join(names, ", ")
+	if len(names) == 0 {
+		cols = "no columns"
+	}
+	line := fmt.Sprintf("%s of %s: %s", strings.ToLower(n.Bound.Def.Noun), n.Bound.Name, cols)
+	if n.Wanted != nil {
+		line += fmt.Sprintf("; only %s", n.Wanted)
+	}
+	return line
+}
+
+func projections(n *Project) string {
+	parts := make([]string, len(n.Exprs))
+	for i, e := range n.Exprs {
+		parts[i] = e.String()
+		if name := n.Fields[i].Name; name != parts[i] {
+			parts[i] += " AS " + name
+		}
+	}
+	if len(parts) == 0 {
+		return "no columns"
+	}
+	return strings.Join(parts, ", ")
+}
+
+func aggregateLine(n *Aggregate) string {
+	calls := make([]string, len(n.Calls))
+	for i, c := range n.Calls {
+		calls[i] = c.Text
+	}
+	line := "aggregate"
+	if len(calls) > 0 {
+		line += ": " + strings.Join(calls, ", ")
+	}
+	if len(n.Keys) > 0 {
+		line += " by " + exprs(n.Keys)
+	}
+	return line
+}
+
+func joinLine(n *Join) string {
+	line := "inner join"
+	if n.Kind == Left {
+		line = "left join"
+	}
+	for i := range n.LeftKeys {
+		if i == 0 {
+			line += " by hash: "
+		} else {
+			line += ", "
+		}
+		line += fmt.Sprintf("%s = %s", n.LeftKeys[i], n.RightKeys[i])
+	}
+	if n.Rest != nil {
+		line += "; where " + n.Rest.String()
+	}
+	return line
+}
+
+func sortKeys(keys []SortKey) string {
+	parts := make([]string, len(keys))
+	for i, k := range keys {
+		parts[i] = k.Expr.String()
+		if k.Descending {
+			parts[i] += " DESC"
+		}
+		if k.NullsFirst {
+			parts[i] += " NULLS FIRST"
+		}
+	}
+	return strings.Join(parts, ", ")
+}
+
+func limitLine(n *Limit) string {
+	switch {
+	case n.Count < 0:
+		return fmt.Sprintf("offset %d", n.Offset)
+	case n.Offset > 0:
+		return fmt.Sprintf("limit %d offset %d", n.Count, n.Offset)
+	}
+	return fmt.Sprintf("limit %d", n.Count)
+}
+
+func exprs(list []expr.Expr) string {
+	parts := make([]string, len(list))
+	for i, e := range list {
+		parts[i] = e.String()
+	}
+	return strings.Join(parts, ", ")
+}

@@ -1,0 +1,148 @@
+package plan
+
+import (
+	"nearcell/catalog/column"
+)
+
+// Schema of a single row without columns is empty.
+func (*One) Schema() column.Schema { return nil }
+
+// Inputs of a leaf are none.
+func (*One) Inputs() []Node { return nil }
+
+// Schema is the list's columns.
+func (n *Values) Schema() column.Schema { return n.Fields }
+
+// Inputs of a leaf are none.
+func (*Values) Inputs() []Node { return nil }
+
+// Schema is the columns in use.
+func (n *Scan) Schema() column.Schema { return n.Fields }
+
+// Inputs of a leaf are none.
+func (*Scan) Inputs() []Node { return nil }
+
+// Schema is the relation's columns, needed or not.
+func (n *Relation) Schema() column.Schema {
+	fields := make(column.Schema, len(n.Bound.Columns))
+	for i := range fields {
+		fields[i] = n.Bound.Columns[i].Field
+	}
+	return fields
+}
+
+// Inputs is the sites.
+func (n *Relation) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is the input's.
+func (n *Filter) Schema() column.Schema { return n.Input.Schema() }
+
+// Inputs is the one input.
+func (n *Filter) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is the computed columns.
+func (n *Project) Schema() column.Schema { return n.Fields }
+
+// Inputs is the one input.
+func (n *Project) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is the keys, then the calls.
+func (n *Aggregate) Schema() column.Schema { return n.Fields }
+
+// Inputs is the one input.
+func (n *Aggregate) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is the left columns, then the right ones.
+func (n *Join) Schema() column.Schema {
+	left, right := n.Left.Schema(), n.Right.Schema()
+	fields := make(column.Schema, 0, len(left)+len(right))
+	return append(append(fields, left...), right...)
+}
+
+// Inputs is the left, then the right side.
+func (n *Join) Inputs() []Node { return []Node{n.Left, n.Right} }
+
+// Schema is the input's.
+func (n *Sort) Schema() column.Schema { return n.Input.Schema() }
+
+// Inputs is the one input.
+func (n *Sort) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is the input's.
+func (n *Limit) Schema() column.Schema { return n.Input.Schema() }
+
+// Inputs is the one input.
+func (n *Limit) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is the input's.
+func (n *Distinct) Schema() column.Schema { return n.Input.Schema() }
+
+// Inputs is the one input.
+func (n *Distinct) Inputs() []Node { return []Node{n.Input} }
+
+// Schema is that of all parts.
+func (n *Union) Schema() column.Schema { return n.Fields }
+
+// Inputs is the parts, in order.
+func (n *Union) Inputs() []Node { return n.Parts }
+
+// withInputs is a copy of n over other inputs, in the order of Inputs.
+func withInputs(n Node, in []Node) Node {
+	switch n := n.(type) {
+	case *Relation:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Filter:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Project:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Aggregate:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Join:
+		c := *n
+		c.Left, c.Right = in[0], in[1]
+		return &c
+	case *Sort:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Limit:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Distinct:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Union:
+		c := *n
+		c.Parts = in
+		return &c
+	}
+	return n // a leaf
+}
+
+// rewrite applies f to every node from the leaves up and gives the new tree; a
+// rule never changes a node in place, since views share their plans.
+func rewrite(n Node, f func(Node) (Node, error)) (Node, error) {
+	in := n.Inputs()
+	if len(in) > 0 {
+		out := make([]Node, len(in))
+		for i, child := range in {
+			c, err := rewrite(child, f)
+			if err != nil {
+				return nil, err
+			}
+			out[i] = c
+		}
+		n = withInputs(n, out)
+	}
+	return f(n)
+}
