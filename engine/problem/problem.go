@@ -5,6 +5,7 @@ package problem
 import (
 	"errors"
 	"fmt"
+	"strings"
 
 	"nearcell/lang"
 )
@@ -28,6 +29,7 @@ type Problem struct {
 	Place   Place
 	Message string
 	Hint    string // a way out, may be empty
+	Detail  string // lines that stand below the place, such as the faults of a file
 	Cause   error
 }
 
@@ -39,6 +41,12 @@ func New(code string, at Place, format string, args ...any) *Problem {
 // WithHint adds the way out.
 func (p *Problem) WithHint(format string, args ...any) *Problem {
 	p.Hint = fmt.Sprintf(format, args...)
+	return p
+}
+
+// WithDetail adds lines that are printed below the place.
+func (p *Problem) WithDetail(lines string) *Problem {
+	p.Detail = lines
 	return p
 }
 
@@ -79,10 +87,17 @@ func At(err error, at Place) error {
 // and the mark under it.
 func Render(err error) string {
 	var p *Problem
-	if errors.As(err, &p) && p.Place.Source != nil {
-		return lang.Caret(p.Place.Source.Name, p.Place.Source.Text, p.Place.Span, p.Error())
+	if !errors.As(err, &p) {
+		return err.Error()
 	}
-	return err.Error()
+	text := p.Error()
+	if p.Place.Source != nil {
+		text = lang.Caret(p.Place.Source.Name, p.Place.Source.Text, p.Place.Span, text)
+	}
+	if p.Detail != "" {
+		text = strings.TrimRight(text, "\n") + "\n" + p.Detail
+	}
+	return text
 }
 
 // NotThereYet is the refusal of something that parses and has no engine yet.
