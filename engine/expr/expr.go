@@ -1,9 +1,8 @@
-// Package expr holds typed expressions and computes them, a batch of rows at a
-// time, for the active rows only.
 package expr
 
 import (
 	"nearcell/catalog/column"
+	"nearcell/engine/function"
 	"nearcell/engine/problem"
 )
 
@@ -13,7 +12,10 @@ import (
 // a vector of b.N values. Rows that are off hold anything but never raise an
 // error: CASE WHEN d <> 0 THEN x / d END divides only where d is not 0. The
 // vector is a read-only view that is valid until w.Reset; it may share memory
-// with the batch.
+// with the batch. An error of a row is a *RowError.
+//
+// Expressions are immutable and may be used by several goroutines, each with
+// a Work of its own.
 type Expr interface {
 	Type() column.Type
 	Unit() *column.Unit
@@ -21,7 +23,8 @@ type Expr interface {
 	Eval(w *Work, b *column.Batch, on []uint64) (column.Vector, error)
 	// Children are the expressions directly below, for rules and printing.
 	Children() []Expr
-	// With is a copy with other children, in the order of Children.
+	// With is a copy with other children, in the order of Children and of the
+	// same types.
 	With(children []Expr) Expr
 	// CanFail reports whether a row may raise an error: such a condition is
 	// not moved to where other rows would meet it.
@@ -30,7 +33,9 @@ type Expr interface {
 	String() string
 }
 
-// RowError is an error that one row of a batch raised.
+// RowError is an error that one row of a batch raised. Err is a
+// *problem.Problem that has the place of the failing part and does not name
+// the row: whoever runs the plan knows how rows are called.
 type RowError struct {
 	Row int // in the batch
 	Err error
@@ -40,3 +45,12 @@ func (e *RowError) Error() string { return e.Err.Error() }
 
 // Unwrap is the error without the row.
 func (e *RowError) Unwrap() error { return e.Err }
+
+// Work is the scratch memory of one goroutine. The zero Work is ready.
+type Work struct {
+	function.Arena
+}
+
+// Reset takes back all vectors that Eval has returned. Whoever runs a pipeline
+// calls it between batches.
+func (w *Work) Reset() { w.Arena.Reset() }

@@ -1,6 +1,3 @@
-// Package function is the one registry of scalar and aggregate functions:
-// signature, unit rule, meaning, kernel. The binder, HELP, LIST FUNCTIONS and
-// completion read it.
 package function
 
 import (
@@ -11,7 +8,8 @@ import (
 type Arg struct {
 	Type column.Type
 	Unit *column.Unit
-	// Const is the value of a constant argument (QUANTILE's p), else nil.
+	// Const is the value of a constant argument (QUANTILE's p), else nil. A
+	// constant without a unit takes the unit of the arguments beside it.
 	Const *column.Value
 }
 
@@ -27,17 +25,19 @@ type Result struct {
 // Scalar is a function of the values of one row. Eval is called with vectors
 // of n values each and computes the rows of on (nil: all); it returns a
 // *RowFault for a row without a value.
+//
+// Lazy functions have no Eval: package expr has a node for each of them, since
+// they must not compute all their arguments (COALESCE).
 type Scalar struct {
-	Name      string // upper case
-	Signature string // "ROUND(x [, digits])"
+	Name      string   // upper case
+	Aliases   []string // other spellings: CEIL for CEILING
+	Signature string   // "ROUND(x [, digits])"
 	Meaning   string
-	Example   string
-	// NullSafe functions see NULL arguments (COALESCE); for all others a NULL
-	// argument makes the result NULL before Eval is called.
-	NullSafe bool
-	CanFail  bool
-	Check    func(args []Arg) (Result, error)
-	Eval     func(a *Arena, args []column.Vector, on []uint64, n int, out *column.Vector) error
+	Example   string // an expression that is TRUE
+	CanFail   bool
+	Lazy      bool
+	Check     func(args []Arg) (Result, error)
+	Eval      func(a *Arena, args []column.Vector, on []uint64, n int, out *column.Vector) error
 }
 
 // Aggregate is a function of many rows.
@@ -45,28 +45,47 @@ type Aggregate struct {
 	Name      string
 	Signature string
 	Meaning   string
-	Example   string
-	Weighted  bool // WEIGHTED BY may follow
-	Ordered   bool // ORDER BY inside the parentheses may stand (FIRST, LAST)
-	Check     func(args []Arg) (Result, error)
-	// New starts an accumulator for arguments of the checked types. consts are
-	// the constant arguments (nil where not constant).
-	New func(args []column.Type, consts []*column.Value, weighted bool) Accumulator
+	Example   string // a select item over columns temp, volume, …
+	Star      bool   // the argument may be * (COUNT)
+	Weighted  bool   // WEIGHTED BY may follow
+	Ordered   bool   // ORDER BY inside the parentheses must stand (FIRST, LAST)
+	// Check is given the arguments (of COUNT(*) none) and the weight, nil where
+	// none is given.
+	Check func(args []Arg, weight *Arg) (Result, error)
+	// New starts an accumulator.
+	New func(s Setup) Accumulator
+}
+
+// Setup is what an accumulator is made for.
+type Setup struct {
+	Args     []column.Type   // the checked types (Result.Args); COUNT(*): none
+	Consts   []*column.Value // the constant arguments, nil where not constant
+	Weighted bool
+	// Keys are the ORDER BY inside the parentheses; their vectors follow the
+	// arguments in Add.
+	Keys []Key
+}
+
+// Key is the direction of one ordering vector.
+type Key struct {
+	Type       column.Type
+	Descending bool
 }
 
 // Accumulator holds the state of one aggregate for many groups.
 //
-// Add takes a batch: groups[i] is the group of row i, on the rows that count,
-// weight nil where each row counts once. Groups beyond those seen so far are
-// added. Merge takes the groups of another accumulator of the same kind, whose
-// group g is group to[g] here; merging in chunk order gives the same bits for
-// any number of workers. Result gives one value a group.
+// Add takes a batch: groups[i] is the group of row i, on the rows that count
+// (nil: all), weight nil where each row counts once. Groups beyond those seen
+// so far are added. Merge takes the groups of another accumulator of the same
+// kind, whose group g is group to[g] here; merging in chunk order gives the
+// same bits for any number of workers. Result gives one value a group, also
+// for groups that had no row. Add returns a *RowFault, Result a *GroupFault.
 type Accumulator interface {
 	Add(groups []int32, on []uint64, n int, args []column.Vector, weight *column.Vector) error
 	Merge(other Accumulator, to []int32) error
 	Result(groups int) (column.Vector, error)
 	// Weights tells of each group what the notes under a weighted answer say.
-	// It is nil for aggregates without weight.
+	// It is nil where there is no weight.
 	Weights(groups int) []WeightFacts
 }
 
@@ -84,12 +103,32 @@ type RowFault struct {
 	Row     int
 	Code    string // "no-value", "overflow", "weight"
 	Message string // "the logarithm of -1 has no value"
+	Hint    string // a way out, may be empty
 }
 
 func (f *RowFault) Error() string { return f.Message }
 
-// Arena hands out scratch slices that live until Reset.
-type Arena struct {
-	words [][]uint64
-	used  int
+// GroupFault is an error of the value of one group: a sum beyond its type.
+type GroupFault struct {
+	Group   int
+	Code    string // "no-value", "overflow"
+	Message string
+	Hint    string
 }
+
+func (f *GroupFault) Error() string { return f.Message }
+
+// ArgumentError is what Check returns for arguments of a wrong type or unit.
+// Arg is the index of the argument that is wrong, -1 for the call as a whole,
+// WeightArg for the weight.
+type ArgumentError struct {
+	Arg     int
+	Code    string // "types", "units", "arguments"
+	Message string
+	Hint    string
+}
+
+// WeightArg stands for the weight in an ArgumentError.
+const WeightArg = -2
+
+func (e *ArgumentError) Error() string { return e.Message }
