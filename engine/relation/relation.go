@@ -1,6 +1,3 @@
-// Package relation has one file for each geometric relation: its columns, its
-// clauses, its cost and its rows; and the one idea behind FOR EACH, zones and
-// duplicates: rows of the input that share one diagram.
 package relation
 
 import (
@@ -14,14 +11,21 @@ import (
 	"nearcell/voronoi/solid"
 )
 
-// Column is a column of a relation: one of the sites' own (Site is its index
-// in the input) or one that the relation computes (Site is -1 and Measures says
-// what the geometry must compute for it).
+// Column is a column of a relation. Where Site >= 0 its value in a row is that
+// of column Site of the input in the row's site (for CONTACTS: of the cell a),
+// so that a condition over such columns alone says which sites are shown.
+// Computed columns have Site -1; Measures says what the geometry must compute
+// for them (0: nothing beyond the partition itself).
 type Column struct {
 	column.Field
 	Site     int
 	Measures voronoi.Measures
 	Costly   bool // left out of SELECT *, named there
+	// Power is the column's dimension in lengths (3: a volume), from which its
+	// unit is made when a query is bound.
+	Power int
+	// Extensive columns add up over the rows of a partition to the whole.
+	Extensive bool
 }
 
 // Definition is a registry line: a relation of the language.
@@ -30,8 +34,12 @@ type Definition struct {
 	RowIs    string // "site"
 	Meaning  string
 	Clauses  []string // "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", …
-	Computed []Column // the columns beside the sites' own
+	Own      bool     // its rows carry the sites' own columns
+	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
+	NotYet   []string // columns of the language that are not there yet
 	Open     func(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
+
+	layout func(b *Bound) []Column
 }
 
 // Clauses are the bound clauses of one relation in a query.
@@ -41,22 +49,40 @@ type Clauses struct {
 	Each       []int       // columns of the input named by FOR EACH
 	Omitting   []string
 	Because    string
+	OmitPlaces []problem.Place // one for each of Omitting
 	Tolerance  float64
-	Duplicates string // SPLIT, MEAN, FIRST, FAIL
-	Unit       string // of length
+	Duplicates string // SPLIT, MEAN, FIRST, FAIL; "" is SPLIT
+	Unit       string // of length; "" is m
 }
 
 // Bound is a relation in a query after binding: what its rows look like.
 type Bound struct {
 	Def     *Definition
-	Name    string // what OF names, for notes: "hall"
+	Name    string // what OF names, for notes: "hall", "(query)"
 	Input   column.Schema
 	ID      int // column of the input that identifies a site
 	X, Y, Z int
 	Clauses Clauses
 	Columns []Column
 	Place   problem.Place
+	// EachPlace is the place of the FOR EACH clause.
+	EachPlace problem.Place
 }
+
+// Schema is the fields of the bound columns.
+func (b *Bound) Schema() column.Schema {
+	s := make(column.Schema, len(b.Columns))
+	for i, c := range b.Columns {
+		s[i] = c.Field
+	}
+	return s
+}
+
+// Title names the relation for messages: "CELLS OF hall".
+func (b *Bound) Title() string { return b.Def.Noun + " OF " + b.Name }
+
+// Layout fills b.Columns from b.Def, b.Input, b.ID, b.X, b.Y, b.Z and b.Clauses.
+func (b *Bound) Layout() { b.Columns = b.Def.layout(b) }
 
 // Request says what is asked for: which columns of Bound.Columns (Need), and
 // which rows of the input are shown (Wanted, nil: all). It never says which
@@ -76,9 +102,12 @@ type Env struct {
 
 // Rows are the rows of one relation.
 type Rows interface {
-	Cost() voronoi.Cost
+	// Cost estimates the geometry that Run will do; it builds no diagram that
+	// Run does not need.
+	Cost() (voronoi.Cost, error)
 	// Run emits the rows in their fixed order, in batches of at most
-	// BatchRows; columns that are not needed are vectors of NULL.
+	// BatchRows; columns that are not needed are vectors of NULL. A batch is
+	// valid until emit returns; batches may share dictionaries with the input.
 	Run(ctx context.Context, emit func(*column.Batch) error) error
 }
 

@@ -1,0 +1,57 @@
+package bind
+
+import (
+	"nearcell/catalog"
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/note"
+	"nearcell/engine/plan"
+	"nearcell/engine/problem"
+	"nearcell/lang"
+	"nearcell/voronoi/solid"
+)
+
+// Env is what the names of one statement may mean. It is not changed by
+// binding; one statement binds in one goroutine.
+type Env struct {
+	Catalog *catalog.Catalog
+	Source  *problem.Source         // the text that the statement stands in
+	Params  map[string]column.Value // values of LET and --let under lang.Fold(name)
+	Folder  string                  // relative paths of files start here
+	Notes   *note.Notes             // what binding has to say; nil: nowhere
+}
+
+// Query binds a query to a plan. The plan is the query as written: no rule has
+// touched it, every relation needs all its columns.
+func Query(env *Env, q *lang.Query) (plan.Node, error) {
+	return newBinder(env).query(q)
+}
+
+// Expression binds an expression without columns: the value of LET, of SET, of
+// a clause.
+func Expression(env *Env, e lang.Expr) (expr.Expr, error) {
+	return newBinder(env).constant(e)
+}
+
+// Value computes an expression without columns.
+func Value(env *Env, e lang.Expr) (column.Value, error) {
+	return newBinder(env).value(e)
+}
+
+// OverSchema binds an expression over the columns of a file: POSITION (x, y,
+// -depth). what names the file for messages: "hall.csv".
+func OverSchema(env *Env, e lang.Expr, schema column.Schema, what string) (expr.Expr, error) {
+	return newBinder(env).overSchema(e, schema, what)
+}
+
+// Solid makes the solid that an expression describes.
+func Solid(env *Env, s lang.Solid) (solid.Solid, error) {
+	return newBinder(env).solid(s)
+}
+
+// Canonical is a solid expression that stands on its own: values in place of
+// parameters, rings in place of files, the solids themselves in place of their
+// names. Its text is what the catalog keeps.
+func Canonical(env *Env, s lang.Solid) (lang.Solid, error) {
+	return newBinder(env).canonical(s)
+}

@@ -1,0 +1,72 @@
+package relation
+
+import (
+	"nearcell/lang"
+)
+
+// definitions is the registry, in the order in which DESCRIBE and HELP list it.
+var definitions = []*Definition{cells, contacts}
+
+// planned are the relations of the language that have no rows yet, each with
+// what a row of it is.
+var planned = map[string]string{
+	"TETRAHEDRA":      "Delaunay tetrahedron",
+	"TRIANGLES":       "Delaunay triangle",
+	"VERTICES":        "Voronoi vertex",
+	"HULL":            "triangle of the convex hull",
+	"GAPS":            "place locally farthest from every site",
+	"PLACEMENTS":      "proposed further site",
+	"REDUNDANCY":      "site, least missed first",
+	"SPACING":         "campaign",
+	"ESTIMATES":       "row of points",
+	"WEIGHTS":         "point and neighbour",
+	"RESIDUALS":       "site",
+	"EXCEEDANCE":      "campaign and threshold",
+	"SECTION":         "cell cut by the plane",
+	"OVERLAY":         "pair of cells that share space",
+	"AUTOCORRELATION": "campaign",
+	"CLUSTERS":        "site",
+	"GRID":            "grid point in the solid",
+	"TRANSECT":        "point along the line",
+	"SERIES":          "logger and instant",
+	"AUDIT":           "logger",
+	"EPISODES":        "excursion",
+	"EXTREMES":        "ranked row",
+	"REPRESENTATIVES": "chosen site",
+}
+
+// All are the relations that there are.
+func All() []*Definition { return definitions }
+
+// Lookup finds a relation by its noun, in any case.
+func Lookup(noun string) (*Definition, bool) {
+	for _, d := range definitions {
+		if lang.Fold(d.Noun) == lang.Fold(noun) {
+			return d, true
+		}
+	}
+	return nil, false
+}
+
+// Planned reports whether the noun is a relation of the language without an
+// engine so far, and how it is written.
+func Planned(noun string) (string, bool) {
+	for n := range planned {
+		if lang.Fold(n) == lang.Fold(noun) {
+			return n, true
+		}
+	}
+	return "", false
+}
+
+// Nouns are all nouns of the language, for the nearest name.
+func Nouns() []string {
+	var names []string
+	for _, d := range definitions {
+		names = append(names, d.Noun)
+	}
+	for n := range planned {
+		names = append(names, n)
+	}
+	return names
+}
