@@ -54,6 +54,7 @@ type Cell struct {
 	twin []int32 // of half-edge 3v+k; twin/3 is the vertex at its far end
 	face []int32 // cut behind the face on the left of half-edge 3v+k
 	cuts []plane // all cuts since SetBox, whether a face of them is left or not
+	sure []bool  // Settle's mark of vertex i
 	far  bool    // began in a box far larger than the cell: see refine
 
 	s     []float64 // scratch of Clip: n·v-d of every vertex
@@ -96,6 +97,7 @@ func (c *Cell) SetBox(lo, hi Vec, labels [6]int32) {
 		Vec{X: lo.X, Y: hi.Y, Z: lo.Z}, Vec{X: hi.X, Y: hi.Y, Z: lo.Z},
 		Vec{X: lo.X, Y: lo.Y, Z: hi.Z}, Vec{X: hi.X, Y: lo.Y, Z: hi.Z},
 		Vec{X: lo.X, Y: hi.Y, Z: hi.Z}, Vec{X: hi.X, Y: hi.Y, Z: hi.Z})
+	c.sure = append(c.sure, make([]bool, 8)...)
 	c.twin = append(c.twin, boxTwin[:]...)
 	c.face = append(c.face, boxFace[:]...)
 }
@@ -131,7 +133,7 @@ func boxGraph() (twin, face [24]int32) {
 }
 
 func (c *Cell) reset() {
-	c.v, c.twin, c.face, c.cuts = c.v[:0], c.twin[:0], c.face[:0], c.cuts[:0]
+	c.v, c.twin, c.face, c.cuts, c.sure = c.v[:0], c.twin[:0], c.face[:0], c.cuts[:0], c.sure[:0]
 	c.walked, c.surveyed, c.far = false, false, false
 }
 
@@ -144,6 +146,7 @@ func (c *Cell) CopyFrom(o *Cell) {
 	c.twin = append(c.twin[:0], o.twin...)
 	c.face = append(c.face[:0], o.face...)
 	c.cuts = append(c.cuts[:0], o.cuts...)
+	c.sure = append(c.sure[:0], o.sure...)
 	c.walked, c.surveyed, c.far = false, false, o.far
 }
 
@@ -158,6 +161,21 @@ func (c *Cell) Vertex(i int) Vec { return c.v[i] }
 
 // Vertices are all vertices: a view that the next cut overwrites.
 func (c *Cell) Vertices() []Vec { return c.v }
+
+// Settle marks vertex i as final in its user's eyes. The mark stays with the
+// vertex through later cuts; new vertices come without it.
+func (c *Cell) Settle(i int) { c.sure[i] = true }
+
+// Unsettled is the first vertex from i on without the mark of Settle; -1 if
+// there is none.
+func (c *Cell) Unsettled(i int) int {
+	for ; i < len(c.sure); i++ {
+		if !c.sure[i] {
+			return i
+		}
+	}
+	return -1
+}
 
 // Bounds is the smallest box that holds the cell. An empty cell has bounds the
 // wrong way round: +Inf to -Inf.

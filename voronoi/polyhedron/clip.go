@@ -20,10 +20,9 @@ func (c *Cell) Clip(n Vec, d float64, label int32) Result {
 	cut := int32(len(c.cuts))
 	c.cuts = append(c.cuts, plane{n, d, label})
 	c.walked, c.surveyed = false, false
-	old := len(c.v)
 	c.cross()
-	c.join(old, cut)
-	c.pack(old)
+	c.join(cut)
+	c.pack()
 	return Cut
 }
 
@@ -70,6 +69,7 @@ func (c *Cell) cross() {
 			w := int32(len(c.v))
 			c.fresh[h] = w
 			c.v = append(c.v, c.between(a, o, c.face[t], c.face[h]))
+			c.sure = append(c.sure, false)
 			c.twin = append(c.twin, t, -1, -1)
 			c.face = append(c.face, c.face[h], -1, -1)
 			c.twin[t] = 3 * w
@@ -122,7 +122,7 @@ func (c *Cell) refine(p, va, vo Vec, f, g int32) Vec {
 // join links the new vertices along the outside run of every face: a face that
 // is left at new vertex w (the exit) and entered again at x (the entry) keeps the
 // half-edge w -> x, and the new face gets x -> w.
-func (c *Cell) join(old int, cut int32) {
+func (c *Cell) join(cut int32) {
 	for _, o := range c.gone {
 		for h := 3 * o; h < 3*o+3; h++ {
 			w := c.fresh[h]
@@ -152,7 +152,7 @@ func before(h int32) int32 {
 }
 
 // pack fills the places of the outer vertices from the end of the list.
-func (c *Cell) pack(old int) {
+func (c *Cell) pack() {
 	last := int32(len(c.v)) - 1
 	hole := 0
 	for hi := len(c.gone) - 1; hole <= hi; {
@@ -165,7 +165,7 @@ func (c *Cell) pack(old int) {
 		}
 		o := c.gone[hole]
 		hole++
-		c.v[o] = c.v[last]
+		c.v[o], c.sure[o] = c.v[last], c.sure[last]
 		for k := int32(0); k < 3; k++ {
 			t := c.twin[3*last+k]
 			if t/3 == last { // an edge of a vertex to itself cannot be
@@ -177,5 +177,5 @@ func (c *Cell) pack(old int) {
 		last--
 	}
 	n := int(last) + 1
-	c.v, c.twin, c.face = c.v[:n], c.twin[:3*n], c.face[:3*n]
+	c.v, c.sure, c.twin, c.face = c.v[:n], c.sure[:n], c.twin[:3*n], c.face[:3*n]
 }
