@@ -1,0 +1,213 @@
+package voronoi
+
+import (
+	"math"
+	"runtime"
+
+	"nearcell/voronoi/index"
+	"nearcell/voronoi/polyhedron"
+	"nearcell/voronoi/solid"
+)
+
+// Diagram is the Voronoi partition of a set of sites, in a solid or without one.
+// It is immutable after New and can be used by any number of goroutines at once.
+type Diagram struct {
+	solid    solid.Solid // nil: none
+	convex   bool        // the solid is convex
+	isBox    bool        // the solid is its own bounding box
+	lo, hi   Vec         // bounds of the solid, shifted by the origin
+	threads  int
+	progress func(done, total int)
+
+	key    [16]byte
+	facts  Facts
+	origin Vec
+
+	// Distinct sites that take part are numbered by the tree's order, which depends
+	// on their coordinates alone. In the code such a number is called a cell.
+	tree  *index.Tree
+	cell  []int32 // by site: its cell, -1 outside
+	site  []int32 // by cell: the representative site
+	count []int32 // by cell: sites at this place
+}
+
+// New makes the diagram of the sites. It keeps no reference to them. Nothing but
+// the index is computed.
+func New(sites []Vec, o Options) (*Diagram, error) {
+	if err := check(sites, o); err != nil {
+		return nil, err
+	}
+	d := &Diagram{solid: o.Solid, threads: o.Threads, progress: o.Progress}
+	if d.threads <= 0 {
+		d.threads = runtime.GOMAXPROCS(0)
+	}
+	d.key = contentKey(sites, o)
+	d.facts = Facts{Sites: len(sites), Volume: math.Inf(1)}
+	inside := make([]bool, len(sites))
+	d.sort(sites, o.Tolerance, inside)
+	first, groups := distinct(sites, inside)
+	d.facts.Groups = groups
+	d.build(sites, first)
+	d.survey()
+	return d, nil
+}
+
+// check looks for input that has no partition.
+func check(sites []Vec, o Options) error {
+	if len(sites) == 0 {
+		return ErrNoSites
+	}
+	if len(sites) > math.MaxInt32 {
+		return ErrTooMany
+	}
+	for i, p := range sites {
+		for axis, x := range [3]float64{p.X, p.Y, p.Z} {
+			if !(math.Abs(x) <= 1e150) {
+				return &NotFiniteError{i, axis, x}
+			}
+		}
+	}
+	if !(o.Tolerance >= 0) || math.IsInf(o.Tolerance, 0) {
+		return &ToleranceError{o.Tolerance}
+	}
+	if o.Solid != nil {
+		if v := o.Solid.Volume(); !(v > 0) || math.IsInf(v, 0) {
+			return &NoVolumeError{v}
+		}
+	}
+	return nil
+}
+
+// sort tells sites inside the solid from those left out.
+func (d *Diagram) sort(sites []Vec, tolerance float64, inside []bool) {
+	for i, p := range sites {
+		if d.solid == nil {
+			inside[i] = true
+			continue
+		}
+		switch d.solid.Side(p, tolerance) {
+		case solid.Inside:
+			inside[i] = true
+		case solid.On:
+			inside[i] = true
+			d.facts.OnWall = append(d.facts.OnWall, int32(i))
+		default:
+			d.facts.Outside = append(d.facts.Outside, int32(i))
+			d.facts.OutsideDistance = append(d.facts.OutsideDistance, d.solid.Distance(p))
+		}
+	}
+	d.facts.Inside = len(sites) - len(d.facts.Outside)
+}
+
+// build shifts the distinct sites and makes the index. first[i] is the
+// representative of site i, -1 for a site outside.
+func (d *Diagram) build(sites []Vec, first []int32) {
+	n := 0
+	for i, f := range first {
+		if f == int32(i) {
+			n++
+		}
+	}
+	places := make([]Vec, 0, n)
+	representative := make([]int32, 0, n)
+	for i, f := range first {
+		if f == int32(i) {
+			places = append(places, positive(sites[i]))
+			representative = append(representative, f)
+		}
+	}
+	d.facts.Distinct = n
+	d.enclose(places)
+	d.origin = exactOrigin(places)
+	d.facts.Origin = d.origin
+	for i := range places {
+		places[i] = sub(places[i], d.origin)
+	}
+	d.tree = index.New(places)
+	d.number(first, representative)
+}
+
+// number links sites and cells.
+func (d *Diagram) number(first, representative []int32) {
+	n := d.tree.Len()
+	d.site, d.count = make([]int32, n), make([]int32, n)
+	d.cell = make([]int32, len(first))
+	for i := range n {
+		s := representative[d.tree.Original(int32(i))]
+		d.site[i] = s
+		d.cell[s] = int32(i)
+	}
+	for i, f := range first {
+		if f < 0 {
+			d.cell[i] = -1
+			continue
+		}
+		d.cell[i] = d.cell[f]
+		d.count[d.cell[f]]++
+	}
+}
+
+// enclose sets the bounds of the places and takes those of the solid over.
+func (d *Diagram) enclose(places []Vec) {
+	if len(places) > 0 {
+		lo, hi := places[0], places[0]
+		for _, p := range places[1:] {
+			lo = Vec{X: min(lo.X, p.X), Y: min(lo.Y, p.Y), Z: min(lo.Z, p.Z)}
+			hi = Vec{X: max(hi.X, p.X), Y: max(hi.Y, p.Y), Z: max(hi.Z, p.Z)}
+		}
+		d.facts.Lo, d.facts.Hi = lo, hi
+	}
+	if d.solid != nil {
+		d.lo, d.hi = d.solid.Bounds()
+		d.convex = d.solid.Planes() != nil
+		d.isBox = d.convex && isBox(d.solid)
+		d.facts.Volume = d.solid.Volume()
+	}
+}
+
+// isBox tells whether the walls of a convex solid are the sides of its bounding
+// box, in the order in which polyhedron.Cell.SetBox takes them.
+func isBox(s solid.Solid) bool {
+	planes := s.Planes()
+	if len(planes) != 6 {
+		return false
+	}
+	sides := [6]Vec{{X: -1}, {X: 1}, {Y: -1}, {Y: 1}, {Z: -1}, {Z: 1}}
+	for i, p := range planes {
+		if p.N != sides[i] || p.Wall != int32(i) {
+			return false
+		}
+	}
+	return true
+}
+
+// Key identifies the diagram by its content: sites in their order, solid and
+// tolerance.
+func (d *Diagram) Key() [16]byte { return d.key }
+
+// Facts are what can be said without computing a cell. Its slices are shared and
+// not to be written to.
+func (d *Diagram) Facts() Facts { return d.facts }
+
+// Len is the number of sites given to New.
+func (d *Diagram) Len() int { return len(d.cell) }
+
+// Solid is the solid that closes the partition, nil without one.
+func (d *Diagram) Solid() solid.Solid { return d.solid }
+
+// Nearest is the site nearest to p among those that take part, the
+// representative of its group, and the distance; -1 and +Inf if none takes part.
+// Sites equally near are told apart by their coordinates alone.
+func (d *Diagram) Nearest(p Vec) (site int32, distance float64) {
+	i, d2 := d.tree.Nearest(sub(p, d.origin))
+	if i < 0 {
+		return -1, math.Inf(1)
+	}
+	return d.site[i], math.Sqrt(d2)
+}
+
+// wallLabels are the labels of the sides of the solid's bounding box.
+var wallLabels = [6]int32{
+	polyhedron.Wall(0), polyhedron.Wall(1), polyhedron.Wall(2),
+	polyhedron.Wall(3), polyhedron.Wall(4), polyhedron.Wall(5),
+}

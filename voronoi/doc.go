@@ -1,0 +1,2 @@
+// Package voronoi divides space among sites.
+package voronoi
