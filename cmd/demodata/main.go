@@ -1,0 +1,60 @@
+package main
+
+import (
+	"bytes"
+	"flag"
+	"fmt"
+	"os"
+	"path/filepath"
+)
+
+// seed is the one number from which all random streams start.
+const seed = 20310407
+
+func main() {
+	to := flag.String("to", filepath.Join("testdata", "demo"), "folder to write into")
+	flag.Parse()
+	if err := write(*to); err != nil {
+		fmt.Fprintln(os.Stderr, "demodata:", err)
+		os.Exit(1)
+	}
+}
+
+// file is one file of the demo, in memory.
+type file struct {
+	name string
+	text []byte
+}
+
+// write makes all files first and then puts them into the folder, so that a
+// generator that fails leaves the old ones alone.
+func write(folder string) error {
+	files, err := generate()
+	if err != nil {
+		return err
+	}
+	for _, f := range files {
+		if err := os.WriteFile(filepath.Join(folder, f.name), f.text, 0o644); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// generate makes the files of the demo.
+func generate() ([]file, error) {
+	var files []file
+	var f fence
+	add := func(name string, make func(*bytes.Buffer, *fence)) {
+		var b bytes.Buffer
+		make(&b, &f)
+		files = append(files, file{name, b.Bytes()})
+	}
+	before, after := firstCampaign(), secondCampaign()
+	add("sites.csv", before.writeSites)
+	add("log.csv", before.writeLog)
+	add("sites2.csv", after.writeSites)
+	add("log2.csv", after.writeLog)
+	add("walk.csv", func(b *bytes.Buffer, f *fence) { writeWalk(b, f, before) })
+	return files, f.err
+}
