@@ -1,0 +1,328 @@
+package diagram
+
+import (
+	"container/list"
+	"context"
+	"slices"
+	"sync/atomic"
+
+	"nearcell/voronoi"
+)
+
+// Handle is a diagram of the store with the measures that were computed so far.
+// Its methods may be called by many goroutines.
+type Handle struct {
+	store *Store
+	key   Key
+	place *list.Element // in store.recent
+	bytes int64         // under store.mu
+
+	ready chan struct{} // closed when d and err are set
+	d     *voronoi.Diagram
+	err   error
+
+	progress atomic.Pointer[func(done, total int)]
+
+	busy     chan struct{} // held by who computes; guards what follows
+	known    []voronoi.Measures
+	cells    voronoi.Cells
+	contacts [][]voronoi.Contact // nil: not computed
+}
+
+// Bytes that a diagram without measures, a contact and its list take.
+const (
+	bytesPerSite    = 96
+	bytesPerContact = 48
+	meanContacts    = 16
+	// rememberedContacts is the share of the limit that the contacts of one
+	// diagram may take to be remembered.
+	rememberedContacts = 4
+	unlimitedContacts  = 1 << 30
+)
+
+func (h *Handle) finish(d *voronoi.Diagram, err error) {
+	h.d, h.err = d, err
+	close(h.ready)
+}
+
+func (h *Handle) built() bool {
+	select {
+	case <-h.ready:
+		return true
+	default:
+		return false
+	}
+}
+
+func (h *Handle) base() int64 { return 1024 + bytesPerSite*int64(h.d.Len()) }
+
+func (h *Handle) report(done, total int) {
+	if f := h.progress.Load(); f != nil {
+		(*f)(done, total)
+	}
+}
+
+// Key identifies the diagram.
+func (h *Handle) Key() Key { return h.key }
+
+// Facts are what is known of the diagram without computing a cell.
+func (h *Handle) Facts() voronoi.Facts { return h.d.Facts() }
+
+// Len is the number of sites.
+func (h *Handle) Len() int { return h.d.Len() }
+
+// Cost estimates what the measures of n cells take if none is known yet.
+func (h *Handle) Cost(want voronoi.Measures, n int) voronoi.Cost { return h.d.Cost(want, n) }
+
+// lock waits until nobody else computes. While it is held, progress is told to
+// the given function.
+func (h *Handle) lock(ctx context.Context, progress func(done, total int)) error {
+	select {
+	case h.busy <- struct{}{}:
+	case <-ctx.Done():
+		return ctx.Err()
+	}
+	if err := ctx.Err(); err != nil {
+		<-h.busy
+		return err
+	}
+	if progress != nil {
+		h.progress.Store(&progress)
+	}
+	return nil
+}
+
+func (h *Handle) unlock() {
+	h.progress.Store(nil)
+	<-h.busy
+}
+
+// Measure computes the wanted measures of the given sites (nil: all), as far as
+// they are not known. In the answer, entry s of each array belongs to site s of
+// the diagram; only the entries of the sites asked for are to be read, and none
+// is to be changed. Cells.Sites is nil.
+func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int32,
+	progress func(done, total int)) (*voronoi.Cells, error) {
+	if err := h.lock(ctx, progress); err != nil {
+		return nil, err
+	}
+	defer h.unlock()
+	missing, all := h.missing(want, sites)
+	if len(missing) > 0 || all {
+		if all {
+			missing = nil
+		}
+		got, err := h.d.Measure(ctx, want, missing)
+		if err != nil {
+			return nil, err
+		}
+		h.store.count(len(got.Sites), 0)
+		h.store.grow(h, h.merge(want, got))
+	}
+	view := h.cells
+	return &view, nil
+}
+
+// missing lists the sites asked for of which a wanted measure is unknown; all
+// tells that these are all sites of the diagram.
+func (h *Handle) missing(want voronoi.Measures, sites []int32) (list []int32, all bool) {
+	n := h.d.Len()
+	if h.known == nil {
+		if sites == nil {
+			return nil, true
+		}
+		return distinctSites(sites, n), false
+	}
+	if sites == nil {
+		for s := range int32(n) {
+			if want&^h.known[s] != 0 {
+				list = append(list, s)
+			}
+		}
+		return list, len(list) == n
+	}
+	for _, s := range sites {
+		if want&^h.known[s] != 0 {
+			list = append(list, s)
+		}
+	}
+	return distinctSites(list, n), false
+}
+
+// distinctSites is the sites in ascending order, each once.
+func distinctSites(sites []int32, n int) []int32 {
+	if len(sites) == 0 {
+		return nil
+	}
+	list := slices.Clone(sites)
+	slices.Sort(list)
+	return slices.Compact(list)
+}
+
+// merge takes measures over and returns the bytes of new arrays.
+func (h *Handle) merge(want voronoi.Measures, got *voronoi.Cells) int64 {
+	n := h.d.Len()
+	var bytes int64
+	if h.known == nil {
+		h.known = make([]voronoi.Measures, n)
+		bytes += 4 * int64(n)
+	}
+	c, into := &h.cells, target{got.Sites, h.known}
+	const any = ^voronoi.Measures(0) // present whatever was asked for
+	bytes += put(into, any, &c.Inside, got.Inside, 1)
+	bytes += put(into, any, &c.Multiplicity, got.Multiplicity, 4)
+	bytes += put(into, voronoi.Volume, &c.Volume, got.Volume, 8)
+	bytes += put(into, voronoi.Area, &c.Area, got.Area, 8)
+	bytes += put(into, voronoi.WallArea, &c.WallArea, got.WallArea, 8)
+	bytes += put(into, voronoi.Faces, &c.Faces, got.Faces, 4)
+	bytes += put(into, voronoi.Faces, &c.Edges, got.Edges, 4)
+	bytes += put(into, voronoi.Faces, &c.Vertices, got.Vertices, 4)
+	bytes += put(into, voronoi.Faces, &c.Shaped, got.Shaped, 1)
+	bytes += put(into, voronoi.Neighbours, &c.Neighbours, got.Neighbours, 4)
+	bytes += put(into, voronoi.Bounded, &c.Bounded, got.Bounded, 1)
+	bytes += put(into, voronoi.Clipped, &c.Clipped, got.Clipped, 1)
+	bytes += put(into, voronoi.Centroid, &c.Centroid, got.Centroid, 24)
+	bytes += put(into, voronoi.Centroid, &c.HasCentroid, got.HasCentroid, 1)
+	bytes += put(into, voronoi.Farthest, &c.Farthest, got.Farthest, 8)
+	bytes += put(into, voronoi.NearestFace, &c.NearestFace, got.NearestFace, 8)
+	for _, s := range got.Sites {
+		h.known[s] |= want
+	}
+	return bytes
+}
+
+// target is where measures go: the sites that were measured, and what was known
+// of every site before.
+type target struct {
+	sites []int32
+	known []voronoi.Measures
+}
+
+// put writes the values of the measured sites into an array over all sites. An
+// entry that was known is not written again: somebody may be reading it, and a
+// cell measured twice gives the same bits.
+func put[T any](t target, measure voronoi.Measures, array *[]T, values []T, size int64) int64 {
+	if values == nil {
+		return 0
+	}
+	n := len(t.known)
+	if *array == nil && len(t.sites) == n && sorted(t.sites) {
+		*array = values
+		return int64(n) * size
+	}
+	var bytes int64
+	if *array == nil {
+		*array = make([]T, n)
+		bytes = int64(n) * size
+	}
+	for i, s := range t.sites {
+		if t.known[s]&measure == 0 {
+			(*array)[s] = values[i]
+		}
+	}
+	return bytes
+}
+
+func sorted(sites []int32) bool {
+	for i, s := range sites {
+		if s != int32(i) {
+			return false
+		}
+	}
+	return true
+}
+
+// Contacts calls yield for each of the given sites in their order (nil: all). The
+// contacts are not to be changed or kept.
+func (h *Handle) Contacts(ctx context.Context, sites []int32, progress func(done, total int),
+	yield func(site int32, contacts []voronoi.Contact) error) error {
+	n := h.d.Len()
+	if !h.remember(len(sites), sites == nil) {
+		// Not under the lock: yield may take as long as it likes.
+		if progress != nil {
+			h.progress.Store(&progress)
+			defer h.progress.Store(nil)
+		}
+		return h.d.Contacts(ctx, sites, yield)
+	}
+	lists, err := h.lists(ctx, sites, progress)
+	if err != nil {
+		return err
+	}
+	if sites == nil {
+		for s := range int32(n) {
+			if err := yield(s, lists[s]); err != nil {
+				return err
+			}
+		}
+		return nil
+	}
+	for _, s := range sites {
+		if err := yield(s, lists[s]); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// remember tells whether so many sites' contacts are few enough to be kept.
+func (h *Handle) remember(sites int, all bool) bool {
+	if all {
+		sites = h.d.Len()
+	}
+	h.store.mu.Lock()
+	limit := h.store.limit
+	h.store.mu.Unlock()
+	if limit == 0 {
+		limit = unlimitedContacts
+	}
+	need := int64(sites)*meanContacts*bytesPerContact + 24*int64(h.d.Len())
+	return need <= limit/rememberedContacts
+}
+
+// lists are the contacts by site, computed as far as they are not known.
+func (h *Handle) lists(ctx context.Context, sites []int32, progress func(done, total int)) ([][]voronoi.Contact, error) {
+	if err := h.lock(ctx, progress); err != nil {
+		return nil, err
+	}
+	defer h.unlock()
+	n := h.d.Len()
+	var bytes int64
+	if h.contacts == nil {
+		h.contacts = make([][]voronoi.Contact, n)
+		bytes += 24 * int64(n)
+	}
+	var missing []int32
+	if sites == nil {
+		for s := range int32(n) {
+			if h.contacts[s] == nil {
+				missing = append(missing, s)
+			}
+		}
+	} else {
+		for _, s := range sites {
+			if h.contacts[s] == nil {
+				missing = append(missing, s)
+			}
+		}
+		missing = distinctSites(missing, n)
+	}
+	if len(missing) > 0 {
+		done := 0
+		err := h.d.Contacts(ctx, missing, func(site int32, contacts []voronoi.Contact) error {
+			kept := make([]voronoi.Contact, len(contacts)) // never nil: nil is unknown
+			copy(kept, contacts)
+			h.contacts[site] = kept
+			bytes += bytesPerContact * int64(len(contacts))
+			done++
+			return nil
+		})
+		h.store.count(0, done)
+		if err != nil {
+			h.store.grow(h, bytes)
+			return nil, err
+		}
+	}
+	h.store.grow(h, bytes)
+	return h.contacts, nil
+}
