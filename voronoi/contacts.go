@@ -1,15 +1,254 @@
 package voronoi
 
 import (
+	"cmp"
 	"context"
+	"math"
+	"slices"
+
 	"nearcell/voronoi/polyhedron"
+	"nearcell/voronoi/solid"
 )
 
-// Contacts calls yield for each of the given sites in their order (nil: all
-// sites).
-func (d *Diagram) Contacts(ctx context.Context, sites []int32, yield func(site int32, contacts []Contact) error) error {
-	panic("not written")
+// share is what a cell knows about one of its contacts.
+type share struct {
+	other  int32 // cell
+	area   float64
+	middle Vec
 }
 
-// Insert makes c the cell that p would get among the sites.
-func (d *Diagram) Insert(p Vec, c *polyhedron.Cell) error { panic("not written") }
+// Contacts calls yield once for each of the given sites, in their order (nil: all
+// sites in theirs), with the contacts of its cell by the number of the other site.
+// The list is valid during the call only. Sites outside the solid have none, sites
+// at the same place have the same.
+//
+// Whether two cells touch, where and how much is read from one of the two, the
+// one that comes first in an order of their coordinates. So (a, b) and (b, a) agree
+// to the last bit, and do not depend on which sites are asked for.
+//
+// It holds about 40 bytes for each contact that was asked for. An error of yield
+// ends the calls and is returned.
+func (d *Diagram) Contacts(ctx context.Context, sites []int32, yield func(site int32, contacts []Contact) error) error {
+	r, err := d.request(sites)
+	if err != nil {
+		return err
+	}
+	list, err := d.contactsOf(ctx, r.cells)
+	if err != nil {
+		return err
+	}
+	var contacts []Contact
+	for row, s := range r.sites {
+		if row%256 == 0 {
+			if err := ctx.Err(); err != nil {
+				return err
+			}
+		}
+		contacts = contacts[:0]
+		if c := d.cell[s]; c >= 0 {
+			k, _ := slices.BinarySearch(r.cells, c)
+			contacts = d.describe(contacts, c, list[k])
+		}
+		if err := yield(s, contacts); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// describe turns the contacts of a cell into those of its site.
+func (d *Diagram) describe(to []Contact, cell int32, from []share) []Contact {
+	p := d.tree.Point(cell)
+	for _, s := range from {
+		to = append(to, Contact{
+			Other:    d.site[s.other],
+			Area:     s.area,
+			Distance: length(sub(d.tree.Point(s.other), p)),
+			Middle:   s.middle,
+		})
+	}
+	slices.SortFunc(to, func(a, b Contact) int { return cmp.Compare(a.Other, b.Other) })
+	return to
+}
+
+// contactsOf finds the contacts of the given cells (ascending). The first pass
+// builds these cells and takes from each its contacts with later cells; what it
+// says about earlier cells is only a hint to build those, in a second pass, if they
+// were not asked for.
+func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, error) {
+	later := make([][]share, len(cells))
+	hints := make([][]int32, len(cells))
+	err := d.forEach(ctx, len(cells), 0, len(cells), func(b *builder, k int) error {
+		all, err := b.shares(cells[k])
+		if err != nil {
+			return err
+		}
+		later[k] = keep(all, func(s share) bool { return s.other > cells[k] })
+		for i := range b.cell.NumFaces() {
+			if label, _ := b.cell.Face(i); label >= 0 && label < cells[k] {
+				if _, asked := slices.BinarySearch(cells, label); !asked {
+					hints[k] = append(hints[k], label)
+				}
+			}
+		}
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	earlier := slices.Concat(hints...)
+	slices.Sort(earlier)
+	earlier = slices.Compact(earlier)
+	fromEarlier := make([][]share, len(earlier))
+	err = d.forEach(ctx, len(earlier), len(cells), len(cells)+len(earlier), func(b *builder, k int) error {
+		all, err := b.shares(earlier[k])
+		if err != nil {
+			return err
+		}
+		fromEarlier[k] = keep(all, func(s share) bool {
+			_, asked := slices.BinarySearch(cells, s.other)
+			return asked && s.other > earlier[k]
+		})
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	return merge(cells, later, earlier, fromEarlier), nil
+}
+
+// keep copies the shares that pass.
+func keep(all []share, pass func(share) bool) []share {
+	n := 0
+	for _, s := range all {
+		if pass(s) {
+			n++
+		}
+	}
+	kept := make([]share, 0, n)
+	for _, s := range all {
+		if pass(s) {
+			kept = append(kept, s)
+		}
+	}
+	return kept
+}
+
+// merge gives each contact to both of its cells.
+func merge(cells []int32, later [][]share, earlier []int32, fromEarlier [][]share) [][]share {
+	count := make([]int, len(cells))
+	visit := func(do func(k int, s share)) {
+		give := func(owner int32, s share) {
+			if k, asked := slices.BinarySearch(cells, s.other); asked {
+				do(k, share{owner, s.area, s.middle})
+			}
+		}
+		for k, shares := range later {
+			for _, s := range shares {
+				do(k, s)
+				give(cells[k], s)
+			}
+		}
+		for k, shares := range fromEarlier {
+			for _, s := range shares {
+				give(earlier[k], s)
+			}
+		}
+	}
+	total := 0
+	visit(func(k int, _ share) { count[k]++; total++ })
+	room := make([]share, total)
+	out := make([][]share, len(cells))
+	for k, n := range count {
+		out[k], room = room[:0:n], room[n:]
+	}
+	visit(func(k int, s share) { out[k] = append(out[k], s) })
+	return out
+}
+
+// shares builds a cell and lists its contacts, one for each neighbour, in a buffer
+// that the next call overwrites.
+func (b *builder) shares(cell int32) ([]share, error) {
+	d := b.d
+	p := d.tree.Point(cell)
+	at := add(p, d.origin)
+	bounded, err := b.build(&b.cell, p, at, cell)
+	if err != nil {
+		return nil, err
+	}
+	b.list = b.list[:0]
+	if d.solid == nil || d.convex {
+		for i := range b.cell.NumFaces() {
+			if label, _ := b.cell.Face(i); label >= 0 && b.cell.Counts(i) {
+				b.list = append(b.list, b.wholeFace(i, label, at, bounded))
+			}
+		}
+		return b.list, nil
+	}
+	m := &b.measures
+	if err := d.solid.Measure(&b.cell, at, solid.WantContacts, &b.work, m); err != nil {
+		return nil, err
+	}
+	if m.Empty {
+		return b.list, nil
+	}
+	b.inside = append(b.inside[:0], m.Contacts...) // clippedMiddle measures again
+	for i, area := range b.inside {
+		if !b.touches(i, area) {
+			continue
+		}
+		label, _ := b.cell.Face(i)
+		whole := b.cell.Area(i)
+		s := b.wholeFace(i, label, at, true)
+		if math.Abs(area-whole) > 1e-12*whole {
+			s.area = area
+			if s.middle, err = b.clippedMiddle(i, at, s.middle); err != nil {
+				return nil, err
+			}
+		}
+		b.list = append(b.list, s)
+	}
+	return b.list, nil
+}
+
+// wholeFace is the contact through face i.
+func (b *builder) wholeFace(i int, other int32, at Vec, bounded bool) share {
+	if !bounded && b.cell.Reaches(i) {
+		n, _ := b.cell.FacePlane(i)
+		half := Vec{X: n.X / 2, Y: n.Y / 2, Z: n.Z / 2}
+		return share{other, math.Inf(1), add(at, half)}
+	}
+	area, middle := b.cell.FaceMiddle(i)
+	return share{other, area, add(at, middle)}
+}
+
+// clippedMiddle is the centroid of the part of face i inside the solid, whole the
+// centroid of the whole face. It is read from the first moments of two thin slabs
+// of the cell along the face: their centroids, moved into the face's plane, lie
+// within the thickness of the one sought, and the two together cancel that first
+// order. What is left is about 1e-8 of the cell's size.
+func (b *builder) clippedMiddle(i int, at, whole Vec) (Vec, error) {
+	n, dist := b.cell.FacePlane(i)
+	size := length(n)
+	unit := Vec{X: n.X / size, Y: n.Y / size, Z: n.Z / size}
+	level := dist / size
+	thickness := 1e-5 * b.cell.Farthest()
+	var middle [2]Vec
+	for k := range middle {
+		t := thickness * float64(k+1)
+		b.slab.CopyFrom(&b.cell)
+		b.slab.Clip(Vec{X: -unit.X, Y: -unit.Y, Z: -unit.Z}, t-level, polyhedron.Open)
+		m := &b.slabOut
+		if err := b.d.solid.Measure(&b.slab, at, solid.WantCentroid, &b.work, m); err != nil {
+			return Vec{}, err
+		}
+		if !(m.Volume > 0) {
+			return whole, nil // thinner than rounding: the face is a sliver
+		}
+		c := Vec{X: m.First.X / m.Volume, Y: m.First.Y / m.Volume, Z: m.First.Z / m.Volume}
+		off := level - dot(unit, c)
+		middle[k] = Vec{X: c.X + off*unit.X, Y: c.Y + off*unit.Y, Z: c.Z + off*unit.Z}
+	}
+	a, c := middle[0], middle[1]
+	return add(at, Vec{X: 2*a.X - c.X, Y: 2*a.Y - c.Y, Z: 2*a.Z - c.Z}), nil
+}

@@ -3,6 +3,7 @@ package voronoi
 import (
 	"math"
 	"runtime"
+	"sync"
 
 	"nearcell/voronoi/index"
 	"nearcell/voronoi/polyhedron"
@@ -29,6 +30,8 @@ type Diagram struct {
 	cell  []int32 // by site: its cell, -1 outside
 	site  []int32 // by cell: the representative site
 	count []int32 // by cell: sites at this place
+
+	pool sync.Pool // of *builder
 }
 
 // New makes the diagram of the sites. It keeps no reference to them. Nothing but

@@ -112,9 +112,13 @@ func (c *Cell) FaceMiddle(i int) (area float64, middle Vec) {
 
 // Surface is the sum of the areas of all faces.
 func (c *Cell) Surface() float64 {
+	if c.Empty() {
+		return 0
+	}
+	c.survey()
 	total := 0.0
-	for i := 0; i < c.NumFaces(); i++ {
-		total += length(c.FaceArea(i))
+	for _, a := range c.area {
+		total += a
 	}
 	return total
 }
