@@ -1,11 +1,24 @@
 package column
 
+import (
+	"fmt"
+	"slices"
+)
+
 // Builder collects values of one type, one after the other, into a Vector.
 // The zero Builder is not usable; see NewBuilder.
 type Builder struct {
 	v     Vector
 	nulls bool
-	codes map[string]uint32
+
+	// For texts: codes finds a text in the dictionary, nil until it is needed.
+	// A borrowed dictionary belongs to another vector too and is copied before
+	// a text is added. trans turns the codes of the dictionary last appended
+	// from into ours, plus 1; 0 where that was not needed yet.
+	codes    map[string]uint32
+	borrowed bool
+	from     *Dict
+	trans    []uint32
 }
 
 // NewBuilder starts a column of the type.
@@ -13,13 +26,30 @@ func NewBuilder(t Type, unit *Unit) *Builder {
 	b := &Builder{v: Vector{Type: t, Unit: unit}}
 	if t == Text {
 		b.v.Dict = &Dict{}
-		b.codes = map[string]uint32{}
 	}
 	return b
 }
 
 // Len is the number of values so far.
 func (b *Builder) Len() int { return b.v.N }
+
+// Grow makes room for n more values.
+func (b *Builder) Grow(n int) {
+	v := &b.v
+	switch v.Type {
+	case Integer, Timestamp, Interval:
+		v.I = slices.Grow(v.I, n)
+	case Real:
+		v.F = slices.Grow(v.F, n)
+	case Point:
+		v.F = slices.Grow(v.F, 3*n)
+	case Text:
+		v.C = slices.Grow(v.C, n)
+	case Boolean:
+		v.Bits = slices.Grow(v.Bits, Words(v.N+n)-len(v.Bits))
+	}
+	v.Valid = slices.Grow(v.Valid, Words(v.N+n)-len(v.Valid))
+}
 
 func (b *Builder) grow(valid bool) {
 	i := b.v.N
@@ -49,7 +79,9 @@ func (b *Builder) AppendNull() {
 		b.v.F = append(b.v.F, 0, 0, 0)
 	case Text:
 		b.v.C = append(b.v.C, 0)
-		b.codeOf("") // a NULL slot holds code 0, which must exist
+		if len(b.v.Dict.Texts) == 0 {
+			b.codeOf("") // a NULL slot holds code 0, which must exist
+		}
 	}
 }
 
@@ -65,6 +97,16 @@ func (b *Builder) AppendText(s string) {
 	b.v.C = append(b.v.C, b.codeOf(s))
 }
 
+// AppendBytes adds a Text; s is copied only if the column has not got it yet.
+func (b *Builder) AppendBytes(s []byte) {
+	b.grow(true)
+	if c, ok := b.codes[string(s)]; ok {
+		b.v.C = append(b.v.C, c)
+		return
+	}
+	b.v.C = append(b.v.C, b.codeOf(string(s)))
+}
+
 // AppendBool adds a Boolean.
 func (b *Builder) AppendBool(x bool) {
 	b.grow(true)
@@ -77,13 +119,15 @@ func (b *Builder) AppendBool(x bool) {
 func (b *Builder) AppendPoint(p [3]float64) { b.grow(true); b.v.F = append(b.v.F, p[:]...) }
 
 // Append adds a value of the builder's type (an Integer is taken by a Real
-// builder) or a NULL of any type.
+// builder) or a NULL of any type. It panics on a value of another type.
 func (b *Builder) Append(x Value) {
 	switch {
 	case x.Null || x.Type == Null:
 		b.AppendNull()
 	case b.v.Type == Real && x.Type == Integer:
 		b.AppendFloat(float64(x.I))
+	case b.v.Type != x.Type:
+		panic(fmt.Sprintf("column: a %s in a builder of %s", x.Type, b.v.Type))
 	case b.v.Type.Counted():
 		b.AppendInt(x.I)
 	case b.v.Type == Real:
@@ -97,9 +141,96 @@ func (b *Builder) Append(x Value) {
 	}
 }
 
+// AppendVector adds the values of v that on selects, all where on is nil. v
+// must have the builder's type or type Null. A builder of texts that holds none
+// yet takes over v's dictionary, so that columns keep sharing it.
+func (b *Builder) AppendVector(v *Vector, on []uint64) {
+	if b.v.Type == Text && v.Type == Text && len(b.v.Dict.Texts) == 0 && len(v.Dict.Texts) > 0 {
+		b.v.Dict, b.borrowed, b.codes = v.Dict, true, nil
+	}
+	if on == nil && v.N > 0 && b.v.Type == v.Type && b.v.N&63 == 0 && b.v.Type != Text {
+		b.appendWhole(v)
+		return
+	}
+	for i := range v.N {
+		if on == nil || Bit(on, i) {
+			b.AppendRow(v, i)
+		}
+	}
+}
+
+// appendWhole adds a whole vector where the bitmaps meet at a word's border.
+func (b *Builder) appendWhole(v *Vector) {
+	if v.Type == Null {
+		b.v.N += v.N
+		return
+	}
+	b.v.I = append(b.v.I, v.I...)
+	b.v.F = append(b.v.F, v.F...)
+	if v.Type == Boolean {
+		b.v.Bits = append(b.v.Bits, v.Bits[:Words(v.N)]...)
+		clearTail(b.v.Bits, b.v.N+v.N)
+	}
+	if v.Valid == nil {
+		b.v.Valid = append(b.v.Valid, AllOn(v.N)...)
+	} else {
+		b.v.Valid = append(b.v.Valid, v.Valid[:Words(v.N)]...)
+		b.nulls = b.nulls || v.NullCount() > 0
+	}
+	b.v.N += v.N
+	clearTail(b.v.Valid, b.v.N)
+}
+
+// clearTail clears the bits of b's last word beyond bit n. A slice of a longer
+// vector may have bits there.
+func clearTail(b []uint64, n int) {
+	if r := uint(n) & 63; r != 0 {
+		b[len(b)-1] &= 1<<r - 1
+	}
+}
+
+// AppendRow adds value i of v, whose type must be the builder's or Null.
+func (b *Builder) AppendRow(v *Vector, i int) {
+	switch {
+	case v.IsNull(i):
+		b.AppendNull()
+	case b.v.Type != v.Type:
+		b.Append(v.Value(i)) // an Integer for a Real, or a panic
+	case v.Type == Real:
+		b.AppendFloat(v.F[i])
+	case v.Type.Counted():
+		b.AppendInt(v.I[i])
+	case v.Type == Text:
+		b.appendCode(v.Dict, v.C[i])
+	default:
+		b.Append(v.Value(i))
+	}
+}
+
+func (b *Builder) appendCode(d *Dict, c uint32) {
+	b.grow(true)
+	if d == b.v.Dict {
+		b.v.C = append(b.v.C, c)
+		return
+	}
+	if d != b.from {
+		b.from, b.trans = d, make([]uint32, len(d.Texts))
+	}
+	if b.trans[c] == 0 {
+		b.trans[c] = b.codeOf(d.Texts[c]) + 1
+	}
+	b.v.C = append(b.v.C, b.trans[c]-1)
+}
+
 func (b *Builder) codeOf(s string) uint32 {
+	if b.codes == nil {
+		b.codes = b.v.Dict.Index()
+	}
 	if c, ok := b.codes[s]; ok {
 		return c
+	}
+	if b.borrowed {
+		b.v.Dict, b.borrowed = &Dict{Texts: slices.Clone(b.v.Dict.Texts)}, false
 	}
 	c := uint32(len(b.v.Dict.Texts))
 	b.v.Dict.Texts = append(b.v.Dict.Texts, s)
@@ -110,7 +241,7 @@ func (b *Builder) codeOf(s string) uint32 {
 // Finish is the column. The builder must not be used afterwards.
 func (b *Builder) Finish() Vector {
 	v := b.v
-	if !b.nulls {
+	if !b.nulls || v.Type == Null {
 		v.Valid = nil
 	}
 	return v

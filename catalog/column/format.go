@@ -1,57 +1,81 @@
 package column
 
 import (
-	"errors"
 	"math"
 	"strconv"
-	"strings"
-	"time"
 )
 
-// ErrTimestamp is what ParseTimestamp gives for a text of another shape.
-var ErrTimestamp = errors.New("not an ISO 8601 time stamp")
+// FormatReal is the shortest text that reads back to the same bits; it uses an
+// exponent only below 1e-6 and from 1e15 (so that no whole number comes out that
+// a 64-bit integer could not hold). The infinities are Infinity and
+// -Infinity.
+func FormatReal(f float64) string { return string(AppendReal(nil, f)) }
 
-// ErrDate is what ParseTimestamp gives for a text of the right shape that is no
-// date or time of day, such as 2031-02-30.
-var ErrDate = errors.New("no such date or time of day")
-
-// ParseTimestamp reads an ISO 8601 time stamp.
-func ParseTimestamp(s string) (us int64, naive bool, err error) {
-	t, err := time.Parse("2006-01-02 15:04:05", s)
-	return t.UnixMicro(), true, err
-}
-
-// FormatTimestamp writes microseconds since 1970 as 2031-04-07 08:15:00, in UTC.
-func FormatTimestamp(us int64) string {
-	return strings.TrimSuffix(time.UnixMicro(us).UTC().Format("2006-01-02 15:04:05.999999"), ".")
-}
-
-// FormatInterval writes microseconds as hours, minutes and seconds: 36:15:00.
-func FormatInterval(us int64) string { return time.Duration(us * 1000).String() }
-
-// ParseInterval reads what FormatInterval writes.
-func ParseInterval(s string) (us int64, err error) { return 0, errors.New("not an interval") }
-
-// FormatReal is the shortest text that reads back to the same bits.
-func FormatReal(f float64) string {
+// AppendReal adds to b what FormatReal writes.
+func AppendReal(b []byte, f float64) []byte {
+	abs := math.Abs(f)
 	switch {
 	case math.IsInf(f, 1):
-		return "Infinity"
+		return append(b, "Infinity"...)
 	case math.IsInf(f, -1):
-		return "-Infinity"
+		return append(b, "-Infinity"...)
+	case abs != 0 && (abs < 1e-6 || abs >= 1e15):
+		return strconv.AppendFloat(b, f, 'e', -1, 64)
 	}
-	return strconv.FormatFloat(f, 'g', -1, 64)
+	return strconv.AppendFloat(b, f, 'f', -1, 64)
 }
 
-// String is the value as results are saved: the empty text for NULL, numbers
-// that read back to the same bits.
-func (x Value) String() string { return "" }
+// String is the value as results are saved: the empty text for NULL, TRUE and
+// FALSE, a time stamp in UTC, numbers that read back to the same bits, texts as
+// they are.
+func (x Value) String() string {
+	if x.Type == Text && !x.Null {
+		return x.S
+	}
+	return string(x.Append(nil))
+}
 
-// ParseUnit reads a unit as people write it: °C, m^3, m³, W/m².
-func ParseUnit(s string) *Unit { return Symbol(s) }
+// Append adds to b what String gives.
+func (x Value) Append(b []byte) []byte {
+	if x.Null {
+		return b
+	}
+	switch x.Type {
+	case Integer:
+		return strconv.AppendInt(b, x.I, 10)
+	case Real:
+		return AppendReal(b, x.F)
+	case Text:
+		return append(b, x.S...)
+	case Boolean:
+		if x.I != 0 {
+			return append(b, "TRUE"...)
+		}
+		return append(b, "FALSE"...)
+	case Timestamp:
+		return AppendTimestamp(b, x.I)
+	case Interval:
+		return AppendInterval(b, x.I)
+	case Point:
+		b = append(b, "POINT("...)
+		for i, f := range x.P {
+			if i > 0 {
+				b = append(b, ", "...)
+			}
+			b = AppendReal(b, f)
+		}
+		return append(b, ')')
+	}
+	return b
+}
 
-// Equal reports whether two vectors have the same type, unit, length and values.
-func Equal(a, b *Vector) bool { return false }
-
-// Validate checks that a vector keeps the rules of the package.
-func (v *Vector) Validate() error { return nil }
+// AppendValue adds to b value i of the vector as Value.String writes it.
+func (v *Vector) AppendValue(b []byte, i int) []byte {
+	if v.IsNull(i) {
+		return b
+	}
+	if v.Type == Text {
+		return append(b, v.Dict.Texts[v.C[i]]...)
+	}
+	return v.Value(i).Append(b)
+}

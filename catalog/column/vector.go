@@ -95,7 +95,8 @@ func (v *Vector) Text(i int) string {
 }
 
 // Slice is a view of rows lo..hi-1; lo must be a multiple of 64, so that the
-// bitmaps can be shared.
+// bitmaps can be shared (they are copied where hi is neither a multiple of 64
+// nor the end of the vector).
 func (v *Vector) Slice(lo, hi int) Vector {
 	if lo&63 != 0 {
 		panic("column: a slice must begin at a multiple of 64")
@@ -111,10 +112,21 @@ func (v *Vector) Slice(lo, hi int) Vector {
 	case Text:
 		s.C = v.C[lo:hi:hi]
 	case Boolean:
-		s.Bits = v.Bits[lo>>6 : lo>>6+Words(hi-lo)]
+		s.Bits = sliceBits(v.Bits, lo, hi, v.N)
 	}
 	if v.Valid != nil {
-		s.Valid = v.Valid[lo>>6 : lo>>6+Words(hi-lo)]
+		s.Valid = sliceBits(v.Valid, lo, hi, v.N)
+	}
+	return s
+}
+
+// sliceBits is the bitmap of rows lo..hi-1 of n. It is shared, unless its last
+// word has bits of rows behind the slice; then it is copied without them.
+func sliceBits(b []uint64, lo, hi, n int) []uint64 {
+	s := b[lo>>6 : lo>>6+Words(hi-lo) : lo>>6+Words(hi-lo)]
+	if hi < n && hi&63 != 0 && hi > lo {
+		s = append([]uint64(nil), s...)
+		clearTail(s, hi-lo)
 	}
 	return s
 }

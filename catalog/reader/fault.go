@@ -84,3 +84,22 @@ func (f *Faults) Error() string {
 	}
 	return b.String()
 }
+
+// OptionError says that an option has a value that it cannot have.
+type OptionError struct {
+	Option OptionName
+	Rune   rune // for the marks
+}
+
+// OptionName names an option of Options.
+type OptionName string
+
+const (
+	OptionDelimiter   OptionName = "Delimiter"
+	OptionDecimalMark OptionName = "DecimalMark"
+	OptionHeading     OptionName = "Heading"
+)
+
+func (e *OptionError) Error() string {
+	return fmt.Sprintf("reader: the option %s cannot be %q", e.Option, e.Rune)
+}

@@ -1,0 +1,58 @@
+// Package csv reads delimited text files.
+//
+// # Model
+//
+// Files are read as RFC 4180 (Shafranovich, 2005) describes them: a heading,
+// then records of as many fields, divided by a delimiter; a field in quotation
+// marks may hold delimiters, line breaks and, doubled, quotation marks. Beyond
+// it the package takes any single character as the delimiter, CR LF, LF or CR
+// as the line break, a byte order mark, and blank lines, which it skips and
+// counts. Quotation marks anywhere else are faults.
+//
+// The file is gone over twice. The first pass decides the type of each column
+// from all of its values, the second makes the columns and lists what does not
+// fit, so that a fault on the first line and one on the last are treated alike.
+//
+// # Types
+//
+// A column is INTEGER where every present value is a 64-bit integer, REAL where
+// every one is a number (with Options.DecimalMark; there are no marks between
+// thousands), BOOLEAN where true and false (in any case) are all there is,
+// TIMESTAMP where the values have the shape that column.ParseTimestamp reads,
+// and TEXT otherwise. Blanks around such values do not count; texts keep theirs.
+//
+// A column that is all but wholly of one of these types is of that type, and the
+// values that do not fit are faults: an "err" among a logger's readings must not
+// turn them into text in silence. That is so where at most a tenth of the present
+// values do not fit, or a single one does not and at least four do. NaN and the
+// infinities count as numbers in this and are faults of their own. With more
+// misfits the column is TEXT, and Facts.StayedText tells if most were numbers.
+//
+// Whole numbers that would not survive as numbers keep a column TEXT too: codes
+// with leading zeros (007) and numbers beyond 64 bits, unless the column has
+// other numbers than whole ones. The columns of Options.TextColumns are INTEGER
+// only where every value is an integer written plainly, and never at fault.
+//
+// # NULL
+//
+// The empty field is NULL, and so are a field of blanks and the texts of
+// Options.Missing, in quotation marks or not. A field of just two quotation
+// marks is the empty text in a TEXT column and NULL in others; likewise one of
+// quoted blanks. A column without any value is REAL, or TEXT if it is one of
+// Options.TextColumns. In a file of one column a blank line is skipped like any
+// other; a NULL is written there as two quotation marks (in a TEXT column it
+// cannot be told from the empty text).
+//
+// # Degenerate inputs
+//
+// A file of nothing but blank lines, a heading line that is not there, a heading
+// with an empty or a repeated name are faults of the file as a whole. A heading
+// alone is a table without rows. Delimiters at the end of the heading, as some
+// loggers write them, make no column if no record has anything there.
+//
+// # Limitations
+//
+// Only UTF-8. No comments. Intervals and points are not recognised and stay
+// TEXT. An infinity in a numeric column is a fault even where it was written
+// by this program.
+package csv

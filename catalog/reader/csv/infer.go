@@ -1,0 +1,98 @@
+package csv
+
+import (
+	"nearcell/catalog/column"
+	"nearcell/catalog/reader"
+)
+
+// tally is what the first pass learns of a column.
+type tally struct {
+	name    string
+	unit    *column.Unit
+	text    bool // one of Options.TextColumns
+	present int  // values that are not missing
+	counts  [isTime + 1]int
+	zeros   int
+	plain   int
+
+	firstText, firstLong, firstZeros sample // of values that are no number, …
+}
+
+// sample is a value worth showing.
+type sample struct {
+	line int
+	text string
+}
+
+func (s *sample) keep(line int, b []byte) {
+	if s.line == 0 {
+		*s = sample{line, string(b)}
+	}
+}
+
+// add takes a trimmed value that is not missing.
+func (t *tally) add(b []byte, mark byte, line int) {
+	l := lookAt(b, mark)
+	t.present++
+	t.counts[l.class]++
+	switch l.class {
+	case isText, isBool, isTime:
+		t.firstText.keep(line, b)
+	case isLongInt:
+		t.firstLong.keep(line, b)
+	}
+	if l.zeros {
+		t.zeros++
+		t.firstZeros.keep(line, b)
+	}
+	if l.plain {
+		t.plain++
+	}
+}
+
+func (t *tally) numbers() int { return t.counts[isInt] + t.counts[isLongInt] + t.counts[isReal] }
+
+// nearly reports whether a column of which fit values are of a type is of that
+// type, so that the others are faults.
+func (t *tally) nearly(fit int) bool {
+	misfits := t.present - fit
+	return fit > 0 && (10*misfits <= t.present || misfits == 1 && fit >= 4)
+}
+
+// decide is the type of the column, and why it is TEXT where that is worth a word.
+func (t *tally) decide() (column.Type, *reader.StayedText) {
+	numeric := t.numbers() + t.counts[isNotFinite]
+	switch {
+	case t.text && t.plain == t.present && t.present > 0:
+		return column.Integer, nil
+	case t.text:
+		return column.Text, nil
+	case t.present == 0:
+		return column.Real, nil
+	case t.nearly(numeric):
+		return t.decideNumber()
+	case t.nearly(t.counts[isTime]):
+		return column.Timestamp, nil
+	case t.nearly(t.counts[isBool]):
+		return column.Boolean, nil
+	case 2*t.numbers() > t.present:
+		return column.Text, t.stayed(reader.MixedValues, t.firstText)
+	}
+	return column.Text, nil
+}
+
+func (t *tally) decideNumber() (column.Type, *reader.StayedText) {
+	switch {
+	case t.counts[isReal] > 0 || t.numbers() == 0:
+		return column.Real, nil
+	case t.counts[isLongInt] > 0:
+		return column.Text, t.stayed(reader.TooLong, t.firstLong)
+	case t.zeros > 0:
+		return column.Text, t.stayed(reader.LeadingZeros, t.firstZeros)
+	}
+	return column.Integer, nil
+}
+
+func (t *tally) stayed(why reader.TextReason, s sample) *reader.StayedText {
+	return &reader.StayedText{Column: t.name, Reason: why, NotNumeric: t.present - t.numbers(), FirstLine: s.line, FirstText: s.text}
+}
