@@ -222,6 +222,9 @@ func (b *builder) wholeFace(i int, other int32, at Vec, bounded bool) share {
 	return share{other, area, add(at, middle)}
 }
 
+// slabLabel marks the face that splits a slab off: a wall that no solid has.
+var slabLabel = polyhedron.Wall(1 << 30)
+
 // clippedMiddle is the centroid of the part of face i inside the solid, whole the
 // centroid of the whole face. It is read from the first moments of two thin slabs
 // of the cell along the face: their centroids, moved into the face's plane, lie
@@ -237,7 +240,7 @@ func (b *builder) clippedMiddle(i int, at, whole Vec) (Vec, error) {
 	for k := range middle {
 		t := thickness * float64(k+1)
 		b.slab.CopyFrom(&b.cell)
-		b.slab.Clip(Vec{X: -unit.X, Y: -unit.Y, Z: -unit.Z}, t-level, polyhedron.Open)
+		b.slab.Clip(Vec{X: -unit.X, Y: -unit.Y, Z: -unit.Z}, t-level, slabLabel)
 		m := &b.slabOut
 		if err := b.d.solid.Measure(&b.slab, at, solid.WantCentroid, &b.work, m); err != nil {
 			return Vec{}, err
