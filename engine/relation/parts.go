@@ -8,7 +8,6 @@ import (
 	"gonum.org/v1/gonum/spatial/r3"
 
 	"nearcell/catalog/column"
-	"nearcell/engine/diagram"
 )
 
 // Part is the rows of the input that share one diagram: those with one value of
@@ -22,8 +21,6 @@ type Part struct {
 	Site  []int32   // of each row, its site in Sites
 	Share []float64 // of each row, 1 / the number of rows of its site; nil: all 1
 	Sites []r3.Vec  // distinct places, in the order of their first row
-
-	Diagram *diagram.Handle // set by open
 }
 
 // share is the part of its site's measures that row k has.

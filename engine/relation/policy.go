@@ -20,8 +20,8 @@ const (
 
 // duplicates applies the policy for sites at one place and says how many there
 // are. With SPLIT, nothing changes but the shares that place has set; with
-// FIRST and MEAN the row with the smallest identifier stands for all (its
-// attributes are averaged by mean.go).
+// FIRST and MEAN the row with the smallest identifier stands for all (newSites
+// averages its numbers and drops the other rows).
 func duplicates(b *Bound, env *Env, input *column.Table, parts []*Part) error {
 	o := newOrder(b, input)
 	var shared []int32 // rows that share a place, for the note
@@ -53,11 +53,6 @@ func duplicates(b *Bound, env *Env, input *column.Table, parts []*Part) error {
 	}
 	env.Notes.Add(note.Note, note.Sites, "%s of %s share a place with another (%s): %s (DUPLICATES %s)",
 		count(len(names), "site"), b.Name, someOf(names), what, b.policy())
-	if b.policy() != Split {
-		for _, p := range parts {
-			p.keepFirst()
-		}
-	}
 	return nil
 }
 

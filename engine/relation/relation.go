@@ -34,6 +34,7 @@ type Definition struct {
 	RowIs    string // "site"
 	Meaning  string
 	Clauses  []string // "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", …
+	Later    []string // clauses of the language that it will take and does not take yet
 	Own      bool     // its rows carry the sites' own columns
 	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
 	NotYet   []string // columns of the language that are not there yet
@@ -51,8 +52,8 @@ type Clauses struct {
 	Because    string
 	OmitPlaces []problem.Place // one for each of Omitting
 	Tolerance  float64
-	Duplicates string // SPLIT, MEAN, FIRST, FAIL; "" is SPLIT
-	Unit       string // of length; "" is m
+	Duplicates string       // SPLIT, MEAN, FIRST, FAIL; "" is SPLIT
+	Unit       *column.Unit // of length, nil: not known
 }
 
 // Bound is a relation in a query after binding: what its rows look like.

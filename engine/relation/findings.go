@@ -1,0 +1,74 @@
+package relation
+
+import (
+	"fmt"
+	"maps"
+	"slices"
+
+	"nearcell/engine/note"
+)
+
+// findings collects what the parts of one relation have to say, so that each
+// thing is said once and not for every instant.
+type findings struct {
+	outside map[int32]float64 // rows of the input left out, and how far outside
+	onWall  int               // the largest number of sites on walls in one part
+
+	rows      int // shown
+	unbounded int // of them, without an end
+	unshaped  int // cells without counts of edges and vertices
+	empty     int // cells without any part in the solid
+
+	contacts  int // shown
+	openFaces int // of them, without an end
+}
+
+// tell writes the notes.
+func (s *sites) tell() {
+	f, b := s.said, s.b
+	if len(f.outside) > 0 {
+		s.tellOutside()
+	}
+	if f.onWall > 0 {
+		s.env.Notes.Add(note.Note, note.Sites, "%s of %s %s on the surface of %s or within the tolerance %s of it and %s part",
+			count(f.onWall, "site"), b.Name, verb(f.onWall, "stands", "stand"), b.Clauses.SolidName, s.length(b.Clauses.Tolerance),
+			verb(f.onWall, "takes", "take"))
+	}
+	if f.unbounded > 0 {
+		s.env.Notes.Add(note.Note, note.Cells, "%d of %s of %s %s unbounded (no solid): volume, area and farthest are Infinity, "+
+			"cx, cy, cz NULL; WITHIN a solid closes them", f.unbounded, count(f.rows, "cell"), b.Name, verb(f.unbounded, "is", "are"))
+	}
+	if f.unshaped > 0 {
+		s.env.Notes.Add(note.Note, note.Cells, "%s of %s %s cut by a re-entrant part of %s: edges and vertices are NULL there, faces = contacts + walls",
+			count(f.unshaped, "cell"), b.Name, verb(f.unshaped, "is", "are"), b.Clauses.SolidName)
+	}
+	if f.empty > 0 {
+		s.env.Notes.Add(note.Warning, note.Cells, "%s of %s %s no part in %s: volume 0", count(f.empty, "cell"), b.Name,
+			verb(f.empty, "has", "have"), b.Clauses.SolidName)
+	}
+	if f.openFaces > 0 {
+		s.env.Notes.Add(note.Note, note.Cells, "%d of %s of %s %s unbounded (no solid): area is Infinity, mx, my, mz NULL; WITHIN a solid closes them",
+			f.openFaces, count(f.contacts, "contact"), b.Name, verb(f.openFaces, "is", "are"))
+	}
+}
+
+// tellOutside names the sites that were left out, each once.
+func (s *sites) tellOutside() {
+	rows := slices.Sorted(maps.Keys(s.said.outside))
+	slices.SortStableFunc(rows, func(a, b int32) int { return s.order.compare(s.order.id, a, b) })
+	rows = slices.CompactFunc(rows, s.order.sameID)
+	names := make([]string, len(rows))
+	for i, r := range rows {
+		names[i] = fmt.Sprintf("%s (%s)", idText(s.order.id, int(r)), s.length(s.said.outside[r]))
+	}
+	n := len(rows)
+	s.env.Notes.Add(note.Note, note.Sites, "%s of %s %s outside %s and %s left out of the partition: %s", count(n, "site"), s.b.Name,
+		verb(n, "lies", "lie"), s.b.Clauses.SolidName, verb(n, "is", "are"), someOf(names))
+}
+
+func verb(n int, one, many string) string {
+	if n == 1 {
+		return one
+	}
+	return many
+}
