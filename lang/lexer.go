@@ -1,0 +1,324 @@
+package lang
+
+import (
+	"io"
+	"strings"
+	"unicode"
+	"unicode/utf8"
+
+	"github.com/alecthomas/participle/v2/lexer"
+)
+
+// scanner cuts a text into tokens, one at a time, without ever failing: what no token
+// can begin with, or what never ends, comes out as tokBad, and lexicalFault says what
+// is wrong with it when the parser gets there. So a fault in the fifth statement does
+// not hide one in the second.
+type scanner struct {
+	src string
+	at  int
+	end int // where the statement's text ends
+}
+
+// next gives the type and the range of the next token; at the end tokEOF, an empty range.
+func (s *scanner) next() (lexer.TokenType, int, int) {
+	if unclosed := s.skipBlanks(); unclosed >= 0 {
+		return tokBad, unclosed, s.end
+	}
+	start := s.at
+	if start >= s.end {
+		return tokEOF, s.end, s.end
+	}
+	c := s.src[start]
+	switch {
+	case isWordStart(c):
+		s.at = wordEnd(s.src[:s.end], start)
+		if s.at > start {
+			return wordType(s.src[start:s.at]), start, s.at
+		}
+		return s.stray(start)
+	case isDigit(c), c == '.' && isDigit(s.peek(1)):
+		t := s.number()
+		return t, start, s.at
+	case c == '\'':
+		return s.quoted(start, '\'', tokText)
+	case c == '"':
+		return s.quoted(start, '"', tokQuoted)
+	case c == ':':
+		s.at = wordEnd(s.src[:s.end], start+1)
+		if s.at > start+1 {
+			return tokParam, start, s.at
+		}
+		return s.stray(start)
+	}
+	return s.mark(start)
+}
+
+func (s *scanner) peek(ahead int) byte {
+	if s.at+ahead < s.end {
+		return s.src[s.at+ahead]
+	}
+	return 0
+}
+
+// skipBlanks passes blanks and comments. It gives where a comment begins that never
+// ends, else -1.
+func (s *scanner) skipBlanks() (unclosed int) {
+	for s.at < s.end {
+		c := s.src[s.at]
+		switch {
+		case c == ' ' || c == '\n' || c == '\t' || c == '\r' || c == '\f' || c == '\v':
+			s.at++
+		case c == '-' && s.peek(1) == '-':
+			if n := strings.IndexByte(s.src[s.at:s.end], '\n'); n >= 0 {
+				s.at += n + 1
+			} else {
+				s.at = s.end
+			}
+		case c == '/' && s.peek(1) == '*':
+			n := strings.Index(s.src[s.at+2:s.end], "*/")
+			if n < 0 {
+				start := s.at
+				s.at = s.end
+				return start
+			}
+			s.at += 2 + n + 2
+		case c >= utf8.RuneSelf:
+			r, size := utf8.DecodeRuneInString(s.src[s.at:s.end])
+			if !unicode.IsSpace(r) && r != '\uFEFF' {
+				return -1
+			}
+			s.at += size
+		default:
+			return -1
+		}
+	}
+	return -1
+}
+
+// isWordStart is only a first look: bytes of longer letters are looked at in wordEnd.
+func isWordStart(c byte) bool {
+	return 'a' <= c && c <= 'z' || 'A' <= c && c <= 'Z' || c == '_' || c >= utf8.RuneSelf
+}
+
+func isDigit(c byte) bool { return '0' <= c && c <= '9' }
+
+// wordEnd gives where the word ends that begins at start; start itself if none does.
+func wordEnd(src string, start int) int {
+	at := start
+	for at < len(src) {
+		c := src[at]
+		if c < utf8.RuneSelf {
+			if 'a' <= c && c <= 'z' || 'A' <= c && c <= 'Z' || c == '_' || isDigit(c) && at > start {
+				at++
+				continue
+			}
+			return at
+		}
+		r, size := utf8.DecodeRuneInString(src[at:])
+		if unicode.IsLetter(r) || at > start && (unicode.IsMark(r) || unicode.IsDigit(r)) {
+			at += size
+			continue
+		}
+		return at
+	}
+	return at
+}
+
+// number reads a number without a sign. A letter, a point or a digit that touches its
+// end makes the whole of it bad: STEP 0.5m would else be read as 0.5 AS m.
+func (s *scanner) number() lexer.TokenType {
+	t := tokNumber
+	s.digits()
+	if s.peek(0) == '.' {
+		s.at++
+		if !isDigit(s.peek(0)) {
+			t = tokBad
+		}
+		s.digits()
+	}
+	if c := s.peek(0); c == 'e' || c == 'E' {
+		sign := 0
+		if d := s.peek(1); d == '+' || d == '-' {
+			sign = 1
+		}
+		if isDigit(s.peek(1 + sign)) {
+			s.at += 1 + sign
+			s.digits()
+		}
+	}
+	for s.at < s.end {
+		after := wordEnd(s.src[:s.end], s.at)
+		if after == s.at && (s.src[s.at] == '.' || isDigit(s.src[s.at])) {
+			after++
+		}
+		if after == s.at {
+			return t
+		}
+		s.at, t = after, tokBad
+	}
+	return t
+}
+
+func (s *scanner) digits() {
+	for s.at < s.end && isDigit(s.src[s.at]) {
+		s.at++
+	}
+}
+
+// quoted reads up to the closing mark; a doubled mark stands for itself. An empty name,
+// and whatever does not end, is bad.
+func (s *scanner) quoted(start int, mark byte, t lexer.TokenType) (lexer.TokenType, int, int) {
+	at := start + 1
+	for {
+		n := strings.IndexByte(s.src[at:s.end], mark)
+		if n < 0 {
+			s.at = s.end
+			return tokBad, start, s.end
+		}
+		at += n + 1
+		if at < s.end && s.src[at] == mark {
+			at++
+			continue
+		}
+		s.at = at
+		if t == tokQuoted && at == start+2 || !utf8.ValidString(s.src[start:at]) {
+			return tokBad, start, at
+		}
+		return t, start, at
+	}
+}
+
+// mark reads an operator or a bracket.
+func (s *scanner) mark(start int) (lexer.TokenType, int, int) {
+	one := func(t lexer.TokenType) (lexer.TokenType, int, int) {
+		s.at = start + 1
+		return t, start, s.at
+	}
+	two := func(t lexer.TokenType) (lexer.TokenType, int, int) {
+		s.at = start + 2
+		return t, start, s.at
+	}
+	second := s.peek(1)
+	switch s.src[start] {
+	case '(':
+		return one(tokLeft)
+	case ')':
+		return one(tokRight)
+	case ',':
+		return one(tokComma)
+	case '.':
+		return one(tokDot)
+	case ';':
+		return one(tokSemicolon)
+	case '+':
+		return one(tokPlus)
+	case '-':
+		return one(tokMinus)
+	case '*':
+		return one(tokStar)
+	case '/':
+		return one(tokSlash)
+	case '%':
+		return one(tokPercent)
+	case '^':
+		return one(tokCaret)
+	case '=':
+		if second == '=' || second == '>' || second == '<' {
+			return two(tokBad)
+		}
+		return one(tokEquals)
+	case '<':
+		switch second {
+		case '>':
+			return two(tokNotEquals)
+		case '=':
+			return two(tokLessOrEqual)
+		}
+		return one(tokLess)
+	case '>':
+		if second == '=' {
+			return two(tokGreaterOrEqual)
+		}
+		return one(tokGreater)
+	case '!':
+		if second == '=' {
+			return two(tokNotEquals)
+		}
+	case '|':
+		if second == '|' {
+			return two(tokConcat)
+		}
+	case '&':
+		if second == '&' {
+			return two(tokBad)
+		}
+	}
+	return s.stray(start)
+}
+
+// stray takes the one character that begins no token.
+func (s *scanner) stray(start int) (lexer.TokenType, int, int) {
+	_, size := utf8.DecodeRuneInString(s.src[start:s.end])
+	s.at = start + size
+	return tokBad, start, s.at
+}
+
+// tokens cuts a range of the text up, with a closing tokEOF. The parser is asked for
+// little room: Pos.Offset is the byte offset in the whole text; Pos.Line is the number
+// of tokens that follow in the range, by which a hook finds how many there are; and
+// Pos.Column of a "(" is the index of the ")" that closes it, 0 when none does. (Line
+// and column for people are counted from the offset when a message is made. Counting
+// columns for each token from the start of its line would take quadratic time.)
+func tokens(src string, piece Span) []lexer.Token {
+	s := scanner{src: src, at: piece.Start, end: piece.End}
+	list := make([]lexer.Token, 0, 8+piece.Len()/5)
+	var open []int
+	for {
+		t, start, end := s.next()
+		switch t {
+		case tokLeft:
+			open = append(open, len(list))
+		case tokRight:
+			if n := len(open); n > 0 {
+				list[open[n-1]].Pos.Column = len(list)
+				open = open[:n-1]
+			}
+		}
+		list = append(list, lexer.Token{Type: t, Value: src[start:end], Pos: lexer.Position{Offset: start}})
+		if t == tokEOF {
+			break
+		}
+	}
+	for i := range list {
+		list[i].Pos.Line = len(list) - 1 - i
+	}
+	return list
+}
+
+// definition is our lexer as participle sees it.
+type definition struct{}
+
+func (definition) Symbols() map[string]lexer.TokenType { return symbols }
+
+func (d definition) Lex(filename string, r io.Reader) (lexer.Lexer, error) {
+	text, err := io.ReadAll(r)
+	if err != nil {
+		return nil, err
+	}
+	return d.LexString(filename, string(text))
+}
+
+func (definition) LexString(_, text string) (lexer.Lexer, error) {
+	return &tokenList{tokens(text, Span{0, len(text)})}, nil
+}
+
+// tokenList hands out tokens that are there already.
+type tokenList struct{ rest []lexer.Token }
+
+func (l *tokenList) Next() (lexer.Token, error) {
+	t := l.rest[0]
+	if t.Type != tokEOF {
+		l.rest = l.rest[1:]
+	}
+	return t, nil
+}

@@ -1,0 +1,53 @@
+package lang
+
+import (
+	"strconv"
+)
+
+func itoa(n int) string { return strconv.Itoa(n) }
+
+// Nearest gives the candidate that the word most likely was meant to be, or "" when
+// none is near. Near is one slip (a letter left out, added, exchanged, or two
+// neighbours swapped) for every three letters, at least one, at most three, and never
+// a whole word's worth; case does not count. Of equally near ones the first is taken.
+// A word that is itself a candidate gives that candidate.
+//
+// The distance is the restricted edit distance with transpositions (Damerau 1964).
+func Nearest(word string, candidates []string) string {
+	a := []rune(Fold(word))
+	limit := min(max(len(a)/3, 1), 3)
+	best, bestDistance := "", limit+1
+	for _, candidate := range candidates {
+		b := []rune(Fold(candidate))
+		if len(a)-len(b) >= bestDistance || len(b)-len(a) >= bestDistance {
+			continue
+		}
+		if d := editDistance(a, b); d < bestDistance && d < max(len(a), len(b)) {
+			best, bestDistance = candidate, d
+		}
+	}
+	return best
+}
+
+func editDistance(a, b []rune) int {
+	before, last, row := make([]int, len(b)+1), make([]int, len(b)+1), make([]int, len(b)+1)
+	for j := range last {
+		last[j] = j
+	}
+	for i := 1; i <= len(a); i++ {
+		row[0] = i
+		for j := 1; j <= len(b); j++ {
+			change := 1
+			if a[i-1] == b[j-1] {
+				change = 0
+			}
+			d := min(last[j]+1, row[j-1]+1, last[j-1]+change)
+			if i > 1 && j > 1 && a[i-1] == b[j-2] && a[i-2] == b[j-1] {
+				d = min(d, before[j-2]+1)
+			}
+			row[j] = d
+		}
+		before, last, row = last, row, before
+	}
+	return last[len(b)]
+}
