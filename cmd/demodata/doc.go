@@ -16,7 +16,7 @@
 // logger reads that air with a calibration error of its own and a slow noise
 // (logger.go). Into this a campaign's usual troubles are put on purpose: one
 // logger drifts, one dies on day five, one was keyed in outside the wall, a few
-// readings are missing, and half of the loggers hang in the third of the hall
+// readings are missing, and half of the loggers hang in the quarter of the hall
 // around the dock.
 //
 // # What is exact
