@@ -2,7 +2,6 @@ package expr
 
 import (
 	"nearcell/catalog/column"
-	"nearcell/engine/function"
 	"nearcell/engine/problem"
 )
 
@@ -45,12 +44,3 @@ func (e *RowError) Error() string { return e.Err.Error() }
 
 // Unwrap is the error without the row.
 func (e *RowError) Unwrap() error { return e.Err }
-
-// Work is the scratch memory of one goroutine. The zero Work is ready.
-type Work struct {
-	function.Arena
-}
-
-// Reset takes back all vectors that Eval has returned. Whoever runs a pipeline
-// calls it between batches.
-func (w *Work) Reset() { w.Arena.Reset() }

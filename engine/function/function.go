@@ -122,10 +122,11 @@ func (f *GroupFault) Error() string { return f.Message }
 // Arg is the index of the argument that is wrong, -1 for the call as a whole,
 // WeightArg for the weight.
 type ArgumentError struct {
-	Arg     int
-	Code    string // "types", "units", "arguments"
-	Message string
-	Hint    string
+	Arg        int
+	Code       string // "types", "units", "arguments"
+	Message    string
+	Hint       string
+	WantNumber bool // a number was wanted where there is none
 }
 
 // WeightArg stands for the weight in an ArgumentError.
