@@ -1,0 +1,97 @@
+package main
+
+import (
+	"math"
+	"strconv"
+	"strings"
+
+	"github.com/spf13/pflag"
+
+	"nearcell/engine"
+	"nearcell/engine/problem"
+)
+
+// flags are the choices of a call that the language does not make.
+type flags struct {
+	catalog   string
+	noCatalog bool
+	as, to    string
+	let       []string
+	strict    bool
+	keepGoing bool
+	threads   int
+	memory    string
+	quiet     bool
+	plain     bool
+}
+
+func (f *flags) add(set *pflag.FlagSet) {
+	set.StringVar(&f.catalog, "catalog", ".nearcell", "folder of the catalog")
+	set.BoolVar(&f.noCatalog, "no-catalog", false, "keep nothing")
+	set.StringVar(&f.as, "as", "", "how results are written: table, csv, json, jsonl (default table, or by the ending of --to)")
+	set.StringVar(&f.to, "to", "", "write results to a file")
+	set.StringArrayVar(&f.let, "let", nil, "name=value: sets :name; wins over LET")
+	set.BoolVar(&f.strict, "strict", false, "a warning fails its statement")
+	set.BoolVar(&f.keepGoing, "keep-going", false, "go on after a failing statement; the exit code still tells")
+	set.IntVar(&f.threads, "threads", 0, "threads to use (default all cores)")
+	set.StringVar(&f.memory, "memory", "", "memory that kept diagrams may use, such as 8GiB (default 2GiB)")
+	set.BoolVar(&f.quiet, "quiet", false, "no confirmations and row counts; notes and warnings stay")
+	set.BoolVar(&f.plain, "plain", false, "no colour, no progress")
+}
+
+// options are the engine's, after the values have been looked at.
+func (f *flags) options() (engine.Options, error) {
+	o := engine.Options{Strict: f.strict, KeepGoing: f.keepGoing, Quiet: f.quiet, Threads: f.threads}
+	if f.threads < 0 {
+		return o, usage("--threads takes a number of 1 or more")
+	}
+	format, err := formatFor(f.as, f.to)
+	if err != nil {
+		return o, err
+	}
+	o.Format = format
+	if f.memory != "" {
+		if o.Memory, err = bytesOf(f.memory); err != nil {
+			return o, err
+		}
+	}
+	return o, nil
+}
+
+// letAll gives the session the values of --let.
+func (f *flags) letAll(s *engine.Session) error {
+	for _, l := range f.let {
+		name, value, found := strings.Cut(l, "=")
+		if !found || name == "" {
+			return usage("--let takes name=value, not '%s'", l)
+		}
+		if err := s.Let(name, value); err != nil {
+			return usage("--let %s: %s", name, problem.Render(err))
+		}
+	}
+	return nil
+}
+
+var sizes = []struct {
+	suffix string
+	factor float64
+}{
+	{"KiB", 1 << 10}, {"MiB", 1 << 20}, {"GiB", 1 << 30}, {"TiB", 1 << 40},
+	{"KB", 1e3}, {"MB", 1e6}, {"GB", 1e9}, {"TB", 1e12}, {"B", 1},
+}
+
+// bytesOf reads a size such as 8GiB or 500MB.
+func bytesOf(text string) (int64, error) {
+	number, factor := text, 1.0
+	for _, s := range sizes {
+		if rest, ok := strings.CutSuffix(text, s.suffix); ok {
+			number, factor = rest, s.factor
+			break
+		}
+	}
+	x, err := strconv.ParseFloat(strings.TrimSpace(number), 64)
+	if err != nil || !(x > 0) || x*factor > math.MaxInt64/2 {
+		return 0, usage("--memory takes a size such as 8GiB, not '%s'", text)
+	}
+	return int64(x * factor), nil
+}

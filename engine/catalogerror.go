@@ -1,0 +1,33 @@
+package engine
+
+import (
+	"errors"
+	"strings"
+
+	"nearcell/catalog"
+	"nearcell/engine/problem"
+)
+
+// kindWord names a kind with its article for messages.
+func kindWord(k catalog.Kind) string {
+	return "a " + strings.ToLower(k.String())
+}
+
+// catalogProblem words an error of the catalog.
+func catalogProblem(err error, at problem.Place) error {
+	var exists *catalog.ErrExists
+	var none *catalog.ErrNoSuch
+	switch {
+	case errors.As(err, &exists):
+		kind := exists.Kind.String()
+		return problem.New("name-taken", at, "there is %s '%s' already", kindWord(exists.Kind), exists.Name).
+			WithHint("CREATE OR REPLACE %s replaces it, DROP %s removes it", kind, kind).Because(err)
+	case errors.As(err, &none) && none.Found != 0:
+		return problem.New("wrong-kind", at, "'%s' is %s, not %s", none.Key, kindWord(none.Found), kindWord(none.Kind)).
+			Because(err)
+	case errors.As(err, &none):
+		return problem.New("no-object", at, "there is no %s '%s'", strings.ToLower(none.Kind.String()), none.Key).
+			Because(err)
+	}
+	return problem.New("catalog", at, "%s", err.Error()).Because(err)
+}

@@ -1,0 +1,91 @@
+package engine
+
+import (
+	"context"
+
+	"nearcell/engine/problem"
+	"nearcell/lang"
+)
+
+// dispatch runs a statement by its kind; each kind has a file of its own.
+func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Statement) error {
+	if refusal := refuse(st, tree); refusal != nil {
+		return refusal
+	}
+	switch t := tree.(type) {
+	case *lang.QueryStatement:
+		return s.query(ctx, st, t)
+	case *lang.CreateData:
+		return s.createData(ctx, st, t)
+	case *lang.CreateSolid:
+		return s.createSolid(st, t)
+	case *lang.CreateView:
+		return s.createView(st, t)
+	case *lang.Drop:
+		return s.drop(st, t)
+	case *lang.Let:
+		return s.let(st, t)
+	case *lang.Save:
+		return s.save(ctx, st, t)
+	case *lang.List:
+		return s.list(st, t)
+	case *lang.Describe:
+		return s.describe(st, t)
+	case *lang.Run:
+		return s.runFile(ctx, st, t)
+	case *lang.Set:
+		return s.set(st, t)
+	case *lang.Quit:
+		return errQuit
+	}
+	return problem.NotThereYet(st.at(tree), "this statement")
+}
+
+// refuse names what the language has and the engine has not; nil for the rest.
+func refuse(st *statement, tree lang.Statement) error {
+	what := ""
+	switch t := tree.(type) {
+	case *lang.Explain:
+		what = "EXPLAIN"
+	case *lang.Require:
+		what = "REQUIRE"
+	case *lang.Help:
+		what = "HELP"
+	case *lang.Draw:
+		what = "DRAW"
+		if t.Show {
+			what = "SHOW"
+		}
+	case *lang.Remark:
+		what = "TEXT"
+		if t.Title {
+			what = "TITLE"
+		}
+	case *lang.CreateFrame:
+		what = "CREATE FRAME"
+	case *lang.CreateSolid:
+		if !t.Frame.IsZero() {
+			what = "IN FRAME"
+		}
+	case *lang.CreateData:
+		if t.Files != nil {
+			what = "FROM FILES"
+		}
+	case *lang.Drop:
+		if t.Kind == lang.Diagrams || t.Kind == lang.FrameOb {
+			what = "DROP " + string(t.Kind)
+		}
+	case *lang.Describe:
+		if t.File != nil {
+			what = "DESCRIBE FILE"
+		}
+	case *lang.Save:
+		if t.WithProvenance {
+			what = "SAVE … WITH PROVENANCE"
+		}
+	}
+	if what == "" {
+		return nil
+	}
+	return problem.NotThereYet(st.at(tree), what)
+}

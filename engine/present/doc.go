@@ -1,0 +1,11 @@
+// Package present writes results: tables for people, CSV and JSON for files and
+// other programs. It knows nothing of queries; it gets a schema and batches.
+//
+// Tables round to significant digits, since people read them. CSV and JSON keep
+// every bit: a number that is read back is the same number.
+//
+// # Limitations
+//
+// A table needs all its rows before it can set its widths, so it keeps at most
+// MaxTableRows of them and says how many more there were.
+package present

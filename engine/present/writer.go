@@ -1,0 +1,70 @@
+package present
+
+import (
+	"fmt"
+	"io"
+
+	"nearcell/catalog/column"
+)
+
+// Format is how a result is written.
+type Format string
+
+// The formats that are there.
+const (
+	AsTable     Format = "table"
+	AsCSV       Format = "csv"
+	AsJSON      Format = "json"
+	AsJSONLines Format = "jsonl"
+)
+
+// Formats lists the formats, for usage messages.
+var Formats = []Format{AsTable, AsCSV, AsJSON, AsJSONLines}
+
+// Writer takes one result: Begin once, Batch for each run of rows (only active
+// rows count), End once.
+type Writer interface {
+	Begin(column.Schema) error
+	Batch(*column.Batch) error
+	// End writes what is left and tells how many rows there were and how many
+	// of them were not written.
+	End() (rows, unwritten int64, err error)
+}
+
+// Options are the choices of all writers.
+type Options struct {
+	Digits   int  // significant digits of a table, 0: 6
+	Units    bool // CSV: units in the heading, volume [m^3]
+	Formulas bool // CSV: texts that a spreadsheet would run as formulas are quoted
+}
+
+// New is a writer of the format.
+func New(f Format, w io.Writer, o Options) (Writer, error) {
+	switch f {
+	case AsTable:
+		if o.Digits == 0 {
+			o.Digits = DefaultDigits
+		}
+		return &tableWriter{w: w, o: o}, nil
+	case AsCSV:
+		return newCSV(w, o), nil
+	case AsJSON:
+		return &jsonWriter{w: w, array: true}, nil
+	case AsJSONLines:
+		return &jsonWriter{w: w}, nil
+	}
+	return nil, fmt.Errorf("no writer for the format %q", f)
+}
+
+// eachRow calls f for the active rows of a batch.
+func eachRow(b *column.Batch, f func(row int) error) error {
+	for i := 0; i < b.N; i++ {
+		if b.On != nil && !column.Bit(b.On, i) {
+			continue
+		}
+		if err := f(i); err != nil {
+			return err
+		}
+	}
+	return nil
+}

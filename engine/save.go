@@ -1,0 +1,129 @@
+package engine
+
+import (
+	"bufio"
+	"context"
+	"errors"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"strings"
+
+	"nearcell/engine/exec"
+	"nearcell/engine/present"
+	"nearcell/engine/problem"
+	"nearcell/lang"
+)
+
+// savable are the file endings that SAVE writes, planned those that it will.
+var (
+	savable = map[string]present.Format{".csv": present.AsCSV, ".jsonl": present.AsJSONLines, ".json": present.AsJSON}
+	planned = map[string]bool{".parquet": true, ".xlsx": true, ".vtu": true}
+)
+
+// save writes a query's rows to a file: aside first, then renamed, so that a
+// failing query or a full disk never leaves half a file under the name.
+func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
+	format, err := saveFormat(st, t)
+	if err != nil {
+		return err
+	}
+	node, err := s.prepare(st, t.Query)
+	if err != nil || s.checkOnly {
+		return err
+	}
+	path := st.path(t.To.Value)
+	if _, err := os.Stat(path); err == nil && !t.Overwrite {
+		return problem.New("file-exists", st.at(t.To), "the file '%s' is there already", t.To.Value).
+			WithHint("SAVE … TO '%s' OVERWRITE replaces it", t.To.Value)
+	}
+	var rows int64
+	err = WriteAside(path, func(f *os.File) error {
+		w := bufio.NewWriterSize(f, 1<<16)
+		out, err := present.New(format, w, present.Options{Units: t.WithUnits, Formulas: t.QuoteFormulas})
+		if err != nil {
+			return err
+		}
+		if err := out.Begin(node.Schema()); err != nil {
+			return err
+		}
+		if err := exec.Run(ctx, s.execEnv(st), node, out.Batch); err != nil {
+			return err
+		}
+		if rows, _, err = out.End(); err != nil {
+			return err
+		}
+		return w.Flush()
+	})
+	if err != nil {
+		return fileProblem(err, st.at(t.To), t.To.Value, "be written")
+	}
+	s.say("%s saved to %s, %s", plural(rows, "row"), t.To.Value, st.seconds())
+	return nil
+}
+
+func saveFormat(st *statement, t *lang.Save) (present.Format, error) {
+	ending := strings.ToLower(filepath.Ext(t.To.Value))
+	if planned[ending] {
+		return "", problem.NotThereYet(st.at(t.To), "SAVE to "+ending)
+	}
+	format, ok := savable[ending]
+	if !ok {
+		return "", problem.New("file-kind", st.at(t.To), "the ending of '%s' does not say how to write it", t.To.Value).
+			WithHint("end it with .csv, .json or .jsonl")
+	}
+	if format != present.AsCSV {
+		switch {
+		case t.WithUnits:
+			return "", problem.New("clause", st.at(t), "WITH UNITS belongs to .csv files")
+		case t.QuoteFormulas:
+			return "", problem.New("clause", st.at(t), "QUOTE FORMULAS belongs to .csv files")
+		}
+	}
+	return format, nil
+}
+
+// WriteAside fills a temporary file beside path and renames it once it is whole
+// and on the disk. The folder is made if it is not there.
+func WriteAside(path string, fill func(*os.File) error) (err error) {
+	folder := filepath.Dir(path)
+	if err := os.MkdirAll(folder, 0o777); err != nil {
+		return err
+	}
+	f, err := os.CreateTemp(folder, "."+filepath.Base(path)+".*")
+	if err != nil {
+		return err
+	}
+	defer func() {
+		if err != nil {
+			f.Close()
+			os.Remove(f.Name())
+		}
+	}()
+	if err := fill(f); err != nil {
+		return err
+	}
+	if err := f.Sync(); err != nil {
+		return err
+	}
+	if err := f.Chmod(0o644); err != nil {
+		return err
+	}
+	if err := f.Close(); err != nil {
+		return err
+	}
+	return os.Rename(f.Name(), path)
+}
+
+// fileProblem words an error of the file system; other errors pass.
+func fileProblem(err error, at problem.Place, name, verb string) error {
+	var pathError *fs.PathError
+	var linkError *os.LinkError
+	switch {
+	case errors.As(err, &pathError):
+		return problem.New("file", at, "the file '%s' cannot %s: %v", name, verb, pathError.Err).Because(err)
+	case errors.As(err, &linkError):
+		return problem.New("file", at, "the file '%s' cannot %s: %v", name, verb, linkError.Err).Because(err)
+	}
+	return err
+}
