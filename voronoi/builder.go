@@ -10,7 +10,7 @@ import (
 
 // firstNeighbours is how many of the nearest sites cut a cell before its
 // vertices are looked at one by one.
-const firstNeighbours = 16
+const firstNeighbours = 12
 
 // farStep is the ratio of the artificial box around an unbounded diagram to the
 // extent of the sites, and the ratio by which it grows.
@@ -26,6 +26,13 @@ type builder struct {
 	used *index.Used
 	near []index.Neighbour
 
+	// The cell in work: itself, its place and the square of its reach.
+	now    *polyhedron.Cell
+	at     Vec
+	reach2 float64
+	leaves index.Leaves
+	useful func(*index.Box, float64) bool // canMatter, bound once
+
 	support  []int32 // scratch of bounded
 	work     solid.Work
 	measures solid.Measures
@@ -40,7 +47,9 @@ func (d *Diagram) builder() *builder {
 	if b, ok := d.pool.Get().(*builder); ok {
 		return b
 	}
-	return &builder{d: d, used: index.NewUsed(d.tree.Len())}
+	b := &builder{d: d, used: index.NewUsed(d.tree.Len())}
+	b.useful = b.canMatter
+	return b
 }
 
 func (d *Diagram) free(b *builder) { d.pool.Put(b) }
@@ -64,12 +73,11 @@ func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool
 }
 
 // cut cuts c by the bisectors of p with the sites: first with the nearest ones,
-// in growing distance until no farther site can matter; then for every vertex the
-// site nearest to it, of those not yet used, is looked up, until no site is nearer
-// to any vertex than p is (the empty circumball of a Voronoi vertex).
-//
-// "Not yet used" matters: at an ill-conditioned vertex a used site can look the
-// nearest by rounding and hide an unused one.
+// then with all that can still matter. A site can matter only if it is nearer to
+// some vertex v than p is: if it lies in one of the balls of radius |v-p| about the
+// vertices (the empty circumballs of a Voronoi cell). These balls only shrink as
+// the cell is cut, so that one walk through the tree, which passes over every box
+// outside all balls, leaves the final cell, certified at every vertex.
 func (b *builder) cut(c *polyhedron.Cell, p Vec, self int32) {
 	tree := b.d.tree
 	b.used.Reset()
@@ -77,52 +85,63 @@ func (b *builder) cut(c *polyhedron.Cell, p Vec, self int32) {
 		b.used.Add(self)
 	}
 	b.near = tree.KNearest(p, firstNeighbours, b.used, b.near[:0])
-	far2 := reach2(c)
+	b.now, b.at, b.reach2 = c, p, reach2(c)
 	for _, q := range b.near {
-		if q.Dist2 > float64(4*far2) {
+		if q.Dist2 > float64(4*b.reach2) {
 			return // all others are farther still: the cell is final
 		}
 		b.used.Add(q.Point)
-		if b.bisect(c, p, q.Point) == polyhedron.Cut {
-			far2 = reach2(c)
-		}
-		if c.Empty() {
-			return
-		}
+		b.bisect(q.Point)
 	}
 	if len(b.near) < firstNeighbours {
 		return // there are no others
 	}
-	b.certify(c, p, b.near[len(b.near)-1].Dist2)
-}
-
-// certify cuts until every vertex is final. Every site within the root of known2
-// of p has been used.
-func (b *builder) certify(c *polyhedron.Cell, p Vec, known2 float64) {
-	for i := c.Unsettled(0); i >= 0; i = c.Unsettled(i) {
-		v := c.Vertex(i)
-		if float64(4*dot(v, v)) < known2 {
-			c.Settle(i) // its ball lies in the ball that is known
-			continue
-		}
-		q, found := b.d.tree.Closer(p, v, b.used)
-		if !found {
-			c.Settle(i)
-			continue
-		}
-		b.used.Add(q)
-		if b.bisect(c, p, q) == polyhedron.Empty {
+	b.leaves.Start(tree, p)
+	for {
+		from, to, ok := b.leaves.Next(b.useful)
+		if !ok {
 			return
 		}
-		i = 0 // vertices have new numbers
+		for q := from; q < to; q++ {
+			if !b.used.Has(q) {
+				b.bisect(q)
+			}
+		}
 	}
 }
 
-// bisect keeps the part of c nearer to p than to site q. Local coordinates keep
-// the plane free of cancellation.
-func (b *builder) bisect(c *polyhedron.Cell, p Vec, q int32) polyhedron.Result {
-	n := sub(b.d.tree.Point(q), p)
-	return c.Clip(n, dot(n, n)/2, q)
+// flowerFrom is the number of sites from which a box is held against the balls one
+// by one. Below it, cutting by its sites is as cheap.
+const flowerFrom = 16
+
+// canMatter tells whether a box can hold a site that cuts the present cell.
+func (b *builder) canMatter(box *index.Box, dist2 float64) bool {
+	if dist2 > float64(4*b.reach2)*(1+0x1p-49) {
+		return false // every ball lies within twice the reach of p
+	}
+	if box.Points < flowerFrom {
+		return true
+	}
+	for _, v := range b.now.Vertices() {
+		v2 := dot(v, v)
+		if box.Dist2(add(b.at, v)) <= v2+index.Off(b.at, v, v2) {
+			return true
+		}
+	}
+	return false
+}
+
+// bisect keeps the part of the present cell nearer to its site than to site q.
+// Local coordinates keep the plane free of cancellation.
+func (b *builder) bisect(q int32) {
+	n := sub(b.d.tree.Point(q), b.at)
+	n2 := dot(n, n)
+	if n2 > float64(4*b.reach2)*(1+0x1p-49) {
+		return
+	}
+	if b.now.Clip(n, n2/2, q) != polyhedron.Unchanged {
+		b.reach2 = reach2(b.now)
+	}
 }
 
 // reach2 is the squared distance from the site to the farthest vertex.

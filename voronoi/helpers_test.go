@@ -28,8 +28,10 @@ func (b brick) Key() (key [16]byte) {
 	k := contentKey([]Vec{b.lo, b.hi}, Options{})
 	return k
 }
-func (b brick) Pieces() int        { return 1 }
-func (b brick) Facts() solid.Facts { return solid.Facts{Kind: "brick", Walls: 6, Corners: 8, Convex: true} }
+func (b brick) Pieces() int { return 1 }
+func (b brick) Facts() solid.Facts {
+	return solid.Facts{Kind: "brick", Walls: 6, Corners: 8, Convex: true}
+}
 
 // beyond is how far p lies beyond the side farthest behind it; negative inside.
 func (b brick) beyond(p Vec) float64 {

@@ -18,7 +18,7 @@ type entry struct {
 func (it *Iterator) Start(t *Tree, q Vec) {
 	it.tree, it.q, it.heap = t, q, it.heap[:0]
 	if len(t.points) > 0 {
-		it.push(entry{frame{t.boxes[0].far2(q), 0, 0, int32(len(t.points)), 0}, -1})
+		it.push(entry{frame{t.boxes[0].Dist2(q), 0, 0, int32(len(t.points)), 0}, -1})
 	}
 }
 

@@ -48,7 +48,7 @@ func (t *Tree) NearestWithin(q Vec, within2 float64, used *Used) (point int32, d
 		return -1, math.Inf(1), false
 	}
 	var stack [64]frame
-	stack[0] = frame{t.boxes[0].far2(q), 0, 0, int32(len(t.points)), 0}
+	stack[0] = frame{t.boxes[0].Dist2(q), 0, 0, int32(len(t.points)), 0}
 	for top := 1; top > 0; {
 		top--
 		f := stack[top]
@@ -83,8 +83,8 @@ func (t *Tree) NearestWithin(q Vec, within2 float64, used *Used) (point int32, d
 // children are the two halves of a node, the one nearer to q first.
 func (t *Tree) children(f frame, q Vec) (near, far frame) {
 	mid := f.from + (f.to-f.from+1)/2
-	near = frame{t.boxes[2*f.node+1].far2(q), 2*f.node + 1, f.from, mid, f.depth + 1}
-	far = frame{t.boxes[2*f.node+2].far2(q), 2*f.node + 2, mid, f.to, f.depth + 1}
+	near = frame{t.boxes[2*f.node+1].Dist2(q), 2*f.node + 1, f.from, mid, f.depth + 1}
+	far = frame{t.boxes[2*f.node+2].Dist2(q), 2*f.node + 2, mid, f.to, f.depth + 1}
 	if far.far2 < near.far2 {
 		near, far = far, near
 	}
@@ -101,7 +101,7 @@ func (t *Tree) KNearest(q Vec, k int, used *Used, buf []Neighbour) []Neighbour {
 	base := len(buf)
 	worst := math.Inf(1)
 	var stack [64]frame
-	stack[0] = frame{t.boxes[0].far2(q), 0, 0, int32(len(t.points)), 0}
+	stack[0] = frame{t.boxes[0].Dist2(q), 0, 0, int32(len(t.points)), 0}
 	for top := 1; top > 0; {
 		top--
 		f := stack[top]
@@ -150,62 +150,6 @@ func insert(buf []Neighbour, base, k int, n Neighbour) []Neighbour {
 	return buf
 }
 
-// Closer looks for the point that takes the place p+v most decidedly from p: the
-// point nearest to p+v among those not used, if it is nearer than p by more than
-// rounding. It is the question whether the vertex v of the Voronoi cell of p, in
-// the cell's own coordinates, is final.
-//
-// The comparison |v-m|² < |v|² with m = q-p is made as m·(m-2v) < 0, which keeps
-// its digits when v is far away and m is near.
-func (t *Tree) Closer(p, v Vec, used *Used) (point int32, ok bool) {
-	point = -1
-	if len(t.points) == 0 {
-		return point, false
-	}
-	q := Vec{X: p.X + v.X, Y: p.Y + v.Y, Z: p.Z + v.Z}
-	w := Vec{X: 2 * v.X, Y: 2 * v.Y, Z: 2 * v.Z}
-	v2 := float64(v.X*v.X) + float64(v.Y*v.Y) + float64(v.Z*v.Z)
-	// q is off by its rounding, at most half an ulp of its largest coordinate an
-	// axis; so is the squared distance to a box.
-	off := math.Sqrt(v2) * max(math.Abs(q.X), math.Abs(q.Y), math.Abs(q.Z)) * 0x1p-50
-	best := 0.0 // of m·(m-2v); the squared radius is v2 + best
-	var stack [64]frame
-	stack[0] = frame{t.boxes[0].far2(q), 0, 0, int32(len(t.points)), 0}
-	for top := 1; top > 0; {
-		top--
-		f := stack[top]
-		for f.far2 <= float64((v2+best)*slack)+off {
-			if int(f.depth) == t.depth {
-				best, point = t.closest(f, p, w, used, best, point)
-				break
-			}
-			var other frame
-			f, other = t.children(f, q)
-			stack[top] = other
-			top++
-		}
-	}
-	return point, point >= 0
-}
-
-// closest scans a leaf for Closer.
-func (t *Tree) closest(f frame, p, w Vec, used *Used, best float64, point int32) (float64, int32) {
-	for i := f.from; i < f.to; i++ {
-		m := Vec{X: t.points[i].X - p.X, Y: t.points[i].Y - p.Y, Z: t.points[i].Z - p.Z}
-		a, b, c := float64(m.X*(m.X-w.X)), float64(m.Y*(m.Y-w.Y)), float64(m.Z*(m.Z-w.Z))
-		g := a + b + c
-		if g >= best || used.mark[i] == used.round {
-			continue
-		}
-		// A plane within rounding of the vertex cuts nothing off.
-		if -g <= 0x1p-48*(math.Abs(a)+math.Abs(b)+math.Abs(c)) {
-			continue
-		}
-		best, point = g, i
-	}
-	return best, point
-}
-
 // Beyond calls visit for the points with n·x >= d, as far as rounding tells with
 // points within the given slack called too, until visit returns false.
 func (t *Tree) Beyond(n Vec, d, slack float64, visit func(i int32) bool) {
@@ -216,7 +160,7 @@ func (t *Tree) Beyond(n Vec, d, slack float64, visit func(i int32) bool) {
 
 func (t *Tree) beyond(f frame, n Vec, d float64, visit func(i int32) bool) bool {
 	b := &t.boxes[f.node]
-	if float64(max(n.X*b.lo.X, n.X*b.hi.X))+float64(max(n.Y*b.lo.Y, n.Y*b.hi.Y))+float64(max(n.Z*b.lo.Z, n.Z*b.hi.Z)) < d {
+	if float64(max(n.X*b.Lo.X, n.X*b.Hi.X))+float64(max(n.Y*b.Lo.Y, n.Y*b.Hi.Y))+float64(max(n.Z*b.Lo.Z, n.Z*b.Hi.Z)) < d {
 		return true
 	}
 	if int(f.depth) == t.depth {

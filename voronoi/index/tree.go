@@ -21,11 +21,9 @@ const slack = 1 + 0x1p-49
 type Tree struct {
 	points   []Vec   // in the tree's order
 	original []int32 // place in the input
-	boxes    []box   // by node
+	boxes    []Box   // by node
 	depth    int     // nodes at this depth are leaves
 }
-
-type box struct{ lo, hi Vec }
 
 // New builds the tree of the points; it keeps no reference to them.
 func New(points []Vec) *Tree {
@@ -38,7 +36,7 @@ func New(points []Vec) *Tree {
 		n = (n + 1) / 2
 		t.depth++
 	}
-	t.boxes = make([]box, 2<<t.depth-1)
+	t.boxes = make([]Box, 2<<t.depth-1)
 	if len(points) > 0 {
 		t.build(0, 0, 0, len(points))
 	}
@@ -69,17 +67,17 @@ func (t *Tree) build(node, depth, from, to int) {
 	both.Wait()
 }
 
-func boundingBox(points []Vec) box {
-	b := box{points[0], points[0]}
+func boundingBox(points []Vec) Box {
+	b := Box{points[0], points[0], len(points)}
 	for _, p := range points[1:] {
-		b.lo = Vec{X: min(b.lo.X, p.X), Y: min(b.lo.Y, p.Y), Z: min(b.lo.Z, p.Z)}
-		b.hi = Vec{X: max(b.hi.X, p.X), Y: max(b.hi.Y, p.Y), Z: max(b.hi.Z, p.Z)}
+		b.Lo = Vec{X: min(b.Lo.X, p.X), Y: min(b.Lo.Y, p.Y), Z: min(b.Lo.Z, p.Z)}
+		b.Hi = Vec{X: max(b.Hi.X, p.X), Y: max(b.Hi.Y, p.Y), Z: max(b.Hi.Z, p.Z)}
 	}
 	return b
 }
 
-func widest(b box) int {
-	x, y, z := b.hi.X-b.lo.X, b.hi.Y-b.lo.Y, b.hi.Z-b.lo.Z
+func widest(b Box) int {
+	x, y, z := b.Hi.X-b.Lo.X, b.Hi.Y-b.Lo.Y, b.Hi.Z-b.Lo.Z
 	switch {
 	case x >= y && x >= z:
 		return 0
@@ -200,15 +198,7 @@ func (t *Tree) Bounds() (lo, hi Vec) {
 		inf := math.Inf(1)
 		return Vec{X: inf, Y: inf, Z: inf}, Vec{X: -inf, Y: -inf, Z: -inf}
 	}
-	return t.boxes[0].lo, t.boxes[0].hi
-}
-
-// far2 is the squared distance from q to the box.
-func (b *box) far2(q Vec) float64 {
-	x := max(b.lo.X-q.X, q.X-b.hi.X, 0)
-	y := max(b.lo.Y-q.Y, q.Y-b.hi.Y, 0)
-	z := max(b.lo.Z-q.Z, q.Z-b.hi.Z, 0)
-	return float64(x*x) + float64(y*y) + float64(z*z)
+	return t.boxes[0].Lo, t.boxes[0].Hi
 }
 
 func distance2(a, b Vec) float64 {
