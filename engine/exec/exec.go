@@ -1,44 +1,175 @@
-// Package exec runs plans: pipelines of a source, steps and a sink over
-// numbered chunks of rows.
 package exec
 
 import (
 	"context"
+	"errors"
+	"sync/atomic"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
+	"nearcell/engine/plan"
+	"nearcell/engine/problem"
 	"nearcell/engine/relation"
+)
+
+// BatchRows is the number of rows of a full batch, ChunkRows that of a full
+// chunk, which holds a whole number of batches.
+const (
+	BatchRows = relation.BatchRows
+	ChunkRows = 64 << 10
 )
 
 // Env is what one statement runs in.
 type Env struct {
 	relation.Env
-	Memory int64 // bytes, 0: no limit
+	Memory int64 // bytes that the statement's sinks may keep, 0: no limit
+
+	kept atomic.Int64
+}
+
+// keep counts bytes that a sink holds on to against the limit.
+func (e *Env) keep(bytes int64) error {
+	kept := e.kept.Add(bytes)
+	if e.Memory > 0 && kept > e.Memory {
+		return problem.New("memory", problem.Place{}, "the intermediate results need more than %d MiB", e.Memory>>20).
+			WithHint("ask for fewer columns or rows, or give more with --memory")
+	}
+	return nil
 }
 
 // Worker owns the scratch memory of one goroutine.
 type Worker struct {
-	Env  *Env
-	Work expr.Work
+	Env *Env
+	// works[depth] is the scratch of the batches between two steps that give
+	// several batches for one: those below must stay while those above pass.
+	works []*expr.Work
+	depth int
+	row   int64 // of the first row of the current batch, counted from 0
+	local map[any]any
+}
+
+// NewWorker is a worker with its own scratch memory.
+func NewWorker(env *Env) *Worker {
+	return &Worker{Env: env, works: []*expr.Work{new(expr.Work)}, local: map[any]any{}}
+}
+
+// Work is the scratch memory for the current batch.
+func (w *Worker) Work() *expr.Work { return w.works[w.depth] }
+
+// begin starts a new batch of a source: what was computed for the one before
+// it at this depth is given up.
+func (w *Worker) begin(row int64) {
+	w.works[w.depth].Reset()
+	w.row = row
+}
+
+// deeper emits a batch that a step made out of the current one, which stays
+// valid meanwhile. row is the number of its first row.
+func (w *Worker) deeper(row int64, b *column.Batch, emit Emit) error {
+	before := w.row
+	w.depth++
+	if w.depth == len(w.works) {
+		w.works = append(w.works, new(expr.Work))
+	}
+	w.begin(row)
+	err := emit(b)
+	w.depth--
+	w.row = before
+	return err
+}
+
+// localOf is the state that a worker keeps for a step.
+func localOf[T any](w *Worker, owner any, start func() *T) *T {
+	if s, ok := w.local[owner]; ok {
+		return s.(*T)
+	}
+	s := start()
+	w.local[owner] = s
+	return s
 }
 
 // Emit hands a batch to the next step. The batch is valid until it returns.
 type Emit func(*column.Batch) error
 
-// Source gives numbered chunks of rows (64 Ki each), in batches.
+// Streamed is the number of chunks of a source that knows it only at its end.
+const Streamed = -1
+
+// Source gives numbered chunks of rows, in batches. A source of Streamed
+// chunks is read once, by Read of chunk 0, and its rows are numbered as they come.
 type Source interface {
 	Schema() column.Schema
 	Chunks() int
 	Read(ctx context.Context, w *Worker, chunk int, emit Emit) error
 }
 
-// Step turns batches into batches.
+// Step turns batches into batches, in order. What it keeps between batches it
+// keeps in the worker (localOf), so that workers share no state.
 type Step interface {
-	Run(w *Worker, chunk int, b *column.Batch, emit Emit) error
+	Run(ctx context.Context, w *Worker, b *column.Batch, emit Emit) error
 }
 
-// Sink takes all rows and gives a new source. The chunk number orders every merge.
+// Sink takes all rows and gives a new source. The rows of a chunk go into a
+// Part of their own; parts are merged in the order of their chunks, whichever
+// worker filled them and when.
 type Sink interface {
-	Consume(w *Worker, chunk int, b *column.Batch) error
+	// Part starts the chunk with this number.
+	Part(chunk int) Part
+	// Merge takes a full part; errEnough: the rows after it are not wanted.
+	Merge(p Part) error
+	// Finish gives the result once every part is merged.
 	Finish(ctx context.Context) (Source, error)
+}
+
+// Part takes the rows of one chunk. errEnough says that it takes no more.
+type Part interface {
+	Consume(w *Worker, b *column.Batch) error
+}
+
+// errEnough stops a source early; it never leaves this package.
+var errEnough = errors.New("exec: enough rows")
+
+// Run computes a plan and hands its rows to emit, in order, in batches without
+// a mask (On is nil) that are valid until emit returns.
+func Run(ctx context.Context, env *Env, n plan.Node, emit func(*column.Batch) error) error {
+	r := &runner{env: env}
+	p, err := r.open(ctx, n)
+	if err != nil {
+		return err
+	}
+	var dense compactor
+	return p.stream(ctx, NewWorker(env), func(b *column.Batch) error {
+		if b = dense.compact(b); b.N == 0 {
+			return nil
+		}
+		return emit(b)
+	})
+}
+
+// Collect computes a plan into a table. Where the plan is a table as it lies,
+// the result is a view of it.
+func Collect(ctx context.Context, env *Env, n plan.Node) (*column.Table, error) {
+	r := &runner{env: env}
+	return r.collect(ctx, n)
+}
+
+// runner opens the nodes of one plan.
+type runner struct {
+	env      *Env
+	removals map[plan.Node]*removal // steps that an aggregate above wants counted
+}
+
+func (r *runner) collect(ctx context.Context, n plan.Node) (*column.Table, error) {
+	p, err := r.open(ctx, n)
+	if err != nil {
+		return nil, err
+	}
+	if src, ok := p.source.(*tableSource); ok && len(p.steps) == 0 {
+		return src.table, nil
+	}
+	sink := &collectSink{env: r.env, schema: n.Schema()}
+	src, err := p.into(ctx, NewWorker(r.env), sink)
+	if err != nil {
+		return nil, err
+	}
+	return src.(*tableSource).table, nil
 }

@@ -1,0 +1,296 @@
+package exec
+
+import (
+	"context"
+	"errors"
+	"strings"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/function"
+	"nearcell/engine/plan"
+	"nearcell/engine/problem"
+)
+
+// aggregateSink groups rows and computes aggregates. Each chunk has a key table
+// and accumulators of its own; merging them in the order of the chunks gives
+// the same bits for any number of workers. Groups come out in the order of
+// their keys, NULL last.
+type aggregateSink struct {
+	scope
+	env   *Env
+	node  *plan.Aggregate
+	types []column.Type // of the keys
+	watch *cellWatch    // what may have to be said, nil: nobody listens
+	all   *aggregatePart
+}
+
+func newAggregateSink(env *Env, n *plan.Aggregate) (*aggregateSink, error) {
+	s := &aggregateSink{scope: scopeOf(n.Input.Schema()), env: env, node: n}
+	for _, k := range n.Keys {
+		s.types = append(s.types, k.Type())
+	}
+	for _, c := range n.Calls {
+		if c.Distinct && c.Weight != nil {
+			// which weight would count for a value that several rows have?
+			return nil, problem.New("distinct-weight", c.Place, "%s cannot count each value once and weigh it by its rows", c.Text).
+				WithHint("leave out DISTINCT or WEIGHTED BY")
+		}
+	}
+	return s, nil
+}
+
+// aggregatePart is the groups of one chunk, or of all chunks merged so far.
+type aggregatePart struct {
+	sink   *aggregateSink
+	keys   *keyTable
+	reader *keyReader
+	calls  []*callState
+	group  []int32 // of each row of the batch
+	cols   []column.Vector
+}
+
+// callState is one aggregate over the groups of a part.
+type callState struct {
+	call *plan.Call
+	acc  function.Accumulator
+	// distinct holds the pairs of group and arguments of a call with DISTINCT
+	// until all parts are merged, else nil.
+	distinct *keyTable
+	reader   *keyReader
+	ids      []int32
+	args     []column.Vector
+	on       []uint64
+	largest  heaviest
+	cells    *cellCount // what a sum of measures has met, nil: not asked
+}
+
+func (s *aggregateSink) Part(int) Part { return s.newPart() }
+
+func (s *aggregateSink) newPart() *aggregatePart {
+	p := &aggregatePart{sink: s, keys: newKeyTable(s.types), calls: make([]*callState, len(s.node.Calls))}
+	p.reader = newKeyReader(p.keys)
+	for i := range s.node.Calls {
+		p.calls[i] = newCallState(&s.node.Calls[i])
+	}
+	if s.watch != nil {
+		for i, cells := range cellCounts(s.node) {
+			p.calls[i].cells = cells
+		}
+	}
+	return p
+}
+
+func newCallState(c *plan.Call) *callState {
+	setup := function.Setup{Weighted: c.Weight != nil}
+	for _, a := range c.Args {
+		setup.Args = append(setup.Args, a.Type())
+		var constant *column.Value
+		if v, ok := expr.Const(a); ok {
+			constant = &v
+		}
+		setup.Consts = append(setup.Consts, constant)
+	}
+	for _, k := range c.OrderBy {
+		setup.Keys = append(setup.Keys, function.Key{Type: k.Expr.Type(), Descending: k.Descending})
+	}
+	state := &callState{call: c, acc: c.Fn.New(setup)}
+	// the first of ordered values is the same whether or not equals are dropped
+	if c.Distinct && len(c.OrderBy) == 0 {
+		state.distinct = newKeyTable(append([]column.Type{column.Integer}, setup.Args...))
+		state.reader = newKeyReader(state.distinct)
+	}
+	return state
+}
+
+func (p *aggregatePart) Consume(w *Worker, b *column.Batch) error {
+	s := p.sink
+	cols, err := s.evalAll(w, p.cols, s.node.Keys, b, b.On)
+	if err != nil {
+		return err
+	}
+	p.cols = cols
+	before := p.keys.n
+	p.group = room(p.group, b.N)
+	p.reader.put(cols, b.On, b.N, p.group)
+	for _, c := range p.calls {
+		if err := c.consume(s, w, b, p.group); err != nil {
+			return err
+		}
+	}
+	// a group costs its key and, at a guess, eight words an aggregate
+	return s.env.keep(int64(p.keys.n-before) * int64(8*p.keys.width+64*len(p.calls)))
+}
+
+func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups []int32) error {
+	on := b.On
+	if c.call.Filter != nil {
+		cond, err := s.eval(w, c.call.Filter, b, b.On)
+		if err != nil {
+			return err
+		}
+		c.on = trueRows(c.on, &cond, b.On, b.N)
+		on = c.on
+	}
+	args, err := s.evalAll(w, c.args, c.call.Args, b, on)
+	if err != nil {
+		return err
+	}
+	for _, k := range c.call.OrderBy {
+		v, err := s.eval(w, k.Expr, b, on)
+		if err != nil {
+			return err
+		}
+		args = append(args, v)
+	}
+	c.args = args
+	if c.distinct != nil {
+		c.addDistinct(b.N, on, groups)
+		return nil
+	}
+	var weight *column.Vector
+	at := c.call.Place
+	if c.call.Weight != nil {
+		v, err := s.eval(w, c.call.Weight, b, on)
+		if err != nil {
+			return err
+		}
+		weight, at = &v, c.call.Weight.Place()
+	}
+	if err := c.acc.Add(groups, on, b.N, args, weight); err != nil {
+		var f *function.RowFault
+		if errors.As(err, &f) && f.Code != "weight" {
+			at = c.call.Place
+		}
+		return s.fault(w, err, at, b)
+	}
+	c.cells.add(b, on, groups)
+	if weight != nil && len(s.node.Keys) == 0 && s.id >= 0 {
+		c.largest.look(weight, args, on, b.N, &b.Cols[s.id])
+	}
+	return nil
+}
+
+// addDistinct remembers the pairs of group and arguments.
+func (c *callState) addDistinct(n int, on []uint64, groups []int32) {
+	cols := make([]column.Vector, 0, len(c.args)+1)
+	group := column.Vector{Type: column.Integer, N: n, I: make([]int64, n)}
+	forEachOn(on, n, func(i int) { group.I[i] = int64(groups[i]) })
+	cols = append(append(cols, group), c.args...)
+	c.ids = room(c.ids, n)
+	c.reader.put(cols, on, n, c.ids)
+}
+
+func (s *aggregateSink) Merge(part Part) error {
+	p := part.(*aggregatePart)
+	if s.all == nil {
+		s.all = p
+		return nil
+	}
+	to := s.all.keys.absorb(p.keys, nil)
+	for i, c := range s.all.calls {
+		from := p.calls[i]
+		if c.distinct != nil {
+			c.distinct.absorb(from.distinct, to)
+			continue
+		}
+		if err := c.acc.Merge(from.acc, to); err != nil {
+			return s.groupFault(err, c.call)
+		}
+		c.largest.merge(&from.largest)
+		c.cells.merge(from.cells, to)
+	}
+	return nil
+}
+
+func (s *aggregateSink) Finish(context.Context) (Source, error) {
+	if s.all == nil {
+		s.all = s.newPart()
+	}
+	p := s.all
+	if len(s.types) == 0 && p.keys.n == 0 {
+		p.keys.add(nil) // without keys there is one group, of no rows too
+	}
+	keys := p.keys.columns()
+	order := s.keyOrder(keys, p.keys.n)
+	out := &column.Table{Schema: s.node.Fields, N: p.keys.n}
+	for i := range keys {
+		out.Cols = append(out.Cols, gather(&keys[i], order))
+	}
+	for _, c := range p.calls {
+		v, err := c.result(p.keys.n)
+		if err != nil {
+			return nil, s.groupFault(err, c.call)
+		}
+		out.Cols = append(out.Cols, gather(&v, order))
+	}
+	for i := range out.Cols {
+		out.Cols[i].Unit = s.node.Fields[i].Unit
+	}
+	s.say()
+	return &tableSource{out}, nil
+}
+
+// say notes what the values rest on.
+func (s *aggregateSink) say() {
+	if s.watch == nil {
+		return
+	}
+	s.weightNotes()
+	s.watch.say(s.env.Notes)
+	for _, c := range s.all.calls {
+		c.cells.say(s.env.Notes, c.call)
+	}
+}
+
+func (s *aggregateSink) keyOrder(keys []column.Vector, n int) []int32 {
+	by := make([]orderKey, len(keys))
+	for i := range keys {
+		by[i].v = &keys[i]
+	}
+	return argsort(by, n)
+}
+
+// result is the values of all groups. The distinct values of a call with
+// DISTINCT go into its accumulator now that each stands there once.
+func (c *callState) result(groups int) (column.Vector, error) {
+	if c.distinct != nil {
+		cols := c.distinct.columns()
+		group := make([]int32, c.distinct.n)
+		for i, g := range cols[0].I {
+			group[i] = int32(g)
+		}
+		args := make([]column.Vector, len(cols)-1)
+		for lo := 0; lo < len(group); lo += BatchRows {
+			hi := min(lo+BatchRows, len(group))
+			for i := range args {
+				args[i] = cols[i+1].Slice(lo, hi)
+			}
+			if err := c.acc.Add(group[lo:hi], nil, hi-lo, args, nil); err != nil {
+				return column.Vector{}, err
+			}
+		}
+	}
+	return c.acc.Result(groups)
+}
+
+// groupFault names the group whose value could not be computed.
+func (s *aggregateSink) groupFault(err error, c *plan.Call) error {
+	var f *function.GroupFault
+	if !errors.As(err, &f) {
+		var r *function.RowFault
+		if errors.As(err, &r) {
+			return problem.New(r.Code, c.Place, "%s", r.Message).WithHint("%s", r.Hint).Because(err)
+		}
+		return problem.At(err, c.Place)
+	}
+	text := f.Message
+	if len(s.types) > 0 {
+		var names []string
+		for i, v := range s.all.keys.columns() {
+			names = append(names, s.node.Fields[i].Name+" = "+idText(v.Value(f.Group)))
+		}
+		text += " in the group " + strings.Join(names, ", ")
+	}
+	return problem.New(f.Code, c.Place, "%s", text).WithHint("%s", f.Hint).Because(err)
+}

@@ -1,0 +1,327 @@
+package exec
+
+import (
+	"context"
+	"errors"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/plan"
+)
+
+// buildSide is the right side of a join in memory, its rows grouped by key.
+type buildSide struct {
+	table *column.Table
+	keys  *keyTable // nil: a nested loop
+	// rows[start[k]:start[k+1]] are the rows with key k, in their order.
+	start, rows []int32
+}
+
+// openBuild computes the right side with its keys. Key expressions that read a
+// column cost nothing; others are computed beside the columns.
+func (r *runner) openBuild(ctx context.Context, n *plan.Join) (*buildSide, error) {
+	right := n.Right
+	schema := right.Schema()
+	at := make([]int, len(n.RightKeys))
+	var extra []expr.Expr
+	for i, k := range n.RightKeys {
+		c, plain := expr.AsColumn(k)
+		if !plain {
+			c = len(schema) + len(extra)
+			extra = append(extra, k)
+		}
+		at[i] = c
+	}
+	if len(extra) > 0 {
+		p := &plan.Project{Input: right}
+		for c, f := range schema {
+			p.Exprs = append(p.Exprs, expr.NewColumn(c, f, extra[0].Place()))
+			p.Fields = append(p.Fields, f)
+		}
+		for _, e := range extra {
+			p.Exprs = append(p.Exprs, e)
+			p.Fields = append(p.Fields, column.Field{Name: e.String(), Type: e.Type(), Unit: e.Unit()})
+		}
+		right = p
+	}
+	table, err := r.collect(ctx, right)
+	if err != nil {
+		return nil, err
+	}
+	side := &buildSide{table: table}
+	if len(at) > 0 {
+		err = side.index(r.env, at)
+	}
+	side.table = &column.Table{Schema: schema, Cols: table.Cols[:len(schema)], N: table.N}
+	return side, err
+}
+
+// index groups the rows by the key columns at; rows with a NULL key match
+// nothing and are in no group.
+func (s *buildSide) index(env *Env, at []int) error {
+	types := make([]column.Type, len(at))
+	for i, c := range at {
+		types[i] = s.table.Cols[c].Type
+	}
+	s.keys = newKeyTable(types)
+	reader := newKeyReader(s.keys)
+	keyOf := make([]int32, s.table.N)
+	on := make([]uint64, column.Words(BatchRows))
+	cols := make([]column.Vector, len(at))
+	for lo := 0; lo < s.table.N; lo += BatchRows {
+		b := s.table.Batch(lo, min(lo+BatchRows, s.table.N))
+		mask := on[:column.Words(b.N)]
+		column.FillOn(mask, b.N)
+		for i, c := range at {
+			cols[i] = b.Cols[c]
+			maskPresent(mask, &cols[i])
+		}
+		for i := range b.N {
+			keyOf[lo+i] = -1
+		}
+		reader.put(cols, mask, b.N, keyOf[lo:lo+b.N])
+	}
+	s.group(keyOf)
+	return env.keep(int64(len(keyOf))*8 + int64(len(s.keys.words))*8)
+}
+
+// maskPresent clears the rows where v is NULL.
+func maskPresent(mask []uint64, v *column.Vector) {
+	if v.Type == column.Null {
+		clear(mask)
+		return
+	}
+	if v.Valid != nil {
+		for i := range mask {
+			mask[i] &= v.Valid[i]
+		}
+	}
+}
+
+// group sorts the rows by key, by counting.
+func (s *buildSide) group(keyOf []int32) {
+	s.start = make([]int32, s.keys.n+1)
+	for _, k := range keyOf {
+		if k >= 0 {
+			s.start[k+1]++
+		}
+	}
+	for k := 1; k < len(s.start); k++ {
+		s.start[k] += s.start[k-1]
+	}
+	s.rows = make([]int32, s.start[s.keys.n])
+	next := append([]int32(nil), s.start...)
+	for row, k := range keyOf {
+		if k >= 0 {
+			s.rows[next[k]] = int32(row)
+			next[k]++
+		}
+	}
+}
+
+// joinStep meets the batches of the left side with the right side. Its rows
+// come in the order of the left rows, for each of them in that of the right.
+type joinStep struct {
+	kind      plan.JoinKind
+	leftKeys  []expr.Expr
+	rest      expr.Expr
+	leftScope scope
+	right     *buildSide
+}
+
+// pairs are rows of the current left batch with rows of the right side; -1
+// stands for no row.
+type pairs struct {
+	left, right []int32
+}
+
+func (p *pairs) add(l, r int32) { p.left, p.right = append(p.left, l), append(p.right, r) }
+
+func (p *pairs) reset() { p.left, p.right = p.left[:0], p.right[:0] }
+
+// joinLocal is the state of a worker in a join: pairs that may match
+// (candidates, in order; one with right -1 says that a left row has none),
+// pairs to hand on, and the left row whose candidates are being looked at.
+type joinLocal struct {
+	reader    *keyReader
+	keys      []int32
+	keyCols   []column.Vector
+	maybe     pairs
+	out       pairs
+	cols      []column.Vector
+	batch     column.Batch
+	candidate []uint64
+	holds     []uint64
+	current   int32
+	matched   bool
+	emitted   int64
+}
+
+func (s *joinStep) local(w *Worker) *joinLocal {
+	return localOf(w, s, func() *joinLocal {
+		l := &joinLocal{}
+		if s.right.keys != nil {
+			l.reader = newKeyReader(s.right.keys)
+		}
+		return l
+	})
+}
+
+func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emit) error {
+	l := s.local(w)
+	l.current, l.matched = -1, false
+	l.maybe.reset()
+	l.out.reset()
+	if s.right.keys != nil {
+		cols, err := s.leftScope.evalAll(w, l.keyCols, s.leftKeys, b, b.On)
+		if err != nil {
+			return err
+		}
+		l.keyCols = cols
+		l.keys = room(l.keys, b.N)
+		l.reader.find(cols, b.On, b.N, l.keys)
+	}
+	var err error
+	forEachOn(b.On, b.N, func(i int) {
+		if err == nil {
+			err = s.candidates(ctx, w, l, b, int32(i), emit)
+		}
+	})
+	if err != nil {
+		return err
+	}
+	if err := s.settle(ctx, w, l, b, emit); err != nil {
+		return err
+	}
+	s.finishRow(l)
+	return s.handOn(ctx, w, l, b, emit)
+}
+
+// candidates lists the right rows that left row i may match.
+func (s *joinStep) candidates(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, i int32, emit Emit) error {
+	if s.right.keys == nil {
+		for r := range int32(s.right.table.N) {
+			if err := s.candidate(ctx, w, l, b, i, r, emit); err != nil {
+				return err
+			}
+		}
+	} else if k := l.keys[i]; k >= 0 {
+		for _, r := range s.right.rows[s.right.start[k]:s.right.start[k+1]] {
+			if err := s.candidate(ctx, w, l, b, i, r, emit); err != nil {
+				return err
+			}
+		}
+	}
+	if s.kind == plan.Left {
+		return s.candidate(ctx, w, l, b, i, -1, emit)
+	}
+	return nil
+}
+
+func (s *joinStep) candidate(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, i, r int32, emit Emit) error {
+	l.maybe.add(i, r)
+	if len(l.maybe.left) < BatchRows {
+		return nil
+	}
+	return s.settle(ctx, w, l, b, emit)
+}
+
+// settle decides the candidates so far and moves those that match to l.out.
+func (s *joinStep) settle(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, emit Emit) error {
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	if err := s.decide(w, l, b); err != nil {
+		return err
+	}
+	for k, i := range l.maybe.left {
+		if i != l.current {
+			s.finishRow(l)
+			l.current, l.matched = i, false
+		}
+		if r := l.maybe.right[k]; r >= 0 && (s.rest == nil || column.Bit(l.holds, k)) {
+			l.matched = true
+			l.out.add(i, r)
+		}
+	}
+	l.maybe.reset()
+	if len(l.out.left) >= BatchRows {
+		return s.handOn(ctx, w, l, b, emit)
+	}
+	return nil
+}
+
+// decide computes the rest of the condition for the candidates into l.holds.
+func (s *joinStep) decide(w *Worker, l *joinLocal, b *column.Batch) error {
+	n := len(l.maybe.left)
+	if s.rest == nil || n == 0 {
+		return nil
+	}
+	s.gather(l, b, &l.maybe)
+	l.candidate = bitsFor(l.candidate, n)
+	for k, r := range l.maybe.right {
+		if r >= 0 {
+			column.SetBit(l.candidate, k)
+		}
+	}
+	err := w.deeper(w.row, &l.batch, func(joined *column.Batch) error {
+		holds, err := s.rest.Eval(w.Work(), joined, l.candidate)
+		if err == nil {
+			l.holds = trueRows(l.holds, &holds, l.candidate, n)
+		}
+		return err
+	})
+	if err == nil {
+		return nil
+	}
+	// the row that the user knows is the left one
+	var inRow *expr.RowError
+	if errors.As(err, &inRow) {
+		err = &expr.RowError{Row: int(l.maybe.left[inRow.Row]), Err: inRow.Err}
+	}
+	return s.leftScope.fault(w, err, s.rest.Place(), b)
+}
+
+// finishRow closes the current left row: in a left join it stays without a match.
+func (s *joinStep) finishRow(l *joinLocal) {
+	if l.current < 0 {
+		return
+	}
+	if !l.matched && s.kind == plan.Left {
+		l.out.add(l.current, -1)
+	}
+	l.current = -1
+}
+
+// handOn emits the pairs found so far, in batches.
+func (s *joinStep) handOn(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, emit Emit) error {
+	for lo := 0; lo < len(l.out.left); lo += BatchRows {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		hi := min(lo+BatchRows, len(l.out.left))
+		s.gather(l, b, &pairs{l.out.left[lo:hi], l.out.right[lo:hi]})
+		first := l.emitted
+		l.emitted += int64(hi - lo)
+		if err := w.deeper(first, &l.batch, emit); err != nil {
+			return err
+		}
+	}
+	l.out.reset()
+	return nil
+}
+
+// gather makes l.batch the joined rows of the pairs.
+func (s *joinStep) gather(l *joinLocal, b *column.Batch, p *pairs) {
+	left, right := b.Cols, s.right.table.Cols
+	if l.cols == nil {
+		l.cols = make([]column.Vector, len(left)+len(right))
+	}
+	for c := range left {
+		gatherInto(&l.cols[c], &left[c], p.left, false)
+	}
+	for c := range right {
+		gatherInto(&l.cols[len(left)+c], &right[c], p.right, true)
+	}
+	l.batch = column.Batch{N: len(p.left), Cols: l.cols}
+}

@@ -1,0 +1,213 @@
+package exec
+
+import (
+	"context"
+	"fmt"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/plan"
+	"nearcell/engine/relation"
+)
+
+// open gives the pipeline whose rows are those of a node. What a node needs as
+// a whole (the groups of an aggregate, the right side of a join, the sites of a
+// relation) is computed here, before the first row comes out.
+func (r *runner) open(ctx context.Context, n plan.Node) (*pipeline, error) {
+	switch n := n.(type) {
+	case *plan.One:
+		return sourceOnly(&tableSource{&column.Table{N: 1}}), nil
+	case *plan.Values:
+		return r.openValues(n)
+	case *plan.Scan:
+		return sourceOnly(&tableSource{scanned(n)}), nil
+	case *plan.Relation:
+		return r.openRelation(ctx, n)
+	case *plan.Filter:
+		p, err := r.open(ctx, n.Input)
+		if err != nil {
+			return nil, err
+		}
+		return p.with(&filterStep{scopeOf(p.schema), n.Cond, r.removals[n]}, p.schema), nil
+	case *plan.Project:
+		p, err := r.open(ctx, n.Input)
+		if err != nil {
+			return nil, err
+		}
+		return p.with(&projectStep{scopeOf(p.schema), n.Exprs}, n.Fields), nil
+	case *plan.Join:
+		return r.openJoin(ctx, n)
+	case *plan.Union:
+		return r.openUnion(ctx, n)
+	}
+	return r.openSink(ctx, n)
+}
+
+// openSink runs the nodes that give nothing before they have seen everything.
+func (r *runner) openSink(ctx context.Context, n plan.Node) (*pipeline, error) {
+	var sink Sink
+	switch n := n.(type) {
+	case *plan.Aggregate:
+		s, err := newAggregateSink(r.env, n)
+		if err != nil {
+			return nil, err
+		}
+		s.watch = r.watch(n)
+		sink = s
+	case *plan.Sort:
+		sink = newSortSink(r.env, n)
+	case *plan.Limit:
+		sink = newLimitSink(r.env, n)
+	case *plan.Distinct:
+		sink = newDistinctSink(r.env, n.Input.Schema())
+	default:
+		return nil, fmt.Errorf("exec: no way to run a %T", n)
+	}
+	p, err := r.open(ctx, n.Inputs()[0])
+	if err != nil {
+		return nil, err
+	}
+	src, err := p.into(ctx, NewWorker(r.env), sink)
+	if err != nil {
+		return nil, err
+	}
+	return sourceOnly(src), nil
+}
+
+func sourceOnly(s Source) *pipeline { return &pipeline{source: s, schema: s.Schema()} }
+
+// scanned is the columns in use of a table, as views.
+func scanned(n *plan.Scan) *column.Table {
+	t := &column.Table{Schema: n.Fields, N: n.Table.N, Cols: make([]column.Vector, len(n.Use))}
+	for i, c := range n.Use {
+		t.Cols[i] = n.Table.Cols[c]
+		t.Cols[i].Unit = n.Fields[i].Unit
+	}
+	return t
+}
+
+func (r *runner) openValues(n *plan.Values) (*pipeline, error) {
+	w := NewWorker(r.env)
+	one := &column.Batch{N: 1}
+	builders := make([]*column.Builder, len(n.Fields))
+	for i, f := range n.Fields {
+		builders[i] = column.NewBuilder(f.Type, f.Unit)
+	}
+	none := scopeOf(nil)
+	for _, row := range n.Rows {
+		for i, e := range row {
+			v, err := none.eval(w, e, one, nil)
+			if err != nil {
+				return nil, err
+			}
+			builders[i].Append(v.Value(0))
+		}
+		w.begin(0)
+	}
+	t := &column.Table{Schema: n.Fields, N: len(n.Rows), Cols: make([]column.Vector, len(n.Fields))}
+	for i, b := range builders {
+		t.Cols[i] = b.Finish()
+	}
+	return sourceOnly(&tableSource{t}), nil
+}
+
+func (r *runner) openJoin(ctx context.Context, n *plan.Join) (*pipeline, error) {
+	right, err := r.openBuild(ctx, n)
+	if err != nil {
+		return nil, err
+	}
+	left, err := r.open(ctx, n.Left)
+	if err != nil {
+		return nil, err
+	}
+	step := &joinStep{kind: n.Kind, leftKeys: n.LeftKeys, rest: n.Rest, leftScope: scopeOf(left.schema), right: right}
+	return left.with(step, n.Schema()), nil
+}
+
+func (r *runner) openUnion(ctx context.Context, n *plan.Union) (*pipeline, error) {
+	s := &unionSource{schema: n.Fields}
+	for _, in := range n.Parts {
+		p, err := r.open(ctx, in)
+		if err != nil {
+			return nil, err
+		}
+		s.parts = append(s.parts, p)
+	}
+	return sourceOnly(s), nil
+}
+
+// openRelation collects the sites and opens the relation over them. Which of
+// them are shown is decided here; which partition is the relation's business.
+func (r *runner) openRelation(ctx context.Context, n *plan.Relation) (*pipeline, error) {
+	sites, err := r.collect(ctx, n.Input)
+	if err != nil {
+		return nil, err
+	}
+	need := n.Need
+	if need == nil {
+		need = make([]bool, len(n.Bound.Columns))
+		for i := range need {
+			need[i] = true
+		}
+	}
+	wanted, err := r.wanted(ctx, n, sites)
+	if err != nil {
+		return nil, err
+	}
+	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted})
+	if err != nil {
+		return nil, placed(err, n)
+	}
+	return sourceOnly(&rowSource{node: n, rows: rows, schema: n.Schema()}), nil
+}
+
+// wanted is the set of sites for which the pushed-down condition is TRUE.
+func (r *runner) wanted(ctx context.Context, n *plan.Relation, sites *column.Table) ([]uint64, error) {
+	if n.Wanted == nil {
+		return nil, nil
+	}
+	w := NewWorker(r.env)
+	s := scopeOf(sites.Schema)
+	wanted := make([]uint64, column.Words(sites.N))
+	var on []uint64
+	for lo := 0; lo < sites.N; lo += BatchRows {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		b := sites.Batch(lo, min(lo+BatchRows, sites.N))
+		w.begin(int64(lo))
+		cond, err := s.eval(w, n.Wanted, &b, nil)
+		if err != nil {
+			return nil, err
+		}
+		on = trueRows(on, &cond, nil, b.N)
+		if err := r.removals[n].count(s, w, &b, column.Count(on)); err != nil {
+			return nil, err
+		}
+		copy(wanted[lo>>6:], on)
+	}
+	return wanted, nil
+}
+
+// rowSource streams the rows of a relation.
+type rowSource struct {
+	node   *plan.Relation
+	rows   relation.Rows
+	schema column.Schema
+}
+
+func (s *rowSource) Schema() column.Schema { return s.schema }
+
+func (s *rowSource) Chunks() int { return Streamed }
+
+func (s *rowSource) Read(ctx context.Context, w *Worker, _ int, emit Emit) error {
+	row := int64(0)
+	err := s.rows.Run(ctx, func(b *column.Batch) error {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		w.begin(row)
+		row += int64(b.N)
+		return emit(b)
+	})
+	return placed(err, s.node)
+}

@@ -1,0 +1,175 @@
+package exec
+
+import (
+	"cmp"
+	"slices"
+
+	"nearcell/catalog/column"
+)
+
+// orderKey is one column to sort by.
+type orderKey struct {
+	v          *column.Vector
+	descending bool
+	nullsFirst bool
+}
+
+// argsort is the order of rows 0..n-1 by the keys; rows with equal keys keep
+// their order. Keys become words whose order is that of the values, which are
+// sorted by their bytes from the last key to the first.
+func argsort(keys []orderKey, n int) []int32 {
+	rows := make([]rowWord, n)
+	for i := range rows {
+		rows[i].row = int32(i)
+	}
+	var spare []rowWord
+	var ranks []uint64
+	for k := len(keys) - 1; k >= 0; k-- {
+		key := keys[k]
+		if key.v.Type == column.Null {
+			continue
+		}
+		if key.v.Type == column.Text {
+			ranks = textRanks(key.v)
+		}
+		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
+			for i := range rows {
+				rows[i].word = orderWord(key.v, int(rows[i].row), part, ranks)
+				if key.descending {
+					rows[i].word = ^rows[i].word
+				}
+			}
+			rows, spare = radixSort(rows, spare)
+		}
+		if key.v.Valid != nil {
+			rows, spare = nullsToEnd(key, rows, spare)
+		}
+	}
+	order := make([]int32, n)
+	for i, r := range rows {
+		order[i] = r.row
+	}
+	return order
+}
+
+type rowWord struct {
+	word uint64
+	row  int32
+}
+
+// orderWord maps a value to a word so that greater values have greater words.
+func orderWord(v *column.Vector, row, part int, ranks []uint64) uint64 {
+	switch {
+	case v.Type.Counted():
+		return uint64(v.I[row]) ^ 1<<63
+	case v.Type == column.Real:
+		return orderedReal(v.F[row])
+	case v.Type == column.Point:
+		return orderedReal(v.F[3*row+part])
+	case v.Type == column.Text:
+		if v.IsNull(row) {
+			return 0
+		}
+		return ranks[v.C[row]]
+	case v.Type == column.Boolean:
+		return v.Bits[row>>6] >> (uint(row) & 63) & 1
+	}
+	return 0
+}
+
+// orderedReal orders as the numbers do, with -0 equal to 0: negative numbers
+// are turned over, so that the greater magnitude comes first.
+func orderedReal(f float64) uint64 {
+	w := realWord(f)
+	if w>>63 != 0 {
+		return ^w
+	}
+	return w | 1<<63
+}
+
+// textRanks gives each code that v uses the place of its text; equal texts
+// have equal ranks. Texts are ordered by their bytes, which for UTF-8 is the
+// order of code points.
+func textRanks(v *column.Vector) []uint64 {
+	ranks := make([]uint64, len(v.Dict.Texts))
+	used := make([]bool, len(ranks))
+	var codes []uint32
+	for i, c := range v.C[:v.N] {
+		if !v.IsNull(i) && !used[c] {
+			used[c] = true
+			codes = append(codes, c)
+		}
+	}
+	slices.SortFunc(codes, func(a, b uint32) int { return cmp.Compare(v.Dict.Texts[a], v.Dict.Texts[b]) })
+	rank := uint64(0)
+	for i, c := range codes {
+		if i > 0 && v.Dict.Texts[c] != v.Dict.Texts[codes[i-1]] {
+			rank++
+		}
+		ranks[c] = rank
+	}
+	return ranks
+}
+
+// nullsToEnd moves the rows with a NULL key to one end, all in their order.
+func nullsToEnd(key orderKey, rows, spare []rowWord) (sorted, other []rowWord) {
+	spare = room(spare, len(rows))[:0]
+	for pass := range 2 {
+		nulls := (pass == 0) == key.nullsFirst
+		for _, r := range rows {
+			if key.v.IsNull(int(r.row)) == nulls {
+				spare = append(spare, r)
+			}
+		}
+	}
+	return spare, rows
+}
+
+// radixSort sorts rows by their words, stably, a byte at a time from the least;
+// bytes that all rows share cost nothing. It gives back the sorted and the
+// spare slice.
+func radixSort(rows, spare []rowWord) (sorted, other []rowWord) {
+	if inOrder(rows) {
+		return rows, spare
+	}
+	if len(rows) < 256 {
+		slices.SortStableFunc(rows, func(a, b rowWord) int { return cmp.Compare(a.word, b.word) })
+		return rows, spare
+	}
+	spare = room(spare, len(rows))
+	var counts [8][256]int32
+	for _, r := range rows {
+		for b := range 8 {
+			counts[b][byte(r.word>>(8*b))]++
+		}
+	}
+	for b := range 8 {
+		next := &counts[b]
+		if int(next[byte(rows[0].word>>(8*b))]) == len(rows) {
+			continue
+		}
+		at := int32(0)
+		for d, c := range next {
+			next[d] = at
+			at += c
+		}
+		for _, r := range rows {
+			d := byte(r.word >> (8 * b))
+			spare[next[d]] = r
+			next[d]++
+		}
+		rows, spare = spare, rows
+	}
+	return rows, spare
+}
+
+func inOrder(rows []rowWord) bool {
+	last := uint64(0)
+	for _, r := range rows {
+		if r.word < last {
+			return false
+		}
+		last = r.word
+	}
+	return true
+}

@@ -1,0 +1,109 @@
+package exec
+
+import (
+	"context"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/plan"
+)
+
+// sortSink orders all rows by keys that are kept beside the columns. With a top
+// it forgets, chunk by chunk, the rows that cannot be among the first ones.
+type sortSink struct {
+	env    *Env
+	node   *plan.Sort
+	schema column.Schema // of the input
+	keyed  column.Schema // with the keys behind
+	scope
+	all *tableBuilder
+}
+
+func newSortSink(env *Env, n *plan.Sort) *sortSink {
+	s := &sortSink{env: env, node: n, schema: n.Input.Schema()}
+	s.scope = scopeOf(s.schema)
+	s.keyed = append(s.keyed, s.schema...)
+	for _, k := range n.Keys {
+		s.keyed = append(s.keyed, column.Field{Type: k.Expr.Type()})
+	}
+	return s
+}
+
+type sortPart struct {
+	sink *sortSink
+	rows *tableBuilder
+	cols []column.Vector
+}
+
+func (s *sortSink) Part(int) Part {
+	return &sortPart{sink: s, rows: newTableBuilder(s.env, s.keyed)}
+}
+
+func (p *sortPart) Consume(w *Worker, b *column.Batch) error {
+	p.cols = append(p.cols[:0], b.Cols...)
+	for _, k := range p.sink.node.Keys {
+		v, err := p.sink.eval(w, k.Expr, b, b.On)
+		if err != nil {
+			return err
+		}
+		p.cols = append(p.cols, v)
+	}
+	if err := p.rows.add(p.cols, b.On, b.N); err != nil {
+		return err
+	}
+	return p.sink.cut(&p.rows)
+}
+
+// first is the rows of t that are among the first Top ones, in their order.
+// Without a top, and where there are no more, it is t as it is.
+func (s *sortSink) first(t *column.Table) *column.Table {
+	if s.node.Top <= 0 || int64(t.N) <= s.node.Top {
+		return t
+	}
+	return gatherTable(t, s.order(t)[:s.node.Top])
+}
+
+func (s *sortSink) order(t *column.Table) []int32 {
+	keys := make([]orderKey, len(s.node.Keys))
+	for i, k := range s.node.Keys {
+		keys[i] = orderKey{&t.Cols[len(s.schema)+i], k.Descending, k.NullsFirst}
+	}
+	return argsort(keys, t.N)
+}
+
+// Merge appends a part. Parts come in the order of their chunks and the sort is
+// stable, so that rows with equal keys stay in the order of the input.
+func (s *sortSink) Merge(p Part) error {
+	rows := p.(*sortPart).rows
+	if s.all == nil {
+		s.all = rows
+		return nil
+	}
+	if err := s.all.addTable(s.first(rows.finish())); err != nil {
+		return err
+	}
+	return s.cut(&s.all)
+}
+
+// cut forgets the rows that cannot be among the first ones, whenever enough
+// have come together.
+func (s *sortSink) cut(rows **tableBuilder) error {
+	if s.node.Top <= 0 || int64((*rows).n) <= 2*s.node.Top+ChunkRows {
+		return nil
+	}
+	first := s.first((*rows).finish())
+	*rows = newTableBuilder(s.env, s.keyed)
+	return (*rows).addTable(first)
+}
+
+func (s *sortSink) Finish(context.Context) (Source, error) {
+	if s.all == nil {
+		s.all = newTableBuilder(s.env, s.keyed)
+	}
+	all := s.all.finish()
+	idx := s.order(all)
+	if s.node.Top > 0 && int64(len(idx)) > s.node.Top {
+		idx = idx[:s.node.Top]
+	}
+	visible := &column.Table{Schema: s.schema, Cols: all.Cols[:len(s.schema)], N: all.N}
+	return &tableSource{gatherTable(visible, idx)}, nil
+}

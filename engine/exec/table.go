@@ -1,0 +1,314 @@
+package exec
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/problem"
+)
+
+// tableSource reads a table in memory: chunk c is its rows from c·64 Ki on.
+type tableSource struct {
+	table *column.Table
+}
+
+func (s *tableSource) Schema() column.Schema { return s.table.Schema }
+
+func (s *tableSource) Chunks() int { return (s.table.N + ChunkRows - 1) / ChunkRows }
+
+func (s *tableSource) Read(ctx context.Context, w *Worker, chunk int, emit Emit) error {
+	end := min(s.table.N, (chunk+1)*ChunkRows)
+	for lo := chunk * ChunkRows; lo < end; lo += BatchRows {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		b := s.table.Batch(lo, min(lo+BatchRows, end))
+		w.begin(int64(lo))
+		if err := emit(&b); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// gatherer grows one column out of the active rows of many vectors. Texts of
+// one dictionary keep their codes; a second dictionary is merged into it.
+type gatherer struct {
+	v     column.Vector
+	texts textMerge
+	idx   []int32
+}
+
+func newGatherer(f column.Field) *gatherer {
+	return &gatherer{v: column.Vector{Type: f.Type, Unit: f.Unit}}
+}
+
+// add appends the rows idx of v.
+func (g *gatherer) add(v *column.Vector, idx []int32) {
+	from := g.v.N
+	g.v.N += len(idx)
+	g.addValid(v, idx, from)
+	if v.Type == column.Null {
+		g.addZeros(len(idx))
+		return
+	}
+	if v.Type != g.v.Type {
+		panic(fmt.Sprintf("exec: a %s vector in a %s column", v.Type, g.v.Type))
+	}
+	switch {
+	case v.Type.Counted():
+		for _, i := range idx {
+			g.v.I = append(g.v.I, v.I[i])
+		}
+	case v.Type == column.Real:
+		for _, i := range idx {
+			g.v.F = append(g.v.F, v.F[i])
+		}
+	case v.Type == column.Point:
+		for _, i := range idx {
+			g.v.F = append(g.v.F, v.F[3*i], v.F[3*i+1], v.F[3*i+2])
+		}
+	case v.Type == column.Text:
+		g.v.C = g.texts.add(g.v.C, v, idx)
+		g.v.Dict = g.texts.dict
+	case v.Type == column.Boolean:
+		g.growBits(len(idx))
+		for k, i := range idx {
+			if column.Bit(v.Bits, int(i)) {
+				column.SetBit(g.v.Bits, from+k)
+			}
+		}
+	}
+}
+
+func (g *gatherer) growBits(n int) {
+	for len(g.v.Bits) < column.Words(g.v.N) {
+		g.v.Bits = append(g.v.Bits, 0)
+	}
+}
+
+func (g *gatherer) addZeros(n int) {
+	switch {
+	case g.v.Type.Counted():
+		g.v.I = append(g.v.I, make([]int64, n)...)
+	case g.v.Type == column.Real:
+		g.v.F = append(g.v.F, make([]float64, n)...)
+	case g.v.Type == column.Point:
+		g.v.F = append(g.v.F, make([]float64, 3*n)...)
+	case g.v.Type == column.Text:
+		g.v.C = append(g.v.C, make([]uint32, n)...)
+	case g.v.Type == column.Boolean:
+		g.growBits(n)
+	}
+}
+
+// addValid appends the validity of the rows idx of v behind the first `from`.
+func (g *gatherer) addValid(v *column.Vector, idx []int32, from int) {
+	if g.v.Type == column.Null || len(idx) == 0 {
+		return
+	}
+	if g.v.Valid == nil {
+		if v.Type != column.Null && v.Valid == nil {
+			return
+		}
+		g.v.Valid = column.AllOn(from)
+	}
+	for len(g.v.Valid) < column.Words(g.v.N) {
+		g.v.Valid = append(g.v.Valid, 0)
+	}
+	for k, i := range idx {
+		if !v.IsNull(int(i)) {
+			column.SetBit(g.v.Valid, from+k)
+		}
+	}
+}
+
+// finish is the column. A text column has a dictionary even where it is empty.
+func (g *gatherer) finish() column.Vector {
+	if g.v.Type == column.Text && g.v.Dict == nil {
+		g.v.Dict = &column.Dict{Texts: []string{""}}
+	}
+	return g.v
+}
+
+// textMerge brings texts of several dictionaries into one.
+type textMerge struct {
+	dict  *column.Dict
+	own   bool // dict is ours to grow
+	codes map[string]uint32
+	from  *column.Dict // the dictionary that remap is about
+	remap []uint32     // code + 1, 0: not seen yet
+}
+
+func (m *textMerge) add(to []uint32, v *column.Vector, idx []int32) []uint32 {
+	if m.dict == nil && len(v.Dict.Texts) > 0 {
+		m.dict = v.Dict
+	}
+	if m.dict == v.Dict {
+		for _, i := range idx {
+			to = append(to, v.C[i])
+		}
+		return to
+	}
+	if m.from != v.Dict {
+		m.from = v.Dict
+		m.remap = room(m.remap, len(v.Dict.Texts))
+		clear(m.remap)
+	}
+	for _, i := range idx {
+		if v.IsNull(int(i)) {
+			to = append(to, 0)
+			continue
+		}
+		c := v.C[i]
+		if m.remap[c] == 0 {
+			m.remap[c] = m.code(v.Dict.Texts[c]) + 1
+		}
+		to = append(to, m.remap[c]-1)
+	}
+	return to
+}
+
+// code is the code of a text in a dictionary of our own: the first one was a
+// view of somebody else's and is copied before it grows.
+func (m *textMerge) code(s string) uint32 {
+	if !m.own {
+		var texts []string
+		if m.dict != nil {
+			texts = m.dict.Texts
+		}
+		m.own = true
+		m.dict = &column.Dict{Texts: append(make([]string, 0, 2*len(texts)+16), texts...)}
+		m.codes = make(map[string]uint32, len(texts))
+		for c, t := range texts {
+			m.codes[t] = uint32(c)
+		}
+	}
+	if c, ok := m.codes[s]; ok {
+		return c
+	}
+	c := uint32(len(m.dict.Texts))
+	m.dict.Texts = append(m.dict.Texts, s)
+	m.codes[s] = c
+	return c
+}
+
+// tableBuilder grows a table out of batches.
+type tableBuilder struct {
+	env    *Env
+	schema column.Schema
+	cols   []*gatherer
+	n      int
+	idx    []int32
+}
+
+func newTableBuilder(env *Env, schema column.Schema) *tableBuilder {
+	t := &tableBuilder{env: env, schema: schema, cols: make([]*gatherer, len(schema))}
+	for i, f := range schema {
+		t.cols[i] = newGatherer(f)
+	}
+	return t
+}
+
+// add appends the active rows of columns that are n long.
+func (t *tableBuilder) add(cols []column.Vector, on []uint64, n int) error {
+	t.idx = activeRows(t.idx, on, n)
+	if err := t.addRows(cols, t.idx); err != nil {
+		return err
+	}
+	return t.env.keep(int64(len(t.idx)) * rowBytes(t.schema))
+}
+
+func (t *tableBuilder) addRows(cols []column.Vector, idx []int32) error {
+	if t.n+len(idx) > math.MaxInt32 {
+		return problem.New("too-many-rows", problem.Place{}, "an intermediate result has more than %d rows", math.MaxInt32)
+	}
+	for i, g := range t.cols {
+		g.add(&cols[i], idx)
+	}
+	t.n += len(idx)
+	return nil
+}
+
+// addTable appends a whole table with the same columns, whose rows were counted
+// against the limit of memory when they were gathered.
+func (t *tableBuilder) addTable(from *column.Table) error {
+	if from.N == 0 {
+		return nil
+	}
+	t.idx = activeRows(t.idx, nil, from.N)
+	return t.addRows(from.Cols, t.idx)
+}
+
+// finish is the table. The builder must not be used afterwards.
+func (t *tableBuilder) finish() *column.Table {
+	out := &column.Table{Schema: t.schema, N: t.n, Cols: make([]column.Vector, len(t.cols))}
+	for i, g := range t.cols {
+		out.Cols[i] = g.finish()
+	}
+	return out
+}
+
+// rowBytes is about what a row of the schema takes.
+func rowBytes(schema column.Schema) int64 {
+	bytes := int64(0)
+	for _, f := range schema {
+		switch {
+		case f.Type == column.Point:
+			bytes += 24
+		case f.Type == column.Text:
+			bytes += 4
+		case f.Type == column.Boolean, f.Type == column.Null:
+			bytes++
+		default:
+			bytes += 8
+		}
+	}
+	return bytes
+}
+
+// gatherTable is the rows idx of a table, in that order.
+func gatherTable(t *column.Table, idx []int32) *column.Table {
+	out := &column.Table{Schema: t.Schema, N: len(idx), Cols: make([]column.Vector, len(t.Cols))}
+	for i := range t.Cols {
+		out.Cols[i] = gather(&t.Cols[i], idx)
+	}
+	return out
+}
+
+// collectSink keeps all rows.
+type collectSink struct {
+	env    *Env
+	schema column.Schema
+	all    *tableBuilder
+}
+
+func (s *collectSink) Part(int) Part {
+	return &collectPart{rows: newTableBuilder(s.env, s.schema)}
+}
+
+func (s *collectSink) Merge(p Part) error {
+	rows := p.(*collectPart).rows
+	if s.all == nil {
+		s.all = rows
+		return nil
+	}
+	return s.all.addTable(rows.finish())
+}
+
+func (s *collectSink) Finish(context.Context) (Source, error) {
+	if s.all == nil {
+		s.all = newTableBuilder(s.env, s.schema)
+	}
+	return &tableSource{s.all.finish()}, nil
+}
+
+type collectPart struct {
+	rows *tableBuilder
+}
+
+func (p *collectPart) Consume(_ *Worker, b *column.Batch) error {
+	return p.rows.add(b.Cols, b.On, b.N)
+}

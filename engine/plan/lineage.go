@@ -1,0 +1,278 @@
+package plan
+
+import (
+	"strings"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+)
+
+// Origin says from which column of which relation a column comes unchanged.
+// The zero Origin says that it comes from elsewhere or was computed on the way.
+type Origin struct {
+	Relation *Relation
+	Column   int // of Bound.Columns
+}
+
+// Lineage gives the origin of each column of a node: through filters, sorts,
+// joins, keys of groups and projections that simply read columns, which views
+// and subqueries are made of.
+func Lineage(n Node) []Origin {
+	switch n := n.(type) {
+	case *Relation:
+		origins := make([]Origin, len(n.Bound.Columns))
+		for i := range origins {
+			origins[i] = Origin{n, i}
+		}
+		return origins
+	case *Filter, *Sort, *Limit, *Distinct:
+		return Lineage(n.Inputs()[0])
+	case *Project:
+		return through(Lineage(n.Input), n.Exprs, len(n.Exprs))
+	case *Aggregate:
+		return through(Lineage(n.Input), n.Keys, len(n.Keys)+len(n.Calls))
+	case *Join:
+		return append(append([]Origin(nil), Lineage(n.Left)...), Lineage(n.Right)...)
+	}
+	return make([]Origin, len(n.Schema()))
+}
+
+// through is the origins of the first columns where they simply read input
+// columns; there are n columns.
+func through(input []Origin, list []expr.Expr, n int) []Origin {
+	origins := make([]Origin, n)
+	for i, e := range list {
+		if c, ok := expr.AsColumn(e); ok {
+			origins[i] = input[c]
+		}
+	}
+	return origins
+}
+
+// extensive reports whether the column adds up over the cells of a partition.
+func (o Origin) extensive() bool {
+	return o.Relation != nil && o.Relation.Bound.Columns[o.Column].Extensive
+}
+
+// isEach reports whether the column is one of FOR EACH.
+func (o Origin) isEach() bool {
+	if o.Relation == nil {
+		return false
+	}
+	b := o.Relation.Bound
+	for _, c := range b.Clauses.Each {
+		if b.Columns[o.Column].Site == c {
+			return true
+		}
+	}
+	return false
+}
+
+// reads is the origins of the columns that an expression reads.
+func reads(e expr.Expr, input []Origin) []Origin {
+	if e == nil {
+		return nil
+	}
+	used := make([]bool, len(input))
+	expr.Columns(e, used)
+	var origins []Origin
+	for c, u := range used {
+		if u {
+			origins = append(origins, input[c])
+		}
+	}
+	return origins
+}
+
+// Removal is a step that may leave out cells whose space an aggregate then
+// misses: a *Filter straight above a relation, or a *Relation with Wanted.
+// Parted is the part of its condition that speaks of the columns of FOR EACH
+// alone: it leaves out whole partitions and tears no hole into one.
+type Removal struct {
+	Step     Node
+	Relation *Relation
+	Parted   expr.Expr // over the same columns as the condition, nil: TRUE
+}
+
+// Removals are the steps below an aggregate that may leave out cells from its
+// weights and sums.
+func Removals(n *Aggregate) []Removal {
+	input := Lineage(n.Input)
+	var found []Removal
+	seen := map[*Relation]bool{}
+	for i := range n.Calls {
+		c := &n.Calls[i]
+		used := reads(c.Weight, input)
+		if isSum(c) {
+			used = append(used, reads(c.Args[0], input)...)
+		}
+		for _, o := range used {
+			if o.extensive() && !seen[o.Relation] {
+				seen[o.Relation] = true
+				found = append(found, removalsAbove(n.Input, o.Relation)...)
+			}
+		}
+	}
+	return found
+}
+
+func isSum(c *Call) bool { return c.Fn.Name == "SUM" && len(c.Args) == 1 }
+
+// removalsAbove looks for the filters between n and the relation r. Above a
+// join a row is no longer a cell, so only those below every join count.
+func removalsAbove(n Node, r *Relation) []Removal {
+	switch n := n.(type) {
+	case *Relation:
+		if n == r && n.Wanted != nil {
+			return appendRemoval(nil, n, r, n.Wanted, siteOrigins(n))
+		}
+		return nil
+	case *Join:
+		return append(removalsAbove(n.Left, r), removalsAbove(n.Right, r)...)
+	case *Filter:
+		found := removalsAbove(n.Input, r)
+		if n.Clause == "WHERE" && cellsOf(n.Input) == r {
+			found = appendRemoval(found, n, r, n.Cond, Lineage(n.Input))
+		}
+		return found
+	case *Aggregate, *Union:
+		return nil
+	}
+	var found []Removal
+	for _, in := range n.Inputs() {
+		found = append(found, removalsAbove(in, r)...)
+	}
+	return found
+}
+
+// cellsOf is the relation whose rows are those of n, less some.
+func cellsOf(n Node) *Relation {
+	switch n := n.(type) {
+	case *Relation:
+		return n
+	case *Filter:
+		return cellsOf(n.Input)
+	case *Project:
+		return cellsOf(n.Input)
+	case *Sort:
+		return cellsOf(n.Input)
+	}
+	return nil
+}
+
+// siteOrigins is the lineage of the columns of a relation's input, as far as
+// the relation shows them.
+func siteOrigins(r *Relation) []Origin {
+	origins := make([]Origin, len(r.Bound.Input))
+	for i, c := range r.Bound.Columns {
+		if c.Site >= 0 {
+			origins[c.Site] = Origin{r, i}
+		}
+	}
+	return origins
+}
+
+func appendRemoval(found []Removal, step Node, r *Relation, cond expr.Expr, input []Origin) []Removal {
+	var parted []expr.Expr
+	conds := expr.Conjuncts(cond)
+next:
+	for _, c := range conds {
+		used := reads(c, input)
+		for _, o := range used {
+			if !o.isEach() {
+				continue next
+			}
+		}
+		parted = append(parted, c)
+	}
+	if len(parted) == len(conds) {
+		return found
+	}
+	return append(found, Removal{step, r, expr.AndAll(parted)})
+}
+
+// CellSum is a SUM of measures that would count a cell twice where two rows of
+// a group are the same cell.
+type CellSum struct {
+	Call     int
+	Relation *Relation
+	// Identity are the columns of the aggregate's input that tell which cell a
+	// row is (of whatever partition); nil where they do not reach it.
+	Identity []int
+}
+
+// CellSums are the sums of an aggregate that may count cells twice: those of
+// extensive columns of a relation with FOR EACH or behind a join.
+func CellSums(n *Aggregate) []CellSum {
+	input := Lineage(n.Input)
+	var found []CellSum
+	for i := range n.Calls {
+		c := &n.Calls[i]
+		if !isSum(c) || c.Weight != nil || c.Distinct {
+			continue
+		}
+		r := measuresOnly(reads(c.Args[0], input))
+		if r == nil || len(r.Bound.Clauses.Each) == 0 && cellsOf(n.Input) == r {
+			continue
+		}
+		found = append(found, CellSum{i, r, identity(r, input)})
+	}
+	return found
+}
+
+// measuresOnly is the one relation all of whose given columns it computes, at
+// least one of them extensive: a product with anything else (hours, a share) is
+// no longer a plain sum over space.
+func measuresOnly(used []Origin) *Relation {
+	var r *Relation
+	any := false
+	for _, o := range used {
+		if o.Relation == nil || r != nil && o.Relation != r || o.Relation.Bound.Columns[o.Column].Measures == 0 {
+			return nil
+		}
+		r = o.Relation
+		any = any || o.extensive()
+	}
+	if !any {
+		return nil
+	}
+	return r
+}
+
+// identity finds the columns that tell cells apart: the site's identifier, or
+// the two of a contact.
+func identity(r *Relation, input []Origin) []int {
+	var want []int
+	for i, c := range r.Bound.Columns {
+		if c.Site == r.Bound.ID && c.Site >= 0 {
+			want = []int{i}
+			break
+		}
+		if c.Site < 0 && c.Measures == 0 && (strings.EqualFold(c.Name, "a") || strings.EqualFold(c.Name, "b")) {
+			want = append(want, i)
+		}
+	}
+	var found []int
+	for _, w := range want {
+		for c, o := range input {
+			if o == (Origin{r, w}) {
+				found = append(found, c)
+				break
+			}
+		}
+	}
+	if len(found) < len(want) {
+		return nil
+	}
+	return found
+}
+
+// idColumn is the first column named id, -1 where there is none.
+func idColumn(schema column.Schema) int {
+	for i, f := range schema {
+		if strings.EqualFold(f.Name, "id") {
+			return i
+		}
+	}
+	return -1
+}
