@@ -47,7 +47,7 @@ func NewBox(a, b Vec) (*Box, error) {
 		size = max(size, -c[0], c[1])
 	}
 	for i, d := range []float64{hi.X - lo.X, hi.Y - lo.Y, hi.Z - lo.Z} {
-		if !(d > 4*snapFactor*size) {
+		if !(d > 32*snapFactor*size) {
 			e := fault(NoExtent, -1)
 			e.Axis = i
 			return nil, e
@@ -63,3 +63,8 @@ func NewBox(a, b Vec) (*Box, error) {
 	}
 	return &Box{*x}, nil
 }
+
+var (
+	_ Solid = (*Box)(nil)
+	_ Solid = (*Prism)(nil)
+)

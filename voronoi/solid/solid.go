@@ -107,8 +107,11 @@ type Measures struct {
 	WallFaces int       // walls with area in the cell
 	Contacts  []float64 // per face of c: the area inside the solid where the label is >= 0, else 0
 	Farthest  float64   // from the site to the farthest point
-	Empty     bool      // nothing of the cell lies in the solid (set whatever is wanted)
-	Clipped   bool      // a wall of the solid bounds the cell
+	// Empty tells that nothing of the cell lies in the solid, or no more than a layer on
+	// a wall as thin as rounding, of which only Volume and First are reported. It is set
+	// whatever is wanted.
+	Empty   bool
+	Clipped bool // a wall of the solid bounds the cell
 	// Reentrant tells that the part of the cell in the solid is not convex, so that
 	// it has no simple counts of faces, edges and vertices.
 	Reentrant bool
