@@ -3,6 +3,7 @@ package exec
 import (
 	"context"
 	"errors"
+	"math"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
@@ -50,7 +51,7 @@ func (r *runner) openBuild(ctx context.Context, n *plan.Join) (*buildSide, error
 	}
 	side := &buildSide{table: table}
 	if len(at) > 0 {
-		err = side.index(r.env, at)
+		err = side.index(r.env, at, n.LeftKeys)
 	}
 	side.table = &column.Table{Schema: schema, Cols: table.Cols[:len(schema)], N: table.N}
 	return side, err
@@ -58,10 +59,13 @@ func (r *runner) openBuild(ctx context.Context, n *plan.Join) (*buildSide, error
 
 // index groups the rows by the key columns at; rows with a NULL key match
 // nothing and are in no group.
-func (s *buildSide) index(env *Env, at []int) error {
+func (s *buildSide) index(env *Env, at []int, left []expr.Expr) error {
 	types := make([]column.Type, len(at))
 	for i, c := range at {
-		types[i] = s.table.Cols[c].Type
+		types[i] = s.table.Schema[c].Type
+		if left[i].Type() == column.Integer {
+			types[i] = column.Integer
+		}
 	}
 	s.keys = newKeyTable(types)
 	reader := newKeyReader(s.keys)
@@ -73,7 +77,7 @@ func (s *buildSide) index(env *Env, at []int) error {
 		mask := on[:column.Words(b.N)]
 		column.FillOn(mask, b.N)
 		for i, c := range at {
-			cols[i] = b.Cols[c]
+			cols[i] = keyColumn(&b.Cols[c], types[i])
 			maskPresent(mask, &cols[i])
 		}
 		for i := range b.N {
@@ -83,6 +87,24 @@ func (s *buildSide) index(env *Env, at []int) error {
 	}
 	s.group(keyOf)
 	return env.keep(int64(len(keyOf))*8 + int64(len(s.keys.words))*8)
+}
+
+// keyColumn is a key as the type of the table's keys. Where an INTEGER meets a
+// REAL the keys are integers: a REAL that is none equals no INTEGER and becomes
+// NULL, so that nothing is lost beyond 2^53.
+func keyColumn(v *column.Vector, t column.Type) column.Vector {
+	if v.Type != column.Real || t != column.Integer {
+		return *v
+	}
+	out := column.New(t, nil, v.N)
+	for i, f := range v.F[:v.N] {
+		if whole := math.Trunc(f); v.IsNull(i) || whole != f || f < -1<<63 || f >= 1<<63 {
+			out.SetNull(i)
+		} else {
+			out.I[i] = int64(f)
+		}
+	}
+	return out
 }
 
 // maskPresent clears the rows where v is NULL.
@@ -176,6 +198,9 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 		cols, err := s.leftScope.evalAll(w, l.keyCols, s.leftKeys, b, b.On)
 		if err != nil {
 			return err
+		}
+		for i := range cols {
+			cols[i] = keyColumn(&cols[i], s.right.keys.types[i])
 		}
 		l.keyCols = cols
 		l.keys = room(l.keys, b.N)

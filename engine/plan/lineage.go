@@ -1,6 +1,7 @@
 package plan
 
 import (
+	"slices"
 	"strings"
 
 	"nearcell/catalog/column"
@@ -178,6 +179,9 @@ func appendRemoval(found []Removal, step Node, r *Relation, cond expr.Expr, inpu
 next:
 	for _, c := range conds {
 		used := reads(c, input)
+		if c.CanFail() {
+			continue
+		}
 		for _, o := range used {
 			if !o.isEach() {
 				continue next
@@ -220,21 +224,16 @@ func CellSums(n *Aggregate) []CellSum {
 	return found
 }
 
-// measuresOnly is the one relation all of whose given columns it computes, at
-// least one of them extensive: a product with anything else (hours, a share) is
-// no longer a plain sum over space.
+// measuresOnly is the one relation whose extensive columns, and no others, are
+// given: a product with anything else (hours, a share) is no longer a plain sum
+// over space.
 func measuresOnly(used []Origin) *Relation {
 	var r *Relation
-	any := false
 	for _, o := range used {
-		if o.Relation == nil || r != nil && o.Relation != r || o.Relation.Bound.Columns[o.Column].Measures == 0 {
+		if !o.extensive() || r != nil && o.Relation != r {
 			return nil
 		}
 		r = o.Relation
-		any = any || o.extensive()
-	}
-	if !any {
-		return nil
 	}
 	return r
 }
@@ -242,26 +241,24 @@ func measuresOnly(used []Origin) *Relation {
 // identity finds the columns that tell cells apart: the site's identifier, or
 // the two of a contact.
 func identity(r *Relation, input []Origin) []int {
+	b := r.Bound
 	var want []int
-	for i, c := range r.Bound.Columns {
-		if c.Site == r.Bound.ID && c.Site >= 0 {
-			want = []int{i}
-			break
-		}
-		if c.Site < 0 && c.Measures == 0 && (strings.EqualFold(c.Name, "a") || strings.EqualFold(c.Name, "b")) {
+	for i, c := range b.Columns {
+		if b.Def.Own {
+			if c.Site == b.ID {
+				want = append(want, i)
+			}
+		} else if o := (Origin{r, i}); c.Measures == 0 && c.Power == 0 && !o.extensive() && !o.isEach() {
 			want = append(want, i)
 		}
 	}
 	var found []int
 	for _, w := range want {
-		for c, o := range input {
-			if o == (Origin{r, w}) {
-				found = append(found, c)
-				break
-			}
+		if c := slices.Index(input, Origin{r, w}); c >= 0 {
+			found = append(found, c)
 		}
 	}
-	if len(found) < len(want) {
+	if len(found) < len(want) || len(want) == 0 {
 		return nil
 	}
 	return found

@@ -2,6 +2,7 @@ package plan
 
 import (
 	"nearcell/catalog/column"
+	"nearcell/engine/expr"
 )
 
 // Schema of a single row without columns is empty.
@@ -145,4 +146,70 @@ func rewrite(n Node, f func(Node) (Node, error)) (Node, error) {
 		n = withInputs(n, out)
 	}
 	return f(n)
+}
+
+// mapExprs is a copy of n with f applied to each of its own expressions, which
+// keep their types. A node without expressions is given back as it is.
+func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
+	list := func(in []expr.Expr) []expr.Expr {
+		out := make([]expr.Expr, len(in))
+		for i, e := range in {
+			out[i] = f(e)
+		}
+		return out
+	}
+	maybe := func(e expr.Expr) expr.Expr {
+		if e == nil {
+			return nil
+		}
+		return f(e)
+	}
+	keys := func(in []SortKey) []SortKey {
+		out := append([]SortKey(nil), in...)
+		for i := range out {
+			out[i].Expr = f(out[i].Expr)
+		}
+		return out
+	}
+	switch n := n.(type) {
+	case *Values:
+		c := *n
+		c.Rows = make([][]expr.Expr, len(n.Rows))
+		for i, row := range n.Rows {
+			c.Rows[i] = list(row)
+		}
+		return &c
+	case *Relation:
+		c := *n
+		c.Wanted = maybe(n.Wanted)
+		return &c
+	case *Filter:
+		c := *n
+		c.Cond = f(n.Cond)
+		return &c
+	case *Project:
+		c := *n
+		c.Exprs = list(n.Exprs)
+		return &c
+	case *Aggregate:
+		c := *n
+		c.Keys = list(n.Keys)
+		c.Calls = append([]Call(nil), n.Calls...)
+		for i := range c.Calls {
+			call := &c.Calls[i]
+			call.Args = list(call.Args)
+			call.Filter, call.Weight = maybe(call.Filter), maybe(call.Weight)
+			call.OrderBy = keys(call.OrderBy)
+		}
+		return &c
+	case *Join:
+		c := *n
+		c.LeftKeys, c.RightKeys, c.Rest = list(n.LeftKeys), list(n.RightKeys), maybe(n.Rest)
+		return &c
+	case *Sort:
+		c := *n
+		c.Keys = keys(n.Keys)
+		return &c
+	}
+	return n
 }

@@ -1,0 +1,294 @@
+package plan
+
+import (
+	"slices"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/problem"
+)
+
+// prune drops the columns that nobody reads, down to the scans and to what a
+// relation computes. Rows are never dropped with them, and no step but Distinct
+// looks at more than what its expressions read. Columns named id stay where
+// they are at hand and an expression may fail or be weighted, so that its row
+// can be named.
+func prune(n Node) (Node, error) {
+	out, _ := pruned(n, slices.Repeat([]bool{true}, len(n.Schema())))
+	return out, nil
+}
+
+// pruned gives a node with at least the needed columns of n, in their order,
+// and where each column of n is now, -1 where it is gone.
+func pruned(n Node, need []bool) (Node, []int) {
+	switch n := n.(type) {
+	case *Values:
+		return prunedValues(n, need)
+	case *Scan:
+		return prunedScan(n, need)
+	case *Relation:
+		return prunedRelation(n, need)
+	case *Filter:
+		need = slices.Clone(need)
+		mark(need, n.Schema(), n.Cond)
+		in, to := pruned(n.Input, need)
+		return &Filter{in, expr.Remap(n.Cond, to), n.Clause}, to
+	case *Project:
+		return prunedProject(n, need)
+	case *Aggregate:
+		return prunedAggregate(n, need)
+	case *Join:
+		return prunedJoin(n, need)
+	case *Sort:
+		need = slices.Clone(need)
+		for _, k := range n.Keys {
+			mark(need, n.Schema(), k.Expr)
+		}
+		in, to := pruned(n.Input, need)
+		return &Sort{in, remapKeys(n.Keys, to), n.Top}, to
+	case *Limit:
+		in, to := pruned(n.Input, need)
+		return &Limit{in, n.Count, n.Offset}, to
+	case *Distinct:
+		in, to := pruned(n.Input, slices.Repeat([]bool{true}, len(need)))
+		return &Distinct{in}, to
+	case *Union:
+		return prunedUnion(n, need)
+	}
+	return n, numbered(need)
+}
+
+// numbered gives the needed columns their numbers, in order.
+func numbered(need []bool) []int {
+	to := make([]int, len(need))
+	next := 0
+	for i, keep := range need {
+		to[i] = -1
+		if keep {
+			to[i] = next
+			next++
+		}
+	}
+	return to
+}
+
+// kept is the elements of list that are needed.
+func kept[T any](list []T, need []bool) []T {
+	var out []T
+	for i, keep := range need {
+		if keep {
+			out = append(out, list[i])
+		}
+	}
+	return out
+}
+
+// mark needs the columns that e reads, and the id where e may fail.
+func mark(need []bool, schema column.Schema, e expr.Expr) {
+	if e == nil {
+		return
+	}
+	expr.Columns(e, need)
+	if e.CanFail() {
+		markID(need, schema)
+	}
+}
+
+func markID(need []bool, schema column.Schema) {
+	if id := idColumn(schema); id >= 0 {
+		need[id] = true
+	}
+}
+
+func remapAll(list []expr.Expr, to []int) []expr.Expr {
+	out := make([]expr.Expr, len(list))
+	for i, e := range list {
+		out[i] = expr.Remap(e, to)
+	}
+	return out
+}
+
+func remapKeys(keys []SortKey, to []int) []SortKey {
+	out := slices.Clone(keys)
+	for i := range out {
+		out[i].Expr = expr.Remap(out[i].Expr, to)
+	}
+	return out
+}
+
+func prunedValues(n *Values, need []bool) (Node, []int) {
+	c := &Values{Fields: kept(n.Fields, need), Rows: make([][]expr.Expr, len(n.Rows))}
+	for i, row := range n.Rows {
+		c.Rows[i] = kept(row, need)
+	}
+	return c, numbered(need)
+}
+
+func prunedScan(n *Scan, need []bool) (Node, []int) {
+	c := *n
+	c.Use, c.Fields = kept(n.Use, need), kept(n.Fields, need)
+	return &c, numbered(need)
+}
+
+func prunedProject(n *Project, need []bool) (Node, []int) {
+	c := *n
+	c.Exprs, c.Fields = kept(n.Exprs, need), kept(n.Fields, need)
+	schema := n.Input.Schema()
+	below := make([]bool, len(schema))
+	for _, e := range c.Exprs {
+		mark(below, schema, e)
+	}
+	in, to := pruned(n.Input, below)
+	c.Input, c.Exprs = in, remapAll(c.Exprs, to)
+	return &c, numbered(need)
+}
+
+func prunedAggregate(n *Aggregate, need []bool) (Node, []int) {
+	need = slices.Clone(need)
+	for i := range n.Keys {
+		need[i] = true // the keys make the groups
+	}
+	c := *n
+	c.Fields = kept(n.Fields, need)
+	c.Calls = slices.Clone(kept(n.Calls, need[len(n.Keys):]))
+	schema := n.Input.Schema()
+	below := make([]bool, len(schema))
+	for _, k := range c.Keys {
+		mark(below, schema, k)
+	}
+	for i := range c.Calls {
+		markCall(below, schema, &c.Calls[i])
+	}
+	for _, s := range CellSums(&c) {
+		for _, at := range s.Identity {
+			below[at] = true
+		}
+	}
+	in, to := pruned(n.Input, below)
+	c.Input, c.Keys = in, remapAll(n.Keys, to)
+	for i := range c.Calls {
+		call := &c.Calls[i]
+		call.Args = remapAll(call.Args, to)
+		call.Filter, call.Weight = expr.Remap(call.Filter, to), expr.Remap(call.Weight, to)
+		call.OrderBy = remapKeys(call.OrderBy, to)
+	}
+	return &c, numbered(need)
+}
+
+func markCall(below []bool, schema column.Schema, c *Call) {
+	for _, a := range c.Args {
+		mark(below, schema, a)
+	}
+	mark(below, schema, c.Filter)
+	mark(below, schema, c.Weight)
+	for _, k := range c.OrderBy {
+		mark(below, schema, k.Expr)
+	}
+	if c.Weight != nil {
+		markID(below, schema) // of the largest weight, and of one that is none
+	}
+}
+
+func prunedJoin(n *Join, need []bool) (Node, []int) {
+	need = slices.Clone(need)
+	mark(need, n.Schema(), n.Rest)
+	split := len(n.Left.Schema())
+	left, right := need[:split], need[split:]
+	for i := range n.LeftKeys {
+		mark(left, n.Left.Schema(), n.LeftKeys[i])
+		mark(right, n.Right.Schema(), n.RightKeys[i])
+	}
+	c := *n
+	var toLeft, toRight []int
+	c.Left, toLeft = pruned(n.Left, left)
+	c.Right, toRight = pruned(n.Right, right)
+	c.LeftKeys, c.RightKeys = remapAll(n.LeftKeys, toLeft), remapAll(n.RightKeys, toRight)
+	to := slices.Clone(toLeft)
+	shift := len(c.Left.Schema())
+	for _, t := range toRight {
+		if t >= 0 {
+			t += shift
+		}
+		to = append(to, t)
+	}
+	c.Rest = expr.Remap(n.Rest, to)
+	return &c, to
+}
+
+// prunedUnion brings all parts to the same columns, which they may have pruned
+// to in different ways.
+func prunedUnion(n *Union, need []bool) (Node, []int) {
+	c := &Union{Parts: make([]Node, len(n.Parts)), Fields: kept(n.Fields, need)}
+	for i, p := range n.Parts {
+		in, to := pruned(p, need)
+		c.Parts[i] = exactly(in, to, need)
+	}
+	return c, numbered(need)
+}
+
+// exactly is a node with just the needed columns.
+func exactly(n Node, to []int, need []bool) Node {
+	schema := n.Schema()
+	want := kept(to, need)
+	if len(want) == len(schema) && slices.IsSorted(want) {
+		return n
+	}
+	p := &Project{Input: n}
+	for _, c := range want {
+		p.Exprs = append(p.Exprs, expr.NewColumn(c, schema[c], problem.Place{}))
+		p.Fields = append(p.Fields, schema[c])
+	}
+	return p
+}
+
+// prunedRelation asks the relation for the needed columns alone, and its input
+// for what these, the partition and the choice of sites rest on. Sites' own
+// columns that nobody needs leave the relation's columns; computed ones keep
+// their place and are only marked.
+func prunedRelation(n *Relation, need []bool) (Node, []int) {
+	b := *n.Bound
+	below := make([]bool, len(b.Input))
+	for _, c := range [...]int{b.ID, b.X, b.Y, b.Z} {
+		below[c] = true
+	}
+	for _, c := range b.Clauses.Each {
+		below[c] = true
+	}
+	mark(below, b.Input, n.Wanted)
+	own := 0
+	if b.Def.Own {
+		own = len(b.Input) // column i of the relation is column i of the input
+	}
+	for i, c := range b.Columns {
+		switch {
+		case !need[i]:
+		case i < own:
+			below[i] = true
+		case c.Site >= 0:
+			below[c.Site] = true
+		}
+	}
+	in, to := pruned(n.Input, below)
+	stay := slices.Repeat([]bool{true}, len(need))
+	left := make([]bool, len(to))
+	for i, t := range to {
+		left[i] = t >= 0
+	}
+	copy(stay[:own], left) // own columns are those of the input, one by one
+	b.Input = kept(b.Input, left)
+	b.ID, b.X, b.Y, b.Z = to[b.ID], to[b.X], to[b.Y], to[b.Z]
+	b.Clauses.Each = slices.Clone(b.Clauses.Each)
+	for i, c := range b.Clauses.Each {
+		b.Clauses.Each[i] = to[c]
+	}
+	b.Columns = slices.Clone(kept(n.Bound.Columns, stay))
+	for i := range b.Columns {
+		if c := &b.Columns[i]; c.Site >= 0 {
+			c.Site = to[c.Site]
+		}
+	}
+	c := *n
+	c.Bound, c.Input, c.Need = &b, in, kept(need, stay)
+	c.Wanted = expr.Remap(n.Wanted, to)
+	return &c, numbered(stay)
+}
