@@ -1,0 +1,194 @@
+package bind
+
+import (
+	"errors"
+	"slices"
+	"strings"
+
+	"nearcell/catalog"
+	"nearcell/engine/plan"
+	"nearcell/engine/problem"
+	"nearcell/engine/relation"
+	"nearcell/lang"
+)
+
+// from binds the sources of FROM, comma by comma.
+func (b *binder) from(sources []lang.Source) (bound, error) {
+	if len(sources) == 0 {
+		return bound{&plan.One{}, &scope{}}, nil
+	}
+	all, err := b.fromSource(sources[0])
+	if err != nil {
+		return bound{}, err
+	}
+	for _, s := range sources[1:] {
+		next, err := b.fromSource(s)
+		if err != nil {
+			return bound{}, err
+		}
+		if err := b.clash(all.scope, next.scope, s); err != nil {
+			return bound{}, err
+		}
+		all = bound{&plan.Join{Kind: plan.Inner, Left: all.node, Right: next.node}, all.scope.beside(next.scope)}
+	}
+	return all, nil
+}
+
+// clash refuses two sources under one name.
+func (b *binder) clash(left, right *scope, n lang.Node) error {
+	for _, l := range left.sources {
+		for _, r := range right.sources {
+			if l.alias != "" && lang.Fold(l.alias) == lang.Fold(r.alias) {
+				return problem.New("same-name", b.at(n), "two sources are called '%s'", r.alias).
+					WithHint("give one of them another name: %s AS other", r.what)
+			}
+		}
+	}
+	return nil
+}
+
+func (b *binder) fromSource(s lang.Source) (bound, error) {
+	var x bound
+	var err error
+	switch s := s.(type) {
+	case *lang.NameSource:
+		x, err = b.named(&s.Name)
+	case *lang.QuerySource:
+		x, err = b.subquery(s.Query)
+	case *lang.RelationSource:
+		x, err = b.relation(s.Relation)
+	case *lang.JoinSource:
+		x, err = b.join(s)
+	default:
+		return bound{}, problem.New("failed", b.at(s), "a source of an unknown kind")
+	}
+	if err != nil {
+		return bound{}, err
+	}
+	x.scope, err = x.scope.renamed(b, s.Aliasing())
+	return x, err
+}
+
+// subquery binds a query in parentheses as a source without a name.
+func (b *binder) subquery(q *lang.Query) (bound, error) {
+	node, err := b.query(q)
+	if err != nil {
+		return bound{}, err
+	}
+	return bound{node, newScope("", "(query)", node.Schema())}, nil
+}
+
+// named binds a name after FROM or OF: of WITH, else of the catalog.
+func (b *binder) named(n *lang.Name) (bound, error) {
+	if c := b.findCTE(n); c != nil {
+		return b.bindCTE(c)
+	}
+	o, err := b.object(n)
+	if err != nil {
+		return bound{}, err
+	}
+	switch o.Kind {
+	case catalog.Campaign, catalog.Table:
+		return bound{scan(o), newScope(o.Name, o.Name, o.Table.Schema)}, nil
+	case catalog.View:
+		return b.view(n, o)
+	case catalog.Solid:
+		return bound{}, problem.New("wrong-kind", b.at(n), "'%s' is a solid, not a campaign, a table or a view", n.Text).
+			WithHint("a solid stands after WITHIN")
+	}
+	return bound{}, problem.New("wrong-kind", b.at(n), "'%s' is a %s and has no rows", n.Text, strings.ToLower(o.Kind.String()))
+}
+
+func scan(o *catalog.Object) *plan.Scan {
+	use := make([]int, len(o.Table.Schema))
+	for i := range use {
+		use[i] = i
+	}
+	return &plan.Scan{Name: o.Name, Kind: strings.ToLower(o.Kind.String()), Table: o.Table, Use: use, Fields: o.Table.Schema}
+}
+
+func (b *binder) findCTE(n *lang.Name) *cte {
+	for c := b.ctes; c != nil; c = c.before {
+		if c.def.Name.Key() == n.Key() {
+			return c
+		}
+	}
+	return nil
+}
+
+// bindCTE binds the query of a name of WITH for one use of it.
+func (b *binder) bindCTE(c *cte) (bound, error) {
+	inner := *b
+	inner.ctes = c.before
+	node, err := inner.query(c.def.Query)
+	if err != nil {
+		return bound{}, err
+	}
+	name := c.def.Name.Text
+	s := newScope(name, name, node.Schema())
+	if len(c.def.Columns) > 0 {
+		err = s.rename(b, c.def.Columns)
+	}
+	return bound{node, s}, err
+}
+
+// object finds a name in the catalog.
+func (b *binder) object(n *lang.Name) (*catalog.Object, error) {
+	o, err := b.env.Catalog.Get(n.Key())
+	if err == nil {
+		return o, nil
+	}
+	var none *catalog.ErrNoSuch
+	if !errors.As(err, &none) {
+		return nil, problem.At(err, b.at(n))
+	}
+	if n.Is("VERDICTS") {
+		return nil, b.notYet(n, "VERDICTS")
+	}
+	p := problem.New("no-object", b.at(n), "there is no campaign, table or view '%s'", n.Text)
+	didYouMean(p, n.Text, b.objectNames(catalog.Campaign, catalog.Table, catalog.View))
+	if _, ok := relation.Lookup(n.Text); ok && p.Hint == "" {
+		p.WithHint("a relation is made of sites: %s OF campaign", strings.ToUpper(n.Text))
+	}
+	if p.Hint == "" && len(b.objectNames()) == 0 {
+		p.WithHint("the catalog is empty: CREATE CAMPAIGN %s FROM 'file.csv';", n.Text)
+	}
+	return nil, p
+}
+
+// objectNames are the names in the catalog of the given kinds (none: all), and
+// of WITH.
+func (b *binder) objectNames(kinds ...catalog.Kind) []string {
+	var names []string
+	for c := b.ctes; c != nil; c = c.before {
+		names = append(names, c.def.Name.Text)
+	}
+	list, err := b.env.Catalog.List(kinds...)
+	if err != nil {
+		return names // only a hint is lost
+	}
+	for _, o := range list {
+		names = append(names, o.Name)
+	}
+	return names
+}
+
+// view binds a view where it is used: its text is read anew, so that the values
+// of :name are those of the statement.
+func (b *binder) view(n *lang.Name, o *catalog.Object) (bound, error) {
+	if slices.Contains(b.views, o.Key) {
+		return bound{}, problem.New("view-cycle", b.at(n), "the view '%s' uses itself: %s", o.Name,
+			strings.Join(append(slices.Clone(b.views), o.Key), " uses "))
+	}
+	inner := &binder{env: b.env, views: append(slices.Clone(b.views), o.Key),
+		source: &problem.Source{Name: "view " + o.Name, Text: o.Text}}
+	q, err := inner.parseQuery(o.Text)
+	if err != nil {
+		return bound{}, err
+	}
+	node, err := inner.query(q)
+	if err != nil {
+		return bound{}, err
+	}
+	return bound{node, newScope(o.Name, o.Name, node.Schema())}, nil
+}

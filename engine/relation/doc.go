@@ -1,0 +1,57 @@
+// Package relation has one file for each geometric relation: its columns, its
+// clauses, its cost and its rows; and the one idea behind FOR EACH, zones and
+// duplicates: rows of the input that share one diagram.
+//
+// # Model
+//
+// The registry (Lookup, All) holds a Definition for each relation; DESCRIBE,
+// HELP and completion read the same lines. Binding fills a Bound: which columns
+// of the input are identifier and position, which clauses hold, which columns
+// the rows have. Open arranges the rows of the input into parts, one for each
+// value of FOR EACH. Run asks the store for the diagram of each part, measures
+// the cells that are shown, and emits rows in batches.
+//
+//	input rows -> admit -> parts -> duplicates -> diagrams -> cells -> batches
+//
+// A part's sites stand in the order of their identifiers: INTEGER by value,
+// TEXT by code points. Rows come out in the order of the values of FOR EACH,
+// then of the identifiers. So neither the order of the input nor the number of
+// threads changes a bit of the answer.
+//
+// A Request says which columns are needed and which rows are shown; it never
+// says which sites partition. Rows that are not shown cost nothing.
+//
+// A new relation is one file and one registry line.
+//
+// # Laws
+//
+//  1. The volumes of the rows of a part add up to the volume of the solid,
+//     duplicates or not (SPLIT shares the cell among them).
+//  2. Contacts are symmetric: (a, b) and (b, a) have equal areas.
+//  3. Any order of the input's rows gives the same batches.
+//  4. Parts with equal places share one computation.
+//  5. What is shown never changes what is computed for it.
+//
+// # Degenerate inputs
+//
+// An identifier that is NULL or stands twice in a part, a coordinate that is
+// NULL or infinite are errors that name the site. Rows without a value of FOR
+// EACH are left out with a note. Sites outside the solid by more than the
+// tolerance are left out of the partition, have no row and are named in a note;
+// if none is left, the space of the solid would be nobody's, and that is an
+// error. Without a solid, cells may be unbounded: their volume, area and
+// farthest are Infinity, their centroid NULL, with a note.
+//
+// FOR EACH over stamps of which half the partitions hold less than half of the
+// sites is refused: such stamps were never common to the sites.
+//
+// # Exact and rounded
+//
+// Which rows share a part, a place or a cell is decided exactly. Measures are
+// those of package voronoi; shares of them are one more rounding.
+//
+// # Limitations
+//
+// Zones (WITHIN (a, b)), MEASURED IN, STRETCHED and UNCERTAINTY are not there
+// yet. The whole input is held in memory.
+package relation
