@@ -67,11 +67,10 @@ type Cell struct {
 	of     []int32 // cut behind face i
 	seen   []bool  // scratch, by half-edge
 
-	surveyed bool      // area, crumb, surface, reach and open describe the present surface
+	surveyed bool      // area, least, surface, rim and open describe the present surface
 	area     []float64 // of face i
-	crumb    float64   // faces with less area than this are artefacts of rounding
+	least    []float64 // face i counts only with more area than this
 	surface  float64   // of the faces that do not reach an Open face
-	reach    float64   // greatest distance from the origin to a vertex off the Open faces
 	rim      float64   // greatest absolute coordinate of a vertex on an Open face
 	open     bool      // there is an Open face
 	onOpen   []bool    // vertex i lies on an Open face

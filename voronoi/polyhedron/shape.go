@@ -8,17 +8,18 @@ import "math"
 const (
 	// crumbShare of the surface: a smaller face is none.
 	crumbShare = 1e-12
-	// crumbRound times the square of the reach: what rounding alone makes of the
-	// area of a face along the longest edge of a needle-shaped cell.
+	// crumbRound times the square of the distance to a face's farthest vertex: what
+	// rounding alone makes of the area of a face along a long edge. It matters for
+	// needle-shaped cells only.
 	crumbRound = 0x1p-48
 	// openRound times the square of the rim: the same for a face that reaches an
 	// Open face, whose corners are rounded at the size of that far box.
 	openRound = 0x1p-46
-	// edgeShare of the cell's size: a shorter edge has one vertex, not two.
+	// edgeShare of the distance to an edge: a shorter edge has one vertex, not two.
 	edgeShare = 1e-9
-	// crumbEdge of the cell's size: the same for the edges of a crumb, whose side
-	// can be as long as the root of its area.
-	crumbEdge = 2e-6
+	// crumbEdge times the root of the least area that counts: the same for the edges
+	// of a face that does not.
+	crumbEdge = 2
 )
 
 // Shape is how many faces, edges and vertices a cell has, artefacts of rounding
@@ -42,7 +43,7 @@ func (c *Cell) survey() {
 	c.surveyed = true
 	c.markOpen()
 	c.area = c.area[:0]
-	c.surface, c.reach, c.rim = 0, 0, 0
+	c.surface, c.rim = 0, 0
 	for i := range c.of {
 		a := length(c.FaceArea(i))
 		c.area = append(c.area, a)
@@ -53,12 +54,25 @@ func (c *Cell) survey() {
 	for i, p := range c.v {
 		if c.open && c.onOpen[i] {
 			c.rim = max(c.rim, largest(p))
-		} else {
-			c.reach = max(c.reach, dot(p, p))
 		}
 	}
-	c.reach = math.Sqrt(c.reach)
-	c.crumb = max(crumbShare*c.surface, crumbRound*c.reach*c.reach)
+	c.setLeast()
+}
+
+// setLeast sets the area that each face must exceed to count.
+func (c *Cell) setLeast() {
+	c.least = c.least[:0]
+	for i := range c.of {
+		if c.open && c.touches[i] {
+			c.least = append(c.least, openRound*c.rim*c.rim)
+			continue
+		}
+		far2 := 0.0
+		for _, j := range c.loop[c.start[i]:c.start[i+1]] {
+			far2 = max(far2, dot(c.v[j], c.v[j]))
+		}
+		c.least = append(c.least, max(crumbShare*c.surface, crumbRound*far2))
+	}
 }
 
 // markOpen finds the vertices on Open faces and the faces that have such a
@@ -109,18 +123,12 @@ func (c *Cell) Reaches(i int) bool {
 }
 
 // Counts tells whether face i is more than an artefact of rounding: its area is
-// at least 1e-12 of the surface (and 2^-48 of the square of the cell's reach,
-// which matters for needles only). A face that reaches an Open face needs 2^-46
-// of the square of that box's size. Open faces count for nothing.
+// at least 1e-12 of the surface (and 2^-48 of the square of the distance to its
+// farthest vertex, which matters for needles only). A face that reaches an Open
+// face needs 2^-46 of the square of that box's size. Open faces count for nothing.
 func (c *Cell) Counts(i int) bool {
 	c.survey()
-	if c.cuts[c.of[i]].label == Open {
-		return false
-	}
-	if c.open && c.touches[i] {
-		return c.area[i] > openRound*c.rim*c.rim
-	}
-	return c.area[i] > c.crumb
+	return c.cuts[c.of[i]].label != Open && c.area[i] > c.least[i]
 }
 
 // Area is the area of face i, a plain number.
@@ -130,9 +138,9 @@ func (c *Cell) Area(i int) float64 {
 }
 
 // Shape counts faces, edges and vertices. Vertices joined by an edge shorter
-// than 1e-9 of the cell's size are one vertex, so are those joined by an edge of
-// an uncounted face shorter than 2e-6 of it, and a vertex counts if at least
-// three counted faces meet in it. The edges then follow from Euler's relation, in
+// than 1e-9 of its distance from the site are one vertex; so are those joined by
+// an edge of an uncounted face shorter than twice the root of the area that it
+// lacks to count; and a vertex counts if at least three counted faces meet in it. The edges then follow from Euler's relation, in
 // which the Open faces take part with their own characteristic, so that a
 // half-space has no edge, a wedge one, and a slab none.
 func (c *Cell) Shape() Shape {
@@ -163,16 +171,19 @@ func (c *Cell) merge() {
 	for i := range c.class {
 		c.class[i] = int32(i)
 	}
-	size := max(math.Sqrt(c.surface), c.reach)
 	for i := range c.of {
-		limit := edgeShare * size
+		limit := 0.0
 		if !c.Counts(i) {
-			limit = crumbEdge * size
+			limit = crumbEdge * math.Sqrt(c.least[i])
+			if c.open && c.touches[i] { // a strip as long as the far box
+				limit = crumbEdge * openRound * c.rim
+			}
 		}
 		loop := c.loop[c.start[i]:c.start[i+1]]
 		a := loop[len(loop)-1]
 		for _, b := range loop {
-			if largest(sub(c.v[a], c.v[b])) <= limit {
+			p, q := c.v[a], c.v[b]
+			if largest(sub(p, q)) <= max(limit, edgeShare*max(largest(p), largest(q))) {
 				c.unite(a, b)
 			}
 			a = b
