@@ -1,175 +1,282 @@
 package catalog
 
 import (
+	"context"
+	"encoding/json"
 	"fmt"
+	"slices"
 	"sort"
+	"strings"
 	"sync"
 	"time"
+	"unicode/utf8"
 
-	"nearcell/catalog/column"
+	"nearcell/catalog/store"
 )
 
-// Kind is the kind of an object. All kinds share one namespace.
-type Kind uint8
-
-const (
-	Campaign Kind = iota + 1
-	Table
-	Solid
-	View
-)
-
-var kindNames = [...]string{"", "CAMPAIGN", "TABLE", "SOLID", "VIEW"}
-
-// String is the kind as the language writes it.
-func (k Kind) String() string {
-	if int(k) < len(kindNames) {
-		return kindNames[k]
-	}
-	return "?"
-}
-
-// Object is anything that has a name in the catalog. An object that came out
-// of a catalog is shared and must not be changed.
-type Object struct {
-	Kind Kind
-	Key  string // what it is found by: the folded name of a bare one, the name itself of a quoted one
-	Name string // as the user wrote it
-
-	Table   *column.Table // Campaign: id, x, y, z and the attributes; Table: as read. Nil in a List.
-	Text    string        // Solid, View: the canonical text
-	Options CampaignOptions
-	Sources []SourceFile
-	Notes   []string // facts of the import worth repeating
-	Created time.Time
-	Rows    int // of the table, also where Table is nil
-
-	key *contentKey
-}
-
-// CampaignOptions are the clauses of a campaign.
-type CampaignOptions struct {
-	LengthUnit string     // "" is taken as m by the engine
-	Within     string     // solid expression, canonical text
-	Zones      []string   // solids that are zones
-	Stretched  [3]float64 // all zero: not stretched
-	Duplicates string     // SPLIT, MEAN, FIRST, FAIL; "": not said
-	Tolerance  float64
-}
-
-// SourceFile is a file that an object was read from.
-type SourceFile struct {
-	Path    string
-	SHA256  string
-	Size    int64
-	ModTime time.Time
-	Rows    int
-}
-
-// ErrExists says that the name is taken by an object of the kind.
-type ErrExists struct {
-	Kind Kind
-	Name string
-}
-
-func (e *ErrExists) Error() string { return fmt.Sprintf("catalog: %s %s exists", e.Kind, e.Name) }
-
-// ErrNoSuch says that there is no such object. Found, if not 0, is the kind of
-// the object that has the name, where another kind was asked for.
-type ErrNoSuch struct {
-	Kind  Kind // the kind asked for, 0 for any
-	Key   string
-	Found Kind
-}
-
-func (e *ErrNoSuch) Error() string {
-	if e.Found != 0 {
-		return fmt.Sprintf("catalog: %s is a %s, not a %s", e.Key, e.Found, e.Kind)
-	}
-	return fmt.Sprintf("catalog: no object %s", e.Key)
-}
-
-type contentKey struct {
-	once sync.Once
-	sum  [16]byte
-}
-
-// Catalog holds the objects, in memory or in a folder. It may be read by many
-// goroutines and changed by one at a time; changes wait for each other.
+// Catalog holds the objects, in memory or in a folder. It may be used by many
+// goroutines; changes wait for each other.
 type Catalog struct {
+	dir *store.Dir // nil: in memory
+
 	mu      sync.RWMutex
-	objects map[string]*Object
+	objects map[string]*entry // in memory, all; in a folder, those read so far
+}
+
+// entry is an object and, in a folder, the record that it was made of.
+type entry struct {
+	object *Object
+	file   string
+	meta   string
 }
 
 // Memory is a catalog that keeps nothing.
-func Memory() *Catalog { return &Catalog{objects: map[string]*Object{}} }
+func Memory() *Catalog { return &Catalog{objects: map[string]*entry{}} }
 
 // Open is the catalog in a folder. A folder that does not exist is made by the
-// first change.
-func Open(dir string) (*Catalog, error) { return Memory(), nil }
+// first change. Errors are those of package store.
+func Open(dir string) (*Catalog, error) {
+	d, err := store.Open(dir)
+	if err != nil {
+		return nil, err
+	}
+	return &Catalog{dir: d, objects: map[string]*entry{}}, nil
+}
 
 // Close lets go of the files. Tables that came out of the catalog must not be
 // used after it.
-func (c *Catalog) Close() error { return nil }
+func (c *Catalog) Close() error {
+	if c.dir == nil {
+		return nil
+	}
+	return c.dir.Close()
+}
 
-// Get is the object with the key, with its table; *ErrNoSuch where there is none.
+// Get is the object with the key, with its table; *ErrNoSuch where there is
+// none, *store.DamagedError where its file is not what was written. A folder
+// that another program has changed meanwhile is seen as it is now; an object got
+// earlier stays as it was.
 func (c *Catalog) Get(key string) (*Object, error) {
+	if c.dir != nil {
+		return c.read(key)
+	}
 	c.mu.RLock()
 	defer c.mu.RUnlock()
-	if o := c.objects[key]; o != nil {
-		return o, nil
+	if e := c.objects[key]; e != nil {
+		return e.object, nil
 	}
 	return nil, &ErrNoSuch{Key: key}
+}
+
+// read gets an object from the folder.
+func (c *Catalog) read(key string) (*Object, error) {
+	rec, t, ok, err := c.dir.FindTable(key)
+	if err != nil {
+		return nil, err
+	}
+	if !ok {
+		return nil, &ErrNoSuch{Key: key}
+	}
+	c.mu.Lock()
+	defer c.mu.Unlock()
+	file := ""
+	if rec.File != nil {
+		file = rec.File.Name
+	}
+	if e := c.objects[key]; e != nil && e.file == file && e.meta == string(rec.Meta) {
+		return e.object, nil
+	}
+	o, err := fromRecord(rec)
+	if err != nil {
+		return nil, err
+	}
+	o.Table, o.key = t, &contentKey{}
+	c.objects[key] = &entry{object: o, file: file, meta: string(rec.Meta)}
+	return o, nil
 }
 
 // List is the objects of the given kinds (all, if none is given) sorted by
 // name, without their tables.
 func (c *Catalog) List(kinds ...Kind) ([]Object, error) {
-	c.mu.RLock()
-	defer c.mu.RUnlock()
+	all, err := c.all()
+	if err != nil {
+		return nil, err
+	}
 	var list []Object
-	for _, o := range c.objects {
-		ok := len(kinds) == 0
-		for _, k := range kinds {
-			ok = ok || k == o.Kind
-		}
-		if ok {
-			x := *o
-			x.Table = nil
-			list = append(list, x)
+	for _, o := range all {
+		if len(kinds) == 0 || slices.Contains(kinds, o.Kind) {
+			o.Table, o.key = nil, nil
+			list = append(list, o)
 		}
 	}
-	sort.Slice(list, func(i, j int) bool { return list[i].Key < list[j].Key })
+	sort.Slice(list, func(i, j int) bool {
+		a, b := &list[i], &list[j]
+		if x, y := strings.ToLower(a.Name), strings.ToLower(b.Name); x != y {
+			return x < y
+		}
+		return a.Key < b.Key
+	})
 	return list, nil
 }
 
-// Put adds an object, or replaces one of the same kind and key where replace
-// says so; else *ErrExists.
-func (c *Catalog) Put(o Object, replace bool) error {
-	c.mu.Lock()
-	defer c.mu.Unlock()
-	if old := c.objects[o.Key]; old != nil && (!replace || old.Kind != o.Kind) {
-		return &ErrExists{Kind: old.Kind, Name: old.Name}
+func (c *Catalog) all() ([]Object, error) {
+	var list []Object
+	if c.dir == nil {
+		c.mu.RLock()
+		defer c.mu.RUnlock()
+		for _, e := range c.objects {
+			list = append(list, *e.object)
+		}
+		return list, nil
 	}
+	recs, err := c.dir.Records()
+	if err != nil {
+		return nil, err
+	}
+	for _, rec := range recs {
+		o, err := fromRecord(rec)
+		if err != nil {
+			return nil, err
+		}
+		list = append(list, *o)
+	}
+	return list, nil
+}
+
+// Put adds an object, or replaces the one of its key where replace says so and
+// the two are of one kind; else *ErrExists with the kind that has the name. The
+// table must keep the rules of package column; it may be shared afterwards and
+// must not be changed.
+func (c *Catalog) Put(o Object, replace bool) error {
+	if o.Key == "" || o.Kind < Campaign || o.Kind > View {
+		return fmt.Errorf("catalog: an object without a key or a kind: %q, %s", o.Key, o.Kind)
+	}
+	for _, s := range []string{o.Key, o.Name, o.Text} {
+		if !utf8.ValidString(s) {
+			return fmt.Errorf("catalog: %q is no UTF-8", s)
+		}
+	}
+	o.Rows = 0
 	if o.Table != nil {
 		o.Rows = o.Table.N
 	}
 	o.key = &contentKey{}
-	c.objects[o.Key] = &o
+	if c.dir != nil {
+		return c.dir.Change(context.Background(), func(tx *store.Tx) error {
+			rec, ok := tx.Find(o.Key)
+			if err := mayPut(&o, rec, ok, replace); err != nil {
+				return err
+			}
+			return tx.Put(o.Key, metaOf(&o), o.Table)
+		})
+	}
+	if o.Table != nil {
+		if err := o.Table.Validate(); err != nil {
+			return err
+		}
+	}
+	c.mu.Lock()
+	defer c.mu.Unlock()
+	if old := c.objects[o.Key]; old != nil && (!replace || old.object.Kind != o.Kind) {
+		return &ErrExists{Kind: old.object.Kind, Name: old.object.Name}
+	}
+	c.objects[o.Key] = &entry{object: &o}
+	return nil
+}
+
+func mayPut(o *Object, rec store.Record, found, replace bool) error {
+	if !found {
+		return nil
+	}
+	old, err := fromRecord(rec)
+	if err != nil {
+		return err
+	}
+	if !replace || old.Kind != o.Kind {
+		return &ErrExists{Kind: old.Kind, Name: old.Name}
+	}
 	return nil
 }
 
 // Drop removes an object of the kind; *ErrNoSuch where there is none.
 func (c *Catalog) Drop(kind Kind, key string) error {
+	if c.dir != nil {
+		// Dropping from a folder that is not there must not make it.
+		if _, ok, err := c.dir.Find(key); err != nil || !ok {
+			return mayDrop(kind, key, 0, err)
+		}
+		return c.dir.Change(context.Background(), func(tx *store.Tx) error {
+			var found Kind
+			if rec, ok := tx.Find(key); ok {
+				old, err := fromRecord(rec)
+				if err != nil {
+					return err
+				}
+				found = old.Kind
+			}
+			if err := mayDrop(kind, key, found, nil); err != nil {
+				return err
+			}
+			tx.Delete(key)
+			return nil
+		})
+	}
 	c.mu.Lock()
 	defer c.mu.Unlock()
-	old := c.objects[key]
-	if old == nil {
-		return &ErrNoSuch{Kind: kind, Key: key}
+	var found Kind
+	if old := c.objects[key]; old != nil {
+		found = old.object.Kind
 	}
-	if old.Kind != kind {
-		return &ErrNoSuch{Kind: kind, Key: key, Found: old.Kind}
+	if err := mayDrop(kind, key, found, nil); err != nil {
+		return err
 	}
 	delete(c.objects, key)
 	return nil
+}
+
+// mayDrop compares the kind that is to be dropped with the one found, 0 for none.
+func mayDrop(kind Kind, key string, found Kind, err error) error {
+	if err == nil && found != kind {
+		return &ErrNoSuch{Kind: kind, Key: key, Found: found}
+	}
+	return err
+}
+
+// meta is what the manifest keeps of an object.
+type meta struct {
+	Kind    string           `json:"kind"`
+	Name    string           `json:"name"`
+	Text    string           `json:"text,omitempty"`
+	Options *CampaignOptions `json:"options,omitempty"`
+	Sources []SourceFile     `json:"sources,omitempty"`
+	Notes   []string         `json:"notes,omitempty"`
+	Created time.Time        `json:"created"`
+}
+
+func metaOf(o *Object) meta {
+	m := meta{Kind: o.Kind.String(), Name: o.Name, Text: o.Text, Sources: o.Sources, Notes: o.Notes, Created: o.Created}
+	if o.Kind == Campaign {
+		m.Options = &o.Options
+	}
+	return m
+}
+
+// fromRecord is the object of a record, without its table.
+func fromRecord(rec store.Record) (*Object, error) {
+	var m meta
+	if err := json.Unmarshal(rec.Meta, &m); err != nil {
+		return nil, fmt.Errorf("catalog: the record of %s: %w", rec.Key, err)
+	}
+	kind := slices.Index(kindNames[:], m.Kind)
+	if kind <= 0 {
+		return nil, fmt.Errorf("catalog: the record of %s has the unknown kind %q", rec.Key, m.Kind)
+	}
+	o := &Object{Kind: Kind(kind), Key: rec.Key, Name: m.Name, Text: m.Text, Sources: m.Sources, Notes: m.Notes, Created: m.Created}
+	if m.Options != nil {
+		o.Options = *m.Options
+	}
+	if rec.File != nil {
+		o.Rows = rec.File.Rows
+	}
+	return o, nil
 }

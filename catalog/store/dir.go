@@ -1,0 +1,214 @@
+package store
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"sync"
+	"time"
+
+	"github.com/cespare/xxhash/v2"
+	"github.com/gofrs/flock"
+
+	"nearcell/catalog/column"
+)
+
+const (
+	manifestName = "manifest.json"
+	columnsName  = "columns"
+	lockName     = "lock"
+	asideSuffix  = ".new" // of files that are being written
+	tableSuffix  = ".arrow"
+)
+
+// LockPatience is how long a change waits for another program's.
+const LockPatience = 10 * time.Second
+
+// Dir is a folder of tables. It may be used by many goroutines.
+type Dir struct {
+	path string
+
+	change sync.Mutex // one change at a time in this program; flock sees to others
+
+	mu     sync.Mutex // over what follows
+	now    *manifest
+	seen   fs.FileInfo // of the manifest's file, nil where there was none
+	files  map[string]*mapped
+	closed bool
+
+	step func(string) // tests stop a change with it; nil otherwise
+}
+
+// mapped is an open file.
+type mapped struct {
+	table *column.Table
+	unmap func() error
+}
+
+// Open is the folder at path. One that does not exist is empty, and is made by
+// the first change.
+func Open(path string) (*Dir, error) {
+	info, err := os.Stat(path)
+	if err == nil && !info.IsDir() {
+		return nil, &os.PathError{Op: "open", Path: path, Err: errors.New("not a folder")}
+	}
+	if err != nil && !errors.Is(err, fs.ErrNotExist) {
+		return nil, err
+	}
+	d := &Dir{path: path, files: map[string]*mapped{}}
+	d.mu.Lock()
+	defer d.mu.Unlock()
+	return d, d.refresh()
+}
+
+// Path is the folder.
+func (d *Dir) Path() string { return d.path }
+
+func (d *Dir) manifestPath() string         { return filepath.Join(d.path, manifestName) }
+func (d *Dir) columnsPath() string          { return filepath.Join(d.path, columnsName) }
+func (d *Dir) tablePath(name string) string { return filepath.Join(d.path, columnsName, name) }
+
+var errClosed = errors.New("store: used after Close")
+
+// refresh reads the manifest if it is another file than the one seen last.
+func (d *Dir) refresh() error {
+	if d.closed {
+		return errClosed
+	}
+	info, err := os.Stat(d.manifestPath())
+	if errors.Is(err, fs.ErrNotExist) {
+		d.now, d.seen = &manifest{}, nil
+		return nil
+	}
+	if err != nil {
+		return err
+	}
+	if d.seen != nil && os.SameFile(d.seen, info) && d.seen.Size() == info.Size() && d.seen.ModTime().Equal(info.ModTime()) {
+		return nil
+	}
+	// The stat comes first: should the file be replaced in between, the next
+	// refresh reads it once more.
+	data, err := os.ReadFile(d.manifestPath())
+	if err != nil {
+		return err
+	}
+	m, err := parseManifest(d.manifestPath(), data)
+	if err != nil {
+		return err
+	}
+	d.now, d.seen = m, info
+	return nil
+}
+
+// Records is what the folder holds now, sorted by key.
+func (d *Dir) Records() ([]Record, error) {
+	d.mu.Lock()
+	defer d.mu.Unlock()
+	if err := d.refresh(); err != nil {
+		return nil, err
+	}
+	return append([]Record(nil), d.now.Objects...), nil
+}
+
+// Find is the record of a key; ok is false if there is none.
+func (d *Dir) Find(key string) (rec Record, ok bool, err error) {
+	d.mu.Lock()
+	defer d.mu.Unlock()
+	if err := d.refresh(); err != nil {
+		return rec, false, err
+	}
+	if i := d.now.find(key); i >= 0 {
+		return d.now.Objects[i], true, nil
+	}
+	return rec, false, nil
+}
+
+// FindTable is the record of a key and its table, nil if it has none.
+func (d *Dir) FindTable(key string) (rec Record, t *column.Table, ok bool, err error) {
+	for last := ""; ; {
+		rec, ok, err = d.Find(key)
+		if err != nil || !ok || rec.File == nil {
+			return rec, nil, ok, err
+		}
+		t, err = d.load(rec.File)
+		if err == nil || !errors.Is(err, fs.ErrNotExist) {
+			return rec, t, true, err
+		}
+		// Another program may have replaced it between the two looks.
+		if rec.File.Name == last {
+			return rec, nil, true, &DamagedError{Path: d.tablePath(last), Reason: "the file is missing"}
+		}
+		last = rec.File.Name
+	}
+}
+
+// load maps a file, checks it and makes a table of it, once.
+func (d *Dir) load(f *File) (*column.Table, error) {
+	d.mu.Lock()
+	defer d.mu.Unlock()
+	if d.closed {
+		return nil, errClosed
+	}
+	if m := d.files[f.Name]; m != nil {
+		return m.table, nil
+	}
+	path := d.tablePath(f.Name)
+	data, unmap, err := mapFile(path)
+	if err != nil {
+		return nil, err
+	}
+	t, err := check(path, f, data)
+	if err != nil {
+		return nil, errors.Join(err, unmap())
+	}
+	d.files[f.Name] = &mapped{table: t, unmap: unmap}
+	return t, nil
+}
+
+// check compares a file with what the manifest says of it, and reads it.
+func check(path string, f *File, data []byte) (*column.Table, error) {
+	if int64(len(data)) != f.Size {
+		return nil, &DamagedError{Path: path, Reason: fmt.Sprintf("%d bytes, expected %d", len(data), f.Size)}
+	}
+	if sum := hashText(xxhash.Sum64(data)); sum != f.XXH64 {
+		return nil, &DamagedError{Path: path, Reason: fmt.Sprintf("checksum %s, expected %s", sum, f.XXH64)}
+	}
+	t, err := Decode(data)
+	if err != nil {
+		return nil, &DamagedError{Path: path, Reason: err.Error()}
+	}
+	return t, nil
+}
+
+// Close lets the files go. Tables must not be used afterwards.
+func (d *Dir) Close() error {
+	d.mu.Lock()
+	defer d.mu.Unlock()
+	var errs []error
+	for _, m := range d.files {
+		errs = append(errs, m.unmap())
+	}
+	d.files, d.closed = nil, true
+	return errors.Join(errs...)
+}
+
+// lock takes the folder's lock, and makes the folder if need be.
+func (d *Dir) lock(ctx context.Context) (unlock func(), err error) {
+	if err := os.MkdirAll(d.columnsPath(), 0o777); err != nil {
+		return nil, err
+	}
+	l := flock.New(filepath.Join(d.path, lockName))
+	ctx, cancel := context.WithTimeout(ctx, LockPatience)
+	defer cancel()
+	ok, err := l.TryLockContext(ctx, 10*time.Millisecond)
+	switch {
+	case errors.Is(err, context.DeadlineExceeded), err == nil && !ok:
+		return nil, &LockedError{Path: d.path}
+	case err != nil:
+		return nil, err
+	}
+	return func() { l.Close() }, nil
+}
