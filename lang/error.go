@@ -1,7 +1,9 @@
 package lang
 
 import (
+	"fmt"
 	"strings"
+	"unicode"
 	"unicode/utf8"
 
 	"github.com/alecthomas/participle/v2/lexer"
@@ -85,7 +87,11 @@ func strayFault(t *lexer.Token) *Error {
 	if !utf8.ValidString(text) {
 		return &Error{Span: tokenSpan(t), Message: "this byte is not valid UTF-8", Hint: "save the file as UTF-8"}
 	}
-	return &Error{Span: tokenSpan(t), Message: "'" + cutShort(text) + "' means nothing here", Hint: strayHints[text]}
+	sign := "'" + cutShort(text) + "'"
+	if r, _ := utf8.DecodeRuneInString(text); !unicode.IsPrint(r) {
+		sign = fmt.Sprintf("the invisible character %U", r)
+	}
+	return &Error{Span: tokenSpan(t), Message: sign + " means nothing here", Hint: strayHints[text]}
 }
 
 // finish completes a message that needs the whole text: where the open bracket stands.

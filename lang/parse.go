@@ -2,6 +2,7 @@ package lang
 
 import (
 	"errors"
+	"strings"
 	"sync"
 
 	"github.com/alecthomas/participle/v2"
@@ -209,7 +210,7 @@ func ourFault(toks []lexer.Token, err error) *Error {
 	if fault.Hint == "" {
 		fault.Hint = nearHint(p.tok(), words)
 	}
-	if fault.Hint == "" && p.i > 0 && statementWords[p.kind()] {
+	if fault.Hint == "" && statementWords[p.kind()] && strings.HasSuffix(what, statementEnd) {
 		fault.Hint = "is a ; missing before it?"
 	}
 	return fault

@@ -102,7 +102,7 @@ func (p *parser) measuredIn() Clause {
 
 func (p *parser) omitting() Clause {
 	start := p.next().Pos.Offset
-	c := &OmittingClause{IDs: p.texts("an identifier as a text, such as 'L17'")}
+	c := &OmittingClause{IDs: p.texts("an identifier in single quotes")}
 	if !p.is(kBecause) {
 		p.failHint("BECAUSE and the reason", "what is left out is noted with its reason: OMITTING ('L17') BECAUSE 'moved'")
 	}
@@ -114,7 +114,7 @@ func (p *parser) omitting() Clause {
 
 func (p *parser) keep() Clause {
 	start := p.next().Pos.Offset
-	ids := p.texts("an identifier as a text, such as 'L07'")
+	ids := p.texts("an identifier in single quotes")
 	return &KeepClause{At: p.since(start), IDs: ids}
 }
 

@@ -75,7 +75,7 @@ func (p *parser) comparison() Expr {
 		left = p.isTest(start, left)
 		compared = true
 	}
-	if compared && isComparison(p.kind()) {
+	if compared && (isComparison(p.kind()) || p.isOneOf(kBetween, kIn, kLike)) {
 		p.comparisonChain()
 	}
 	return left

@@ -58,7 +58,7 @@ func (p *parser) bracketedQuery() *Query {
 // closeQuery passes the ")" behind a query, with the hints that the end of a query has.
 func (p *parser) closeQuery(opened *lexer.Token) {
 	if !p.is(tokRight) && !p.is(tokEOF) {
-		p.queryEnd("the query goes on or a closing )", opened)
+		p.queryEnd("a closing )", opened)
 	}
 	p.close(opened, "")
 }
@@ -310,6 +310,8 @@ func (p *parser) queryEnd(what string, opened *lexer.Token) {
 	case isQueryWord(t.Type):
 		p.refuse(wordText[t.Type]+" stands out of order here, or twice",
 			"SELECT … FROM … WHERE … GROUP BY … HAVING … ORDER BY … LIMIT …")
+	case p.looksLikeAlias():
+		p.refuse("'"+t.Value+"' needs AS here to be an alias", "write AS "+t.Value)
 	case isClauseWord(t.Type) && p.afterRelation:
 		p.refuse(p.clauseWords()+" is a clause of the relation and stands directly behind it, before "+p.beforeClause(), "")
 	case isClauseWord(t.Type):
@@ -325,6 +327,19 @@ func (p *parser) queryEnd(what string, opened *lexer.Token) {
 		}
 	}
 	panic(err)
+}
+
+// looksLikeAlias tells whether a stop word stands where an alias was meant: behind an
+// item or a source and before what can follow one.
+func (p *parser) looksLikeAlias() bool {
+	if t := p.kind(); t < firstStop || t >= firstPlain || p.i == 0 || p.toks[p.i-1].Type == kAs {
+		return false
+	}
+	switch p.ahead(1) {
+	case tokEOF, tokComma, tokRight, kFrom, kWhere, kGroup, kOrder, kJoin, kOn:
+		return true
+	}
+	return false
 }
 
 func isQueryWord(t lexer.TokenType) bool {

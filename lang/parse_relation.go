@@ -1,6 +1,10 @@
 package lang
 
-import "github.com/alecthomas/participle/v2/lexer"
+import (
+	"strings"
+
+	"github.com/alecthomas/participle/v2/lexer"
+)
 
 // beginsRelation tells whether a relation stands here: a word followed by OF, or
 // TRANSECT BETWEEN.
@@ -75,9 +79,9 @@ func (p *parser) operand(what string) Operand {
 		p.afterRelation = outer
 		return inner
 	case p.beginsRelation():
-		p.refuse("an inner relation stands in brackets", "("+p.tok().Value+" OF …)")
+		p.refuse("an inner relation stands in brackets", "write ("+strings.ToUpper(p.tok().Value)+" OF …)")
 	case p.beginsQuery(p.i):
-		p.refuse("a query stands in brackets here", "(SELECT …)")
+		p.refuse("a query stands in brackets here", "write (SELECT …)")
 	}
 	name := p.name(what)
 	return &name

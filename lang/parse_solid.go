@@ -46,7 +46,9 @@ func (p *parser) solidPart() Solid {
 	first := p.tok()
 	name := p.name("a solid: BOX, PRISM, MESH, BOXES, TERRAIN, ENVELOPE or the name of one,")
 	if p.is(tokLeft) || p.is(tokText) {
-		p.failHint("the end of the solid", nearHint(first, []string{"BOX", "PRISM", "MESH", "BOXES", "TERRAIN"}))
+		p.i--
+		p.failHint("BOX, PRISM, MESH, BOXES, TERRAIN or the name of a solid",
+			nearHint(first, []string{"BOX", "PRISM", "MESH", "BOXES", "TERRAIN"}))
 	}
 	return &SolidName{At: name.At, Name: name}
 }

@@ -82,9 +82,9 @@ func (p *parser) source() Source {
 	if p.is(tokLeft) {
 		p.refuse("'"+cutShort(s.Name.Text)+"' is called like a function, but a source is a name or a relation", s.Name.Text+" OF (…)?")
 	}
-	if isClauseWord(p.kind()) {
-		p.refuse(wordText[p.kind()]+" is a clause of a relation, and '"+cutShort(s.Name.Text)+"' alone is none",
-			"CELLS OF "+printName(s.Name)+" "+wordText[p.kind()]+" …")
+	if isClauseWord(p.kind()) && !p.looksLikeAlias() {
+		p.refuse(p.clauseWords()+" is a clause of a relation, and '"+cutShort(s.Name.Text)+"' alone is none",
+			"CELLS OF "+printName(s.Name)+" "+p.clauseWords()+" …")
 	}
 	s.Aliased = p.sourceAlias()
 	s.At = p.since(start)
@@ -163,7 +163,7 @@ func (p *parser) clauseWords() string {
 func (p *parser) afterClauses() {
 	t := p.tok()
 	if hint := nearHint(t, clauseAndQueryWords); hint != "" {
-		p.failHint("a clause, or the end of the relation", hint)
+		p.failHint("a clause or the end of the relation", hint)
 	}
 	name := printName(Name{Text: t.Value})
 	if t.Type == tokQuoted {

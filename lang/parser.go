@@ -278,10 +278,27 @@ func unquote(text, mark string) string {
 // text reads a text in single quotes.
 func (p *parser) text(what string) *Text {
 	if !p.is(tokText) {
+		if isWord(p.kind()) {
+			bare := p.touching()
+			p.refuse("expected "+what+" but found "+bare+" without quotes", "write "+QuoteText(bare))
+		}
 		p.fail(what)
 	}
 	t := p.next()
 	return &Text{At: At{tokenSpan(t)}, Value: unquote(t.Value, "'")}
+}
+
+// touching gives the next word with all that touches it, such as hall.csv.
+func (p *parser) touching() string {
+	var b strings.Builder
+	for i := p.i; i < len(p.toks); i++ {
+		if t := &p.toks[i]; i == p.i || tokenStart(t) == tokenEnd(&p.toks[i-1]) && t.Type != tokRight && t.Type != tokComma {
+			b.WriteString(t.Value)
+			continue
+		}
+		break
+	}
+	return cutShort(b.String())
 }
 
 // texts reads one or more texts in brackets.

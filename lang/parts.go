@@ -47,7 +47,7 @@ func (q *queryPart) Parse(lex *lexer.PeekingLexer) (err error) {
 	q.Query, err = readPart(lex, func(p *parser) *Query {
 		query := p.query()
 		if !p.is(tokRight) {
-			p.queryEnd("the query goes on or a closing )", &p.toks[p.first-1])
+			p.queryEnd("a closing )", &p.toks[p.first-1])
 		}
 		return query
 	})
