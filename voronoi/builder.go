@@ -15,8 +15,8 @@ const firstNeighbours = 12
 // farStep is the ratio of the artificial box around an unbounded diagram to the
 // extent of the sites, and the ratio by which it grows.
 const (
-	farStep  = 0x1p20
-	farTries = 5
+	farStep = 0x1p20
+	farMost = 0x1p80 // by how much it grows at most
 )
 
 // builder makes cells one by one. It is the scratch of one goroutine.
@@ -59,7 +59,7 @@ func (d *Diagram) free(b *builder) { d.pool.Put(b) }
 // cell is cut by the solid, in any other by its bounding box. Labels are cell
 // numbers. bounded is false if the cell reaches to infinity; c is then closed by
 // Open faces.
-func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool, err error) {
+func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool) {
 	d := b.d
 	if d.solid == nil {
 		return b.buildOpen(c, p, self)
@@ -69,7 +69,7 @@ func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool
 	if d.convex && !d.isBox && !c.Empty() {
 		d.solid.ClipConvex(c, at)
 	}
-	return true, nil
+	return true
 }
 
 // cut cuts c by the bisectors of p with the sites: first with the nearest ones,
@@ -155,30 +155,31 @@ func reach2(c *polyhedron.Cell) float64 {
 
 // buildOpen is build without a solid. The cell begins in a box far larger than
 // the set of sites. If sides of the box are left, exact predicates decide whether
-// the cell is unbounded; if it is not, it only reaches far, and the box grows.
-func (b *builder) buildOpen(c *polyhedron.Cell, p Vec, self int32) (bounded bool, err error) {
-	size := b.d.sizeFrom(p)
-	known := false
-	for range farTries {
-		size *= farStep
-		c.SetFarBox(Vec{X: -size, Y: -size, Z: -size}, Vec{X: size, Y: size, Z: size}, openLabels)
-		b.cut(c, p, self)
-		if c.Empty() {
-			break
-		}
-		if !c.IsOpen() {
-			return true, nil
-		}
-		if !known && !b.bounded(c, p, self) {
-			return false, nil
-		}
-		known = true
+// the cell is unbounded; if it is not, it only reaches far, and the box grows. A
+// cell that still is not closed reaches farther than float64 can follow; it counts
+// as unbounded.
+func (b *builder) buildOpen(c *polyhedron.Cell, p Vec, self int32) (bounded bool) {
+	size := b.d.sizeFrom(p) * farStep
+	if b.inFarBox(c, p, self, size) {
+		return true
 	}
-	site := -1
-	if self >= 0 {
-		site = int(b.d.site[self])
+	if !b.bounded(c, p, self) {
+		return false
 	}
-	return false, &UnresolvedError{site}
+	for grown := size; grown < size*farMost; {
+		grown *= farStep
+		if b.inFarBox(c, p, self, grown) {
+			return true
+		}
+	}
+	return b.inFarBox(c, p, self, size)
+}
+
+// inFarBox cuts c from a far box and tells whether nothing of the box is left.
+func (b *builder) inFarBox(c *polyhedron.Cell, p Vec, self int32, size float64) bool {
+	c.SetFarBox(Vec{X: -size, Y: -size, Z: -size}, Vec{X: size, Y: size, Z: size}, openLabels)
+	b.cut(c, p, self)
+	return !c.IsOpen()
 }
 
 // openLabels are the labels of the artificial box.

@@ -172,10 +172,7 @@ func (b *builder) shares(cell int32) ([]share, error) {
 	d := b.d
 	p := d.tree.Point(cell)
 	at := add(p, d.origin)
-	bounded, err := b.build(&b.cell, p, at, cell)
-	if err != nil {
-		return nil, err
-	}
+	bounded := b.build(&b.cell, p, at, cell)
 	b.list = b.list[:0]
 	if d.solid == nil || d.convex {
 		for i := range b.cell.NumFaces() {
@@ -202,9 +199,11 @@ func (b *builder) shares(cell int32) ([]share, error) {
 		s := b.wholeFace(i, label, at, true)
 		if math.Abs(area-whole) > 1e-12*whole {
 			s.area = area
-			if s.middle, err = b.clippedMiddle(i, at, s.middle); err != nil {
+			middle, err := b.clippedMiddle(i, at, s.middle)
+			if err != nil {
 				return nil, err
 			}
+			s.middle = middle
 		}
 		b.list = append(b.list, s)
 	}

@@ -44,11 +44,3 @@ type NoSuchSiteError struct{ Site, Sites int }
 func (e *NoSuchSiteError) Error() string {
 	return fmt.Sprintf("voronoi: there is no site %d among %d", e.Site, e.Sites)
 }
-
-// UnresolvedError is a bounded cell that reaches farther than float64 lets it be
-// closed: 2^100 times the extent of the sites.
-type UnresolvedError struct{ Site int }
-
-func (e *UnresolvedError) Error() string {
-	return fmt.Sprintf("voronoi: the cell of site %d reaches too far to be computed", e.Site)
-}

@@ -11,7 +11,7 @@ import "nearcell/voronoi/polyhedron"
 // solid's bounding box only, and Solid.Measure tells what of it lies inside. For a
 // p outside the solid c can be empty.
 //
-// It fails with *NotFiniteError or *UnresolvedError (their site is then -1).
+// It fails with *NotFiniteError (its site is then -1).
 func (d *Diagram) Insert(p Vec, c *polyhedron.Cell) error {
 	for axis, x := range [3]float64{p.X, p.Y, p.Z} {
 		if !(x >= -1e150 && x <= 1e150) {
@@ -26,9 +26,7 @@ func (d *Diagram) Insert(p Vec, c *polyhedron.Cell) error {
 	if i, d2 := d.tree.Nearest(local); d2 == 0 && d.tree.Point(i) == local {
 		self = i
 	}
-	if _, err := b.build(c, local, p, self); err != nil {
-		return err
-	}
+	b.build(c, local, p, self)
 	c.Relabel(d.site)
 	return nil
 }

@@ -12,7 +12,7 @@ import (
 // means all sites. Only what is wanted is computed, cell by cell, and the results
 // have the same bits for any number of threads and any order of the sites.
 //
-// It fails with *NoSuchSiteError, *UnresolvedError, an error of the solid, or the
+// It fails with *NoSuchSiteError, an error of the solid, or the
 // error of ctx, which is looked at every 64 cells.
 func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*Cells, error) {
 	r, err := d.request(sites)
@@ -123,10 +123,7 @@ func (b *builder) measure(cell int32, want Measures, out *Cells, row int32) erro
 		return nil
 	}
 	at := add(p, d.origin)
-	bounded, err := b.build(&b.cell, p, at, cell)
-	if err != nil {
-		return err
-	}
+	bounded := b.build(&b.cell, p, at, cell)
 	switch {
 	case !bounded:
 		measureUnbounded(&b.cell, want, out, row)

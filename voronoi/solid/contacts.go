@@ -7,9 +7,15 @@ import (
 	"nearcell/voronoi/polyhedron"
 )
 
-// crumb times the surface of a cell is the area below which a wall in it is an
-// artefact of rounding.
+// crumb times the surface of a cell is the area below which a wall in it does not
+// count as one.
 const crumb = 1e-11
+
+// least is the area below which a wall in the base does not count: a strip narrower
+// than near is an artefact of rounding, as is a crumb.
+func (w *Work) least() float64 {
+	return max(crumb*w.size, 2*w.x.near*math.Sqrt(w.size))
+}
 
 // contacts sets the area inside the solid of the faces towards neighbours.
 //
@@ -24,25 +30,28 @@ func (w *Work) contacts(c *polyhedron.Cell) {
 		}
 		area := f.area
 		if f.flush >= 0 {
-			area = w.twoSided(i, &w.near[f.flush])
+			area = w.twoSided(f.face, &w.near[f.flush])
 		}
-		w.out.Contacts[w.indexIn(c, i)] += area
+		w.out.Contacts[w.indexIn(c, f)] += area
 	}
 }
 
-// indexIn is the number in the given cell of the base's face i.
-func (w *Work) indexIn(c *polyhedron.Cell, i int) int {
+// indexIn is the number of the base's face in the given cell: that of the largest
+// face in its plane.
+func (w *Work) indexIn(c *polyhedron.Cell, f *baseFace) int {
 	if w.base == c {
-		return i
+		return f.face
 	}
-	f := &w.faces[i]
+	best, most := -1, -1.0
 	for k := range c.NumFaces() {
 		n, d := c.FacePlane(k)
 		if label, _ := c.Face(k); label == f.label && d == f.d && n == f.n {
-			return k
+			if a := norm3(c.FaceArea(k)); a > most {
+				best, most = k, a
+			}
 		}
 	}
-	panic("solid: a cut made a face towards a neighbour")
+	return best
 }
 
 // twoSided is the area of the base's face i, which lies in the plane of a wall, where
@@ -123,7 +132,7 @@ func (w *Work) walls() {
 			floor += f.area
 		}
 	}
-	least := crumb * w.size
+	least := w.least()
 	for _, a := range [2]float64{floor, ceiling} {
 		total.add(a)
 		if a > least {
@@ -159,13 +168,13 @@ func (w *Work) wallArea(e *nearEdge) float64 {
 	if e.oneSided(w.x.near) {
 		area, found := 0.0, false
 		for i := range w.faces {
-			_, loop := w.base.Face(i)
+			_, loop := w.base.Face(w.faces[i].face)
 			if w.faces[i].flush == flat || !w.isFlush(loop, e) {
 				continue
 			}
 			found = true
 			if e.in > w.x.near {
-				w.poly.SetFace(w.base, i)
+				w.poly.SetFace(w.base, w.faces[i].face)
 				area += w.stripArea(e.edge, t0, t1)
 			}
 		}

@@ -278,28 +278,38 @@ func (w *Work) finish(c *polyhedron.Cell) {
 	}
 	if w.want&WantShape != 0 {
 		w.out.Clipped = w.out.WallFaces > 0
-		if w.out.Shape == nil {
+		if w.out.Shape == nil || w.hasSliver() {
 			w.judgeShape()
 		}
 	}
 }
 
+// hasSliver tells that a wall cut the shape that is too small to count in it.
+func (w *Work) hasSliver() bool {
+	for i := range w.near {
+		if cut := w.near[i].cut; cut > 0 && cut <= w.least() {
+			return true
+		}
+	}
+	return false
+}
+
 // judgeShape finds out whether what the pieces of the plan add up to is convex: then
 // it is the base cut by the walls that pass through it.
 func (w *Work) judgeShape() {
-	w.out.Reentrant = true
+	w.out.Reentrant, w.out.Shape = true, nil
 	w.shape.CopyFrom(w.base)
 	for i := range w.near {
 		e := &w.near[i]
-		if e.area <= crumb*w.size || e.oneSided(w.x.near) {
+		if e.area <= w.least() || e.oneSided(w.x.near) {
 			continue
 		}
 		if w.shape.Clip(e.normal(), e.d, polyhedron.Wall(e.wall)) == polyhedron.Empty {
 			return
 		}
 	}
-	all := w.base.Volume()
-	if math.Abs(w.shape.Volume()-w.out.Volume) > 1e-11*all || w.x.plan.side(w.middle(&w.shape)) == Outside {
+	tol := max(1e-11*w.base.Volume(), w.x.near*w.size)
+	if math.Abs(w.shape.Volume()-w.out.Volume) > tol || w.x.plan.side(w.middle(&w.shape)) == Outside {
 		return
 	}
 	w.out.Reentrant, w.out.Shape = false, &w.shape

@@ -45,6 +45,7 @@ func (e *nearEdge) oneSided(near float64) bool { return e.in <= near || e.out <=
 
 // baseFace is a face of the base and the area of it that lies in the solid.
 type baseFace struct {
+	face  int // its number; the largest where rounding left several faces in one plane
 	n     Vec
 	d     float64
 	label int32
@@ -133,7 +134,11 @@ func (w *Work) listFaces() {
 	for i := range w.base.NumFaces() {
 		label, loop := w.base.Face(i)
 		n, d := w.base.FacePlane(i)
-		f := baseFace{n: n, d: d, label: label, flush: notFlush}
+		f := baseFace{face: i, n: n, d: d, label: label, flush: notFlush}
+		k := w.faceOf(n, d, label)
+		if k >= 0 && norm3(w.base.FaceArea(i)) <= norm3(w.base.FaceArea(w.faces[k].face)) {
+			continue
+		}
 		low, high := math.Inf(1), math.Inf(-1)
 		for _, j := range loop {
 			z := w.base.Vertex(int(j)).Z
@@ -142,12 +147,16 @@ func (w *Work) listFaces() {
 		if high <= floor+w.x.near || low >= ceiling-w.x.near {
 			f.flush = flat
 		}
-		for k := range w.near {
-			if f.flush == notFlush && w.near[k].oneSided(w.x.near) && w.isFlush(loop, &w.near[k]) {
-				f.flush = int32(k)
+		for j := range w.near {
+			if f.flush == notFlush && w.near[j].oneSided(w.x.near) && w.isFlush(loop, &w.near[j]) {
+				f.flush = int32(j)
 			}
 		}
-		w.faces = append(w.faces, f)
+		if k >= 0 {
+			w.faces[k] = f
+		} else {
+			w.faces = append(w.faces, f)
+		}
 	}
 }
 
