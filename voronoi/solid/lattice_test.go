@@ -43,7 +43,9 @@ func newLattice(e example) *lattice {
 	return l
 }
 
-func (l *lattice) at(site int) (i, j, k int) { return site % l.nx, site / l.nx % l.ny, site / l.nx / l.ny }
+func (l *lattice) at(site int) (i, j, k int) {
+	return site % l.nx, site / l.nx % l.ny, site / l.nx / l.ny
+}
 
 // neighbours are the sites around a site, itself left out, as a lattice numbers them.
 func (l *lattice) neighbours(site int) []int {
