@@ -37,7 +37,7 @@ func newExtrusion(kind string, p *plan, z0, z1 float64) (*extrusion, error) {
 	x := &extrusion{plan: p, z0: z0 + 0, z1: z1 + 0, kind: kind}
 	size := max(math.Abs(p.lo.X), math.Abs(p.hi.X), math.Abs(p.lo.Y), math.Abs(p.hi.Y), math.Abs(z0), math.Abs(z1))
 	height := x.z1 - x.z0
-	if !(height > snapFactor*size) || x.Volume() == 0 {
+	if !(height > snapFactor*size) || !(x.Volume() >= smallest) {
 		e := fault(NoExtent, -1)
 		e.Axis = 2
 		return nil, e

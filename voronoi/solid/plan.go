@@ -178,8 +178,8 @@ func (p *plan) extent() {
 // side tells exactly where q lies: the number of times the boundary winds around it,
 // counted by the edges that pass it on one side (half-open in y).
 func (p *plan) side(q Vec2) Side {
-	if q.X < p.lo.X || q.X > p.hi.X || q.Y < p.lo.Y || q.Y > p.hi.Y {
-		return Outside
+	if !(q.X >= p.lo.X && q.X <= p.hi.X && q.Y >= p.lo.Y && q.Y <= p.hi.Y) {
+		return Outside // a NaN is nowhere
 	}
 	winding := 0
 	for i := range p.edges {

@@ -46,8 +46,9 @@ func NewBox(a, b Vec) (*Box, error) {
 		}
 		size = max(size, -c[0], c[1])
 	}
-	for i, d := range []float64{hi.X - lo.X, hi.Y - lo.Y, hi.Z - lo.Z} {
-		if !(d > 32*snapFactor*size) {
+	extent := []float64{hi.X - lo.X, hi.Y - lo.Y, hi.Z - lo.Z}
+	for i, d := range extent {
+		if none := !(d > 32*snapFactor*size); none || (i == 2 && !(extent[0]*extent[1]*d >= smallest)) {
 			e := fault(NoExtent, -1)
 			e.Axis = i
 			return nil, e

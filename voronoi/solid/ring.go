@@ -26,6 +26,9 @@ type rings struct {
 // largest is the limit of coordinates: beyond it the moments of cells overflow.
 const largest = 1e50
 
+// smallest is the limit of volumes: below it products of lengths lose digits.
+const smallest = 1e-280
+
 // snapFactor times the largest coordinate is the distance below which two corners
 // are one and a corner lies on a side. It is four units in the last place: a plan
 // whose corners were rotated or shifted by a program meets its own sides no better.
