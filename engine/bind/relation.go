@@ -127,13 +127,23 @@ func (b *binder) position(rel *relation.Bound, r *lang.Relation) error {
 	if f := rel.Input[rel.ID]; f.Type == column.Point || f.Type == column.Null {
 		return problem.New("types", b.at(r.Operand), "'%s' of %s is %s, which identifies nothing", f.Name, rel.Name, f.Type)
 	}
-	x := rel.Input[rel.X].Unit
-	if column.SameUnit(x, rel.Input[rel.Y].Unit) && column.SameUnit(x, rel.Input[rel.Z].Unit) && x != nil {
-		rel.Clauses.Unit = x
-	} else if x != nil || rel.Input[rel.Y].Unit != nil || rel.Input[rel.Z].Unit != nil {
-		return problem.New("units", b.at(r.Operand), "x, y, z of %s are in %s, %s, %s: a position has one unit", rel.Name,
-			unitName(x), unitName(rel.Input[rel.Y].Unit), unitName(rel.Input[rel.Z].Unit))
-	} else {
+	return b.lengthUnit(rel, r)
+}
+
+// lengthUnit is the one unit of the coordinates: m where none of them says.
+func (b *binder) lengthUnit(rel *relation.Bound, r *lang.Relation) error {
+	for _, i := range []int{rel.X, rel.Y, rel.Z} {
+		u := rel.Input[i].Unit
+		switch {
+		case u == nil:
+		case rel.Clauses.Unit == nil:
+			rel.Clauses.Unit = u
+		case !column.SameUnit(u, rel.Clauses.Unit):
+			return problem.New("units", b.at(r.Operand), "x, y, z of %s are in %s, %s, %s: a position has one unit", rel.Name,
+				unitName(rel.Input[rel.X].Unit), unitName(rel.Input[rel.Y].Unit), unitName(rel.Input[rel.Z].Unit))
+		}
+	}
+	if rel.Clauses.Unit == nil {
 		rel.Clauses.Unit = column.Symbol("m")
 	}
 	return nil

@@ -83,7 +83,6 @@ func (s *sites) open(ctx context.Context, p *Part) (*diagram.Handle, error) {
 func (s *sites) refused(err error, p *Part) error {
 	var notFinite *voronoi.NotFiniteError
 	var noVolume *voronoi.NoVolumeError
-	var unresolved *voronoi.UnresolvedError
 	name := func(site int) string { return idText(s.order.id, int(p.Rows[p.firstRow(int32(site))])) }
 	switch {
 	case errors.Is(err, context.Canceled), errors.Is(err, context.DeadlineExceeded):
@@ -93,9 +92,6 @@ func (s *sites) refused(err error, p *Part) error {
 			'x'+rune(notFinite.Axis), column.FormatReal(notFinite.X), name(notFinite.Site))
 	case errors.As(err, &noVolume):
 		return problem.New("no-volume", s.b.Place, "%s has no volume", s.b.Clauses.SolidName)
-	case errors.As(err, &unresolved):
-		return problem.New("unresolved", s.b.Place, "the cell of site %s reaches too far to be computed", name(unresolved.Site)).
-			WithHint("close the partition with WITHIN solid")
 	}
 	return problem.At(err, s.b.Place)
 }
