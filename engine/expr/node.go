@@ -196,3 +196,7 @@ func shareTexts(list []Expr) {
 		list[i] = &shared
 	}
 }
+
+// Coerce gives an argument the type that a function's checker asks for: NULL
+// takes any type, INTEGER becomes REAL, and the unit stays.
+func Coerce(e Expr, t column.Type) Expr { return coerce(e, t) }

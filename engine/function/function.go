@@ -23,7 +23,10 @@ type Result struct {
 }
 
 // Scalar is a function of the values of one row. Eval is called with vectors
-// of n values each and computes the rows of on (nil: all); it returns a
+// of n values each, of the types that Check asked for, and computes the rows of
+// on (nil: all), in none of which an argument is NULL. out comes with its
+// slices (codes 0, the dictionary one empty text); the kernel fills the values,
+// sets the dictionary and, if it has NULLs to give, Valid. It returns a
 // *RowFault for a row without a value.
 //
 // Lazy functions have no Eval: package expr has a node for each of them, since

@@ -1,0 +1,258 @@
+package function
+
+import (
+	"fmt"
+	"math"
+
+	"nearcell/catalog/column"
+)
+
+func momentAggregates() []*Aggregate {
+	return []*Aggregate{
+		variance("VAR_POP", "the variance: the mean of the squared deviations from the mean", 2, newVariance(false, false)),
+		variance("VAR_SAMP", "the variance as estimated from a sample: divided by n-1, with weights by Σw - Σw²/Σw; NULL of one row", 2, newVariance(true, false)),
+		variance("STDDEV_POP", "the square root of VAR_POP", 1, newVariance(false, true)),
+		variance("STDDEV_SAMP", "the square root of VAR_SAMP", 1, newVariance(true, true)),
+		{Name: "CORR", Signature: "CORR(y, x)", Meaning: "the correlation of two columns (Pearson); NULL where one of them does not vary",
+			Example: "CORR(temp, z) WEIGHTED BY volume", Weighted: true, Check: checkCorr,
+			New: func(s Setup) Accumulator { return &correlations{tally: tally{weighted: s.Weighted}} }},
+		{Name: "MKT", Signature: "MKT(temp [, kJ/mol])",
+			Meaning: "the mean kinetic temperature, °C in and out (Haynes 1971); activation energy 83.144 kJ/mol if not given, R = 8.3144 J/(mol K)",
+			Example: "MKT(temp) WEIGHTED BY volume", Weighted: true, Check: checkMKT, New: newMKT},
+	}
+}
+
+func variance(name, meaning string, power int, make func(Setup) Accumulator) *Aggregate {
+	return &Aggregate{Name: name, Signature: name + "([DISTINCT] x)", Meaning: meaning, Example: name + "(temp) WEIGHTED BY volume",
+		Weighted: true, New: make,
+		Check: func(args []Arg, weight *Arg) (Result, error) {
+			if err := firstError(wantCount(name, args, 1, 1), checkWeight(weight)); err != nil {
+				return Result{}, err
+			}
+			return Result{column.Real, args[0].Unit.Pow(power), repeatType(column.Real, 1)}, wantNumber(name, args, 0)
+		}}
+}
+
+// moment is Σw, Σw(x-c) and Σw(x-c)² of one group, about one of its values c,
+// in double-double: exact enough for values that differ little from a large
+// one, and the same to the last bit of the result in whatever order they come.
+type moment struct {
+	c         float64
+	n         int64
+	w, m1, m2 dd
+}
+
+func (m *moment) add(x, w float64) {
+	if m.n == 0 {
+		m.c = x
+	}
+	m.n++
+	d := twoSum(x, -m.c)
+	m.w = m.w.plus(w)
+	wd := d.times(w)
+	m.m1 = m.m1.add(wd)
+	m.m2 = m.m2.add(wd.mul(d))
+}
+
+// merge adds the moments of o after moving them to the own centre.
+func (m *moment) merge(o *moment) {
+	if m.n == 0 {
+		*m = *o
+		return
+	}
+	if o.n == 0 {
+		return
+	}
+	d := twoSum(o.c, -m.c)
+	wd := o.w.mul(d)
+	m.n += o.n
+	m.w = m.w.add(o.w)
+	m.m1 = m.m1.add(o.m1).add(wd)
+	m.m2 = m.m2.add(o.m2).add(d.mul(o.m1).times(2)).add(wd.mul(d))
+}
+
+// squares is the sum of the squared deviations from the mean.
+func (m *moment) squares() dd {
+	s := m.m2.add(m.m1.mul(m.m1).over(m.w).negative())
+	if s.hi < 0 {
+		return dd{}
+	}
+	return s
+}
+
+type variances struct {
+	tally
+	sample, root bool
+	moments      []moment
+}
+
+func newVariance(sample, root bool) func(Setup) Accumulator {
+	return func(s Setup) Accumulator {
+		return &variances{tally: tally{weighted: s.Weighted}, sample: sample, root: root}
+	}
+}
+
+func (a *variances) name() string {
+	name := "VAR"
+	if a.root {
+		name = "STDDEV"
+	}
+	if a.sample {
+		return name + "_SAMP"
+	}
+	return name + "_POP"
+}
+
+func (a *variances) Add(groups []int32, on []uint64, n int, args []column.Vector, weight *column.Vector) error {
+	rows, weights, err := a.begin(groups, on, n, args, weight)
+	if err != nil {
+		return err
+	}
+	for _, i := range rows {
+		x, w := args[0].F[i], 1.0
+		if x-x != 0 {
+			return infiniteValue(int(i), a.name(), x)
+		}
+		if weights != nil {
+			w = weights[i]
+		}
+		a.moments = grow(a.moments, groups[i])
+		a.moments[groups[i]].add(x, w)
+	}
+	return nil
+}
+
+func infiniteValue(row int, name string, x float64) error {
+	return &RowFault{Row: row, Code: "no-value", Message: fmt.Sprintf("%s of a column with %s in it has no value", name, column.FormatReal(x))}
+}
+
+func (a *variances) Merge(other Accumulator, to []int32) error {
+	o := other.(*variances)
+	a.mergeFacts(&o.tally, to)
+	for g := range o.moments {
+		a.moments = grow(a.moments, to[g])
+		a.moments[to[g]].merge(&o.moments[g])
+	}
+	return nil
+}
+
+func (a *variances) Result(groups int) (column.Vector, error) {
+	v := column.New(column.Real, nil, groups)
+	for g := range groups {
+		if g >= len(a.moments) || a.moments[g].n == 0 || a.sample && a.moments[g].n == 1 {
+			v.SetNull(g)
+			continue
+		}
+		m := &a.moments[g]
+		by := m.w
+		switch {
+		case a.sample && a.weighted:
+			by = by.add(a.fact(g).squares.over(m.w).negative())
+		case a.sample:
+			by = by.plus(-1)
+		}
+		if by.hi <= 0 {
+			v.SetNull(g) // one weight is everything, to 32 digits
+			continue
+		}
+		f := m.squares().over(by).value()
+		if f-f != 0 {
+			return v, &GroupFault{Group: g, Code: "overflow", Message: a.name() + " has no finite value: the numbers are too large"}
+		}
+		if a.root {
+			f = math.Sqrt(f)
+		}
+		v.F[g] = f
+	}
+	return v, nil
+}
+
+func checkCorr(args []Arg, weight *Arg) (Result, error) {
+	if err := firstError(wantCount("CORR", args, 2, 2), checkWeight(weight)); err != nil {
+		return Result{}, err
+	}
+	return Result{column.Real, nil, repeatType(column.Real, 2)}, firstError(wantNumber("CORR", args, 0), wantNumber("CORR", args, 1))
+}
+
+// joint is the moments of two columns, each about one of its values.
+type joint struct {
+	y, x moment
+	xy   dd // Σw(y-cy)(x-cx)
+}
+
+func (j *joint) merge(o *joint) {
+	if o.x.n == 0 {
+		return
+	}
+	if j.x.n == 0 {
+		*j = *o
+		return
+	}
+	dy, dx := twoSum(o.y.c, -j.y.c), twoSum(o.x.c, -j.x.c)
+	j.xy = j.xy.add(o.xy).add(dx.mul(o.y.m1)).add(dy.mul(o.x.m1)).add(o.x.w.mul(dx).mul(dy))
+	j.y.merge(&o.y)
+	j.x.merge(&o.x)
+}
+
+type correlations struct {
+	tally
+	joints []joint
+}
+
+func (a *correlations) Add(groups []int32, on []uint64, n int, args []column.Vector, weight *column.Vector) error {
+	rows, weights, err := a.begin(groups, on, n, args, weight)
+	if err != nil {
+		return err
+	}
+	for _, i := range rows {
+		y, x, w := args[0].F[i], args[1].F[i], 1.0
+		if y-y != 0 {
+			return infiniteValue(int(i), "CORR", y)
+		}
+		if x-x != 0 {
+			return infiniteValue(int(i), "CORR", x)
+		}
+		if weights != nil {
+			w = weights[i]
+		}
+		a.joints = grow(a.joints, groups[i])
+		j := &a.joints[groups[i]]
+		j.y.add(y, w)
+		j.x.add(x, w)
+		j.xy = j.xy.add(twoSum(y, -j.y.c).mul(twoSum(x, -j.x.c)).times(w))
+	}
+	return nil
+}
+
+func (a *correlations) Merge(other Accumulator, to []int32) error {
+	o := other.(*correlations)
+	a.mergeFacts(&o.tally, to)
+	for g := range o.joints {
+		a.joints = grow(a.joints, to[g])
+		a.joints[to[g]].merge(&o.joints[g])
+	}
+	return nil
+}
+
+func (a *correlations) Result(groups int) (column.Vector, error) {
+	v := column.New(column.Real, nil, groups)
+	for g := range groups {
+		if g >= len(a.joints) || a.joints[g].x.n == 0 {
+			v.SetNull(g)
+			continue
+		}
+		j := &a.joints[g]
+		yy, xx := j.y.squares().value(), j.x.squares().value()
+		if yy == 0 || xx == 0 {
+			v.SetNull(g)
+			continue
+		}
+		xy := j.xy.add(j.y.m1.mul(j.x.m1).over(j.x.w).negative()).value()
+		r := xy / math.Sqrt(yy) / math.Sqrt(xx)
+		if r != r || math.IsInf(yy, 0) || math.IsInf(xx, 0) {
+			return v, &GroupFault{Group: g, Code: "overflow", Message: "CORR has no finite value: the numbers are too large"}
+		}
+		v.F[g] = max(-1, min(1, r)) + 0
+	}
+	return v, nil
+}
