@@ -78,7 +78,7 @@ const maxPower = 99 // beyond it the text is taken as a label
 func parseFactor(s string) (symbol string, power int, ok bool) {
 	symbol, digits := s, "1"
 	if before, after, found := strings.Cut(s, "^"); found {
-		symbol, digits = before, after
+		symbol, digits = before, strings.TrimSpace(after)
 	} else if i := strings.IndexAny(s, "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"); i >= 0 {
 		symbol, digits = s[:i], plainDigits(s[i:])
 	} else if isLength(s) {

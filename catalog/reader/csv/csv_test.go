@@ -14,7 +14,7 @@ import (
 	"nearcell/catalog/reader"
 )
 
-// TestStories runs the golden stories of testdata. The command read takes a
+// TestStories runs the golden stories of testdata/stories. The command read takes a
 // file and prints what became of it. \r, \t and \xNN in the file stand for those
 // bytes; the options are those of reader.Options by short names, and
 //
@@ -24,7 +24,7 @@ import (
 //	refused  faulty lines are handed over and printed
 //	facts    the facts of the reading are printed
 func TestStories(t *testing.T) {
-	datadriven.Walk(t, "testdata", func(t *testing.T, path string) {
+	datadriven.Walk(t, "testdata/stories", func(t *testing.T, path string) {
 		datadriven.RunTest(t, path, func(t *testing.T, d *datadriven.TestData) string {
 			if d.Cmd != "read" {
 				t.Fatalf("no such command: %s", d.Cmd)
