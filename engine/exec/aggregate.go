@@ -228,7 +228,7 @@ func (s *aggregateSink) Finish(context.Context) (Source, error) {
 		out.Cols[i].Unit = s.node.Fields[i].Unit
 	}
 	s.say()
-	return &tableSource{out}, nil
+	return newTableSource(s.env, out), nil
 }
 
 // say notes what the values rest on.

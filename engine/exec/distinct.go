@@ -71,5 +71,5 @@ func (s *distinctSink) Finish(context.Context) (Source, error) {
 	if s.all == nil {
 		s.all = s.Part(0).(*distinctPart)
 	}
-	return &tableSource{s.all.rows.finish()}, nil
+	return newTableSource(s.env, s.all.rows.finish()), nil
 }

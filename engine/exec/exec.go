@@ -25,6 +25,24 @@ type Env struct {
 	Memory int64 // bytes that the statement's sinks may keep, 0: no limit
 
 	kept atomic.Int64
+	// chunk and batch are the numbers of rows of a chunk and of a batch of a
+	// table, 0: the usual ones. Tests set them: results must not depend on them
+	// (but for the last bits of sums).
+	chunk, batch int
+}
+
+func (e *Env) chunkRows() int {
+	if e.chunk > 0 {
+		return e.chunk
+	}
+	return ChunkRows
+}
+
+func (e *Env) batchRows() int {
+	if e.batch > 0 {
+		return e.batch
+	}
+	return BatchRows
 }
 
 // keep counts bytes that a sink holds on to against the limit.

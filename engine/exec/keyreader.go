@@ -137,6 +137,9 @@ func (r *keyReader) encode(cols []column.Vector, on []uint64, n int, adding bool
 	r.order = activeRows(r.order, on, n)
 	r.words = room(r.words, len(r.order)*t.width)
 	clear(r.words)
+	if len(r.order) == 0 {
+		return
+	}
 	at := 0
 	marks := t.width - column.Words(len(t.types))
 	for c := range cols {

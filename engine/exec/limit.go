@@ -110,5 +110,5 @@ func (s *limitSink) Merge(part Part) error {
 }
 
 func (s *limitSink) Finish(context.Context) (Source, error) {
-	return &tableSource{s.all.finish()}, nil
+	return newTableSource(s.env, s.all.finish()), nil
 }

@@ -15,11 +15,11 @@ import (
 func (r *runner) open(ctx context.Context, n plan.Node) (*pipeline, error) {
 	switch n := n.(type) {
 	case *plan.One:
-		return sourceOnly(&tableSource{&column.Table{N: 1}}), nil
+		return sourceOnly(newTableSource(r.env, &column.Table{N: 1})), nil
 	case *plan.Values:
 		return r.openValues(n)
 	case *plan.Scan:
-		return sourceOnly(&tableSource{scanned(n)}), nil
+		return sourceOnly(newTableSource(r.env, scanned(n))), nil
 	case *plan.Relation:
 		return r.openRelation(ctx, n)
 	case *plan.Filter:
@@ -107,7 +107,7 @@ func (r *runner) openValues(n *plan.Values) (*pipeline, error) {
 	for i, b := range builders {
 		t.Cols[i] = b.Finish()
 	}
-	return sourceOnly(&tableSource{t}), nil
+	return sourceOnly(newTableSource(r.env, t)), nil
 }
 
 func (r *runner) openJoin(ctx context.Context, n *plan.Join) (*pipeline, error) {

@@ -102,7 +102,7 @@ func (p *pipeline) streamInto(ctx context.Context, w *Worker, sink Sink) error {
 		if err := steps(b); err != nil {
 			return err
 		}
-		if rows += b.N; rows < ChunkRows {
+		if rows += b.N; rows < w.Env.chunkRows() {
 			return nil
 		}
 		full := part

@@ -87,7 +87,7 @@ func (s *sortSink) Merge(p Part) error {
 // cut forgets the rows that cannot be among the first ones, whenever enough
 // have come together.
 func (s *sortSink) cut(rows **tableBuilder) error {
-	if s.node.Top <= 0 || int64((*rows).n) <= 2*s.node.Top+ChunkRows {
+	if s.node.Top <= 0 || int64((*rows).n) <= 2*s.node.Top+int64(s.env.chunkRows()) {
 		return nil
 	}
 	first := s.first((*rows).finish())
@@ -105,5 +105,5 @@ func (s *sortSink) Finish(context.Context) (Source, error) {
 		idx = idx[:s.node.Top]
 	}
 	visible := &column.Table{Schema: s.schema, Cols: all.Cols[:len(s.schema)], N: all.N}
-	return &tableSource{gatherTable(visible, idx)}, nil
+	return newTableSource(s.env, gatherTable(visible, idx)), nil
 }

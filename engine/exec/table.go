@@ -9,22 +9,28 @@ import (
 	"nearcell/engine/problem"
 )
 
-// tableSource reads a table in memory: chunk c is its rows from c·64 Ki on.
+// tableSource reads a table in memory: chunk c is its rows from c times the rows
+// of a chunk on.
 type tableSource struct {
-	table *column.Table
+	table        *column.Table
+	chunk, batch int // rows
+}
+
+func newTableSource(env *Env, t *column.Table) *tableSource {
+	return &tableSource{t, env.chunkRows(), env.batchRows()}
 }
 
 func (s *tableSource) Schema() column.Schema { return s.table.Schema }
 
-func (s *tableSource) Chunks() int { return (s.table.N + ChunkRows - 1) / ChunkRows }
+func (s *tableSource) Chunks() int { return (s.table.N + s.chunk - 1) / s.chunk }
 
 func (s *tableSource) Read(ctx context.Context, w *Worker, chunk int, emit Emit) error {
-	end := min(s.table.N, (chunk+1)*ChunkRows)
-	for lo := chunk * ChunkRows; lo < end; lo += BatchRows {
+	end := min(s.table.N, (chunk+1)*s.chunk)
+	for lo := chunk * s.chunk; lo < end; lo += s.batch {
 		if err := ctx.Err(); err != nil {
 			return err
 		}
-		b := s.table.Batch(lo, min(lo+BatchRows, end))
+		b := s.table.Batch(lo, min(lo+s.batch, end))
 		w.begin(int64(lo))
 		if err := emit(&b); err != nil {
 			return err
@@ -302,7 +308,7 @@ func (s *collectSink) Finish(context.Context) (Source, error) {
 	if s.all == nil {
 		s.all = newTableBuilder(s.env, s.schema)
 	}
-	return &tableSource{s.all.finish()}, nil
+	return newTableSource(s.env, s.all.finish()), nil
 }
 
 type collectPart struct {

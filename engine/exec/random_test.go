@@ -1,0 +1,247 @@
+package exec
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"pgregory.net/rapid"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/note"
+	"nearcell/engine/plan"
+	"nearcell/engine/plan/plantest"
+	"nearcell/engine/problem"
+	"nearcell/engine/relation"
+)
+
+func testEnv(chunk, batch int) *Env {
+	return &Env{Env: relation.Env{Notes: &note.Notes{}}, chunk: chunk, batch: batch}
+}
+
+// run is the rows of a plan. It checks on the way what every batch must keep.
+func run(t interface{ Fatalf(string, ...any) }, env *Env, n plan.Node) ([]row, error) {
+	var rows []row
+	schema := n.Schema()
+	err := Run(context.Background(), env, n, func(b *column.Batch) error {
+		if b.On != nil || b.N == 0 || len(b.Cols) != len(schema) {
+			t.Fatalf("a batch of %d rows, %d columns for %d fields, mask %v", b.N, len(b.Cols), len(schema), b.On != nil)
+		}
+		for i := range b.Cols {
+			if v := &b.Cols[i]; v.N != b.N || v.Type != schema[i].Type && v.Type != column.Null {
+				t.Fatalf("column %d is a %s of %d values, want %d of %s", i, v.Type, v.N, b.N, schema[i].Type)
+			}
+		}
+		rows = append(rows, rowsOf(b)...)
+		return nil
+	})
+	return rows, err
+}
+
+// sameRows compares rows bit by bit, but for the sign of a zero that went
+// through an aggregate: of -0 and 0 in one group either may stand for both.
+func sameRows(n plan.Node, got, want []row) error {
+	bits := math.Float64bits
+	if aggregates(n) {
+		bits = func(f float64) uint64 { return math.Float64bits(f + 0) }
+	}
+	if len(got) != len(want) {
+		return fmt.Errorf("%d rows, want %d", len(got), len(want))
+	}
+	for i := range got {
+		for c := range want[i] {
+			g, w := got[i][c], want[i][c]
+			if w.Type == column.Null || g.Type == column.Null {
+				if g.Null != w.Null {
+					return fmt.Errorf("row %d, column %d: %+v, want %+v", i, c, g, w)
+				}
+				continue
+			}
+			same := g.Null == w.Null && g.I == w.I && g.S == w.S && bits(g.F) == bits(w.F)
+			for k := range g.P {
+				same = same && bits(g.P[k]) == bits(w.P[k])
+			}
+			if !same {
+				return fmt.Errorf("row %d, column %d: %+v, want %+v", i, c, g, w)
+			}
+		}
+	}
+	return nil
+}
+
+func aggregates(n plan.Node) bool {
+	_, is := n.(*plan.Aggregate)
+	for _, in := range n.Inputs() {
+		is = is || aggregates(in)
+	}
+	return is
+}
+
+// Every random plan gives the rows of the naive computation, in their order,
+// for any size of chunks and batches. Where that one fails, so may this one
+// (it computes fewer rows under a LIMIT).
+func TestPlansAgainstNaive(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		seed := rapid.Uint64().Draw(t, "seed")
+		depth := rapid.IntRange(1, 4).Draw(t, "depth")
+		rng := rand.New(rand.NewPCG(seed, 1))
+		n := plantest.Plan(rng, depth, 30)
+		want, naiveErr := naive(n)
+		if len(want) > 20000 {
+			return
+		}
+		for _, sizes := range [][2]int{{0, 0}, {128, 64}, {64, 64}, {256, 128}} {
+			got, err := run(t, testEnv(sizes[0], sizes[1]), n)
+			if naiveErr != nil {
+				continue
+			}
+			if err != nil {
+				t.Fatalf("chunks of %d: %v\n%s", sizes[0], err, plan.Format(n))
+			}
+			if err := sameRows(n, got, want); err != nil {
+				t.Fatalf("chunks of %d: %v\n%s", sizes[0], err, plan.Format(n))
+			}
+		}
+	})
+}
+
+// The operators agree with the naive computation around the borders of batches
+// and chunks, where masks end and parts are merged.
+func TestBorders(t *testing.T) {
+	for _, rows := range []int{0, 1, 63, 64, 65, 2047, 2048, 2049, 65535, 65536, 65537} {
+		rng := rand.New(rand.NewPCG(uint64(rows), 7))
+		table := plantest.Table(rng, rows)
+		small := plantest.Table(rng, 5)
+		scan, schema := plantest.Scan(table), plantest.Schema
+		half := &plan.Filter{Input: scan, Cond: compare("<", schema, 1, 0), Clause: "WHERE"}
+		plans := map[string]plan.Node{
+			"scan":     scan,
+			"filter":   half,
+			"group":    &plan.Aggregate{Input: half, Keys: columns(schema, 3, 2), Calls: calls(schema, "COUNT", 1, "SUM", 2), Fields: fields(schema, 3, 2, 1, 2)},
+			"whole":    &plan.Aggregate{Input: half, Calls: calls(schema, "SUM", 1, "MAX", 3), Fields: fields(schema, 1, 3)},
+			"sort":     &plan.Sort{Input: half, Keys: []plan.SortKey{{Expr: plantest.Column(schema, 3)}, {Expr: plantest.Column(schema, 2), Descending: true}}},
+			"top":      &plan.Sort{Input: scan, Keys: []plan.SortKey{{Expr: plantest.Column(schema, 6), NullsFirst: true}}, Top: 2048},
+			"limit":    &plan.Limit{Input: half, Count: 2048, Offset: int64(max(0, rows/2-1000))},
+			"distinct": &plan.Distinct{Input: &plan.Project{Input: half, Exprs: columns(schema, 2, 3, 5), Fields: fields(schema, 2, 3, 5)}},
+			"join":     &plan.Join{Left: half, Right: plantest.Scan(small), LeftKeys: columns(schema, 1), RightKeys: columns(schema, 2), Kind: plan.Left},
+			"union":    &plan.Union{Parts: []plan.Node{half, scan, plantest.Scan(small)}, Fields: schema},
+		}
+		for name, n := range plans {
+			want, err := naive(n)
+			if err != nil {
+				t.Fatal(err)
+			}
+			got, err := run(t, testEnv(0, 0), n)
+			if err != nil {
+				t.Fatalf("%s of %d rows: %v", name, rows, err)
+			}
+			if err := sameRows(n, got, want); err != nil {
+				t.Errorf("%s of %d rows: %v", name, rows, err)
+			}
+		}
+	}
+}
+
+// ctx is looked at in the middle of a batch that a join multiplies.
+func TestCancelled(t *testing.T) {
+	rng := rand.New(rand.NewPCG(1, 1))
+	n := &plan.Join{Left: plantest.Scan(plantest.Table(rng, 2000)), Right: plantest.Scan(plantest.Table(rng, 2000))}
+	ctx, cancel := context.WithCancel(context.Background())
+	batches := 0
+	err := Run(ctx, testEnv(0, 0), n, func(*column.Batch) error {
+		batches++
+		cancel()
+		return nil
+	})
+	if !errors.Is(err, context.Canceled) || batches != 1 {
+		t.Errorf("%d batches after the cancellation, error %v", batches, err)
+	}
+	_, err = Collect(ctx, testEnv(0, 0), &plan.Sort{Input: n.Left, Keys: []plan.SortKey{{Expr: plantest.Column(plantest.Schema, 1)}}})
+	if !errors.Is(err, context.Canceled) {
+		t.Errorf("a cancelled sort: %v", err)
+	}
+}
+
+// LIMIT stops a relation as soon as it has its rows.
+func TestLimitStopsTheSource(t *testing.T) {
+	rng := rand.New(rand.NewPCG(2, 1))
+	b := plantest.Bound(plantest.Schema, 0, 2, -1)
+	emitted := 0
+	def := *b.Def
+	def.Open = func(b *relation.Bound, env *relation.Env, in *column.Table, r relation.Request) (relation.Rows, error) {
+		rows, err := plantest.Crowd.Open(b, env, in, r)
+		return counting{rows, &emitted}, err
+	}
+	b.Def = &def
+	n := &plan.Limit{Count: 5, Input: &plan.Relation{Bound: b, Input: plantest.Scan(plantest.Table(rng, 5000))}}
+	got, err := run(t, testEnv(0, 0), n)
+	if err != nil || len(got) != 5 || emitted != 100 {
+		t.Errorf("%d rows, %d computed, %v; want 5 of the first 100", len(got), emitted, err)
+	}
+}
+
+type counting struct {
+	relation.Rows
+	n *int
+}
+
+func (c counting) Run(ctx context.Context, emit func(*column.Batch) error) error {
+	return c.Rows.Run(ctx, func(b *column.Batch) error {
+		*c.n += b.N
+		return emit(b)
+	})
+}
+
+// A fault names its row by the column id, else by its number in the input.
+func TestFaultsNameTheRow(t *testing.T) {
+	bad := column.NewBuilder(column.Real, nil)
+	ids := column.NewBuilder(column.Text, nil)
+	for i := range 3000 {
+		bad.AppendFloat(float64(i - 2500))
+		ids.AppendText(fmt.Sprintf("L%d", i))
+	}
+	schema := column.Schema{{Name: "v", Type: column.Real}, {Name: "ID", Type: column.Text}}
+	table := &column.Table{Schema: schema, N: 3000, Cols: []column.Vector{bad.Finish(), ids.Finish()}}
+	one := expr.NewConst(column.Float(1), plantest.Nowhere)
+	divide := arith("/", one, plantest.Column(schema, 0))
+	for _, c := range []struct {
+		use  []int
+		want string
+	}{
+		{[]int{0, 1}, "in the row with id 'L2500'"},
+		{[]int{0}, "in row 2501"},
+	} {
+		scan := &plan.Scan{Table: table, Use: c.use}
+		for _, u := range c.use {
+			scan.Fields = append(scan.Fields, schema[u])
+		}
+		n := &plan.Project{Input: scan, Exprs: []expr.Expr{divide}, Fields: column.Schema{{Name: "x", Type: column.Real}}}
+		_, err := run(t, testEnv(0, 0), n)
+		var p *problem.Problem
+		if !errors.As(err, &p) || !contains(p.Message, c.want) || p.Code != "no-value" {
+			t.Errorf("error %#v, want one %s", err, c.want)
+		}
+	}
+}
+
+// Results that need more memory than allowed are refused.
+func TestMemory(t *testing.T) {
+	rng := rand.New(rand.NewPCG(3, 1))
+	env := testEnv(0, 0)
+	env.Memory = 1 << 20
+	n := &plan.Sort{Input: plantest.Scan(plantest.Table(rng, 50000)), Keys: []plan.SortKey{{Expr: plantest.Column(plantest.Schema, 1)}}}
+	_, err := run(t, env, n)
+	var p *problem.Problem
+	if !errors.As(err, &p) || p.Code != "memory" {
+		t.Errorf("error %v, want one of memory", err)
+	}
+	n.Top = 10
+	n.Input = &plan.Limit{Input: n.Input, Count: 100}
+	if _, err := run(t, env, n); err == nil {
+		t.Log("a small result after the refusal fits")
+	}
+}
