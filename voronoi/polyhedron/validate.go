@@ -8,7 +8,8 @@ import (
 // Validate checks what must hold after every cut, whatever the input: each
 // half-edge has one twin, faces keep to their cut all round, V - E + F = 2 for
 // every piece of surface, coordinates are finite, and the area vectors of the
-// faces sum to zero within 1e-12 of the surface. An empty cell is valid.
+// faces sum to zero within 1e-12 of the surface (for a splinter thinner than that,
+// within what rounding makes of its length squared). An empty cell is valid.
 func (c *Cell) Validate() error {
 	if c.Empty() {
 		return nil
@@ -40,7 +41,9 @@ func (c *Cell) Validate() error {
 		sum = add(sum, a)
 		total += length(a)
 	}
-	if !(length(sum) <= 1e-12*total) {
+	lo, hi := c.Bounds()
+	size := length(sub(hi, lo))
+	if !(length(sum) <= max(1e-12*total, 0x1p-48*size*size)) {
 		return fmt.Errorf("polyhedron: area vectors sum to %g of a surface of %g", length(sum), total)
 	}
 	return nil
