@@ -1,8 +1,7 @@
 package lang
 
-// Clause is one clause after a relation's operand. A relation has each kind of
-// clause at most once (the two AT clauses, and THRESHOLDS and DISTANCES, are
-// different kinds in the tree).
+// Clause is one clause after a relation's operand. A relation has each clause at most
+// once; ABOVE and BELOW count as one clause, and so do the two forms of AT.
 type Clause interface {
 	Node
 	clause()

@@ -263,62 +263,98 @@ func (s *scanner) stray(start int) (lexer.TokenType, int, int) {
 	return tokBad, start, s.at
 }
 
-// tokens cuts a range of the text up, with a closing tokEOF. The parser is asked for
-// little room: Pos.Offset is the byte offset in the whole text; Pos.Line is the number
-// of tokens that follow in the range, by which a hook finds how many there are; and
-// Pos.Column of a "(" is the index of the ")" that closes it, 0 when none does. (Line
-// and column for people are counted from the offset when a message is made. Counting
-// columns for each token from the start of its line would take quadratic time.)
+// maxOpen is how many brackets may be open at once before the rest of a statement is
+// not even cut up. The parser counts a level for every second bracket at least, so that
+// it has refused the text long before it gets there.
+const maxOpen = 3 * maxDepth
+
+// stream hands the tokens of a range of the text to participle, one at a time.
+type stream struct {
+	scanner
+	open  int
+	count int
+}
+
+func newStream(src string, piece Span) *stream {
+	return &stream{scanner: scanner{src: src, at: piece.Start, end: piece.End}}
+}
+
+// Next implements lexer.Lexer. It never fails.
+func (s *stream) Next() (lexer.Token, error) {
+	s.count++
+	t, start, end := s.next()
+	switch t {
+	case tokLeft:
+		if s.open++; s.open > maxOpen {
+			t, end = tokEOF, start
+			s.at = start
+		}
+	case tokRight:
+		s.open--
+	}
+	return lexer.Token{Type: t, Value: s.src[start:end], Pos: lexer.Position{Offset: start}}, nil
+}
+
+// tokens cuts a range of the text up, with a closing tokEOF.
 func tokens(src string, piece Span) []lexer.Token {
-	s := scanner{src: src, at: piece.Start, end: piece.End}
-	list := make([]lexer.Token, 0, 8+piece.Len()/5)
-	var open []int
+	s := newStream(src, piece)
+	list := make([]lexer.Token, 0, 8+piece.Len()/4)
 	for {
-		t, start, end := s.next()
-		switch t {
+		t, _ := s.Next()
+		list = append(list, t)
+		if t.Type == tokEOF {
+			linkTokens(list)
+			return list
+		}
+	}
+}
+
+// linkTokens uses the places in the tokens for what the parser asks. Pos.Offset is the
+// byte offset in the whole text; Pos.Line becomes the number of tokens that follow, by
+// which a hook of participle finds how many there are; and Pos.Column of a "(" becomes
+// the index of the ")" that closes it, 0 when none does. (Line and column for people
+// are counted from the offset when a message is made: counting columns for each token
+// from the start of its line would take quadratic time.)
+func linkTokens(list []lexer.Token) {
+	var open []int
+	for i := range list {
+		t := &list[i]
+		t.Pos.Line = len(list) - 1 - i
+		switch t.Type {
 		case tokLeft:
-			open = append(open, len(list))
+			open = append(open, i)
 		case tokRight:
 			if n := len(open); n > 0 {
-				list[open[n-1]].Pos.Column = len(list)
+				list[open[n-1]].Pos.Column = i
 				open = open[:n-1]
 			}
 		}
-		list = append(list, lexer.Token{Type: t, Value: src[start:end], Pos: lexer.Position{Offset: start}})
-		if t == tokEOF {
-			break
-		}
 	}
-	for i := range list {
-		list[i].Pos.Line = len(list) - 1 - i
+}
+
+// peekable makes participle's own list of the tokens, and gives it to us too.
+func peekable(src string, piece Span) (*lexer.PeekingLexer, []lexer.Token, error) {
+	s := newStream(src, piece)
+	lex, err := lexer.Upgrade(s)
+	if err != nil {
+		return nil, nil, err
 	}
-	return list
+	list := lex.Range(0, lexer.RawCursor(s.count))
+	linkTokens(list)
+	return lex, list, nil
 }
 
 // definition is our lexer as participle sees it.
 type definition struct{}
 
+// Symbols implements lexer.Definition.
 func (definition) Symbols() map[string]lexer.TokenType { return symbols }
 
-func (d definition) Lex(filename string, r io.Reader) (lexer.Lexer, error) {
+// Lex implements lexer.Definition.
+func (definition) Lex(_ string, r io.Reader) (lexer.Lexer, error) {
 	text, err := io.ReadAll(r)
 	if err != nil {
 		return nil, err
 	}
-	return d.LexString(filename, string(text))
-}
-
-func (definition) LexString(_, text string) (lexer.Lexer, error) {
-	return &tokenList{tokens(text, Span{0, len(text)})}, nil
-}
-
-// tokenList hands out tokens that are there already.
-type tokenList struct{ rest []lexer.Token }
-
-func (l *tokenList) Next() (lexer.Token, error) {
-	t := l.rest[0]
-	if t.Type != tokEOF {
-		l.rest = l.rest[1:]
-	}
-	return t, nil
+	return newStream(string(text), Span{0, len(text)}), nil
 }

@@ -63,8 +63,7 @@ func Parse(src string) (*Script, error) {
 // ParseStatement reads one piece of a script; the spans of the tree count in the whole
 // script. A fault is an *Error.
 func ParseStatement(src string, piece Piece) (Statement, error) {
-	toks := tokens(src, piece.Span)
-	statement, fault := parseTokens(toks)
+	statement, fault := parsePiece(src, piece.Span)
 	if fault != nil {
 		return nil, finish(src, fault)
 	}
@@ -163,15 +162,15 @@ func grammarOf[G any, P interface {
 	}
 }
 
-func parseTokens(toks []lexer.Token) (Statement, *Error) {
+func parsePiece(src string, piece Span) (Statement, *Error) {
+	lex, toks, err := peekable(src, piece)
+	if err != nil {
+		return nil, &Error{Span: piece, Message: err.Error()}
+	}
 	first := &toks[0]
 	grammar, known := statementGrammars[first.Type]
 	if !known {
 		return nil, noStatement(first)
-	}
-	lex, err := lexer.Upgrade(&tokenList{toks})
-	if err != nil {
-		return nil, &Error{Span: tokenSpan(first), Message: err.Error()}
 	}
 	g, err := grammar(lex)
 	if err != nil {

@@ -309,8 +309,12 @@ func (p *parser) timeLiteral() Expr {
 func (p *parser) bracketed() Expr {
 	start := p.start()
 	if p.opensQuery(p.i) {
-		query := p.bracketedQuery()
-		return &Subquery{At: p.since(start), Query: query}
+		query := &Subquery{Query: p.bracketedQuery()}
+		query.At = p.since(start)
+		if p.follows(kOverlaps, tokLeft) {
+			return p.overlaps(start, []Expr{query})
+		}
+		return query
 	}
 	opened := p.next()
 	values := p.exprs()
@@ -320,15 +324,20 @@ func (p *parser) bracketed() Expr {
 	}
 	p.close(opened, orElse)
 	if p.follows(kOverlaps, tokLeft) {
-		left := &Row{At: p.since(start), Values: values}
-		p.next()
-		right := p.row()
-		return &Overlaps{At: p.since(start), Left: left, Right: right}
+		return p.overlaps(start, values)
 	}
 	if len(values) > 1 {
 		p.failHint("OVERLAPS and a second pair", "several values in brackets stand only beside OVERLAPS, behind IN and in VALUES")
 	}
 	return values[0]
+}
+
+// overlaps reads OVERLAPS and the second row behind the first.
+func (p *parser) overlaps(start int, first []Expr) Expr {
+	left := &Row{At: p.since(start), Values: first}
+	p.next()
+	right := p.row()
+	return &Overlaps{At: p.since(start), Left: left, Right: right}
 }
 
 func (p *parser) caseExpr() Expr {

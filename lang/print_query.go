@@ -171,7 +171,13 @@ func (w *printer) join(j *JoinSource) {
 	} else {
 		w.put(" ", string(j.Kind), " JOIN ")
 	}
-	w.source(j.Right, true)
+	if hasOpenBy(j.Right) && j.On != nil {
+		w.put("(")
+		w.source(j.Right, true)
+		w.put(")")
+	} else {
+		w.source(j.Right, true)
+	}
 	if j.On != nil {
 		w.put(" ON ")
 		w.expr(j.On, levelOr)
@@ -180,6 +186,17 @@ func (w *printer) join(j *JoinSource) {
 		w.put(" USING ")
 		w.names(j.Using)
 	}
+}
+
+// hasOpenBy tells whether a source ends with BY and names, without an alias, so that an
+// ON behind it would be taken for its own.
+func hasOpenBy(s Source) bool {
+	r, ok := s.(*RelationSource)
+	if !ok || !r.Alias.IsZero() || len(r.Relation.Clauses) == 0 {
+		return false
+	}
+	by, ok := r.Relation.Clauses[len(r.Relation.Clauses)-1].(*ByClause)
+	return ok && by.On.IsZero()
 }
 
 func (w *printer) relation(r *Relation) {
