@@ -25,8 +25,8 @@ func LookupScalar(name string) *Scalar { return scalarOf[strings.ToUpper(name)] 
 // is none.
 func LookupAggregate(name string) *Aggregate { return aggregateOf[strings.ToUpper(name)] }
 
-// Scalars are all scalar functions, sorted by name.
-func Scalars() []*Scalar { return slices.Clone(scalars) }
+// All are all scalar functions, sorted by name.
+func All() []*Scalar { return slices.Clone(scalars) }
 
 // Aggregates are all aggregates, sorted by name.
 func Aggregates() []*Aggregate { return slices.Clone(aggregates) }
