@@ -85,7 +85,7 @@ type Arith struct {
 // REAL, and / and ^ always do. Time stamps and intervals are added and
 // subtracted, intervals multiplied and divided by numbers.
 func NewArith(op lang.Op, l, r Expr, place problem.Place) (Expr, error) {
-	l, r = typeNulls(l, r)
+	l, r = typeNulls(op, l, r)
 	if !l.Type().Numeric() || !r.Type().Numeric() {
 		return newTemporal(op, l, r, place)
 	}
@@ -104,29 +104,32 @@ func NewArith(op lang.Op, l, r Expr, place problem.Place) (Expr, error) {
 	return &Arith{base{t, unit, place}, op, coerce(l, t), coerce(r, t), k}, nil
 }
 
-// typeNulls gives a bare NULL the type of the other side, REAL where both are bare.
-func typeNulls(l, r Expr) (Expr, Expr) {
-	other := func(x Expr) column.Type {
-		switch x.Type() {
-		case column.Integer, column.Real, column.Interval, column.Timestamp:
-			return x.Type()
-		}
-		return column.Real
-	}
+// typeNulls gives a bare NULL the type that goes with the other side, REAL where
+// both are bare.
+func typeNulls(op lang.Op, l, r Expr) (Expr, Expr) {
 	if l.Type() == column.Null {
-		l = coerce(l, other(r))
-		if r.Type() == column.Timestamp {
-			l = coerce(NewConst(column.NullOf(column.Null), l.Place()), column.Interval)
+		t := besideNull(r)
+		if t == column.Timestamp && op == lang.Plus {
+			t = column.Interval
 		}
+		l = coerce(l, t)
 	}
 	if r.Type() == column.Null {
-		t := other(l)
+		t := besideNull(l)
 		if t == column.Timestamp {
 			t = column.Interval
 		}
 		r = coerce(r, t)
 	}
 	return l, r
+}
+
+func besideNull(other Expr) column.Type {
+	switch t := other.Type(); t {
+	case column.Integer, column.Interval, column.Timestamp:
+		return t
+	}
+	return column.Real
 }
 
 // arithUnit is the unit of l op r: + - % keep it, * and / multiply it, ^ by a

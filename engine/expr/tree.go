@@ -24,7 +24,7 @@ func Fold(e Expr) Expr {
 		if l, ok := e.(*Logic); ok {
 			e = foldLogic(l)
 		}
-		if _, ok := e.(*Literal); ok || !foldable(e) {
+		if _, ok := e.(*Literal); ok || !constant(e) {
 			return e
 		}
 		var w Work
@@ -36,19 +36,6 @@ func Fold(e Expr) Expr {
 		x.Type, x.Unit = e.Type(), e.Unit()
 		return NewConst(x, e.Place())
 	})
-}
-
-// foldable reports whether e is computed from literals alone.
-func foldable(e Expr) bool {
-	if _, ok := e.(*Column); ok {
-		return false
-	}
-	for _, c := range e.Children() {
-		if _, ok := c.(*Literal); !ok {
-			return false
-		}
-	}
-	return true
 }
 
 // foldLogic leaves out TRUE of an AND and FALSE of an OR, and gives FALSE or
