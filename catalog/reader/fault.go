@@ -26,11 +26,12 @@ const (
 	NoHeading                 // the line that should hold the heading is blank or beyond the end
 	HeadingRepeated           // Text stands twice in the heading; Got is the field that has it first
 	HeadingEmpty              // a column without a name
+	NulByte                   // a byte 0, as loggers leave that lost power while writing
 )
 
 var kindNames = [...]string{"no fault", "wrong number of fields", "stray quotation mark", "quotation mark not closed",
 	"not a number", "not a time stamp", "not a truth value", "not a finite number", "number out of range",
-	"not UTF-8", "UTF-16", "empty file", "no heading", "heading repeated", "heading empty"}
+	"not UTF-8", "UTF-16", "empty file", "no heading", "heading repeated", "heading empty", "NUL byte"}
 
 // String names the kind for tests and logs.
 func (k FaultKind) String() string {

@@ -68,7 +68,7 @@ type importer struct {
 	mark    byte
 	missing map[string]bool
 	data    []byte // without the byte order mark
-	valid   bool   // all of it is UTF-8
+	clean   bool   // all of it is UTF-8, without NUL bytes
 	faults  collector
 	facts   reader.Facts
 
@@ -93,7 +93,7 @@ func (im *importer) begin() error {
 		im.faults.add(reader.Fault{Kind: reader.EmptyFile})
 		return im.faults.err()
 	}
-	im.valid = utf8.Valid(im.data)
+	im.clean = isText(im.data)
 	pos, line, ok := findHeading(im.data, im.o.Heading)
 	if !ok {
 		im.faults.add(reader.Fault{Kind: reader.NoHeading, Line: max(im.o.Heading, 1), Got: line})
@@ -104,7 +104,7 @@ func (im *importer) begin() error {
 	}
 	s := newScanner(im.data, im.facts.Delimiter, pos, line)
 	s.next()
-	if x, bad := s.recordFault(im.valid, 0, math.MaxInt); bad {
+	if x, bad := s.recordFault(im.clean, 0, math.MaxInt); bad {
 		im.faults.add(x)
 		return im.faults.err()
 	}
@@ -160,7 +160,7 @@ func (im *importer) records() *scanner {
 // recordFault judges the record that was just read.
 func (im *importer) recordFault(s *scanner) (reader.Fault, bool) {
 	n := len(im.columns)
-	return s.recordFault(im.valid, n, n+im.head.extra)
+	return s.recordFault(im.clean, n, n+im.head.extra)
 }
 
 // tick is called for every record: every so often it looks whether to go on.
@@ -362,7 +362,7 @@ func (im *importer) value(i int, f *field, c *cell) reader.FaultKind {
 
 func (im *importer) number(t column.Type, b []byte, c *cell) reader.FaultKind {
 	switch lookAtNumber(b, im.mark).class {
-	case isText:
+	case isWord:
 		if notFinite(b) {
 			return reader.NotFinite
 		}

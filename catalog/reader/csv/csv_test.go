@@ -143,7 +143,7 @@ func printFaults(b *strings.Builder, faults *reader.Faults) {
 		}
 		b.WriteByte('\n')
 		if f.Column > 0 {
-			fmt.Fprintf(b, "  %s\n  %s^\n", f.Source, strings.Repeat(" ", f.Column-1))
+			fmt.Fprintf(b, "  %s\n  %s^\n", strings.ToValidUTF8(strings.ReplaceAll(f.Source, "\x00", "0"), "?"), strings.Repeat(" ", f.Column-1))
 		}
 	}
 	if faults.More > 0 {

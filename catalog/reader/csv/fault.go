@@ -1,6 +1,7 @@
 package csv
 
 import (
+	"bytes"
 	"unicode/utf8"
 
 	"nearcell/catalog/reader"
@@ -55,18 +56,19 @@ func place(s *scanner, at, line, lineStart int, kind reader.FaultKind) reader.Fa
 
 // recordFault is what is wrong with the record as such, before any value is
 // looked at: its quotation marks, its bytes, the number of its fields. least and
-// most are how many fields it may have.
-func (s *scanner) recordFault(utf8Known bool, least, most int) (reader.Fault, bool) {
+// most are how many fields it may have; clean says that the file is known to be
+// all UTF-8 without NUL bytes.
+func (s *scanner) recordFault(clean bool, least, most int) (reader.Fault, bool) {
 	r := &s.rec
 	if m := r.fault; m.kind != reader.NoFault {
 		x := place(s, m.at, m.line, m.lineStart, m.kind)
 		x.Field = m.field
 		return x, true
 	}
-	if !utf8Known {
+	if !clean {
 		for i := range r.fields {
-			if f := &r.fields[i]; !utf8.Valid(f.text) {
-				return s.notUTF8(f, i), true
+			if f := &r.fields[i]; !isText(f.text) {
+				return s.notText(f, i), true
 			}
 		}
 	}
@@ -94,8 +96,12 @@ func (s *scanner) recordFault(utf8Known bool, least, most int) (reader.Fault, bo
 	return x, true
 }
 
-// notUTF8 is the fault at the first byte of a field that is no UTF-8.
-func (s *scanner) notUTF8(f *field, i int) reader.Fault {
+// isText reports whether bytes are UTF-8 without NUL bytes.
+func isText(b []byte) bool { return utf8.Valid(b) && bytes.IndexByte(b, 0) < 0 }
+
+// notText is the fault at the first byte of a field that is no UTF-8, or 0.
+func (s *scanner) notText(f *field, i int) reader.Fault {
+	kind := reader.NotUTF8
 	line, start, at := f.line, f.lineStart, f.start
 	for at < s.rec.end {
 		if n := breakLen(s.data[at:s.rec.end]); n > 0 {
@@ -104,12 +110,15 @@ func (s *scanner) notUTF8(f *field, i int) reader.Fault {
 			continue
 		}
 		r, size := utf8.DecodeRune(s.data[at:s.rec.end])
-		if r == utf8.RuneError && size == 1 {
+		if r == 0 {
+			kind = reader.NulByte
+		}
+		if r == 0 || r == utf8.RuneError && size == 1 {
 			break
 		}
 		at += size
 	}
-	x := place(s, at, line, start, reader.NotUTF8)
+	x := place(s, at, line, start, kind)
 	x.Field, x.Text = i+1, string(f.text)
 	return x
 }

@@ -145,7 +145,7 @@ func keepBrackets(names, full []string) {
 func (h *heading) numeric(mark byte) bool {
 	for _, f := range h.at[:len(h.names)] {
 		b := bytes.TrimSpace(f.text)
-		if len(b) == 0 || lookAtNumber(b, mark).class == isText {
+		if len(b) == 0 || lookAtNumber(b, mark).class == isWord {
 			return false
 		}
 	}

@@ -36,7 +36,7 @@ func (t *tally) add(b []byte, mark byte, line int) {
 	t.present++
 	t.counts[l.class]++
 	switch l.class {
-	case isText, isBool, isTime:
+	case isWord, isBool, isTime:
 		t.firstText.keep(line, b)
 	case isLongInt:
 		t.firstLong.keep(line, b)

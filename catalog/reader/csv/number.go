@@ -11,7 +11,7 @@ import (
 type class uint8
 
 const (
-	isText      class = iota
+	isWord      class = iota
 	isInt             // an integer of 64 bits
 	isLongInt         // a longer one
 	isReal            // any other number
@@ -31,7 +31,7 @@ type look struct {
 func lookAt(b []byte, mark byte) look {
 	switch c := b[0]; {
 	case c >= '0' && c <= '9', c == '-', c == '+', c == mark:
-		if l := lookAtNumber(b, mark); l.class != isText {
+		if l := lookAtNumber(b, mark); l.class != isWord {
 			return l
 		}
 		if notFinite(b) {
