@@ -64,7 +64,7 @@ func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool
 	if d.solid == nil {
 		return b.buildOpen(c, p, self)
 	}
-	c.SetBox(sub(d.lo, at), sub(d.hi, at), wallLabels)
+	c.SetBox(sub(d.lo, at), sub(d.hi, at), d.labels)
 	b.cut(c, p, self)
 	if d.convex && !d.isBox && !c.Empty() {
 		d.solid.ClipConvex(c, at)

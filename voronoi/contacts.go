@@ -199,7 +199,7 @@ func (b *builder) shares(cell int32) ([]share, error) {
 		s := b.wholeFace(i, label, at, true)
 		if math.Abs(area-whole) > 1e-12*whole {
 			s.area = area
-			middle, err := b.clippedMiddle(i, at, s.middle)
+			middle, err := b.clippedMiddle(i, at, area, s.middle)
 			if err != nil {
 				return nil, err
 			}
@@ -224,33 +224,62 @@ func (b *builder) wholeFace(i int, other int32, at Vec, bounded bool) share {
 // slabLabel marks the face that splits a slab off: a wall that no solid has.
 var slabLabel = polyhedron.Wall(1 << 30)
 
-// clippedMiddle is the centroid of the part of face i inside the solid, whole the
-// centroid of the whole face. It is read from the first moments of two thin slabs
-// of the cell along the face: their centroids, moved into the face's plane, lie
-// within the thickness of the one sought, and the two together cancel that first
-// order. What is left is about 1e-8 of the cell's size.
-func (b *builder) clippedMiddle(i int, at, whole Vec) (Vec, error) {
+// clippedMiddle is the centroid of the part of face i inside the solid, whose area
+// is given; whole is the centroid of the whole face. It is read from the first
+// moments of thin slabs along the face: their centroids, moved into the face's
+// plane, lie within the thickness of the one sought, and slabs of two thicknesses
+// cancel that first order. What is left is about 1e-8 of the cell's size.
+//
+// A face can lie partly in a wall, with the solid on one side only. A contact needs
+// it on both: the slabs stand on the side where they have the contact's area.
+func (b *builder) clippedMiddle(i int, at Vec, area float64, whole Vec) (Vec, error) {
+	inner, innerArea, err := b.slabMiddle(i, at, false)
+	if err != nil {
+		return Vec{}, err
+	}
+	outer, outerArea, err := b.slabMiddle(i, at, true)
+	if err != nil {
+		return Vec{}, err
+	}
+	switch {
+	case innerArea <= 0 || outerArea <= 0:
+		return whole, nil // thinner than rounding: the face is a sliver
+	case math.Abs(innerArea-area) <= math.Abs(outerArea-area):
+		return add(at, inner), nil
+	}
+	return add(at, outer), nil
+}
+
+// slabMiddle is the centroid and the area of what the solid leaves of face i, seen
+// from one of its sides, in local coordinates.
+func (b *builder) slabMiddle(i int, at Vec, beyond bool) (middle Vec, area float64, err error) {
 	n, dist := b.cell.FacePlane(i)
 	size := length(n)
 	unit := Vec{X: n.X / size, Y: n.Y / size, Z: n.Z / size}
 	level := dist / size
 	thickness := 1e-5 * b.cell.Farthest()
-	var middle [2]Vec
-	for k := range middle {
+	var middles [2]Vec
+	var areas [2]float64
+	for k := range middles {
 		t := thickness * float64(k+1)
 		b.slab.CopyFrom(&b.cell)
 		b.slab.Clip(Vec{X: -unit.X, Y: -unit.Y, Z: -unit.Z}, t-level, slabLabel)
+		place := at
+		if beyond {
+			place = add(at, Vec{X: float64(t * unit.X), Y: float64(t * unit.Y), Z: float64(t * unit.Z)})
+		}
 		m := &b.slabOut
-		if err := b.d.solid.Measure(&b.slab, at, solid.WantCentroid, &b.work, m); err != nil {
-			return Vec{}, err
+		if err := b.d.solid.Measure(&b.slab, place, solid.WantCentroid, &b.work, m); err != nil {
+			return Vec{}, 0, err
 		}
 		if !(m.Volume > 0) {
-			return whole, nil // thinner than rounding: the face is a sliver
+			return Vec{}, 0, nil
 		}
 		c := Vec{X: m.First.X / m.Volume, Y: m.First.Y / m.Volume, Z: m.First.Z / m.Volume}
 		off := level - dot(unit, c)
-		middle[k] = Vec{X: c.X + off*unit.X, Y: c.Y + off*unit.Y, Z: c.Z + off*unit.Z}
+		middles[k] = Vec{X: c.X + float64(off*unit.X), Y: c.Y + float64(off*unit.Y), Z: c.Z + float64(off*unit.Z)}
+		areas[k] = m.Volume / t
 	}
-	a, c := middle[0], middle[1]
-	return add(at, Vec{X: 2*a.X - c.X, Y: 2*a.Y - c.Y, Z: 2*a.Z - c.Z}), nil
+	a, c := middles[0], middles[1]
+	return Vec{X: 2*a.X - c.X, Y: 2*a.Y - c.Y, Z: 2*a.Z - c.Z}, 2*areas[0] - areas[1], nil
 }

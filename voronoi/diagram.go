@@ -16,7 +16,8 @@ type Diagram struct {
 	solid    solid.Solid // nil: none
 	convex   bool        // the solid is convex
 	isBox    bool        // the solid is its own bounding box
-	lo, hi   Vec         // bounds of the solid, shifted by the origin
+	lo, hi   Vec         // bounds of the solid
+	labels   [6]int32    // of the sides of these bounds
 	threads  int
 	progress func(done, total int)
 
@@ -162,26 +163,30 @@ func (d *Diagram) enclose(places []Vec) {
 	}
 	if d.solid != nil {
 		d.lo, d.hi = d.solid.Bounds()
-		d.convex = d.solid.Planes() != nil
-		d.isBox = d.convex && isBox(d.solid)
+		d.label()
 		d.facts.Volume = d.solid.Volume()
 	}
 }
 
-// isBox tells whether the walls of a convex solid are the sides of its bounding
-// box, in the order in which polyhedron.Cell.SetBox takes them.
-func isBox(s solid.Solid) bool {
-	planes := s.Planes()
-	if len(planes) != 6 {
-		return false
-	}
+// label sets the labels of the sides of the bounding box: those of the walls that
+// lie in them. It also finds out whether the solid is its own bounding box.
+func (d *Diagram) label() {
 	sides := [6]Vec{{X: -1}, {X: 1}, {Y: -1}, {Y: 1}, {Z: -1}, {Z: 1}}
-	for i, p := range planes {
-		if p.N != sides[i] || p.Wall != int32(i) {
-			return false
+	planes := d.solid.Planes()
+	found := 0
+	for i, side := range sides {
+		// No wall lies in a side that the solid meets in an edge or a corner only;
+		// the cut by the walls leaves no face of it, but a label is needed until then.
+		d.labels[i] = polyhedron.Wall(int32(len(planes) + i))
+		for _, p := range planes {
+			if p.N == side {
+				d.labels[i] = polyhedron.Wall(p.Wall)
+				found++
+			}
 		}
 	}
-	return true
+	d.convex = planes != nil
+	d.isBox = found == 6 && len(planes) == 6
 }
 
 // Key identifies the diagram by its content: sites in their order, solid and
@@ -207,10 +212,4 @@ func (d *Diagram) Nearest(p Vec) (site int32, distance float64) {
 		return -1, math.Inf(1)
 	}
 	return d.site[i], math.Sqrt(d2)
-}
-
-// wallLabels are the labels of the sides of the solid's bounding box.
-var wallLabels = [6]int32{
-	polyhedron.Wall(0), polyhedron.Wall(1), polyhedron.Wall(2),
-	polyhedron.Wall(3), polyhedron.Wall(4), polyhedron.Wall(5),
 }

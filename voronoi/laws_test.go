@@ -59,7 +59,7 @@ func bruteForce(sites []Vec, i int, start func(*polyhedron.Cell, Vec)) *polyhedr
 }
 
 func startInBox(c *polyhedron.Cell, p Vec) {
-	c.SetBox(sub(unitBox.lo, p), sub(unitBox.hi, p), wallLabels)
+	c.SetBox(sub(unitBox.lo, p), sub(unitBox.hi, p), [6]int32{-1, -2, -3, -4, -5, -6})
 }
 
 // Law 1: the volumes add up to the solid, the wall areas to its surface.

@@ -247,6 +247,9 @@ func (b *builder) measureClipped(at Vec, want Measures, out *Cells, row int32) e
 		}
 		return nil
 	}
+	if m.WallFaces == 0 {
+		m.Walls = 0 // what is left is rounding
+	}
 	contacts, touching := 0.0, int32(0)
 	if want&(Area|Faces|Neighbours) != 0 {
 		contacts, touching = b.contactsInside(m)
