@@ -2,6 +2,7 @@ package bind
 
 import (
 	"errors"
+	"fmt"
 	"strings"
 
 	"nearcell/engine/expr"
@@ -17,10 +18,17 @@ type binder struct {
 	env    *Env
 	source *problem.Source
 	ctes   *cte     // the names of WITH that are visible
-	views  []string // names of the views being bound, outermost first
+	views  []string // keys of the views (or solids) being bound, outermost first
+
+	sources *int // bound so far in the whole statement
 }
 
-func newBinder(env *Env) *binder { return &binder{env: env, source: env.Source} }
+// maxSources is how many sources a statement may unfold into. Views and names of
+// WITH are bound for each use: twenty of them, each used twice by the next, make
+// a million.
+const maxSources = 5000
+
+func newBinder(env *Env) *binder { return &binder{env: env, source: env.Source, sources: new(int)} }
 
 // cte is a name of WITH; its query sees the names before it.
 type cte struct {
@@ -109,6 +117,14 @@ func didYouMean(p *problem.Problem, word string, candidates []string) *problem.P
 type bound struct {
 	node  plan.Node
 	scope *scope
+}
+
+// count writes a number with its noun: 1 column, 3 columns.
+func count(n int, noun string) string {
+	if n == 1 {
+		return "1 " + noun
+	}
+	return fmt.Sprintf("%d %ss", n, noun)
 }
 
 func isWeightError(err error) bool {

@@ -133,10 +133,14 @@ func sameOptional(a, b expr.Expr) bool {
 func (g *grouping) notGrouped(x *exprs, c *lang.Column, i int) error {
 	name := x.scope.columns[i].Name
 	p := problem.New("not-grouped", x.at(c), "the column '%s' has many values where %s has one row for each group", name, x.clause)
-	if g.implicit {
-		return p.WithHint("an aggregate makes one row of all: write GROUP BY %s, or take MIN(%s), AVG(%s) …", name, name, name)
+	take := "MIN(" + name + "), MAX(" + name + ") …"
+	if x.scope.columns[i].Type.Numeric() {
+		take = "AVG(" + name + "), MAX(" + name + ") …"
 	}
-	return p.WithHint("add it to GROUP BY, or take MIN(%s), AVG(%s) …", name, name)
+	if g.implicit {
+		return p.WithHint("an aggregate makes one row of all: write GROUP BY %s, or take %s", name, take)
+	}
+	return p.WithHint("add it to GROUP BY, or take %s", take)
 }
 
 // plan is the aggregation over the rows of FROM and WHERE.

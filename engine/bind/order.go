@@ -72,7 +72,7 @@ func positionAmong(b *binder, n *lang.Number, shown int) (int, error) {
 		}
 	}
 	if i == 0 {
-		return 0, problem.New("position", b.at(n), "ORDER BY %s is no position: there are %d columns", n.Text, shown)
+		return 0, problem.New("position", b.at(n), "ORDER BY %s is no position: SELECT has %s", n.Text, count(shown, "column"))
 	}
 	return i - 1, nil
 }

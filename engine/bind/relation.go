@@ -96,7 +96,7 @@ func (b *binder) operandName(o lang.Operand) string {
 	case *lang.Relation:
 		return "(" + strings.ToUpper(o.Noun.Text) + " …)"
 	}
-	return "(query)"
+	return queryName
 }
 
 // position finds identifier and coordinates among the columns of the sites.
@@ -211,7 +211,7 @@ func (b *binder) inherit(rel *relation.Bound, o *catalog.Object) error {
 	if opt.Within == "" {
 		return nil
 	}
-	inner := &binder{env: b.env, source: &problem.Source{Name: "campaign " + o.Name, Text: opt.Within}}
+	inner := &binder{env: b.env, sources: b.sources, source: &problem.Source{Name: "campaign " + o.Name, Text: opt.Within}}
 	s, err := lang.ParseSolid(opt.Within)
 	if err != nil {
 		return inner.misread(err)

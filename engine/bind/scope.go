@@ -209,6 +209,9 @@ func (s *scope) renamed(b *binder, a *lang.Aliased) (*scope, error) {
 	t := &scope{columns: slices.Clone(s.columns), sources: slices.Clone(s.sources)}
 	if !a.Alias.IsZero() {
 		what, notYet := s.what(), []string(nil)
+		if what == queryName {
+			what = a.Alias.Text
+		}
 		for _, x := range s.sources {
 			notYet = append(notYet, x.notYet...)
 		}
@@ -232,8 +235,8 @@ func (s *scope) rename(b *binder, names []lang.Name) error {
 		}
 	}
 	if len(names) != len(visible) {
-		return problem.New("column-names", b.spanning(&names[0], &names[len(names)-1]), "%d names for the %d columns of %s",
-			len(names), len(visible), s.what())
+		return problem.New("column-names", b.spanning(&names[0], &names[len(names)-1]), "%s for the %s of %s",
+			count(len(names), "name"), count(len(visible), "column"), s.what())
 	}
 	for i, n := range names {
 		s.columns[visible[i]].Name = n.Text

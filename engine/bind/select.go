@@ -156,6 +156,9 @@ func (c *selection) grouped(order []*lang.Key) error {
 	if !any {
 		return nil
 	}
+	if err := c.groupless(); err != nil {
+		return err
+	}
 	g := &grouping{implicit: len(s.GroupBy) == 0}
 	for _, e := range s.GroupBy {
 		written, err := c.groupKey(e)
@@ -174,6 +177,21 @@ func (c *selection) grouped(order []*lang.Key) error {
 	}
 	c.group = g
 	return nil
+}
+
+// groupless refuses a HAVING where nothing makes groups: a condition on single
+// rows was meant.
+func (c *selection) groupless() error {
+	if c.s.Having == nil || len(c.s.GroupBy) > 0 || hasAggregate(c.s.Having) {
+		return nil
+	}
+	for _, it := range c.s.Items {
+		if it.Expr != nil && hasAggregate(it.Expr) {
+			return nil
+		}
+	}
+	return problem.New("no-groups", c.at(c.s.Having), "HAVING needs groups, and there is neither GROUP BY nor an aggregate").
+		WithHint("conditions on single rows stand in WHERE")
 }
 
 // groupKey finds what a key of GROUP BY stands for: a position, an alias, or the
@@ -223,7 +241,7 @@ func (c *selection) itemAt(n *lang.Number, clause string) (*lang.Item, error) {
 		}
 	}
 	if i == 0 {
-		return nil, problem.New("position", c.at(n), "%s %s is no position: SELECT has %d items", clause, n.Text, len(c.s.Items))
+		return nil, problem.New("position", c.at(n), "%s %s is no position: SELECT has %s", clause, n.Text, count(len(c.s.Items), "item"))
 	}
 	return c.s.Items[i-1], nil
 }

@@ -42,7 +42,7 @@ func (b *binder) setOp(s *lang.SetOp) (plan.Node, error) {
 	if err != nil {
 		return nil, err
 	}
-	fields, err := b.unionFields(s, left.Schema(), right.Schema())
+	fields, err := b.unionFields(s.Right, left.Schema(), right.Schema())
 	if err != nil {
 		return nil, err
 	}
@@ -66,7 +66,7 @@ func (b *binder) setOp(s *lang.SetOp) (plan.Node, error) {
 // unionFields are the columns of both sides under the names of the left one.
 func (b *binder) unionFields(n lang.Node, left, right column.Schema) (column.Schema, error) {
 	if len(left) != len(right) {
-		return nil, problem.New("columns", b.at(n), "UNION joins rows of equal columns, and its sides have %d and %d", len(left), len(right))
+		return nil, problem.New("columns", b.at(n), "UNION joins rows of equal columns, but its sides have %s and %d", count(len(left), "column"), len(right))
 	}
 	fields := make(column.Schema, len(left))
 	for i, l := range left {

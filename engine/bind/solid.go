@@ -285,7 +285,8 @@ func (b *binder) namedSolid(s *lang.SolidName) (lang.Solid, error) {
 		}
 		return nil, p
 	}
-	inner := &binder{env: b.env, source: &problem.Source{Name: "solid " + o.Name, Text: o.Text}, views: append([]string{o.Key}, b.views...)}
+	inner := &binder{env: b.env, sources: b.sources, source: &problem.Source{Name: "solid " + o.Name, Text: o.Text},
+		views: append([]string{o.Key}, b.views...)}
 	for _, v := range b.views {
 		if v == o.Key {
 			return nil, problem.New("solid-cycle", b.at(s), "the solid '%s' is made of itself", o.Name)
@@ -351,49 +352,4 @@ func limits(v *column.Vector) (lo, hi float64) {
 		lo, hi = min(lo, f), max(hi, f)
 	}
 	return lo, hi
-}
-
-// faultySolid words what is wrong with the description of a solid.
-func (b *binder) faultySolid(err error, s lang.Solid) error {
-	var e *solid.Error
-	if !errors.As(err, &e) {
-		return problem.At(err, b.at(s))
-	}
-	where := func(ring int) string {
-		if ring > 0 {
-			return fmt.Sprintf("hole %d", ring)
-		}
-		return "the outline"
-	}
-	near := fmt.Sprintf("(%s, %s)", column.FormatReal(e.At.X), column.FormatReal(e.At.Y))
-	p := problem.New("solid", b.at(s), "this solid cannot be: %v", err)
-	switch e.Fault {
-	case solid.NoExtent:
-		p.Message = "this solid has no volume"
-		if e.Axis >= 0 {
-			p.Message += fmt.Sprintf(": it has no extent along %c", "xyz"[e.Axis])
-		}
-		p.Code = "no-volume"
-	case solid.NotFinite:
-		p.Message = "a coordinate of this solid is too large"
-	case solid.FewCorners:
-		p.Message = fmt.Sprintf("%s of this prism has %d distinct corners; a ring needs three", where(e.Ring), e.Count)
-		p.Code = "no-volume"
-	case solid.NoArea:
-		p.Message, p.Code = where(e.Ring)+" of this prism encloses no area", "no-volume"
-	case solid.NothingLeft:
-		p.Message, p.Code = "the holes of this prism leave nothing of its plan", "no-volume"
-	case solid.Spike:
-		p.Message = fmt.Sprintf("%s of this prism runs out to corner %d and back on itself", where(e.Ring), e.Corner+1)
-	case solid.Crossing:
-		p.Message = fmt.Sprintf("side %d of %s and side %d of %s cross at %s", e.Side+1, where(e.Ring), e.OtherSide+1, where(e.OtherRing), near)
-		p.WithHint("are the corners in the order in which one walks around?")
-	case solid.Overlap:
-		p.Message = fmt.Sprintf("%s of this prism overlaps itself near %s", where(e.Ring), near)
-	case solid.HoleOutside:
-		p.Message = fmt.Sprintf("%s of this prism lies outside its outline near %s", where(e.Ring), near)
-	case solid.HolesOverlap:
-		p.Message = fmt.Sprintf("%s and %s of this prism overlap near %s", where(e.Ring), where(e.OtherRing), near)
-	}
-	return p
 }

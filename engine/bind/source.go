@@ -48,6 +48,10 @@ func (b *binder) clash(left, right *scope, n lang.Node) error {
 }
 
 func (b *binder) fromSource(s lang.Source) (bound, error) {
+	if *b.sources++; *b.sources > maxSources {
+		return bound{}, problem.New("too-large", b.at(s), "the views and the names of WITH unfold into more than %d sources", maxSources).
+			WithHint("CREATE TABLE … AS (query) keeps a step's rows")
+	}
 	var x bound
 	var err error
 	switch s := s.(type) {
@@ -69,13 +73,16 @@ func (b *binder) fromSource(s lang.Source) (bound, error) {
 	return x, err
 }
 
+// queryName is what messages call a query without a name.
+const queryName = "(query)"
+
 // subquery binds a query in parentheses as a source without a name.
 func (b *binder) subquery(q *lang.Query) (bound, error) {
 	node, err := b.query(q)
 	if err != nil {
 		return bound{}, err
 	}
-	return bound{node, newScope("", "(query)", node.Schema())}, nil
+	return bound{node, newScope("", queryName, node.Schema())}, nil
 }
 
 // named binds a name after FROM or OF: of WITH, else of the catalog.
@@ -180,7 +187,7 @@ func (b *binder) view(n *lang.Name, o *catalog.Object) (bound, error) {
 		return bound{}, problem.New("view-cycle", b.at(n), "the view '%s' uses itself: %s", o.Name,
 			strings.Join(append(slices.Clone(b.views), o.Key), " uses "))
 	}
-	inner := &binder{env: b.env, views: append(slices.Clone(b.views), o.Key),
+	inner := &binder{env: b.env, sources: b.sources, views: append(slices.Clone(b.views), o.Key),
 		source: &problem.Source{Name: "view " + o.Name, Text: o.Text}}
 	q, err := inner.parseQuery(o.Text)
 	if err != nil {

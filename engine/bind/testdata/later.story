@@ -1,0 +1,141 @@
+# What the language has and the engine lacks is refused by its name.
+
+plan
+SELECT * FROM GAPS OF hall
+----
+input:1: GAPS is not there yet
+  SELECT * FROM GAPS OF hall
+                ^^^^
+
+plan
+SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE
+----
+input:1: SERIES is not there yet
+  SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE
+                ^^^^^^
+
+plan
+SELECT * FROM TRANSECT BETWEEN (0,0,1) AND (30,0,1) STEP 0.1
+----
+input:1: TRANSECT is not there yet
+  SELECT * FROM TRANSECT BETWEEN (0,0,1) AND (30,0,1) STEP 0.1
+                ^^^^^^^^
+
+plan
+SELECT hidden FROM CELLS OF hall
+----
+input:1: the column 'hidden' of CELLS OF hall is not there yet
+  SELECT hidden FROM CELLS OF hall
+         ^^^^^^
+
+plan
+SELECT * FROM CELLS OF hall STRETCHED (1, 1, 5)
+----
+input:1: STRETCHED is not there yet
+  SELECT * FROM CELLS OF hall STRETCHED (1, 1, 5)
+                              ^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM CELLS OF hall MEASURED IN (racks)
+----
+input:1: MEASURED IN is not there yet
+  SELECT * FROM CELLS OF hall MEASURED IN (racks)
+                              ^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM CELLS OF hall WITHIN (air, air)
+----
+input:1: WITHIN (a, b), which makes zones, is not there yet
+  SELECT * FROM CELLS OF hall WITHIN (air, air)
+                              ^^^^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM CELLS OF stretched
+----
+input:1: STRETCHED of the campaign 'stretched' is not there yet (make the campaign anew without it: CREATE OR REPLACE CAMPAIGN …)
+  SELECT * FROM CELLS OF stretched
+                         ^^^^^^^^^
+
+plan
+SELECT * FROM CELLS OF zoned
+----
+input:1: WITHIN (a, b), which makes zones, of the campaign 'zoned' is not there yet (make the campaign anew without it: CREATE OR REPLACE CAMPAIGN …)
+  SELECT * FROM CELLS OF zoned
+                         ^^^^^
+
+plan
+SELECT * FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH)
+----
+input:1: UNCERTAINTY is not there yet
+  SELECT * FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH)
+                              ^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM hall h RIGHT JOIN log l ON h.id = l.logger
+----
+input:1: RIGHT JOIN is not there yet (exchange the sides and write LEFT JOIN)
+  SELECT * FROM hall h RIGHT JOIN log l ON h.id = l.logger
+                ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT id FROM hall EXCEPT SELECT logger FROM log
+----
+input:1: EXCEPT is not there yet (LEFT JOIN the rows to be left out and keep WHERE … IS NULL)
+  SELECT id FROM hall EXCEPT SELECT logger FROM log
+  ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT id FROM hall INTERSECT SELECT logger FROM log
+----
+input:1: INTERSECT is not there yet (JOIN the two queries USING their columns)
+  SELECT id FROM hall INTERSECT SELECT logger FROM log
+  ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT (SELECT 1) FROM hall
+----
+input:1: a query as a value is not there yet (join the query in FROM: … CROSS JOIN (SELECT …) AS q)
+  SELECT (SELECT 1) FROM hall
+         ^^^^^^^^^^
+
+plan
+SELECT id FROM hall WHERE id IN (SELECT logger FROM log)
+----
+input:1: IN (query) is not there yet (JOIN the query with ON instead; SELECT DISTINCT in it keeps rows from repeating)
+  SELECT id FROM hall WHERE id IN (SELECT logger FROM log)
+                            ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT id FROM hall WHERE EXISTS (SELECT * FROM log)
+----
+input:1: EXISTS is not there yet (join the query in FROM)
+  SELECT id FROM hall WHERE EXISTS (SELECT * FROM log)
+                            ^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT RANK() OVER (ORDER BY temp) FROM hall
+----
+input:1: OVER (…) is not there yet (group in a query of its own and JOIN it)
+  SELECT RANK() OVER (ORDER BY temp) FROM hall
+                     ^^^^^^^^^^^^^^^
+
+plan
+SELECT INTERPOLATE(temp ALONG t AT :since OUTSIDE FAIL) FROM log
+----
+input:1: INTERPOLATE(… ALONG …) is not there yet
+  SELECT INTERPOLATE(temp ALONG t AT :since OUTSIDE FAIL) FROM log
+         ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT t AT TIME ZONE 'Europe/Zurich' FROM log
+----
+input:1: AT TIME ZONE is not there yet (times are kept in UTC; add an INTERVAL)
+  SELECT t AT TIME ZONE 'Europe/Zurich' FROM log
+         ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM VERDICTS
+----
+input:1: VERDICTS is not there yet
+  SELECT * FROM VERDICTS
+                ^^^^^^^^
