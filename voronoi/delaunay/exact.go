@@ -1,0 +1,286 @@
+package delaunay
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/spatial/r3"
+
+	"nearcell/voronoi/predicate"
+)
+
+// The signs behind every combinatorial decision, on internal coordinates.
+//
+// Stage 1 is a norm filter. With ε = 2^-53 the float determinant of in-sphere errs by
+// at most 32√2 ε |a||b||c||d| √(|a|²+|b|²+|c|²+|d|²)/… : sixteen roundings a term,
+// differences included, and terms whose magnitudes sum, by Cauchy and Schwarz, to at
+// most 2√2 |a||b||c||d| √(Σ|i|²). The square of that, (32√2 ε)² = 2048 ε² times
+//
+//	M = |a|²|b|²|c|²|d|² (|a|²+|b|²+|c|²+|d|²),
+//
+// needs no root and no magnitude. For orient3d there are eight roundings a term and
+// magnitudes of at most √2 |u||v||w|: 128 ε² times N = |u|²|v|²|w|². The factor
+// 1+2^-40 covers the roundings of M, N and of the comparison; the floor keeps
+// underflow out: coordinates are within 1 of zero, so no product overflows, and a
+// determinant that passes is above 1e-140 where an underflowing product errs by
+// 1e-322. A fused operation only rounds less.
+//
+// Stage 2, when coordinates are multiples of a unit (whole): with all points in units
+// the determinant and every number on its way are integers.
+//   - If the bound on the terms' magnitudes is below 2^52, the float determinant was
+//     exact after all.
+//   - If stage 1 failed, the true determinant is below twice the bound; where that is
+//     below 2^62 or 2^126 the integer determinant modulo 2^64 or 2^128 is the true one.
+//   - Five corners of one box with axis-parallel edges are cospherical.
+//   - Otherwise integers of five words hold everything.
+//
+// Stage 3, for the others: expansions, and math/big where these could underflow.
+const (
+	epsilon      = 0x1p-53
+	inFactor     = 2048 * epsilon * epsilon * (1 + 0x1p-40)
+	orientFactor = 128 * epsilon * epsilon * (1 + 0x1p-40)
+	filterFloor  = 1e-250
+)
+
+func (m *mesh) setLimits() {
+	f := m.frame
+	m.whole = f.bits <= maxBits
+	k := f.bits
+	m.unit = math.Ldexp(1, k)
+	// terms <= 2√2 √M < 2^52 units of 2^-5k; M < 2^(104-3-10k), one bit spare
+	m.inExact = math.Ldexp(1, 100-10*k)
+	// 2 √(inFactor·M) < 2^62 units: M < 2^(124-2+95-10k), one bit spare
+	m.inWrap64 = math.Ldexp(1, 216-10*k)
+	m.inWrap128 = math.Ldexp(1, 344-10*k)
+	// terms <= √2 √N < 2^52 units of 2^-3k
+	m.orientExact = math.Ldexp(1, 102-6*k)
+	// 2 √(orientFactor·N) < 2^62 units: N < 2^(124-2+99-6k)
+	m.orientWrap64 = math.Ldexp(1, 220-6*k)
+	m.setSphereLimits()
+}
+
+func (m *mesh) vec(p int32) r3.Vec {
+	if m.frame.rounded {
+		s := m.sites[3*int(m.order[p-1]):]
+		return r3.Vec{X: s[0], Y: s[1], Z: s[2]}
+	}
+	q := &m.pts[p]
+	return r3.Vec{X: q.x, Y: q.y, Z: q.z}
+}
+
+// same reports whether two points are one place.
+func (m *mesh) same(p, q int32) bool {
+	a, b := &m.pts[p], &m.pts[q]
+	if a.x != b.x || a.y != b.y || a.z != b.z {
+		return false
+	}
+	return !m.frame.rounded || m.vec(p) == m.vec(q)
+}
+
+// less orders points by x, y and z.
+func (m *mesh) less(p, q int32) bool {
+	if m.frame.rounded {
+		return predicate.Less(m.vec(p), m.vec(q))
+	}
+	a, b := &m.pts[p], &m.pts[q]
+	if a.x != b.x {
+		return a.x < b.x
+	}
+	if a.y != b.y {
+		return a.y < b.y
+	}
+	return a.z < b.z
+}
+
+func signOf(x float64) int {
+	switch {
+	case x > 0:
+		return 1
+	case x < 0:
+		return -1
+	}
+	return 0
+}
+
+// orient is the sign of det(b-a, c-a, d-a).
+func (m *mesh) orient(ia, ib, ic, id int32) int {
+	a, b, c, d := &m.pts[ia], &m.pts[ib], &m.pts[ic], &m.pts[id]
+	ux, uy, uz := b.x-a.x, b.y-a.y, b.z-a.z
+	vx, vy, vz := c.x-a.x, c.y-a.y, c.z-a.z
+	wx, wy, wz := d.x-a.x, d.y-a.y, d.z-a.z
+	det := ux*(vy*wz-vz*wy) + uy*(vz*wx-vx*wz) + uz*(vx*wy-vy*wx)
+	n := (ux*ux + uy*uy + uz*uz) * (vx*vx + vy*vy + vz*vz) * (wx*wx + wy*wy + wz*wz)
+	if det*det > orientFactor*n && n > filterFloor {
+		return signOf(det)
+	}
+	if m.whole {
+		if n < m.orientExact {
+			return signOf(det)
+		}
+		return m.orientWhole(a, b, c, d, n)
+	}
+	return predicate.Orient3D(m.vec(ia), m.vec(ib), m.vec(ic), m.vec(id))
+}
+
+func (m *mesh) orientWhole(a, b, c, d *point, n float64) int {
+	k := m.unit
+	ax, ay, az := int64(a.x*k), int64(a.y*k), int64(a.z*k)
+	ux, uy, uz := int64(b.x*k)-ax, int64(b.y*k)-ay, int64(b.z*k)-az
+	vx, vy, vz := int64(c.x*k)-ax, int64(c.y*k)-ay, int64(c.z*k)-az
+	wx, wy, wz := int64(d.x*k)-ax, int64(d.y*k)-ay, int64(d.z*k)-az
+	if n < m.orientWrap64 && n > filterFloor {
+		return signInt(ux*(vy*wz-vz*wy) + uy*(vz*wx-vx*wz) + uz*(vx*wy-vy*wx))
+	}
+	yz := mul64(vy, wz).sub(mul64(vz, wy))
+	zx := mul64(vz, wx).sub(mul64(vx, wz))
+	xy := mul64(vx, wy).sub(mul64(vy, wx))
+	return yz.times(ux).add(zx.times(uy)).add(xy.times(uz)).sign()
+}
+
+func signInt(x int64) int {
+	switch {
+	case x > 0:
+		return 1
+	case x < 0:
+		return -1
+	}
+	return 0
+}
+
+// inSphere reports whether e is inside the sphere of the positive tetrahedron
+// v0..v3, ties broken by the perturbation of Devillers and Teillaud (2011): as if the
+// squared length of every point were raised by an infinitesimal, larger for
+// lexicographically larger points.
+func (m *mesh) inSphere(v [4]int32, e int32) bool {
+	pts := m.pts
+	a, b, c, d, o := &pts[v[0]], &pts[v[1]], &pts[v[2]], &pts[v[3]], &pts[e]
+	ax, ay, az := a.x-o.x, a.y-o.y, a.z-o.z
+	bx, by, bz := b.x-o.x, b.y-o.y, b.z-o.z
+	cx, cy, cz := c.x-o.x, c.y-o.y, c.z-o.z
+	dx, dy, dz := d.x-o.x, d.y-o.y, d.z-o.z
+	ab, ac, ad := ax*by-ay*bx, ax*cy-ay*cx, ax*dy-ay*dx
+	bc, bd, cd := bx*cy-by*cx, bx*dy-by*dx, cx*dy-cy*dx
+	qa := ax*ax + ay*ay + az*az
+	qb := bx*bx + by*by + bz*bz
+	qc := cx*cx + cy*cy + cz*cz
+	qd := dx*dx + dy*dy + dz*dz
+	det := (qa*(bz*cd-cz*bd+dz*bc) - qb*(az*cd-cz*ad+dz*ac)) +
+		(qc*(az*bd-bz*ad+dz*ab) - qd*(az*bc-bz*ac+cz*ab))
+	n := ((qa * qb) * (qc * qd)) * ((qa + qb) + (qc + qd))
+	if det*det > inFactor*n && n > filterFloor {
+		return det > 0
+	}
+	if !m.whole {
+		return predicate.InSpherePerturbed(m.vec(v[0]), m.vec(v[1]), m.vec(v[2]), m.vec(v[3]), m.vec(e)) > 0
+	}
+	s := 0
+	if n < m.inExact {
+		s = signOf(det)
+	} else {
+		s = m.inSphereWhole(a, b, c, d, o, n)
+	}
+	if s != 0 {
+		return s > 0
+	}
+	return m.tie(v, e)
+}
+
+// tie decides for a point on the sphere.
+func (m *mesh) tie(v [4]int32, e int32) bool {
+	var gone [4]bool
+	for range 4 {
+		// r is the largest point that has not been tried; -1 stands for e.
+		r := -1
+		for k := range 4 {
+			if !gone[k] && ((r < 0 && m.less(e, v[k])) || (r >= 0 && m.less(v[r], v[k]))) {
+				r = k
+			}
+		}
+		if r < 0 {
+			return false
+		}
+		// Raising corner r tilts the sphere; e comes to lie inside when it is on
+		// the same side of the opposite face as r.
+		t := v
+		t[r] = e
+		if s := m.orient(t[0], t[1], t[2], t[3]); s != 0 {
+			return s > 0
+		}
+		gone[r] = true
+	}
+	return false
+}
+
+func (m *mesh) inSphereWhole(a, b, c, d, o *point, n float64) int {
+	sure := n > filterFloor
+	if sure && n >= m.inWrap128 && oneBox(a, b, c, d, o) {
+		return 0
+	}
+	k := m.unit
+	ox, oy, oz := int64(o.x*k), int64(o.y*k), int64(o.z*k)
+	ax, ay, az := int64(a.x*k)-ox, int64(a.y*k)-oy, int64(a.z*k)-oz
+	bx, by, bz := int64(b.x*k)-ox, int64(b.y*k)-oy, int64(b.z*k)-oz
+	cx, cy, cz := int64(c.x*k)-ox, int64(c.y*k)-oy, int64(c.z*k)-oz
+	dx, dy, dz := int64(d.x*k)-ox, int64(d.y*k)-oy, int64(d.z*k)-oz
+	switch {
+	case sure && n < m.inWrap64:
+		ab, ac, ad := ax*by-ay*bx, ax*cy-ay*cx, ax*dy-ay*dx
+		bc, bd, cd := bx*cy-by*cx, bx*dy-by*dx, cx*dy-cy*dx
+		return signInt((ax*ax+ay*ay+az*az)*(bz*cd-cz*bd+dz*bc) -
+			(bx*bx+by*by+bz*bz)*(az*cd-cz*ad+dz*ac) +
+			(cx*cx+cy*cy+cz*cz)*(az*bd-bz*ad+dz*ab) -
+			(dx*dx+dy*dy+dz*dz)*(az*bc-bz*ac+cz*ab))
+	case sure && n < m.inWrap128:
+		return inSphere128([4][3]int64{{ax, ay, az}, {bx, by, bz}, {cx, cy, cz}, {dx, dy, dz}})
+	}
+	return inSphere320([4][3]int64{{ax, ay, az}, {bx, by, bz}, {cx, cy, cz}, {dx, dy, dz}})
+}
+
+func minor64(p, q *[3]int64) int128 { return mul64(p[0], q[1]).sub(mul64(p[1], q[0])) }
+
+func norm64(p *[3]int64) int128 {
+	return mul64(p[0], p[0]).add(mul64(p[1], p[1])).add(mul64(p[2], p[2]))
+}
+
+// inSphere128 is right where the determinant is below 2^127.
+func inSphere128(r [4][3]int64) int {
+	a, b, c, d := &r[0], &r[1], &r[2], &r[3]
+	ab, ac, ad := minor64(a, b), minor64(a, c), minor64(a, d)
+	bc, bd, cd := minor64(b, c), minor64(b, d), minor64(c, d)
+	w := func(x int64) int128 { return int128{uint64(x), uint64(x >> 63)} }
+	az, bz, cz, dz := w(a[2]), w(b[2]), w(c[2]), w(d[2])
+	ta := bz.mulWrap(cd).sub(cz.mulWrap(bd)).add(dz.mulWrap(bc))
+	tb := az.mulWrap(cd).sub(cz.mulWrap(ad)).add(dz.mulWrap(ac))
+	tc := az.mulWrap(bd).sub(bz.mulWrap(ad)).add(dz.mulWrap(ab))
+	td := az.mulWrap(bc).sub(bz.mulWrap(ac)).add(cz.mulWrap(ab))
+	return norm64(a).mulWrap(ta).sub(norm64(b).mulWrap(tb)).
+		add(norm64(c).mulWrap(tc)).sub(norm64(d).mulWrap(td)).sign()
+}
+
+// inSphere320 is right for coordinates up to 2^61.
+func inSphere320(r [4][3]int64) int {
+	a, b, c, d := &r[0], &r[1], &r[2], &r[3]
+	ab, ac, ad := minor64(a, b), minor64(a, c), minor64(a, d)
+	bc, bd, cd := minor64(b, c), minor64(b, d), minor64(c, d)
+	ta := cd.times(b[2]).sub(bd.times(c[2])).add(bc.times(d[2]))
+	tb := cd.times(a[2]).sub(ad.times(c[2])).add(ac.times(d[2]))
+	tc := bd.times(a[2]).sub(ad.times(b[2])).add(ab.times(d[2]))
+	td := bc.times(a[2]).sub(ac.times(b[2])).add(ab.times(c[2]))
+	return ta.times(norm64(a)).sub(tb.times(norm64(b))).
+		add(tc.times(norm64(c))).sub(td.times(norm64(d))).sign()
+}
+
+// oneBox reports whether the points are corners of one axis-parallel box.
+func oneBox(a, b, c, d, o *point) bool {
+	return twoValues(a.x, b.x, c.x, d.x, o.x) && twoValues(a.y, b.y, c.y, d.y, o.y) &&
+		twoValues(a.z, b.z, c.z, d.z, o.z)
+}
+
+func twoValues(a, b, c, d, o float64) bool {
+	other := b
+	if other == o {
+		if other = c; other == o {
+			other = d
+		}
+	}
+	return (a == o || a == other) && (b == o || b == other) && (c == o || c == other) && (d == o || d == other)
+}

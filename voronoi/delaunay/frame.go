@@ -1,0 +1,160 @@
+package delaunay
+
+import (
+	"math"
+	"math/bits"
+)
+
+// frame maps the sites' coordinates to the internal ones: moved by an origin and
+// scaled by a power of two, so that they lie within 1 of zero and squared bounds
+// neither underflow nor overflow. Both steps are exact for nearly every input; where
+// they are not, rounded says so and the exact stage takes the sites as they came.
+type frame struct {
+	x0, y0, z0 float64
+	// The scale is applied in two factors, since one alone may overflow.
+	scale, scale2 float64
+	low, high     [3]float64 // bounds of the sites
+	box           bounds     // of the internal coordinates
+	rounded       bool
+	// Internal coordinates are multiples of 2^-bits; bits > maxBits: they are not.
+	bits int
+}
+
+// maxBits is the most that in-sphere in five words allows: differences need one bit
+// more, minors twice that and one, and so on up to 5*61+7 bits.
+const maxBits = 60
+
+type bounds struct{ lo, hi [3]float64 }
+
+func emptyBounds() bounds {
+	inf := math.Inf(1)
+	return bounds{[3]float64{inf, inf, inf}, [3]float64{-inf, -inf, -inf}}
+}
+
+func (b *bounds) add(x, y, z float64) {
+	b.lo[0], b.hi[0] = min(b.lo[0], x), max(b.hi[0], x)
+	b.lo[1], b.hi[1] = min(b.lo[1], y), max(b.hi[1], y)
+	b.lo[2], b.hi[2] = min(b.lo[2], z), max(b.hi[2], z)
+}
+
+func (b *bounds) extent() float64 {
+	return max(b.hi[0]-b.lo[0], b.hi[1]-b.lo[1], b.hi[2]-b.lo[2])
+}
+
+// grid covers the bounds; it fails when they are a point or too small to divide.
+func (b *bounds) grid() (grid, bool) {
+	factor := (1 << hilbertBits) / b.extent()
+	return grid{b.lo[0], b.lo[1], b.lo[2], factor}, factor < 1e290
+}
+
+func (f *frame) cells() grid {
+	g, _ := f.box.grid()
+	if !(g.factor < 1e290) {
+		g.factor = 0
+	}
+	return g
+}
+
+// newFrame looks at all sites; bad is the first with a coordinate that is not finite,
+// or -1.
+func newFrame(sites []float64) (f *frame, bad int) {
+	b := emptyBounds()
+	for i := 0; i+2 < len(sites); i += 3 {
+		x, y, z := sites[i], sites[i+1], sites[i+2]
+		if s := (x - x) + (y - y) + (z - z); s != 0 { // NaN for NaN and infinities
+			return nil, i / 3
+		}
+		b.add(x, y, z)
+	}
+	f = &frame{low: b.lo, high: b.hi}
+	if len(sites) == 0 {
+		f.low, f.high, f.scale, f.scale2 = [3]float64{}, [3]float64{}, 1, 1
+		return f, -1
+	}
+	f.place(b, true)
+	if !f.survey(sites) {
+		f.place(b, false)
+		f.survey(sites)
+	}
+	return f, -1
+}
+
+// place chooses origin and scale.
+func (f *frame) place(b bounds, move bool) {
+	f.x0, f.y0, f.z0 = 0, 0, 0
+	if extent := b.extent(); move && extent > 0 && extent < math.MaxFloat64/16 {
+		step := math.Ldexp(1, exponentAbove(extent))
+		origin := func(k int) float64 {
+			if max(math.Abs(b.lo[k]), math.Abs(b.hi[k])) <= 4*extent {
+				return 0
+			}
+			return math.Floor(b.lo[k]/step) * step
+		}
+		f.x0, f.y0, f.z0 = origin(0), origin(1), origin(2)
+	}
+	o := [3]float64{f.x0, f.y0, f.z0}
+	largest := 0.0
+	for k := range 3 {
+		largest = max(largest, math.Abs(b.lo[k]-o[k]), math.Abs(b.hi[k]-o[k]))
+	}
+	e := 0
+	if largest > 0 {
+		e = -exponentAbove(largest)
+	}
+	f.scale, f.scale2 = math.Ldexp(1, e/2), math.Ldexp(1, e-e/2)
+}
+
+// exponentAbove returns e with x < 2^e <= 2x, for x > 0.
+func exponentAbove(x float64) int {
+	_, e := math.Frexp(x)
+	return e
+}
+
+// survey checks that the frame is exact for all sites, and finds the bounds and the
+// common last binary place of the internal coordinates. It returns false when the
+// origin has to be given up.
+func (f *frame) survey(sites []float64) bool {
+	f.box = emptyBounds()
+	f.rounded = false
+	const tiny = 0x1p-960
+	whole := true
+	var union int64
+	for i := 0; i+2 < len(sites); i += 3 {
+		x, y, z := sites[i]-f.x0, sites[i+1]-f.y0, sites[i+2]-f.z0
+		if x+f.x0 != sites[i] || y+f.y0 != sites[i+1] || z+f.z0 != sites[i+2] ||
+			roundedDifference(sites[i], f.x0, x) || roundedDifference(sites[i+1], f.y0, y) ||
+			roundedDifference(sites[i+2], f.z0, z) {
+			return false
+		}
+		x, y, z = float64(x*f.scale)*f.scale2, float64(y*f.scale)*f.scale2, float64(z*f.scale)*f.scale2
+		if (math.Abs(x) < tiny && x != 0) || (math.Abs(y) < tiny && y != 0) || (math.Abs(z) < tiny && z != 0) {
+			f.rounded = true
+		}
+		f.box.add(x, y, z)
+		const unit = 1 << maxBits
+		a, b, c := x*unit, y*unit, z*unit
+		ia, ib, ic := int64(a), int64(b), int64(c)
+		if float64(ia) != a || float64(ib) != b || float64(ic) != c {
+			whole = false
+		}
+		union |= ia | ib | ic
+	}
+	f.bits = maxBits + 1
+	if whole && !f.rounded {
+		f.bits = maxBits - min(bits.TrailingZeros64(uint64(union)), maxBits)
+	}
+	return true
+}
+
+// roundedDifference reports whether d = fl(a-b) is not a-b (the error of Knuth's
+// two-sum).
+func roundedDifference(a, b, d float64) bool {
+	bb := d - a
+	return (a-(d-bb))-(b+bb) != 0
+}
+
+// internal returns the internal coordinates of site i.
+func (f *frame) internal(sites []float64, i int) (x, y, z float64) {
+	s := sites[3*i : 3*i+3 : 3*i+3]
+	return float64((s[0]-f.x0)*f.scale) * f.scale2, float64((s[1]-f.y0)*f.scale) * f.scale2, float64((s[2]-f.z0)*f.scale) * f.scale2
+}

@@ -1,0 +1,202 @@
+package delaunay
+
+import (
+	"math/bits"
+	"runtime"
+	"slices"
+	"sync"
+)
+
+// The order of insertion (Amenta, Choi and Rote 2003): the sites are dealt at random
+// into rounds, each roundRatio times as large as the one before it, and the sites of
+// one round are sorted along a Hilbert curve. The deal depends on the site's index
+// alone; since the result does not depend on the order of insertion, neither does it
+// depend on the deal.
+
+const (
+	roundBits = 3 // a round is 1<<roundBits times as large as the one before
+	maxRounds = 15
+)
+
+// ranked is a site with its place in the order: the round above the Hilbert code.
+type ranked struct {
+	key   uint64
+	index uint32
+}
+
+// mix is the finaliser of splitmix64 (Steele, Lea and Flood 2014).
+func mix(h uint64) uint64 {
+	h ^= h >> 30
+	h *= 0xbf58476d1ce4e5b9
+	h ^= h >> 27
+	h *= 0x94d049bb133111eb
+	return h ^ h>>31
+}
+
+// roundOf deals a site into one of rounds+1 rounds; the last is the largest.
+func roundOf(index int, rounds int) int {
+	zeros := bits.TrailingZeros64(mix(uint64(index)+0x9e3779b97f4a7c15) | 1<<63)
+	return rounds - min(zeros/roundBits, rounds)
+}
+
+// roundsFor leaves a few dozen sites in the first round.
+func roundsFor(n int) int {
+	rounds := 0
+	for n > 64 && rounds < maxRounds {
+		n >>= roundBits
+		rounds++
+	}
+	return rounds
+}
+
+// insertionOrder returns the sites' indices in the order of insertion and where each
+// round ends.
+func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, ends []int) {
+	n := len(sites) / 3
+	rounds := roundsFor(n)
+	list := make([]ranked, n)
+	counts := make([]int, rounds+1)
+	var lock sync.Mutex
+	inChunks(n, threads, func(lo, hi int) {
+		mine := make([]int, rounds+1)
+		cell := f.cells()
+		for i := lo; i < hi; i++ {
+			r := roundOf(i, rounds)
+			mine[r]++
+			x, y, z := f.internal(sites, i)
+			list[i] = ranked{uint64(r)<<(3*hilbertBits) | cell.code(x, y, z), uint32(i)}
+		}
+		lock.Lock()
+		for r, c := range mine {
+			counts[r] += c
+		}
+		lock.Unlock()
+	})
+	list = radixSort(list, make([]ranked, n))
+	refine(f, sites, list)
+	order = make([]uint32, n)
+	for i := range list {
+		order[i] = list[i].index
+	}
+	end := 0
+	for _, c := range counts {
+		end += c
+		ends = append(ends, end)
+	}
+	return order, ends
+}
+
+// grid places points in the cells of a cube.
+type grid struct {
+	x, y, z, factor float64
+}
+
+func (g *grid) code(x, y, z float64) uint64 {
+	const top = 1<<hilbertBits - 1
+	return hilbertCode(
+		min(uint32((x-g.x)*g.factor), top),
+		min(uint32((y-g.y)*g.factor), top),
+		min(uint32((z-g.z)*g.factor), top))
+}
+
+const radixBits = 11
+
+// radixSort sorts by key, stable, least digit first; list and spare change roles and
+// the sorted one is returned.
+func radixSort(list, spare []ranked) []ranked {
+	var differ uint64
+	for i := range list {
+		differ |= list[i].key ^ list[0].key
+	}
+	for shift := 0; shift < 64; shift += radixBits {
+		const mask = 1<<radixBits - 1
+		if differ>>shift&mask == 0 {
+			continue
+		}
+		var start [1 << radixBits]uint32
+		for i := range list {
+			start[list[i].key>>shift&mask]++
+		}
+		sum := uint32(0)
+		for d := range start {
+			start[d], sum = sum, sum+start[d]
+		}
+		for i := range list {
+			d := list[i].key >> shift & mask
+			spare[start[d]] = list[i]
+			start[d]++
+		}
+		list, spare = spare, list
+	}
+	return list
+}
+
+// refine sorts runs of equal keys again, each in a cube of its own: far clusters
+// share one cell of the cube around all sites.
+func refine(f *frame, sites []float64, list []ranked) {
+	const enough = 16
+	for lo := 0; lo < len(list); {
+		hi := lo + 1
+		for hi < len(list) && list[hi].key == list[lo].key {
+			hi++
+		}
+		if hi-lo > enough {
+			refineRun(f, sites, list[lo:hi])
+		}
+		lo = hi
+	}
+}
+
+func refineRun(f *frame, sites []float64, run []ranked) {
+	b := emptyBounds()
+	for i := range run {
+		x, y, z := f.internal(sites, int(run[i].index))
+		b.add(x, y, z)
+	}
+	g, ok := b.grid()
+	if !ok {
+		return // all in one place
+	}
+	for i := range run {
+		x, y, z := f.internal(sites, int(run[i].index))
+		run[i].key = g.code(x, y, z)
+	}
+	if len(run) > 4096 {
+		if sorted := radixSort(run, make([]ranked, len(run))); &sorted[0] != &run[0] {
+			copy(run, sorted)
+		}
+	} else {
+		slices.SortStableFunc(run, func(a, b ranked) int {
+			switch {
+			case a.key < b.key:
+				return -1
+			case a.key > b.key:
+				return 1
+			}
+			return 0
+		})
+	}
+	refine(f, sites, run)
+}
+
+// inChunks calls f for parts of 0..n-1 from as many goroutines as threads.
+func inChunks(n, threads int, f func(lo, hi int)) {
+	const small = 1 << 14
+	if threads <= 1 || n < small {
+		f(0, n)
+		return
+	}
+	var wait sync.WaitGroup
+	for k := range threads {
+		lo, hi := n*k/threads, n*(k+1)/threads
+		wait.Go(func() { f(lo, hi) })
+	}
+	wait.Wait()
+}
+
+func defaultThreads(threads int) int {
+	if threads > 0 {
+		return threads
+	}
+	return runtime.GOMAXPROCS(0)
+}

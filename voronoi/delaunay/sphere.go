@@ -1,0 +1,48 @@
+package delaunay
+
+import "math"
+
+// Circumspheres and how far they can be trusted.
+//
+// With u, v, w the corners seen from a fourth, D = u·(v×w) and P = |u||v||w|, the
+// centre is that corner plus N/(2D), N = |u|²v×w + |v|²w×u + |w|²u×v. Counting
+// roundings as in exact.go, D errs by at most 8√2 εP and N by 12√2 εP(|u|+|v|+|w|).
+// Chords are no longer than 2R, so the centre errs by at most
+//
+//	R ε (36√2 + 8√2) κ·1.01 + 2εR + ε·|coordinates|,   κ = P/D,
+//
+// below δ = R(63εκ + 3ε) + 2ε(1+R) for coordinates within 1. A site's squared
+// distance to the stored centre then differs from what it would be for the true
+// sphere by at most 4δR, and ten roundings of distance and radius add 10εR²: the
+// bounds are R²(1 ∓ μ) with
+//
+//	μ = 252εκ + 30ε + 8ε/R
+//
+// before they are widened to float32. For κ < 2^20 and R above smallestSphere the sum
+// is below 2^-23, and 2^-22 is used without looking closer.
+const (
+	plainMargin = 0x1p-22
+	plainKappa2 = 0x1p40
+	kappaFloor  = 1e-250
+	floatMargin = 0x1p-23
+	worstMargin = 0x1p-8
+)
+
+func (m *mesh) setSphereLimits() {
+	// 8ε√3/R < 2^-25
+	const r = 8 * 2 * epsilon * (1 << 25)
+	m.smallestSphere = r * r
+}
+
+// carefulBounds returns the bounds of a sphere outside the plain range. det is 2D's
+// half, p2 the square of P, r2 the squared radius.
+func carefulBounds(det, p2, r2 float64) (lo, hi float32) {
+	if det > 1e-120 && p2 > 1e-240 && r2 > 1e-30 && r2 < 1e30 {
+		kappa := math.Sqrt(p2) / det
+		margin := 1.1*(252*epsilon*kappa+30*epsilon+16*epsilon/math.Sqrt(r2)) + floatMargin
+		if margin < worstMargin {
+			return float32(r2 * (1 - margin)), float32(r2 * (1 + margin))
+		}
+	}
+	return loIll, float32(math.Inf(1))
+}
