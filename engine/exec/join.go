@@ -168,6 +168,7 @@ type joinLocal struct {
 	reader    *keyReader
 	keys      []int32
 	keyCols   []column.Vector
+	active    []int32
 	maybe     pairs
 	out       pairs
 	cols      []column.Vector
@@ -206,6 +207,9 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 		l.keys = room(l.keys, b.N)
 		l.reader.find(cols, b.On, b.N, l.keys)
 	}
+	if s.right.keys != nil && s.rest == nil {
+		return s.runKeys(ctx, w, l, b, emit)
+	}
 	var err error
 	forEachOn(b.On, b.N, func(i int) {
 		if err == nil {
@@ -219,6 +223,29 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 		return err
 	}
 	s.finishRow(l)
+	return s.handOn(ctx, w, l, b, emit)
+}
+
+// runKeys joins a batch where equal keys are all that is asked.
+func (s *joinStep) runKeys(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, emit Emit) error {
+	l.active = activeRows(l.active, b.On, b.N)
+	for _, i := range l.active {
+		k := l.keys[i]
+		if k < 0 {
+			if s.kind == plan.Left {
+				l.out.add(i, -1)
+			}
+			continue
+		}
+		for _, r := range s.right.rows[s.right.start[k]:s.right.start[k+1]] {
+			l.out.add(i, r)
+			if len(l.out.left) == BatchRows {
+				if err := s.handOn(ctx, w, l, b, emit); err != nil {
+					return err
+				}
+			}
+		}
+	}
 	return s.handOn(ctx, w, l, b, emit)
 }
 

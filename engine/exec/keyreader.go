@@ -36,7 +36,7 @@ func (r *keyReader) put(cols []column.Vector, on []uint64, n int, keys []int32) 
 		if t.n == 0 && countOn(on, n) > 0 {
 			t.add(nil)
 		}
-		forEachOn(on, n, func(i int) { keys[i] = 0 })
+		clear(keys[:n])
 	case t.oneText():
 		r.eachCode(0, &cols[0], on, n, true, func(i int, code int32) { keys[i] = t.putText(code) })
 	case len(t.types) == 1 && t.width == 2:

@@ -15,7 +15,8 @@ type sortSink struct {
 	schema column.Schema // of the input
 	keyed  column.Schema // with the keys behind
 	scope
-	all *tableBuilder
+	parts []*column.Table // sorted where there is a top
+	rows  int             // of parts
 }
 
 func newSortSink(env *Env, n *plan.Sort) *sortSink {
@@ -50,7 +51,17 @@ func (p *sortPart) Consume(w *Worker, b *column.Batch) error {
 	if err := p.rows.add(p.cols, b.On, b.N); err != nil {
 		return err
 	}
-	return p.sink.cut(&p.rows)
+	if p.sink.worthCutting(p.rows.n) { // a chunk may be long behind a join
+		first := p.sink.first(p.rows.finish())
+		p.rows = newTableBuilder(p.sink.env, p.sink.keyed)
+		return p.rows.addAll(first.Cols, first.N)
+	}
+	return nil
+}
+
+// worthCutting reports whether so many rows are many more than the top.
+func (s *sortSink) worthCutting(rows int) bool {
+	return s.node.Top > 0 && int64(rows) > 2*s.node.Top+int64(s.env.chunkRows())
 }
 
 // first is the rows of t that are among the first Top ones, in their order.
@@ -74,32 +85,29 @@ func (s *sortSink) order(t *column.Table) []int32 {
 // stable, so that rows with equal keys stay in the order of the input.
 func (s *sortSink) Merge(p Part) error {
 	rows := p.(*sortPart).rows
-	if s.all == nil {
-		s.all = rows
+	if rows.n == 0 {
 		return nil
 	}
-	if err := s.all.addTable(s.first(rows.finish())); err != nil {
+	part := s.first(rows.finish())
+	s.parts = append(s.parts, part)
+	s.rows += part.N
+	if !s.worthCutting(s.rows) {
+		return nil
+	}
+	all, err := joined(s.env, s.keyed, s.parts)
+	if err != nil {
 		return err
 	}
-	return s.cut(&s.all)
-}
-
-// cut forgets the rows that cannot be among the first ones, whenever enough
-// have come together.
-func (s *sortSink) cut(rows **tableBuilder) error {
-	if s.node.Top <= 0 || int64((*rows).n) <= 2*s.node.Top+int64(s.env.chunkRows()) {
-		return nil
-	}
-	first := s.first((*rows).finish())
-	*rows = newTableBuilder(s.env, s.keyed)
-	return (*rows).addTable(first)
+	s.parts = []*column.Table{s.first(all)}
+	s.rows = s.parts[0].N
+	return nil
 }
 
 func (s *sortSink) Finish(context.Context) (Source, error) {
-	if s.all == nil {
-		s.all = newTableBuilder(s.env, s.keyed)
+	all, err := joined(s.env, s.keyed, s.parts)
+	if err != nil {
+		return nil, err
 	}
-	all := s.all.finish()
 	idx := s.order(all)
 	if s.node.Top > 0 && int64(len(idx)) > s.node.Top {
 		idx = idx[:s.node.Top]

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/problem"
@@ -60,18 +61,12 @@ func (g *gatherer) add(v *column.Vector, idx []int32) {
 		g.addZeros(len(idx))
 		return
 	}
-	if v.Type != g.v.Type {
-		panic(fmt.Sprintf("exec: a %s vector in a %s column", v.Type, g.v.Type))
-	}
+	g.check(v)
 	switch {
 	case v.Type.Counted():
-		for _, i := range idx {
-			g.v.I = append(g.v.I, v.I[i])
-		}
+		g.v.I = appendRows(g.v.I, v.I, idx)
 	case v.Type == column.Real:
-		for _, i := range idx {
-			g.v.F = append(g.v.F, v.F[i])
-		}
+		g.v.F = appendRows(g.v.F, v.F, idx)
 	case v.Type == column.Point:
 		for _, i := range idx {
 			g.v.F = append(g.v.F, v.F[3*i], v.F[3*i+1], v.F[3*i+2])
@@ -80,7 +75,7 @@ func (g *gatherer) add(v *column.Vector, idx []int32) {
 		g.v.C = g.texts.add(g.v.C, v, idx)
 		g.v.Dict = g.texts.dict
 	case v.Type == column.Boolean:
-		g.growBits(len(idx))
+		g.growBits()
 		for k, i := range idx {
 			if column.Bit(v.Bits, int(i)) {
 				column.SetBit(g.v.Bits, from+k)
@@ -89,7 +84,78 @@ func (g *gatherer) add(v *column.Vector, idx []int32) {
 	}
 }
 
-func (g *gatherer) growBits(n int) {
+func (g *gatherer) check(v *column.Vector) {
+	if v.Type != g.v.Type {
+		panic(fmt.Sprintf("exec: a %s vector in a %s column", v.Type, g.v.Type))
+	}
+}
+
+func appendRows[T any](to, from []T, idx []int32) []T {
+	to = slices.Grow(to, len(idx))
+	for _, i := range idx {
+		to = append(to, from[i])
+	}
+	return to
+}
+
+// addAll is add for the first n rows of v, as far as they can be copied as they
+// lie; it reports whether it did.
+func (g *gatherer) addAll(v *column.Vector, n int) bool {
+	if v.Type == column.Null || v.Type == column.Boolean || v.Type == column.Text && !g.texts.knows(v.Dict) {
+		return false
+	}
+	g.check(v)
+	if v.Valid != nil || g.v.Valid != nil {
+		if g.v.N&63 != 0 {
+			return false // the bits of the two do not lie alike
+		}
+		g.copyValid(v, n)
+	}
+	g.v.N += n
+	switch {
+	case v.Type.Counted():
+		g.v.I = append(g.v.I, v.I[:n]...)
+	case v.Type == column.Real:
+		g.v.F = append(g.v.F, v.F[:n]...)
+	case v.Type == column.Point:
+		g.v.F = append(g.v.F, v.F[:3*n]...)
+	case v.Type == column.Text:
+		g.v.C = append(g.v.C, v.C[:n]...)
+		g.v.Dict = g.texts.dict
+	}
+	return true
+}
+
+// copyValid appends the validity of n rows where g ends with a whole word.
+func (g *gatherer) copyValid(v *column.Vector, n int) {
+	if g.v.Valid == nil {
+		g.v.Valid = column.AllOn(g.v.N)
+	}
+	if v.Valid == nil {
+		g.v.Valid = append(g.v.Valid, column.AllOn(n)...)
+		return
+	}
+	g.v.Valid = append(g.v.Valid, v.Valid[:column.Words(n)]...)
+	if rest := uint(n) & 63; rest != 0 {
+		g.v.Valid[len(g.v.Valid)-1] &= 1<<rest - 1
+	}
+}
+
+// grow makes room for n more rows at once.
+func (g *gatherer) grow(n int) {
+	switch {
+	case g.v.Type.Counted():
+		g.v.I = slices.Grow(g.v.I, n)
+	case g.v.Type == column.Real:
+		g.v.F = slices.Grow(g.v.F, n)
+	case g.v.Type == column.Point:
+		g.v.F = slices.Grow(g.v.F, 3*n)
+	case g.v.Type == column.Text:
+		g.v.C = slices.Grow(g.v.C, n)
+	}
+}
+
+func (g *gatherer) growBits() {
 	for len(g.v.Bits) < column.Words(g.v.N) {
 		g.v.Bits = append(g.v.Bits, 0)
 	}
@@ -106,7 +172,7 @@ func (g *gatherer) addZeros(n int) {
 	case g.v.Type == column.Text:
 		g.v.C = append(g.v.C, make([]uint32, n)...)
 	case g.v.Type == column.Boolean:
-		g.growBits(n)
+		g.growBits()
 	}
 }
 
@@ -148,15 +214,18 @@ type textMerge struct {
 	remap []uint32     // code + 1, 0: not seen yet
 }
 
-func (m *textMerge) add(to []uint32, v *column.Vector, idx []int32) []uint32 {
-	if m.dict == nil && len(v.Dict.Texts) > 0 {
-		m.dict = v.Dict
+// knows reports whether codes of a dictionary can be kept as they are; the
+// first dictionary that comes is taken as it is.
+func (m *textMerge) knows(d *column.Dict) bool {
+	if m.dict == nil && len(d.Texts) > 0 {
+		m.dict = d
 	}
-	if m.dict == v.Dict {
-		for _, i := range idx {
-			to = append(to, v.C[i])
-		}
-		return to
+	return m.dict == d
+}
+
+func (m *textMerge) add(to []uint32, v *column.Vector, idx []int32) []uint32 {
+	if m.knows(v.Dict) {
+		return appendRows(to, v.C, idx)
 	}
 	if m.from != v.Dict {
 		m.from = v.Dict
@@ -220,6 +289,12 @@ func newTableBuilder(env *Env, schema column.Schema) *tableBuilder {
 
 // add appends the active rows of columns that are n long.
 func (t *tableBuilder) add(cols []column.Vector, on []uint64, n int) error {
+	if on == nil {
+		if err := t.addAll(cols, n); err != nil {
+			return err
+		}
+		return t.env.keep(int64(n) * rowBytes(t.schema))
+	}
 	t.idx = activeRows(t.idx, on, n)
 	if err := t.addRows(cols, t.idx); err != nil {
 		return err
@@ -227,9 +302,36 @@ func (t *tableBuilder) add(cols []column.Vector, on []uint64, n int) error {
 	return t.env.keep(int64(len(t.idx)) * rowBytes(t.schema))
 }
 
-func (t *tableBuilder) addRows(cols []column.Vector, idx []int32) error {
-	if t.n+len(idx) > math.MaxInt32 {
+// room refuses more rows than an int32 counts.
+func (t *tableBuilder) room(n int) error {
+	if t.n+n > math.MaxInt32 {
 		return problem.New("too-many-rows", problem.Place{}, "an intermediate result has more than %d rows", math.MaxInt32)
+	}
+	return nil
+}
+
+// addAll appends the first n rows of cols.
+func (t *tableBuilder) addAll(cols []column.Vector, n int) error {
+	if err := t.room(n); err != nil {
+		return err
+	}
+	listed := false
+	for i, g := range t.cols {
+		if g.addAll(&cols[i], n) {
+			continue
+		}
+		if !listed {
+			t.idx, listed = activeRows(t.idx, nil, n), true
+		}
+		g.add(&cols[i], t.idx)
+	}
+	t.n += n
+	return nil
+}
+
+func (t *tableBuilder) addRows(cols []column.Vector, idx []int32) error {
+	if err := t.room(len(idx)); err != nil {
+		return err
 	}
 	for i, g := range t.cols {
 		g.add(&cols[i], idx)
@@ -238,14 +340,26 @@ func (t *tableBuilder) addRows(cols []column.Vector, idx []int32) error {
 	return nil
 }
 
-// addTable appends a whole table with the same columns, whose rows were counted
-// against the limit of memory when they were gathered.
-func (t *tableBuilder) addTable(from *column.Table) error {
-	if from.N == 0 {
-		return nil
+// joined is the rows of tables one after another; they were counted against
+// the limit of memory when they were gathered.
+func joined(env *Env, schema column.Schema, tables []*column.Table) (*column.Table, error) {
+	if len(tables) == 1 {
+		return tables[0], nil
 	}
-	t.idx = activeRows(t.idx, nil, from.N)
-	return t.addRows(from.Cols, t.idx)
+	total := 0
+	for _, t := range tables {
+		total += t.N
+	}
+	all := newTableBuilder(env, schema)
+	for _, g := range all.cols {
+		g.grow(total)
+	}
+	for _, t := range tables {
+		if err := all.addAll(t.Cols, t.N); err != nil {
+			return nil, err
+		}
+	}
+	return all.finish(), nil
 }
 
 // finish is the table. The builder must not be used afterwards.
@@ -288,7 +402,7 @@ func gatherTable(t *column.Table, idx []int32) *column.Table {
 type collectSink struct {
 	env    *Env
 	schema column.Schema
-	all    *tableBuilder
+	parts  []*column.Table
 }
 
 func (s *collectSink) Part(int) Part {
@@ -296,19 +410,18 @@ func (s *collectSink) Part(int) Part {
 }
 
 func (s *collectSink) Merge(p Part) error {
-	rows := p.(*collectPart).rows
-	if s.all == nil {
-		s.all = rows
-		return nil
+	if rows := p.(*collectPart).rows; rows.n > 0 {
+		s.parts = append(s.parts, rows.finish())
 	}
-	return s.all.addTable(rows.finish())
+	return nil
 }
 
 func (s *collectSink) Finish(context.Context) (Source, error) {
-	if s.all == nil {
-		s.all = newTableBuilder(s.env, s.schema)
+	t, err := joined(s.env, s.schema, s.parts)
+	if err != nil {
+		return nil, err
 	}
-	return newTableSource(s.env, s.all.finish()), nil
+	return newTableSource(s.env, t), nil
 }
 
 type collectPart struct {

@@ -47,8 +47,9 @@ func forEachOn(on []uint64, n int, f func(i int)) {
 func activeRows(idx []int32, on []uint64, n int) []int32 {
 	idx = room(idx, n)[:0]
 	if on == nil {
-		for i := 0; i < n; i++ {
-			idx = append(idx, int32(i))
+		idx = idx[:n]
+		for i := range idx {
+			idx[i] = int32(i)
 		}
 		return idx
 	}
