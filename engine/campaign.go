@@ -3,7 +3,9 @@ package engine
 import (
 	"fmt"
 	"math"
+	"regexp"
 	"strconv"
+	"strings"
 
 	"gonum.org/v1/gonum/spatial/r3"
 
@@ -28,13 +30,13 @@ func (s *Session) campaignTable(st *statement, t *lang.CreateData, c *clauses, r
 	}
 	placed, used, err := s.placedTable(st, c, read, origin)
 	if err != nil {
-		return nil, err
+		return nil, problem.At(err, originPlace(st, t))
 	}
 	if s.checkOnly && placed.N == 0 && t.Query != nil {
 		return campaignLayout(placed, id, idColumn, used), nil
 	}
 	if placed.N == 0 {
-		return nil, problem.New("no-sites", st.at(t), "%s has no rows, and a campaign needs a site", origin)
+		return nil, problem.New("no-sites", originPlace(st, t), "%s has no rows, and a campaign needs a site", origin)
 	}
 	if err := checkPlaces(st, t, placed, &id, origin); err != nil {
 		return nil, err
@@ -57,6 +59,14 @@ func (s *Session) campaignTable(st *statement, t *lang.CreateData, c *clauses, r
 		object.Notes = append(object.Notes, text)
 	}
 	return table, s.noteOutside(st, c, table)
+}
+
+// originPlace is where the statement says what the data come from.
+func originPlace(st *statement, t *lang.CreateData) problem.Place {
+	if t.File != nil {
+		return st.at(t.File)
+	}
+	return st.at(t.Query)
 }
 
 // campaignLayout orders the columns: id, x, y, z, the rest. placed has x, y, z first.
@@ -231,7 +241,29 @@ func realColumn(v *column.Vector, name string, at problem.Place, origin string) 
 		r.Valid = v.Valid
 		return r, nil
 	}
-	return *v, problem.New("position-type", at, "the coordinate '%s' of %s is %s, not a number", name, origin, v.Type)
+	return *v, notANumber(v, name, at, origin)
+}
+
+// decimalComma is a number whose decimal mark is a comma.
+var decimalComma = regexp.MustCompile(`^\s*[-+]?[0-9]*,[0-9]+\s*$`)
+
+// notANumber tells which value keeps a coordinate from being a number.
+func notANumber(v *column.Vector, name string, at problem.Place, origin string) error {
+	p := problem.New("position-type", at, "the coordinate '%s' of %s is %s, not a number", name, origin, v.Type)
+	if v.Type != column.Text {
+		return p
+	}
+	for i := 0; i < v.N; i++ {
+		value := v.Text(i)
+		if _, err := strconv.ParseFloat(strings.TrimSpace(value), 64); err == nil || v.IsNull(i) {
+			continue
+		}
+		if decimalComma.MatchString(value) {
+			return p.WithHint("row %d has %s: DECIMAL MARK ',' reads decimal commas", i+1, quoted(value))
+		}
+		return p.WithHint("row %d has %s; MISSING %s reads it as missing", i+1, quoted(value), quoted(value))
+	}
+	return p
 }
 
 // ownCopy copies a vector of REAL out of scratch memory.

@@ -37,6 +37,7 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 		table, err = s.campaignTable(st, t, clauses, table, origin, &object)
 	} else if clauses.position != nil {
 		table, _, err = s.placedTable(st, clauses, table, origin)
+		err = problem.At(err, originPlace(st, t))
 	}
 	if err != nil {
 		return err

@@ -151,8 +151,8 @@ func importNotes(f *reader.Facts, file string) []string {
 	for _, c := range f.StayedText {
 		switch c.Reason {
 		case reader.MixedValues:
-			add("column '%s' is TEXT, since %s no numbers; the first is %s in line %d", c.Column,
-				are(c.NotNumeric, "value"), quoted(c.FirstText), c.FirstLine)
+			add("column '%s' is TEXT, since %s; the first is %s in line %d", c.Column,
+				noNumbers(c.NotNumeric), quoted(c.FirstText), c.FirstLine)
 		case reader.LeadingZeros:
 			add("column '%s' is TEXT, since codes such as %s in line %d would lose their zeros as numbers",
 				c.Column, quoted(c.FirstText), c.FirstLine)
@@ -179,11 +179,11 @@ func importNotes(f *reader.Facts, file string) []string {
 	return notes
 }
 
-func are(n int, thing string) string {
+func noNumbers(n int) string {
 	if n == 1 {
-		return "1 " + thing + " is"
+		return "1 value is no number"
 	}
-	return plural(n, thing) + " are"
+	return fmt.Sprintf("%d values are no numbers", n)
 }
 
 // missingNote tells of the NULLs in the attributes of a table.
