@@ -34,6 +34,12 @@ func LineColumn(src string, offset int) (line, column int) {
 func Caret(file, src string, span Span, message string) string {
 	start := min(max(span.Start, 0), len(src))
 	end := min(max(span.End, start), len(src))
+	for start > 0 && start < len(src) && !utf8.RuneStart(src[start]) {
+		start--
+	}
+	for end < len(src) && !utf8.RuneStart(src[end]) {
+		end++
+	}
 	if start == len(src) {
 		start = len(strings.TrimRightFunc(src, unicode.IsSpace))
 		end = start

@@ -48,6 +48,10 @@ func (s *scanner) next() (lexer.TokenType, int, int) {
 		if s.at > start+1 {
 			return tokParam, start, s.at
 		}
+		if s.at = start; s.peek(1) == ':' {
+			s.at += 2
+			return tokBad, start, s.at
+		}
 		return s.stray(start)
 	}
 	return s.mark(start)

@@ -9,7 +9,7 @@ func itoa(n int) string { return strconv.Itoa(n) }
 // Nearest gives the candidate that the word most likely was meant to be, or "" when
 // none is near. Near is one slip (a letter left out, added, exchanged, or two
 // neighbours swapped) for every three letters, at least one, at most three, and never
-// a whole word's worth; case does not count. Of equally near ones the first is taken.
+// as many as either word has letters; case does not count. Of equally near ones the first is taken.
 // A word that is itself a candidate gives that candidate.
 //
 // The distance is the restricted edit distance with transpositions (Damerau 1964).
@@ -22,7 +22,7 @@ func Nearest(word string, candidates []string) string {
 		if len(a)-len(b) >= bestDistance || len(b)-len(a) >= bestDistance {
 			continue
 		}
-		if d := editDistance(a, b); d < bestDistance && d < max(len(a), len(b)) {
+		if d := editDistance(a, b); d < bestDistance && d < min(len(a), len(b)) {
 			best, bestDistance = candidate, d
 		}
 	}

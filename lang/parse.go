@@ -185,8 +185,11 @@ func noStatement(t *lexer.Token) *Error {
 		return lexicalFault(t)
 	}
 	e := &Error{Span: tokenSpan(t), Message: "no statement begins with " + shown(t), Hint: nearHint(t, StatementWords())}
+	if e.Hint == "" {
+		e.Hint = "HELP lists the statements"
+	}
 	if t.Type == tokEOF {
-		e.Message = "expected a statement but found nothing"
+		e.Message, e.Hint = "expected a statement but found nothing", ""
 	}
 	return e
 }
@@ -206,6 +209,9 @@ func ourFault(toks []lexer.Token, err error) *Error {
 	p := parser{toks: toks, i: max(len(toks)-1-at.Line, 0), alias: -1}
 	what, words := expectation(toks, p.i)
 	fault = p.fault(what)
+	if p.is(tokRight) && what == statementEnd {
+		fault.Message = "this ) closes no ("
+	}
 	if fault.Hint == "" {
 		fault.Hint = nearHint(p.tok(), words)
 	}

@@ -13,9 +13,11 @@ func (p *parser) call() *Call {
 	opened := p.next()
 	switch {
 	case p.is(tokRight):
-	case p.follows(tokStar, tokRight):
-		p.next()
+	case p.take(tokStar):
 		c.Star = true
+		p.close(opened, "")
+		c.At = p.since(start)
+		return c
 	default:
 		c.Distinct = p.take(kDistinct)
 		c.Args = []Expr{p.expr()}

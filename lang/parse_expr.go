@@ -57,6 +57,8 @@ func (p *parser) comparison() Expr {
 		p.next()
 	}
 	switch t := p.kind(); {
+	case p.follows(kNot, kNull):
+		p.refuse("NOT NULL alone is no condition", "write IS NOT NULL")
 	case isComparison(t):
 		op := p.next()
 		right := p.sum()
@@ -91,7 +93,9 @@ func (p *parser) comparisonChain() {
 func (p *parser) between(start int, not bool, operand Expr) Expr {
 	p.next()
 	e := &Between{Not: not, Operand: operand, Low: p.sum()}
-	p.needWord(kAnd)
+	if !p.take(kAnd) {
+		p.failHint("AND", "BETWEEN low AND high")
+	}
 	e.High = p.sum()
 	e.At = p.since(start)
 	return e
@@ -103,7 +107,10 @@ func (p *parser) in(start int, not bool, operand Expr) Expr {
 	if p.is(tokLeft) && p.opensQuery(p.i) {
 		e.Query = p.bracketedQuery()
 	} else {
-		opened := p.open("( and a list or a query")
+		if !p.is(tokLeft) {
+			p.failHint("( and a list or a query", "IN (1, 2, 3)")
+		}
+		opened := p.next()
 		e.List = p.exprs()
 		p.close(opened, "a comma")
 	}
@@ -136,8 +143,10 @@ func (p *parser) isTest(start int, operand Expr) Expr {
 	case p.take(kDistinct):
 		p.needWord(kFrom)
 		e.What, e.From = IsDistinctFrom, p.sum()
-	default:
+	case p.isOneOf(tokNumber, tokText, tokParam):
 		p.failHint("NULL, TRUE, FALSE, UNKNOWN or DISTINCT FROM", "values are compared with =")
+	default:
+		p.fail("NULL, TRUE, FALSE, UNKNOWN or DISTINCT FROM")
 	}
 	e.At = p.since(start)
 	return e
@@ -259,7 +268,7 @@ func (p *parser) primary() Expr {
 	case tokLeft:
 		return p.bracketed()
 	case kTimestamp, kInterval:
-		if p.ahead(1) == tokText {
+		if p.ahead(1) == tokText || p.ahead(1) == tokNumber {
 			return p.timeLiteral()
 		}
 	}
@@ -296,6 +305,12 @@ func (p *parser) param() *Param {
 // timeLiteral reads TIMESTAMP 'text' or INTERVAL 'text' unit.
 func (p *parser) timeLiteral() Expr {
 	first := p.next()
+	if p.is(tokNumber) {
+		if first.Type == kTimestamp {
+			p.refuse("the time of a TIMESTAMP stands in single quotes", "TIMESTAMP '2031-04-07 08:15:00'")
+		}
+		p.refuse("the amount of an INTERVAL stands in single quotes", "INTERVAL '"+p.tok().Value+"' MINUTE")
+	}
 	text := p.text("a text")
 	if first.Type == kTimestamp {
 		return &Timestamp{At: p.since(tokenStart(first)), Text: text}

@@ -310,6 +310,8 @@ func (p *parser) queryEnd(what string, opened *lexer.Token) {
 	case isQueryWord(t.Type):
 		p.refuse(wordText[t.Type]+" stands out of order here, or twice",
 			"SELECT … FROM … WHERE … GROUP BY … HAVING … ORDER BY … LIMIT …")
+	case t.Type == tokRight && opened == nil:
+		p.refuse("this ) closes no (", "")
 	case p.looksLikeAlias():
 		p.refuse("'"+t.Value+"' needs AS here to be an alias", "write AS "+t.Value)
 	case isClauseWord(t.Type) && p.afterRelation:

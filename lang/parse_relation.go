@@ -126,7 +126,7 @@ func (p *parser) value(what string) Expr {
 		operand := p.unsignedValue(what)
 		return &Unary{At: p.since(start), Op: op, Operand: operand}
 	case kTimestamp, kInterval:
-		if p.ahead(1) == tokText {
+		if p.ahead(1) == tokText || p.ahead(1) == tokNumber {
 			return p.timeLiteral()
 		}
 	}

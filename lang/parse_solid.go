@@ -91,7 +91,10 @@ func (p *parser) ring() *Ring {
 	r := &Ring{}
 	for {
 		at := p.start()
-		corner := p.open("a corner (x, y)")
+		if !p.is(tokLeft) {
+			p.failHint("a corner (x, y)", "a ring is ((x, y), (x, y), (x, y))")
+		}
+		corner := p.next()
 		c := &Corner{X: p.expr()}
 		p.need(tokComma, "a comma and y")
 		c.Y = p.expr()

@@ -56,9 +56,22 @@ func (p *parser) joinCondition(j *JoinSource) {
 		j.On = p.expr()
 	case p.take(kUsing):
 		j.Using = p.names("the name of a column that both sides have")
+	case lastBy(j.Right) != nil:
+		p.failHint("ON or USING", "the ON before belongs to BY; a relation that is joined needs an alias: AS name ON condition")
 	default:
 		p.failHint("ON or USING", "a join without a condition is a CROSS JOIN")
 	}
+}
+
+// lastBy gives the BY clause with which a source without an alias ends, or nil. An ON
+// behind it is its own.
+func lastBy(s Source) *ByClause {
+	r, ok := s.(*RelationSource)
+	if !ok || !r.Alias.IsZero() || len(r.Relation.Clauses) == 0 {
+		return nil
+	}
+	by, _ := r.Relation.Clauses[len(r.Relation.Clauses)-1].(*ByClause)
+	return by
 }
 
 // source reads one source with its alias.
@@ -77,6 +90,10 @@ func (p *parser) source() Source {
 		return p.relationSource()
 	case p.beginsQuery(p.i):
 		p.refuse("a query after FROM stands in brackets", "FROM (SELECT …) AS name")
+	}
+	if p.is(tokText) {
+		p.failHint("a campaign, a table, a view, a relation or a query in brackets",
+			"a file is read by CREATE CAMPAIGN or CREATE TABLE first; names stand without quotes or in double ones")
 	}
 	s := &NameSource{Name: p.name("a campaign, a table, a view, a relation or a query in brackets")}
 	if p.is(tokLeft) {
@@ -164,6 +181,9 @@ func (p *parser) afterClauses() {
 	t := p.tok()
 	if hint := nearHint(t, clauseAndQueryWords); hint != "" {
 		p.failHint("a clause or the end of the relation", hint)
+	}
+	if before := &p.toks[p.i-1]; before.Type == tokNumber && isWord(t.Type) {
+		p.refuse("'"+cutShort(before.Value+" "+t.Value)+"' is no value here", "a time is written INTERVAL '15' MINUTE; units of length are left out")
 	}
 	name := printName(Name{Text: t.Value})
 	if t.Type == tokQuoted {

@@ -200,6 +200,9 @@ func (p *parser) fault(what string) *Error {
 		}
 	}
 	err := &Error{Span: tokenSpan(t), Message: "expected " + what + " but found " + shown(t)}
+	if p.i > 0 && p.toks[p.i-1].Type == tokText && tokenEnd(&p.toks[p.i-1]) == tokenStart(t) && isAnyWord(t.Type) {
+		err.Hint = "inside a text write '' for one '"
+	}
 	if t.Type == tokQuoted && strings.Contains(what, "text") && !strings.Contains(what, "name") {
 		err.Hint = "texts stand in single quotes: '" + strings.ReplaceAll(strings.Trim(t.Value, `"`), "'", "''") + "'"
 	}

@@ -171,7 +171,7 @@ func (w *printer) join(j *JoinSource) {
 	} else {
 		w.put(" ", string(j.Kind), " JOIN ")
 	}
-	if hasOpenBy(j.Right) && j.On != nil {
+	if by := lastBy(j.Right); by != nil && by.On.IsZero() && j.On != nil {
 		w.put("(")
 		w.source(j.Right, true)
 		w.put(")")
@@ -186,17 +186,6 @@ func (w *printer) join(j *JoinSource) {
 		w.put(" USING ")
 		w.names(j.Using)
 	}
-}
-
-// hasOpenBy tells whether a source ends with BY and names, without an alias, so that an
-// ON behind it would be taken for its own.
-func hasOpenBy(s Source) bool {
-	r, ok := s.(*RelationSource)
-	if !ok || !r.Alias.IsZero() || len(r.Relation.Clauses) == 0 {
-		return false
-	}
-	by, ok := r.Relation.Clauses[len(r.Relation.Clauses)-1].(*ByClause)
-	return ok && by.On.IsZero()
 }
 
 func (w *printer) relation(r *Relation) {
