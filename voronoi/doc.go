@@ -1,2 +1,88 @@
-// Package voronoi divides space among sites.
+// Package voronoi divides space among sites: to each the places nearer to it than
+// to any other. It owns the [Diagram], the one door through which cells and
+// contacts are asked for. It knows no file, no query and no unit; it answers in
+// numbers and typed errors, and leaves the words to its caller.
+//
+// # Model
+//
+// A diagram is made of sites and, if wanted, a solid that closes the partition; it
+// is immutable and safe for concurrent use. [New] computes no cell, only the index
+// and the [Facts]. [Diagram.Measure] computes the wanted measures of the wanted
+// cells, [Diagram.Contacts] the faces that cells share, [Diagram.Insert] the cell
+// that one more site would get. Nothing else is computed, and nothing is kept.
+//
+// A cell is the intersection of the half-spaces nearer to its site than to each of
+// the others. It is cut out of a box one half-space after the other
+// (voronoi/polyhedron), in coordinates local to its site, where the bisector
+// towards a neighbour at offset n is n·x <= |n|²/2 and nothing cancels. The nearest
+// sites cut first. Then a walk through the k-d tree (voronoi/index) offers all sites
+// that can still matter: a site cuts a cell if and only if it lies in the open ball
+// about one of its vertices that passes through the cell's own site (the empty
+// circumballs of Voronoi vertices; "radius of security" in Lévy & Bonneel 2013).
+// These balls only shrink, so that the walk ends with every vertex certified. A
+// fixed number of neighbours would be no proof, on any data.
+//
+// With a solid, a cell is the part of the solid nearer to its site. Convex solids
+// cut the polyhedron itself; others measure their part of it (voronoi/solid). A site
+// outside the solid by more than the tolerance takes no part. A cell in a solid that
+// is not convex can be in several pieces, and its measures are their sums.
+//
+// Without a solid some cells are unbounded: their volume, area and farthest point
+// are +Inf, they have no centroid, and [Cells.Bounded] is false. Their faces,
+// neighbours and nearest face are finite, Vertices counts the finite ones, and Edges
+// counts edges, rays and lines alike: a half-space has one face and no edge, a wedge
+// two faces and one edge. Contacts that run to infinity have the area +Inf.
+//
+// # What counts as a face
+//
+// On lattices and other regular layouts more than four sites lie on common spheres,
+// and cells touch in edges and vertices. A contact counts if its area exceeds 1e-12
+// of the surface of its cell; edges shorter than 1e-9 of their distance from the
+// site are no edges. So the cell of a cubic lattice has 6 faces, 12 edges and 8
+// vertices although 26 sites touch it. polyhedron.Cell.Counts and Shape have the
+// details. Counts satisfy V - E + F = 2.
+//
+// # Degenerate input
+//
+// One site has all of the space. Sites on one line have slabs, sites in one plane
+// have prisms without end; four or more sites on a sphere meet in one vertex. None
+// of these is a special case. Sites with equal coordinates (-0 is 0) share one cell,
+// see [Cells.Multiplicity]: how they split it is the caller's business. Coordinates
+// must be finite and below 1e150.
+//
+// # What is exact and what is rounded
+//
+// Exact: the dimension of the set of sites, which sites coincide, which lie in the
+// solid (as far as the solid is exact), whether a cell is unbounded, the shift of
+// the coordinates to a near origin (an axis is shifted only if that loses no bit of
+// any site). Rounded: coordinates of vertices, and with them all measures, to about
+// 1e-14 of the cell's size; whether a contact of about 1e-12 of the surface counts.
+// Every product is rounded on its own, so that all builds give the same bits.
+//
+// # Laws
+//
+// The tests hold the package to these under the same numbers:
+//
+//  1. The volumes of the cells add up to the solid, the wall areas to its surface.
+//  2. Contacts are symmetric to the last bit, whichever sites are asked for; with
+//     the wall area they add up to the surface of the cell.
+//  3. Every cell is closed: each edge has two faces, V - E + F = 2, the area vectors
+//     of its faces sum to zero.
+//  4. A cell is what the half-spaces of all other sites leave, in whatever order.
+//  5. Neither the order of the sites, nor the number of threads, nor which other
+//     cells are asked for changes a bit.
+//  6. A shift that loses no bit of the coordinates shifts the centroids and changes
+//     nothing else. Scaling by a power of two scales all measures exactly.
+//  7. No site is nearer to a vertex of a cell than the cell's own.
+//  8. The cell that Insert gives to a place is the one that a site there has.
+//
+// # Limitations
+//
+// Cells are computed one by one. On a sheet of sites thinner than their spacing the
+// balls of the far vertices hold large parts of the sheet, and a cell takes longer
+// the more sites there are: [Facts].Flat and [Diagram.Cost] tell. Without a solid, a
+// face of an unbounded cell that lies wholly beyond 2^20 times the extent of the
+// sites is not seen. The middle of a contact that a non-convex solid cuts is right to
+// about 1e-8 of the cell's size, and where the face lies in a wall that ends on the
+// other side of it, it is that of the smaller side.
 package voronoi
