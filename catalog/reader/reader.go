@@ -116,6 +116,7 @@ const (
 	MixedValues  TextReason = iota // more than half, but not nearly all, are numbers
 	LeadingZeros                   // codes such as 007, which a number would not keep
 	TooLong                        // whole numbers beyond 64 bits, whose digits a REAL would not keep
+	OtherMark                      // more than half would be numbers with the other decimal mark
 )
 
 // UnitsConflict is a column whose heading and whose option disagree.

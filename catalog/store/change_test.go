@@ -228,29 +228,6 @@ func TestLocked(t *testing.T) {
 	}
 }
 
-// A folder that may not be written can be read; a change says what it lacks.
-func TestReadOnlyFolder(t *testing.T) {
-	path := filepath.Join(t.TempDir(), "catalog")
-	put(t, open(t, path), "hall", count(10))
-	if os.Getuid() == 0 {
-		t.Skip("root may write anywhere")
-	}
-	for _, p := range []string{filepath.Join(path, columnsName), filepath.Join(path, lockName), path} {
-		if err := os.Chmod(p, 0o555); err != nil {
-			t.Fatal(err)
-		}
-		defer os.Chmod(p, 0o777)
-	}
-	d := open(t, path)
-	if table(t, d, "hall").N != 10 {
-		t.Error("not readable")
-	}
-	err := d.Change(context.Background(), func(tx *Tx) error { return tx.Put("x", nil, nil) })
-	if !errors.Is(err, os.ErrPermission) {
-		t.Errorf("%v", err)
-	}
-}
-
 func TestClosed(t *testing.T) {
 	d := open(t, filepath.Join(t.TempDir(), "catalog"))
 	put(t, d, "hall", count(1))

@@ -30,7 +30,8 @@
 //
 // Whole numbers that would not survive as numbers keep a column TEXT too: codes
 // with leading zeros (007) and numbers beyond 64 bits, unless the column has
-// other numbers than whole ones. The columns of Options.TextColumns are INTEGER
+// other numbers than whole ones. Facts.StayedText tells of these as well, and of
+// texts that the other decimal mark would make numbers. The columns of Options.TextColumns are INTEGER
 // only where every value is an integer written plainly, and never at fault.
 //
 // # NULL

@@ -14,8 +14,9 @@ type tally struct {
 	counts  [isTime + 1]int
 	zeros   int
 	plain   int
+	other   int // texts that the other decimal mark would make numbers
 
-	firstText, firstLong, firstZeros sample // of values that are no number, …
+	firstText, firstLong, firstZeros, firstOther sample // of values that are no number, …
 }
 
 // sample is a value worth showing.
@@ -38,6 +39,10 @@ func (t *tally) add(b []byte, mark byte, line int) {
 	switch l.class {
 	case isWord, isBool, isTime:
 		t.firstText.keep(line, b)
+		if l.class == isWord && lookAtNumber(b, otherMark(mark)).class == isReal {
+			t.other++
+			t.firstOther.keep(line, b)
+		}
 	case isLongInt:
 		t.firstLong.keep(line, b)
 	}
@@ -48,6 +53,13 @@ func (t *tally) add(b []byte, mark byte, line int) {
 	if l.plain {
 		t.plain++
 	}
+}
+
+func otherMark(mark byte) byte {
+	if mark == '.' {
+		return ','
+	}
+	return '.'
 }
 
 func (t *tally) numbers() int { return t.counts[isInt] + t.counts[isLongInt] + t.counts[isReal] }
@@ -75,6 +87,8 @@ func (t *tally) decide() (column.Type, *reader.StayedText) {
 		return column.Timestamp, nil
 	case t.nearly(t.counts[isBool]):
 		return column.Boolean, nil
+	case t.other > 0 && 2*(t.numbers()+t.other) > t.present:
+		return column.Text, t.stayed(reader.OtherMark, t.firstOther)
 	case 2*t.numbers() > t.present:
 		return column.Text, t.stayed(reader.MixedValues, t.firstText)
 	}
