@@ -1,0 +1,233 @@
+package exec
+
+import (
+	"fmt"
+	"math/rand/v2"
+	"strings"
+	"testing"
+
+	"github.com/google/go-cmp/cmp"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/function"
+	"nearcell/engine/plan"
+	"nearcell/engine/plan/plantest"
+	"nearcell/engine/relation"
+	"nearcell/lang"
+)
+
+// sites is a table of five sites at two instants, in the way of a campaign:
+// temp is NULL for site C at the second instant.
+func sites() *plan.Scan {
+	schema := column.Schema{{Name: "id", Type: column.Text}, {Name: "w", Type: column.Real}, {Name: "temp", Type: column.Real},
+		{Name: "t", Type: column.Timestamp}}
+	b := []*column.Builder{column.NewBuilder(column.Text, nil), column.NewBuilder(column.Real, nil),
+		column.NewBuilder(column.Real, nil), column.NewBuilder(column.Timestamp, nil)}
+	for t := range 2 {
+		for i, id := range []string{"A", "B", "C", "D", "E"} {
+			b[0].AppendText(id)
+			b[1].AppendFloat([]float64{1, 2, 3, 3.5, 0.5}[i])
+			if id == "C" && t == 1 {
+				b[2].AppendNull()
+			} else {
+				b[2].AppendFloat(float64(4 + i))
+			}
+			b[3].AppendInt(int64(t) * 3_600_000_000)
+		}
+	}
+	table := &column.Table{Schema: schema, N: 10}
+	for _, x := range b {
+		table.Cols = append(table.Cols, x.Finish())
+	}
+	return plantest.Scan(table)
+}
+
+const ( // columns of sites and of CROWD OF sites
+	siteID = iota
+	siteW
+	siteTemp
+	siteT
+	siteVolume
+)
+
+func weighted(fn string, schema column.Schema, arg, weight expr.Expr) plan.Call {
+	return plan.Call{Fn: function.LookupAggregate(fn), Args: []expr.Expr{arg}, Weight: weight,
+		Text: fmt.Sprintf("%s(%s) WEIGHTED BY %s", fn, arg, weight)}
+}
+
+func is(schema column.Schema, c int, op lang.Op, v column.Value) expr.Expr {
+	return must(expr.NewCompare(op, plantest.Column(schema, c), expr.NewConst(v, plantest.Nowhere), plantest.Nowhere))
+}
+
+func where(n plan.Node, cond expr.Expr) plan.Node {
+	return &plan.Filter{Input: n, Cond: cond, Clause: "WHERE"}
+}
+
+func crowdOf(n plan.Node, each int) *plan.Relation {
+	return &plan.Relation{Bound: plantest.Bound(n.Schema(), siteID, siteW, each), Input: n}
+}
+
+func aggregate(n plan.Node, keys []expr.Expr, list ...plan.Call) *plan.Aggregate {
+	a := &plan.Aggregate{Input: n, Keys: keys, Calls: list}
+	for _, k := range keys {
+		a.Fields = append(a.Fields, column.Field{Name: k.String(), Type: k.Type()})
+	}
+	for _, c := range list {
+		t := column.Real
+		if c.Fn.Name == "COUNT" {
+			t = column.Integer
+		}
+		a.Fields = append(a.Fields, column.Field{Name: c.Text, Type: t})
+	}
+	return a
+}
+
+// notesOf runs a plan as it is and with the rules: both must say the same.
+func notesOf(t *testing.T, n plan.Node) []string {
+	t.Helper()
+	better, err := plan.Optimise(n)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var said [2][]string
+	for i, p := range []plan.Node{n, better} {
+		for _, sizes := range [][2]int{{0, 0}, {64, 64}} {
+			env := testEnv(sizes[0], sizes[1])
+			if _, err := run(t, env, p); err != nil {
+				t.Fatal(err)
+			}
+			said[i] = nil
+			for _, l := range env.Notes.Lines() {
+				said[i] = append(said[i], l.Level.String()+": "+l.Text)
+			}
+		}
+	}
+	rows := func(s []string) string {
+		return strings.ReplaceAll(strings.Join(s, "\n"), "rows of CROWD", "sites of CROWD")
+	}
+	if d := cmp.Diff(rows(said[0]), rows(said[1])); d != "" {
+		t.Errorf("the rules change what is said: %s", d)
+	}
+	return said[1]
+}
+
+func expectNotes(t *testing.T, n plan.Node, want ...string) {
+	t.Helper()
+	if d := cmp.Diff(want, notesOf(t, n)); d != "" {
+		t.Error(d)
+	}
+}
+
+// The weights 1, 2, 3, 3.5, 0.5 sum to 10 and their squares to 26.5: n_eff is
+// 100 / 26.5 = 3.77 and the largest share 35 % (computed by hand).
+func TestWeightNotes(t *testing.T) {
+	s := sites()
+	first := where(s, is(s.Fields, siteT, lang.Equals, column.Value{Type: column.Timestamp}))
+	temp, w := plantest.Column(s.Fields, siteTemp), plantest.Column(s.Fields, siteW)
+	avg, std := weighted("AVG", s.Fields, temp, w), weighted("STDDEV_POP", s.Fields, temp, w)
+	expectNotes(t, aggregate(first, nil, avg, std),
+		"note: AVG(temp) WEIGHTED BY w, STDDEV_POP(temp) WEIGHTED BY w: n_eff 3.8 of 5 values, largest weight 35.0 % (id 'D')")
+	// without C: 7 and 17.5, so 2.8 of 4, 50 %; C's 3 of 10 has no value
+	expectNotes(t, aggregate(s, columns(s.Fields, siteT), avg),
+		"note: AVG(temp) WEIGHTED BY w: in 1 of 2 groups weight was left out, its values are NULL: space nobody spoke for, 30.0 % of the group's",
+		"note: AVG(temp) WEIGHTED BY w: over 2 groups n_eff 2.8 to 3.8 of 4 to 5 values, largest weight 35.0 to 50.0 %")
+	second := where(s, is(s.Fields, siteT, lang.Greater, column.Value{Type: column.Timestamp}))
+	expectNotes(t, aggregate(second, nil, avg),
+		"note: AVG(temp) WEIGHTED BY w: 30.0 % of the weight was left out, its values are NULL: space nobody spoke for",
+		"note: AVG(temp) WEIGHTED BY w: n_eff 2.8 of 4 values, largest weight 50.0 % (id 'D')")
+	// equal weights have no largest one to name
+	one := expr.NewConst(column.Float(2), plantest.Nowhere)
+	expectNotes(t, aggregate(first, nil, weighted("AVG", s.Fields, temp, one)),
+		"note: AVG(temp) WEIGHTED BY 2.0: n_eff 5.0 of 5 values, largest weight 20.0 %")
+	expectNotes(t, aggregate(where(s, is(s.Fields, siteID, lang.Equals, column.String("X"))), nil, avg))
+}
+
+// A WHERE over the cells says whose space is missing, where it took out any and
+// an aggregate uses that space.
+func TestVanishedCells(t *testing.T) {
+	first := where(sites(), is(sites().Fields, siteT, lang.Equals, column.Value{Type: column.Timestamp}))
+	r := crowdOf(first, -1)
+	schema := r.Schema()
+	avg := weighted("AVG", schema, plantest.Column(schema, siteTemp), plantest.Column(schema, siteVolume))
+	sum := calls(schema, "SUM", siteVolume)[0]
+	notA := is(schema, siteID, lang.NotEquals, column.String("A"))
+	const left = "note: WHERE left out 1 of 5 sites of CROWD OF sites: their space is in no sum and no weight, " +
+		"and it is not given to the others (OF (query) or OMITTING would do that)"
+	expectNotes(t, aggregate(where(r, notA), nil, avg), left,
+		"note: AVG(temp) WEIGHTED BY volume: n_eff 4.0 of 4 values, largest weight 25.0 %")
+	expectNotes(t, aggregate(where(r, notA), nil, sum), left)
+	// a condition that takes out nothing, an aggregate that uses no space, and
+	// the cells of one site alone say nothing
+	expectNotes(t, aggregate(where(r, is(schema, siteID, lang.NotEquals, column.String("X"))), nil, sum))
+	expectNotes(t, aggregate(where(r, notA), nil, calls(schema, "MAX", siteTemp)[0]))
+	expectNotes(t, where(r, notA))
+	// a condition on what the relation computes is counted in rows
+	big := is(schema, siteVolume, lang.Greater, column.Float(0.5))
+	expectNotes(t, aggregate(where(r, big), nil, sum), strings.Replace(left, "1 of 5 sites", "5 of 5 rows", 1))
+	// through a view that renames and a join that keeps the cells apart
+	p := &plan.Project{Input: where(r, notA), Exprs: columns(schema, siteID, siteVolume), Fields: column.Schema{{Name: "k", Type: column.Text}, {Name: "v", Type: column.Real}}}
+	expectNotes(t, aggregate(p, nil, calls(p.Fields, "SUM", 1)[0]), left)
+}
+
+// A WHERE on FOR EACH alone leaves out whole partitions and tears no hole.
+func TestWholePartitionsLeftOut(t *testing.T) {
+	r := crowdOf(sites(), siteT)
+	schema := r.Schema()
+	sum := calls(schema, "SUM", siteVolume)[0]
+	first := is(schema, siteT, lang.Equals, column.Value{Type: column.Timestamp})
+	expectNotes(t, aggregate(where(r, first), nil, sum))
+	both := must(expr.NewAnd(first, is(schema, siteID, lang.NotEquals, column.String("A")), plantest.Nowhere))
+	got := notesOf(t, aggregate(where(r, both), nil, sum))
+	if len(got) != 1 || !contains(got[0], "left out 1 of 5 sites") {
+		t.Errorf("%q", got)
+	}
+}
+
+// A sum of volumes over rows that repeat cells is warned of, and only that.
+func TestRepeatedCells(t *testing.T) {
+	r := crowdOf(sites(), siteT)
+	schema := r.Schema()
+	sum := calls(schema, "SUM", siteVolume)[0]
+	expectNotes(t, aggregate(r, nil, sum), "warning: SUM(volume) adds up 10 rows of CROWD OF sites that are only 5 different ones in their group: "+
+		"the same space counts more than once (GROUP BY the columns of FOR EACH gives each partition its own sum)")
+	expectNotes(t, aggregate(r, columns(schema, siteT), sum))
+
+	first := where(sites(), is(sites().Fields, siteT, lang.Equals, column.Value{Type: column.Timestamp}))
+	cells := crowdOf(first, -1)
+	join := &plan.Join{Left: cells, Right: sites(), LeftKeys: columns(cells.Schema(), siteID), RightKeys: columns(sites().Fields, siteID)}
+	both := join.Schema()
+	const repeated = "warning: SUM(volume) adds up 10 rows of CROWD OF sites that are only 5 different ones in their group: " +
+		"the same space counts more than once (a join repeats them: sum before joining, in FROM (SELECT … GROUP BY …))"
+	expectNotes(t, aggregate(join, nil, calls(both, "SUM", siteVolume)[0]), repeated)
+	// grouped by the log's instant each cell stands once in a group
+	logT := len(cells.Schema()) + siteT
+	expectNotes(t, aggregate(join, columns(both, logT), calls(both, "SUM", siteVolume)[0]))
+	// the cells on the other side of the join
+	swapped := &plan.Join{Left: sites(), Right: cells, LeftKeys: columns(sites().Fields, siteID), RightKeys: columns(cells.Schema(), siteID)}
+	expectNotes(t, aggregate(swapped, nil, calls(swapped.Schema(), "SUM", len(sites().Fields)+siteVolume)[0]), repeated)
+	// a join that repeats nothing
+	once := &plan.Join{Left: cells, Right: first, LeftKeys: join.LeftKeys, RightKeys: join.RightKeys}
+	expectNotes(t, aggregate(once, nil, calls(both, "SUM", siteVolume)[0]))
+	// cubic metre hours are no plain sum over space
+	hours := must(expr.NewArith(lang.Times, plantest.Column(schema, siteVolume), plantest.Column(schema, siteTemp), plantest.Nowhere))
+	expectNotes(t, aggregate(r, nil, plan.Call{Fn: sum.Fn, Args: []expr.Expr{hours}, Text: "SUM(volume * temp)"}))
+}
+
+// No plan fails, or gives other rows, because somebody listens.
+func TestNotesNeverFail(t *testing.T) {
+	for seed := range uint64(300) {
+		rng := rand.New(rand.NewPCG(seed, 9))
+		n := plantest.Plan(rng, 4, 20)
+		loud, loudErr := run(t, testEnv(0, 0), n)
+		quiet, quietErr := run(t, &Env{Env: relation.Env{}}, n)
+		if (loudErr == nil) != (quietErr == nil) {
+			t.Fatalf("%v with notes, %v without", loudErr, quietErr)
+		}
+		if loudErr == nil {
+			if err := sameRows(n, loud, quiet); err != nil {
+				t.Fatal(err)
+			}
+		}
+	}
+}
