@@ -108,14 +108,14 @@ func NewArith(op lang.Op, l, r Expr, place problem.Place) (Expr, error) {
 // both are bare.
 func typeNulls(op lang.Op, l, r Expr) (Expr, Expr) {
 	if l.Type() == column.Null {
-		t := besideNull(r)
+		t := besideNull(op, r)
 		if t == column.Timestamp && op == lang.Plus {
 			t = column.Interval
 		}
 		l = coerce(l, t)
 	}
 	if r.Type() == column.Null {
-		t := besideNull(l)
+		t := besideNull(op, l)
 		if t == column.Timestamp {
 			t = column.Interval
 		}
@@ -124,9 +124,11 @@ func typeNulls(op lang.Op, l, r Expr) (Expr, Expr) {
 	return l, r
 }
 
-func besideNull(other Expr) column.Type {
-	switch t := other.Type(); t {
-	case column.Integer, column.Interval, column.Timestamp:
+func besideNull(op lang.Op, other Expr) column.Type {
+	switch t := other.Type(); {
+	case t == column.Integer || t == column.Timestamp:
+		return t
+	case t == column.Interval && (op == lang.Plus || op == lang.Minus || op == lang.Modulo):
 		return t
 	}
 	return column.Real

@@ -43,7 +43,8 @@ func comparable(op lang.Op, l, r Expr, place problem.Place) (Expr, Expr, error) 
 	if r.Type() == column.Null {
 		r = coerce(r, l.Type())
 	}
-	return sameNumbers(l, r), sameNumbers(r, l), nil
+	l = sameNumbers(l, r)
+	return l, sameNumbers(r, l), nil
 }
 
 // sameNumbers gives a constant the numeric type of what it is compared with,

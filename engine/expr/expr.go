@@ -7,8 +7,8 @@ import (
 
 // Expr is a bound expression: its columns are indices into the batch.
 //
-// Eval computes the rows whose bit is set in on (nil: all b.N rows) and returns
-// a vector of b.N values. Rows that are off hold anything but never raise an
+// Eval computes the rows whose bit is set in on (nil: all b.N rows; bits beyond
+// them are 0) and returns a vector of b.N values. Rows that are off hold anything but never raise an
 // error: CASE WHEN d <> 0 THEN x / d END divides only where d is not 0. The
 // vector is a read-only view that is valid until w.Reset; it may share memory
 // with the batch. An error of a row is a *RowError.

@@ -61,6 +61,8 @@ type Literal struct {
 	// expression, so that they need not be put together row by row.
 	dict *column.Dict
 	code uint32
+	// whole says that a REAL was written as an INTEGER: temp > 8.
+	whole bool
 }
 
 // NewConst is a constant; its unit is v.Unit.
@@ -146,7 +148,8 @@ func coerce(e Expr, t column.Type) Expr {
 		case l.Value.Null:
 			return NewConst(column.Value{Type: t, Null: true, Unit: l.unit}, l.at)
 		case l.typ == column.Integer && t == column.Real:
-			return NewConst(column.Value{Type: t, F: float64(l.Value.I), Unit: l.unit}, l.at)
+			v := column.Value{Type: t, F: float64(l.Value.I), Unit: l.unit}
+			return &Literal{base: base{t, l.unit, l.at}, Value: v, whole: true}
 		}
 	}
 	return &Cast{base: base{t, e.Unit(), e.Place()}, X: e, implicit: true}

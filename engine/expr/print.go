@@ -1,6 +1,7 @@
 package expr
 
 import (
+	"fmt"
 	"strconv"
 	"strings"
 
@@ -100,6 +101,9 @@ func (e *Literal) String() string {
 	case column.Interval:
 		return writeInterval(v.I)
 	case column.Real:
+		if e.whole {
+			return column.FormatReal(v.F)
+		}
 		return writeReal(v.F)
 	}
 	return v.String()
@@ -126,7 +130,12 @@ func writeInterval(us int64) string {
 			return "INTERVAL '" + strconv.FormatInt(us/u.us, 10) + "' " + u.name
 		}
 	}
-	return "INTERVAL '" + column.FormatReal(float64(us)/1e6) + "' SECOND"
+	sign, u := "", uint64(us)
+	if us < 0 {
+		sign, u = "-", -u
+	}
+	fraction := strings.TrimRight(fmt.Sprintf(".%06d", u%1e6), ".0")
+	return "INTERVAL '" + sign + strconv.FormatUint(u/1e6, 10) + fraction + "' SECOND"
 }
 
 var reserved = map[string]bool{}

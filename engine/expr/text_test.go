@@ -2,6 +2,7 @@ package expr
 
 import (
 	"fmt"
+	"math/big"
 	"strconv"
 	"strings"
 	"testing"
@@ -74,9 +75,12 @@ func (r *reader) build(n lang.Expr) (Expr, error) {
 		us, _, err := column.ParseTimestamp(n.Text.Value)
 		return NewConst(column.Value{Type: column.Timestamp, I: us}, at), err
 	case *lang.Interval:
-		f, err := strconv.ParseFloat(n.Text.Value, 64)
-		us := map[string]float64{"DAY": 86400e6, "HOUR": 3600e6, "MINUTE": 60e6, "SECOND": 1e6}[strings.ToUpper(n.Unit.Text)]
-		return NewConst(column.Value{Type: column.Interval, I: int64(f * us)}, at), err
+		r, ok := new(big.Rat).SetString(n.Text.Value)
+		us := map[string]int64{"DAY": 86400e6, "HOUR": 3600e6, "MINUTE": 60e6, "SECOND": 1e6}[strings.ToUpper(n.Unit.Text)]
+		if !ok || us == 0 || !r.Mul(r, new(big.Rat).SetInt64(us)).IsInt() {
+			return nil, fmt.Errorf("INTERVAL '%s' %s", n.Text.Value, n.Unit.Text)
+		}
+		return NewConst(column.Value{Type: column.Interval, I: r.Num().Int64()}, at), nil
 	case *lang.Column:
 		for i, f := range r.schema {
 			if n.Name.Matches(f.Name) {
