@@ -123,8 +123,7 @@ func (b *builder) canMatter(box *index.Box, dist2 float64) bool {
 		return true
 	}
 	for _, v := range b.now.Vertices() {
-		v2 := dot(v, v)
-		if box.Dist2(add(b.at, v)) <= v2+index.Off(b.at, v, v2) {
+		if box.Meets(b.at, v) {
 			return true
 		}
 	}

@@ -53,10 +53,14 @@ func (l *Leaves) Next(useful func(box *Box, dist2 float64) bool) (from, to int32
 	return 0, 0, false
 }
 
-// Off bounds the rounding of a squared distance from p+v, as a float64, to a box:
-// a box may be passed over for a ball of radius |v| about p+v only if its squared
-// distance exceeds |v|² by more than this.
-func Off(p, v Vec, v2 float64) float64 {
-	size := max(math.Abs(p.X+v.X), math.Abs(p.Y+v.Y), math.Abs(p.Z+v.Z))
-	return float64(v2*0x1p-49) + float64(math.Sqrt(v2)*size)*0x1p-50
+// Meets tells whether the box can hold a point that is nearer to p+v than p is: a
+// point in the open ball of radius |v| about p+v. With m the point's offset from p
+// that is m·(m-2v) < 0, and the least value over the box is taken axis by axis. In
+// this form nothing cancels when v is far away and the box is near.
+func (b *Box) Meets(p, v Vec) bool {
+	x := min(max(v.X, b.Lo.X-p.X), b.Hi.X-p.X)
+	y := min(max(v.Y, b.Lo.Y-p.Y), b.Hi.Y-p.Y)
+	z := min(max(v.Z, b.Lo.Z-p.Z), b.Hi.Z-p.Z)
+	gx, gy, gz := float64(x*(x-2*v.X)), float64(y*(y-2*v.Y)), float64(z*(z-2*v.Z))
+	return gx+gy+gz <= 0x1p-48*(math.Abs(gx)+math.Abs(gy)+math.Abs(gz))
 }

@@ -155,6 +155,33 @@ func TestLeaves(t *testing.T) {
 	}
 }
 
+// A box that holds a point nearer to p+v than p meets the ball, however far v is.
+func TestMeets(t *testing.T) {
+	tree := New(points(300, 15))
+	p := Vec{X: 0.5, Y: 0.5, Z: 0.5}
+	passed := 0
+	for i, u := range points(400, 16) {
+		far := math.Exp2(float64(i%60) - 3)
+		v := Vec{X: far * (u.X - 0.5), Y: far * (u.Y - 0.5), Z: far * (u.Z - 0.5)}
+		b := tree.boxes[i%len(tree.boxes)]
+		holds := false
+		for _, q := range tree.points {
+			in := q.X >= b.Lo.X && q.X <= b.Hi.X && q.Y >= b.Lo.Y && q.Y <= b.Hi.Y && q.Z >= b.Lo.Z && q.Z <= b.Hi.Z
+			m := Vec{X: q.X - p.X, Y: q.Y - p.Y, Z: q.Z - p.Z}
+			holds = holds || in && m.X*(m.X-2*v.X)+m.Y*(m.Y-2*v.Y)+m.Z*(m.Z-2*v.Z) < 0
+		}
+		if holds && !b.Meets(p, v) {
+			t.Fatalf("box %v, p+v with v = %v", b, v)
+		}
+		if !b.Meets(p, v) {
+			passed++
+		}
+	}
+	if passed < 100 {
+		t.Errorf("%d boxes passed over", passed)
+	}
+}
+
 func TestBeyond(t *testing.T) {
 	tree := New(coarse(700, 11))
 	for _, n := range points(50, 12) {
