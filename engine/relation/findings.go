@@ -54,9 +54,7 @@ func (s *sites) tell() {
 
 // tellOutside names the sites that were left out, each once.
 func (s *sites) tellOutside() {
-	rows := slices.Sorted(maps.Keys(s.said.outside))
-	slices.SortStableFunc(rows, func(a, b int32) int { return s.order.compare(s.order.id, a, b) })
-	rows = slices.CompactFunc(rows, s.order.sameID)
+	rows := s.order.distinct(slices.Sorted(maps.Keys(s.said.outside)))
 	names := make([]string, len(rows))
 	for i, r := range rows {
 		names[i] = fmt.Sprintf("%s (%s)", idText(s.order.id, int(r)), s.length(s.said.outside[r]))

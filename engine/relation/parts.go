@@ -33,12 +33,11 @@ func (p *Part) share(k int) float64 {
 
 // arrange sorts the input into parts. It refuses what has no partition:
 // missing identifiers and coordinates, identifiers that repeat in a part.
-func arrange(b *Bound, env *Env, input *column.Table) ([]*Part, error) {
+func arrange(b *Bound, env *Env, input *column.Table, order *order) ([]*Part, error) {
 	rows, err := admitted(b, env, input)
 	if err != nil {
 		return nil, err
 	}
-	order := newOrder(b, input)
 	order.sort(rows)
 	var parts []*Part
 	for lo := 0; lo < len(rows); {
@@ -57,7 +56,7 @@ func arrange(b *Bound, env *Env, input *column.Table) ([]*Part, error) {
 	if err := scattered(b, env, input, order, parts); err != nil {
 		return nil, err
 	}
-	return parts, duplicates(b, env, input, parts)
+	return parts, duplicates(b, env, input, order, parts)
 }
 
 // order compares rows of the input by the values of FOR EACH and by their

@@ -22,8 +22,7 @@ const (
 // are. With SPLIT, nothing changes but the shares that place has set; with
 // FIRST and MEAN the row with the smallest identifier stands for all (newSites
 // averages its numbers and drops the other rows).
-func duplicates(b *Bound, env *Env, input *column.Table, parts []*Part) error {
-	o := newOrder(b, input)
+func duplicates(b *Bound, env *Env, input *column.Table, o *order, parts []*Part) error {
 	var shared []int32 // rows that share a place, for the note
 	for _, p := range parts {
 		if p.Share == nil {
@@ -99,14 +98,19 @@ func (p *Part) keepFirst() {
 
 // names are the distinct identifiers of rows, in their order.
 func (o *order) names(rows []int32) []string {
-	rows = slices.Clone(rows)
-	slices.SortStableFunc(rows, func(a, b int32) int { return o.compare(o.id, a, b) })
-	rows = slices.CompactFunc(rows, o.sameID)
+	rows = o.distinct(rows)
 	names := make([]string, len(rows))
 	for i, r := range rows {
 		names[i] = idText(o.id, int(r))
 	}
 	return names
+}
+
+// distinct is one row for each identifier, in the order of identifiers.
+func (o *order) distinct(rows []int32) []int32 {
+	rows = slices.Clone(rows)
+	slices.SortStableFunc(rows, func(a, b int32) int { return o.compare(o.id, a, b) })
+	return slices.CompactFunc(rows, o.sameID)
 }
 
 // someOf lists the first few names: 'L07', 'L08' and 12 more.
@@ -133,7 +137,7 @@ func scattered(b *Bound, env *Env, input *column.Table, o *order, parts []*Part)
 	}
 	slices.Sort(sizes)
 	median := sizes[(len(sizes)-1)/2]
-	total := len(o.names(rows))
+	total := len(o.distinct(rows))
 	if 2*median >= total {
 		return nil
 	}

@@ -1,6 +1,9 @@
 package relation
 
 import (
+	"maps"
+	"slices"
+
 	"nearcell/lang"
 )
 
@@ -65,8 +68,5 @@ func Nouns() []string {
 	for _, d := range definitions {
 		names = append(names, d.Noun)
 	}
-	for n := range planned {
-		names = append(names, n)
-	}
-	return names
+	return append(names, slices.Sorted(maps.Keys(planned))...)
 }

@@ -26,8 +26,9 @@ type sites struct {
 
 func newSites(b *Bound, env *Env, input *column.Table, r Request) (*sites, error) {
 	s := &sites{b: b, env: env, input: input, r: r, said: &findings{outside: map[int32]float64{}}}
+	s.order = newOrder(b, input)
 	var err error
-	s.parts, err = arrange(b, env, input)
+	s.parts, err = arrange(b, env, input, s.order)
 	if err != nil {
 		return nil, err
 	}
@@ -39,7 +40,6 @@ func newSites(b *Bound, env *Env, input *column.Table, r Request) (*sites, error
 			p.keepFirst()
 		}
 	}
-	s.order = newOrder(b, s.input)
 	if len(s.parts) == 0 {
 		return s, s.nobody()
 	}
