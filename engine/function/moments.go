@@ -242,17 +242,27 @@ func (a *correlations) Result(groups int) (column.Vector, error) {
 			continue
 		}
 		j := &a.joints[g]
-		yy, xx := j.y.squares().value(), j.x.squares().value()
-		if yy == 0 || xx == 0 {
+		yy, xx := j.y.squares(), j.x.squares()
+		if yy.hi == 0 || xx.hi == 0 {
 			v.SetNull(g)
 			continue
 		}
 		xy := j.xy.add(j.y.m1.mul(j.x.m1).over(j.x.w).negative()).value()
-		r := xy / math.Sqrt(yy) / math.Sqrt(xx)
-		if r != r || math.IsInf(yy, 0) || math.IsInf(xx, 0) {
+		r := xy / rootOfProduct(yy, xx)
+		if r != r || !yy.finite() || !xx.finite() {
 			return v, &GroupFault{Group: g, Code: "overflow", Message: "CORR has no finite value: the numbers are too large"}
 		}
 		v.F[g] = max(-1, min(1, r)) + 0
 	}
 	return v, nil
+}
+
+// rootOfProduct is the root of a·b. For points on a line the product is a
+// square, of which the root is exact.
+func rootOfProduct(a, b dd) float64 {
+	p := a.mul(b).value()
+	if p > 1e-290 && p < 1e290 {
+		return math.Sqrt(p)
+	}
+	return float64(math.Sqrt(a.value()) * math.Sqrt(b.value()))
 }

@@ -221,13 +221,18 @@ func (a *realSums) sumOf(g int) (dd, error) {
 	return f, nil
 }
 
-// roundToInt is the nearest integer to a mean of integers.
+// roundToInt is the nearest integer to a mean of integers, halves away from 0.
 func roundToInt(f dd) int64 {
-	whole := math.Round(f.hi)
-	if whole >= 1<<63 {
-		return math.MaxInt64
+	whole := math.Floor(f.hi)
+	rest := (f.hi - whole) + f.lo // below 2^53: exact to the last bit that counts
+	more := math.Floor(rest)
+	if part := rest - more; part > 0.5 || part == 0.5 && f.hi > 0 {
+		more++
 	}
-	return int64(whole) + int64(math.Round((f.hi-whole)+f.lo))
+	if whole >= 1<<63 { // a mean of int64 is no int64 only by its rounding
+		return math.MaxInt64 + min(0, int64(more)+1)
+	}
+	return int64(whole) + int64(more)
 }
 
 // wide is a 128-bit integer, in two's complement: no sum of int64 that fits
