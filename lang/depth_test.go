@@ -119,6 +119,21 @@ func TestChainsAreLimited(t *testing.T) {
 	}
 }
 
+// Chains within chains may pile up, though each is short enough, but not without end.
+func TestHeightIsLimited(t *testing.T) {
+	pile := func(links, levels int) string {
+		return "SELECT " + strings.Repeat("(", levels) + "1" + strings.Repeat(strings.Repeat(" + 1", links)+")", levels)
+	}
+	if _, err := Parse(pile(1000, 3)); err != nil {
+		t.Fatal(caretOf("", err))
+	}
+	_, err := Parse(pile(1500, 150))
+	var fault *Error
+	if !errors.As(err, &fault) || !strings.Contains(fault.Message, "stand one within another") || fault.Span.Len() == 0 {
+		t.Fatalf("got %v", err)
+	}
+}
+
 // Flat lists have no limit, and time grows with their length, not faster.
 func TestLongListsAreFine(t *testing.T) {
 	const n = 50_000

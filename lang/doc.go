@@ -55,8 +55,9 @@
 // An empty script, or one of comments and semicolons, has no statements and is no fault.
 // A byte order mark and every blank that Unicode knows count as blanks. Bytes that are no
 // UTF-8 are a fault. Texts and quoted names may run over several lines; a quoted name
-// cannot be empty. What is nested more than 200 levels deep, or chains more than 2,000
-// operators of one kind, is refused; flat lists have no limit.
+// cannot be empty. What is nested more than 200 levels deep, chains more than 2,000
+// operators of one kind, or piles up to more than 4,000 nodes one below another is
+// refused, so that whoever walks a tree may recurse; flat lists have no limit.
 //
 // # Limitations
 //

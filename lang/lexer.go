@@ -192,70 +192,31 @@ func (s *scanner) quoted(start int, mark byte, t lexer.TokenType) (lexer.TokenTy
 	}
 }
 
+// marks are the operators and brackets of one sign, and pairs those of two. Some pairs
+// are bad: they are of other languages, and a hint is known for them.
+var (
+	marks = [utf8.RuneSelf]lexer.TokenType{'(': tokLeft, ')': tokRight, ',': tokComma, '.': tokDot, ';': tokSemicolon,
+		'+': tokPlus, '-': tokMinus, '*': tokStar, '/': tokSlash, '%': tokPercent, '^': tokCaret,
+		'=': tokEquals, '<': tokLess, '>': tokGreater}
+	pairs = map[string]lexer.TokenType{"<>": tokNotEquals, "!=": tokNotEquals, "<=": tokLessOrEqual, ">=": tokGreaterOrEqual,
+		"||": tokConcat, "==": tokBad, "=>": tokBad, "=<": tokBad, "&&": tokBad}
+)
+
 // mark reads an operator or a bracket.
 func (s *scanner) mark(start int) (lexer.TokenType, int, int) {
-	one := func(t lexer.TokenType) (lexer.TokenType, int, int) {
+	c := s.src[start]
+	switch c {
+	case '=', '<', '>', '!', '|', '&':
+		if start+2 <= s.end {
+			if t, known := pairs[s.src[start:start+2]]; known {
+				s.at = start + 2
+				return t, start, s.at
+			}
+		}
+	}
+	if c < utf8.RuneSelf && marks[c] != 0 {
 		s.at = start + 1
-		return t, start, s.at
-	}
-	two := func(t lexer.TokenType) (lexer.TokenType, int, int) {
-		s.at = start + 2
-		return t, start, s.at
-	}
-	second := s.peek(1)
-	switch s.src[start] {
-	case '(':
-		return one(tokLeft)
-	case ')':
-		return one(tokRight)
-	case ',':
-		return one(tokComma)
-	case '.':
-		return one(tokDot)
-	case ';':
-		return one(tokSemicolon)
-	case '+':
-		return one(tokPlus)
-	case '-':
-		return one(tokMinus)
-	case '*':
-		return one(tokStar)
-	case '/':
-		return one(tokSlash)
-	case '%':
-		return one(tokPercent)
-	case '^':
-		return one(tokCaret)
-	case '=':
-		if second == '=' || second == '>' || second == '<' {
-			return two(tokBad)
-		}
-		return one(tokEquals)
-	case '<':
-		switch second {
-		case '>':
-			return two(tokNotEquals)
-		case '=':
-			return two(tokLessOrEqual)
-		}
-		return one(tokLess)
-	case '>':
-		if second == '=' {
-			return two(tokGreaterOrEqual)
-		}
-		return one(tokGreater)
-	case '!':
-		if second == '=' {
-			return two(tokNotEquals)
-		}
-	case '|':
-		if second == '|' {
-			return two(tokConcat)
-		}
-	case '&':
-		if second == '&' {
-			return two(tokBad)
-		}
+		return marks[c], start, s.at
 	}
 	return s.stray(start)
 }

@@ -64,6 +64,9 @@ func Parse(src string) (*Script, error) {
 // script. A fault is an *Error.
 func ParseStatement(src string, piece Piece) (Statement, error) {
 	statement, fault := parsePiece(src, piece.Span)
+	if fault == nil {
+		fault = checkHeight(statement)
+	}
 	if fault != nil {
 		return nil, finish(src, fault)
 	}
@@ -117,6 +120,9 @@ func ParseRelation(src string) (*Relation, error) {
 func parseWhole[T Node](src string, part func(*parser) T) (T, error) {
 	p := parser{toks: tokens(src, Span{0, len(src)}), alias: -1}
 	result, fault := read(&p, part)
+	if fault == nil {
+		fault = checkHeight(result)
+	}
 	if fault != nil {
 		var none T
 		return none, finish(src, fault)

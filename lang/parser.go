@@ -14,6 +14,9 @@ const (
 	// maxChain is how many operators of one precedence may follow each other. They
 	// make a tree that is deep on its left, which everything that walks it pays for.
 	maxChain = 2000
+	// maxHeight is how many nodes may stand one below another in a tree, however they
+	// came to it. Those who walk a tree may recurse without fear.
+	maxHeight = 4000
 )
 
 // parser reads the parts that participle's statement structs hand over: queries,
@@ -137,6 +140,28 @@ func (p *parser) enter() {
 }
 
 func (p *parser) leave() { p.depth-- }
+
+// checkHeight refuses a tree in which more than maxHeight nodes stand one below another:
+// chains within chains can pile up although each of them is short enough. Of a short
+// text no such tree can come, since each node but the first few takes a byte at least.
+func checkHeight(root Node) *Error {
+	if root.Span().Len() < maxHeight/2 {
+		return nil
+	}
+	var fault *Error
+	var visit func(n Node, height int)
+	visit = func(n Node, height int) {
+		if fault == nil && height > maxHeight {
+			fault = &Error{Span: n.Span(), Message: "more than " + itoa(maxHeight) + " operators and brackets stand one within another here",
+				Hint: "split it up with WITH, a view, or LET"}
+		}
+		if fault == nil {
+			each(n, func(child Node) { visit(child, height+1) })
+		}
+	}
+	visit(root, 1)
+	return fault
+}
 
 // link counts one operator of a chain.
 func (p *parser) link(count *int) {
