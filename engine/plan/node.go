@@ -1,5 +1,3 @@
-// Package plan holds the logical plan of a query and the rules that improve it,
-// one file a rule. A plan is plain data: it computes nothing.
 package plan
 
 import (

@@ -1,0 +1,66 @@
+// Package exec runs plans: pipelines of a source, steps and a sink over numbered
+// chunks of rows.
+//
+// # Model
+//
+// A source gives chunks of 64 Ki rows in batches of 2,048; a step turns a batch
+// into batches; a sink takes all rows and becomes the source of the next
+// pipeline. Scans and results of sinks are tables in memory (or mapped), whose
+// batches are views. A relation is a stream: its chunks are numbered by the rows
+// that it gives, as they come.
+//
+// Filters never copy. They hand on the same columns under a mask (Batch.On),
+// which every expression respects: only active rows are computed and only they
+// can fail. Rows are moved where they are kept, in the sinks, where a join
+// multiplies them, and before they leave Run, whose batches have no mask.
+//
+// A sink gives each chunk a part of its own and merges the parts in the order of
+// their numbers. A plan is run by one worker so far; since nothing else passes
+// between chunks, more of them would change no bit. With other sizes of chunks
+// sums of REAL values may differ in their last bit, everything else is the same.
+//
+// A worker owns the scratch memory of its expressions. It is given back when a
+// source begins its next batch; a join, which makes several batches of one, has
+// its own level of it for what comes after.
+//
+// # What nodes do
+//
+// Filter and Project are steps, Join is a step over its left side with the right
+// side in memory, Aggregate, Sort, Limit and Distinct are sinks, Relation
+// collects its sites and is a source. Limit stops what feeds it as soon as it has
+// its rows.
+//
+//   - Keys of groups, joins and Distinct are words: -0 is 0, texts are compared by
+//     text whatever dictionary they come with, NULLs are one group and match no
+//     partner. Groups come out in the order of their keys, NULL last; without keys
+//     there is one group, of no rows too.
+//   - Joins give rows in the order of the left rows, for each of them in that of
+//     the right rows. INTEGER and REAL keys are compared exactly.
+//   - Sorts are stable. Texts are ordered by their bytes, which for UTF-8 is the
+//     order of code points; FALSE before TRUE; points by x, y, z; Infinity last.
+//   - Distinct keeps the first of equal rows.
+//
+// # Errors and notes
+//
+// An error of a row becomes a problem at the expression's place that names the
+// row: by its column id where the batch has one, else by its number in the input
+// of the step, counted from 1.
+//
+// Aggregates say what weighted answers rest on (Kish's effective sample size
+// n_eff = (Σw)² / Σw², the largest weight, the weight without a value), and warn
+// of cells that a WHERE took out of sums and weights and of sums that count a cell
+// twice. Each of these is said only where it happened.
+//
+// # Degenerate inputs
+//
+// Tables without rows or without columns, batches of which nothing is active,
+// columns of type NULL (also for columns that a relation was not asked for) and
+// dictionaries without texts are normal input.
+//
+// # Limitations
+//
+// Intermediate results are kept in memory and refused beyond Env.Memory, which
+// counts what all sinks of a statement have kept, also what they have given up
+// since. A result has at most 2³¹ − 1 rows. The right side of a join without
+// equalities is walked for every left row.
+package exec
