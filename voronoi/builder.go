@@ -12,11 +12,13 @@ import (
 // vertices are looked at one by one.
 const firstNeighbours = 12
 
-// farStep is the ratio of the artificial box around an unbounded diagram to the
-// extent of the sites, and the ratio by which it grows.
 const (
-	farStep = 0x1p20
-	farMost = 0x1p80 // by how much it grows at most
+	// farBox is the ratio of the artificial box around a cell to the extent of the
+	// sites.
+	farBox = 0x1p20
+	// farReach is how many times the extent a cell may reach in float64; its last
+	// bits would be lost beyond.
+	farReach = 0x1p10
 )
 
 // builder makes cells one by one. It is the scratch of one goroutine.
@@ -133,12 +135,12 @@ func (b *builder) canMatter(box *index.Box, dist2 float64) bool {
 // bisect keeps the part of the present cell nearer to its site than to site q.
 // Local coordinates keep the plane free of cancellation.
 func (b *builder) bisect(q int32) {
-	n := sub(b.d.tree.Point(q), b.at)
-	n2 := dot(n, n)
-	if n2 > float64(4*b.reach2)*(1+0x1p-49) {
+	at := b.d.tree.Point(q)
+	n := sub(at, b.at)
+	if dot(n, n) > float64(4*b.reach2)*(1+0x1p-49) {
 		return
 	}
-	if b.now.Clip(n, n2/2, q) != polyhedron.Unchanged {
+	if b.now.Bisect(n, lostBySub(at, b.at, n), q) != polyhedron.Unchanged {
 		b.reach2 = reach2(b.now)
 	}
 }
@@ -154,37 +156,33 @@ func reach2(c *polyhedron.Cell) float64 {
 
 // buildOpen is build without a solid. The cell begins in a box far larger than
 // the set of sites. If sides of the box are left, exact predicates decide whether
-// the cell is unbounded; if it is not, it only reaches far, and the box grows. A
-// cell that still is not closed reaches farther than float64 can follow; it counts
-// as unbounded.
+// the cell is unbounded; if it is not, it only reaches far. Cells that reach far are
+// made once more in two words a coordinate, and in larger boxes where it takes
+// them. A cell that is not closed even so reaches farther than 10^25 times the
+// extent of the sites; it counts as unbounded.
 func (b *builder) buildOpen(c *polyhedron.Cell, p Vec, self int32) (bounded bool) {
-	size := b.d.sizeFrom(p) * farStep
-	if b.inFarBox(c, p, self, size) {
+	size := b.d.sizeFrom(p)
+	closed := b.inFarBox(c, p, self, size*farBox, false)
+	if closed && b.reach2 <= float64(size*farReach)*float64(size*farReach) {
 		return true
 	}
-	if !b.bounded(c, p, self) {
+	if !closed && !b.bounded(c, p, self) {
 		return false
 	}
-	for grown := size; grown < size*farMost; {
-		grown *= farStep
-		if b.inFarBox(c, p, self, grown) {
+	for _, grown := range [...]float64{farBox, 0x1p60, 0x1p90} {
+		if b.inFarBox(c, p, self, size*grown, true) {
 			return true
 		}
 	}
-	return b.inFarBox(c, p, self, size)
+	b.inFarBox(c, p, self, size*farBox, false)
+	return false
 }
 
 // inFarBox cuts c from a far box and tells whether nothing of the box is left.
-func (b *builder) inFarBox(c *polyhedron.Cell, p Vec, self int32, size float64) bool {
-	c.SetFarBox(Vec{X: -size, Y: -size, Z: -size}, Vec{X: size, Y: size, Z: size}, openLabels)
+func (b *builder) inFarBox(c *polyhedron.Cell, p Vec, self int32, size float64, fine bool) bool {
+	c.SetFarBox(size, polyhedron.Open, fine)
 	b.cut(c, p, self)
 	return !c.IsOpen()
-}
-
-// openLabels are the labels of the artificial box.
-var openLabels = [6]int32{
-	polyhedron.Open, polyhedron.Open, polyhedron.Open,
-	polyhedron.Open, polyhedron.Open, polyhedron.Open,
 }
 
 // sizeFrom is the size of the set of sites as seen from p: no site is farther

@@ -46,19 +46,12 @@ func exactShift(places []Vec, coordinate func(Vec) float64) float64 {
 		x0 = math.Round(middle/step) * step
 	}
 	for _, p := range places {
-		if !exactDifference(coordinate(p), x0) {
+		x := Vec{X: coordinate(p)}
+		if lostBySub(x, Vec{X: x0}, sub(x, Vec{X: x0})) != (Vec{}) {
 			return 0
 		}
 	}
 	return x0
-}
-
-// exactDifference tells whether a - b has no rounding error (the error term of
-// Knuth's two-sum is zero).
-func exactDifference(a, b float64) bool {
-	d := a - b
-	back := a - d
-	return (a-(d+back))+(back-b) == 0
 }
 
 // survey fills the facts about the shape of the set of sites.

@@ -22,5 +22,15 @@ func cross(a, b Vec) Vec {
 
 func length(a Vec) float64 { return math.Sqrt(dot(a, a)) }
 
+// lostBySub is what rounding lost of d = a - b: a - b - d, exactly (Knuth's
+// two-sum).
+func lostBySub(a, b, d Vec) Vec {
+	lost := func(a, b, d float64) float64 {
+		back := a - d
+		return (a - (d + back)) + (back - b)
+	}
+	return Vec{X: lost(a.X, b.X, d.X), Y: lost(a.Y, b.Y, d.Y), Z: lost(a.Z, b.Z, d.Z)}
+}
+
 // positive turns -0 into +0: adding zero does.
 func positive(p Vec) Vec { return Vec{X: p.X + 0, Y: p.Y + 0, Z: p.Z + 0} }

@@ -44,6 +44,9 @@ type plane struct {
 	n     Vec
 	d     float64
 	label int32
+
+	low  Vec // what rounding lost of n and d; fine cells only
+	dLow float64
 }
 
 // Cell is a bounded convex polyhedron in coordinates local to its site. The
@@ -55,7 +58,11 @@ type Cell struct {
 	face []int32 // cut behind the face on the left of half-edge 3v+k
 	cuts []plane // all cuts since SetBox, whether a face of them is left or not
 	sure []bool  // Settle's mark of vertex i
-	far  bool    // began in a box far larger than the cell: see refine
+	far  bool    // began in a box far larger than the cell: see SetFarBox
+	fine bool    // vertices and planes have two words a coordinate
+	low  []Vec   // the second words of the vertices; fine cells only
+
+	lowOfNew Vec // scratch of cross: the second words of the vertex just made
 
 	s     []float64 // scratch of Clip: n·v-d of every vertex
 	fresh []int32   // scratch of Clip: new vertex on a half-edge that leaves an outer vertex
@@ -88,9 +95,9 @@ func (c *Cell) SetBox(lo, hi Vec, labels [6]int32) {
 		return
 	}
 	c.cuts = append(c.cuts,
-		plane{Vec{X: -1}, -lo.X, labels[0]}, plane{Vec{X: 1}, hi.X, labels[1]},
-		plane{Vec{Y: -1}, -lo.Y, labels[2]}, plane{Vec{Y: 1}, hi.Y, labels[3]},
-		plane{Vec{Z: -1}, -lo.Z, labels[4]}, plane{Vec{Z: 1}, hi.Z, labels[5]})
+		plane{n: Vec{X: -1}, d: -lo.X, label: labels[0]}, plane{n: Vec{X: 1}, d: hi.X, label: labels[1]},
+		plane{n: Vec{Y: -1}, d: -lo.Y, label: labels[2]}, plane{n: Vec{Y: 1}, d: hi.Y, label: labels[3]},
+		plane{n: Vec{Z: -1}, d: -lo.Z, label: labels[4]}, plane{n: Vec{Z: 1}, d: hi.Z, label: labels[5]})
 	c.v = append(c.v,
 		Vec{X: lo.X, Y: lo.Y, Z: lo.Z}, Vec{X: hi.X, Y: lo.Y, Z: lo.Z},
 		Vec{X: lo.X, Y: hi.Y, Z: lo.Z}, Vec{X: hi.X, Y: hi.Y, Z: lo.Z},
@@ -99,14 +106,6 @@ func (c *Cell) SetBox(lo, hi Vec, labels [6]int32) {
 	c.sure = append(c.sure, make([]bool, 8)...)
 	c.twin = append(c.twin, boxTwin[:]...)
 	c.face = append(c.face, boxFace[:]...)
-}
-
-// SetFarBox is SetBox for a box far larger than the cell is expected to be. Cut
-// vertices are then set from their three planes wherever that is more accurate
-// than a place on an edge that reaches so far.
-func (c *Cell) SetFarBox(lo, hi Vec, labels [6]int32) {
-	c.SetBox(lo, hi, labels)
-	c.far = true
 }
 
 // boxTwin and boxFace are the graph of a box whose corner number has bit 0 set
@@ -133,7 +132,7 @@ func boxGraph() (twin, face [24]int32) {
 
 func (c *Cell) reset() {
 	c.v, c.twin, c.face, c.cuts, c.sure = c.v[:0], c.twin[:0], c.face[:0], c.cuts[:0], c.sure[:0]
-	c.walked, c.surveyed, c.far = false, false, false
+	c.walked, c.surveyed, c.far, c.fine = false, false, false, false
 }
 
 // CopyFrom makes the cell equal to o, in its own buffers.
@@ -146,7 +145,8 @@ func (c *Cell) CopyFrom(o *Cell) {
 	c.face = append(c.face[:0], o.face...)
 	c.cuts = append(c.cuts[:0], o.cuts...)
 	c.sure = append(c.sure[:0], o.sure...)
-	c.walked, c.surveyed, c.far = false, false, o.far
+	c.low = append(c.low[:0], o.low...)
+	c.walked, c.surveyed, c.far, c.fine = false, false, o.far, o.fine
 }
 
 // Empty tells whether nothing is left.

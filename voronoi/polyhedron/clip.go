@@ -9,8 +9,17 @@ func (c *Cell) Clip(n Vec, d float64, label int32) Result {
 	if len(c.v) == 0 {
 		return Empty
 	}
-	below, above := c.signs(n, d)
-	if above == 0 {
+	p := plane{n: n, d: d, label: label}
+	if c.fine {
+		return c.clipFine(p)
+	}
+	return c.cutBy(p, c.signs(n, d))
+}
+
+// cutBy cuts the cell by a plane for which s and the list of outer vertices are
+// known, and the number of vertices strictly below it.
+func (c *Cell) cutBy(p plane, below int) Result {
+	if len(c.gone) == 0 {
 		return Unchanged
 	}
 	if below == 0 {
@@ -18,7 +27,7 @@ func (c *Cell) Clip(n Vec, d float64, label int32) Result {
 		return Empty
 	}
 	cut := int32(len(c.cuts))
-	c.cuts = append(c.cuts, plane{n, d, label})
+	c.cuts = append(c.cuts, p)
 	c.walked, c.surveyed = false, false
 	c.cross()
 	c.join(cut)
@@ -27,8 +36,8 @@ func (c *Cell) Clip(n Vec, d float64, label int32) Result {
 }
 
 // signs fills s and the list of outer vertices, and counts the vertices strictly
-// below and strictly above the plane.
-func (c *Cell) signs(n Vec, d float64) (below, above int) {
+// below the plane.
+func (c *Cell) signs(n Vec, d float64) (below int) {
 	if cap(c.s) < len(c.v) {
 		c.s = make([]float64, 2*len(c.v)+16)
 	}
@@ -47,7 +56,7 @@ func (c *Cell) signs(n Vec, d float64) (below, above int) {
 		}
 	}
 	c.s, c.gone = s, gone
-	return below, len(gone)
+	return below
 }
 
 // cross gives every edge between an inner and an outer vertex its own new
@@ -69,6 +78,9 @@ func (c *Cell) cross() {
 			w := int32(len(c.v))
 			c.fresh[h] = w
 			c.v = append(c.v, c.between(a, o, c.face[t], c.face[h]))
+			if c.fine {
+				c.low = append(c.low, c.lowOfNew)
+			}
 			c.sure = append(c.sure, false)
 			c.twin = append(c.twin, t, -1, -1)
 			c.face = append(c.face, c.face[h], -1, -1)
@@ -82,6 +94,11 @@ func (c *Cell) cross() {
 func (c *Cell) between(a, o, f, g int32) Vec {
 	if a > o { // the same place whichever end is outside
 		a, o = o, a
+	}
+	if c.fine {
+		var v Vec
+		v, c.lowOfNew = c.placeFine(a, o, f, g)
+		return v
 	}
 	sa, so := c.s[a], c.s[o]
 	va, vo := c.v[a], c.v[o]
@@ -166,6 +183,9 @@ func (c *Cell) pack() {
 		o := c.gone[hole]
 		hole++
 		c.v[o], c.sure[o] = c.v[last], c.sure[last]
+		if c.fine {
+			c.low[o] = c.low[last]
+		}
 		for k := int32(0); k < 3; k++ {
 			t := c.twin[3*last+k]
 			if t/3 == last { // an edge of a vertex to itself cannot be
@@ -178,4 +198,7 @@ func (c *Cell) pack() {
 	}
 	n := int(last) + 1
 	c.v, c.sure, c.twin, c.face = c.v[:n], c.sure[:n], c.twin[:3*n], c.face[:3*n]
+	if c.fine {
+		c.low = c.low[:n]
+	}
 }

@@ -208,31 +208,37 @@ func TestResults(t *testing.T) {
 func TestFarBox(t *testing.T) {
 	r := rand.New(rand.NewPCG(7, 8))
 	for range 100 {
-		var small, huge Cell
+		var small, huge, fine Cell
 		small.SetBox(Vec{X: -9, Y: -9, Z: -9}, Vec{X: 9, Y: 9, Z: 9}, walls)
 		const far = 0x1p40
-		huge.SetFarBox(Vec{X: -far, Y: -far, Z: -far}, Vec{X: far, Y: far, Z: far}, walls)
+		huge.SetFarBox(far, Wall(0), false)
+		fine.SetFarBox(far, Wall(0), true)
 		for i := range 40 {
 			n := Vec{X: r.NormFloat64(), Y: r.NormFloat64(), Z: r.NormFloat64()}
 			small.Clip(n, dot(n, n)/2, int32(i))
-			huge.Clip(n, dot(n, n)/2, int32(i))
+			huge.Bisect(n, Vec{}, int32(i))
+			fine.Bisect(n, Vec{}, int32(i))
 		}
-		valid(t, &huge)
-		near(t, "volume", huge.Volume(), small.Volume(), 1e-13)
-		if huge.Shape() != small.Shape() {
-			t.Errorf("shape %+v, want %+v", huge.Shape(), small.Shape())
+		for _, c := range []*Cell{&huge, &fine} {
+			valid(t, c)
+			near(t, "volume", c.Volume(), small.Volume(), 1e-13)
+			volume, first := c.VolumeAndFirst()
+			_, want := small.VolumeAndFirst()
+			near(t, "volume again", volume, small.Volume(), 1e-13)
+			near(t, "first moment", length(sub(first, want)), 0, 1e-13)
+			if c.Shape() != small.Shape() {
+				t.Errorf("shape %+v, want %+v", c.Shape(), small.Shape())
+			}
 		}
 	}
 }
 
 func TestOpenShapes(t *testing.T) {
-	open := [6]int32{Open, Open, Open, Open, Open, Open}
 	space := func(normals ...Vec) *Cell {
 		var c Cell
-		const far = 0x1p20
-		c.SetFarBox(Vec{X: -far, Y: -far, Z: -far}, Vec{X: far, Y: far, Z: far}, open)
+		c.SetFarBox(0x1p20, Open, false)
 		for i, n := range normals {
-			c.Clip(n, dot(n, n)/2, int32(i))
+			c.Bisect(n, Vec{}, int32(i))
 		}
 		return &c
 	}

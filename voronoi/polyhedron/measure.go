@@ -1,6 +1,9 @@
 package polyhedron
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Moments are the integrals of 1, x and x xᵀ over a cell, about the origin of
 // its local coordinates.
@@ -37,6 +40,27 @@ func (c *Cell) walk() {
 		}
 		c.start = append(c.start, int32(len(c.loop)))
 		c.of = append(c.of, c.face[h])
+	}
+	if c.far {
+		c.nearestFirst()
+	}
+}
+
+// nearestFirst turns the loops of a far cell so that each begins at its vertex
+// nearest to the site. Fans of triangles from a vertex far away would lose the
+// digits of a slender face.
+func (c *Cell) nearestFirst() {
+	for i := range c.of {
+		loop := c.loop[c.start[i]:c.start[i+1]]
+		first := 0
+		for k, j := range loop {
+			if dot(c.v[j], c.v[j]) < dot(c.v[loop[first]], c.v[loop[first]]) {
+				first = k
+			}
+		}
+		slices.Reverse(loop[:first])
+		slices.Reverse(loop[first:])
+		slices.Reverse(loop)
 	}
 }
 
@@ -130,9 +154,20 @@ func (c *Cell) Volume() float64 {
 	total := 0.0
 	for i := range c.of {
 		loop := c.loop[c.start[i]:c.start[i+1]]
-		total += dot(c.v[loop[0]], c.areaOf(loop))
+		total += c.coneOver(i, c.areaOf(loop))
 	}
 	return total / 3
+}
+
+// coneOver is three times the volume of the cone from the origin over face i. A far
+// cell takes the height from the plane, since its vertices may be so far away that
+// their product with the area vector cancels.
+func (c *Cell) coneOver(i int, area Vec) float64 {
+	if c.far {
+		p := &c.cuts[c.of[i]]
+		return p.d / length(p.n) * length(area)
+	}
+	return dot(c.v[c.loop[c.start[i]]], area)
 }
 
 // Moments are the volume and the first and second moments about the origin:
@@ -182,6 +217,13 @@ func (c *Cell) VolumeAndFirst() (volume float64, first Vec) {
 	c.walk()
 	for i := range c.of {
 		loop := c.loop[c.start[i]:c.start[i+1]]
+		if c.far { // a cone's centroid is at 3/4 of the way to its base's
+			area, middle := c.FaceMiddle(i)
+			w := c.coneOver(i, Vec{X: area})
+			volume += 2 * w
+			first = add(first, scale(6*w, middle))
+			continue
+		}
 		a := c.v[loop[0]]
 		for k := 2; k < len(loop); k++ {
 			b, d := c.v[loop[k-1]], c.v[loop[k]]
