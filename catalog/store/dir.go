@@ -51,6 +51,10 @@ type mapped struct {
 // Open is the folder at path. One that does not exist is empty, and is made by
 // the first change.
 func Open(path string) (*Dir, error) {
+	path, err := filepath.Abs(path) // the program may change its working folder
+	if err != nil {
+		return nil, err
+	}
 	info, err := os.Stat(path)
 	if err == nil && !info.IsDir() {
 		return nil, &os.PathError{Op: "open", Path: path, Err: errors.New("not a folder")}
@@ -197,7 +201,7 @@ func (d *Dir) Close() error {
 
 // lock takes the folder's lock, and makes the folder if need be.
 func (d *Dir) lock(ctx context.Context) (unlock func(), err error) {
-	if err := os.MkdirAll(d.columnsPath(), 0o777); err != nil {
+	if err := makeFolder(d.columnsPath()); err != nil {
 		return nil, err
 	}
 	l := flock.New(filepath.Join(d.path, lockName))
@@ -211,4 +215,22 @@ func (d *Dir) lock(ctx context.Context) (unlock func(), err error) {
 		return nil, err
 	}
 	return func() { l.Close() }, nil
+}
+
+// makeFolder makes a folder and those above it that are missing, and flushes the
+// one that holds each, so that a crash cannot take a new catalog away whole.
+func makeFolder(path string) error {
+	if _, err := os.Stat(path); !errors.Is(err, fs.ErrNotExist) {
+		return err
+	}
+	above := filepath.Dir(path)
+	if above != path {
+		if err := makeFolder(above); err != nil {
+			return err
+		}
+	}
+	if err := os.Mkdir(path, 0o777); err != nil && !errors.Is(err, fs.ErrExist) {
+		return err
+	}
+	return syncFolder(above)
 }
