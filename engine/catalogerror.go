@@ -5,6 +5,7 @@ import (
 	"strings"
 
 	"nearcell/catalog"
+	"nearcell/catalog/store"
 	"nearcell/engine/problem"
 )
 
@@ -30,4 +31,28 @@ func catalogProblem(err error, at problem.Place) error {
 			Because(err)
 	}
 	return problem.New("catalog", at, "%s", err.Error()).Because(err)
+}
+
+// wordStore puts an error of the catalog's files into a user's words, wherever
+// it came up; other errors pass as they are.
+func wordStore(err error) error {
+	var p *problem.Problem
+	if !errors.As(err, &p) {
+		return err
+	}
+	var damaged *store.DamagedError
+	var newer *store.NewerError
+	var locked *store.LockedError
+	switch {
+	case errors.As(err, &damaged):
+		p.Message = "the catalog's file " + damaged.Path + " is damaged and is not used"
+		p.Hint = "CREATE OR REPLACE makes the thing again from its source"
+	case errors.As(err, &newer):
+		p.Message = "the catalog was written by a later version of this program"
+		p.Hint = "use that version, or another --catalog"
+	case errors.As(err, &locked):
+		p.Message = "another process is changing the catalog"
+		p.Hint = "wait for it to end"
+	}
+	return err
 }

@@ -3,6 +3,7 @@ package engine
 import (
 	"context"
 	"errors"
+	"time"
 
 	"nearcell/catalog"
 	"nearcell/catalog/column"
@@ -21,7 +22,7 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 	if err != nil {
 		return err
 	}
-	object := catalog.Object{Kind: kindOf(t.Kind), Key: t.Name.Key(), Name: t.Name.Text}
+	object := catalog.Object{Kind: kindOf(t.Kind), Key: t.Name.Key(), Name: t.Name.Text, Created: time.Now().UTC()}
 	var table *column.Table
 	origin := "the query"
 	if t.File != nil {
@@ -114,7 +115,7 @@ func (s *Session) createSolid(st *statement, t *lang.CreateSolid) error {
 	if err != nil {
 		return err
 	}
-	object := catalog.Object{Kind: catalog.Solid, Key: t.Name.Key(), Name: t.Name.Text, Text: text}
+	object := catalog.Object{Kind: catalog.Solid, Key: t.Name.Key(), Name: t.Name.Text, Text: text, Created: time.Now().UTC()}
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
@@ -132,21 +133,36 @@ func (s *Session) createView(st *statement, t *lang.CreateView) error {
 	}
 	quiet := *st
 	quiet.notes = &note.Notes{} // what the query has to say it says at its use
+	columns := ""
 	node, err := s.prepare(&quiet, t.Query)
-	if err != nil {
+	switch {
+	case unsetParameter(err):
+		// it is bound at each use, and may be set then
+		st.notes.Add(note.Note, note.Import, "%s when the view is made; its columns are looked at when it is used", err)
+	case err != nil:
 		return err
+	default:
+		if err := distinctNames(node.Schema(), st.at(t.Query)); err != nil {
+			return err
+		}
+		columns = " of " + plural(len(node.Schema()), "column")
 	}
-	if err := distinctNames(node.Schema(), st.at(t.Query)); err != nil {
-		return err
+	object := catalog.Object{
+		Kind: catalog.View, Key: t.Name.Key(), Name: t.Name.Text, Text: lang.Print(t.Query), Created: time.Now().UTC(),
 	}
-	object := catalog.Object{Kind: catalog.View, Key: t.Name.Key(), Name: t.Name.Text, Text: lang.Print(t.Query)}
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
 	if !s.checkOnly {
-		s.say("%s: a view of %s", t.Name.Text, plural(len(node.Schema()), "column"))
+		s.say("%s: a view%s", t.Name.Text, columns)
 	}
 	return nil
+}
+
+// unsetParameter reports whether binding stopped at a :name without a value.
+func unsetParameter(err error) bool {
+	var p *problem.Problem
+	return errors.As(err, &p) && p.Code == "no-parameter"
 }
 
 // mayCreate refuses a name that is taken before any work is done for it.

@@ -18,6 +18,9 @@ func importProblem(err error, at problem.Place, file string) error {
 	if !errors.As(err, &faults) || len(faults.List) == 0 {
 		return err
 	}
+	for i := range faults.List {
+		faults.List[i].Text = strings.TrimSpace(faults.List[i].Text)
+	}
 	first := faults.List[0]
 	if first.Line == 0 {
 		return problem.New("import", at, "'%s' was not imported: %s", file, faultText(first)).Because(err)

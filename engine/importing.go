@@ -143,6 +143,7 @@ const listedFaults = 3
 
 func (r *refusals) take(line int, raw []byte, f reader.Fault) error {
 	if len(r.faults) < listedFaults {
+		f.Text = strings.TrimSpace(f.Text)
 		r.faults = append(r.faults, f)
 	}
 	r.buffer.Write(raw)

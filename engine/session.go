@@ -179,7 +179,7 @@ func (s *Session) runStatement(ctx context.Context, source *problem.Source, fold
 	}
 	warned := s.printNotes(st.notes)
 	if err != nil && !errors.Is(err, errQuit) && !errors.Is(err, ErrFailed) {
-		return problem.At(err, st.at(tree))
+		return wordStore(problem.At(err, st.at(tree)))
 	}
 	if err == nil && warned && s.o.Strict {
 		return problem.New("strict", st.at(tree), "a warning fails this statement, since --strict was given")

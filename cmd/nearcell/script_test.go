@@ -2,6 +2,7 @@ package main
 
 import (
 	"errors"
+	"flag"
 	"os"
 	"os/exec"
 	"path/filepath"
@@ -17,6 +18,8 @@ func TestMain(m *testing.M) {
 	})
 }
 
+var rewrite = flag.Bool("rewrite", false, "write what the program prints into the scripts")
+
 // TestScripts runs the stories in testdata/script, each in a folder of its own.
 // $DEMO and $REFERENCE are the project's folders of test data.
 func TestScripts(t *testing.T) {
@@ -25,13 +28,14 @@ func TestScripts(t *testing.T) {
 		t.Fatal(err)
 	}
 	testscript.Run(t, testscript.Params{
-		Dir: "testdata/script",
+		Dir:           "testdata/script",
+		UpdateScripts: *rewrite,
 		Setup: func(e *testscript.Env) error {
 			e.Setenv("DEMO", demo)
 			e.Setenv("REFERENCE", filepath.Join(filepath.Dir(demo), "reference"))
 			return nil
 		},
-		Cmds: map[string]func(*testscript.TestScript, bool, []string){"exits": exits},
+		Cmds: map[string]func(*testscript.TestScript, bool, []string){"exits": exits, "damage": damage},
 	})
 }
 
@@ -52,4 +56,20 @@ func exits(ts *testscript.TestScript, neg bool, args []string) {
 	if got != want {
 		ts.Fatalf("exit code %d, wanted %d", got, want)
 	}
+}
+
+// damage PATTERN flips a bit in the middle of the one file that the pattern names.
+func damage(ts *testscript.TestScript, neg bool, args []string) {
+	if neg || len(args) != 1 {
+		ts.Fatalf("usage: damage PATTERN")
+	}
+	files, err := filepath.Glob(ts.MkAbs(args[0]))
+	ts.Check(err)
+	if len(files) != 1 {
+		ts.Fatalf("%s names %d files", args[0], len(files))
+	}
+	data, err := os.ReadFile(files[0])
+	ts.Check(err)
+	data[len(data)/2] ^= 1
+	ts.Check(os.WriteFile(files[0], data, 0o600))
 }

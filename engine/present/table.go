@@ -14,6 +14,9 @@ import (
 // MaxTableRows is how many rows of a result a table prints.
 const MaxTableRows = 5000
 
+// rule is what the line under the headings is made of.
+const rule = "─"
+
 // tableWriter prints a heading line, a line of units where any column has one,
 // a thin rule and the rows.
 type tableWriter struct {
@@ -62,7 +65,11 @@ func (t *tableWriter) print() error {
 		return err
 	}
 	for line := range bytes.Lines(buffer.Bytes()) {
-		line = append(bytes.TrimRight(line, " \n"), '\n')
+		line = bytes.TrimRight(line, " \n")
+		if len(bytes.Trim(line, rule)) == 0 {
+			line = bytes.TrimSuffix(line, []byte(rule+rule)) // it spans the gap behind the last column too
+		}
+		line = append(line, '\n')
 		if _, err := t.w.Write(line); err != nil {
 			return err
 		}
@@ -97,8 +104,8 @@ func tableOptions(s column.Schema) []tablewriter.Option {
 		}
 	}
 	cell := tw.CellAlignment{PerColumn: align}
-	thin := tw.NewSymbolCustom("thin").WithRow("─").WithColumn(" ").WithCenter("─").
-		WithHeaderMid("─").WithMidLeft("").WithMidRight("")
+	thin := tw.NewSymbolCustom("thin").WithRow(rule).WithColumn(" ").WithCenter(rule).
+		WithHeaderMid(rule).WithMidLeft("").WithMidRight("")
 	return []tablewriter.Option{
 		tablewriter.WithRenderer(renderer.NewBlueprint(tw.Rendition{
 			Borders: tw.Border{Left: tw.Off, Right: tw.Off, Top: tw.Off, Bottom: tw.Off},
