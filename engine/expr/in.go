@@ -48,6 +48,9 @@ func NewIn(x Expr, list []Expr, not bool, place problem.Place) (Expr, error) {
 
 // constantsOf collects the list where it is all constants of type t, else nil.
 func constantsOf(t column.Type, list []Expr) *constants {
+	if !t.Counted() && t != column.Real && t != column.Text {
+		return nil
+	}
 	s := &constants{}
 	for _, e := range list {
 		l, ok := e.(*Literal)
@@ -60,10 +63,8 @@ func constantsOf(t column.Type, list []Expr) *constants {
 			s.ints = append(s.ints, l.Value.I)
 		case t == column.Real:
 			s.reals = append(s.reals, l.Value.F)
-		case t == column.Text:
-			s.texts = append(s.texts, l.Value.S)
 		default:
-			return nil
+			s.texts = append(s.texts, l.Value.S)
 		}
 	}
 	slices.Sort(s.ints)

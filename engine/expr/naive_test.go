@@ -64,6 +64,16 @@ func naive(e Expr, row []column.Value) (column.Value, error) {
 			v.I = 1 - v.I
 		}
 		return v, nil
+	case *In, *Case, *Coalesce, *NullIf:
+		return naiveChoice(e, row)
+	}
+	return naiveStrict(e, row)
+}
+
+// naiveChoice computes what goes through a list until something is found.
+func naiveChoice(e Expr, row []column.Value) (column.Value, error) {
+	null := column.NullOf(e.Type())
+	switch e := e.(type) {
 	case *In:
 		answer := column.Bool(false)
 		if _, err := naive(e.X, row); err != nil {
@@ -121,7 +131,7 @@ func naive(e Expr, row []column.Value) (column.Value, error) {
 		}
 		return l, nil
 	}
-	return naiveStrict(e, row)
+	panic("no choice")
 }
 
 // naiveStrict computes what is NULL as soon as one operand is.

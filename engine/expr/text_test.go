@@ -127,31 +127,6 @@ func (r *reader) buildOperator(n lang.Expr) (Expr, error) {
 			return NewNeg(x, at)
 		}
 		return NewPlus(x, at)
-	case *lang.Between:
-		args, err := r.list([]lang.Expr{n.Operand, n.Low, n.High})
-		if err != nil {
-			return nil, err
-		}
-		return NewBetween(args[0], args[1], args[2], n.Not, at)
-	case *lang.In:
-		args, err := r.list(append([]lang.Expr{n.Operand}, n.List...))
-		if err != nil {
-			return nil, err
-		}
-		return NewIn(args[0], args[1:], n.Not, at)
-	case *lang.Like:
-		parts := []lang.Expr{n.Operand, n.Pattern}
-		if n.Escape != nil {
-			parts = append(parts, n.Escape)
-		}
-		args, err := r.list(parts)
-		if err != nil {
-			return nil, err
-		}
-		if n.Escape != nil {
-			return NewLike(args[0], args[1], args[2], n.Not, at)
-		}
-		return NewLike(args[0], args[1], nil, n.Not, at)
 	case *lang.Is:
 		x, err := r.build(n.Operand)
 		if err != nil {
@@ -181,6 +156,39 @@ func (r *reader) buildOperator(n lang.Expr) (Expr, error) {
 			return nil, err
 		}
 		return NewOverlaps(args[0], args[1], args[2], args[3], at)
+	}
+	return r.buildSearch(n)
+}
+
+// buildSearch builds BETWEEN, IN and LIKE.
+func (r *reader) buildSearch(n lang.Expr) (Expr, error) {
+	at := r.place(n)
+	switch n := n.(type) {
+	case *lang.Between:
+		args, err := r.list([]lang.Expr{n.Operand, n.Low, n.High})
+		if err != nil {
+			return nil, err
+		}
+		return NewBetween(args[0], args[1], args[2], n.Not, at)
+	case *lang.In:
+		args, err := r.list(append([]lang.Expr{n.Operand}, n.List...))
+		if err != nil {
+			return nil, err
+		}
+		return NewIn(args[0], args[1:], n.Not, at)
+	case *lang.Like:
+		parts := []lang.Expr{n.Operand, n.Pattern}
+		if n.Escape != nil {
+			parts = append(parts, n.Escape)
+		}
+		args, err := r.list(parts)
+		if err != nil {
+			return nil, err
+		}
+		if n.Escape != nil {
+			return NewLike(args[0], args[1], args[2], n.Not, at)
+		}
+		return NewLike(args[0], args[1], nil, n.Not, at)
 	}
 	return nil, fmt.Errorf("the test's reader does not know %T", n)
 }

@@ -49,7 +49,7 @@ func TestValues(t *testing.T) {
 		// IN (9075-2, <in predicate>: an OR of comparisons)
 		{"2 IN (1, 2)", "TRUE"}, {"3 IN (1, 2)", "FALSE"}, {"3 IN (1, NULL)", "NULL"}, {"1 IN (1, NULL)", "TRUE"},
 		{"3 NOT IN (1, NULL)", "NULL"}, {"1 NOT IN (1, NULL)", "FALSE"}, {"NULL IN (1)", "NULL"}, {"'a' IN ('b', 'a')", "TRUE"},
-		{"2 IN (1, 2.0)", "TRUE"}, {"2.5 NOT IN (1, 2)", "TRUE"}, {"TRUE IN (FALSE, TRUE)", "TRUE"},
+		{"2 IN (1, 2.0)", "TRUE"}, {"2.5 NOT IN (1, 2)", "TRUE"}, {"TRUE IN (FALSE, TRUE)", "TRUE"}, {"TRUE IN (NULL, NULL)", "NULL"}, {"POINT(1, 2, 3) IN (POINT(1, 2, 3), NULL)", "TRUE"},
 		// LIKE (9075-2, <like predicate>)
 		{"'L17' LIKE 'L%'", "TRUE"}, {"'L17' LIKE 'L_'", "FALSE"}, {"'L17' LIKE 'L__'", "TRUE"}, {"'' LIKE '%'", "TRUE"}, {"'' LIKE '_'", "FALSE"},
 		{"'Käse' LIKE 'K_se'", "TRUE"}, {"'10%' LIKE '10!%' ESCAPE '!'", "TRUE"}, {"'100' LIKE '10!%' ESCAPE '!'", "FALSE"},

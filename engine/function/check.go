@@ -29,7 +29,7 @@ func wantCount(name string, args []Arg, least, most int) error {
 	case most < 0:
 		return wrong(-1, "arguments", "%s takes at least %s, not %d", name, plural(least, "argument"), n)
 	}
-	return wrong(-1, "arguments", "%s takes %d to %s, not %d", name, least, plural(most, "argument"), n)
+	return wrong(-1, "arguments", "%s takes %d to %d arguments, not %d", name, least, most, n)
 }
 
 func plural(n int, what string) string {

@@ -150,7 +150,7 @@ func (s *realSum) addWeighted(x, w float64) {
 		s.overflowed = true
 		return
 	}
-	s.s = s.s.add(p)
+	s.s = s.s.accumulate(p)
 }
 
 func (a *realSums) Merge(other Accumulator, to []int32) error {

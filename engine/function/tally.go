@@ -1,6 +1,7 @@
 package function
 
 import (
+	"math"
 	"math/bits"
 
 	"nearcell/catalog/column"
@@ -64,7 +65,7 @@ func (t *tally) begin(groups []int32, on []uint64, n int, vectors []column.Vecto
 		t.facts = grow(t.facts, g)
 		f := &t.facts[g]
 		f.sum = f.sum.plus(w)
-		f.squares = f.squares.add(twoProduct(w, w))
+		f.squares = f.squares.accumulate(twoProduct(w, w))
 		f.largest = max(f.largest, w)
 		f.rows++
 	}
@@ -120,7 +121,16 @@ func (t *tally) checkWeights(on []uint64, n int, weight *column.Vector) ([]float
 			w[i] = float64(k)
 		}
 	}
-	row := FirstRow(on, n, func(i int) bool { return weight.IsNull(i) || !(w[i] >= 0) || w[i]-w[i] != 0 })
+	suspicious := weight.Valid != nil || weight.Type == column.Null
+	if !suspicious {
+		for _, x := range w[:n] {
+			suspicious = suspicious || !(x >= 0 && x <= math.MaxFloat64)
+		}
+	}
+	row := -1
+	if suspicious {
+		row = FirstRow(on, n, func(i int) bool { return weight.IsNull(i) || !(w[i] >= 0 && w[i] <= math.MaxFloat64) })
+	}
 	if row < 0 {
 		return w, nil
 	}
