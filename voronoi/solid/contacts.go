@@ -20,20 +20,52 @@ func (w *Work) least() float64 {
 // contacts sets the area inside the solid of the faces towards neighbours.
 //
 // A face across the solid has the area that the convex bodies found. A face that lies
-// in a wall is a null set for them: whether it counts would be rounding's choice. It
-// is a contact only where the solid is on both of its sides (the two-sided rule).
+// in a wall, or in a plane that the plan was cut into pieces by, is a null set for
+// them: rounding would choose which piece gets it, none, one or two. There the plan
+// itself is asked: the face is a contact where the solid is on both of its sides (the
+// two-sided rule).
 func (w *Work) contacts(c *polyhedron.Cell) {
 	for i := range w.faces {
-		f := &w.faces[i]
-		if f.label < 0 || f.flush == flat {
-			continue
+		if f := &w.faces[i]; f.label >= 0 {
+			w.out.Contacts[w.indexIn(c, f)] += w.contact(f)
 		}
-		area := f.area
-		if f.flush >= 0 {
-			area = w.twoSided(f.face, &w.near[f.flush])
-		}
-		w.out.Contacts[w.indexIn(c, f)] += area
 	}
+}
+
+// contact is the area of one face of the base where it is a contact.
+func (w *Work) contact(f *baseFace) float64 {
+	if f.flush == flat {
+		return 0
+	}
+	if f.flush >= 0 {
+		return w.twoSided(f.face, w.near[f.flush].at)
+	}
+	if u, ok := w.uprightOf(f); ok && w.cut {
+		return w.twoSided(f.face, u)
+	}
+	return f.area
+}
+
+// mixed tells that a face is a contact in one part and a wall in another.
+func (w *Work) mixed() bool {
+	for i := range w.faces {
+		if f := &w.faces[i]; f.label >= 0 && f.wall > w.least() && w.contact(f) > w.least() {
+			return true
+		}
+	}
+	return false
+}
+
+// uprightOf is the plane of a face that stands upright.
+func (w *Work) uprightOf(f *baseFace) (upright, bool) {
+	n := Vec2{X: f.n.X, Y: f.n.Y}
+	l := norm2(n)
+	if !(l > math.Abs(f.n.Z)) {
+		return upright{}, false
+	}
+	u := upright{Vec2{X: n.X / l, Y: n.Y / l}, f.d / l}
+	_, loop := w.base.Face(f.face)
+	return u, w.isFlush(loop, u)
 }
 
 // indexIn is the number of the base's face in the given cell: that of the largest
@@ -54,19 +86,18 @@ func (w *Work) indexIn(c *polyhedron.Cell, f *baseFace) int {
 	return best
 }
 
-// twoSided is the area of the base's face i, which lies in the plane of a wall, where
+// twoSided is the area of the base's face i, which lies in the upright plane u, where
 // the solid is on both sides of it. Along the plan's line the sides change only where
 // an edge ends at the line or crosses it; between two such stops, one place on either
 // side tells.
-func (w *Work) twoSided(i int, e *nearEdge) float64 {
+func (w *Work) twoSided(i int, u upright) float64 {
 	_, loop := w.base.Face(i)
 	t0, t1 := math.Inf(1), math.Inf(-1)
 	for _, j := range loop {
-		v := w.base.Vertex(int(j))
-		t := float64(e.n.X*v.Y) - float64(e.n.Y*v.X)
+		t := u.along(w.base.Vertex(int(j)))
 		t0, t1 = min(t0, t), max(t1, t)
 	}
-	w.findStops(e, t0, t1)
+	w.findStops(u, t0, t1)
 	const step = 3 // times near: clear of the face and of the wall
 	var total sum
 	for k := 1; k < len(w.stops); k++ {
@@ -75,40 +106,37 @@ func (w *Work) twoSided(i int, e *nearEdge) float64 {
 			continue
 		}
 		t := from + (to-from)/2
-		m := Vec2{X: w.site.X + float64(e.d*e.n.X) - float64(t*e.n.Y), Y: w.site.Y + float64(e.d*e.n.Y) + float64(t*e.n.X)}
-		off := scale2(step*w.x.near, e.n)
+		m := Vec2{
+			X: w.site.X + (float64(u.d*u.n.X) - float64(t*u.n.Y)),
+			Y: w.site.Y + (float64(u.d*u.n.Y) + float64(t*u.n.X)),
+		}
+		off := scale2(step*w.x.near, u.n)
 		if w.x.plan.side(add2(m, off)) != Inside || w.x.plan.side(sub2(m, off)) != Inside {
 			continue
 		}
 		w.poly.SetFace(w.base, i)
-		total.add(w.stripArea(e.edge, from, to))
+		total.add(w.stripArea(u, from, to))
 	}
 	return total.value()
 }
 
 // findStops lists t0, t1 and the places between them where near edges end at the
-// line of e or cross it.
-func (w *Work) findStops(e *nearEdge, t0, t1 float64) {
+// line of u or cross it.
+func (w *Work) findStops(u upright, t0, t1 float64) {
 	w.stops = append(w.stops[:0], t0, t1)
 	stop := func(t float64) {
 		if t > t0 && t < t1 {
 			w.stops = append(w.stops, t)
 		}
 	}
-	site := Vec2{X: w.site.X, Y: w.site.Y}
 	for k := range w.near {
-		f := w.near[k].edge
-		a, b := sub2(f.a, site), sub2(f.b, site)
-		sa, sb := dot2(e.n, a)-e.d, dot2(e.n, b)-e.d
-		ta, tb := w.along(e.edge, f.a), w.along(e.edge, f.b)
+		a, b := w.local(w.near[k].a), w.local(w.near[k].b)
+		sa, sb := u.across(a), u.across(b)
+		ta, tb := u.along(a), u.along(b)
 		onA, onB := math.Abs(sa) <= 4*w.x.near, math.Abs(sb) <= 4*w.x.near
-		if onA {
+		if onA { // every corner is the first end of an edge
 			stop(ta)
-		}
-		if onB {
-			stop(tb)
-		}
-		if !onA && !onB && (sa < 0) != (sb < 0) {
+		} else if !onB && (sa < 0) != (sb < 0) {
 			stop(ta + float64(sa/(sa-sb)*(tb-ta)))
 		}
 	}
@@ -130,6 +158,10 @@ func (w *Work) walls() {
 			ceiling += f.area
 		} else if f.flush == flat {
 			floor += f.area
+		} else if f.flush == notFlush && f.label < 0 && !w.cut {
+			// A side of the bounding box that rounding left in front of a wall which
+			// leans by next to nothing.
+			total.add(f.area)
 		}
 	}
 	least := w.least()
@@ -164,18 +196,20 @@ func (w *Work) walls() {
 
 // wallArea is the area in the base of the wall above one edge.
 func (w *Work) wallArea(e *nearEdge) float64 {
-	t0, t1 := w.along(e.edge, e.a), w.along(e.edge, e.b)
+	t0, t1 := e.at.along(w.local(e.a)), e.at.along(w.local(e.b))
 	if e.oneSided(w.x.near) {
 		area, found := 0.0, false
 		for i := range w.faces {
 			_, loop := w.base.Face(w.faces[i].face)
-			if w.faces[i].flush == flat || !w.isFlush(loop, e) {
+			if w.faces[i].flush == flat || !w.isFlush(loop, e.at) {
 				continue
 			}
 			found = true
 			if e.in > w.x.near {
 				w.poly.SetFace(w.base, w.faces[i].face)
-				area += w.stripArea(e.edge, t0, t1)
+				a := w.stripArea(e.at, t0, t1)
+				w.faces[i].wall += a
+				area += a
 			}
 		}
 		if found {
@@ -186,14 +220,14 @@ func (w *Work) wallArea(e *nearEdge) float64 {
 		return e.cut
 	}
 	w.body.CopyFrom(w.base)
-	if w.body.Clip(e.normal(), e.d, section) != polyhedron.Cut {
+	if w.body.Clip(e.normal(), e.at.d, section) != polyhedron.Cut {
 		return 0
 	}
 	area := 0.0
 	for i := range w.body.NumFaces() {
 		if label, _ := w.body.Face(i); label == section {
 			w.poly.SetFace(&w.body, i)
-			area += w.stripArea(e.edge, t0, t1)
+			area += w.stripArea(e.at, t0, t1)
 		}
 	}
 	return area

@@ -84,7 +84,7 @@ func (w *Work) convex() bool {
 	w.shape.CopyFrom(w.base)
 	for i := range w.near {
 		e := &w.near[i]
-		if w.shape.Clip(e.normal(), e.d, polyhedron.Wall(e.wall)) == polyhedron.Empty {
+		if w.shape.Clip(e.normal(), e.at.d, polyhedron.Wall(e.wall)) == polyhedron.Empty {
 			return false
 		}
 	}
@@ -127,11 +127,10 @@ func (w *Work) wallsOnEdges() bool {
 		if e == nil {
 			continue
 		}
-		t0, t1 := w.along(e.edge, e.a)-w.x.near, w.along(e.edge, e.b)+w.x.near
+		t0, t1 := e.at.along(w.local(e.a))-w.x.near, e.at.along(w.local(e.b))+w.x.near
 		_, loop := w.shape.Face(i)
 		for _, j := range loop {
-			v := w.shape.Vertex(int(j))
-			if t := float64(e.n.X*v.Y) - float64(e.n.Y*v.X); t < t0 || t > t1 {
+			if t := e.at.along(w.shape.Vertex(int(j))); t < t0 || t > t1 {
 				return false
 			}
 		}
@@ -154,7 +153,7 @@ func (w *Work) cutWalls() {
 // edgeOf is the near edge with this plane, or nil.
 func (w *Work) edgeOf(n Vec, d float64) *nearEdge {
 	for i := range w.near {
-		if e := &w.near[i]; e.d == d && e.normal() == n {
+		if e := &w.near[i]; e.at.d == d && e.normal() == n {
 			return e
 		}
 	}
@@ -163,7 +162,7 @@ func (w *Work) edgeOf(n Vec, d float64) *nearEdge {
 
 // byPieces measures a cell by the convex pieces of the plan.
 func (w *Work) byPieces() {
-	w.out.Empty = true
+	w.out.Empty, w.cut = true, true
 	from := w.base
 	if w.outer {
 		// The cell lies flat on a wall from outside. What rounding leaves of the
@@ -177,12 +176,6 @@ func (w *Work) byPieces() {
 			continue
 		}
 		w.addBody(&w.body)
-		if q.x1-q.x0 <= w.x.near {
-			// Beside a wall that is upright in the plan but for rounding stands a
-			// piece as thin as rounding: it holds no place that the piece next to
-			// it would not hold.
-			continue
-		}
 		if from == w.base {
 			w.out.Empty = false
 			w.addFarthest(&w.body)
@@ -202,7 +195,7 @@ func (w *Work) trimmed() *polyhedron.Cell {
 		if e.in > w.x.near {
 			continue
 		}
-		if w.trim.Clip(Vec{X: -e.n.X, Y: -e.n.Y}, -(e.d+2*w.x.near), seam) == polyhedron.Empty {
+		if w.trim.Clip(Vec{X: -e.n.X, Y: -e.n.Y}, -(e.at.d+2*w.x.near), seam) == polyhedron.Empty {
 			return nil
 		}
 	}
@@ -278,16 +271,19 @@ func (w *Work) finish(c *polyhedron.Cell) {
 	}
 	if w.want&WantShape != 0 {
 		w.out.Clipped = w.out.WallFaces > 0
-		if w.out.Shape == nil || w.hasSliver() {
+		if w.mixed() {
+			w.out.Reentrant, w.out.Shape = true, nil
+		} else if w.out.Shape == nil || w.hasSliver() {
 			w.judgeShape()
 		}
 	}
 }
 
-// hasSliver tells that a wall cut the shape that is too small to count in it.
+// hasSliver tells that a wall cut the shape that is too small to count in it, or that
+// lies in one of its faces and cut a part of it off by rounding.
 func (w *Work) hasSliver() bool {
 	for i := range w.near {
-		if cut := w.near[i].cut; cut > 0 && cut <= w.least() {
+		if e := &w.near[i]; e.cut > 0 && (e.cut <= w.least() || e.oneSided(w.x.near)) {
 			return true
 		}
 	}
@@ -304,7 +300,7 @@ func (w *Work) judgeShape() {
 		if e.area <= w.least() || e.oneSided(w.x.near) {
 			continue
 		}
-		if w.shape.Clip(e.normal(), e.d, polyhedron.Wall(e.wall)) == polyhedron.Empty {
+		if w.shape.Clip(e.normal(), e.at.d, polyhedron.Wall(e.wall)) == polyhedron.Empty {
 			return
 		}
 	}

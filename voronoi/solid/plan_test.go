@@ -270,3 +270,39 @@ func TestPlanesAreTheSolid(t *testing.T) {
 		}
 	}
 }
+
+// TestPieces: pieces reach from edge to edge, not only from corner to corner.
+func TestPieces(t *testing.T) {
+	want := map[string]int{"rectangle": 1, "L": 2, "L with a hole in the corner": 3, "frame": 4, "triangle and square holes": 8}
+	for _, e := range examples {
+		s := e.prism(t)
+		if n, ok := want[e.name]; ok && len(s.plan.pieces) != n {
+			t.Errorf("%s: %d pieces, want %d", e.name, len(s.plan.pieces), n)
+		}
+		var area sum
+		for _, q := range s.plan.pieces {
+			top, bottom := &s.plan.edges[q.top], &s.plan.edges[q.bottom]
+			area.add((q.x1 - q.x0) * (top.at(q.x0) - bottom.at(q.x0) + top.at(q.x1) - bottom.at(q.x1)) / 2)
+		}
+		if !near(area.value(), e.area, 1e-12*e.area) {
+			t.Errorf("%s: the pieces have the area %v, want %v", e.name, area.value(), e.area)
+		}
+	}
+}
+
+// TestOffset: a wall's plane goes through both of its ends, seen from either.
+func TestOffset(t *testing.T) {
+	r := rand.New(rand.NewPCG(1, 9))
+	for range 100 {
+		m := motion{angle: 2 * math.Pi * r.Float64(), shift: Vec2{X: 5e5, Y: 5e6}}
+		s := examples[2].moved(m).prism(t)
+		for i := range s.plan.edges {
+			e := &s.plan.edges[i]
+			for _, p := range []Vec2{e.a, e.b} {
+				if d := e.offset(Vec{X: p.X, Y: p.Y}); d != 0 {
+					t.Fatalf("the wall %v %v is %v away from its end", e.a, e.b, d)
+				}
+			}
+		}
+	}
+}

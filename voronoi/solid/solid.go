@@ -112,11 +112,14 @@ type Measures struct {
 	// whatever is wanted.
 	Empty   bool
 	Clipped bool // a wall of the solid bounds the cell
-	// Reentrant tells that the part of the cell in the solid is not convex, so that
-	// it has no simple counts of faces, edges and vertices.
+	// Reentrant tells that the part of the cell in the solid is not convex, or that an
+	// end of a wall divides one of its faces into contact and wall, so that it has no
+	// simple counts of faces, edges and vertices.
 	Reentrant bool
 	// Shape is the part of the cell in the solid where it is convex, nil where it is
-	// not. Its wall faces carry the labels of ClipConvex. It belongs to the Work and
-	// lives until its next use.
+	// not. It is there to count faces, edges and vertices: walls with too little area
+	// to count do not cut it, so that a tip can stand out a little. Faces that walls cut
+	// carry the labels of ClipConvex; a face that lies in a wall keeps its own. It belongs to the Work, or is the measured cell itself,
+	// and lives until the next use of either.
 	Shape *polyhedron.Cell
 }

@@ -26,14 +26,26 @@ type Work struct {
 	near  []nearEdge
 	faces []baseFace
 	stops []float64
+	cut   bool // the base was cut by the pieces of the plan
 	outer bool // base lies beyond the plane of a near edge and touches it
 }
+
+// upright is the upright plane n·(x, y) = d, seen from the site; n has length 1.
+type upright struct {
+	n Vec2
+	d float64
+}
+
+// across is how far v lies beyond the plane, along where it lies along its line in
+// the plan.
+func (u upright) across(v Vec) float64 { return float64(u.n.X*v.X) + float64(u.n.Y*v.Y) - u.d }
+func (u upright) along(v Vec) float64  { return float64(u.n.X*v.Y) - float64(u.n.Y*v.X) }
 
 // nearEdge is an edge of the plan that touches the cell, or comes so near that
 // rounding cannot tell.
 type nearEdge struct {
 	*edge
-	d    float64 // its plane is n·x <= d, seen from the site
+	at   upright // its plane
 	in   float64 // how far the base reaches inwards of the plane
 	out  float64 // and outwards
 	cut  float64 // area of the face it cut, where the base is cut to a convex shape, else -1
@@ -50,7 +62,8 @@ type baseFace struct {
 	d     float64
 	label int32
 	area  float64
-	flush int32 // a near edge in whose plane it lies, flat for floor and ceiling, else -1
+	wall  float64 // of it, where it lies in upright walls that have the base inside
+	flush int32   // a near edge in whose plane it lies, flat for floor and ceiling, else -1
 }
 
 const (
@@ -83,6 +96,7 @@ func (w *Work) begin(x *extrusion, c *polyhedron.Cell, site Vec, want Want, out 
 	}
 	w.x, w.site, w.want, w.out, w.base = x, site, want, out, c
 	w.near, w.faces, w.outer = w.near[:0], w.faces[:0], false
+	w.cut = false
 	if c.Empty() {
 		return false
 	}
@@ -115,9 +129,9 @@ func (w *Work) findNear() {
 		if (ay < lo.Y && by < lo.Y) || (ay > hi.Y && by > hi.Y) {
 			continue
 		}
-		n := nearEdge{edge: e, d: e.offset(w.site), in: math.Inf(-1), out: math.Inf(-1), cut: -1}
+		n := nearEdge{edge: e, at: upright{e.n, e.offset(w.site)}, in: math.Inf(-1), out: math.Inf(-1), cut: -1}
 		for _, v := range w.base.Vertices() {
-			s := float64(e.n.X*v.X) + float64(e.n.Y*v.Y) - n.d
+			s := n.at.across(v)
 			n.out, n.in = max(n.out, s), max(n.in, -s)
 		}
 		if n.in < -near || n.out < -near {
@@ -148,7 +162,7 @@ func (w *Work) listFaces() {
 			f.flush = flat
 		}
 		for j := range w.near {
-			if f.flush == notFlush && w.near[j].oneSided(w.x.near) && w.isFlush(loop, &w.near[j]) {
+			if f.flush == notFlush && w.near[j].oneSided(w.x.near) && w.isFlush(loop, w.near[j].at) {
 				f.flush = int32(j)
 			}
 		}
@@ -160,11 +174,10 @@ func (w *Work) listFaces() {
 	}
 }
 
-// isFlush tells whether all these vertices of the base lie in the edge's plane.
-func (w *Work) isFlush(loop []int32, e *nearEdge) bool {
+// isFlush tells whether all these vertices of the base lie in an upright plane.
+func (w *Work) isFlush(loop []int32, u upright) bool {
 	for _, j := range loop {
-		v := w.base.Vertex(int(j))
-		if math.Abs(float64(e.n.X*v.X)+float64(e.n.Y*v.Y)-e.d) > w.x.near {
+		if math.Abs(u.across(w.base.Vertex(int(j)))) > w.x.near {
 			return false
 		}
 	}
@@ -183,19 +196,15 @@ func (w *Work) faceOf(n Vec, d float64, label int32) int {
 	return -1
 }
 
-// stripArea is the area of w.poly between two lines upright on the edge's direction,
-// at the distances t0 and t1 from the site along it.
-func (w *Work) stripArea(e *edge, t0, t1 float64) float64 {
-	along := Vec{X: -e.n.Y, Y: e.n.X}
-	back := Vec{X: e.n.Y, Y: -e.n.X}
-	if w.poly.Clip(back, -t0) == polyhedron.Empty || w.poly.Clip(along, t1) == polyhedron.Empty {
+// stripArea is the area of w.poly between two lines upright on an upright plane, at
+// the distances t0 and t1 along it.
+func (w *Work) stripArea(u upright, t0, t1 float64) float64 {
+	if w.poly.Clip(Vec{X: u.n.Y, Y: -u.n.X}, -t0) == polyhedron.Empty ||
+		w.poly.Clip(Vec{X: -u.n.Y, Y: u.n.X}, t1) == polyhedron.Empty {
 		return 0
 	}
 	return norm3(w.poly.Area())
 }
 
-// along is where p lies along the edge, measured from the site.
-func (w *Work) along(e *edge, p Vec2) float64 {
-	v := sub2(p, Vec2{X: w.site.X, Y: w.site.Y})
-	return float64(e.n.X*v.Y) - float64(e.n.Y*v.X)
-}
+// local is a corner of the plan seen from the site.
+func (w *Work) local(p Vec2) Vec { return Vec{X: p.X - w.site.X, Y: p.Y - w.site.Y} }
