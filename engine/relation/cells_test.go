@@ -475,19 +475,3 @@ func BenchmarkCellsForEach(b *testing.B) {
 		s.must(b)
 	}
 }
-
-// BenchmarkArrange sorts a million sites that come in any order.
-func BenchmarkArrange(b *testing.B) {
-	for _, text := range []bool{false, true} {
-		in := table(shuffled(randomSites(1000000, 1), 2), text)
-		s := &setup{def: cells, input: in}
-		bound := s.bound()
-		b.Run(fmt.Sprintf("text=%v", text), func(b *testing.B) {
-			for range b.N {
-				if _, err := arrange(bound, s.env, in, newOrder(bound, in)); err != nil {
-					b.Fatal(err)
-				}
-			}
-		})
-	}
-}

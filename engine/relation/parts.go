@@ -1,7 +1,6 @@
 package relation
 
 import (
-	"cmp"
 	"math"
 	"slices"
 
@@ -57,97 +56,6 @@ func arrange(b *Bound, env *Env, input *column.Table, order *order) ([]*Part, er
 		return nil, err
 	}
 	return parts, duplicates(b, env, input, order, parts)
-}
-
-// order compares rows of the input by the values of FOR EACH and by their
-// identifiers. Texts are compared by the rank of their code.
-type order struct {
-	each []*column.Vector
-	id   *column.Vector
-	rank map[*column.Dict][]int32
-}
-
-func newOrder(b *Bound, input *column.Table) *order {
-	o := &order{id: &input.Cols[b.ID], rank: map[*column.Dict][]int32{}}
-	for _, c := range b.Clauses.Each {
-		o.each = append(o.each, &input.Cols[c])
-	}
-	for _, v := range append(o.each[:len(o.each):len(o.each)], o.id) {
-		if v.Type == column.Text && o.rank[v.Dict] == nil {
-			o.rank[v.Dict] = ranks(v.Dict)
-		}
-	}
-	return o
-}
-
-// ranks gives each code the position of its text in code point order (which for
-// UTF-8 is the order of the bytes); equal texts have equal ranks.
-func ranks(d *column.Dict) []int32 {
-	codes := make([]int32, len(d.Texts))
-	for i := range codes {
-		codes[i] = int32(i)
-	}
-	slices.SortFunc(codes, func(a, b int32) int { return cmp.Compare(d.Texts[a], d.Texts[b]) })
-	rank := make([]int32, len(codes))
-	for i, c := range codes {
-		if i > 0 && d.Texts[c] == d.Texts[codes[i-1]] {
-			rank[c] = rank[codes[i-1]]
-		} else {
-			rank[c] = int32(i)
-		}
-	}
-	return rank
-}
-
-// compare orders two present values of a column.
-func (o *order) compare(v *column.Vector, a, b int32) int {
-	switch v.Type {
-	case column.Integer, column.Timestamp, column.Interval:
-		return cmp.Compare(v.I[a], v.I[b])
-	case column.Real:
-		return cmp.Compare(v.F[a], v.F[b]) // -0 and 0 are equal
-	case column.Text:
-		rank := o.rank[v.Dict]
-		return cmp.Compare(rank[v.C[a]], rank[v.C[b]])
-	case column.Boolean:
-		x, y := column.Bit(v.Bits, int(a)), column.Bit(v.Bits, int(b))
-		switch {
-		case x == y:
-			return 0
-		case y:
-			return -1
-		}
-		return 1
-	case column.Point:
-		return slices.Compare(v.F[3*a:3*a+3], v.F[3*b:3*b+3])
-	}
-	return 0
-}
-
-func (o *order) part(a, b int32) int {
-	for _, v := range o.each {
-		if c := o.compare(v, a, b); c != 0 {
-			return c
-		}
-	}
-	return 0
-}
-
-func (o *order) samePart(a, b int32) bool { return o.part(a, b) == 0 }
-
-func (o *order) sameID(a, b int32) bool { return o.compare(o.id, a, b) == 0 }
-
-// sort orders rows by part, then identifier, then their order in the input.
-func (o *order) sort(rows []int32) {
-	less := func(a, b int32) int {
-		if c := o.part(a, b); c != 0 {
-			return c
-		}
-		return o.compare(o.id, a, b)
-	}
-	if !slices.IsSortedFunc(rows, less) {
-		slices.SortStableFunc(rows, less)
-	}
 }
 
 // position is the place of a row; -0 counts as 0.

@@ -96,23 +96,6 @@ func (p *Part) keepFirst() {
 	p.Rows, p.Site, p.Share = p.Rows[:n], p.Site[:n], nil
 }
 
-// names are the distinct identifiers of rows, in their order.
-func (o *order) names(rows []int32) []string {
-	rows = o.distinct(rows)
-	names := make([]string, len(rows))
-	for i, r := range rows {
-		names[i] = idText(o.id, int(r))
-	}
-	return names
-}
-
-// distinct is one row for each identifier, in the order of identifiers.
-func (o *order) distinct(rows []int32) []int32 {
-	rows = slices.Clone(rows)
-	slices.SortStableFunc(rows, func(a, b int32) int { return o.compare(o.id, a, b) })
-	return slices.CompactFunc(rows, o.sameID)
-}
-
 // someOf lists the first few names: 'L07', 'L08' and 12 more.
 func someOf(names []string) string {
 	const shown = 5

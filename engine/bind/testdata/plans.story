@@ -12,7 +12,7 @@ SELECT id, temp FROM hall WHERE temp > 8 ORDER BY temp DESC LIMIT 3
 limit 3
   sort: temp DESC
     project: id, temp
-      filter where: temp > 8.0
+      filter where: temp > 8
         scan campaign hall: id, x, y, z, temp, area
 
 plan
@@ -130,7 +130,7 @@ SELECT logger, COUNT(temp) AS got FROM log GROUP BY logger HAVING COUNT(temp) < 
 ----
 sort: got
   project: logger, "COUNT(temp)" AS got
-    filter having: "COUNT(temp)" < 0.99 * 672.0
+    filter having: "COUNT(temp)" < 0.99 * 672
       aggregate: COUNT(temp) by logger
         scan table log: logger, t, temp, co2, n, ok
 
@@ -160,7 +160,7 @@ project: warm, many
   sort: "many + 1"
     project: "temp > 8" AS warm, "COUNT(*)" AS many, "COUNT(*)" + 1 AS many + 1
       filter having: "COUNT(*)" > 3
-        aggregate: COUNT(*) by temp > 8.0
+        aggregate: COUNT(*) by temp > 8
           scan table log: logger, t, temp, co2, n, ok
 
 # … where a column has it, that is meant, and it is said.
@@ -190,7 +190,7 @@ plan
 SELECT h.id, l.temp, h.temp AS other FROM hall AS h LEFT JOIN log l ON h.id = l.logger AND l.temp > 5
 ----
 project: id, temp, temp AS other
-  left join; where id = logger AND temp > 5.0
+  left join; where id = logger AND temp > 5
     scan campaign hall: id, x, y, z, temp, area
     scan table log: logger, t, temp, co2, n, ok
 
@@ -232,10 +232,10 @@ project: "COUNT(*)" AS COUNT(*)
     inner join
       project: who
         project: id, temp
-          filter where: temp > 5.0
+          filter where: temp > 5
             scan campaign hall: id, x, y, z, temp, area
       project: id, temp
-        filter where: temp > 5.0
+        filter where: temp > 5
           scan campaign hall: id, x, y, z, temp, area
 
 plan
@@ -287,7 +287,7 @@ plan
 SELECT j.a FROM (SELECT id, x FROM hall) AS j (a, b) WHERE j.b > 1
 ----
 project: a
-  filter where: b > 1.0
+  filter where: b > 1
     project: id, x
       scan campaign hall: id, x, y, z, temp, area
 
@@ -302,7 +302,7 @@ plan
 SELECT c.id, k.b FROM CELLS OF hall AS c JOIN CONTACTS OF hall AS k ON k.a = c.id WHERE c.volume > 5
 ----
 project: id, b
-  filter where: volume > 5.0
+  filter where: volume > 5
     inner join; where a = id
       cells of hall: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
         scan campaign hall: id, x, y, z, temp, area

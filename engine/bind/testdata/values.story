@@ -144,7 +144,7 @@ position
 position
 east / 1000
 ----
-east / 1000.0 REAL [m]
+east / 1000 REAL [m]
 
 position
 dept
