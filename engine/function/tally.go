@@ -76,16 +76,23 @@ func (t *tally) begin(groups []int32, on []uint64, n int, vectors []column.Vecto
 	return heavy, weights, nil
 }
 
-// weighNulls adds up the weights of the rows without a value.
+// weighNulls adds up the weights of the rows that are on and have no value.
 func (t *tally) weighNulls(groups []int32, on, active []uint64, n int, weights []float64) {
-	FirstRow(on, n, func(i int) bool {
-		if !column.Bit(active, i) {
+	for k, have := range active {
+		missing := ^have
+		if on != nil {
+			missing &= on[k]
+		}
+		for ; missing != 0; missing &= missing - 1 {
+			i := k<<6 + bits.TrailingZeros64(missing)
+			if i >= n {
+				return
+			}
 			t.facts = grow(t.facts, groups[i])
 			f := &t.facts[groups[i]]
 			f.null = f.null.plus(weights[i])
 		}
-		return false
-	})
+	}
 }
 
 // selected lists the rows of a bitmap (nil: all n).
