@@ -147,6 +147,7 @@ type joinStep struct {
 	kind      plan.JoinKind
 	leftKeys  []expr.Expr
 	rest      expr.Expr
+	restReads []bool // which columns rest reads
 	leftScope scope
 	right     *buildSide
 }
@@ -309,7 +310,7 @@ func (s *joinStep) decide(w *Worker, l *joinLocal, b *column.Batch) error {
 	if s.rest == nil || n == 0 {
 		return nil
 	}
-	s.gather(l, b, &l.maybe)
+	s.gather(l, b, &l.maybe, s.restReads)
 	l.candidate = bitsFor(l.candidate, n)
 	for k, r := range l.maybe.right {
 		if r >= 0 {
@@ -352,7 +353,7 @@ func (s *joinStep) handOn(ctx context.Context, w *Worker, l *joinLocal, b *colum
 			return err
 		}
 		hi := min(lo+BatchRows, len(l.out.left))
-		s.gather(l, b, &pairs{l.out.left[lo:hi], l.out.right[lo:hi]})
+		s.gather(l, b, &pairs{l.out.left[lo:hi], l.out.right[lo:hi]}, nil)
 		first := l.emitted
 		l.emitted += int64(hi - lo)
 		if err := w.deeper(first, &l.batch, emit); err != nil {
@@ -363,17 +364,22 @@ func (s *joinStep) handOn(ctx context.Context, w *Worker, l *joinLocal, b *colum
 	return nil
 }
 
-// gather makes l.batch the joined rows of the pairs.
-func (s *joinStep) gather(l *joinLocal, b *column.Batch, p *pairs) {
+// gather makes l.batch the joined rows of the pairs; columns outside of reads,
+// where that is not nil, are left without values.
+func (s *joinStep) gather(l *joinLocal, b *column.Batch, p *pairs, reads []bool) {
 	left, right := b.Cols, s.right.table.Cols
 	if l.cols == nil {
 		l.cols = make([]column.Vector, len(left)+len(right))
 	}
-	for c := range left {
-		gatherInto(&l.cols[c], &left[c], p.left, false)
-	}
-	for c := range right {
-		gatherInto(&l.cols[len(left)+c], &right[c], p.right, true)
-	}
 	l.batch = column.Batch{N: len(p.left), Cols: l.cols}
+	for c := range l.cols {
+		switch {
+		case reads != nil && !reads[c]:
+			l.cols[c].Type, l.cols[c].N = column.Null, len(p.left)
+		case c < len(left):
+			gatherInto(&l.cols[c], &left[c], p.left, false)
+		default:
+			gatherInto(&l.cols[c], &right[c-len(left)], p.right, true)
+		}
+	}
 }

@@ -163,7 +163,7 @@ func TestVanishedCells(t *testing.T) {
 	expectNotes(t, aggregate(where(r, notA), nil, calls(schema, "MAX", siteTemp)[0]))
 	expectNotes(t, where(r, notA))
 	// a condition on what the relation computes is counted in rows
-	big := is(schema, siteVolume, lang.Greater, column.Float(0.5))
+	big := is(schema, siteVolume, lang.Greater, column.Float(10))
 	expectNotes(t, aggregate(where(r, big), nil, sum), strings.Replace(left, "1 of 5 sites", "5 of 5 rows", 1))
 	// through a view that renames and a join that keeps the cells apart
 	p := &plan.Project{Input: where(r, notA), Exprs: columns(schema, siteID, siteVolume), Fields: column.Schema{{Name: "k", Type: column.Text}, {Name: "v", Type: column.Real}}}

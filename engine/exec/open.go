@@ -5,6 +5,7 @@ import (
 	"fmt"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/expr"
 	"nearcell/engine/plan"
 	"nearcell/engine/relation"
 )
@@ -119,8 +120,11 @@ func (r *runner) openJoin(ctx context.Context, n *plan.Join) (*pipeline, error) 
 	if err != nil {
 		return nil, err
 	}
+	schema := n.Schema()
 	step := &joinStep{kind: n.Kind, leftKeys: n.LeftKeys, rest: n.Rest, leftScope: scopeOf(left.schema), right: right}
-	return left.with(step, n.Schema()), nil
+	step.restReads = make([]bool, len(schema))
+	expr.Columns(n.Rest, step.restReads)
+	return left.with(step, schema), nil
 }
 
 func (r *runner) openUnion(ctx context.Context, n *plan.Union) (*pipeline, error) {

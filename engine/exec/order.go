@@ -34,7 +34,10 @@ func argsort(keys []orderKey, n int) []int32 {
 		}
 		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
 			for i := range rows {
-				rows[i].word = orderWord(key.v, int(rows[i].row), part, ranks)
+				rows[i].word = 0 // of NULLs, whatever their slot holds
+				if key.v.Valid == nil || column.Bit(key.v.Valid, int(rows[i].row)) {
+					rows[i].word = orderWord(key.v, int(rows[i].row), part, ranks)
+				}
 				if key.descending {
 					rows[i].word = ^rows[i].word
 				}
@@ -57,7 +60,7 @@ type rowWord struct {
 	row  int32
 }
 
-// orderWord maps a value to a word so that greater values have greater words.
+// orderWord maps a value that is not NULL to a word so that greater values have greater words.
 func orderWord(v *column.Vector, row, part int, ranks []uint64) uint64 {
 	switch {
 	case v.Type.Counted():
@@ -67,9 +70,6 @@ func orderWord(v *column.Vector, row, part int, ranks []uint64) uint64 {
 	case v.Type == column.Point:
 		return orderedReal(v.F[3*row+part])
 	case v.Type == column.Text:
-		if v.IsNull(row) {
-			return 0
-		}
 		return ranks[v.C[row]]
 	case v.Type == column.Boolean:
 		return v.Bits[row>>6] >> (uint(row) & 63) & 1

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"math/bits"
 	"slices"
 
 	"nearcell/catalog/column"
@@ -82,6 +83,23 @@ func (g *gatherer) add(v *column.Vector, idx []int32) {
 			}
 		}
 	}
+	g.zeroNulls(v, from)
+}
+
+// zeroNulls clears the slots of NULLs that came out of v from row `from` on: an
+// expression may leave anything there, and tables with equal values shall have
+// equal bytes.
+func (g *gatherer) zeroNulls(v *column.Vector, from int) {
+	if v.Valid == nil {
+		return
+	}
+	for w := from >> 6; w < len(g.v.Valid); w++ {
+		for null := ^g.v.Valid[w]; null != 0; null &= null - 1 {
+			if i := w<<6 + bits.TrailingZeros64(null); i >= from && i < g.v.N {
+				g.v.SetNull(i)
+			}
+		}
+	}
 }
 
 func (g *gatherer) check(v *column.Vector) {
@@ -123,6 +141,7 @@ func (g *gatherer) addAll(v *column.Vector, n int) bool {
 		g.v.C = append(g.v.C, v.C[:n]...)
 		g.v.Dict = g.texts.dict
 	}
+	g.zeroNulls(v, g.v.N-n)
 	return true
 }
 

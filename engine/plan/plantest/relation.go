@@ -12,8 +12,8 @@ import (
 
 // Crowd is a relation without geometry that keeps the manners of one: rows in
 // the order of part and identifier, a measure ("volume") that depends on all
-// sites of the part whether shown or not, an own column that it may rename. Its
-// rows are its sites; volumes of a part add up to 1.
+// sites of the part whether shown or not (it is their number and a quarter), an
+// own column that it may rename. Its rows are its sites.
 var Crowd = &relation.Definition{
 	Noun:     "CROWD",
 	RowIs:    "site",
@@ -116,7 +116,7 @@ func (c *crowdRows) column(i int, col relation.Column, rows []int32) column.Vect
 	v := column.New(col.Type, col.Unit, len(rows))
 	for k, row := range rows {
 		if n := c.part[c.partOf(row)]; col.Type == column.Real {
-			v.F[k] = 1 / float64(n)
+			v.F[k] = float64(n) + 0.25
 		} else {
 			v.I[k] = int64(n - 1)
 		}
