@@ -3,40 +3,137 @@ package main
 import (
 	"context"
 	"encoding/binary"
+	"errors"
+	"flag"
 	"fmt"
+	"io"
 	"math"
 	"os"
 	"runtime/pprof"
-	"strconv"
 	"time"
 
 	"nearcell/voronoi/delaunay"
 )
 
 func main() {
-	b, err := os.ReadFile(os.Args[1])
+	if err := run(os.Args[1:], os.Stdout, os.Stderr); err != nil {
+		if !errors.Is(err, flag.ErrHelp) {
+			fmt.Fprintln(os.Stderr, "kernelbench:", err)
+		}
+		os.Exit(2)
+	}
+}
+
+type arguments struct {
+	file, cells, profile string
+	threads              int
+}
+
+// parse takes flags before and after the file.
+func parse(args []string, stderr io.Writer) (a arguments, err error) {
+	f := flag.NewFlagSet("kernelbench", flag.ContinueOnError)
+	f.SetOutput(stderr)
+	f.Usage = func() {
+		fmt.Fprintln(stderr, "usage: kernelbench FILE [-threads n] [-profile OUT] [-cells OUT]")
+		f.PrintDefaults()
+	}
+	f.IntVar(&a.threads, "threads", 1, "goroutines that insert sites")
+	f.StringVar(&a.cells, "cells", "", "write cell volumes to this file")
+	f.StringVar(&a.profile, "profile", "", "write a processor profile of the build to this file")
+	for {
+		if err = f.Parse(args); err != nil {
+			return a, err
+		}
+		if f.NArg() == 0 {
+			break
+		}
+		if a.file != "" {
+			return a, fmt.Errorf("one file, not %q too", f.Arg(0))
+		}
+		a.file, args = f.Arg(0), f.Args()[1:]
+	}
+	switch {
+	case a.file == "":
+		f.Usage()
+		return a, errors.New("no file given")
+	case a.threads < 1:
+		return a, fmt.Errorf("-threads %d: at least one is needed", a.threads)
+	case a.cells != "":
+		return a, errors.New("-cells: not there yet")
+	}
+	return a, nil
+}
+
+func run(args []string, stdout, stderr io.Writer) error {
+	a, err := parse(args, stderr)
 	if err != nil {
-		panic(err)
+		return err
 	}
-	th := 1
-	if len(os.Args) > 2 {
-		th, _ = strconv.Atoi(os.Args[2])
-	}
-	s := make([]float64, len(b)/8)
-	for i := range s {
-		s[i] = math.Float64frombits(binary.LittleEndian.Uint64(b[8*i:]))
-	}
-	b = nil
-	if p := os.Getenv("PROF"); p != "" {
-		f, _ := os.Create(p)
-		pprof.StartCPUProfile(f)
-		defer pprof.StopCPUProfile()
-	}
-	t0 := time.Now()
-	t, err := delaunay.BuildFlat(context.Background(), s, delaunay.Options{Threads: th})
-	el := time.Since(t0)
+	before := usage()
+	sites, err := readSites(a.file)
 	if err != nil {
-		panic(err)
+		return err
 	}
-	fmt.Printf("n=%d tets=%d seconds=%.3f fp=%016x\n", len(s)/3, t.NumTets(), el.Seconds(), t.Fingerprint())
+	if a.profile != "" {
+		out, err := os.Create(a.profile)
+		if err != nil {
+			return err
+		}
+		defer out.Close()
+		if err := pprof.StartCPUProfile(out); err != nil {
+			return err
+		}
+	}
+	ready, start := usage(), time.Now()
+	t, err := delaunay.BuildFlat(context.Background(), sites, delaunay.Options{Threads: a.threads})
+	seconds := time.Since(start).Seconds()
+	done := usage()
+	pprof.StopCPUProfile()
+	if err != nil {
+		return err
+	}
+	mode := "seq"
+	if a.threads > 1 {
+		mode = "parallel"
+	}
+	_, err = fmt.Fprintf(stdout, `{"lib":"nearcell","mode":%q,"threads":%d,"points":%d,"vertices":%d,"tets":%d,`+
+		`"seconds":%.6f,"cpu_seconds":%.6f,"rss_start":%d,"peak_rss":%d,"fingerprint":"%016x"}`+"\n",
+		mode, a.threads, t.NumSites(), t.NumVertices(), t.NumTets(),
+		seconds, done.cpu-ready.cpu, before.resident, done.peak, t.Fingerprint())
+	return err
+}
+
+// readSites reads raw little-endian float64 triples.
+func readSites(name string) ([]float64, error) {
+	f, err := os.Open(name)
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	info, err := f.Stat()
+	if err != nil {
+		return nil, err
+	}
+	if info.Size()%24 != 0 {
+		return nil, fmt.Errorf("%s: %d bytes are not a whole number of triples", name, info.Size())
+	}
+	sites := make([]float64, info.Size()/8)
+	buffer := make([]byte, 1<<20)
+	for rest := sites; len(rest) > 0; {
+		part := buffer[:min(len(buffer), 8*len(rest))]
+		if _, err := io.ReadFull(f, part); err != nil {
+			return nil, fmt.Errorf("%s: %w", name, err)
+		}
+		for i := 0; i < len(part); i += 8 {
+			rest[i/8] = math.Float64frombits(binary.LittleEndian.Uint64(part[i:]))
+		}
+		rest = rest[len(part)/8:]
+	}
+	return sites, nil
+}
+
+// consumption is what the process has used so far.
+type consumption struct {
+	cpu            float64
+	resident, peak int64
 }

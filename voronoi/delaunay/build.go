@@ -13,7 +13,9 @@ type T struct {
 	dimension int
 	place     []int32 // site -> point, equal sites to the same one; 0: removed
 	repeats   []int32 // sites equal to one with a lower index, ascending
-	real      int     // tets[:real] are real, the rest ghosts
+	removed   int     // places that were removed
+	real      int     // tets[:real] are real,
+	ghosts    int     // the rest ghosts
 }
 
 // Build makes the Delaunay tetrahedralisation of sites. Sites that coincide become

@@ -246,7 +246,11 @@ func (w *worker) fresh() uint32 {
 func (w *worker) more() {
 	m := w.m
 	if m.used == len(m.tets) {
-		m.grow(len(m.tets)/4 + 1024)
+		if c := cap(m.tets); c > m.used { // after an edit
+			m.tets = m.tets[:min(c, m.used+4096)]
+		} else {
+			m.grow(len(m.tets)/4 + 1024)
+		}
 	}
 	w.next, w.end = uint32(m.used), uint32(len(m.tets))
 	m.used = len(m.tets)

@@ -37,7 +37,7 @@ func (t *T) compact(w *worker) {
 			real++
 		}
 	}
-	t.real = real
+	t.real, t.ghosts = real, ghosts
 	t.partition(0, real, m.used, func(q *tet) bool { return !q.isFree() && q.lo != loGhost })
 	t.partition(real, real+ghosts, m.used, func(q *tet) bool { return !q.isFree() })
 	m.used = real + ghosts

@@ -13,8 +13,7 @@ type frame struct {
 	x0, y0, z0 float64
 	// The scale is applied in two factors, since one alone may overflow.
 	scale, scale2 float64
-	low, high     [3]float64 // bounds of the sites
-	box           bounds     // of the internal coordinates
+	box           bounds // of the internal coordinates
 	rounded       bool
 	// Internal coordinates are multiples of 2^-bits; bits > maxBits: they are not.
 	bits int
@@ -23,6 +22,10 @@ type frame struct {
 // maxBits is the most that in-sphere in five words allows: differences need one bit
 // more, minors twice that and one, and so on up to 5*61+7 bits.
 const maxBits = 60
+
+// headroom is how many binary places are left free, so that sites can be inserted
+// around the others without another frame.
+const headroom = 2
 
 type bounds struct{ lo, hi [3]float64 }
 
@@ -66,9 +69,8 @@ func newFrame(sites []float64) (f *frame, bad int) {
 		}
 		b.add(x, y, z)
 	}
-	f = &frame{low: b.lo, high: b.hi}
+	f = &frame{scale: 1, scale2: 1}
 	if len(sites) == 0 {
-		f.low, f.high, f.scale, f.scale2 = [3]float64{}, [3]float64{}, 1, 1
 		return f, -1
 	}
 	f.place(b, true)
@@ -99,7 +101,7 @@ func (f *frame) place(b bounds, move bool) {
 	}
 	e := 0
 	if largest > 0 {
-		e = -exponentAbove(largest)
+		e = -headroom - exponentAbove(largest)
 	}
 	f.scale, f.scale2 = math.Ldexp(1, e/2), math.Ldexp(1, e-e/2)
 }
@@ -116,7 +118,6 @@ func exponentAbove(x float64) int {
 func (f *frame) survey(sites []float64) bool {
 	f.box = emptyBounds()
 	f.rounded = false
-	const tiny = 0x1p-960
 	whole := true
 	var union int64
 	for i := 0; i+2 < len(sites); i += 3 {
@@ -126,10 +127,11 @@ func (f *frame) survey(sites []float64) bool {
 			roundedDifference(sites[i+2], f.z0, z) {
 			return false
 		}
-		x, y, z = float64(x*f.scale)*f.scale2, float64(y*f.scale)*f.scale2, float64(z*f.scale)*f.scale2
-		if (math.Abs(x) < tiny && x != 0) || (math.Abs(y) < tiny && y != 0) || (math.Abs(z) < tiny && z != 0) {
+		sx, sy, sz := float64(x*f.scale)*f.scale2, float64(y*f.scale)*f.scale2, float64(z*f.scale)*f.scale2
+		if tooSmall(x, sx) || tooSmall(y, sy) || tooSmall(z, sz) {
 			f.rounded = true
 		}
+		x, y, z = sx, sy, sz
 		f.box.add(x, y, z)
 		const unit = 1 << maxBits
 		a, b, c := x*unit, y*unit, z*unit
@@ -145,6 +147,9 @@ func (f *frame) survey(sites []float64) bool {
 	}
 	return true
 }
+
+// tooSmall reports whether scaling x to s may have lost bits.
+func tooSmall(x, s float64) bool { return x != 0 && math.Abs(s) < 0x1p-960 }
 
 // roundedDifference reports whether d = fl(a-b) is not a-b (the error of Knuth's
 // two-sum).

@@ -1,7 +1,9 @@
 package delaunay
 
 import (
+	"iter"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/spatial/r2"
 
@@ -13,38 +15,52 @@ import (
 // and, when that is 3, the corners.
 func (w *worker) startSimplex() (dimension int, corners [4]int32) {
 	m := w.m
-	n := int32(len(m.pts) - 1)
-	if n == 0 {
-		return -1, corners
+	dimension, corners = m.spanning(func(yield func(int32) bool) {
+		for p := 1; p < len(m.pts) && yield(int32(p)); p++ {
+		}
+	})
+	if dimension == 3 {
+		w.simplex(corners)
 	}
-	a, p := int32(1), int32(2)
-	for p <= n && m.same(a, p) {
-		p++
-	}
-	b := p
-	for p <= n && m.collinear(a, b, p) {
-		p++
-	}
-	c := p
-	side := 0
-	for ; p <= n; p++ {
-		if side = m.orient(a, b, c, p); side != 0 {
+	return dimension, corners
+}
+
+// span returns the dimension of the affine hull of the listed points.
+func (m *mesh) span(list []int32) int {
+	d, _ := m.spanning(slices.Values(list))
+	return d
+}
+
+// spanning returns the dimension of the affine hull of points and, when it is
+// 3, the first that span it, as a positive tetrahedron.
+func (m *mesh) spanning(points iter.Seq[int32]) (dimension int, corners [4]int32) {
+	n := 0
+	for p := range points {
+		switch n {
+		case 0:
+		case 1:
+			if m.same(corners[0], p) {
+				continue
+			}
+		case 2:
+			if m.collinear(corners[0], corners[1], p) {
+				continue
+			}
+		case 3:
+			side := m.orient(corners[0], corners[1], corners[2], p)
+			if side == 0 {
+				continue
+			}
+			if side < 0 {
+				corners[1], corners[2] = corners[2], corners[1]
+			}
+		}
+		corners[n] = p
+		if n++; n == 4 {
 			break
 		}
 	}
-	switch {
-	case b > n:
-		return 0, corners
-	case c > n:
-		return 1, corners
-	case p > n:
-		return 2, corners
-	}
-	if side < 0 {
-		b, c = c, b
-	}
-	w.simplex([4]int32{a, b, c, p})
-	return 3, [4]int32{a, b, c, p}
+	return n - 1, corners
 }
 
 func (w *worker) simplex(v [4]int32) {
