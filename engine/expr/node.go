@@ -79,11 +79,17 @@ func (e *Literal) With([]Expr) Expr { return e }
 // CanFail is false.
 func (e *Literal) CanFail() bool { return false }
 
-// Eval repeats the constant for every row. The vector is kept: the next batch
-// of the same length finds it.
+// Eval repeats the constant for every row. The vector is kept for the next
+// batches, of which it gives as much as they are long; bitmaps are made anew for
+// another length, since their bits beyond it are 0.
 func (e *Literal) Eval(w *Work, b *column.Batch, _ []uint64) (column.Vector, error) {
-	if v, ok := w.repeated[e]; ok && v.N == b.N {
-		return v, nil
+	if v, ok := w.repeated[e]; ok {
+		switch {
+		case v.N == b.N:
+			return v, nil
+		case v.N > b.N && v.Valid == nil && v.Bits == nil:
+			return v.Slice(0, b.N), nil
+		}
 	}
 	v := repeat(e, b.N)
 	v.Unit = e.unit

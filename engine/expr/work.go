@@ -99,6 +99,12 @@ func (w *Work) truth(v *column.Vector) (yes, no []uint64) {
 	if v.Valid == nil {
 		yes = v.Bits[:k]
 		column.FillOn(no, v.N)
+		if v.N&63 != 0 { // a view may have bits of later rows
+			yes = w.Words(k)
+			for i := range yes {
+				yes[i] = v.Bits[i] & no[i]
+			}
+		}
 		for i := range no {
 			no[i] &^= yes[i]
 		}

@@ -14,7 +14,8 @@ type Arena struct {
 	ints   pool[int64]
 	floats pool[float64]
 	codes  pool[uint32]
-	tables map[TableKey]any
+	tables map[TableKey]any // of small dictionaries
+	large  map[TableKey]any // of large ones
 	texts  []*TextBuilder
 	inUse  int // of texts
 }
@@ -64,19 +65,32 @@ type TableKey struct {
 	Dict  *column.Dict
 }
 
-// maxTables bounds the memory of tables: texts that are made anew for each
-// batch come with a dictionary of their own each time.
-const maxTables = 512
+// The memory of tables is bounded. Texts that are made anew for each batch come
+// with a small dictionary of their own each time; they do not push out what was
+// computed from the large dictionary of a stored column.
+const (
+	maxTables = 128
+	largeDict = 4096
+)
 
 // Table is what SetTable kept, or nil.
-func (a *Arena) Table(k TableKey) any { return a.tables[k] }
+func (a *Arena) Table(k TableKey) any {
+	if len(k.Dict.Texts) >= largeDict {
+		return a.large[k]
+	}
+	return a.tables[k]
+}
 
 // SetTable keeps a table over Reset. Tables may be dropped at any time.
 func (a *Arena) SetTable(k TableKey, table any) {
-	if a.tables == nil || len(a.tables) >= maxTables {
-		a.tables = make(map[TableKey]any)
+	tables := &a.tables
+	if len(k.Dict.Texts) >= largeDict {
+		tables = &a.large
 	}
-	a.tables[k] = table
+	if *tables == nil || len(*tables) >= maxTables {
+		*tables = make(map[TableKey]any)
+	}
+	(*tables)[k] = table
 }
 
 // Texts is an empty builder, to be used until Reset.
