@@ -40,7 +40,7 @@ func valuePool(t column.Type) []column.Value {
 			out = append(out, column.Float(f))
 		}
 	case column.Text:
-		for _, s := range []string{"", "a", "ab", "B", "ä", "12", "-1.5", "a%"} {
+		for _, s := range []string{"", "a", "ab", "B", "ä", "12", "-1.5", "a%", "%b", "_", "%a_%"} {
 			out = append(out, column.String(s))
 		}
 	case column.Boolean:
@@ -165,8 +165,7 @@ func drawCondition(t *rapid.T, sub func(column.Type) Expr) (Expr, error) {
 	case 6:
 		return NewIn(sub(of), []Expr{sub(other), sub(of), sub(other)}, not, none)
 	case 7:
-		pattern := rapid.SampledFrom([]string{"%", "a%", "_", "%b", "a_", ""}).Draw(t, "pattern")
-		return NewLike(sub(column.Text), NewConst(column.String(pattern), none), nil, not, none)
+		return NewLike(sub(column.Text), sub(column.Text), nil, not, none)
 	}
 	return NewCompare(rapid.SampledFrom([]lang.Op{lang.Equals, lang.NotEquals, lang.Less, lang.LessOrEqual, lang.Greater, lang.GreaterOrEqual}).Draw(t, "op"),
 		sub(of), sub(other), none)
@@ -273,15 +272,16 @@ func TestSplitsAgree(t *testing.T) {
 		}
 		table := column.Table{Cols: b.Cols, N: b.N}
 		for lo := 0; lo < b.N; lo += 64 {
-			part := table.Batch(lo, min(lo+64, b.N))
+			// a view may end inside a word of the bitmaps
+			part := table.Batch(lo, min(lo+rapid.IntRange(1, 64).Draw(t, "length"), b.N))
 			word := half[lo>>6]
-			for _, on := range [][]uint64{{word}, {^word & column.AllOn(part.N)[0]}} {
+			for _, on := range [][]uint64{{word & column.AllOn(part.N)[0]}, {^word & column.AllOn(part.N)[0]}, nil} {
 				v, err := e.Eval(&w2, &part, on)
 				if err != nil {
 					t.Fatalf("%s fails in a part and not in the whole: %v", e, err)
 				}
 				for i := range part.N {
-					if column.Bit(on, i) && show(v.Value(i)) != show(whole.Value(lo+i)) {
+					if (on == nil || column.Bit(on, i)) && show(v.Value(i)) != show(whole.Value(lo+i)) {
 						t.Fatalf("%s: row %d is %s in the whole and %s in a part", e, lo+i, show(whole.Value(lo+i)), show(v.Value(i)))
 					}
 				}
