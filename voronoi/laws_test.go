@@ -52,7 +52,7 @@ func bruteForce(sites []Vec, i int, start func(*polyhedron.Cell, Vec)) *polyhedr
 		if !done[q] {
 			done[q] = true
 			n := sub(q, p)
-			c.Clip(n, dot(n, n)/2, int32(j))
+			c.Bisect(n, lostBySub(q, p, n), int32(j))
 		}
 	}
 	return &c
@@ -166,6 +166,40 @@ func TestLaw4BruteForce(t *testing.T) {
 			if int(c.Faces[i]) != s.Faces() || int(c.Edges[i]) != s.Edges || int(c.Vertices[i]) != s.Vertices {
 				t.Errorf("%s: cell %d has %d faces, %d edges, %d vertices, by brute force %+v", name, i, c.Faces[i], c.Edges[i], c.Vertices[i], s)
 			}
+		}
+	}
+}
+
+// Law 4 without a solid: bounded cells are those that brute force closes, unbounded
+// ones have the same faces, edges and vertices.
+func TestLaw4BruteForceOpen(t *testing.T) {
+	start := func(c *polyhedron.Cell, _ Vec) { c.SetFarBox(0x1p24, polyhedron.Open, true) }
+	for name, sites := range sets(200) {
+		d := diagram(t, sites, Options{})
+		c := measure(t, d, All)
+		unbounded := 0
+		for i := range sites {
+			want := bruteForce(sites, i, start)
+			if !c.Bounded[i] {
+				unbounded++
+			}
+			if c.Farthest[i] > 1e6 && c.Bounded[i] {
+				continue // too far for this brute force
+			}
+			if c.Bounded[i] == want.IsOpen() {
+				t.Errorf("%s: cell %d bounded: %v, by brute force open: %v", name, i, c.Bounded[i], want.IsOpen())
+				continue
+			}
+			if c.Bounded[i] {
+				near(t, fmt.Sprintf("%s: volume of %d", name, i), c.Volume[i]/want.Volume(), 1, 1e-9)
+			}
+			s := want.Shape()
+			if int(c.Faces[i]) != s.Faces() || int(c.Edges[i]) != s.Edges || int(c.Vertices[i]) != s.Vertices {
+				t.Errorf("%s: cell %d has %d faces, %d edges, %d vertices, by brute force %+v", name, i, c.Faces[i], c.Edges[i], c.Vertices[i], s)
+			}
+		}
+		if unbounded < 4 {
+			t.Errorf("%s: %d unbounded cells", name, unbounded)
 		}
 	}
 }

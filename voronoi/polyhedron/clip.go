@@ -112,7 +112,9 @@ func (c *Cell) between(a, o, f, g int32) Vec {
 // refine sets p, which was interpolated between va and vo, from the three
 // planes that meet there if that is the more accurate place. Interpolation on an
 // edge of length L leaves an error of about ulp(L); solving leaves one of about
-// ulp(|p|) divided by the volume that the three unit normals span.
+// ulp(size) divided by the volume that the three unit normals span, where size is
+// the distance of the planes and of the place. A solution farther from p than p can
+// be wrong belongs to planes that depend on each other.
 func (c *Cell) refine(p, va, vo Vec, f, g int32) Vec {
 	long, near := largest(sub(va, vo)), largest(p)
 	if long <= 16*near {
@@ -129,8 +131,10 @@ func (c *Cell) refine(p, va, vo Vec, f, g int32) Vec {
 		Y: (float64(a.d*bc.Y) + float64(b.d*ca.Y) + float64(e.d*ab.Y)) / det,
 		Z: (float64(a.d*bc.Z) + float64(b.d*ca.Z) + float64(e.d*ab.Z)) / det,
 	}
-	spread := math.Abs(det) / (length(a.n) * length(b.n) * length(e.n))
-	if size := largest(q); size < float64(spread*long) && size <= long {
+	la, lb, le := length(a.n), length(b.n), length(e.n)
+	spread := math.Abs(det) / (la * lb * le)
+	size := max(largest(q), near, math.Abs(a.d)/la, math.Abs(b.d)/lb, math.Abs(e.d)/le)
+	if size < float64(spread*long) && largest(sub(q, p)) <= 0x1p-40*long {
 		return q
 	}
 	return p

@@ -79,11 +79,17 @@ func (c *Cell) placeFine(a, o, f, g int32) (v, low Vec) {
 	dx := double{c.v[o].X, c.low[o].X}.sub(double{c.v[a].X, c.low[a].X})
 	dy := double{c.v[o].Y, c.low[o].Y}.sub(double{c.v[a].Y, c.low[a].Y})
 	dz := double{c.v[o].Z, c.low[o].Z}.sub(double{c.v[a].Z, c.low[a].Z})
-	v, low = c.v[a], c.low[a]
-	for k, t := 0, sa/(sa-so); k < 3; k++ {
-		step := double{t, 0}
-		v, low = moved(v, low, dx.mul(step), dy.mul(step), dz.mul(step))
-		t = c.side(e, v, low) / (sa - so)
+	t := double{sa / (sa - so), 0}
+	for range 2 {
+		v, low = moved(c.v[a], c.low[a], dx.mul(t), dy.mul(t), dz.mul(t))
+		more := c.side(e, v, low) / (sa - so)
+		if !(math.Abs(more) < 0x1p-40) {
+			break // the edge lies in the plane, as far as can be told
+		}
+		t = t.add(double{more, 0})
+		if t.high < 0 || t.high > 1 {
+			break
+		}
 	}
 	return c.settleFine(v, low, &c.cuts[f], &c.cuts[g], e, largest(sub(c.v[a], c.v[o])))
 }

@@ -138,9 +138,9 @@ func (c *Cell) Area(i int) float64 {
 }
 
 // Shape counts faces, edges and vertices. Vertices joined by an edge shorter
-// than 1e-9 of its distance from the site are one vertex; so are those joined by
-// an edge of an uncounted face shorter than twice the root of the area that it
-// lacks to count; and a vertex counts if at least three counted faces meet in it. The edges then follow from Euler's relation, in
+// than 1e-9 of its distance from the site are one vertex; so are vertices of an
+// uncounted face no farther apart than twice the root of the area that a face needs
+// to count; and a vertex counts if at least three counted faces meet in it. The edges then follow from Euler's relation, in
 // which the Open faces take part with their own characteristic, so that a
 // half-space has no edge, a wedge one, and a slab none.
 func (c *Cell) Shape() Shape {
@@ -165,29 +165,42 @@ func (c *Cell) Shape() Shape {
 	return s
 }
 
-// merge unites the vertices that count as one.
+// merge unites the vertices that count as one: the ends of short edges, and those
+// of an uncounted face that lie together, neighbours on it or not (a face without
+// width can run round a corner and pass it twice).
 func (c *Cell) merge() {
 	c.class = zeroed(c.class, len(c.v))
 	for i := range c.class {
 		c.class[i] = int32(i)
 	}
 	for i := range c.of {
-		limit := 0.0
-		if !c.Counts(i) {
-			limit = crumbEdge * math.Sqrt(c.least[i])
-			if c.open && c.touches[i] { // a strip as long as the far box
-				limit = crumbEdge * openRound * c.rim
-			}
-		}
 		loop := c.loop[c.start[i]:c.start[i+1]]
-		a := loop[len(loop)-1]
-		for _, b := range loop {
-			p, q := c.v[a], c.v[b]
-			if largest(sub(p, q)) <= max(limit, edgeShare*max(largest(p), largest(q))) {
-				c.unite(a, b)
+		if c.Counts(i) {
+			a := loop[len(loop)-1]
+			for _, b := range loop {
+				c.uniteWithin(a, b, 0)
+				a = b
 			}
-			a = b
+			continue
 		}
+		limit := crumbEdge * math.Sqrt(c.least[i])
+		if c.open && c.touches[i] { // a strip as long as the far box
+			limit = crumbEdge * openRound * c.rim
+		}
+		for k, a := range loop {
+			for _, b := range loop[:k] {
+				c.uniteWithin(a, b, limit)
+			}
+		}
+	}
+}
+
+// uniteWithin unites two vertices that are no farther apart than the limit, or than
+// edgeShare of their distance from the site.
+func (c *Cell) uniteWithin(a, b int32, limit float64) {
+	p, q := c.v[a], c.v[b]
+	if largest(sub(p, q)) <= max(limit, edgeShare*max(largest(p), largest(q))) {
+		c.unite(a, b)
 	}
 }
 
