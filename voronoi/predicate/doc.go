@@ -30,6 +30,17 @@
 //  4. math/big, where a product could underflow or overflow or an expansion would
 //     outgrow its array.
 //
+// # Laws
+//
+// The tests refer to these numbers.
+//
+//  1. The sign is that of the exact polynomial of the given float64 values.
+//  2. An even permutation of the points keeps the sign of a determinant, an odd one
+//     turns it.
+//  3. The perturbed predicate agrees with the plain one where that is not 0, and its
+//     answer does not depend on the order of the corners.
+//  4. The tetrahedra with empty perturbed spheres are one proper triangulation.
+//
 // # Degenerate input
 //
 // Equal, collinear, coplanar and cospherical points are ordinary input: the answer

@@ -248,7 +248,7 @@ func TestSignsAgainstIntegers(t *testing.T) {
 func TestStagesAgree(t *testing.T) {
 	for k, f := range families {
 		r := rand.New(rand.NewPCG(uint64(k), 2))
-		for range min(f.n, 1000) {
+		for range min(f.n, 400) {
 			p := f.make(r)
 			a, b, c, d, e := p[0], p[1], p[2], p[3], p[4]
 			o, s := exactOrient3D(a, b, c, d), exactInSphere(a, b, c, d, e)

@@ -18,6 +18,7 @@ type node struct {
 // rings is a floor plan on its way from what was given to an arrangement of edges
 // that meet in common nodes only.
 type rings struct {
+	given [][]Vec2
 	rings [][]node
 	turn  []int   // +1 where the ring was given counter-clockwise, -1 where clockwise
 	snap  float64 // nodes and edges closer than this are one
@@ -36,7 +37,7 @@ const snapFactor = 0x1p-50
 
 // newRings cleans the given rings and makes them meet in common nodes.
 func newRings(given [][]Vec2) (*rings, error) {
-	r := &rings{}
+	r := &rings{given: given}
 	size := 0.0
 	for k, ring := range given {
 		for i, p := range ring {
@@ -275,11 +276,26 @@ func (r *rings) checkCrossings() error {
 				continue
 			}
 			if e := meet(s, t); e != nil {
+				e.Side, e.OtherSide = r.sideAt(e.Ring, e.Side, e.At), r.sideAt(e.OtherRing, e.OtherSide, e.At)
 				return e
 			}
 		}
 	}
 	return nil
+}
+
+// sideAt is the given side on which at lies, if an edge that began as this side does:
+// where straight corners were dropped the edge is made of several.
+func (r *rings) sideAt(k, side int, at Vec2) int {
+	ring := r.given[k]
+	for range ring {
+		a, b := ring[side], ring[(side+1)%len(ring)]
+		if d := sub2(b, a); dot2(d, d) > 0 && dot2(sub2(at, a), d) <= dot2(d, d) {
+			break
+		}
+		side = (side + 1) % len(ring)
+	}
+	return side
 }
 
 func meet(s, t *span) *Error {
