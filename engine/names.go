@@ -5,6 +5,7 @@ import (
 	"slices"
 	"sort"
 	"strings"
+	"unicode"
 
 	"nearcell/catalog"
 	"nearcell/catalog/column"
@@ -79,32 +80,38 @@ func (s *Session) schemaOf(with, source string) (column.Schema, bool) {
 // cutRelation takes the noun of a relation from the text behind it.
 func cutRelation(source string) (noun, rest string, ok bool) {
 	fields := strings.Fields(source)
-	if len(fields) < 3 || !strings.EqualFold(fields[1], "OF") {
+	if len(fields) < 2 || !strings.EqualFold(fields[1], "OF") {
 		return "", "", false
 	}
-	_, rest, _ = strings.Cut(source, fields[1])
-	return fields[0], strings.TrimSpace(rest), true
+	behindNoun := strings.TrimSpace(strings.TrimSpace(source)[len(fields[0]):])
+	return fields[0], strings.TrimSpace(behindNoun[len(fields[1]):]), true
 }
 
 // firstOperand is the name or the bracket that a text begins with.
 func firstOperand(text string) string {
-	depth := 0
+	depth, mark := 0, rune(0)
 	for i, r := range text {
 		switch {
+		case mark != 0:
+			if r == mark {
+				mark = 0
+			}
+		case r == '\'' || r == '"':
+			mark = r
 		case r == '(':
 			depth++
 		case r == ')':
 			if depth--; depth <= 0 {
 				return text[:i+1]
 			}
-		case depth == 0 && (r == ' ' || r == '\t' || r == '\n'):
+		case depth == 0 && unicode.IsSpace(r):
 			return text[:i]
 		}
 	}
 	return text
 }
 
-// Nouns are the relations that have rows, and those the language has besides.
+// Nouns are the relations that have rows.
 func Nouns() []string {
 	var names []string
 	for _, d := range relation.All() {

@@ -56,7 +56,7 @@ func (s *Session) showTable(st *statement, t *column.Table) error {
 // rows, and below them how many there were.
 func (s *Session) show(st *statement, fill func(present.Writer) error) error {
 	out := &lateSeparator{w: s.o.Out, pending: s.results > 0}
-	w, err := present.New(s.o.Format, out, present.Options{Digits: s.digits})
+	w, err := present.New(s.o.Format, out, s.tableOptions())
 	if err != nil {
 		return err
 	}
@@ -68,10 +68,7 @@ func (s *Session) show(st *statement, fill func(present.Writer) error) error {
 		return err
 	}
 	s.results++
-	if unwritten > 0 {
-		st.notes.Add(note.Note, note.Output,
-			"the first %s are printed; SAVE … TO 'file.csv' or --as csv writes all", plural(rows-unwritten, "row"))
-	}
+	s.noteLeftOut(st, w, rows, unwritten)
 	s.say("%s, %s", plural(rows, "row"), st.seconds())
 	return nil
 }

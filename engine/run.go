@@ -57,7 +57,7 @@ func (s *Session) RunFile(ctx context.Context, name string) error {
 }
 
 // settings are the names that SET knows.
-var settings = []string{"DIGITS"}
+var settings = []string{"DIGITS", "ROWS"}
 
 var plannedSettings = []string{"CACHE"}
 
@@ -66,18 +66,9 @@ func (s *Session) set(st *statement, t *lang.Set) error {
 	word := strings.ToUpper(t.Name.Text)
 	switch {
 	case word == "DIGITS":
-		if t.Value == nil {
-			return problem.New("setting", st.at(t), "SET DIGITS takes a whole number from 1 to %d", present.MaxDigits)
-		}
-		v, err := s.constant(st, t.Value)
-		if err != nil {
-			return err
-		}
-		if v.Null || v.Type != column.Integer || v.I < 1 || v.I > present.MaxDigits {
-			return problem.New("setting", st.at(t.Value), "SET DIGITS takes a whole number from 1 to %d", present.MaxDigits)
-		}
-		s.digits = int(v.I)
-		return nil
+		return s.setCount(st, t, &s.digits, present.MaxDigits)
+	case word == "ROWS":
+		return s.setCount(st, t, &s.rowLimit, present.MaxTableRows)
 	case slices.Contains(plannedSettings, word):
 		return problem.NotThereYet(st.at(t), "SET "+word)
 	}
@@ -86,6 +77,25 @@ func (s *Session) set(st *statement, t *lang.Set) error {
 		return p.WithHint("did you mean %s?", near)
 	}
 	return p.WithHint("SET knows %s", listed(settings, 10))
+}
+
+// setCount sets a whole number from 1 to most.
+func (s *Session) setCount(st *statement, t *lang.Set, to *int, most int64) error {
+	refusal := func(at lang.Node) error {
+		return problem.New("setting", st.at(at), "SET %s takes a whole number from 1 to %d", strings.ToUpper(t.Name.Text), most)
+	}
+	if t.Value == nil {
+		return refusal(t)
+	}
+	v, err := s.constant(st, t.Value)
+	if err != nil {
+		return err
+	}
+	if v.Null || v.Type != column.Integer || v.I < 1 || v.I > most {
+		return refusal(t.Value)
+	}
+	*to = int(v.I)
+	return nil
 }
 
 // Check parses and binds scripts and computes nothing. Statements that create

@@ -31,6 +31,10 @@ type Options struct {
 	KeepGoing bool           // go on after a failing statement
 	Quiet     bool           // no confirmations, no row counts; notes stay
 	Progress  func(done, total int)
+	// Screen gives the characters of a line and the rows that tables may take
+	// where people read them, 0: no limit. It is asked for every result; nil is
+	// for files and pipes, which get everything.
+	Screen func() (width, rows int)
 }
 
 // Session is one user at one catalog. It is not safe for concurrent use.
@@ -41,6 +45,7 @@ type Session struct {
 	fixed     map[string]bool         // set from outside (--let): LET does not change them
 	diagrams  *diagram.Store
 	digits    int
+	rowLimit  int      // of tables on a screen, 0: what the screen says
 	results   int      // printed so far
 	running   []string // scripts that RUN one another, for cycles
 	checkOnly bool

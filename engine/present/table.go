@@ -25,6 +25,7 @@ type tableWriter struct {
 	schema column.Schema
 	cells  [][]string
 	rows   int64
+	out    []string // names of columns that did not fit
 }
 
 func (t *tableWriter) Begin(s column.Schema) error {
@@ -35,7 +36,7 @@ func (t *tableWriter) Begin(s column.Schema) error {
 func (t *tableWriter) Batch(b *column.Batch) error {
 	return eachRow(b, func(row int) error {
 		t.rows++
-		if t.rows > MaxTableRows {
+		if t.rows > t.most() {
 			return nil
 		}
 		line := make([]string, len(b.Cols))
@@ -54,7 +55,19 @@ func (t *tableWriter) End() (rows, unwritten int64, err error) {
 	return t.rows, t.rows - int64(len(t.cells)), err
 }
 
+// most is how many rows are kept.
+func (t *tableWriter) most() int64 {
+	if t.o.Rows > 0 && t.o.Rows < MaxTableRows {
+		return int64(t.o.Rows)
+	}
+	return MaxTableRows
+}
+
+// LeftOut implements Fitted.
+func (t *tableWriter) LeftOut() []string { return t.out }
+
 func (t *tableWriter) print() error {
+	t.fit()
 	var buffer bytes.Buffer
 	table := tablewriter.NewTable(&buffer, tableOptions(t.schema)...)
 	table.Header(headings(t.schema))

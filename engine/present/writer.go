@@ -36,6 +36,14 @@ type Options struct {
 	Digits   int  // significant digits of a table, 0: 6
 	Units    bool // CSV: units in the heading, volume [m^3]
 	Formulas bool // CSV: texts that a spreadsheet would run as formulas are quoted
+	Width    int  // table: characters of a line, 0: no limit
+	Rows     int  // table: rows that are printed at most, 0: MaxTableRows
+}
+
+// Fitted is a writer that leaves columns out where they do not fit.
+type Fitted interface {
+	// LeftOut are the names of the columns that End has left out.
+	LeftOut() []string
 }
 
 // New is a writer of the format.
