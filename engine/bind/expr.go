@@ -128,8 +128,11 @@ func (x *exprs) alias(c *lang.Column, err error) (expr.Expr, error) {
 	}
 	for _, item := range x.hidden {
 		if !item.Alias.IsZero() && c.Name.Matches(item.Alias.Text) {
-			return nil, problem.New("no-column", x.at(c), "'%s' names an item of SELECT, which %s does not know yet", c.Name.Text, x.clause).
-				WithHint("repeat the expression, or put the query into FROM (SELECT …)")
+			p := problem.New("no-column", x.at(c), "'%s' names an item of SELECT, which %s does not know yet", c.Name.Text, x.clause)
+			if x.clause == "SELECT" {
+				p.Message = "'" + c.Name.Text + "' names another item of SELECT, and items do not know each other"
+			}
+			return nil, p.WithHint("repeat the expression, or put the query into FROM (SELECT …)")
 		}
 	}
 	return nil, err

@@ -136,7 +136,7 @@ func (b *binder) selectRows(s *lang.Select, order []*lang.Key) (plan.Node, error
 
 // exprs binds the expressions of a clause above WHERE.
 func (c *selection) exprs(clause string) *exprs {
-	x := &exprs{binder: c.binder, scope: c.from, clause: clause, group: c.group}
+	x := &exprs{binder: c.binder, scope: c.from, clause: clause, group: c.group, hidden: c.s.Items}
 	if clause != "SELECT" {
 		x.aliases = c.byAlias
 	}
@@ -165,7 +165,7 @@ func (c *selection) grouped(order []*lang.Key) error {
 		if err != nil {
 			return err
 		}
-		x := &exprs{binder: c.binder, scope: c.from, clause: "GROUP BY"}
+		x := &exprs{binder: c.binder, scope: c.from, clause: "GROUP BY", hidden: c.s.Items}
 		k, err := x.bind(written)
 		if err != nil {
 			return err

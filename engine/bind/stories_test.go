@@ -136,22 +136,11 @@ func story(t *testing.T, env *Env, d *datadriven.TestData) string {
 		if err != nil {
 			return "syntax: " + err.Error()
 		}
-		made, err := Solid(env, s)
+		text, err := solidStory(t, env, d, s)
 		if err != nil {
 			return fail(err)
 		}
-		own, err := Canonical(env, s)
-		if err != nil {
-			return fail(err)
-		}
-		again, err := lang.ParseSolid(lang.Print(own))
-		if err != nil {
-			return fail(err)
-		}
-		if twice, err := Solid(&Env{Catalog: catalog.Memory()}, again); err != nil || twice.Key() != made.Key() {
-			t.Errorf("%s: the canonical text makes another solid (%v)", d.Pos, err)
-		}
-		return fmt.Sprintf("%.10g m³\n%s", made.Volume(), lang.Print(own))
+		return text
 	case "position":
 		e, err := lang.ParseExpr(d.Input)
 		if err != nil {
@@ -168,6 +157,26 @@ func story(t *testing.T, env *Env, d *datadriven.TestData) string {
 		return fmt.Sprint(err)
 	}
 	return "unknown command"
+}
+
+// solidStory makes the solid, and once more from its canonical text.
+func solidStory(t *testing.T, env *Env, d *datadriven.TestData, s lang.Solid) (string, error) {
+	made, err := Solid(env, s)
+	if err != nil {
+		return "", err
+	}
+	own, err := Canonical(env, s)
+	if err != nil {
+		return "", err
+	}
+	again, err := lang.ParseSolid(lang.Print(own))
+	if err != nil {
+		return "", err
+	}
+	if twice, err := Solid(&Env{Catalog: catalog.Memory()}, again); err != nil || twice.Key() != made.Key() {
+		t.Errorf("%s: the canonical text makes another solid (%v)", d.Pos, err)
+	}
+	return fmt.Sprintf("%.10g m³\n%s", made.Volume(), lang.Print(own)), nil
 }
 
 // rendered tells whether an error has a place in a text.

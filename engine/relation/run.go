@@ -3,6 +3,7 @@ package relation
 import (
 	"context"
 	"errors"
+	"math"
 	"strconv"
 
 	"nearcell/catalog/column"
@@ -189,12 +190,12 @@ func (s *sites) partDone(i int) {
 	}
 }
 
-// manySheetCells is from how many cells on a sheet of sites is worth a note.
-const manySheetCells = 2000
-
-// sheet says why the cells of a flat set of sites take long.
+// sheet says why the cells of a flat set of sites take long, where it is long
+// enough to ask why: a cell on a sheet takes some microseconds for every row of
+// sites across it.
 func (s *sites) sheet(f voronoi.Facts, cells int) {
-	if !f.Flat || cells < manySheetCells {
+	const long = 3e5 // about a second
+	if !f.Flat || float64(cells)*math.Sqrt(float64(f.Distinct)) < long {
 		return
 	}
 	s.env.Notes.Add(note.Note, note.Slowness, "the sites of %s form a sheet (%s by %s, %s thick): each of its cells takes many times as long as others",

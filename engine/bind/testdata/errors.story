@@ -561,3 +561,31 @@ SELECT * FROM l
 input:2: the views and the names of WITH unfold into more than 5000 sources (CREATE TABLE … AS (query) keeps a step's rows)
     d AS (SELECT c.id FROM c JOIN c c2 USING (id)), e AS (SELECT d.id FROM d JOIN d d2 USING (id)), f AS (SELECT…
                            ^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT temp * 2 AS twice, twice + 1 FROM hall
+----
+input:1: 'twice' names another item of SELECT, and items do not know each other (repeat the expression, or put the query into FROM (SELECT …))
+  SELECT temp * 2 AS twice, twice + 1 FROM hall
+                            ^^^^^
+
+plan
+SELECT temp * 2 AS twice, AVG(twice) FROM hall
+----
+input:1: the column 'temp' has many values where SELECT has one row for each group (an aggregate makes one row of all: write GROUP BY temp, or take AVG(temp), MAX(temp) …)
+  SELECT temp * 2 AS twice, AVG(twice) FROM hall
+         ^^^^
+
+plan
+SELECT temp * 2 AS twice, COUNT(*) FROM hall GROUP BY FLOOR(twice)
+----
+input:1: 'twice' names an item of SELECT, which GROUP BY does not know yet (repeat the expression, or put the query into FROM (SELECT …))
+  SELECT temp * 2 AS twice, COUNT(*) FROM hall GROUP BY FLOOR(twice)
+                                                              ^^^^^
+
+plan
+SELECT id FROM hall GROUP BY POINT(x, y, z)
+----
+input:1: GROUP BY cannot order points (group by the coordinates)
+  SELECT id FROM hall GROUP BY POINT(x, y, z)
+                               ^^^^^^^^^^^^^^
