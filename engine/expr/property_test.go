@@ -91,7 +91,14 @@ func drawNode(t *rapid.T, typ column.Type, depth int) (Expr, error) {
 	sub := func(typ column.Type) Expr { return drawExpr(t, typ, depth) }
 	none := problem.Place{}
 	if rapid.IntRange(0, 3).Draw(t, "choice") == 0 {
-		switch rapid.IntRange(0, 2).Draw(t, "which") {
+		switch rapid.IntRange(0, 3).Draw(t, "which") {
+		case 3:
+			of := rapid.SampledFrom([]column.Type{column.Integer, column.Text, column.Real}).Draw(t, "of")
+			other := of
+			if of == column.Real {
+				other = column.Integer
+			}
+			return NewCase(sub(of), []When{{sub(of), sub(typ)}, {sub(other), sub(typ)}}, nil, none)
 		case 0:
 			whens := []When{{sub(column.Boolean), sub(typ)}, {sub(column.Boolean), sub(typ)}}
 			return NewCase(nil, whens, sub(typ), none)
@@ -163,6 +170,13 @@ func drawCondition(t *rapid.T, sub func(column.Type) Expr) (Expr, error) {
 	case 5:
 		return NewBetween(sub(of), sub(other), sub(of), not, none)
 	case 6:
+		if rapid.Bool().Draw(t, "constants") {
+			list := make([]Expr, rapid.IntRange(1, 12).Draw(t, "items"))
+			for i := range list {
+				list[i] = NewConst(rapid.SampledFrom(valuePool(of)).Draw(t, "item"), none)
+			}
+			return NewIn(sub(of), list, not, none)
+		}
 		return NewIn(sub(of), []Expr{sub(other), sub(of), sub(other)}, not, none)
 	case 7:
 		return NewLike(sub(column.Text), sub(column.Text), nil, not, none)

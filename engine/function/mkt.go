@@ -145,7 +145,7 @@ func (a *kinetic) Result(groups int) (column.Vector, error) {
 		}
 		mean := s.s.over(by).value()
 		// ln of the mean rate relative to that at 25 °C, times Tref·R/ΔH
-		u := (math.Log(mean) + float64(s.exponent)*math.Ln2) * referenceMKT / a.perKelvin
+		u := (math.Log(mean) + float64(float64(s.exponent)*math.Ln2)) * referenceMKT / a.perKelvin
 		v.F[g] = 25 + referenceMKT*u/(1-u)
 		if v.F[g]-v.F[g] != 0 {
 			return v, &GroupFault{Group: g, Code: "no-value", Message: "MKT has no finite value"}
