@@ -74,7 +74,7 @@ func (s *aggregateSink) newPart() *aggregatePart {
 		p.calls[i] = newCallState(&s.node.Calls[i])
 	}
 	if s.watch != nil {
-		for i, cells := range cellCounts(s.node) {
+		for i, cells := range s.cellCounts() {
 			p.calls[i].cells = cells
 		}
 	}
@@ -239,7 +239,7 @@ func (s *aggregateSink) say() {
 	s.weightNotes()
 	s.watch.say(s.env.Notes)
 	for _, c := range s.all.calls {
-		c.cells.say(s.env.Notes, c.call)
+		c.cells.say(s.env.Notes, c.call, s.all.keys.n)
 	}
 }
 

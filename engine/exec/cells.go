@@ -3,6 +3,8 @@ package exec
 import (
 	"context"
 	"errors"
+	"fmt"
+	"slices"
 	"sync/atomic"
 
 	"nearcell/catalog/column"
@@ -21,6 +23,7 @@ type removal struct {
 // sums and weights. It is said only where it happened.
 type cellWatch struct {
 	removals []*removal
+	shown    map[*plan.Relation]*shownRows
 }
 
 // watch starts to count the removals that bear on an aggregate; it must be
@@ -29,7 +32,16 @@ func (r *runner) watch(n *plan.Aggregate) *cellWatch {
 	if r.env.Notes == nil {
 		return nil
 	}
-	w := &cellWatch{}
+	w := &cellWatch{shown: map[*plan.Relation]*shownRows{}}
+	for _, m := range plan.CellSums(n) {
+		if r.shown[m.Relation] == nil {
+			if r.shown == nil {
+				r.shown = map[*plan.Relation]*shownRows{}
+			}
+			r.shown[m.Relation] = &shownRows{}
+		}
+		w.shown[m.Relation] = r.shown[m.Relation]
+	}
 	for _, m := range plan.Removals(n) {
 		c := &removal{Removal: m}
 		w.removals = append(w.removals, c)
@@ -77,36 +89,64 @@ func (w *cellWatch) say(notes *note.Notes) {
 	}
 }
 
+// shownRows is what a relation gave: how many rows, of how many partitions.
+type shownRows struct {
+	rows, parts atomic.Int64
+}
+
+// countParts counts the partitions that have rows to show.
+func (s *shownRows) countParts(n *plan.Relation, sites *column.Table, wanted []uint64) {
+	var cols []column.Vector
+	var types []column.Type
+	for _, c := range n.Bound.Clauses.Each {
+		cols = append(cols, sites.Cols[c])
+		types = append(types, sites.Cols[c].Type)
+	}
+	t := newKeyTable(types)
+	newKeyReader(t).put(cols, wanted, sites.N, make([]int32, sites.N))
+	s.parts.Store(int64(t.n))
+}
+
 // cellCount counts the rows and the different cells behind a sum of measures.
+// Where the rows do not carry what tells cells apart, it counts the rows of
+// each group instead.
 type cellCount struct {
 	sum   plan.CellSum
+	shown *shownRows
 	cells *keyTable // group, then what tells cells apart
 	read  *keyReader
 	rows  int64
+	most  []int64 // rows by group, where cells cannot be told apart
 	ids   []int32
 	cols  []column.Vector
 }
 
 // cellCounts are the counts that a part keeps, by the number of the call.
-func cellCounts(n *plan.Aggregate) map[int]*cellCount {
-	schema := n.Input.Schema()
+func (s *aggregateSink) cellCounts() map[int]*cellCount {
+	schema := s.node.Input.Schema()
 	counts := map[int]*cellCount{}
-	for _, s := range plan.CellSums(n) {
-		if s.Identity == nil {
-			continue
+	for _, m := range plan.CellSums(s.node) {
+		c := &cellCount{sum: m, shown: s.watch.shown[m.Relation]}
+		if m.Identity != nil {
+			types := []column.Type{column.Integer}
+			for _, at := range m.Identity {
+				types = append(types, schema[at].Type)
+			}
+			c.cells = newKeyTable(types)
+			c.read = newKeyReader(c.cells)
 		}
-		types := []column.Type{column.Integer}
-		for _, c := range s.Identity {
-			types = append(types, schema[c].Type)
-		}
-		t := newKeyTable(types)
-		counts[s.Call] = &cellCount{sum: s, cells: t, read: newKeyReader(t)}
+		counts[m.Call] = c
 	}
 	return counts
 }
 
 func (c *cellCount) add(b *column.Batch, on []uint64, groups []int32) {
 	if c == nil {
+		return
+	}
+	c.rows += int64(countOn(on, b.N))
+	if c.cells == nil {
+		forEachOn(on, b.N, func(i int) { c.countIn(groups[i], 1) })
 		return
 	}
 	group := column.Vector{Type: column.Integer, N: b.N, I: make([]int64, b.N)}
@@ -117,20 +157,34 @@ func (c *cellCount) add(b *column.Batch, on []uint64, groups []int32) {
 	}
 	c.ids = room(c.ids, b.N)
 	c.read.put(c.cols, on, b.N, c.ids)
-	c.rows += int64(countOn(on, b.N))
+}
+
+func (c *cellCount) countIn(group int32, rows int64) {
+	for int(group) >= len(c.most) {
+		c.most = append(c.most, 0)
+	}
+	c.most[group] += rows
 }
 
 func (c *cellCount) merge(o *cellCount, to []int32) {
 	if c == nil {
 		return
 	}
-	c.cells.absorb(o.cells, to)
 	c.rows += o.rows
+	if c.cells != nil {
+		c.cells.absorb(o.cells, to)
+		return
+	}
+	for g, rows := range o.most {
+		c.countIn(to[g], rows)
+	}
 }
 
-// say warns where a group had a cell more than once.
-func (c *cellCount) say(notes *note.Notes, call *plan.Call) {
-	if c == nil || c.rows == int64(c.cells.n) {
+// say warns where a group had a cell more than once: where it met one twice, or
+// must have, since there were more partitions than groups or a group had more
+// rows than there are cells.
+func (c *cellCount) say(notes *note.Notes, call *plan.Call, groups int) {
+	if c == nil {
 		return
 	}
 	b := c.sum.Relation.Bound
@@ -138,8 +192,19 @@ func (c *cellCount) say(notes *note.Notes, call *plan.Call) {
 	if len(b.Clauses.Each) > 0 {
 		way = "GROUP BY the columns of FOR EACH gives each partition its own sum"
 	}
-	notes.Add(note.Warning, note.Rows, "%s adds up %d rows of %s that are only %d different ones in their group: the same space counts more than once (%s)",
-		call.Text, c.rows, b.Title(), c.cells.n, way)
+	what := ""
+	switch {
+	case c.cells != nil && c.rows > int64(c.cells.n):
+		what = fmt.Sprintf("that are only %d different ones in their group", c.cells.n)
+	case c.cells == nil && len(b.Clauses.Each) > 0 && c.shown.parts.Load() > int64(groups):
+		what = fmt.Sprintf("of %d partitions in %d %s", c.shown.parts.Load(), groups, plural(float64(groups), "group"))
+	case c.cells == nil && len(c.most) > 0 && slices.Max(c.most) > c.shown.rows.Load():
+		what = fmt.Sprintf("of which there are only %d", c.shown.rows.Load())
+	default:
+		return
+	}
+	notes.Add(note.Warning, note.Rows, "%s adds up %d rows of %s %s: the same space counts more than once (%s)",
+		call.Text, c.rows, b.Title(), what, way)
 }
 
 // placed gives an error of a relation its place.

@@ -172,8 +172,10 @@ func Collect(ctx context.Context, env *Env, n plan.Node) (*column.Table, error) 
 
 // runner opens the nodes of one plan.
 type runner struct {
-	env      *Env
-	removals map[plan.Node]*removal // steps that an aggregate above wants counted
+	env *Env
+	// what aggregates above want counted
+	removals map[plan.Node]*removal
+	shown    map[*plan.Relation]*shownRows
 }
 
 func (r *runner) collect(ctx context.Context, n plan.Node) (*column.Table, error) {

@@ -13,10 +13,12 @@ type keyReader struct {
 	order []int32   // the active rows
 }
 
-// codeMap remembers what the codes of the last dictionary mean in the table.
+// codeMap remembers what the codes of the last dictionary mean in the table. A
+// reader puts or finds, it does not do both: for a table of one text, put keeps
+// the key here and find the table's code.
 type codeMap struct {
 	from *column.Dict
-	to   []int32 // code in the table, unseen, absent
+	to   []int32 // code in the table (or key), unseen, absent
 }
 
 const (
@@ -38,7 +40,7 @@ func (r *keyReader) put(cols []column.Vector, on []uint64, n int, keys []int32) 
 		}
 		clear(keys[:n])
 	case t.oneText():
-		r.eachCode(0, &cols[0], on, n, true, func(i int, code int32) { keys[i] = t.putText(code) })
+		r.putText(&cols[0], on, n, keys)
 	case len(t.types) == 1 && t.width == 2:
 		r.putSingle(&cols[0], on, n, keys)
 	default:
@@ -80,6 +82,52 @@ func anySet(words []uint64) bool {
 		}
 	}
 	return false
+}
+
+// putText is put for a single text column: what the reader remembers of a code
+// is its key at once.
+func (r *keyReader) putText(v *column.Vector, on []uint64, n int, keys []int32) {
+	t := r.table
+	if v.Type == column.Null {
+		forEachOn(on, n, func(i int) { keys[i] = t.putText(unseen) })
+		return
+	}
+	m := r.remembered(0, v.Dict)
+	one := func(i int) {
+		if v.Valid != nil && !column.Bit(v.Valid, i) {
+			keys[i] = t.putText(unseen)
+			return
+		}
+		code := v.C[i]
+		if m.to[code] == unseen {
+			m.to[code] = t.putText(t.texts[0].code(v.Dict.Texts[code]))
+		}
+		keys[i] = m.to[code]
+	}
+	if on != nil || v.Valid != nil {
+		forEachOn(on, n, one)
+		return
+	}
+	for i, code := range v.C[:n] {
+		if k := m.to[code]; k >= 0 {
+			keys[i] = k
+		} else {
+			one(i)
+		}
+	}
+}
+
+// remembered is what column c's reader knows of the codes of a dictionary.
+func (r *keyReader) remembered(c int, d *column.Dict) *codeMap {
+	m := &r.remap[c]
+	if m.from != d {
+		m.from = d
+		m.to = room(m.to, len(d.Texts))
+		for i := range m.to {
+			m.to[i] = unseen
+		}
+	}
+	return m
 }
 
 // putSingle is put for one column that is neither a text nor a point.
@@ -210,14 +258,7 @@ func (r *keyReader) eachCode(c int, v *column.Vector, on []uint64, n int, adding
 		forEachOn(on, n, func(i int) { f(i, unseen) })
 		return
 	}
-	m := &r.remap[c]
-	if m.from != v.Dict {
-		m.from = v.Dict
-		m.to = room(m.to, len(v.Dict.Texts))
-		for i := range m.to {
-			m.to[i] = unseen
-		}
-	}
+	m := r.remembered(c, v.Dict)
 	texts := r.table.texts[c]
 	forEachOn(on, n, func(i int) {
 		if v.Valid != nil && !column.Bit(v.Valid, i) {

@@ -119,6 +119,26 @@ func expectNotes(t *testing.T, n plan.Node, want ...string) {
 	}
 }
 
+// expectRules is expectNotes for what only the rules can tell.
+func expectRules(t *testing.T, n plan.Node, want ...string) {
+	t.Helper()
+	better, err := plan.Optimise(n)
+	if err != nil {
+		t.Fatal(err)
+	}
+	env := testEnv(0, 0)
+	if _, err := run(t, env, better); err != nil {
+		t.Fatal(err)
+	}
+	var said []string
+	for _, l := range env.Notes.Lines() {
+		said = append(said, l.Level.String()+": "+l.Text)
+	}
+	if d := cmp.Diff(want, said); d != "" {
+		t.Error(d)
+	}
+}
+
 // The weights 1, 2, 3, 3.5, 0.5 sum to 10 and their squares to 26.5: n_eff is
 // 100 / 26.5 = 3.77 and the largest share 35 % (computed by hand).
 func TestWeightNotes(t *testing.T) {
@@ -206,6 +226,18 @@ func TestRepeatedCells(t *testing.T) {
 	// the cells on the other side of the join
 	swapped := &plan.Join{Left: sites(), Right: cells, LeftKeys: columns(sites().Fields, siteID), RightKeys: columns(cells.Schema(), siteID)}
 	expectNotes(t, aggregate(swapped, nil, calls(swapped.Schema(), "SUM", len(sites().Fields)+siteVolume)[0]), repeated)
+	// behind views that drop the identifier
+	const each = "GROUP BY the columns of FOR EACH gives each partition its own sum)"
+	view := &plan.Project{Input: r, Exprs: columns(schema, siteT, siteVolume), Fields: fields(schema, siteT, siteVolume)}
+	expectNotes(t, aggregate(view, nil, calls(view.Fields, "SUM", 1)[0]), "warning: SUM(volume) adds up 10 rows of CROWD OF sites "+
+		"of 2 partitions in 1 group: the same space counts more than once ("+each)
+	expectNotes(t, aggregate(view, columns(view.Fields, 0), calls(view.Fields, "SUM", 1)[0]))
+	instant := where(view, is(view.Fields, 0, lang.Equals, column.Value{Type: column.Timestamp}))
+	expectRules(t, aggregate(instant, nil, calls(view.Fields, "SUM", 1)[0]))
+	view = &plan.Project{Input: join, Exprs: columns(both, siteVolume, logT), Fields: fields(both, siteVolume, logT)}
+	expectNotes(t, aggregate(view, nil, calls(view.Fields, "SUM", 0)[0]), strings.Replace(repeated,
+		"that are only 5 different ones in their group", "of which there are only 5", 1))
+	expectNotes(t, aggregate(view, columns(view.Fields, 1), calls(view.Fields, "SUM", 0)[0]))
 	// a join that repeats nothing
 	once := &plan.Join{Left: cells, Right: first, LeftKeys: join.LeftKeys, RightKeys: join.RightKeys}
 	expectNotes(t, aggregate(once, nil, calls(both, "SUM", siteVolume)[0]))

@@ -161,7 +161,11 @@ func (r *runner) openRelation(ctx context.Context, n *plan.Relation) (*pipeline,
 	if err != nil {
 		return nil, placed(err, n)
 	}
-	return sourceOnly(&rowSource{node: n, rows: rows, schema: n.Schema()}), nil
+	shown := r.shown[n]
+	if shown != nil {
+		shown.countParts(n, sites, wanted)
+	}
+	return sourceOnly(&rowSource{node: n, rows: rows, schema: n.Schema(), shown: shown}), nil
 }
 
 // wanted is the set of sites for which the pushed-down condition is TRUE.
@@ -197,6 +201,7 @@ type rowSource struct {
 	node   *plan.Relation
 	rows   relation.Rows
 	schema column.Schema
+	shown  *shownRows // nil: nobody asks
 }
 
 func (s *rowSource) Schema() column.Schema { return s.schema }
@@ -211,6 +216,9 @@ func (s *rowSource) Read(ctx context.Context, w *Worker, _ int, emit Emit) error
 		}
 		w.begin(row)
 		row += int64(b.N)
+		if s.shown != nil {
+			s.shown.rows.Add(int64(b.N))
+		}
 		return emit(b)
 	})
 	return placed(err, s.node)

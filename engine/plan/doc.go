@@ -60,6 +60,7 @@
 //
 // Joins are not reordered: the right side is the one kept in memory. Conditions
 // do not move through groups to their keys. A measure counts as lost or repeated
-// only as far as its column is handed through unchanged; a sum whose rows no
-// longer carry the site's identifier (a view without it) is not checked.
+// only as far as its column is handed through unchanged. Behind a view without
+// the site's identifier a repeated cell is only noticed where the numbers of rows
+// and partitions leave no other way.
 package plan
