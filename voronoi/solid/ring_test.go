@@ -8,6 +8,7 @@ import (
 	"slices"
 	"testing"
 
+	"nearcell/voronoi/polyhedron"
 	"nearcell/voronoi/predicate"
 )
 
@@ -237,5 +238,58 @@ func checkReversed(t *testing.T, s *Prism, outer []Vec2, holes [][]Vec2) {
 	}
 	if o.Key() != s.Key() || o.Facts() != s.Facts() {
 		t.Fatalf("%v, %v: reversed it has %+v, not %+v", outer, holes, o.Facts(), s.Facts())
+	}
+}
+
+// TestOddNumbers: coordinates at the ends of the range are refused or give a solid with
+// a finite volume, and never a panic.
+func TestOddNumbers(t *testing.T) {
+	odd := []float64{0, math.Copysign(0, -1), 5e-324, -5e-324, 1e-300, 1e-150, 1e-30, 1, math.Nextafter(1, 2), -1, 1e16, 1e30, 1e50, -1e50, 1.1e50, math.MaxFloat64, math.Inf(1), math.NaN()}
+	r := rand.New(rand.NewPCG(14, 1))
+	accepted := 0
+	for range 20000 {
+		limit := len(odd)
+		if r.IntN(4) != 0 {
+			limit -= 4
+		}
+		draw := func() float64 { return odd[r.IntN(limit)] }
+		var ring, hole []Vec2
+		for range 3 + r.IntN(4) {
+			ring = append(ring, Vec2{X: draw(), Y: draw()})
+		}
+		var holes [][]Vec2
+		if r.IntN(2) == 0 {
+			for range 3 + r.IntN(2) {
+				hole = append(hole, Vec2{X: draw(), Y: draw()})
+			}
+			holes = append(holes, hole)
+		}
+		s, err := NewPrism(ring, holes, draw(), draw())
+		if err != nil {
+			var f *Error
+			if !errors.As(err, &f) {
+				t.Fatalf("%v, %v: %v", ring, holes, err)
+			}
+			continue
+		}
+		accepted++
+		if v, a := s.Volume(), s.Area(); !(v > 0 && a > 0) || math.IsInf(v, 0) || math.IsInf(a, 0) {
+			t.Fatalf("%v, %v: volume %v, area %v", ring, holes, v, a)
+		}
+		lo, hi := s.Bounds()
+		p := Vec{X: lo.X/2 + hi.X/2, Y: lo.Y/2 + hi.Y/2, Z: lo.Z/2 + hi.Z/2}
+		var c polyhedron.Cell
+		c.SetBox(sub3(lo, p), sub3(hi, p), [6]int32{-1, -1, -1, -1, -1, -1})
+		var w Work
+		var m Measures
+		if err := s.Measure(&c, p, everything, &w, &m); err != nil {
+			t.Fatal(err)
+		}
+		if !near(m.Volume, s.Volume(), 1e-9*s.Volume()) || !near(m.Walls, s.Area(), 1e-6*s.Area()) {
+			t.Fatalf("%v, %v: the solid measures itself as %v and %v, not %v and %v", ring, holes, m.Volume, m.Walls, s.Volume(), s.Area())
+		}
+	}
+	if accepted < 200 {
+		t.Errorf("only %d accepted", accepted)
 	}
 }
