@@ -92,6 +92,8 @@ func random(n int, seed uint64) []Vec {
 	return sites
 }
 
+// The generators forbid fused products too: all builds are to get the same sites.
+
 // clustered are n sites in ten tight clusters in the unit cube.
 func clustered(n int, seed uint64) []Vec {
 	r := rand.New(rand.NewPCG(seed, 2))
@@ -99,7 +101,7 @@ func clustered(n int, seed uint64) []Vec {
 	sites := make([]Vec, n)
 	for i := range sites {
 		c := centres[i%10]
-		on := func(x float64) float64 { return min(1, max(0, x+0.02*r.NormFloat64())) }
+		on := func(x float64) float64 { return min(1, max(0, x+float64(0.02*r.NormFloat64()))) }
 		sites[i] = v(on(c.X), on(c.Y), on(c.Z))
 	}
 	return sites
@@ -123,7 +125,7 @@ func grid(k int) []Vec {
 func sheet(n int, seed uint64) []Vec {
 	sites := random(n, seed)
 	for i := range sites {
-		sites[i].Z = 0.5 + 5e-4*(sites[i].Z-0.5)
+		sites[i].Z = 0.5 + float64(5e-4*(sites[i].Z-0.5))
 	}
 	return sites
 }

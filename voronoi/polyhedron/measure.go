@@ -165,7 +165,7 @@ func (c *Cell) Volume() float64 {
 func (c *Cell) coneOver(i int, area Vec) float64 {
 	if c.far {
 		p := &c.cuts[c.of[i]]
-		return p.d / length(p.n) * length(area)
+		return float64(p.d / length(p.n) * length(area))
 	}
 	return dot(c.v[c.loop[c.start[i]]], area)
 }

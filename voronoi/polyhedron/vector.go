@@ -29,7 +29,9 @@ func sub(a, b Vec) Vec { return Vec{X: a.X - b.X, Y: a.Y - b.Y, Z: a.Z - b.Z} }
 
 func add(a, b Vec) Vec { return Vec{X: a.X + b.X, Y: a.Y + b.Y, Z: a.Z + b.Z} }
 
-func scale(t float64, a Vec) Vec { return Vec{X: t * a.X, Y: t * a.Y, Z: t * a.Z} }
+func scale(t float64, a Vec) Vec {
+	return Vec{X: float64(t * a.X), Y: float64(t * a.Y), Z: float64(t * a.Z)}
+}
 
 func length(a Vec) float64 { return math.Sqrt(dot(a, a)) }
 
