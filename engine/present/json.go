@@ -78,7 +78,7 @@ func (j *jsonWriter) value(v *column.Vector, row int) error {
 		return err
 	case column.Real:
 		if f := v.F[row]; !math.IsInf(f, 0) {
-			_, err := j.out.WriteString(exactReal(f))
+			_, err := j.out.WriteString(column.FormatReal(f))
 			return err
 		}
 	case column.Point:
@@ -89,7 +89,7 @@ func (j *jsonWriter) value(v *column.Vector, row int) error {
 			if k > 0 {
 				j.out.WriteString(",")
 			}
-			j.out.WriteString(exactReal(f))
+			j.out.WriteString(column.FormatReal(f))
 		}
 		_, err := j.out.WriteString("]")
 		return err
