@@ -92,7 +92,7 @@ func (x *extrusion) Pieces() int { return x.plan.parts }
 
 func (x *extrusion) Facts() Facts {
 	return Facts{
-		Kind: x.kind, Walls: int(x.plan.walls) + 2, Corners: 2 * len(x.plan.edges),
+		Kind: x.kind, Walls: int(x.plan.walls) + 2, Corners: 2 * x.plan.nodes,
 		Holes: x.plan.holes, Pieces: x.plan.parts, Convex: x.plan.convex,
 	}
 }

@@ -33,6 +33,7 @@ type plan struct {
 	length float64 // of the whole boundary
 	parts  int     // pieces whose interiors are apart
 	holes  int     // loops that run around a hole
+	nodes  int     // distinct corners
 	convex bool
 }
 
@@ -167,12 +168,14 @@ func (p *plan) extent() {
 		p.lo = Vec2{X: min(p.lo.X, e.a.X), Y: min(p.lo.Y, e.a.Y)}
 		p.hi = Vec2{X: max(p.hi.X, e.a.X), Y: max(p.hi.Y, e.a.Y)}
 	}
+	nodes := map[Vec2]bool{}
 	var area, length sum
 	for _, e := range p.edges {
+		nodes[e.a] = true
 		area.add(cross2(sub2(e.a, p.lo), sub2(e.b, p.lo)) / 2)
 		length.add(distance2(e.a, e.b))
 	}
-	p.area, p.length = area.value(), length.value()
+	p.area, p.length, p.nodes = area.value(), length.value(), len(nodes)
 }
 
 // side tells exactly where q lies: the number of times the boundary winds around it,

@@ -19,6 +19,11 @@ func TestFacts(t *testing.T) {
 		if f.Walls != e.walls+2 || f.Pieces != e.parts || f.Holes != e.inner || s.Pieces() != e.parts {
 			t.Errorf("%s: %+v; want %d walls, %d pieces, %d holes", e.name, f, e.walls+2, e.parts, e.inner)
 		}
+		corners := map[string]int{"rectangle": 8, "L": 12, "L with a hole in the corner": 16, "frame": 16,
+			"hole touches a side in a corner": 14, "hole touches a corner of the outline": 12, "bow of two rooms through a corner": 14}
+		if n, ok := corners[e.name]; ok && f.Corners != n {
+			t.Errorf("%s: %d corners, want %d", e.name, f.Corners, n)
+		}
 		if convex := len(e.convex) == 1; f.Convex != convex || (s.Planes() != nil) != convex {
 			t.Errorf("%s: convex %v, planes %v", e.name, f.Convex, s.Planes())
 		}
