@@ -39,6 +39,12 @@ func wantNumber(what string, e Expr, whole problem.Place) *problem.Problem {
 func hintNumber(p *problem.Problem, e Expr) *problem.Problem {
 	switch e.Type() {
 	case column.Text:
+		if l, ok := e.(*Literal); ok {
+			if _, ok := parseNumber(l.Value.S); ok {
+				return p.WithHint("a number is written without quotes")
+			}
+			return p
+		}
 		return p.WithHint("CAST(%s AS REAL) reads a text as a number", e)
 	case column.Boolean:
 		return p.WithHint("CASE WHEN %s THEN 1 ELSE 0 END makes a number of a condition", e)

@@ -210,7 +210,7 @@ func TestBindErrors(t *testing.T) {
 		{"GREATEST(temp, co2)", CodeUnits, "GREATEST is given °C and ppm", "co2"},
 		{"name + 1", CodeTypes, "+ needs numbers, not name (TEXT) (CAST(name AS REAL) reads a text as a number)", "name"},
 		{"name + 'a'", CodeTypes, "texts are joined by ||", "name"},
-		{"temp * '2'", CodeTypes, "* needs numbers, not '2' (TEXT)", "'2'"},
+		{"temp * '2'", CodeTypes, "* needs numbers, not '2' (TEXT) (a number is written without quotes)", "'2'"},
 		{"temp > '8'", CodeTypes, "temp (REAL) cannot be compared with '8' (TEXT) (a number is written without quotes)", "'8'"},
 		{"temp > name", CodeTypes, "temp (REAL) cannot be compared with name (TEXT) (CAST(name AS REAL) reads a text as a number)", "name"},
 		{"name = 17", CodeTypes, "name (TEXT) cannot be compared with 17 (INTEGER) (CAST(name AS REAL)", "17"},
