@@ -135,6 +135,9 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) erro
 
 // measured computes the cells of a part that are shown.
 func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int32, error) {
+	if !c.wanted(p) {
+		return nil, nil, nil
+	}
 	h, err := c.open(ctx, p)
 	if err != nil {
 		return nil, nil, err

@@ -268,6 +268,18 @@ func TestOutside(t *testing.T) {
 	if n := strings.Count(notes(s.env), "99"); n != 1 {
 		t.Errorf("the site outside is named %d times: %s", n, notes(s.env))
 	}
+	// … with the farthest that it lies outside, whatever the order of the rows.
+	moved := append(twenty(t), site{id: "99", x: 12.5, y: 1, z: 1}, site{id: "99", x: 13, y: 1, z: 1, t: 1}, site{id: "99", x: 12, y: 1, z: 1, t: 2})
+	moved = append(moved, site{id: "1", x: 1, t: 1}, site{id: "1", x: 1, t: 2})
+	for k := range uint64(6) {
+		in := table(shuffled(moved, k), false)
+		in.Schema[4].Type, in.Cols[4].Type = column.Integer, column.Integer // passes, which may be small
+		s = &setup{def: cells, input: in, c: Clauses{Solid: box(t, 10, 8, 4), Each: []int{4}}}
+		s.must(t)
+		if want := "left out of the partition: 99 (3 m)"; !strings.Contains(notes(s.env), want) {
+			t.Errorf("no note %q in %q", want, notes(s.env))
+		}
+	}
 	// Nobody inside.
 	for i := range sites {
 		sites[i].x += 1000
@@ -275,6 +287,12 @@ func TestOutside(t *testing.T) {
 	s = &setup{def: cells, input: table(sites, false), c: Clauses{Solid: box(t, 10, 8, 4)}}
 	_, err := s.run()
 	wantProblem(t, err, "no-sites", "no site of hall lies in air")
+	wantProblem(t, err, "no-sites", "have one origin and one unit")
+	many[0].t = 1000 // one instant with a site far away only
+	many[0].x = 50
+	s = &setup{def: cells, input: table(many, false), c: Clauses{Solid: box(t, 10, 8, 4), Each: []int{4}}}
+	_, err = s.run()
+	wantProblem(t, err, "no-sites", "no site of hall lies in air at t = 1970-01-01 00:00:00.001, so")
 }
 
 // Law 5: what is shown changes nothing but what is shown, and costs only that.
@@ -309,6 +327,34 @@ func TestWanted(t *testing.T) {
 			r.Fatalf("%d cells were computed for %d rows", got, len(rows))
 		}
 	})
+}
+
+// One instant of many is one partition.
+func TestOneInstant(t *testing.T) {
+	var sites []site
+	for i := range 20 {
+		for _, b := range randomSites(12, uint64(i)) {
+			b.t = int64(i)
+			sites = append(sites, b)
+		}
+	}
+	in := table(sites, false)
+	want := make([]uint64, column.Words(in.N))
+	for i := range 12 {
+		column.SetBit(want, 7*12+i)
+	}
+	for _, def := range []*Definition{cells, contacts} {
+		s := &setup{def: def, input: in, c: Clauses{Solid: box(t, 10, 8, 4), Each: []int{4}}, want: want}
+		out := s.must(t)
+		for i := range out.N {
+			if col(t, out, "t").I[i] != 7 {
+				t.Fatalf("%s: row %d is of instant %d", def.Noun, i, col(t, out, "t").I[i])
+			}
+		}
+		if st := s.env.Diagrams.Stats(); out.N < 12 || st.Built != 1 {
+			t.Errorf("%s: %d rows, %d diagrams", def.Noun, out.N, st.Built)
+		}
+	}
 }
 
 // One cell of many is one cell.

@@ -117,6 +117,9 @@ func (c *contactRows) flush(out *pairs) error {
 // part emits the contacts of one part: of each shown row in the order of
 // identifiers, towards every row of the touching cells in that order.
 func (c *contactRows) part(ctx context.Context, p *Part, out *pairs) error {
+	if !c.wanted(p) {
+		return nil
+	}
 	h, err := c.open(ctx, p)
 	if err != nil {
 		return err

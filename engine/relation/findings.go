@@ -1,6 +1,7 @@
 package relation
 
 import (
+	"cmp"
 	"fmt"
 	"maps"
 	"slices"
@@ -52,9 +53,13 @@ func (s *sites) tell() {
 	}
 }
 
-// tellOutside names the sites that were left out, each once.
+// tellOutside names the sites that were left out, each once with the farthest
+// that it lies outside in any part.
 func (s *sites) tellOutside() {
-	rows := s.order.distinct(slices.Sorted(maps.Keys(s.said.outside)))
+	rows := slices.SortedFunc(maps.Keys(s.said.outside), func(a, b int32) int {
+		return cmp.Or(s.order.byID(a, b), cmp.Compare(s.said.outside[b], s.said.outside[a]))
+	})
+	rows = slices.CompactFunc(rows, s.order.sameID)
 	names := make([]string, len(rows))
 	for i, r := range rows {
 		names[i] = fmt.Sprintf("%s (%s)", idText(s.order.id, int(r)), s.length(s.said.outside[r]))

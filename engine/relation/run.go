@@ -114,11 +114,14 @@ func (s *sites) allOutside(p *Part, f voronoi.Facts) error {
 			nearest = i
 		}
 	}
-	k := p.firstRow(f.Outside[nearest])
-	return problem.New("no-sites", s.b.Place, "no site of %s lies in %s%s, so its space belongs to nobody", s.b.Name,
-		s.b.Clauses.SolidName, inPart(s.b, s.input, p.Rows[k])).
-		WithHint("the nearest is %s, %s outside: do the coordinates and the solid have one origin and one unit?",
-			idText(s.order.id, int(p.Rows[k])), s.length(f.OutsideDistance[nearest]))
+	row := p.Rows[p.firstRow(f.Outside[nearest])]
+	name, far := idText(s.order.id, int(row)), s.length(f.OutsideDistance[nearest])
+	e := problem.New("no-sites", s.b.Place, "no site of %s lies in %s%s, so its space belongs to nobody", s.b.Name,
+		s.b.Clauses.SolidName, inPart(s.b, s.input, row))
+	if len(s.parts) > 1 {
+		return e.WithHint("the nearest is %s, %s outside; leave what has no site inside out with OF (SELECT … WHERE …) or OMITTING", name, far)
+	}
+	return e.WithHint("the nearest is %s, %s outside: do the coordinates and the solid have one origin and one unit?", name, far)
 }
 
 func (s *sites) leftOut(p *Part, f voronoi.Facts) {
@@ -140,6 +143,20 @@ func (s *sites) length(d float64) string {
 		return text + " " + u
 	}
 	return text
+}
+
+// wanted reports whether any row of a part may be shown. A part without one is
+// not even built: WHERE t = … of a week asks for one partition.
+func (s *sites) wanted(p *Part) bool {
+	if s.r.Wanted == nil {
+		return true
+	}
+	for _, row := range p.Rows {
+		if column.Bit(s.r.Wanted, int(row)) {
+			return true
+		}
+	}
+	return false
 }
 
 // shown lists the rows of a part (as indices into its Rows) that have a cell
@@ -210,7 +227,7 @@ func (s *sites) cost(want voronoi.Measures) (voronoi.Cost, error) {
 	ctx := context.Background()
 	for _, p := range s.parts {
 		key := diagram.KeyOf(p.Sites, s.options())
-		if seen[key] {
+		if seen[key] || !s.wanted(p) {
 			continue
 		}
 		seen[key] = true
