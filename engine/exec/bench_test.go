@@ -40,14 +40,20 @@ func readings() *column.Table {
 }
 
 func benchmark(b *testing.B, n plan.Node, rows int) {
-	b.ReportAllocs()
-	for b.Loop() {
-		t, err := Collect(context.Background(), testEnv(0, 0), n)
-		if err != nil || t.N != rows {
-			b.Fatalf("%d rows, want %d, %v", t.N, rows, err)
-		}
+	for _, threads := range []int{1, 2} {
+		b.Run(fmt.Sprintf("threads=%d", threads), func(b *testing.B) {
+			b.ReportAllocs()
+			for b.Loop() {
+				env := testEnv(0, 0)
+				env.Threads = threads
+				t, err := Collect(context.Background(), env, n)
+				if err != nil || t.N != rows {
+					b.Fatalf("%d rows, want %d, %v", t.N, rows, err)
+				}
+			}
+			b.ReportMetric(float64(million)*float64(b.N)/b.Elapsed().Seconds()/1e6, "Mrows/s")
+		})
 	}
-	b.ReportMetric(float64(million)*float64(b.N)/b.Elapsed().Seconds()/1e6, "Mrows/s")
 }
 
 func countStar() []plan.Call {

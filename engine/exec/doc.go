@@ -14,10 +14,12 @@
 // can fail. Rows are moved where they are kept, in the sinks, where a join
 // multiplies them, and before they leave Run, whose batches have no mask.
 //
-// A sink gives each chunk a part of its own and merges the parts in the order of
-// their numbers. A plan is run by one worker so far; since nothing else passes
-// between chunks, more of them would change no bit. With other sizes of chunks
-// sums of REAL values may differ in their last bit, everything else is the same.
+// A sink gives each chunk a part of its own. Env.Threads workers take the chunks
+// of a table one after another and wait for their turn to merge a full part, so
+// that parts are merged in the order of their numbers; nothing else passes between
+// chunks, and the number of workers changes no bit. Streams, LIMIT and what Run
+// hands out are the work of one. With other sizes of chunks sums of REAL values
+// may differ in their last bit, everything else is the same.
 //
 // A worker owns the scratch memory of its expressions. It is given back when a
 // source begins its next batch; a join, which makes several batches of one, has
@@ -43,8 +45,9 @@
 // # Errors and notes
 //
 // An error of a row becomes a problem at the expression's place that names the
-// row: by its column id where the batch has one, else by its number in the input
-// of the step, counted from 1.
+// row: by its column id where the batch has one, else by its number in the table
+// or relation that it comes from, counted from 1 (behind a join it has none). Of
+// several rows at fault the first chunk's is told, however many workers there are.
 //
 // Aggregates say what weighted answers rest on (Kish's effective sample size
 // n_eff = (Σw)² / Σw², the largest weight, the weight without a value), and warn

@@ -62,7 +62,7 @@ type Worker struct {
 	// several batches for one: those below must stay while those above pass.
 	works []*expr.Work
 	depth int
-	row   int64 // of the first row of the current batch, counted from 0
+	row   int64 // of the first row of the current batch, counted from 0; -1: unknown
 	local map[any]any
 }
 
@@ -82,14 +82,14 @@ func (w *Worker) begin(row int64) {
 }
 
 // deeper emits a batch that a step made out of the current one, which stays
-// valid meanwhile. row is the number of its first row.
-func (w *Worker) deeper(row int64, b *column.Batch, emit Emit) error {
+// valid meanwhile. Its rows have no number that a user could know.
+func (w *Worker) deeper(b *column.Batch, emit Emit) error {
 	before := w.row
 	w.depth++
 	if w.depth == len(w.works) {
 		w.works = append(w.works, new(expr.Work))
 	}
-	w.begin(row)
+	w.begin(-1)
 	err := emit(b)
 	w.depth--
 	w.row = before

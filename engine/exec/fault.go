@@ -90,6 +90,9 @@ func (s scope) rowName(w *Worker, b *column.Batch, row int) string {
 	if s.id >= 0 && s.id < len(b.Cols) && !b.Cols[s.id].IsNull(row) {
 		return " in the row with id " + idText(b.Cols[s.id].Value(row))
 	}
+	if w.row < 0 {
+		return " in a row of the join"
+	}
 	return fmt.Sprintf(" in row %d", w.row+int64(row)+1)
 }
 

@@ -178,7 +178,6 @@ type joinLocal struct {
 	holds     []uint64
 	current   int32
 	matched   bool
-	emitted   int64
 }
 
 func (s *joinStep) local(w *Worker) *joinLocal {
@@ -317,7 +316,7 @@ func (s *joinStep) decide(w *Worker, l *joinLocal, b *column.Batch) error {
 			column.SetBit(l.candidate, k)
 		}
 	}
-	err := w.deeper(w.row, &l.batch, func(joined *column.Batch) error {
+	err := w.deeper(&l.batch, func(joined *column.Batch) error {
 		holds, err := s.rest.Eval(w.Work(), joined, l.candidate)
 		if err == nil {
 			l.holds = trueRows(l.holds, &holds, l.candidate, n)
@@ -354,9 +353,7 @@ func (s *joinStep) handOn(ctx context.Context, w *Worker, l *joinLocal, b *colum
 		}
 		hi := min(lo+BatchRows, len(l.out.left))
 		s.gather(l, b, &pairs{l.out.left[lo:hi], l.out.right[lo:hi]}, nil)
-		first := l.emitted
-		l.emitted += int64(hi - lo)
-		if err := w.deeper(first, &l.batch, emit); err != nil {
+		if err := w.deeper(&l.batch, emit); err != nil {
 			return err
 		}
 	}

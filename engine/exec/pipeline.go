@@ -66,7 +66,7 @@ func (p *pipeline) into(ctx context.Context, w *Worker, sink Sink) (Source, erro
 	if p.Chunks() == Streamed {
 		err = p.streamInto(ctx, w, sink)
 	} else {
-		err = p.chunksInto(ctx, w, sink)
+		err = p.chunksInto(ctx, w.Env, sink)
 	}
 	if err != nil && !errors.Is(err, errEnough) {
 		return nil, err
@@ -75,20 +75,6 @@ func (p *pipeline) into(ctx context.Context, w *Worker, sink Sink) (Source, erro
 		return nil, err
 	}
 	return sink.Finish(ctx)
-}
-
-func (p *pipeline) chunksInto(ctx context.Context, w *Worker, sink Sink) error {
-	for c := 0; c < p.Chunks(); c++ {
-		part := sink.Part(c)
-		err := p.Read(ctx, w, c, func(b *column.Batch) error { return part.Consume(w, b) })
-		if err != nil && !errors.Is(err, errEnough) {
-			return err
-		}
-		if err := sink.Merge(part); err != nil {
-			return err
-		}
-	}
-	return nil
 }
 
 // streamInto numbers the chunks of a stream by the rows that the source gave:

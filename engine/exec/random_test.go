@@ -12,6 +12,7 @@ import (
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
+	"nearcell/engine/function"
 	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/plan/plantest"
@@ -117,7 +118,9 @@ func checkPlan(t *rapid.T, n plan.Node) {
 		return
 	}
 	for _, sizes := range [][2]int{{0, 0}, {128, 64}, {64, 64}, {256, 128}} {
-		got, err := run(t, testEnv(sizes[0], sizes[1]), n)
+		env := testEnv(sizes[0], sizes[1])
+		env.Threads = 1 + sizes[0]/64%4
+		got, err := run(t, env, n)
 		if naiveErr != nil {
 			continue
 		}
@@ -203,6 +206,65 @@ func TestCancelled(t *testing.T) {
 	if !errors.Is(err, context.Canceled) {
 		t.Errorf("a cancelled sort: %v", err)
 	}
+}
+
+// Any number of workers gives the same bits, of sums too, and the same error:
+// that of the first row at fault.
+func TestWorkers(t *testing.T) {
+	rng := rand.New(rand.NewPCG(6, 6))
+	table := plantest.Table(rng, 20000)
+	for i := range table.N {
+		table.Cols[2].F[i] = rng.NormFloat64() * math.Exp(20*rng.NormFloat64())
+	}
+	scan, schema := plantest.Scan(table), plantest.Schema
+	text := &plan.Aggregate{Input: scan, Keys: columns(schema, 3), Calls: calls(schema, "SUM", 2, "AVG", 2, "MEDIAN", 2, "VAR_SAMP", 2),
+		Fields: fields(schema, 3, 2, 2, 2, 2)}
+	whole := &plan.Aggregate{Input: scan, Calls: text.Calls, Fields: text.Fields[1:]}
+	failing := &plan.Aggregate{Input: scan, Calls: []plan.Call{{Fn: function.LookupAggregate("SUM"), Text: "SUM",
+		Args: []expr.Expr{arith("/", plantest.Column(schema, 2), plantest.Column(schema, 1))}}}, Fields: fields(schema, 2)}
+	sorted := &plan.Sort{Input: scan, Keys: []plan.SortKey{{Expr: plantest.Column(schema, 3)}}, Top: 3000}
+	unique := &plan.Distinct{Input: &plan.Project{Input: scan, Exprs: columns(schema, 6, 3, 1), Fields: fields(schema, 6, 3, 1)}}
+	join := &plan.Join{Left: scan, Right: plantest.Scan(plantest.Table(rng, 50)), LeftKeys: columns(schema, 3), RightKeys: columns(schema, 3)}
+	counted := &plan.Aggregate{Input: join, Keys: columns(schema, 6), Calls: calls(schema, "COUNT", 1, "SUM", 2), Fields: fields(schema, 6, 1, 2)}
+	for i, n := range []plan.Node{text, whole, failing, sorted, unique, counted} {
+		var want []row
+		wantErr := ""
+		for _, threads := range []int{1, 2, 3, 8, 100} {
+			env := testEnv(640, 128)
+			env.Threads = threads
+			got, err := run(t, env, n)
+			text := fmt.Sprint(err)
+			if threads == 1 {
+				want, wantErr = got, text
+				if (err != nil) != (n == failing) {
+					t.Fatalf("plan %d: %v", i, err)
+				}
+				continue
+			}
+			if text != wantErr {
+				t.Errorf("plan %d, %d workers: error %s, want %s", i, threads, text, wantErr)
+			}
+			if err := sameRows(scan, got, want); err != nil {
+				t.Errorf("plan %d, %d workers: %v", i, threads, err)
+			}
+		}
+	}
+}
+
+// A panic in a worker reaches the caller, and the others leave.
+func TestWorkerPanics(t *testing.T) {
+	rng := rand.New(rand.NewPCG(7, 6))
+	scan := plantest.Scan(plantest.Table(rng, 20000))
+	env := testEnv(64, 64)
+	env.Threads = 4
+	defer func() {
+		if recover() == nil {
+			t.Error("the panic was lost")
+		}
+	}()
+	broken := plantest.Column(column.Schema{{Name: "x", Type: column.Real}}, 0) // column 0 is a text
+	n := &plan.Sort{Input: scan, Keys: []plan.SortKey{{Expr: broken}}}
+	_, _ = Collect(context.Background(), env, n)
 }
 
 // LIMIT stops a relation as soon as it has its rows.
