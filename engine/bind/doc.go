@@ -27,7 +27,7 @@
 // as written. Of columns of one source that differ only in case, the one spelt
 // as written is meant. ORDER BY knows the names of the output first, GROUP BY the
 // columns of FROM first; HAVING and expressions in ORDER BY know the aliases of
-// SELECT where no column has the name. WHERE knows none.
+// SELECT where no column of the name can be meant. WHERE knows none.
 //
 // # Errors
 //

@@ -108,23 +108,30 @@ func (x *exprs) column(c *lang.Column) (expr.Expr, error) {
 	}
 	f := x.scope.columns[i].Field
 	if x.group != nil && x.within == "" {
-		return nil, x.group.notGrouped(x, c, i)
+		// Where the column has no single value, an item of that name may be meant:
+		// AVG(temp) AS temp … ORDER BY ABS(temp - 5).
+		return x.alias(c, x.group.notGrouped(x, c, i))
 	}
 	return expr.NewColumn(i, f, x.at(c)), nil
 }
 
-// alias tries an item of SELECT where no column has the name.
+// alias tries an item of SELECT where no column of the name can be meant; err
+// says why not.
 func (x *exprs) alias(c *lang.Column, err error) (expr.Expr, error) {
 	if !c.Qualifier.IsZero() {
 		return nil, err
 	}
-	if hits, _ := x.scope.find(x.binder, c.Qualifier, c.Name); len(hits) > 0 {
+	hits, _ := x.scope.find(x.binder, c.Qualifier, c.Name)
+	if len(hits) > 1 {
 		return nil, err // ambiguous
 	}
 	if x.aliases != nil && x.within == "" {
 		if e, aliasErr := x.aliases(c.Name); e != nil || aliasErr != nil {
 			return e, aliasErr
 		}
+	}
+	if len(hits) > 0 {
+		return nil, err
 	}
 	for _, item := range x.hidden {
 		if !item.Alias.IsZero() && c.Name.Matches(item.Alias.Text) {

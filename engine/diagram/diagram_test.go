@@ -334,3 +334,27 @@ func TestProgress(t *testing.T) {
 		t.Errorf("the first was told %d times, then %d; the second %d times", told, first, second)
 	}
 }
+
+// brokenSolid panics when it is asked anything.
+type brokenSolid struct{ solid.Solid }
+
+func (brokenSolid) Key() [16]byte   { return [16]byte{1} }
+func (brokenSolid) Volume() float64 { panic("broken") }
+
+// A build that panics keeps nobody waiting.
+func TestPanic(t *testing.T) {
+	s := NewStore(0)
+	for range 2 {
+		func() {
+			defer func() {
+				if recover() == nil {
+					t.Error("the panic was swallowed")
+				}
+			}()
+			s.Get(context.Background(), places(3, 1), voronoi.Options{Solid: brokenSolid{}})
+		}()
+	}
+	if st := s.Stats(); st.Diagrams != 0 || st.Built != 0 {
+		t.Errorf("a broken diagram is held: %+v", st)
+	}
+}

@@ -5,6 +5,7 @@ import (
 	"context"
 	"crypto/sha256"
 	"encoding/binary"
+	"errors"
 	"math"
 	"sync"
 
@@ -105,9 +106,7 @@ func (s *Store) Get(ctx context.Context, sites []voronoi.Vec, o voronoi.Options)
 	h, mine := s.enter(key)
 	if mine {
 		o.Progress = h.report
-		d, err := voronoi.New(sites, o)
-		h.finish(d, err)
-		s.settle(h)
+		s.build(h, sites, o)
 	}
 	select {
 	case <-h.ready:
@@ -115,6 +114,20 @@ func (s *Store) Get(ctx context.Context, sites []voronoi.Vec, o voronoi.Options)
 	case <-ctx.Done():
 		return nil, ctx.Err()
 	}
+}
+
+var errInterrupted = errors.New("diagram: the build was interrupted")
+
+// build makes the diagram of an entry. Should that panic, those who wait are let
+// go all the same.
+func (s *Store) build(h *Handle, sites []voronoi.Vec, o voronoi.Options) {
+	var d *voronoi.Diagram
+	err := errInterrupted
+	defer func() {
+		h.finish(d, err)
+		s.settle(h)
+	}()
+	d, err = voronoi.New(sites, o)
 }
 
 // enter finds the entry of a key or makes it; then the caller builds.

@@ -139,3 +139,15 @@ SELECT * FROM VERDICTS
 input:1: VERDICTS is not there yet
   SELECT * FROM VERDICTS
                 ^^^^^^^^
+
+plan
+SELECT * FROM hall NATURAL JOIN log
+----
+syntax: there is no NATURAL JOIN (say which columns: JOIN … USING (…), or ON condition)
+
+plan
+SELECT * FROM hall FULL JOIN log ON id = logger
+----
+input:1: FULL JOIN is not there yet
+  SELECT * FROM hall FULL JOIN log ON id = logger
+                ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^

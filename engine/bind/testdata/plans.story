@@ -329,3 +329,14 @@ SELECT "Temp", Temp, temp FROM "Cases"
 ----
 project: Temp, Temp, temp
   scan table Cases: Temp, temp, "x
+
+# AVG(temp) is what is called temp where single readings have no meaning any more.
+plan
+SELECT logger, AVG(temp) AS temp FROM log GROUP BY logger HAVING temp > 5 ORDER BY ABS(temp - 5)
+----
+project: logger, temp
+  sort: "ABS(temp - 5)"
+    project: logger, "AVG(temp)" AS temp, ABS("AVG(temp)" - 5) AS ABS(temp - 5)
+      filter having: "AVG(temp)" > 5
+        aggregate: AVG(temp) by logger
+          scan table log: logger, t, temp, co2, n, ok
