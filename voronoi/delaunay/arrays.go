@@ -214,7 +214,7 @@ func (t *T) placeSites(a *Arrays, n int) error {
 func (t *T) takeTets(a *Arrays) error {
 	count := len(a.Corners) / 4
 	t.tets = make([]tet, count)
-	t.used, t.ghosts = count, count-a.Real
+	t.used, t.ghosts = int64(count), count-a.Real
 	for i := range t.tets {
 		q := &t.tets[i]
 		for k := range 4 {

@@ -65,14 +65,14 @@ type builder struct {
 	done    int
 	ends    []int
 	corners [4]int32
-	twins   []twin
 	main    *worker
+	crew    *crew
 }
 
 func (b *builder) run() error {
 	m, n := b.m, len(b.m.sites)/3
 	m.setLimits()
-	m.tets = make([]tet, int(float64(n)*tetsPerSite)+64)
+	m.tets = make([]tet, int(float64(n)*tetsPerSite)+blockSize*(b.threads+1))
 	stop := b.faultPages()
 	m.order, b.ends = insertionOrder(m.frame, m.sites, b.threads)
 	b.gather()
@@ -142,9 +142,26 @@ func (b *builder) look() error {
 }
 
 func (b *builder) insertAll() error {
+	if b.threads > 1 {
+		b.crew = newCrew(b)
+	}
 	begin := 1
 	for _, end := range b.ends {
-		if err := b.insertSerially(begin, end+1); err != nil {
+		var err error
+		if b.threads > 1 && begin > 1 && end+1-begin >= leastParallel {
+			err = b.crew.insertRound(begin, end+1)
+		} else {
+			points := make([]int32, 0, end+1-begin)
+			for p := begin; p <= end; p++ {
+				if b.isCorner(int32(p)) {
+					b.done++
+				} else {
+					points = append(points, int32(p))
+				}
+			}
+			err = b.insertSerially(points)
+		}
+		if err != nil {
 			return err
 		}
 		begin = end + 1
@@ -156,31 +173,67 @@ func (b *builder) isCorner(p int32) bool {
 	return p == b.corners[0] || p == b.corners[1] || p == b.corners[2] || p == b.corners[3]
 }
 
-func (b *builder) insertSerially(lo, hi int) error {
+func (b *builder) insertSerially(points []int32) error {
 	w := b.main
-	for p := lo; p < hi; p++ {
+	for _, p := range points {
 		if b.done++; b.done%stepsBetweenLooks == 0 {
 			if err := b.look(); err != nil {
 				return err
 			}
 		}
-		if p > 0 && b.m.pts[p].tet != noTet && b.isCorner(int32(p)) {
-			continue
+		for !w.insert(p) {
+			if err := b.makeRoom(len(b.m.order) - b.done + w.edge); err != nil {
+				return err
+			}
 		}
-		w.insert(int32(p))
 	}
 	return nil
 }
 
-// insert adds point p, or notes that it is equal to a vertex.
-func (w *worker) insert(p int32) {
+// insert adds point p, or notes that it is equal to a vertex. It reports false and
+// does nothing when the mesh has to grow.
+func (w *worker) insert(p int32) bool {
 	seed, equal := w.locate(p)
 	if equal != 0 {
 		w.twins = append(w.twins, twin{p, equal})
-		return
+		return true
 	}
 	w.search(seed, p)
+	if !w.reserve(w.edge - w.dead) {
+		w.unmark(w.dead)
+		return false
+	}
 	w.fill(p)
+	return true
+}
+
+// makeRoom sees to it that the mesh has records for n more points, as far as points
+// usually need them, or a block for each worker at least.
+func (b *builder) makeRoom(n int) error {
+	m := b.m
+	room := len(m.tets) - int(m.used)
+	if room >= n*6+blockSize*(b.threads+1) {
+		return nil
+	}
+	by := max(len(m.tets)/8, n*6) + blockSize*(b.threads+1)
+	if limit := b.options.Memory; limit > 0 {
+		fixed := Estimate(len(m.order)) - int64(float64(len(m.order))*(tetsPerSite*tetBytes+sortBytes))
+		if need := fixed + tetBytes*int64(2*len(m.tets)+by); need > limit {
+			return &MemoryError{need, limit}
+		}
+	}
+	m.grow(by)
+	return nil
+}
+
+// anyReal returns a real tetrahedron.
+func (b *builder) anyReal() uint32 {
+	m := b.m
+	i := m.pts[b.corners[0]].tet
+	if m.tets[i].lo == loGhost {
+		i = m.tets[i].n[ghostIn(&m.tets[i].v)] >> 2
+	}
+	return i
 }
 
 // lowDimension finds equal sites without a tetrahedralisation.
@@ -203,9 +256,15 @@ func (b *builder) lowDimension() {
 // before ghosts.
 func (b *builder) finish() {
 	m, t := b.m, b.t
-	b.twins = append(b.twins, b.main.twins...)
-	b.main.twins = nil
-	for _, w := range b.twins {
+	workers := []*worker{b.main}
+	if b.crew != nil {
+		workers = b.crew.workers
+	}
+	var twins []twin
+	for _, w := range workers {
+		twins = append(twins, w.twins...)
+	}
+	for _, w := range twins {
 		p, v := w.point-1, w.vertex-1
 		if m.order[p] < m.order[v] {
 			m.order[p], m.order[v] = m.order[v], m.order[p]
@@ -215,14 +274,14 @@ func (b *builder) finish() {
 	for i, s := range m.order {
 		t.place[s] = int32(i + 1)
 	}
-	for _, w := range b.twins {
+	for _, w := range twins {
 		s := m.order[w.point-1]
 		t.place[s] = w.vertex
 		t.repeats = append(t.repeats, int32(s))
 	}
 	sortInts(t.repeats)
 	if t.dimension == 3 {
-		t.compact(b.main)
+		t.compact(workers)
 	} else {
 		m.tets, m.used = nil, 0
 	}

@@ -1,6 +1,9 @@
 package delaunay
 
-import "math"
+import (
+	"math"
+	"sync/atomic"
+)
 
 // outcome of a comparison as a number, so that lists can be filled without branches.
 func bit(b bool) uint32 {
@@ -177,6 +180,7 @@ func (w *worker) fill(p int32) {
 		t.n[0] = r
 		if l[0] == 0 || l[1] == 0 || l[2] == 0 {
 			t.lo, t.hi = loGhost, float32(math.Inf(1))
+			w.ghost = id
 			continue
 		}
 		hint = id
@@ -214,7 +218,7 @@ func (w *worker) fill(p int32) {
 }
 
 // prepareSlots makes queue[:edge] name a record for every new tetrahedron, and puts
-// records that are left over on the free list.
+// records that are left over on the free list. There must be enough in reserve.
 func (w *worker) prepareSlots() {
 	for w.dead > w.edge {
 		w.dead--
@@ -230,30 +234,34 @@ func (w *worker) prepareSlots() {
 
 // fresh returns a record of the worker's own.
 func (w *worker) fresh() uint32 {
-	if n := len(w.free); n > 0 {
-		id := w.free[n-1]
-		w.free = w.free[:n-1]
-		return id
+	if w.next < w.end {
+		w.next++
+		return w.next - 1
 	}
-	if w.next == w.end {
-		w.more()
-	}
-	w.next++
-	return w.next - 1
+	n := len(w.free) - 1
+	id := w.free[n]
+	w.free = w.free[:n]
+	return id
 }
 
-// more gives the only worker more records, growing the mesh by a quarter.
-func (w *worker) more() {
-	m := w.m
-	if m.used == len(m.tets) {
-		if c := cap(m.tets); c > m.used { // after an edit
-			m.tets = m.tets[:min(c, m.used+4096)]
-		} else {
-			m.grow(len(m.tets)/4 + 1024)
+// blockSize is how many records a worker takes at a time.
+const blockSize = 1024
+
+// reserve makes sure that fresh can be called n times; it reports false when the mesh
+// has no more records.
+func (w *worker) reserve(n int) bool {
+	for int(w.end-w.next)+len(w.free) < n {
+		for ; w.next < w.end; w.next++ {
+			w.free = append(w.free, w.next)
 		}
+		end := atomic.AddInt64(&w.m.used, blockSize)
+		if end > int64(len(w.m.tets)) {
+			atomic.AddInt64(&w.m.used, -blockSize)
+			return false
+		}
+		w.next, w.end = uint32(end-blockSize), uint32(end)
 	}
-	w.next, w.end = uint32(m.used), uint32(len(m.tets))
-	m.used = len(m.tets)
+	return true
 }
 
 func (m *mesh) grow(by int) {

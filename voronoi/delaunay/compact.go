@@ -21,42 +21,70 @@ func sortPoints(m *mesh, list []int32) {
 func (q *tet) isFree() bool { return q.v[0] < 0 || q.v[0]|q.v[1] == 0 }
 
 // compact moves the real tetrahedra to the front, the ghosts behind them and forgets
-// the rest.
-func (t *T) compact(w *worker) {
-	m := &t.mesh
-	w.free, w.next, w.end = nil, 0, 0
-	ghosts, real := 0, 0
-	for i := range m.tets[:m.used] {
-		q := &m.tets[i]
-		if q.isFree() {
+// the free records. Neither pass looks at more than those that are not real.
+func (t *T) compact(workers []*worker) {
+	tail := t.allGhosts(workers)
+	t.ghosts = len(tail)
+	for _, w := range workers {
+		tail = append(tail, w.free...)
+		for ; w.next < w.end; w.next++ {
+			tail = append(tail, w.next)
+		}
+		if w.owner != nil || w.spare != 0 {
+			tail = append(tail, w.spare)
+		}
+		w.free, w.next, w.end = nil, 0, 0
+	}
+	used := int(t.used)
+	t.real = used - len(tail)
+	high := t.real
+	for _, i := range tail {
+		if int(i) >= t.real {
 			continue
 		}
-		if q.lo == loGhost {
-			ghosts++
-		} else {
-			real++
+		for t.tets[high].isFree() || t.tets[high].lo == loGhost {
+			high++
+		}
+		t.exchange(i, uint32(high))
+	}
+	all := t.real + t.ghosts
+	high = all
+	for i := t.real; i < all; i++ {
+		if t.tets[i].isFree() {
+			for t.tets[high].isFree() {
+				high++
+			}
+			t.exchange(uint32(i), uint32(high))
 		}
 	}
-	t.real, t.ghosts = real, ghosts
-	t.partition(0, real, m.used, func(q *tet) bool { return !q.isFree() && q.lo != loGhost })
-	t.partition(real, real+ghosts, m.used, func(q *tet) bool { return !q.isFree() })
-	m.used = real + ghosts
-	m.tets = m.tets[:m.used]
-	m.pts[0].tet = uint32(real)
+	t.used = int64(all)
+	t.tets = t.tets[:all]
+	t.pts[0].tet = uint32(t.real)
 }
 
-// partition exchanges records so that those of lo..end-1 that belong fill lo..middle-1.
-func (t *T) partition(lo, middle, end int, belongs func(*tet) bool) {
-	tets := t.tets
-	j := end
-	for i := lo; i < middle; i++ {
-		if belongs(&tets[i]) {
-			continue
+// allGhosts lists the ghosts, from neighbour to neighbour.
+func (t *T) allGhosts(workers []*worker) []uint32 {
+	const seen = loGhost - 1
+	var list []uint32
+	for _, w := range workers {
+		// Of the last ghosts that the workers made the newest is still there.
+		if q := &t.tets[w.ghost]; len(list) == 0 && !q.isFree() && q.lo == loGhost {
+			q.lo = seen
+			list = append(list, w.ghost)
 		}
-		for j--; !belongs(&tets[j]); j-- {
-		}
-		t.exchange(uint32(i), uint32(j))
 	}
+	for head := 0; head < len(list); head++ {
+		for _, r := range t.tets[list[head]].n {
+			if q := &t.tets[r>>2]; q.lo == loGhost {
+				q.lo = seen
+				list = append(list, r>>2)
+			}
+		}
+	}
+	for _, i := range list {
+		t.tets[i].lo = loGhost
+	}
+	return list
 }
 
 // exchange swaps two records and mends what refers to them.

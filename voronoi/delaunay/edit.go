@@ -45,6 +45,7 @@ func (t *T) Insert(p r3.Vec) (site int, err error) {
 	}
 	t.place = append(t.place, q)
 	w.search(seed, q)
+	t.room(w, w.edge-w.dead)
 	gone := append([]uint32(nil), w.queue[:w.dead]...)
 	for i := range gone {
 		gone[i] >>= 2
@@ -122,8 +123,17 @@ func (m *mesh) setSphere(t *tet) {
 
 func (t *T) editor() *worker {
 	w := newWorker(&t.mesh)
-	w.next, w.end = uint32(t.used), uint32(t.used)
 	return w
+}
+
+// room gives an editing worker n records.
+func (t *T) room(w *worker, n int) {
+	for !w.reserve(n) {
+		t.tets = t.tets[:cap(t.tets)]
+		if len(t.tets)-int(t.used) < blockSize {
+			t.grow(len(t.tets)/8 + 2*blockSize)
+		}
+	}
 }
 
 func (t *T) countReal(ids []uint32) int {
@@ -158,7 +168,7 @@ func (t *T) settle(w *worker, touched []uint32, deltaReal, delta int) {
 	t.sift(list, real, func(q *tet) bool { return !q.isFree() && q.lo != loGhost })
 	t.sift(list, all, func(q *tet) bool { return !q.isFree() })
 	t.real, t.ghosts = real, all-real
-	t.used = all
+	t.used = int64(all)
 	t.tets = t.tets[:all]
 	t.pts[0].tet = uint32(real)
 }

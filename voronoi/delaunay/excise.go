@@ -107,6 +107,7 @@ func (h *hole) apex(a, b, c int32) int32 {
 // add makes a tetrahedron and joins its faces to open ones.
 func (h *hole) add(v [4]int32) {
 	t := h.t
+	t.room(h.w, 1)
 	id := h.w.fresh()
 	h.made = append(h.made, id)
 	q := &t.tets[id]

@@ -49,7 +49,7 @@ type mesh struct {
 	order []uint32  // order[p-1] is the site of point p
 	pts   []point   // pts[0] is the ghost
 	tets  []tet
-	used  int // records of tets in use or on a free list
+	used  int64 // records of tets in use, on a free list or in a worker's block
 	limits
 }
 
@@ -80,8 +80,15 @@ type worker struct {
 	free   []uint32
 	next   uint32 // records next..end-1 are the worker's own
 	end    uint32
-	hint   uint32
+	hint   uint32 // a real tetrahedron to walk from
+	ghost  uint32 // the last ghost that was made
 	twins  []twin
+
+	// With other workers at work:
+	owner []uint8
+	me    uint8
+	spare uint32 // a record that takes writes meant for no tetrahedron
+	seed  uint64
 }
 
 // local is a vertex of the cavity's boundary seen from the new point.

@@ -65,11 +65,12 @@ func (m *mesh) spanning(points iter.Seq[int32]) (dimension int, corners [4]int32
 
 func (w *worker) simplex(v [4]int32) {
 	m := w.m
+	w.reserve(5)
 	var id [5]uint32
 	for i := range id {
 		id[i] = w.fresh()
 	}
-	w.hint = id[0]
+	w.hint, w.ghost = id[0], id[1]
 	real := &m.tets[id[0]]
 	real.v, real.lo, real.hi = v, loIll, float32(math.Inf(1))
 	for k := range 4 {
