@@ -33,7 +33,11 @@ type builder struct {
 	at     Vec
 	reach2 float64
 	leaves index.Leaves
-	useful func(*index.Box, float64) bool // canMatter, bound once
+
+	// offered counts the sites held against cells, the measure of work that Cost
+	// goes by.
+	offered int
+	useful  func(*index.Box, float64) bool // canMatter, bound once
 
 	support  []int32 // scratch of bounded
 	work     solid.Work
@@ -135,6 +139,7 @@ func (b *builder) canMatter(box *index.Box, dist2 float64) bool {
 // bisect keeps the part of the present cell nearer to its site than to site q.
 // Local coordinates keep the plane free of cancellation.
 func (b *builder) bisect(q int32) {
+	b.offered++
 	at := b.d.tree.Point(q)
 	n := sub(at, b.at)
 	if dot(n, n) > float64(4*b.reach2)*(1+0x1p-49) {

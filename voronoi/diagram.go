@@ -33,6 +33,9 @@ type Diagram struct {
 	count []int32 // by cell: sites at this place
 
 	pool sync.Pool // of *builder
+
+	probe   sync.Once
+	offered float64 // set by probe: sites held against a cell, on average
 }
 
 // New makes the diagram of the sites. It keeps no reference to them. Nothing but

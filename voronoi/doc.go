@@ -78,11 +78,16 @@
 //
 // # Limitations
 //
-// Cells are computed one by one. On a sheet of sites thinner than their spacing the
-// balls of the far vertices hold large parts of the sheet, and a cell takes longer
-// the more sites there are: [Facts].Flat and [Diagram.Cost] tell. Without a solid, a
-// face of an unbounded cell that lies wholly beyond 2^20 times the extent of the
-// sites is not seen. The middle of a contact that a non-convex solid cuts is right to
-// about 1e-8 of the cell's size, and where the face lies in a wall that ends on the
-// other side of it, it is that of the smaller side.
+// Cells are computed one by one. For each about a hundred sites have to be looked
+// at on ordinary data, flat sheets included; where sites lie on a curved surface the
+// balls of far vertices hold large parts of it, and it is the more the more sites
+// there are: [Diagram.Cost] tells.
+//
+// Without a solid, a face of an unbounded cell that lies wholly beyond 2^20 times the
+// extent of the sites is not seen, and a bounded cell that reaches farther than 2^90
+// times the extent counts as unbounded.
+//
+// The middle of a contact that a non-convex solid cuts is right to about 1e-8 of the
+// cell's size; where the face lies partly in walls on both of its sides, it is the
+// middle of what the solid leaves on the smaller side.
 package voronoi

@@ -86,12 +86,7 @@ func (d *Diagram) request(sites []int32) (*request, error) {
 			r.rows = append(r.rows, int32(row))
 		}
 	}
-	slices.SortFunc(r.rows, func(a, b int32) int {
-		if c := d.cell[sites[a]] - d.cell[sites[b]]; c != 0 {
-			return int(c)
-		}
-		return int(a - b)
-	})
+	d.sortRows(r)
 	for i, row := range r.rows {
 		if c := d.cell[sites[row]]; i == 0 || c != r.cells[len(r.cells)-1] {
 			r.cells = append(r.cells, c)
@@ -100,4 +95,33 @@ func (d *Diagram) request(sites []int32) (*request, error) {
 	}
 	r.start = append(r.start, int32(len(r.rows)))
 	return r, nil
+}
+
+// sortRows orders the rows by cell, and rows of one cell as they were asked for:
+// by counting where most sites are asked for, else by comparing.
+func (d *Diagram) sortRows(r *request) {
+	n := d.tree.Len()
+	if len(r.rows) < n/8 {
+		slices.SortFunc(r.rows, func(a, b int32) int {
+			if c := d.cell[r.sites[a]] - d.cell[r.sites[b]]; c != 0 {
+				return int(c)
+			}
+			return int(a - b)
+		})
+		return
+	}
+	next := make([]int32, n+1)
+	for _, row := range r.rows {
+		next[d.cell[r.sites[row]]+1]++
+	}
+	for c := range n {
+		next[c+1] += next[c]
+	}
+	sorted := make([]int32, len(r.rows))
+	for _, row := range r.rows {
+		c := d.cell[r.sites[row]]
+		sorted[next[c]] = row
+		next[c]++
+	}
+	r.rows = sorted
 }

@@ -103,8 +103,8 @@ type Facts struct {
 	Dimension int
 	// Extent of them along their principal axes, longest first.
 	Extent [3]float64
-	// Flat: the sites form a sheet thinner than their spacing, and cells take much
-	// longer one by one.
+	// Flat: the sites form a sheet thinner than half their spacing. Volumes of its
+	// cells say more about the solid than about the sites.
 	Flat bool
 
 	Lo, Hi Vec // bounding box of the sites that take part
@@ -120,4 +120,7 @@ type Cost struct {
 	Bytes    int64
 	Cells    int  // cells that have to be built
 	OneByOne bool // each from the index alone
+	// Slow: cells take many times longer than those of an ordinary set of sites, as
+	// they do where sites lie on a curved surface.
+	Slow bool
 }
