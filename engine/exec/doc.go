@@ -14,12 +14,12 @@
 // can fail. Rows are moved where they are kept, in the sinks, where a join
 // multiplies them, and before they leave Run, whose batches have no mask.
 //
-// A sink gives each chunk a part of its own. Env.Threads workers take the chunks
-// of a table one after another and wait for their turn to merge a full part, so
-// that parts are merged in the order of their numbers; nothing else passes between
-// chunks, and the number of workers changes no bit. Streams, LIMIT and what Run
-// hands out are the work of one. With other sizes of chunks sums of REAL values
-// may differ in their last bit, everything else is the same.
+// A sink gives each chunk a part of its own. Env.Threads workers (0: one a core)
+// take the chunks of a table one after another and wait for their turn to merge a
+// full part, so that parts are merged in the order of their numbers; nothing else
+// passes between chunks, and the number of workers changes no bit. Streams, LIMIT
+// and what Run hands out are the work of one. With other sizes of chunks sums of
+// REAL values may differ in their last bit, everything else is the same.
 //
 // A worker owns the scratch memory of its expressions. It is given back when a
 // source begins its next batch; a join, which makes several batches of one, has

@@ -21,8 +21,8 @@ const (
 
 // Env is what one statement runs in.
 type Env struct {
-	relation.Env
-	Memory int64 // bytes that the statement's sinks may keep, 0: no limit
+	relation.Env       // Threads: the number of workers, 0: one a core
+	Memory       int64 // bytes that the statement's sinks may keep, 0: no limit
 
 	kept atomic.Int64
 	// chunk and batch are the numbers of rows of a chunk and of a batch of a

@@ -263,7 +263,7 @@ func TestWorkerPanics(t *testing.T) {
 		}
 	}()
 	broken := plantest.Column(column.Schema{{Name: "x", Type: column.Real}}, 0) // column 0 is a text
-	n := &plan.Sort{Input: scan, Keys: []plan.SortKey{{Expr: broken}}}
+	n := &plan.Sort{Input: scan, Keys: []plan.SortKey{{Expr: must(expr.NewNeg(broken, plantest.Nowhere))}}}
 	_, _ = Collect(context.Background(), env, n)
 }
 

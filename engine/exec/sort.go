@@ -4,16 +4,18 @@ import (
 	"context"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/expr"
 	"nearcell/engine/plan"
 )
 
-// sortSink orders all rows by keys that are kept beside the columns. With a top
+// sortSink orders all rows by keys that are columns or are kept beside them. With a top
 // it forgets, chunk by chunk, the rows that cannot be among the first ones.
 type sortSink struct {
 	env    *Env
 	node   *plan.Sort
 	schema column.Schema // of the input
-	keyed  column.Schema // with the keys behind
+	keyed  column.Schema // with the computed keys behind
+	keyAt  []int         // column of each key in keyed
 	scope
 	parts []*column.Table // sorted where there is a top
 	rows  int             // of parts
@@ -24,7 +26,12 @@ func newSortSink(env *Env, n *plan.Sort) *sortSink {
 	s.scope = scopeOf(s.schema)
 	s.keyed = append(s.keyed, s.schema...)
 	for _, k := range n.Keys {
-		s.keyed = append(s.keyed, column.Field{Type: k.Expr.Type()})
+		at, plain := expr.AsColumn(k.Expr)
+		if !plain {
+			at = len(s.keyed)
+			s.keyed = append(s.keyed, column.Field{Type: k.Expr.Type()})
+		}
+		s.keyAt = append(s.keyAt, at)
 	}
 	return s
 }
@@ -41,7 +48,10 @@ func (s *sortSink) Part(int) Part {
 
 func (p *sortPart) Consume(w *Worker, b *column.Batch) error {
 	p.cols = append(p.cols[:0], b.Cols...)
-	for _, k := range p.sink.node.Keys {
+	for i, k := range p.sink.node.Keys {
+		if p.sink.keyAt[i] < len(p.sink.schema) {
+			continue
+		}
 		v, err := p.sink.eval(w, k.Expr, b, b.On)
 		if err != nil {
 			return err
@@ -76,7 +86,7 @@ func (s *sortSink) first(t *column.Table) *column.Table {
 func (s *sortSink) order(t *column.Table) []int32 {
 	keys := make([]orderKey, len(s.node.Keys))
 	for i, k := range s.node.Keys {
-		keys[i] = orderKey{&t.Cols[len(s.schema)+i], k.Descending, k.NullsFirst}
+		keys[i] = orderKey{&t.Cols[s.keyAt[i]], k.Descending, k.NullsFirst}
 	}
 	return argsort(keys, t.N)
 }

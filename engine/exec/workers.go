@@ -3,6 +3,7 @@ package exec
 import (
 	"context"
 	"errors"
+	"runtime"
 	"sync"
 	"sync/atomic"
 
@@ -18,7 +19,11 @@ type inOrderSink interface{ inOrder() }
 // so that no more parts are under way than there are workers.
 func (p *pipeline) chunksInto(ctx context.Context, env *Env, sink Sink) error {
 	chunks := p.Chunks()
-	workers := min(max(1, env.Threads), chunks)
+	workers := env.Threads
+	if workers <= 0 {
+		workers = runtime.GOMAXPROCS(0)
+	}
+	workers = min(workers, chunks)
 	if _, ordered := sink.(inOrderSink); ordered {
 		workers = min(1, chunks)
 	}
