@@ -1,6 +1,7 @@
 package column
 
 import (
+	"slices"
 	"sort"
 	"strconv"
 	"strings"
@@ -85,23 +86,33 @@ func (u *Unit) write(times string, power func(int) string) string {
 	if u == nil {
 		return ""
 	}
+	order := slices.Clone(u.factors)
+	slices.SortStableFunc(order, func(a, b factor) int { return a.place() - b.place() })
 	var b strings.Builder
-	// factors above the line first
-	for pass := 0; pass < 2; pass++ {
-		for _, f := range u.factors {
-			if (f.power > 0) != (pass == 0) {
-				continue
-			}
-			if b.Len() > 0 {
-				b.WriteString(times)
-			}
-			b.WriteString(f.symbol)
-			if f.power != 1 {
-				b.WriteString(power(f.power))
-			}
+	for _, f := range order {
+		if b.Len() > 0 {
+			b.WriteString(times)
+		}
+		b.WriteString(f.symbol)
+		if f.power != 1 {
+			b.WriteString(power(f.power))
 		}
 	}
 	return b.String()
+}
+
+// place says where a factor is written: those above the line first, a time
+// last among its like, as one says cubic metre hours.
+func (f factor) place() int {
+	place := 0
+	if f.power < 0 {
+		place = 2
+	}
+	switch f.symbol {
+	case "s", "min", "h", "d":
+		place++
+	}
+	return place
 }
 
 func superscript(n int) string {

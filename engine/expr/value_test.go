@@ -263,7 +263,7 @@ func TestUnits(t *testing.T) {
 	}
 	cases := []struct{ text, want string }{
 		{"temp + temp", "°C"}, {"temp + 1", "°C"}, {"2 * temp - (1 + 1)", "°C"}, {"temp + plain", ""}, {"volume / area", "m"},
-		{"volume * HOURS(span)", "h·m³"}, {"x ^ 2", "m²"}, {"x ^ 0", ""}, {"volume ^ 0.5", ""}, {"SQRT(area)", "m"}, {"SQRT(volume)", ""},
+		{"volume * HOURS(span)", "m³·h"}, {"x ^ 2", "m²"}, {"x ^ 0", ""}, {"volume ^ 0.5", ""}, {"SQRT(area)", "m"}, {"SQRT(volume)", ""},
 		{"area / area", ""}, {"1 / x", "m⁻¹"}, {"-temp", "°C"}, {"CAST(temp AS REAL)", ""}, {"CAST(temp AS INTEGER)", ""},
 		{"CASE WHEN n = 1 THEN temp ELSE 0 END", "°C"}, {"CASE WHEN n = 1 THEN temp END", "°C"}, {"COALESCE(temp, 0)", "°C"}, {"NULLIF(temp, -99)", "°C"},
 		{"ROUND(temp, 1)", "°C"}, {"ABS(temp)", "°C"}, {"SIGN(temp)", ""}, {"LN(x)", ""}, {"temp % 2", "°C"}, {"FLOOR_TO(x, 0.5)", "m"}, {"GREATEST(x, 2)", "m"},
