@@ -20,7 +20,7 @@ func everyRoundParallel(t *testing.T) {
 func TestThreads(t *testing.T) {
 	everyRoundParallel(t)
 	rapid.Check(t, func(t *rapid.T) {
-		sites := drawSites(t, 1500)
+		sites := drawSites(t, 500)
 		threads := rapid.IntRange(2, 7).Draw(t, "threads")
 		one, err := Build(context.Background(), sites, Options{Threads: 1})
 		if err != nil {

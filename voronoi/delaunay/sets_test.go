@@ -55,7 +55,7 @@ var kinds = map[string]func(r *rand.Rand, n int) []r3.Vec{
 	},
 	"cylinder": func(r *rand.Rand, n int) []r3.Vec {
 		return times(n, func(i int) r3.Vec {
-			s, c := math.Sincos(2 * math.Pi * float64(i%24) / 24)
+			s, c := circle(2 * math.Pi * float64(i%24) / 24)
 			return r3.Vec{X: c, Y: s, Z: float64(i / 24)}
 		})
 	},
@@ -64,7 +64,7 @@ var kinds = map[string]func(r *rand.Rand, n int) []r3.Vec{
 			if i%2 == 0 {
 				return r3.Vec{Z: float64(i)}
 			}
-			s, c := math.Sincos(float64(i))
+			s, c := circle(float64(i))
 			return r3.Vec{X: 10 * c, Y: 10 * s, Z: 0}
 		})
 	},
@@ -123,7 +123,9 @@ var kinds = map[string]func(r *rand.Rand, n int) []r3.Vec{
 	"walk": func(r *rand.Rand, n int) []r3.Vec {
 		return times(n, func(i int) r3.Vec {
 			a := float64(i) * 0.01
-			return r3.Vec{X: 155000 + 20*math.Sin(a), Y: 463000 + 20*math.Cos(1.3*a), Z: 1.1}
+			s, _ := circle(a)
+			_, c := circle(1.3 * a)
+			return r3.Vec{X: 155000 + float64(20*s), Y: 463000 + float64(20*c), Z: 1.1 + float64(i%3)}
 		})
 	},
 	"integers and one odd": func(r *rand.Rand, n int) []r3.Vec {
@@ -137,6 +139,12 @@ var kinds = map[string]func(r *rand.Rand, n int) []r3.Vec{
 		}
 		return times(n, func(int) r3.Vec { return r3.Vec{X: z(), Y: z(), Z: z()} })
 	},
+}
+
+// circle is math.Sincos to 30 binary places, the same at every instruction level.
+func circle(a float64) (s, c float64) {
+	s, c = math.Sincos(a)
+	return math.Round(s*(1<<30)) / (1 << 30), math.Round(c*(1<<30)) / (1 << 30)
 }
 
 func kindNames() []string {
