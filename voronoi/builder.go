@@ -18,7 +18,7 @@ const (
 	farBox = 0x1p20
 	// farReach is how many times the extent a cell may reach in float64; its last
 	// bits would be lost beyond.
-	farReach = 0x1p10
+	farReach = 0x1p5
 )
 
 // builder makes cells one by one. It is the scratch of one goroutine.
@@ -67,6 +67,7 @@ func (d *Diagram) free(b *builder) { d.pool.Put(b) }
 // Open faces.
 func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool) {
 	d := b.d
+	b.gather(p, self)
 	if d.solid == nil {
 		return b.buildOpen(c, p, self)
 	}
@@ -84,13 +85,14 @@ func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool
 // vertices (the empty circumballs of a Voronoi cell). These balls only shrink as
 // the cell is cut, so that one walk through the tree, which passes over every box
 // outside all balls, leaves the final cell, certified at every vertex.
+//
+// near holds the nearest sites: see gather.
 func (b *builder) cut(c *polyhedron.Cell, p Vec, self int32) {
 	tree := b.d.tree
 	b.used.Reset()
 	if self >= 0 {
 		b.used.Add(self)
 	}
-	b.near = tree.KNearest(p, firstNeighbours, b.used, b.near[:0])
 	b.now, b.at, b.reach2 = c, p, reach2(c)
 	for _, q := range b.near {
 		if q.Dist2 > float64(4*b.reach2) {
@@ -114,6 +116,15 @@ func (b *builder) cut(c *polyhedron.Cell, p Vec, self int32) {
 			}
 		}
 	}
+}
+
+// gather finds the sites nearest to p, itself left out.
+func (b *builder) gather(p Vec, self int32) {
+	b.used.Reset()
+	if self >= 0 {
+		b.used.Add(self)
+	}
+	b.near = b.d.tree.KNearest(p, firstNeighbours, b.used, b.near[:0])
 }
 
 // flowerFrom is the number of sites from which a box is held against the balls one
@@ -159,17 +170,23 @@ func reach2(c *polyhedron.Cell) float64 {
 	return far
 }
 
-// buildOpen is build without a solid. The cell begins in a box far larger than
-// the set of sites. If sides of the box are left, exact predicates decide whether
-// the cell is unbounded; if it is not, it only reaches far. Cells that reach far are
-// made once more in two words a coordinate, and in larger boxes where it takes
-// them. A cell that is not closed even so reaches farther than 10^25 times the
-// extent of the sites; it counts as unbounded.
+// buildOpen is build without a solid: the cell begins in an artificial box, and if
+// nothing of the box is left in the end, it was never there.
+//
+// Most cells close in a box that is a few times as large as the neighbourhood. The
+// others try one far larger than the set of sites. If sides of that box are left,
+// exact predicates decide whether the cell is unbounded; if it is not, it only
+// reaches far. What reaches far is made in two words a coordinate, and in larger
+// boxes where it takes them. A cell that is not closed even so reaches farther than
+// 2^90 times the extent of the sites; it counts as unbounded.
 func (b *builder) buildOpen(c *polyhedron.Cell, p Vec, self int32) (bounded bool) {
 	size := b.d.sizeFrom(p)
-	closed := b.inFarBox(c, p, self, size*farBox, false)
-	if closed && b.reach2 <= float64(size*farReach)*float64(size*farReach) {
+	if n := len(b.near); n == firstNeighbours && b.inBox(c, p, self, 4*math.Sqrt(b.near[n-1].Dist2)) {
 		return true
+	}
+	closed := b.inFarBox(c, p, self, size*farBox, false)
+	if reach := math.Sqrt(b.reach2); closed && reach <= size*farReach && b.inBox(c, p, self, 2*reach) {
+		return true // once more, without the rounding of the far box
 	}
 	if !closed && !b.bounded(c, p, self) {
 		return false
@@ -181,6 +198,15 @@ func (b *builder) buildOpen(c *polyhedron.Cell, p Vec, self int32) (bounded bool
 	}
 	b.inFarBox(c, p, self, size*farBox, false)
 	return false
+}
+
+// inBox cuts c from an artificial box of ordinary size and tells whether nothing of
+// the box is left.
+func (b *builder) inBox(c *polyhedron.Cell, p Vec, self int32, size float64) bool {
+	o := polyhedron.Open
+	c.SetBox(Vec{X: -size, Y: -size, Z: -size}, Vec{X: size, Y: size, Z: size}, [6]int32{o, o, o, o, o, o})
+	b.cut(c, p, self)
+	return !c.IsOpen()
 }
 
 // inFarBox cuts c from a far box and tells whether nothing of the box is left.

@@ -191,7 +191,7 @@ func TestLaw4BruteForceOpen(t *testing.T) {
 				continue
 			}
 			if c.Bounded[i] {
-				near(t, fmt.Sprintf("%s: volume of %d", name, i), c.Volume[i]/want.Volume(), 1, 1e-9)
+				near(t, fmt.Sprintf("%s: volume of %d", name, i), c.Volume[i]/want.Volume(), 1, 1e-11)
 			}
 			s := want.Shape()
 			if int(c.Faces[i]) != s.Faces() || int(c.Edges[i]) != s.Edges || int(c.Vertices[i]) != s.Vertices {
