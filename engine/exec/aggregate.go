@@ -48,6 +48,7 @@ type aggregatePart struct {
 	calls  []*callState
 	group  []int32 // of each row of the batch
 	cols   []column.Vector
+	kept   int64 // bytes
 }
 
 // callState is one aggregate over the groups of a part.
@@ -118,8 +119,15 @@ func (p *aggregatePart) Consume(w *Worker, b *column.Batch) error {
 			return err
 		}
 	}
-	// a group costs its key and, at a guess, eight words an aggregate
-	return s.env.keep(int64(p.keys.n-before) * int64(8*p.keys.width+64*len(p.calls)))
+	return p.keep(before)
+}
+
+// keep counts the groups from number `before` on against the limit of memory: a
+// group costs its key and, at a guess, eight words an aggregate.
+func (p *aggregatePart) keep(before int) error {
+	bytes := int64(p.keys.n-before) * int64(8*p.keys.width+64*len(p.calls))
+	p.kept += bytes
+	return p.sink.env.keep(bytes)
 }
 
 func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups []int32) error {
@@ -187,7 +195,12 @@ func (s *aggregateSink) Merge(part Part) error {
 		s.all = p
 		return nil
 	}
+	before := s.all.keys.n
 	to := s.all.keys.absorb(p.keys, nil)
+	s.env.release(p.kept)
+	if err := s.all.keep(before); err != nil {
+		return err
+	}
 	for i, c := range s.all.calls {
 		from := p.calls[i]
 		if c.distinct != nil {

@@ -81,8 +81,8 @@ func (w *cellWatch) say(notes *note.Notes) {
 			continue
 		}
 		what := "rows"
-		if _, ok := c.Step.(*plan.Relation); ok {
-			what = "sites"
+		if _, ok := c.Step.(*plan.Relation); ok && len(c.Relation.Bound.Clauses.Each) == 0 {
+			what = "sites" // with FOR EACH a site has a row in each partition
 		}
 		notes.Add(note.Note, note.Rows, "WHERE left out %d of %d %s of %s: their space is in no sum and no weight, "+
 			"and it is not given to the others (OF (query) or OMITTING would do that)", out, came, what, c.Relation.Bound.Title())

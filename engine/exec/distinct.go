@@ -29,6 +29,7 @@ type distinctPart struct {
 	rows   *tableBuilder
 	ids    []int32
 	fresh  []int32
+	kept   int64 // bytes
 }
 
 func (s *distinctSink) Part(int) Part {
@@ -54,7 +55,9 @@ func (p *distinctPart) add(cols []column.Vector, on []uint64, n int) error {
 	if err := p.rows.addRows(cols, p.fresh); err != nil {
 		return err
 	}
-	return p.rows.env.keep(int64(len(p.fresh)) * (rowBytes(p.rows.schema) + int64(8*p.keys.width)))
+	bytes := int64(len(p.fresh)) * (rowBytes(p.rows.schema) + int64(8*p.keys.width))
+	p.kept += bytes
+	return p.rows.env.keep(bytes)
 }
 
 func (s *distinctSink) Merge(part Part) error {
@@ -64,6 +67,7 @@ func (s *distinctSink) Merge(part Part) error {
 		return nil
 	}
 	t := p.rows.finish()
+	s.env.release(p.kept)
 	return s.all.add(t.Cols, nil, t.N)
 }
 

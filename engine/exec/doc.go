@@ -63,7 +63,7 @@
 // # Limitations
 //
 // Intermediate results are kept in memory and refused beyond Env.Memory, which
-// counts what all sinks of a statement have kept, also what they have given up
-// since. A result has at most 2³¹ − 1 rows. The right side of a join without
+// counts the rows, keys and groups of all sinks of a statement until its end, but
+// not the state of aggregates such as MEDIAN nor what relations compute with. A result has at most 2³¹ − 1 rows. The right side of a join without
 // equalities is walked for every left row.
 package exec

@@ -31,6 +31,9 @@ type Env struct {
 	chunk, batch int
 }
 
+// release takes back what was counted and is given up.
+func (e *Env) release(bytes int64) { e.kept.Add(-bytes) }
+
 func (e *Env) chunkRows() int {
 	if e.chunk > 0 {
 		return e.chunk

@@ -199,7 +199,7 @@ func TestWholePartitionsLeftOut(t *testing.T) {
 	expectNotes(t, aggregate(where(r, first), nil, sum))
 	both := must(expr.NewAnd(first, is(schema, siteID, lang.NotEquals, column.String("A")), plantest.Nowhere))
 	got := notesOf(t, aggregate(where(r, both), nil, sum))
-	if len(got) != 1 || !contains(got[0], "left out 1 of 5 sites") {
+	if len(got) != 1 || !contains(got[0], "left out 1 of 5 rows") {
 		t.Errorf("%q", got)
 	}
 }

@@ -340,9 +340,20 @@ func TestMemory(t *testing.T) {
 	if !errors.As(err, &p) || p.Code != "memory" {
 		t.Errorf("error %v, want one of memory", err)
 	}
+	env = testEnv(0, 0)
+	env.Memory = 1 << 20
+	if got, err := run(t, env, &plan.Limit{Input: n.Input, Count: 100}); err != nil || len(got) != 100 {
+		t.Errorf("%d rows, %v: a small result must fit", len(got), err)
+	}
 	n.Top = 10
-	n.Input = &plan.Limit{Input: n.Input, Count: 100}
-	if _, err := run(t, env, n); err == nil {
-		t.Log("a small result after the refusal fits")
+	n.Input = plantest.Scan(plantest.Table(rng, 200000))
+	env = testEnv(1024, 0)
+	env.Memory, env.Threads = 1<<20, 1
+	if _, err := run(t, env, n); err != nil {
+		t.Errorf("what a sort has forgotten still counts: %v", err)
+	}
+	few := &plan.Aggregate{Input: n.Input, Keys: columns(plantest.Schema, 3, 2), Calls: calls(plantest.Schema, "COUNT", 1), Fields: fields(plantest.Schema, 3, 2, 1)}
+	if _, err := run(t, env, few); err != nil {
+		t.Errorf("groups of merged chunks still count: %v", err)
 	}
 }

@@ -80,6 +80,7 @@ func (s *sortSink) first(t *column.Table) *column.Table {
 	if s.node.Top <= 0 || int64(t.N) <= s.node.Top {
 		return t
 	}
+	s.env.release((int64(t.N) - s.node.Top) * rowBytes(s.keyed))
 	return gatherTable(t, s.order(t)[:s.node.Top])
 }
 

@@ -96,7 +96,8 @@ type Removal struct {
 }
 
 // Removals are the steps below an aggregate that may leave out cells from its
-// weights and sums.
+// weights and sums. Relations whose rows are not sites (contacts) divide no
+// space among their rows and have none to lose.
 func Removals(n *Aggregate) []Removal {
 	input := Lineage(n.Input)
 	var found []Removal
@@ -108,7 +109,7 @@ func Removals(n *Aggregate) []Removal {
 			used = append(used, reads(c.Args[0], input)...)
 		}
 		for _, o := range used {
-			if o.extensive() && !seen[o.Relation] {
+			if o.extensive() && o.Relation.Bound.Def.Own && !seen[o.Relation] {
 				seen[o.Relation] = true
 				found = append(found, removalsAbove(n.Input, o.Relation)...)
 			}
