@@ -126,7 +126,8 @@ type Set struct {
 	Word  Name
 }
 
-// Help is HELP with any words.
+// Help is HELP with any words; dashes between them, as in the codes of errors, say
+// no more than blanks.
 type Help struct {
 	At
 	Topic []Name

@@ -98,7 +98,7 @@ type setGrammar struct {
 
 type helpGrammar struct {
 	Help  bool          `parser:"@HELP"`
-	Topic []anyWordPart `parser:"@@*"`
+	Topic []anyWordPart `parser:"( @@ ( Dash? @@ )* )?"`
 }
 
 type quitGrammar struct {

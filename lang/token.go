@@ -50,7 +50,7 @@ func makeSymbols() map[string]lexer.TokenType {
 	all := map[string]lexer.TokenType{
 		"EOF": tokEOF, "Bad": tokBad, "Word": tokWord, "Quoted": tokQuoted, "Literal": tokText,
 		"Numeral": tokNumber, "Parameter": tokParam, "Left": tokLeft, "Right": tokRight,
-		"Comma": tokComma, "Dot": tokDot, "Equals": tokEquals,
+		"Comma": tokComma, "Dot": tokDot, "Equals": tokEquals, "Dash": tokMinus,
 	}
 	for t, text := range wordText {
 		if text != "" {
