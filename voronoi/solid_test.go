@@ -95,6 +95,45 @@ func TestLawsInSolids(t *testing.T) {
 	}
 }
 
+// Sites outside within the tolerance take their space from the others; some have
+// none inside. The volumes still add up.
+func TestToleranceInSolids(t *testing.T) {
+	for name, room := range rooms(t) {
+		sites := random(200, 24)
+		for i, p := range sites {
+			sites[i] = v(1.6*p.X-0.3, 1.6*p.Y-0.3, 1.6*p.Z-0.3)
+		}
+		d := diagram(t, sites, Options{Solid: room, Tolerance: 0.25})
+		c := measure(t, d, All)
+		near(t, name+": volumes", Total(c.Volume), room.Volume(), 1e-12)
+		near(t, name+": walls", Total(c.WallArea), room.Area(), 1e-8)
+		without := 0
+		for i := range sites {
+			if c.Inside[i] && c.Volume[i] == 0 {
+				without++
+				if c.HasCentroid[i] || c.Area[i] != 0 || c.Faces[i] != 0 || c.Farthest[i] != 0 || c.Clipped[i] {
+					t.Errorf("%s: a cell without space: %s", name, cellText(c, i))
+				}
+			}
+			if outside := room.Side(sites[i], 0.25) == solid.Outside; outside == c.Inside[i] {
+				t.Errorf("%s: site %d inside: %v", name, i, c.Inside[i])
+			}
+		}
+		if without == 0 || len(d.Facts().Outside) == 0 || len(d.Facts().OnWall) == 0 {
+			t.Errorf("%s: %d sites without space, facts %+v", name, without, d.Facts())
+		}
+		err := d.Contacts(context.Background(), nil, func(site int32, contacts []Contact) error {
+			if c.Volume[site] == 0 && len(contacts) > 0 {
+				t.Errorf("%s: site %d has no space and %d contacts", name, site, len(contacts))
+			}
+			return nil
+		})
+		if err != nil {
+			t.Fatal(err)
+		}
+	}
+}
+
 // The middle of a face that a solid cuts, by hand: two sites in a room whose plan
 // is an L share a face in the plane x = 1/4 or y = 1/4.
 func TestMiddleOfACutFace(t *testing.T) {

@@ -35,10 +35,11 @@
 // # What is exact and what is rounded
 //
 // The topology follows from the computed signs without exception. Coordinates
-// are rounded: a new vertex is interpolated on its edge, and where the edge is
-// far longer than its distance from the site (cells that began in a huge box) it
-// is set from its three planes instead. Every product is rounded on its own (no
-// fused multiply-add), so that all builds give the same bits.
+// are rounded: a new vertex is interpolated on its edge. In cells that began in a
+// huge box ([Cell.SetFarBox]) it is set from its three planes where that is more
+// accurate, or kept in two words a coordinate (Dekker 1971) where it has to be. Every
+// product is rounded on its own (no fused multiply-add), so that all builds give the
+// same bits.
 //
 // # Limitations
 //
