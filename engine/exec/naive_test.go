@@ -57,6 +57,11 @@ func naive(n plan.Node) ([]row, error) {
 		return nil, err
 	}
 	schema := n.Inputs()[0].Schema()
+	return naiveStep(n, in, schema)
+}
+
+// naiveStep computes a node with one input.
+func naiveStep(n plan.Node, in []row, schema column.Schema) ([]row, error) {
 	switch n := n.(type) {
 	case *plan.Relation:
 		return naiveRelation(n, in, schema)

@@ -57,6 +57,9 @@ func (r *runner) openSink(ctx context.Context, n plan.Node) (*pipeline, error) {
 	case *plan.Sort:
 		sink = newSortSink(r.env, n)
 	case *plan.Limit:
+		if n.Count == 0 { // asked for the columns alone
+			return sourceOnly(newTableSource(r.env, newTableBuilder(r.env, n.Schema()).finish())), nil
+		}
 		sink = newLimitSink(r.env, n)
 	case *plan.Distinct:
 		sink = newDistinctSink(r.env, n.Input.Schema())

@@ -101,19 +101,11 @@ func markID(need []bool, schema column.Schema) {
 }
 
 func remapAll(list []expr.Expr, to []int) []expr.Expr {
-	out := make([]expr.Expr, len(list))
-	for i, e := range list {
-		out[i] = expr.Remap(e, to)
-	}
-	return out
+	return mapList(list, func(e expr.Expr) expr.Expr { return expr.Remap(e, to) })
 }
 
 func remapKeys(keys []SortKey, to []int) []SortKey {
-	out := slices.Clone(keys)
-	for i := range out {
-		out[i].Expr = expr.Remap(out[i].Expr, to)
-	}
-	return out
+	return mapKeys(keys, func(e expr.Expr) expr.Expr { return expr.Remap(e, to) })
 }
 
 func prunedValues(n *Values, need []bool) (Node, []int) {

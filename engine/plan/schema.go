@@ -151,37 +151,17 @@ func rewrite(n Node, f func(Node) (Node, error)) (Node, error) {
 // mapExprs is a copy of n with f applied to each of its own expressions, which
 // keep their types. A node without expressions is given back as it is.
 func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
-	list := func(in []expr.Expr) []expr.Expr {
-		out := make([]expr.Expr, len(in))
-		for i, e := range in {
-			out[i] = f(e)
-		}
-		return out
-	}
-	maybe := func(e expr.Expr) expr.Expr {
-		if e == nil {
-			return nil
-		}
-		return f(e)
-	}
-	keys := func(in []SortKey) []SortKey {
-		out := append([]SortKey(nil), in...)
-		for i := range out {
-			out[i].Expr = f(out[i].Expr)
-		}
-		return out
-	}
 	switch n := n.(type) {
 	case *Values:
 		c := *n
 		c.Rows = make([][]expr.Expr, len(n.Rows))
 		for i, row := range n.Rows {
-			c.Rows[i] = list(row)
+			c.Rows[i] = mapList(row, f)
 		}
 		return &c
 	case *Relation:
 		c := *n
-		c.Wanted = maybe(n.Wanted)
+		c.Wanted = mapMaybe(n.Wanted, f)
 		return &c
 	case *Filter:
 		c := *n
@@ -189,27 +169,50 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 		return &c
 	case *Project:
 		c := *n
-		c.Exprs = list(n.Exprs)
+		c.Exprs = mapList(n.Exprs, f)
 		return &c
 	case *Aggregate:
 		c := *n
-		c.Keys = list(n.Keys)
+		c.Keys = mapList(n.Keys, f)
 		c.Calls = append([]Call(nil), n.Calls...)
 		for i := range c.Calls {
 			call := &c.Calls[i]
-			call.Args = list(call.Args)
-			call.Filter, call.Weight = maybe(call.Filter), maybe(call.Weight)
-			call.OrderBy = keys(call.OrderBy)
+			call.Args = mapList(call.Args, f)
+			call.Filter, call.Weight = mapMaybe(call.Filter, f), mapMaybe(call.Weight, f)
+			call.OrderBy = mapKeys(call.OrderBy, f)
 		}
 		return &c
 	case *Join:
 		c := *n
-		c.LeftKeys, c.RightKeys, c.Rest = list(n.LeftKeys), list(n.RightKeys), maybe(n.Rest)
+		c.LeftKeys, c.RightKeys, c.Rest = mapList(n.LeftKeys, f), mapList(n.RightKeys, f), mapMaybe(n.Rest, f)
 		return &c
 	case *Sort:
 		c := *n
-		c.Keys = keys(n.Keys)
+		c.Keys = mapKeys(n.Keys, f)
 		return &c
 	}
 	return n
+}
+
+func mapList(in []expr.Expr, f func(expr.Expr) expr.Expr) []expr.Expr {
+	out := make([]expr.Expr, len(in))
+	for i, e := range in {
+		out[i] = f(e)
+	}
+	return out
+}
+
+func mapMaybe(e expr.Expr, f func(expr.Expr) expr.Expr) expr.Expr {
+	if e == nil {
+		return nil
+	}
+	return f(e)
+}
+
+func mapKeys(in []SortKey, f func(expr.Expr) expr.Expr) []SortKey {
+	out := append([]SortKey(nil), in...)
+	for i := range out {
+		out[i].Expr = f(out[i].Expr)
+	}
+	return out
 }
