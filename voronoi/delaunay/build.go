@@ -16,6 +16,8 @@ type T struct {
 	removed   int     // places that were removed
 	real      int     // tets[:real] are real,
 	ghosts    int     // the rest ghosts
+	ownSites  bool    // sites is no longer the caller's slice
+	edit      *worker // of Insert and Remove
 }
 
 // Build makes the Delaunay tetrahedralisation of sites. Sites that coincide become

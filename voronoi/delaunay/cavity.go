@@ -145,7 +145,6 @@ func (w *worker) fill(p int32) {
 	tets, pts := m.tets, m.pts
 	queue, rim, locals, facets := w.queue, w.rim[:edge], w.locals, w.facets[:edge]
 	table, stride := w.table, w.stride
-	smallest := m.smallestSphere
 	px, py, pz := pts[p].x, pts[p].y, pts[p].z
 	known := uint32(1) // locals[0] is the ghost
 	hint := uint32(noTet)
@@ -196,7 +195,7 @@ func (w *worker) fill(p int32) {
 		r2 := ox*ox + oy*oy + oz*oz
 		t.c = [3]float64{px + ox, py + oy, pz + oz}
 		p2 := a.q * b.q * c.q
-		if det*det*plainKappa2 > p2+kappaFloor && r2 > smallest {
+		if det*det*plainKappa2 > p2+kappaFloor && r2 > smallestSphere {
 			t.lo, t.hi = float32(r2*(1-plainMargin)), float32(r2*(1+plainMargin))
 		} else {
 			t.lo, t.hi = carefulBounds(det, p2, r2)

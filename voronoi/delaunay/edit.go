@@ -22,8 +22,10 @@ func (t *T) Insert(p r3.Vec) (site int, err error) {
 	if site >= mostSites {
 		return -1, ErrTooMany
 	}
-	// The caller's slice may have room behind its end that is not ours.
-	t.sites = append(t.sites[:3*site:3*site], p.X, p.Y, p.Z)
+	if !t.ownSites { // the caller's slice may have room behind its end
+		t.sites, t.ownSites = t.sites[:3*site:3*site], true
+	}
+	t.sites = append(t.sites, p.X, p.Y, p.Z)
 	if t.dimension < 3 {
 		t.place = append(t.place, -1)
 		return site, t.rebuild()
@@ -122,8 +124,11 @@ func (m *mesh) setSphere(t *tet) {
 }
 
 func (t *T) editor() *worker {
-	w := newWorker(&t.mesh)
-	return w
+	if t.edit == nil {
+		t.edit = newWorker(&t.mesh)
+	}
+	t.edit.free, t.edit.next, t.edit.end = t.edit.free[:0], 0, 0
+	return t.edit
 }
 
 // room gives an editing worker n records.
@@ -254,7 +259,7 @@ func (t *T) rebuild() error {
 	for i, s := range n.repeats {
 		n.repeats[i] = live[s]
 	}
-	n.sites, n.place, n.removed = t.sites, place, t.removed
+	n.sites, n.place, n.removed, n.ownSites = t.sites, place, t.removed, t.ownSites
 	*t = *n
 	return nil
 }

@@ -2,6 +2,7 @@ package delaunay
 
 import (
 	"math"
+	"math/bits"
 
 	"gonum.org/v1/gonum/spatial/r3"
 
@@ -24,13 +25,15 @@ import (
 // determinant that passes is above 1e-140 where an underflowing product errs by
 // 1e-322. A fused operation only rounds less.
 //
-// Stage 2, when coordinates are multiples of a unit (whole): with all points in units
-// the determinant and every number on its way are integers.
+// Before it, five corners of one box with axis-parallel edges are recognised as
+// cospherical (box.go).
+//
+// Stage 2, when coordinates are multiples of a unit, all of them (whole) or those of
+// the points asked about (commonUnit): in units the determinant and every number on its way are integers.
 //   - If the bound on the terms' magnitudes is below 2^52, the float determinant was
 //     exact after all.
 //   - If stage 1 failed, the true determinant is below twice the bound; where that is
 //     below 2^62 or 2^126 the integer determinant modulo 2^64 or 2^128 is the true one.
-//   - Five corners of one box with axis-parallel edges are cospherical.
 //   - Otherwise integers of five words hold everything.
 //
 // Stage 3, for the others: expansions, and math/big where these could underflow.
@@ -42,20 +45,63 @@ const (
 )
 
 func (m *mesh) setLimits() {
-	f := m.frame
-	m.whole = f.bits <= maxBits
-	k := f.bits
-	m.unit = math.Ldexp(1, k)
-	// terms <= 2√2 √M < 2^52 units of 2^-5k; M < 2^(104-3-10k), one bit spare
-	m.inExact = math.Ldexp(1, 100-10*k)
-	// 2 √(inFactor·M) < 2^62 units: M < 2^(124-2+95-10k), one bit spare
-	m.inWrap64 = math.Ldexp(1, 216-10*k)
-	m.inWrap128 = math.Ldexp(1, 344-10*k)
-	// terms <= √2 √N < 2^52 units of 2^-3k
-	m.orientExact = math.Ldexp(1, 102-6*k)
-	// 2 √(orientFactor·N) < 2^62 units: N < 2^(124-2+99-6k)
-	m.orientWrap64 = math.Ldexp(1, 220-6*k)
-	m.setSphereLimits()
+	m.whole = m.frame.bits <= maxBits
+	if m.whole {
+		m.limits = limitsOf[m.frame.bits]
+	}
+}
+
+// limits are what the stages for multiples of 2^-k compare M and N with.
+type limits struct {
+	unit                         float64 // 2^k
+	inExact, inWrap64, inWrap128 float64
+	orientExact, orientWrap64    float64
+}
+
+// mostUnit is the largest k that limits are kept for: beyond it they would underflow.
+const mostUnit = 100
+
+var limitsOf = makeLimits()
+
+func makeLimits() (l [mostUnit + 1]limits) {
+	for k := range l {
+		l[k] = limits{
+			unit: math.Ldexp(1, k),
+			// terms <= 2√2 √M < 2^52 units of 2^-5k; M < 2^(104-3-10k), one bit spare
+			inExact: math.Ldexp(1, 100-10*k),
+			// 2 √(inFactor·M) < 2^62 units: M < 2^(124-2+95-10k), one bit spare
+			inWrap64:  math.Ldexp(1, 216-10*k),
+			inWrap128: math.Ldexp(1, 344-10*k),
+			// terms <= √2 √N < 2^52 units of 2^-3k
+			orientExact: math.Ldexp(1, 102-6*k),
+			// 2 √(orientFactor·N) < 2^62 units: N < 2^(124-2+99-6k)
+			orientWrap64: math.Ldexp(1, 220-6*k),
+		}
+	}
+	return l
+}
+
+// commonUnit returns the limits for the largest power of two that the points'
+// coordinates are multiples of; ok is false when they are more than 2^maxBits of it
+// from zero, or it is too small.
+func commonUnit(points ...*point) (l *limits, ok bool) {
+	low, high := 2000, -2000
+	for _, p := range points {
+		for _, x := range [3]float64{p.x, p.y, p.z} {
+			if x == 0 {
+				continue
+			}
+			b := math.Float64bits(x)
+			e := int(b>>52&0x7ff) - 1075
+			low = min(low, e+bits.TrailingZeros64(b|1<<52))
+			high = max(high, e+53)
+		}
+	}
+	k := max(-low, 0)
+	if k > mostUnit || high+k > maxBits {
+		return nil, false
+	}
+	return &limitsOf[k], true
 }
 
 func (m *mesh) vec(p int32) r3.Vec {
@@ -112,16 +158,20 @@ func (m *mesh) orient(ia, ib, ic, id int32) int {
 	if det*det > orientFactor*n && n > filterFloor {
 		return signOf(det)
 	}
-	if m.whole {
-		if n < m.orientExact {
+	l, ok := &m.limits, m.whole
+	if !ok && !m.frame.rounded {
+		l, ok = commonUnit(a, b, c, d)
+	}
+	if ok {
+		if n < l.orientExact && n > filterFloor {
 			return signOf(det)
 		}
-		return m.orientWhole(a, b, c, d, n)
+		return l.orientWhole(a, b, c, d, n)
 	}
 	return predicate.Orient3D(m.vec(ia), m.vec(ib), m.vec(ic), m.vec(id))
 }
 
-func (m *mesh) orientWhole(a, b, c, d *point, n float64) int {
+func (m *limits) orientWhole(a, b, c, d *point, n float64) int {
 	k := m.unit
 	ax, ay, az := int64(a.x*k), int64(a.y*k), int64(a.z*k)
 	ux, uy, uz := int64(b.x*k)-ax, int64(b.y*k)-ay, int64(b.z*k)-az
@@ -153,6 +203,9 @@ func signInt(x int64) int {
 func (m *mesh) inSphere(v [4]int32, e int32) bool {
 	pts := m.pts
 	a, b, c, d, o := &pts[v[0]], &pts[v[1]], &pts[v[2]], &pts[v[3]], &pts[e]
+	if codes, ok := oneBox(a, b, c, d, o); ok && !m.frame.rounded {
+		return boxTie(codes)
+	}
 	ax, ay, az := a.x-o.x, a.y-o.y, a.z-o.z
 	bx, by, bz := b.x-o.x, b.y-o.y, b.z-o.z
 	cx, cy, cz := c.x-o.x, c.y-o.y, c.z-o.z
@@ -169,14 +222,18 @@ func (m *mesh) inSphere(v [4]int32, e int32) bool {
 	if det*det > inFactor*n && n > filterFloor {
 		return det > 0
 	}
-	if !m.whole {
+	l, ok := &m.limits, m.whole
+	if !ok && !m.frame.rounded {
+		l, ok = commonUnit(a, b, c, d, o)
+	}
+	if !ok {
 		return predicate.InSpherePerturbed(m.vec(v[0]), m.vec(v[1]), m.vec(v[2]), m.vec(v[3]), m.vec(e)) > 0
 	}
 	s := 0
-	if n < m.inExact {
+	if n < l.inExact && n > filterFloor {
 		s = signOf(det)
 	} else {
-		s = m.inSphereWhole(a, b, c, d, o, n)
+		s = l.inSphereWhole(a, b, c, d, o, n)
 	}
 	if s != 0 {
 		return s > 0
@@ -210,11 +267,8 @@ func (m *mesh) tie(v [4]int32, e int32) bool {
 	return false
 }
 
-func (m *mesh) inSphereWhole(a, b, c, d, o *point, n float64) int {
+func (m *limits) inSphereWhole(a, b, c, d, o *point, n float64) int {
 	sure := n > filterFloor
-	if sure && n >= m.inWrap128 && oneBox(a, b, c, d, o) {
-		return 0
-	}
 	k := m.unit
 	ox, oy, oz := int64(o.x*k), int64(o.y*k), int64(o.z*k)
 	ax, ay, az := int64(a.x*k)-ox, int64(a.y*k)-oy, int64(a.z*k)-oz
@@ -267,20 +321,4 @@ func inSphere320(r [4][3]int64) int {
 	td := bc.times(a[2]).sub(ac.times(b[2])).add(ab.times(c[2]))
 	return ta.times(norm64(a)).sub(tb.times(norm64(b))).
 		add(tc.times(norm64(c))).sub(td.times(norm64(d))).sign()
-}
-
-// oneBox reports whether the points are corners of one axis-parallel box.
-func oneBox(a, b, c, d, o *point) bool {
-	return twoValues(a.x, b.x, c.x, d.x, o.x) && twoValues(a.y, b.y, c.y, d.y, o.y) &&
-		twoValues(a.z, b.z, c.z, d.z, o.z)
-}
-
-func twoValues(a, b, c, d, o float64) bool {
-	other := b
-	if other == o {
-		if other = c; other == o {
-			other = d
-		}
-	}
-	return (a == o || a == other) && (b == o || b == other) && (c == o || c == other) && (d == o || d == other)
 }

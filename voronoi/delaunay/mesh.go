@@ -50,18 +50,9 @@ type mesh struct {
 	pts   []point   // pts[0] is the ghost
 	tets  []tet
 	used  int64 // records of tets in use, on a free list or in a worker's block
-	limits
-}
 
-// limits are thresholds on the product of squared lengths that an exact stage looks
-// at; see exact.go.
-type limits struct {
-	whole                        bool // coordinates are multiples of 2^-bits, bits <= maxBits
-	unit                         float64
-	inExact, inWrap64, inWrap128 float64
-	orientExact, orientWrap64    float64
-	smallestSphere               float64 // squared radius from which the simple bounds hold
-	centreError                  float64 // relative error of a centre times its radius
+	whole  bool // coordinates are multiples of 2^-bits for bits <= maxBits
+	limits limits
 }
 
 // worker inserts points; every goroutine has its own.

@@ -28,11 +28,8 @@ const (
 	worstMargin = 0x1p-8
 )
 
-func (m *mesh) setSphereLimits() {
-	// 8ε√3/R < 2^-25
-	const r = 8 * 2 * epsilon * (1 << 25)
-	m.smallestSphere = r * r
-}
+// smallestSphere is the squared radius from which the plain bounds hold: 16ε/R < 2^-25.
+const smallestSphere = (16 * epsilon * (1 << 25)) * (16 * epsilon * (1 << 25))
 
 // carefulBounds returns the bounds of a sphere outside the plain range. det is 2D's
 // half, p2 the square of P, r2 the squared radius.
