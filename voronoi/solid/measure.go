@@ -223,9 +223,7 @@ func (w *Work) cutByPiece(c *polyhedron.Cell, q *piece) bool {
 		w.body.Clip(top.normal(), top.offset(w.site), seam) == polyhedron.Empty {
 		return false
 	}
-	// A steep edge hardly bounds the heights in the plan: its ends do.
-	const steep = 1e-3
-	if math.Abs(bottom.n.Y) < steep || math.Abs(top.n.Y) < steep {
+	if isSteep(bottom) || isSteep(top) {
 		return w.body.Clip(Vec{Y: -1}, w.site.Y-q.lo.Y, seam) != polyhedron.Empty &&
 			w.body.Clip(Vec{Y: 1}, q.hi.Y-w.site.Y, seam) != polyhedron.Empty
 	}

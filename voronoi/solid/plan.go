@@ -218,17 +218,20 @@ func (p *plan) side(q Vec2) Side {
 func (p *plan) distance(q Vec2) float64 {
 	best := math.Inf(1)
 	for i := range p.edges {
-		e := &p.edges[i]
-		d, v := sub2(e.b, e.a), sub2(q, e.a)
-		t := dot2(v, d) / dot2(d, d)
-		switch {
-		case t <= 0:
-			best = min(best, norm2(v))
-		case t >= 1:
-			best = min(best, distance2(q, e.b))
-		default:
-			best = min(best, math.Abs(dot2(v, e.n)))
-		}
+		best = min(best, p.edges[i].distance(q))
 	}
 	return best
+}
+
+// distance is the distance from q to the edge.
+func (e *edge) distance(q Vec2) float64 {
+	d, v := sub2(e.b, e.a), sub2(q, e.a)
+	t := dot2(v, d) / dot2(d, d)
+	switch {
+	case t <= 0:
+		return norm2(v)
+	case t >= 1:
+		return distance2(q, e.b)
+	}
+	return math.Abs(dot2(v, e.n))
 }
