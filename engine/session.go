@@ -48,6 +48,7 @@ type Session struct {
 	rowLimit  int      // of tables on a screen, 0: what the screen says
 	results   int      // printed so far
 	running   []string // scripts that RUN one another, for cycles
+	last      error    // that was printed, for HELP ERROR
 	checkOnly bool
 }
 
@@ -208,6 +209,7 @@ func (s *Session) say(format string, args ...any) {
 }
 
 func (s *Session) complain(err error) {
+	s.last = err
 	fmt.Fprintln(s.o.Err, strings.TrimRight(problem.Render(err), "\n"))
 }
 

@@ -1,0 +1,95 @@
+package catalogue
+
+// ofQueries are the slips in the build of a query.
+var ofQueries = []Entry{
+	{
+		Code:    "syntax",
+		Meaning: "The text is no statement of the language. Nothing of a script runs before all of it can be read.",
+		WayOut:  "The mark stands where reading stopped; HELP and the first word of the statement show how it is written.",
+		Example: "SELECT id, temp FORM hall;",
+	},
+	{
+		Code:    "types",
+		Meaning: "An operator, a function or a clause was given a value of a type that it does not take.",
+		WayOut:  "CAST(x AS REAL) brings a value to another type; HELP TYPES tells of them.",
+		Example: "SELECT id FROM hall WHERE level > 3;",
+	},
+	{
+		Code:    "units",
+		Meaning: "Values in different units were added, compared or put into one column.",
+		WayOut:  "Convert one of them, and CAST(… AS REAL) drops the unit that is no longer true. HELP UNITS tells more.",
+		Example: "SELECT id FROM CELLS OF hall WHERE volume > area;",
+	},
+	{
+		Code:    "arguments",
+		Meaning: "A function was called in a way in which it cannot be: too many or too few arguments, one that must be constant, or a clause that it does not take.",
+		WayOut:  "HELP and the name of the function show how it is written.",
+		Example: "SELECT QUANTILE(temp) FROM hall;",
+	},
+	{
+		Code:    "aggregate",
+		Meaning: "A function of many rows stands where each row is still single, or where there are no rows at all.",
+		WayOut:  "Conditions on groups stand in HAVING. To compare rows with a mean, compute it in a query of its own and join it.",
+		Example: "SELECT id FROM hall WHERE temp > AVG(temp);",
+	},
+	{
+		Code:    "nested-aggregate",
+		Meaning: "An aggregate stands inside another.",
+		WayOut:  "Compute the inner one in a query of its own: SELECT AVG(highest) FROM (SELECT MAX(temp) AS highest FROM hall GROUP BY level).",
+		Example: "SELECT AVG(MAX(temp)) FROM hall;",
+	},
+	{
+		Code:    "not-grouped",
+		Meaning: "A column that has many values in a group is asked for as if it had one.",
+		WayOut:  "Add it to GROUP BY, or say which value is meant: MIN, MAX, AVG, FIRST.",
+		Example: "SELECT level, AVG(temp) FROM hall;",
+	},
+	{
+		Code:    "no-groups",
+		Meaning: "HAVING stands in a query that makes no groups.",
+		WayOut:  "Conditions on single rows stand in WHERE.",
+		Example: "SELECT id FROM hall HAVING temp > 8;",
+	},
+	{
+		Code:    "position",
+		Meaning: "The number after ORDER BY or GROUP BY is not the position of a column of SELECT.",
+		WayOut:  "Positions count from 1; a name says more.",
+		Example: "SELECT id FROM hall ORDER BY 2;",
+	},
+	{
+		Code:    "order-distinct",
+		Meaning: "With DISTINCT, rows are ordered by something that is not shown, and of which equal rows may have different values.",
+		WayOut:  "Show what is ordered by.",
+		Example: "SELECT DISTINCT level FROM hall ORDER BY temp;",
+	},
+	{
+		Code:    "columns",
+		Meaning: "The sides of a UNION, or the rows of VALUES, have different numbers of columns.",
+		WayOut:  "Give both the same columns; CAST(NULL AS REAL) fills one that is missing.",
+		Example: "SELECT id FROM hall UNION ALL SELECT logger, temp FROM log;",
+	},
+	{
+		Code:    "distinct-weight",
+		Meaning: "An aggregate is to take each value once and to weigh it by its rows, which may differ in weight.",
+		WayOut:  "Leave DISTINCT out, or weigh in a query of its own.",
+		Unshown: "the same slip is found earlier, under the code arguments",
+	},
+	{
+		Code:    "clauses",
+		Meaning: "Two clauses of a relation contradict each other.",
+		WayOut:  "Leave one of them out.",
+		Example: "SELECT id, volume FROM CELLS OF hall WITHIN air UNCLIPPED;",
+	},
+	{
+		Code:    "for-each",
+		Meaning: "FOR EACH names the identifier, so that every site would have the whole space for itself.",
+		WayOut:  "FOR EACH takes an instant or a pass: what the sites have in common.",
+		Example: "SELECT id, volume FROM CELLS OF hall FOR EACH id;",
+	},
+	{
+		Code:    "not-yet",
+		Meaning: "The language has this, and this version of the program does not. It is refused by name, never passed over.",
+		WayOut:  "HELP marks what is not there yet; where there is another way, the message names it.",
+		Example: "SELECT * FROM OVERLAY OF hall AGAINST hall;",
+	},
+}

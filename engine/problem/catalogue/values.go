@@ -1,0 +1,41 @@
+package catalogue
+
+// ofValues are the faults of single values.
+var ofValues = []Entry{
+	{
+		Code:    "no-value",
+		Meaning: "A calculation has no value in a row: a division of 0 by 0, the logarithm of a negative number. It is never a silent gap, since a mean over the rest would look like one over all.",
+		WayOut:  "Leave such rows out with WHERE, or say what they shall be: CASE WHEN x > 0 THEN LN(x) END, NULLIF(x, 0).",
+		Example: "SELECT id, LN(temp - 5) FROM hall;",
+	},
+	{
+		Code:    "overflow",
+		Meaning: "A result is beyond the range of its type.",
+		WayOut:  "INTEGER has 64 bits; CAST(n AS REAL) computes with REAL, rounded to about 16 digits.",
+		Example: "SELECT 9223372036854775807 + 1;",
+	},
+	{
+		Code:    "cast",
+		Meaning: "A text does not read as a value of the type that it is cast to.",
+		WayOut:  "CASE leaves such rows out or gives them a value; MISSING 'n/a' on import reads a mark as NULL.",
+		Example: "SELECT id, CAST(level AS REAL) FROM hall;",
+	},
+	{
+		Code:    "timestamp",
+		Meaning: "The text behind TIMESTAMP is no date and time.",
+		WayOut:  "Write TIMESTAMP '2031-04-07 08:15:00', in UTC, or with a zone: '2031-04-07 08:15:00+02:00'.",
+		Example: "SELECT * FROM log WHERE t > TIMESTAMP '7.4.2031 08:15';",
+	},
+	{
+		Code:    "interval",
+		Meaning: "INTERVAL is not followed by a number and a unit, or has a unit without a fixed length.",
+		WayOut:  "Write INTERVAL '15' MINUTE; units are SECOND, MINUTE, HOUR, DAY and WEEK. A month has no fixed length.",
+		Example: "SELECT MAX(t) - INTERVAL '1' MONTH FROM log;",
+	},
+	{
+		Code:    "weight",
+		Meaning: "A weight is negative, infinite or NULL. A weight is a share of space or time, and such a one would falsify the whole mean.",
+		WayOut:  "Cells are unbounded where no solid closes them: put the campaign WITHIN one, or leave them out with WHERE bounded, which makes the answer one of the inner cells.",
+		Example: "SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCLIPPED;",
+	},
+}
