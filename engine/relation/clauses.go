@@ -1,0 +1,116 @@
+package relation
+
+import (
+	"slices"
+
+	"nearcell/lang"
+)
+
+// Clause is the registry line of a clause of relations: what HELP tells of it.
+// Which relation takes it stands in the Definition of that relation.
+type Clause struct {
+	Name    string // as in Definition.Clauses: "FOR EACH"
+	Syntax  string
+	Meaning string
+	Example string // a query, over a campaign hall, a solid air, a table log and a view readings
+}
+
+// clauses is the registry, in the order in which HELP lists it.
+var clauses = []Clause{
+	{"WITHIN", "WITHIN solid | WITHIN (solid, solid)",
+		"The cells end at the walls of the solid. Sites farther outside than the campaign's TOLERANCE are left out of the partition and named in a note. " +
+			"It goes before the solid of the campaign. Several solids in brackets are zones: each is divided among its own sites only.",
+		"SELECT SUM(volume) FROM CELLS OF readings FOR EACH t WITHIN air;"},
+	{"UNCLIPPED", "UNCLIPPED",
+		"The open diagram, although the campaign has a solid. Cells at the rim then run to infinity, and their volume is Infinity.",
+		"SELECT id, volume FROM CELLS OF hall UNCLIPPED WHERE bounded;"},
+	{"FOR EACH", "FOR EACH column | FOR EACH (column, column)",
+		"Makes one partition for each value, such as an instant or a pass; the rows carry the value. The space of a site that is missing in one of them goes to its neighbours there.",
+		"SELECT t, AVG(temp) WEIGHTED BY volume AS mean FROM CELLS OF readings FOR EACH t WITHIN air GROUP BY t ORDER BY t;"},
+	{"OMITTING", "OMITTING ('id', 'id') BECAUSE 'reason'",
+		"Leaves sites out before the partition, so that their space goes to their neighbours; a note tells of it with the reason. WHERE only chooses the rows that are shown and never changes which sites partition.",
+		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall OMITTING ('L08') BECAUSE 'hangs in the sun';"},
+	{"MEASURED IN", "MEASURED IN solid | MEASURED IN (solid, solid)",
+		"All sites partition the solid; volumes, areas and sections count inside each of these parts only, with a row for each in the column part: the share of the racks over 8 °C.",
+		"SELECT part, SUM(volume) FROM CELLS OF hall MEASURED IN (racks, aisle) GROUP BY part;"},
+	{"STRETCHED", "STRETCHED (sx, sy, sz)",
+		"Distances are measured in a stretched space: with (1, 1, 5) a metre up counts as five. All results are in true units.",
+		"SELECT id, volume FROM CELLS OF hall STRETCHED (1, 1, 5);"},
+	{"UNCERTAINTY", "UNCERTAINTY (column value EACH, value COMMON)",
+		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share.",
+		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON);"},
+	{"METHOD", "METHOD SIBSON | LAPLACE | LINEAR | NEAREST | IDW(power)",
+		"How values between the sites are estimated.",
+		"SELECT * FROM RESIDUALS OF hall FOR temp METHOD SIBSON;"},
+	{"FOR", "FOR column",
+		"The reading that the relation is about.",
+		"SELECT * FROM RESIDUALS OF hall FOR temp;"},
+	{"AT", "AT points | AT (query) | AT z = value",
+		"Where to estimate, or where to cut.",
+		"SELECT * FROM SECTION OF hall AT z = 1.1;"},
+	{"THROUGH", "THROUGH (x, y, z) NORMAL (nx, ny, nz)",
+		"Cuts along any plane: a point of it and what stands upright on it.",
+		"SELECT * FROM SECTION OF hall THROUGH (0, 0, 1) NORMAL (0, 1, 1);"},
+	{"ABOVE", "ABOVE value", "The limit that is exceeded.",
+		"SELECT * FROM EXCEEDANCE OF hall FOR temp ABOVE 8;"},
+	{"BELOW", "BELOW value", "The limit that is fallen short of.",
+		"SELECT * FROM EPISODES OF log BY logger ON t FOR temp BELOW 2;"},
+	{"THRESHOLDS", "THRESHOLDS (value, value)", "Several limits, with a row for each.",
+		"SELECT * FROM EXCEEDANCE OF hall FOR temp THRESHOLDS (7, 8, 9);"},
+	{"NUMBER", "NUMBER count", "How many are proposed or chosen.",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 5;"},
+	{"CLEARANCE", "CLEARANCE distance", "How far proposed sites keep from the walls.",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 5 CLEARANCE 0.3;"},
+	{"AMONG", "AMONG points | AMONG (query)", "The places that may be proposed.",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 5 AMONG (SELECT x, y, z FROM hall);"},
+	{"DISTANCES", "DISTANCES (value, value)", "For each distance, the share of the space that is farther from every site: columns beyond_1, beyond_2 …",
+		"SELECT * FROM SPACING OF hall DISTANCES (2.5, 5);"},
+	{"ACROSS", "ACROSS length UP length", "What distances across and up are counted in, where a metre up is not a metre across.",
+		"SELECT * FROM SPACING OF hall ACROSS 5 UP 2;"},
+	{"AGAINST", "AGAINST campaign | AGAINST (query)", "The other campaign, whose attributes carry the prefix other_.",
+		"SELECT * FROM OVERLAY OF hall AGAINST hall;"},
+	{"STEP", "STEP length", "The distance from one point to the next.",
+		"SELECT * FROM GRID OF air STEP 0.5;"},
+	{"WEIGHTS", "WEIGHTS AREA | CONTACT | CONDUCTANCE", "How strongly cells that touch count as neighbours: all alike (CONTACT), by the area of their face, or by the area over the distance.",
+		"SELECT * FROM AUTOCORRELATION OF hall FOR temp WEIGHTS AREA;"},
+	{"BY", "BY column ON time | BY MEAN | BY HIGHEST | BY COURSE", "What tells the loggers apart, with ON the time of the readings; or what the chosen sites are to stand for.",
+		"SELECT * FROM AUDIT OF log BY logger ON t;"},
+	{"EVERY", "EVERY interval [FROM time TO time]", "The instants of a series, or the readings that were to be expected.",
+		"SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE;"},
+	{"STAMP", "STAMP AT START | INSTANT | END", "What the time of a reading stands for: the start of its interval, its end, or the instant itself.",
+		"SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '1' HOUR METHOD MEAN STAMP AT START;"},
+	{"LONGEST GAP", "LONGEST GAP interval", "Across a longer gap nothing is filled in.",
+		"SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE LONGEST GAP INTERVAL '1' HOUR;"},
+	{"BRIDGING", "BRIDGING interval", "A shorter return below the limit does not end an excursion.",
+		"SELECT * FROM EPISODES OF log BY logger ON t FOR temp ABOVE 8 BRIDGING INTERVAL '30' MINUTE;"},
+	{"UNTIL", "UNTIL BELOW value | UNTIL ABOVE value", "The excursion ends at another limit than that at which it begins.",
+		"SELECT * FROM EPISODES OF log BY logger ON t FOR temp ABOVE 8 UNTIL BELOW 7.5;"},
+	{"EXPECTING", "EXPECTING (query)", "The loggers that were to report, so that one that never did is told of.",
+		"SELECT * FROM AUDIT OF log BY logger ON t EXPECTING (SELECT id FROM hall);"},
+	{"KEEP", "KEEP ('id', 'id')", "Sites that are chosen in any case.",
+		"SELECT * FROM REPRESENTATIVES OF readings FOR EACH t FOR temp NUMBER 5 KEEP ('L07') BY MEAN;"},
+}
+
+// AllClauses are the clauses of the language, those too that no relation takes yet.
+func AllClauses() []Clause { return slices.Clone(clauses) }
+
+// LookupClause finds a clause by its name, in any case.
+func LookupClause(name string) (Clause, bool) {
+	for _, c := range clauses {
+		if lang.Fold(c.Name) == lang.Fold(name) {
+			return c, true
+		}
+	}
+	return Clause{}, false
+}
+
+// Taking are the relations that take a clause.
+func Taking(clause string) []string {
+	var nouns []string
+	for _, d := range definitions {
+		if slices.Contains(d.Clauses, clause) {
+			nouns = append(nouns, d.Noun)
+		}
+	}
+	return nouns
+}
