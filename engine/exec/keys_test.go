@@ -139,3 +139,24 @@ func TestRadixSort(t *testing.T) {
 		}
 	}
 }
+
+// What is behind a NULL, and behind the last row, never counts as TRUE or as a
+// value, whatever an expression left there.
+func TestJunkBehindNulls(t *testing.T) {
+	all := []uint64{math.MaxUint64}
+	cond := column.Vector{Type: column.Boolean, N: 5, Bits: all, Valid: []uint64{0b10110}}
+	if got := trueRows(nil, &cond, []uint64{0b00111}, 5); got[0] != 0b00110 {
+		t.Errorf("TRUE rows %b", got[0])
+	}
+	cond.Valid = nil
+	if got := trueRows(nil, &cond, nil, 5); got[0] != 0b11111 {
+		t.Errorf("TRUE rows %b", got[0])
+	}
+	g := newGatherer(column.Field{Type: column.Integer})
+	g.addAll(&column.Vector{Type: column.Integer, N: 2, I: []int64{7, 7}, Valid: []uint64{math.MaxUint64 - 1}}, 2)
+	g.add(&column.Vector{Type: column.Integer, N: 2, I: []int64{8, 8}, Valid: []uint64{0b10}}, []int32{0, 1})
+	v := g.finish()
+	if !slices.Equal(v.I, []int64{0, 7, 0, 8}) || !v.IsNull(0) || v.IsNull(1) || !v.IsNull(2) || v.IsNull(3) {
+		t.Errorf("gathered %v, valid %b", v.I, v.Valid)
+	}
+}

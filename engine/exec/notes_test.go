@@ -163,6 +163,31 @@ func TestWeightNotes(t *testing.T) {
 	expectNotes(t, aggregate(where(s, is(s.Fields, siteID, lang.Equals, column.String("X"))), nil, avg))
 }
 
+// The largest weight is found whichever chunk it is in, and a tie across chunks
+// is one.
+func TestLargestWeightAcrossChunks(t *testing.T) {
+	for _, c := range []struct {
+		second float64
+		want   string
+	}{{8, " (id 'S150')"}, {9, ""}} {
+		ids, w := column.NewBuilder(column.Text, nil), column.NewBuilder(column.Real, nil)
+		for i := range 200 {
+			ids.AppendText(fmt.Sprintf("S%d", i))
+			w.AppendFloat(map[int]float64{20: c.second, 150: 9}[i] + 1)
+		}
+		schema := column.Schema{{Name: "id", Type: column.Text}, {Name: "w", Type: column.Real}}
+		scan := plantest.Scan(&column.Table{Schema: schema, N: 200, Cols: []column.Vector{ids.Finish(), w.Finish()}})
+		n := aggregate(scan, nil, weighted("AVG", schema, plantest.Column(schema, 1), plantest.Column(schema, 1)))
+		env := testEnv(64, 64)
+		if _, err := run(t, env, n); err != nil {
+			t.Fatal(err)
+		}
+		if lines := env.Notes.Lines(); len(lines) != 1 || !strings.HasSuffix(lines[0].Text, " %"+c.want) {
+			t.Errorf("%v, want one that ends with %q", lines, c.want)
+		}
+	}
+}
+
 // A WHERE over the cells says whose space is missing, where it took out any and
 // an aggregate uses that space.
 func TestVanishedCells(t *testing.T) {
