@@ -7,6 +7,7 @@ import (
 	"sync/atomic"
 
 	"nearcell/voronoi"
+	"nearcell/voronoi/coverage"
 )
 
 // Handle is a diagram of the store with the measures that were computed so far.
@@ -27,6 +28,7 @@ type Handle struct {
 	known    []voronoi.Measures
 	cells    voronoi.Cells
 	contacts [][]voronoi.Contact // nil: not computed
+	gaps     *[]coverage.Gap     // nil: not looked for
 }
 
 // Bytes that a diagram without measures, a contact and its list take.

@@ -8,7 +8,7 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts}
+var definitions = []*Definition{cells, contacts, gaps}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
@@ -17,7 +17,6 @@ var planned = map[string]string{
 	"TRIANGLES":       "Delaunay triangle",
 	"VERTICES":        "Voronoi vertex",
 	"HULL":            "triangle of the convex hull",
-	"GAPS":            "place locally farthest from every site",
 	"PLACEMENTS":      "proposed further site",
 	"REDUNDANCY":      "site, least missed first",
 	"SPACING":         "campaign",

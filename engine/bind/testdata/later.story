@@ -1,11 +1,11 @@
 # What the language has and the engine lacks is refused by its name.
 
 plan
-SELECT * FROM GAPS OF hall
+SELECT * FROM PLACEMENTS OF hall
 ----
-input:1: GAPS is not there yet
-  SELECT * FROM GAPS OF hall
-                ^^^^
+input:1: PLACEMENTS is not there yet
+  SELECT * FROM PLACEMENTS OF hall
+                ^^^^^^^^^^
 
 plan
 SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE

@@ -1,0 +1,258 @@
+package relation
+
+import (
+	"context"
+	"fmt"
+	"math/bits"
+	"runtime"
+	"strings"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/diagram"
+	"nearcell/voronoi"
+)
+
+// Forecast is what is known of a relation's rows and work before it runs.
+type Forecast struct {
+	Rows      float64 // that it will give
+	RowsExact bool    // else estimated
+	Parts     float64 // partitions with a row to show
+	Diagrams  float64 // different ones among them
+	Known     int     // cells whose measures are kept from before, not in Cost
+	Measures  []string
+	Cost      voronoi.Cost // of the cells that have to be built
+	Counted   bool         // parts, diagrams and cells are counted, not estimated
+}
+
+// Forecaster is implemented by rows that can tell more than their Cost.
+type Forecaster interface {
+	Forecast(ctx context.Context) (*Forecast, error)
+}
+
+// ForecastOf is what rows say of themselves. Rows that only know their cost
+// give, for all that is known, a row a cell.
+func ForecastOf(ctx context.Context, b *Bound, rows Rows, need []bool) (*Forecast, error) {
+	if f, ok := rows.(Forecaster); ok {
+		return f.Forecast(ctx)
+	}
+	c, err := rows.Cost()
+	if err != nil {
+		return nil, err
+	}
+	return &Forecast{Rows: float64(c.Cells), Parts: 1, Diagrams: 1, Measures: b.Work(need), Cost: c}, nil
+}
+
+// Estimates of what is not looked at.
+const (
+	// typicalContacts is the mean number of faces of the cells of random sites in
+	// space (Meijering 1953): 2 + 48π²/35.
+	typicalContacts = 15.54
+	// typicalCell is about what a cell of an ordinary set of sites takes, in
+	// seconds on one core of a small machine (see voronoi.Diagram.Cost).
+	typicalCell = 30e-6
+	// sampledDiagrams of the diagrams of FOR EACH are looked at; the others are
+	// taken to be like them.
+	sampledDiagrams = 32
+)
+
+// Guess is a forecast of a relation over a query that is not looked at: of so
+// many rows, of which a share is shown, in so many partitions. Whether
+// partitions are alike is not known, so that its work is an upper bound.
+func (b *Bound) Guess(rows, shown, parts float64, need []bool, threads int) *Forecast {
+	if threads <= 0 {
+		threads = runtime.GOMAXPROCS(0)
+	}
+	parts = max(1, min(parts, rows))
+	f := &Forecast{Rows: rows * shown, Parts: parts, Diagrams: parts, Measures: b.Work(need)}
+	f.Cost.OneByOne = true
+	if b.Def == contacts {
+		f.Rows *= max(0, min(rows/parts-1, typicalContacts))
+	}
+	if b.Def == contacts || b.measures(need) != 0 {
+		f.Cost.Cells = int(rows*shown + 0.5)
+		f.Cost.Seconds = rows * shown * typicalCell / float64(threads)
+	}
+	return f
+}
+
+// Work names what the geometry has to compute for the needed columns, in the
+// order of the columns; none: which sites have a cell is all that is asked.
+func (b *Bound) Work(need []bool) []string {
+	if b.Def == contacts {
+		return []string{"contacts"}
+	}
+	if !b.Def.Own {
+		return []string{strings.ToLower(b.Def.Noun)}
+	}
+	var names []string
+	for i, c := range b.Columns {
+		if c.Measures != 0 && needed(need, i) {
+			names = append(names, c.Name)
+		}
+	}
+	return names
+}
+
+// measures are the measures behind the needed columns of CELLS.
+func (b *Bound) measures(need []bool) (want voronoi.Measures) {
+	for i, c := range b.Columns {
+		if needed(need, i) {
+			want |= c.Measures
+		}
+	}
+	return want
+}
+
+// Forecast counts the rows exactly, unless there are many partitions.
+func (c *cellRows) Forecast(ctx context.Context) (*Forecast, error) {
+	return c.forecast(ctx, c.want, false)
+}
+
+// Forecast counts the cells exactly, unless there are many partitions, and
+// takes the number of contacts of a cell to be the usual one.
+func (c *contactRows) Forecast(ctx context.Context) (*Forecast, error) {
+	return c.forecast(ctx, voronoi.Neighbours, true)
+}
+
+// alike are the parts that share a diagram.
+type alike struct {
+	part  *Part
+	key   diagram.Key
+	rows  float64 // asked for, those outside the solid among them
+	parts float64
+	sites []uint64 // asked for in any of the parts
+}
+
+func (s *sites) forecast(ctx context.Context, want voronoi.Measures, faces bool) (*Forecast, error) {
+	f := &Forecast{Measures: s.b.Work(s.r.Need), RowsExact: !faces, Counted: true}
+	f.Cost.OneByOne = true
+	groups := s.alike()
+	f.Diagrams = float64(len(groups))
+	step := max(1, (len(groups)+sampledDiagrams-1)/sampledDiagrams)
+	var seen, all float64 // rows
+	for i, g := range groups {
+		f.Parts += g.parts
+		all += g.rows
+		if i%step == 0 {
+			seen += g.rows
+			if err := s.look(ctx, f, g, want, faces); err != nil {
+				return nil, err
+			}
+		}
+	}
+	if step > 1 && seen > 0 {
+		f.Counted, f.RowsExact = false, false
+		scale := all / seen
+		f.Rows *= scale
+		f.Known = int(float64(f.Known)*scale + 0.5)
+		f.Cost.Cells = int(float64(f.Cost.Cells)*scale + 0.5)
+		f.Cost.Seconds *= scale
+		f.Cost.Bytes = int64(float64(f.Cost.Bytes) * scale)
+	}
+	return f, nil
+}
+
+// alike are the diagrams of the parts with something to show, each once, in the
+// order of their first parts.
+func (s *sites) alike() []*alike {
+	var groups []*alike
+	at := map[diagram.Key]*alike{}
+	for _, p := range s.parts {
+		if !s.wanted(p) {
+			continue
+		}
+		key := diagram.KeyOf(p.Sites, s.options())
+		g := at[key]
+		if g == nil {
+			g = &alike{part: p, key: key, sites: make([]uint64, column.Words(len(p.Sites)))}
+			at[key] = g
+			groups = append(groups, g)
+		}
+		g.parts++
+		for k, row := range p.Rows {
+			if s.r.Wanted == nil || column.Bit(s.r.Wanted, int(row)) {
+				g.rows++
+				column.SetBit(g.sites, int(p.Site[k]))
+			}
+		}
+	}
+	return groups
+}
+
+// look adds what a diagram says of its parts. It is built, its cells are not,
+// but for a few by which their cost is measured.
+func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Measures, faces bool) error {
+	h, err := s.env.Diagrams.Get(ctx, g.part.Sites, s.options())
+	if err != nil {
+		return s.refused(err, g.part)
+	}
+	facts := h.Facts()
+	if facts.Inside == 0 {
+		return s.allOutside(g.part, facts)
+	}
+	asked := 0
+	for _, w := range g.sites {
+		asked += bits.OnesCount64(w)
+	}
+	outside := 0
+	for _, site := range facts.Outside {
+		if column.Bit(g.sites, int(site)) {
+			column.ClearBit(g.sites, int(site))
+			outside++
+		}
+	}
+	rows := g.rows
+	if outside > 0 {
+		rows = s.rowsInside(g, facts)
+	}
+	if faces {
+		rows *= max(0, min(float64(facts.Inside-1), typicalContacts))
+	}
+	f.Rows += rows
+	if want == 0 {
+		return nil
+	}
+	cells := make([]int32, 0, asked-outside)
+	for site := range int32(len(g.part.Sites)) {
+		if column.Bit(g.sites, int(site)) {
+			cells = append(cells, site)
+		}
+	}
+	known := h.Known(want, cells)
+	if faces {
+		known = h.KnownContacts(cells)
+	}
+	c := h.Cost(want, len(cells)-known)
+	f.Known += known
+	f.Cost.Cells += c.Cells
+	f.Cost.Seconds += c.Seconds
+	f.Cost.Bytes += c.Bytes
+	f.Cost.OneByOne = f.Cost.OneByOne && c.OneByOne
+	f.Cost.Slow = f.Cost.Slow || c.Slow
+	return nil
+}
+
+// rowsInside counts the rows of all parts of a diagram that have a cell.
+func (s *sites) rowsInside(g *alike, facts voronoi.Facts) float64 {
+	rows := 0
+	for _, p := range s.parts {
+		if s.wanted(p) && len(p.Sites) == len(g.part.Sites) && diagram.KeyOf(p.Sites, s.options()) == g.key {
+			ks, _ := s.shown(p, facts)
+			rows += len(ks)
+		}
+	}
+	return float64(rows)
+}
+
+// String writes the work for one line of a plan.
+func (f *Forecast) String() string {
+	if len(f.Measures) == 0 {
+		return "no cells to compute: only which sites have one"
+	}
+	about := ""
+	if !f.Counted {
+		about = "about "
+	}
+	text := fmt.Sprintf("%s of %s%s", strings.Join(f.Measures, ", "), about, count(f.Cost.Cells, "cell"))
+	return text
+}
