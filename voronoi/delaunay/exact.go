@@ -284,41 +284,39 @@ func (m *limits) inSphereWhole(a, b, c, d, o *point, n float64) int {
 			(cx*cx+cy*cy+cz*cz)*(az*bd-bz*ad+dz*ab) -
 			(dx*dx+dy*dy+dz*dz)*(az*bc-bz*ac+cz*ab))
 	case sure && n < m.inWrap128:
-		return inSphere128([4][3]int64{{ax, ay, az}, {bx, by, bz}, {cx, cy, cz}, {dx, dy, dz}})
+		return inSphere128(int64s{ax, ay, az}, int64s{bx, by, bz}, int64s{cx, cy, cz}, int64s{dx, dy, dz})
 	}
-	return inSphere320([4][3]int64{{ax, ay, az}, {bx, by, bz}, {cx, cy, cz}, {dx, dy, dz}})
+	return inSphere320(int64s{ax, ay, az}, int64s{bx, by, bz}, int64s{cx, cy, cz}, int64s{dx, dy, dz})
 }
 
-func minor64(p, q *[3]int64) int128 { return mul64(p[0], q[1]).sub(mul64(p[1], q[0])) }
+// int64s is a point seen from another, in units.
+type int64s struct{ x, y, z int64 }
 
-func norm64(p *[3]int64) int128 {
-	return mul64(p[0], p[0]).add(mul64(p[1], p[1])).add(mul64(p[2], p[2]))
-}
+func (p int64s) minor(q int64s) int128 { return mul64(p.x, q.y).sub(mul64(p.y, q.x)) }
+
+func (p int64s) norm() int128 { return mul64(p.x, p.x).add(mul64(p.y, p.y)).add(mul64(p.z, p.z)) }
 
 // inSphere128 is right where the determinant is below 2^127.
-func inSphere128(r [4][3]int64) int {
-	a, b, c, d := &r[0], &r[1], &r[2], &r[3]
-	ab, ac, ad := minor64(a, b), minor64(a, c), minor64(a, d)
-	bc, bd, cd := minor64(b, c), minor64(b, d), minor64(c, d)
+func inSphere128(a, b, c, d int64s) int {
+	ab, ac, ad := a.minor(b), a.minor(c), a.minor(d)
+	bc, bd, cd := b.minor(c), b.minor(d), c.minor(d)
 	w := func(x int64) int128 { return int128{uint64(x), uint64(x >> 63)} }
-	az, bz, cz, dz := w(a[2]), w(b[2]), w(c[2]), w(d[2])
+	az, bz, cz, dz := w(a.z), w(b.z), w(c.z), w(d.z)
 	ta := bz.mulWrap(cd).sub(cz.mulWrap(bd)).add(dz.mulWrap(bc))
 	tb := az.mulWrap(cd).sub(cz.mulWrap(ad)).add(dz.mulWrap(ac))
 	tc := az.mulWrap(bd).sub(bz.mulWrap(ad)).add(dz.mulWrap(ab))
 	td := az.mulWrap(bc).sub(bz.mulWrap(ac)).add(cz.mulWrap(ab))
-	return norm64(a).mulWrap(ta).sub(norm64(b).mulWrap(tb)).
-		add(norm64(c).mulWrap(tc)).sub(norm64(d).mulWrap(td)).sign()
+	return a.norm().mulWrap(ta).sub(b.norm().mulWrap(tb)).
+		add(c.norm().mulWrap(tc)).sub(d.norm().mulWrap(td)).sign()
 }
 
 // inSphere320 is right for coordinates up to 2^61.
-func inSphere320(r [4][3]int64) int {
-	a, b, c, d := &r[0], &r[1], &r[2], &r[3]
-	ab, ac, ad := minor64(a, b), minor64(a, c), minor64(a, d)
-	bc, bd, cd := minor64(b, c), minor64(b, d), minor64(c, d)
-	ta := cd.times(b[2]).sub(bd.times(c[2])).add(bc.times(d[2]))
-	tb := cd.times(a[2]).sub(ad.times(c[2])).add(ac.times(d[2]))
-	tc := bd.times(a[2]).sub(ad.times(b[2])).add(ab.times(d[2]))
-	td := bc.times(a[2]).sub(ac.times(b[2])).add(ab.times(c[2]))
-	return ta.times(norm64(a)).sub(tb.times(norm64(b))).
-		add(tc.times(norm64(c))).sub(td.times(norm64(d))).sign()
+func inSphere320(a, b, c, d int64s) int {
+	ab, ac, ad := a.minor(b), a.minor(c), a.minor(d)
+	bc, bd, cd := b.minor(c), b.minor(d), c.minor(d)
+	ta := cd.times(b.z).sub(bd.times(c.z)).add(bc.times(d.z))
+	tb := cd.times(a.z).sub(ad.times(c.z)).add(ac.times(d.z))
+	tc := bd.times(a.z).sub(ad.times(b.z)).add(ab.times(d.z))
+	td := bc.times(a.z).sub(ac.times(b.z)).add(ab.times(c.z))
+	return signOfSum(ta, a.norm(), tb, b.norm(), tc, c.norm(), td, d.norm())
 }

@@ -40,7 +40,7 @@ func TestHilbertCurve(t *testing.T) {
 	}
 }
 
-func bigOf(words []uint64) *big.Int {
+func bigOf(words ...uint64) *big.Int {
 	x := new(big.Int)
 	for i := len(words) - 1; i >= 0; i-- {
 		x.Lsh(x, 64).Or(x, new(big.Int).SetUint64(words[i]))
@@ -54,34 +54,53 @@ func bigOf(words []uint64) *big.Int {
 // Wide integers agree with math/big.
 func TestWideIntegers(t *testing.T) {
 	word := rapid.OneOf(rapid.Uint64(), rapid.SampledFrom([]uint64{0, 1, 1<<63 - 1, 1 << 63, 1<<64 - 1}))
+	two := func(a int128) *big.Int { return bigOf(a.l, a.h) }
+	three := func(a int192) *big.Int { return bigOf(a.l, a.m, a.h) }
 	rapid.Check(t, func(t *rapid.T) {
 		a, b := int64(word.Draw(t, "a")), int64(word.Draw(t, "b"))
 		m := mul64(a, b)
 		want := new(big.Int).Mul(big.NewInt(a), big.NewInt(b))
-		if bigOf(m[:]).Cmp(want) != 0 || m.sign() != want.Sign() {
-			t.Fatalf("%d * %d = %v", a, b, bigOf(m[:]))
+		if two(m).Cmp(want) != 0 || m.sign() != want.Sign() {
+			t.Fatalf("%d * %d = %v", a, b, two(m))
 		}
 		x := int128{word.Draw(t, "x0"), word.Draw(t, "x1")}
 		p := x.times(a)
-		want = wrap(new(big.Int).Mul(bigOf(x[:]), big.NewInt(a)), 192)
-		if bigOf(p[:]).Cmp(want) != 0 || p.sign() != want.Sign() {
-			t.Fatalf("%v * %d = %v", bigOf(x[:]), a, bigOf(p[:]))
+		want = wrap(new(big.Int).Mul(two(x), big.NewInt(a)), 192)
+		if three(p).Cmp(want) != 0 || p.sign() != want.Sign() {
+			t.Fatalf("%v * %d = %v", two(x), a, three(p))
 		}
 		q := int128{word.Draw(t, "q0"), word.Draw(t, "q1") >> 1}
 		y := int192{word.Draw(t, "y0"), word.Draw(t, "y1"), word.Draw(t, "y2")}
-		r := y.times(q)
-		want = new(big.Int).Mul(bigOf(y[:]), bigOf(q[:]))
-		if bigOf(r[:]).Cmp(want) != 0 || r.sign() != want.Sign() {
-			t.Fatalf("%v * %v = %v", bigOf(y[:]), bigOf(q[:]), bigOf(r[:]))
+		w0, w1, w2, w3, w4 := y.times(q)
+		want = new(big.Int).Mul(three(y), two(q))
+		if got := bigOf(w0, w1, w2, w3, w4); got.Cmp(want) != 0 {
+			t.Fatalf("%v * %v = %v", three(y), two(q), got)
 		}
-		s := r.sub(int320{}.add(int320{word.Draw(t, "s")}))
-		want = wrap(want.Sub(want, new(big.Int).SetUint64(bigOf(r[:]).Sub(bigOf(r[:]), bigOf(s[:])).Uint64())), 320)
-		if bigOf(s[:]).Cmp(want) != 0 {
-			t.Fatal("difference of five words")
-		}
-		v, u := x.mulWrap(q), wrap(new(big.Int).Mul(bigOf(x[:]), bigOf(q[:])), 128)
-		if bigOf(v[:]).Cmp(u) != 0 {
+		if v, u := x.mulWrap(q), wrap(new(big.Int).Mul(two(x), two(q)), 128); two(v).Cmp(u) != 0 {
 			t.Fatal("product modulo 2^128")
+		}
+		// Keep the sum of four products inside five words.
+		short := func(i int192) int192 { i.h = uint64(int64(i.h) >> 3); return i }
+		c, d := short(int192{word.Draw(t, "c0"), word.Draw(t, "c1"), word.Draw(t, "c2")}), short(p)
+		e, f := short(y), short(int192{l: uint64(a)})
+		r := int128{word.Draw(t, "r0"), word.Draw(t, "r1") >> 2}
+		q.h >>= 1
+		sum := new(big.Int)
+		for i, term := range [4]*big.Int{
+			new(big.Int).Mul(three(c), two(q)), new(big.Int).Mul(three(d), two(r)),
+			new(big.Int).Mul(three(e), two(r)), new(big.Int).Mul(three(f), two(q)),
+		} {
+			if i%2 == 0 {
+				sum.Add(sum, term)
+			} else {
+				sum.Sub(sum, term)
+			}
+		}
+		if got := signOfSum(c, q, d, r, e, r, f, q); got != sum.Sign() {
+			t.Fatalf("sum of four products: sign %d of %v", got, sum)
+		}
+		if signOfSum(c, q, c, q, e, r, e, r) != 0 {
+			t.Fatal("equal products do not cancel")
 		}
 	})
 }
@@ -150,22 +169,22 @@ func checkWhole(t *rapid.T, m *mesh, v [4]int32, e int32, want int) {
 	if !ok || m.frame.rounded {
 		return
 	}
-	var r [4][3]int64
+	var r [4]int64s
 	whole := func(x, o float64) int64 { return int64(x*l.unit) - int64(o*l.unit) }
 	o := m.pts[e]
 	small := true
 	for k := range r {
 		q := m.pts[v[k]]
-		r[k] = [3]int64{whole(q.x, o.x), whole(q.y, o.y), whole(q.z, o.z)}
-		for _, x := range r[k] {
+		r[k] = int64s{whole(q.x, o.x), whole(q.y, o.y), whole(q.z, o.z)}
+		for _, x := range [3]int64{r[k].x, r[k].y, r[k].z} {
 			small = small && x < 1<<23 && x > -1<<23
 		}
 	}
-	if got := inSphere320(r); got != want {
+	if got := inSphere320(r[0], r[1], r[2], r[3]); got != want {
 		t.Fatalf("five words: %d, want %d", got, want)
 	}
 	if small { // 5*23 + 7 bits
-		if got := inSphere128(r); got != want {
+		if got := inSphere128(r[0], r[1], r[2], r[3]); got != want {
 			t.Fatalf("two words: %d, want %d", got, want)
 		}
 	}

@@ -2,140 +2,128 @@ package delaunay
 
 import "math/bits"
 
-// Signed integers of two, three and five words, two's complement, least word first.
-// They serve the exact stage of in-sphere for coordinates that are whole multiples
-// of one power of two; additions wrap.
+// Signed integers of two and three words, two's complement, l the least word; they
+// serve the exact stage of in-sphere for coordinates that are whole multiples of one
+// power of two. Additions wrap. Structs of words stay in registers, arrays do not.
 
-type int128 [2]uint64
-type int192 [3]uint64
-type int320 [5]uint64
+type int128 struct{ l, h uint64 }
+
+type int192 struct{ l, m, h uint64 }
 
 // mul64 returns a*b.
 func mul64(a, b int64) int128 {
-	hi, lo := bits.Mul64(uint64(a), uint64(b))
-	hi -= uint64(a>>63)&uint64(b) + uint64(b>>63)&uint64(a)
-	return int128{lo, hi}
+	h, l := bits.Mul64(uint64(a), uint64(b))
+	return int128{l, h - (uint64(a>>63)&uint64(b) + uint64(b>>63)&uint64(a))}
 }
 
 func (a int128) add(b int128) int128 {
-	lo, c := bits.Add64(a[0], b[0], 0)
-	hi, _ := bits.Add64(a[1], b[1], c)
-	return int128{lo, hi}
+	l, c := bits.Add64(a.l, b.l, 0)
+	h, _ := bits.Add64(a.h, b.h, c)
+	return int128{l, h}
 }
 
 func (a int128) sub(b int128) int128 {
-	lo, c := bits.Sub64(a[0], b[0], 0)
-	hi, _ := bits.Sub64(a[1], b[1], c)
-	return int128{lo, hi}
+	l, c := bits.Sub64(a.l, b.l, 0)
+	h, _ := bits.Sub64(a.h, b.h, c)
+	return int128{l, h}
 }
 
 // mulWrap returns a*b modulo 2^128.
 func (a int128) mulWrap(b int128) int128 {
-	hi, lo := bits.Mul64(a[0], b[0])
-	return int128{lo, hi + a[0]*b[1] + a[1]*b[0]}
+	h, l := bits.Mul64(a.l, b.l)
+	return int128{l, h + a.l*b.h + a.h*b.l}
 }
 
 func (a int128) sign() int {
-	switch {
-	case int64(a[1]) < 0:
-		return -1
-	case a[0]|a[1] == 0:
+	if a.l|a.h == 0 {
 		return 0
 	}
-	return 1
+	return 1 | int(int64(a.h)>>63)
 }
 
 // times returns a*b.
 func (a int128) times(b int64) int192 {
-	h0, l0 := bits.Mul64(a[0], uint64(b))
-	h1, l1 := bits.Mul64(a[1], uint64(b))
-	var r int192
-	var c uint64
-	r[0] = l0
-	r[1], c = bits.Add64(h0, l1, 0)
-	r[2] = h1 + c
+	h0, l0 := bits.Mul64(a.l, uint64(b))
+	h1, l1 := bits.Mul64(a.h, uint64(b))
+	m, c := bits.Add64(h0, l1, 0)
+	h := h1 + c
 	// A negative factor stands for itself plus 2^64 or 2^128: take those away.
-	negB, negA := uint64(b>>63), uint64(int64(a[1])>>63)
-	var d uint64
-	r[1], d = bits.Sub64(r[1], a[0]&negB, 0)
-	r[2], _ = bits.Sub64(r[2], a[1]&negB, d)
-	r[2] -= uint64(b) & negA
-	return r
+	nb := uint64(b >> 63)
+	m, c = bits.Sub64(m, a.l&nb, 0)
+	h, _ = bits.Sub64(h, a.h&nb, c)
+	return int192{l0, m, h - uint64(b)&uint64(int64(a.h)>>63)}
 }
 
-func (a int192) add(b int192) (r int192) {
-	var c uint64
-	r[0], c = bits.Add64(a[0], b[0], 0)
-	r[1], c = bits.Add64(a[1], b[1], c)
-	r[2], _ = bits.Add64(a[2], b[2], c)
-	return r
+func (a int192) add(b int192) int192 {
+	l, c := bits.Add64(a.l, b.l, 0)
+	m, c := bits.Add64(a.m, b.m, c)
+	h, _ := bits.Add64(a.h, b.h, c)
+	return int192{l, m, h}
 }
 
-func (a int192) sub(b int192) (r int192) {
-	var c uint64
-	r[0], c = bits.Sub64(a[0], b[0], 0)
-	r[1], c = bits.Sub64(a[1], b[1], c)
-	r[2], _ = bits.Sub64(a[2], b[2], c)
-	return r
+func (a int192) sub(b int192) int192 {
+	l, c := bits.Sub64(a.l, b.l, 0)
+	m, c := bits.Sub64(a.m, b.m, c)
+	h, _ := bits.Sub64(a.h, b.h, c)
+	return int192{l, m, h}
 }
 
 func (a int192) sign() int {
-	switch {
-	case int64(a[2]) < 0:
-		return -1
-	case a[0]|a[1]|a[2] == 0:
+	if a.l|a.m|a.h == 0 {
 		return 0
 	}
-	return 1
+	return 1 | int(int64(a.h)>>63)
 }
 
-// times returns a*b for b >= 0 below 2^127.
-func (a int192) times(b int128) (r int320) {
-	var hi, lo, c, carry uint64
-	for i := range 3 {
-		hi, lo = bits.Mul64(a[i], b[0])
-		lo, c = bits.Add64(lo, carry, 0)
-		carry = hi + c
-		r[i] = lo
-	}
-	r[3] = carry
-	carry = 0
-	for i := range 3 {
-		hi, lo = bits.Mul64(a[i], b[1])
-		lo, c = bits.Add64(lo, carry, 0)
-		carry = hi + c
-		r[i+1], c = bits.Add64(r[i+1], lo, 0)
-		carry += c
-	}
-	r[4] = carry
-	neg := uint64(int64(a[2]) >> 63)
-	r[3], c = bits.Sub64(r[3], b[0]&neg, 0)
-	r[4], _ = bits.Sub64(r[4], b[1]&neg, c)
-	return r
-}
-
-func (a int320) add(b int320) (r int320) {
+// times returns the five words of a*b for b >= 0, least first.
+func (a int192) times(b int128) (w0, w1, w2, w3, w4 uint64) {
 	var c uint64
-	for i := range r {
-		r[i], c = bits.Add64(a[i], b[i], c)
-	}
-	return r
+	h0, w0 := bits.Mul64(a.l, b.l)
+	h1, l1 := bits.Mul64(a.m, b.l)
+	h2, l2 := bits.Mul64(a.h, b.l)
+	w1, c = bits.Add64(h0, l1, 0)
+	w2, c = bits.Add64(h1, l2, c)
+	w3 = h2 + c
+	h0, l0 := bits.Mul64(a.l, b.h)
+	h1, l1 = bits.Mul64(a.m, b.h)
+	h2, l2 = bits.Mul64(a.h, b.h)
+	l1, c = bits.Add64(l1, h0, 0)
+	l2, c = bits.Add64(l2, h1, c)
+	w4 = h2 + c
+	w1, c = bits.Add64(w1, l0, 0)
+	w2, c = bits.Add64(w2, l1, c)
+	w3, c = bits.Add64(w3, l2, c)
+	w4 += c
+	neg := uint64(int64(a.h) >> 63)
+	w3, c = bits.Sub64(w3, b.l&neg, 0)
+	w4, _ = bits.Sub64(w4, b.h&neg, c)
+	return w0, w1, w2, w3, w4
 }
 
-func (a int320) sub(b int320) (r int320) {
-	var c uint64
-	for i := range r {
-		r[i], c = bits.Sub64(a[i], b[i], c)
-	}
-	return r
-}
-
-func (a int320) sign() int {
-	switch {
-	case int64(a[4]) < 0:
-		return -1
-	case a[0]|a[1]|a[2]|a[3]|a[4] == 0:
+// signOfSum is the sign of a*p - b*q + c*r - d*s, for p, q, r, s >= 0, if the sum fits
+// five words.
+func signOfSum(a int192, p int128, b int192, q int128, c int192, r int128, d int192, s int128) int {
+	a0, a1, a2, a3, a4 := a.times(p)
+	b0, b1, b2, b3, b4 := b.times(q)
+	a0, k := bits.Sub64(a0, b0, 0)
+	a1, k = bits.Sub64(a1, b1, k)
+	a2, k = bits.Sub64(a2, b2, k)
+	a3, k = bits.Sub64(a3, b3, k)
+	a4, _ = bits.Sub64(a4, b4, k)
+	b0, b1, b2, b3, b4 = c.times(r)
+	a0, k = bits.Add64(a0, b0, 0)
+	a1, k = bits.Add64(a1, b1, k)
+	a2, k = bits.Add64(a2, b2, k)
+	a3, k = bits.Add64(a3, b3, k)
+	a4, _ = bits.Add64(a4, b4, k)
+	b0, b1, b2, b3, b4 = d.times(s)
+	a0, k = bits.Sub64(a0, b0, 0)
+	a1, k = bits.Sub64(a1, b1, k)
+	a2, k = bits.Sub64(a2, b2, k)
+	a3, k = bits.Sub64(a3, b3, k)
+	a4, _ = bits.Sub64(a4, b4, k)
+	if a0|a1|a2|a3|a4 == 0 {
 		return 0
 	}
-	return 1
+	return 1 | int(int64(a4)>>63)
 }
