@@ -11,27 +11,40 @@ import (
 type FaultKind uint8
 
 const (
-	NoFault         FaultKind = iota
-	FieldCount                // Got fields where the heading has Expected
-	BareQuote                 // a quotation mark inside a field, or something after a closing one
-	UnclosedQuote             // a quoted field that the file's end interrupts
-	NotANumber                // Want is Integer or Real
-	NotATimestamp             // no ISO 8601 time stamp, or no such date
-	NotABoolean               // neither true nor false
-	NotFinite                 // NaN or an infinity where numbers stand
-	OutOfRange                // a number that float64 cannot hold
-	NotUTF8                   // bytes that are no UTF-8
-	UTF16                     // the whole file is UTF-16
-	EmptyFile                 // nothing but blank lines
-	NoHeading                 // the line that should hold the heading is blank or beyond the end
-	HeadingRepeated           // Text stands twice in the heading; Got is the field that has it first
-	HeadingEmpty              // a column without a name
-	NulByte                   // a byte 0, as loggers leave that lost power while writing
+	NoFault          FaultKind = iota
+	FieldCount                 // Got fields where the heading has Expected
+	BareQuote                  // a quotation mark inside a field, or something after a closing one
+	UnclosedQuote              // a quoted field that the file's end interrupts
+	NotANumber                 // Want is Integer or Real
+	NotATimestamp              // no ISO 8601 time stamp, or no such date
+	NotABoolean                // neither true nor false
+	NotFinite                  // NaN or an infinity where numbers stand
+	OutOfRange                 // a number that float64 cannot hold
+	NotUTF8                    // bytes that are no UTF-8
+	UTF16                      // the whole file is UTF-16
+	EmptyFile                  // nothing but blank lines
+	NoHeading                  // the line that should hold the heading is blank or beyond the end
+	HeadingRepeated            // Text stands twice in the heading; Got is the field that has it first
+	HeadingEmpty               // a column without a name
+	NulByte                    // a byte 0, as loggers leave that lost power while writing
+	NotThisTime                // Text does not have the pattern Detail
+	NoSuchTime                 // Text has the pattern Detail and there is no such date or time of day
+	SkippedTime                // the clock change of the zone Detail skips this local time
+	RepeatedTime               // it repeats it, and the order of the rows does not tell which one it is
+	NoPreamble                 // Text does not stand in the lines before the heading
+	PreambleRepeated           // Text stands there twice
+	ColumnTaken                // Text names a column of the file and one of Options.Preamble
+	ColumnMissing              // the column Text of the file Detail is not in this one
+	ColumnAdded                // the column Text is not in the file Detail
+	UnitsDiffer                // the column FieldName has the unit Text here and Detail in the first file
+	NotInEncoding              // bytes that the encoding Detail does not have
 )
 
 var kindNames = [...]string{"no fault", "wrong number of fields", "stray quotation mark", "quotation mark not closed",
 	"not a number", "not a time stamp", "not a truth value", "not a finite number", "number out of range",
-	"not UTF-8", "UTF-16", "empty file", "no heading", "heading repeated", "heading empty", "NUL byte"}
+	"not UTF-8", "UTF-16", "empty file", "no heading", "heading repeated", "heading empty", "NUL byte",
+	"not of the pattern", "no such time", "skipped time", "repeated time", "not in the preamble", "repeated in the preamble",
+	"column taken", "column missing", "column added", "units differ", "not of the encoding"}
 
 // String names the kind for tests and logs.
 func (k FaultKind) String() string {
@@ -43,9 +56,10 @@ func (k FaultKind) String() string {
 
 // Fault is one thing wrong with a file, and its place.
 type Fault struct {
-	Line      int // from 1; 0: the file as a whole
-	Column    int // from 1, in characters of that line; 0: the line as a whole
-	Field     int // from 1; 0: none in particular
+	File      string // its name
+	Line      int    // from 1; 0: the file as a whole
+	Column    int    // from 1, in characters of that line; 0: the line as a whole
+	Field     int    // from 1; 0: none in particular
 	FieldName string
 	Kind      FaultKind
 	Text      string      // the field as it stands
@@ -53,11 +67,12 @@ type Fault struct {
 	Got       int
 	Expected  int
 	Source    string // the line of the file that Line counts
+	Detail    string // as the kind says
 }
 
-// Faults is the error that a file at fault gives.
+// Faults is the error that files at fault give.
 type Faults struct {
-	File string
+	File string  // the first
 	List []Fault // in the order of the file
 	More int     // how many faults are not listed
 }
@@ -69,7 +84,11 @@ func (f *Faults) Error() string {
 		if i > 0 {
 			b.WriteByte('\n')
 		}
-		fmt.Fprintf(&b, "%s:%d:%d: %s", f.File, x.Line, x.Column, x.Kind)
+		name := x.File
+		if name == "" {
+			name = f.File
+		}
+		fmt.Fprintf(&b, "%s:%d:%d: %s", name, x.Line, x.Column, x.Kind)
 		if x.Kind == FieldCount {
 			fmt.Fprintf(&b, " (%d, expected %d)", x.Got, x.Expected)
 		}
@@ -99,8 +118,17 @@ const (
 	OptionDelimiter   OptionName = "Delimiter"
 	OptionDecimalMark OptionName = "DecimalMark"
 	OptionHeading     OptionName = "Heading"
+	OptionEncoding    OptionName = "Encoding"
 )
 
 func (e *OptionError) Error() string {
 	return fmt.Sprintf("reader: the option %s cannot be %q", e.Option, e.Rune)
 }
+
+// ColumnError says that an option names a column that the file has not.
+type ColumnError struct {
+	Column string
+	Have   []string
+}
+
+func (e *ColumnError) Error() string { return fmt.Sprintf("reader: there is no column %q", e.Column) }

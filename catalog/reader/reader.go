@@ -8,13 +8,19 @@ import (
 	"time"
 
 	"nearcell/catalog/column"
+	"nearcell/catalog/reader/timeform"
 )
 
 // Reader reads one file format.
 type Reader interface {
-	// Read makes a table of the source. A file that is at fault gives a
-	// *Faults; any other error comes from ctx or from Options.Refused.
+	// Read is ReadFiles of one file.
 	Read(ctx context.Context, src *Source, o Options) (*Result, error)
+
+	// ReadFiles makes one table of the sources, their rows one after the other. They
+	// must have the same columns, in any order; types are decided over all of them.
+	// Files at fault give a *Faults; other errors are an *OptionError or a
+	// *ColumnError, or come from ctx or from Options.Refused.
+	ReadFiles(ctx context.Context, sources []*Source, o Options) (*Result, error)
 }
 
 // Source is a file in memory.
@@ -52,6 +58,9 @@ type Options struct {
 	Heading     int          // line of the heading, from 1; 0: the first line that is not blank
 	Units       []ColumnUnit // units of columns; they win over those in the heading
 	TextColumns []string     // identifiers: INTEGER where every value is one and written plainly, else TEXT
+	Times       []TimeColumn // columns of times that are not written as ISO 8601 has them
+	Preamble    []PreambleField
+	Encoding    Encoding // "": UTF-8
 
 	// Refused, if not nil, takes every line at fault: its number (of its first
 	// line where a quoted field spans several), its bytes as in the file without
@@ -70,24 +79,56 @@ type ColumnUnit struct {
 	Unit   *column.Unit
 }
 
-// Result is what became of a file.
-type Result struct {
-	Table *column.Table
-	Facts Facts
+// TimeColumn says how the times of a column are written, and by which clock.
+type TimeColumn struct {
+	Column string
+	Form   *timeform.Form
+	Zone   *timeform.Zone // nil: UTC, and not said
 }
 
-// Facts are what a user may have to be told about the reading of a file.
+// PreambleField makes a column of what stands behind a text in the lines before
+// the heading, the same in every row of a file.
+type PreambleField struct {
+	Column, After string
+}
+
+// Result is what became of files.
+type Result struct {
+	Table *column.Table
+	Facts Facts       // of all of them
+	Files []FileFacts // of each, in their order
+}
+
+// FileFacts are what is known of one file among several.
+type FileFacts struct {
+	Name    string
+	SHA256  string // hexadecimal
+	Bytes   int64
+	Rows    int
+	Refused int
+
+	Heading     string // the bytes of its record
+	HeadingLine int
+	Delimiter   rune
+	UnitsLine   int  // the line under the heading that gives units; 0: none
+	CRLF        bool // the heading ends with CR LF
+
+	NumericHeading, TrailingDelimiter, TrailingFields bool // as in Facts
+}
+
+// Facts are what a user may have to be told about the reading of files. Counts
+// are sums over them; what is true of a file is true here if it is of any.
 type Facts struct {
 	Rows    int   // of the table
-	Bytes   int64 // of the file
-	Lines   int   // of the file, as an editor counts them
+	Bytes   int64 // of the files
+	Lines   int   // of the files, as an editor counts them
 	Blank   int   // blank lines, skipped
 	Refused int   // records handed to Options.Refused
 
-	Delimiter rune   // the one used, found or given
-	BOM       bool   // the file begins with a byte order mark
-	CRLF      bool   // its lines end with CR LF
-	SHA256    string // of the file, hexadecimal
+	Delimiter rune   // the one used, found or given; of the first file
+	BOM       bool   // a file begins with a byte order mark
+	CRLF      bool   // the heading ends with CR LF
+	SHA256    string // of the first file, hexadecimal
 
 	Missing           []int           // NULLs of each column, in the order of the table
 	AllMissing        []string        // columns without any value; REAL, or TEXT if among Options.TextColumns
@@ -95,6 +136,9 @@ type Facts struct {
 	StayedText        []StayedText    // TEXT columns that look like something else
 	NumericHeading    bool            // every heading is a number: perhaps the file has none
 	TrailingDelimiter bool            // the heading ends with a delimiter; that empty column was dropped
+	TrailingFields    bool            // every record ends with empty fields that the heading has not; they were dropped
+	UnitsRow          []UnitOfRow     // what a line of units under the heading says, of the first file with one
+	Repeated          []RepeatedHour  // local times that a clock change repeats, decided by the order of the rows
 	UnknownUnits      []string        // columns of Options.Units that the file has not
 	UnknownText       []string        // columns of Options.TextColumns that the file has not
 	UnitConflicts     []UnitsConflict // the heading says one unit, Options.Units another
@@ -107,16 +151,34 @@ type StayedText struct {
 	NotNumeric int    // MixedValues: how many present values are no numbers
 	FirstLine  int    // where the first value that decided it stands
 	FirstText  string // and what it is
+	File       string // and in which file
+
+	Pattern, Other string // LooksLikeTime: a pattern that fits, and one that fits too and reads other dates
+}
+
+// UnitOfRow is what a line of units says of a column.
+type UnitOfRow struct {
+	Column, Text string
+	Unit         *column.Unit // nil: not taken as a unit, since the column holds no numbers
+}
+
+// RepeatedHour tells of the rows whose local time a clock change repeats.
+type RepeatedHour struct {
+	Column, File string
+	Rows         int
+	FirstLine    int
+	By           string // the column that tells sequences of rows apart; "": the file is one
 }
 
 // TextReason is why a column stayed TEXT.
 type TextReason uint8
 
 const (
-	MixedValues  TextReason = iota // more than half, but not nearly all, are numbers
-	LeadingZeros                   // codes such as 007, which a number would not keep
-	TooLong                        // whole numbers beyond 64 bits, whose digits a REAL would not keep
-	OtherMark                      // more than half would be numbers with the other decimal mark
+	MixedValues   TextReason = iota // more than half, but not nearly all, are numbers
+	LeadingZeros                    // codes such as 007, which a number would not keep
+	TooLong                         // whole numbers beyond 64 bits, whose digits a REAL would not keep
+	OtherMark                       // more than half would be numbers with the other decimal mark
+	LooksLikeTime                   // more than half are times by one pattern
 )
 
 // UnitsConflict is a column whose heading and whose option disagree.

@@ -10,7 +10,8 @@ import (
 // collector gathers the faults of a file.
 type collector struct {
 	reader.Faults
-	max int
+	max     int
+	current string // the file
 }
 
 // full reports whether the list is full; then the fault at hand is only counted.
@@ -23,7 +24,10 @@ func (c *collector) full() bool {
 	return true
 }
 
-func (c *collector) add(f reader.Fault) { c.List = append(c.List, f) }
+func (c *collector) add(f reader.Fault) {
+	f.File = c.current
+	c.List = append(c.List, f)
+}
 
 // err is the faults as an error, nil if there are none.
 func (c *collector) err() error {

@@ -151,21 +151,3 @@ func (h *heading) numeric(mark byte) bool {
 	}
 	return true
 }
-
-// find is the column of a name: the one written so, else the only one that
-// differs in case alone; -1 if there is none.
-func (h *heading) find(name string) int {
-	if i := slices.Index(h.names, name); i >= 0 {
-		return i
-	}
-	found := -1
-	for i, n := range h.names {
-		if strings.EqualFold(n, name) {
-			if found >= 0 {
-				return -1
-			}
-			found = i
-		}
-	}
-	return found
-}

@@ -176,11 +176,11 @@ func (f *Form) check() error {
 type Outcome uint8
 
 const (
-	OK       Outcome = iota
-	NoMatch          // the text has another shape
-	NoSuch           // it has the shape, and there is no such date or time of day
-	Skipped          // the clock change skips this local time
-	Repeats          // the clock change repeats this local time: two instants
+	OK      Outcome = iota
+	NoMatch         // the text has another shape
+	NoSuch          // it has the shape, and there is no such date or time of day
+	Skipped         // the clock change skips this local time
+	Repeats         // the clock change repeats this local time: two instants
 )
 
 // Read reads a text, without blanks around it, as microseconds since 1970 on the
