@@ -142,12 +142,32 @@ func (r *runner) openUnion(ctx context.Context, n *plan.Union) (*pipeline, error
 	return sourceOnly(s), nil
 }
 
-// openRelation collects the sites and opens the relation over them. Which of
-// them are shown is decided here; which partition is the relation's business.
+// openRelation opens the relation over its sites.
 func (r *runner) openRelation(ctx context.Context, n *plan.Relation) (*pipeline, error) {
-	sites, err := r.collect(ctx, n.Input)
+	o, err := r.openSites(ctx, n)
 	if err != nil {
 		return nil, err
+	}
+	shown := r.shown[n]
+	if shown != nil {
+		shown.countParts(n, o.sites, o.wanted)
+	}
+	return sourceOnly(&rowSource{node: n, rows: o.rows, schema: n.Schema(), shown: shown}), nil
+}
+
+// overSites is a relation opened over its sites.
+type overSites struct {
+	rows   relation.Rows
+	sites  *column.Table
+	wanted []uint64 // which of them are shown, nil: all
+}
+
+// openSites collects the sites and decides which of them are shown; which
+// partition is the relation's business.
+func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, error) {
+	sites, err := r.collect(ctx, n.Input)
+	if err != nil {
+		return overSites{}, err
 	}
 	need := n.Need
 	if need == nil {
@@ -158,17 +178,10 @@ func (r *runner) openRelation(ctx context.Context, n *plan.Relation) (*pipeline,
 	}
 	wanted, err := r.wanted(ctx, n, sites)
 	if err != nil {
-		return nil, err
+		return overSites{}, err
 	}
 	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted})
-	if err != nil {
-		return nil, placed(err, n)
-	}
-	shown := r.shown[n]
-	if shown != nil {
-		shown.countParts(n, sites, wanted)
-	}
-	return sourceOnly(&rowSource{node: n, rows: rows, schema: n.Schema(), shown: shown}), nil
+	return overSites{rows, sites, wanted}, placed(err, n)
 }
 
 // wanted is the set of sites for which the pushed-down condition is TRUE.

@@ -79,12 +79,7 @@ func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
 	if err != nil {
 		return nil, err
 	}
-	c := &cellRows{sites: s, own: len(b.Input)}
-	for i, col := range b.Columns {
-		if needed(r.Need, i) {
-			c.want |= col.Measures
-		}
-	}
+	c := &cellRows{sites: s, own: len(b.Input), want: b.measures(r.Need)}
 	if b.Clauses.Solid == nil && c.want&(voronoi.Volume|voronoi.Area|voronoi.Centroid|voronoi.Farthest) != 0 {
 		c.want |= voronoi.Bounded // for the note
 	}
@@ -94,6 +89,7 @@ func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
 func (c *cellRows) Cost() (voronoi.Cost, error) { return c.cost(c.want) }
 
 func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
+	defer c.tell() // where emit has had enough rows, too
 	out := newBatches(c.b, c.r.Need, c.own, emit)
 	rows := make([]int32, 0, BatchRows)
 	flush := func() error {
@@ -126,11 +122,7 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) erro
 		}
 		c.partDone(i)
 	}
-	if err := flush(); err != nil {
-		return err
-	}
-	c.tell()
-	return nil
+	return flush()
 }
 
 // measured computes the cells of a part that are shown.

@@ -2,8 +2,6 @@ package relation
 
 import (
 	"context"
-	"fmt"
-	"math/bits"
 	"runtime"
 	"strings"
 
@@ -116,10 +114,8 @@ func (c *contactRows) Forecast(ctx context.Context) (*Forecast, error) {
 
 // alike are the parts that share a diagram.
 type alike struct {
-	part  *Part
-	key   diagram.Key
-	rows  float64 // asked for, those outside the solid among them
-	parts float64
+	parts []*Part
+	rows  float64  // asked for, those outside the solid among them
 	sites []uint64 // asked for in any of the parts
 }
 
@@ -131,7 +127,7 @@ func (s *sites) forecast(ctx context.Context, want voronoi.Measures, faces bool)
 	step := max(1, (len(groups)+sampledDiagrams-1)/sampledDiagrams)
 	var seen, all float64 // rows
 	for i, g := range groups {
-		f.Parts += g.parts
+		f.Parts += float64(len(g.parts))
 		all += g.rows
 		if i%step == 0 {
 			seen += g.rows
@@ -164,11 +160,11 @@ func (s *sites) alike() []*alike {
 		key := diagram.KeyOf(p.Sites, s.options())
 		g := at[key]
 		if g == nil {
-			g = &alike{part: p, key: key, sites: make([]uint64, column.Words(len(p.Sites)))}
+			g = &alike{sites: make([]uint64, column.Words(len(p.Sites)))}
 			at[key] = g
 			groups = append(groups, g)
 		}
-		g.parts++
+		g.parts = append(g.parts, p)
 		for k, row := range p.Rows {
 			if s.r.Wanted == nil || column.Bit(s.r.Wanted, int(row)) {
 				g.rows++
@@ -182,27 +178,17 @@ func (s *sites) alike() []*alike {
 // look adds what a diagram says of its parts. It is built, its cells are not,
 // but for a few by which their cost is measured.
 func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Measures, faces bool) error {
-	h, err := s.env.Diagrams.Get(ctx, g.part.Sites, s.options())
+	first := g.parts[0]
+	h, err := s.env.Diagrams.Get(ctx, first.Sites, s.options())
 	if err != nil {
-		return s.refused(err, g.part)
+		return s.refused(err, first)
 	}
 	facts := h.Facts()
 	if facts.Inside == 0 {
-		return s.allOutside(g.part, facts)
-	}
-	asked := 0
-	for _, w := range g.sites {
-		asked += bits.OnesCount64(w)
-	}
-	outside := 0
-	for _, site := range facts.Outside {
-		if column.Bit(g.sites, int(site)) {
-			column.ClearBit(g.sites, int(site))
-			outside++
-		}
+		return s.allOutside(first, facts)
 	}
 	rows := g.rows
-	if outside > 0 {
+	if len(facts.Outside) > 0 {
 		rows = s.rowsInside(g, facts)
 	}
 	if faces {
@@ -212,8 +198,11 @@ func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Me
 	if want == 0 {
 		return nil
 	}
-	cells := make([]int32, 0, asked-outside)
-	for site := range int32(len(g.part.Sites)) {
+	for _, site := range facts.Outside {
+		column.ClearBit(g.sites, int(site))
+	}
+	cells := make([]int32, 0, column.Count(g.sites))
+	for site := range int32(len(first.Sites)) {
 		if column.Bit(g.sites, int(site)) {
 			cells = append(cells, site)
 		}
@@ -222,8 +211,11 @@ func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Me
 	if faces {
 		known = h.KnownContacts(cells)
 	}
-	c := h.Cost(want, len(cells)-known)
 	f.Known += known
+	if known == len(cells) {
+		return nil
+	}
+	c := h.Cost(want, len(cells)-known)
 	f.Cost.Cells += c.Cells
 	f.Cost.Seconds += c.Seconds
 	f.Cost.Bytes += c.Bytes
@@ -235,24 +227,9 @@ func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Me
 // rowsInside counts the rows of all parts of a diagram that have a cell.
 func (s *sites) rowsInside(g *alike, facts voronoi.Facts) float64 {
 	rows := 0
-	for _, p := range s.parts {
-		if s.wanted(p) && len(p.Sites) == len(g.part.Sites) && diagram.KeyOf(p.Sites, s.options()) == g.key {
-			ks, _ := s.shown(p, facts)
-			rows += len(ks)
-		}
+	for _, p := range g.parts {
+		ks, _ := s.shown(p, facts)
+		rows += len(ks)
 	}
 	return float64(rows)
-}
-
-// String writes the work for one line of a plan.
-func (f *Forecast) String() string {
-	if len(f.Measures) == 0 {
-		return "no cells to compute: only which sites have one"
-	}
-	about := ""
-	if !f.Counted {
-		about = "about "
-	}
-	text := fmt.Sprintf("%s of %s%s", strings.Join(f.Measures, ", "), about, count(f.Cost.Cells, "cell"))
-	return text
 }
