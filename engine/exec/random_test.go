@@ -275,6 +275,28 @@ func TestWorkerPanics(t *testing.T) {
 	_, _ = Collect(context.Background(), env, n)
 }
 
+// LIMIT and OFFSET count rows over the borders of chunks and behind masks.
+func TestLimitAcrossChunks(t *testing.T) {
+	rng := rand.New(rand.NewPCG(8, 8))
+	half := &plan.Filter{Input: plantest.Scan(plantest.Table(rng, 300)), Cond: compare("<", plantest.Schema, 1, 1), Clause: "WHERE"}
+	for _, count := range []int64{-1, 0, 1, 40, 64, 130, 1000} {
+		for _, offset := range []int64{0, 1, 39, 64, 65, 129, 1000} {
+			n := &plan.Limit{Input: half, Count: count, Offset: offset}
+			want, err := naive(n)
+			if err != nil {
+				t.Fatal(err)
+			}
+			got, err := run(t, testEnv(64, 64), n)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if err := sameRows(n, got, want); err != nil {
+				t.Errorf("LIMIT %d OFFSET %d: %v", count, offset, err)
+			}
+		}
+	}
+}
+
 // LIMIT stops a relation as soon as it has its rows.
 func TestLimitStopsTheSource(t *testing.T) {
 	rng := rand.New(rand.NewPCG(2, 1))
