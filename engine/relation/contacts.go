@@ -82,6 +82,7 @@ type pairs struct {
 }
 
 func (c *contactRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
+	defer c.tell() // where emit has had enough rows, too
 	out := &pairs{batches: newBatches(c.b, c.r.Need, c.each+contactDistance, emit)}
 	for i, p := range c.parts {
 		if err := c.part(ctx, p, out); err != nil {
@@ -89,11 +90,7 @@ func (c *contactRows) Run(ctx context.Context, emit func(*column.Batch) error) e
 		}
 		c.partDone(i)
 	}
-	if err := c.flush(out); err != nil {
-		return err
-	}
-	c.tell()
-	return nil
+	return c.flush(out)
 }
 
 func (c *contactRows) flush(out *pairs) error {

@@ -89,6 +89,7 @@ type gapBatch struct {
 }
 
 func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
+	defer g.tell() // where emit has had enough rows, too
 	out := &gapBatch{batches: newBatches(g.b, g.r.Need, g.each, emit)}
 	for i, p := range g.parts {
 		if err := g.part(ctx, p, out); err != nil {
@@ -96,15 +97,16 @@ func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) error
 		}
 		g.partDone(i)
 	}
-	if err := g.flush(out); err != nil {
-		return err
-	}
-	g.tell()
+	return g.flush(out)
+}
+
+// tell writes the notes.
+func (g *gapRows) tell() {
+	g.sites.tell()
 	if g.b.Clauses.Solid == nil && len(g.parts) > 0 {
 		g.env.Notes.Add(note.Note, note.Cells, "without a solid, only places among the sites of %s can be told: beyond the outermost "+
 			"the distance grows without end; WITHIN a solid gives those at its walls too", g.b.Name)
 	}
-	return nil
 }
 
 // part emits the gaps of one part, the largest first.
