@@ -13,7 +13,6 @@ import (
 	"syscall"
 
 	"github.com/spf13/cobra"
-	"golang.org/x/term"
 
 	"nearcell/catalog"
 	"nearcell/engine"
@@ -83,8 +82,8 @@ func (a *app) command() *cobra.Command {
 		SilenceErrors: true,
 		SilenceUsage:  true,
 		RunE: func(c *cobra.Command, _ []string) error {
-			if f, ok := a.in.(*os.File); ok && term.IsTerminal(int(f.Fd())) {
-				return errors.New("the prompt is not there yet: use nearcell run FILE, or nearcell ask 'query;'")
+			if a.terminal().Interactive() {
+				return a.ask()
 			}
 			return a.run([]string{"-"})
 		},
@@ -101,7 +100,7 @@ func (a *app) command() *cobra.Command {
 			Use:   "ask 'query; query;'",
 			Short: "runs the statements of one text",
 			Args:  cobra.ExactArgs(1),
-			RunE:  func(_ *cobra.Command, args []string) error { return a.ask(args[0]) },
+			RunE:  func(_ *cobra.Command, args []string) error { return a.one(args[0]) },
 		},
 		&cobra.Command{
 			Use:   "check FILE…",
@@ -117,6 +116,12 @@ func (a *app) command() *cobra.Command {
 				_, err := fmt.Fprintf(a.out, "nearcell %s (%s, %s/%s)\n", version, runtime.Version(), runtime.GOOS, runtime.GOARCH)
 				return err
 			},
+		},
+		&cobra.Command{
+			Use:   "man",
+			Short: "prints the manual page, for man -l -",
+			Args:  cobra.NoArgs,
+			RunE:  func(*cobra.Command, []string) error { return manual(a.out, root) },
 		},
 	)
 	return root
@@ -154,7 +159,7 @@ func (a *app) runOne(ctx context.Context, s *engine.Session, name string) error 
 	return s.Run(ctx, "standard input", string(text), ".")
 }
 
-func (a *app) ask(text string) error {
+func (a *app) one(text string) error {
 	return a.inSession(func(ctx context.Context, s *engine.Session) error {
 		return s.Run(ctx, "ask", text, ".")
 	})
@@ -173,7 +178,11 @@ func (a *app) inSession(f func(context.Context, *engine.Session) error) error {
 	if err != nil {
 		return err
 	}
-	options.Err = a.err
+	t := a.terminal()
+	options.Err, options.Progress = a.words(t), t.Progress()
+	if a.flags.to == "" {
+		options.Screen = t.Screen(false)
+	}
 	c, err := a.openCatalog()
 	if err != nil {
 		return err
@@ -182,11 +191,12 @@ func (a *app) inSession(f func(context.Context, *engine.Session) error) error {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
 	defer stop()
 	err = a.withOutput(func(out io.Writer) error {
-		options.Out = out
+		options.Out = t.Out(out)
 		s := engine.New(c, options)
 		if err := a.flags.letAll(s); err != nil {
 			return err
 		}
+		defer t.Working()()
 		return f(ctx, s)
 	})
 	return a.outcome(ctx, err)
