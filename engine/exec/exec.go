@@ -23,8 +23,14 @@ const (
 type Env struct {
 	relation.Env       // Threads: the number of workers, 0: one a core
 	Memory       int64 // bytes that the statement's sinks may keep, 0: no limit
+	// Measured counts what each step of the plan does; nil: nobody asks.
+	Measured *Measured
 
 	kept atomic.Int64
+	// Where somebody asks, each node has an environment of its own: what is kept
+	// in it is told to its meter and to that of the statement.
+	whole  *Env
+	holder *meter
 	// chunk and batch are the numbers of rows of a chunk and of a batch of a
 	// table, 0: the usual ones. Tests set them: results must not depend on them
 	// (but for the last bits of sums).
@@ -32,7 +38,14 @@ type Env struct {
 }
 
 // release takes back what was counted and is given up.
-func (e *Env) release(bytes int64) { e.kept.Add(-bytes) }
+func (e *Env) release(bytes int64) {
+	if e.whole != nil {
+		e.holder.keep(-bytes)
+		e.whole.release(bytes)
+		return
+	}
+	e.kept.Add(-bytes)
+}
 
 func (e *Env) chunkRows() int {
 	if e.chunk > 0 {
@@ -50,6 +63,10 @@ func (e *Env) batchRows() int {
 
 // keep counts bytes that a sink holds on to against the limit.
 func (e *Env) keep(bytes int64) error {
+	if e.whole != nil {
+		e.holder.keep(bytes)
+		return e.whole.keep(bytes)
+	}
 	kept := e.kept.Add(bytes)
 	if e.Memory > 0 && kept > e.Memory {
 		return problem.New("memory", problem.Place{}, "the intermediate results need more than %d MiB", e.Memory>>20).
@@ -67,6 +84,7 @@ type Worker struct {
 	depth int
 	row   int64 // of the first row of the current batch, counted from 0; -1: unknown
 	local map[any]any
+	watch watch // of meters, if there are any
 }
 
 // NewWorker is a worker with its own scratch memory.
@@ -186,11 +204,14 @@ func (r *runner) collect(ctx context.Context, n plan.Node) (*column.Table, error
 	if err != nil {
 		return nil, err
 	}
-	if src, ok := p.source.(*tableSource); ok && len(p.steps) == 0 {
-		return src.table, nil
+	if len(p.steps) == 0 {
+		if t := asTable(p.source); t != nil {
+			return t, nil
+		}
 	}
-	sink := &collectSink{env: r.env, schema: n.Schema()}
-	src, err := p.into(ctx, NewWorker(r.env), sink)
+	above := r.above(n)
+	env := r.envOf(above)
+	src, err := p.into(ctx, NewWorker(env), above.around(&collectSink{env: env, schema: n.Schema()}))
 	if err != nil {
 		return nil, err
 	}

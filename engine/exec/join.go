@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"math"
+	"time"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
@@ -51,7 +52,11 @@ func (r *runner) openBuild(ctx context.Context, n *plan.Join) (*buildSide, error
 	}
 	side := &buildSide{table: table}
 	if len(at) > 0 {
-		err = side.index(r.env, at, n.LeftKeys)
+		m := r.meter(n)
+		if m != nil {
+			defer m.took(time.Now())
+		}
+		err = side.index(r.envOf(m), at, n.LeftKeys)
 	}
 	side.table = &column.Table{Schema: schema, Cols: table.Cols[:len(schema)], N: table.N}
 	return side, err

@@ -3,6 +3,7 @@ package exec
 import (
 	"context"
 	"fmt"
+	"time"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
@@ -14,6 +15,14 @@ import (
 // a whole (the groups of an aggregate, the right side of a join, the sites of a
 // relation) is computed here, before the first row comes out.
 func (r *runner) open(ctx context.Context, n plan.Node) (*pipeline, error) {
+	p, err := r.openNode(ctx, n)
+	if m := r.meter(n); m != nil && err == nil {
+		return p.metered(m), nil
+	}
+	return p, err
+}
+
+func (r *runner) openNode(ctx context.Context, n plan.Node) (*pipeline, error) {
 	switch n := n.(type) {
 	case *plan.One:
 		return sourceOnly(newTableSource(r.env, &column.Table{N: 1})), nil
@@ -46,23 +55,25 @@ func (r *runner) open(ctx context.Context, n plan.Node) (*pipeline, error) {
 // openSink runs the nodes that give nothing before they have seen everything.
 func (r *runner) openSink(ctx context.Context, n plan.Node) (*pipeline, error) {
 	var sink Sink
+	m := r.meter(n)
+	env := r.envOf(m)
 	switch n := n.(type) {
 	case *plan.Aggregate:
-		s, err := newAggregateSink(r.env, n)
+		s, err := newAggregateSink(env, n)
 		if err != nil {
 			return nil, err
 		}
 		s.watch = r.watch(n)
 		sink = s
 	case *plan.Sort:
-		sink = newSortSink(r.env, n)
+		sink = newSortSink(env, n)
 	case *plan.Limit:
 		if n.Count == 0 { // asked for the columns alone
-			return sourceOnly(newTableSource(r.env, newTableBuilder(r.env, n.Schema()).finish())), nil
+			return sourceOnly(newTableSource(r.env, newTableBuilder(env, n.Schema()).finish())), nil
 		}
-		sink = newLimitSink(r.env, n)
+		sink = newLimitSink(env, n)
 	case *plan.Distinct:
-		sink = newDistinctSink(r.env, n.Input.Schema())
+		sink = newDistinctSink(env, n.Input.Schema())
 	default:
 		return nil, fmt.Errorf("exec: no way to run a %T", n)
 	}
@@ -70,7 +81,7 @@ func (r *runner) openSink(ctx context.Context, n plan.Node) (*pipeline, error) {
 	if err != nil {
 		return nil, err
 	}
-	src, err := p.into(ctx, NewWorker(r.env), sink)
+	src, err := p.into(ctx, NewWorker(r.env), m.around(sink))
 	if err != nil {
 		return nil, err
 	}
@@ -152,6 +163,9 @@ func (r *runner) openRelation(ctx context.Context, n *plan.Relation) (*pipeline,
 	if shown != nil {
 		shown.countParts(n, o.sites, o.wanted)
 	}
+	if m := r.meter(n); m != nil {
+		o.rows = &meteredRows{o.rows, r.env, m}
+	}
 	return sourceOnly(&rowSource{node: n, rows: o.rows, schema: n.Schema(), shown: shown}), nil
 }
 
@@ -168,6 +182,9 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 	sites, err := r.collect(ctx, n.Input)
 	if err != nil {
 		return overSites{}, err
+	}
+	if m := r.meter(n); m != nil {
+		defer m.took(time.Now())
 	}
 	need := n.Need
 	if need == nil {

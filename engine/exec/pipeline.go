@@ -93,7 +93,7 @@ func (p *pipeline) streamInto(ctx context.Context, w *Worker, sink Sink) error {
 		}
 		full := part
 		part = nil
-		if err := sink.Merge(full); err != nil {
+		if err := w.merge(sink, full); err != nil {
 			return err
 		}
 		rows = 0
