@@ -89,12 +89,12 @@ func expect(t *testing.T, rule string, n plan.Node, want string) {
 func TestFold(t *testing.T) {
 	n := scan()
 	expect(t, "fold", where(n, compare(num(1), lang.Less, arith(num(1), lang.Plus, num(1)))), `
-scan table x: id, n, r, s, b, t, p
+read table x: id, n, r, s, b, t, p
 `)
 	// what cannot be computed stays
 	expect(t, "fold", where(n, compare(arith(num(1), lang.Divide, num(0)), lang.Less, arith(num(1), lang.Plus, num(1)))), `
-filter where: 1.0 / 0.0 < 2.0
-  scan table x: id, n, r, s, b, t, p
+keep where: 1.0 / 0.0 < 2.0
+  read table x: id, n, r, s, b, t, p
 `)
 }
 
@@ -103,43 +103,43 @@ func TestPushDown(t *testing.T) {
 	n := scan()
 	p := project(n, col(n, "r"), arith(col(n, "r"), lang.Plus, num(1)))
 	expect(t, "push down", where(p, compare(col(p, "r"), lang.Less, num(3)), compare(col(p, "r + 1.0"), lang.Less, num(3))), `
-filter where: "r + 1.0" < 3.0
-  project: r, r + 1.0
-    filter where: r < 3.0
-      scan table x: id, n, r, s, b, t, p
+keep where: "r + 1.0" < 3.0
+  compute: r, r + 1.0
+    keep where: r < 3.0
+      read table x: id, n, r, s, b, t, p
 `)
 	fails := compare(arith(num(1), lang.Divide, col(n, "r")), lang.Less, num(3))
 	expect(t, "push down", where(where(n, fails), compare(col(n, "r"), lang.NotEquals, num(0))), `
-filter where: 1.0 / r < 3.0
-  filter where: r <> 0.0
-    scan table x: id, n, r, s, b, t, p
+keep where: 1.0 / r < 3.0
+  keep where: r <> 0.0
+    read table x: id, n, r, s, b, t, p
 `)
 	limit := &plan.Limit{Input: n, Count: 5}
 	expect(t, "push down", where(limit, compare(col(n, "r"), lang.Less, num(3))), `
-filter where: r < 3.0
+keep where: r < 3.0
   limit 5
-    scan table x: id, n, r, s, b, t, p
+    read table x: id, n, r, s, b, t, p
 `)
 }
 
 func TestPushIntoJoin(t *testing.T) {
 	for kind, want := range map[plan.JoinKind]string{
 		plan.Inner: `
-inner join; where n = n
-  filter on: b
-    filter where: n < 1
-      scan table x: id, n, r, s, b, t, p
-  filter on: s = 'a'
-    filter where: r < 2.0
-      scan table x: id, n, r, s, b, t, p
+inner join on n = n
+  keep on: b
+    keep where: n < 1
+      read table x: id, n, r, s, b, t, p
+  keep on: s = 'a'
+    keep where: r < 2.0
+      read table x: id, n, r, s, b, t, p
 `,
 		plan.Left: `
-filter where: r < 2.0
-  left join; where n = n AND b
-    filter where: n < 1
-      scan table x: id, n, r, s, b, t, p
-    filter on: s = 'a'
-      scan table x: id, n, r, s, b, t, p
+keep where: r < 2.0
+  left join on n = n AND b
+    keep where: n < 1
+      read table x: id, n, r, s, b, t, p
+    keep on: s = 'a'
+      read table x: id, n, r, s, b, t, p
 `,
 	} {
 		j := &plan.Join{Kind: kind, Left: scan(), Right: scan()}
@@ -155,10 +155,10 @@ func TestPushIntoRelation(t *testing.T) {
 	r := crowd(scan(), -1)
 	fails := compare(arith(num(1), lang.Divide, col(r, "r")), lang.Less, num(3))
 	expect(t, "push down", where(r, compare(col(r, "id"), lang.Equals, text("R1")), compare(col(r, "volume"), lang.Less, num(3)), fails), `
-filter where: 1.0 / r < 3.0
-  filter where: volume < 3.0
+keep where: 1.0 / r < 3.0
+  keep where: volume < 3.0
     crowd of sites: id, n, r, s, b, t, p, volume, partners; only id = 'R1'
-      scan table x: id, n, r, s, b, t, p
+      read table x: id, n, r, s, b, t, p
 `)
 }
 
@@ -168,9 +168,9 @@ func TestJoinKeys(t *testing.T) {
 		compare(col(j.Left, "n"), lang.Equals, col(j.Left, "r")), compare(col(j.Left, "n"), lang.Less, right(j, "n")),
 		compare(arith(num(1), lang.Divide, col(j.Left, "r")), lang.Equals, right(j, "r")))
 	expect(t, "join keys", j, `
-inner join by hash: n = r, s = s; where n = r AND n < n AND 1.0 / r = r
-  scan table x: id, n, r, s, b, t, p
-  scan table x: id, n, r, s, b, t, p
+inner join by hash: n = r, s = s; on n = r AND n < n AND 1.0 / r = r
+  read table x: id, n, r, s, b, t, p
+  read table x: id, n, r, s, b, t, p
 `)
 }
 
@@ -178,15 +178,15 @@ func TestTop(t *testing.T) {
 	s := &plan.Sort{Input: scan(), Keys: []plan.SortKey{{Expr: col(scan(), "r"), Descending: true}}}
 	expect(t, "top", &plan.Limit{Input: project(s, col(s, "id")), Count: 5, Offset: 2}, `
 limit 5 offset 2
-  project: id
+  columns: id
     sort: r DESC, first 7
-      scan table x: id, n, r, s, b, t, p
+      read table x: id, n, r, s, b, t, p
 `)
 	expect(t, "top", &plan.Limit{Input: &plan.Distinct{Input: s}, Count: 5}, `
 limit 5
-  distinct
+  distinct rows
     sort: r DESC
-      scan table x: id, n, r, s, b, t, p
+      read table x: id, n, r, s, b, t, p
 `)
 }
 
@@ -198,20 +198,20 @@ func TestPrune(t *testing.T) {
 	avg := plan.Call{Fn: function.LookupAggregate("AVG"), Args: []expr.Expr{col(r, "n")}, Weight: col(r, "volume"), Text: "AVG(n) WEIGHTED BY volume"}
 	a := &plan.Aggregate{Input: shown, Calls: []plan.Call{avg}, Fields: column.Schema{{Name: "mean", Type: column.Real}}}
 	expect(t, "all", a, `
-aggregate: AVG(n) WEIGHTED BY volume
-  crowd of sites: id, n, volume; only s = 'a'
-    scan table x: id, n, r, s, t
+aggregate all rows: AVG(n) WEIGHTED BY volume
+  crowd of sites for each t: id, n, volume; only s = 'a'
+    read table x: id, n, r, s, t
 `)
 	// rows are counted without any column
 	count := plan.Call{Fn: function.LookupAggregate("COUNT"), Text: "COUNT(*)"}
 	expect(t, "prune", &plan.Aggregate{Input: scan(), Calls: []plan.Call{count}, Fields: column.Schema{{Name: "n", Type: column.Integer}}}, `
-aggregate: COUNT(*)
-  scan table x: no columns
+aggregate all rows: COUNT(*)
+  read table x: no columns
 `)
 	// the id stays beside what can fail, so that the row can be named
 	n := scan()
 	expect(t, "prune", project(n, arith(num(1), lang.Divide, col(n, "r"))), `
-project: 1.0 / r
-  scan table x: id, r
+compute: 1.0 / r
+  read table x: id, r
 `)
 }

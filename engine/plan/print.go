@@ -5,6 +5,7 @@ import (
 	"strings"
 
 	"nearcell/engine/expr"
+	"nearcell/engine/relation"
 )
 
 // Format writes a plan as an indented tree, one node a line, the source last.
@@ -37,9 +38,9 @@ func Line(n Node) string {
 	case *Relation:
 		return relationLine(n)
 	case *Filter:
-		return fmt.Sprintf("filter %s: %s", strings.ToLower(n.Clause), n.Cond)
+		return fmt.Sprintf("keep %s: %s", strings.ToLower(n.Clause), n.Cond)
 	case *Project:
-		return "project: " + projections(n)
+		return projectLine(n)
 	case *Aggregate:
 		return aggregateLine(n)
 	case *Join:
@@ -53,9 +54,9 @@ func Line(n Node) string {
 	case *Limit:
 		return limitLine(n)
 	case *Distinct:
-		return "distinct"
+		return "distinct rows"
 	case *Union:
-		return "union"
+		return "union all"
 	}
 	return fmt.Sprintf("%T", n)
 }
@@ -76,7 +77,7 @@ func scanLine(n *Scan) string {
 	if len(names) == 0 {
 		cols = "no columns"
 	}
-	return fmt.Sprintf("scan %s %s: %s", n.Kind, n.Name, cols)
+	return fmt.Sprintf("read %s %s: %s", n.Kind, n.Name, cols)
 }
 
 func relationLine(n *Relation) string {
@@ -90,16 +91,52 @@ func relationLine(n *Relation) string {
 	if len(names) == 0 {
 		cols = "no columns"
 	}
-	line := fmt.Sprintf("%s of %s: %s", strings.ToLower(n.Bound.Def.Noun), n.Bound.Name, cols)
+	line := fmt.Sprintf("%s of %s%s: %s", strings.ToLower(n.Bound.Def.Noun), n.Bound.Name, clauses(n.Bound), cols)
 	if n.Wanted != nil {
 		line += fmt.Sprintf("; only %s", n.Wanted)
 	}
 	return line
 }
 
-func projections(n *Project) string {
+// clauses are those that say what partitions.
+func clauses(b *relation.Bound) string {
+	c := &b.Clauses
+	text := ""
+	if c.Solid != nil {
+		text += " within " + shortened(c.SolidName)
+	}
+	for i, each := range c.Each {
+		if i == 0 {
+			text += " for each "
+		} else {
+			text += ", "
+		}
+		text += b.Input[each].Name
+	}
+	if len(c.Omitting) > 0 {
+		text += " omitting " + shortened("'"+strings.Join(c.Omitting, "', '")+"'")
+	}
+	return text
+}
+
+// shortened leaves the end of a long text out: solids may be written in place.
+func shortened(s string) string {
+	const most = 40
+	r := []rune(s)
+	if len(r) <= most {
+		return s
+	}
+	return string(r[:most-1]) + "…"
+}
+
+// projectLine tells computed columns from those that are only handed on.
+func projectLine(n *Project) string {
+	what := "columns: "
 	parts := make([]string, len(n.Exprs))
 	for i, e := range n.Exprs {
+		if _, plain := expr.AsColumn(e); !plain {
+			what = "compute: "
+		}
 		parts[i] = e.String()
 		if name := n.Fields[i].Name; name != parts[i] {
 			parts[i] += " AS " + name
@@ -108,20 +145,20 @@ func projections(n *Project) string {
 	if len(parts) == 0 {
 		return "no columns"
 	}
-	return strings.Join(parts, ", ")
+	return what + strings.Join(parts, ", ")
 }
 
 func aggregateLine(n *Aggregate) string {
-	calls := make([]string, len(n.Calls))
-	for i, c := range n.Calls {
-		calls[i] = c.Text
-	}
-	line := "aggregate"
-	if len(calls) > 0 {
-		line += ": " + strings.Join(calls, ", ")
-	}
+	line := "aggregate all rows"
 	if len(n.Keys) > 0 {
-		line += " by " + exprs(n.Keys)
+		line = "group by " + exprs(n.Keys)
+	}
+	for i, c := range n.Calls {
+		if i == 0 {
+			line += ": " + c.Text
+		} else {
+			line += ", " + c.Text
+		}
 	}
 	return line
 }
@@ -139,8 +176,13 @@ func joinLine(n *Join) string {
 		}
 		line += fmt.Sprintf("%s = %s", n.LeftKeys[i], n.RightKeys[i])
 	}
-	if n.Rest != nil {
-		line += "; where " + n.Rest.String()
+	switch {
+	case n.Rest != nil && len(n.LeftKeys) > 0:
+		line += "; on " + n.Rest.String()
+	case n.Rest != nil:
+		line += " on " + n.Rest.String()
+	case len(n.LeftKeys) == 0 && n.Kind == Inner:
+		line = "cross join"
 	}
 	return line
 }

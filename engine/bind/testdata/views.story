@@ -8,19 +8,19 @@ SELECT id, x, y, z, temp FROM hall WHERE temp > :limit
 plan
 SELECT id FROM warm
 ----
-project: id
-  project: id, x, y, z, temp
-    filter where: temp > 8.0
-      scan campaign hall: id, x, y, z, temp, area
+compute: id
+  compute: id, x, y, z, temp
+    keep where: temp > 8.0
+      read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT id, volume FROM CELLS OF warm WITHIN air OMITTING ('L17') BECAUSE 'moved'
 ----
-project: id, volume
-  cells of warm: id, x, y, z, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
-    project: id, x, y, z, temp
-      filter where: temp > 8.0
-        scan campaign hall: id, x, y, z, temp, area
+compute: id, volume
+  cells of warm within air omitting 'L17': id, x, y, z, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+    compute: id, x, y, z, temp
+      keep where: temp > 8.0
+        read campaign hall: id, x, y, z, temp, area
 
 view unset
 SELECT id FROM hall WHERE temp > :upper
@@ -68,19 +68,19 @@ view b:1: the view 'a' uses itself: a uses b uses a
 plan
 WITH hall AS (SELECT 1 AS one) SELECT one, id FROM hall CROSS JOIN warm
 ----
-project: one, id
-  inner join
-    project: 1 AS one
+compute: one, id
+  cross join
+    compute: 1 AS one
       one row
-    project: id, x, y, z, temp
-      filter where: temp > 8.0
-        scan campaign hall: id, x, y, z, temp, area
+    compute: id, x, y, z, temp
+      keep where: temp > 8.0
+        read campaign hall: id, x, y, z, temp, area
 
 plan
 WITH warm AS (SELECT id FROM warm) SELECT id FROM warm
 ----
-project: id
-  project: id
-    project: id, x, y, z, temp
-      filter where: temp > 8.0
-        scan campaign hall: id, x, y, z, temp, area
+compute: id
+  compute: id
+    compute: id, x, y, z, temp
+      keep where: temp > 8.0
+        read campaign hall: id, x, y, z, temp, area
