@@ -63,8 +63,11 @@ func (s *Session) campaignTable(st *statement, t *lang.CreateData, c *clauses, r
 
 // originPlace is where the statement says what the data come from.
 func originPlace(st *statement, t *lang.CreateData) problem.Place {
-	if t.File != nil {
+	switch {
+	case t.File != nil:
 		return st.at(t.File)
+	case t.Files != nil:
+		return st.at(t.Files)
 	}
 	return st.at(t.Query)
 }

@@ -30,6 +30,8 @@ type clauses struct {
 	file       reader.Options
 	fileClause lang.Node // one of the clauses that only a file can have
 	refusedTo  *lang.Text
+	times      *lang.TimeReading
+	unpivot    *lang.UnpivotReading
 }
 
 // readClauses looks at every clause; what belongs to a later day is refused by name.
@@ -38,6 +40,11 @@ func (s *Session) readClauses(st *statement, t *lang.CreateData) (*clauses, erro
 	for _, r := range t.Readings {
 		if err := c.read(r); err != nil {
 			return nil, err
+		}
+	}
+	if c.units != nil {
+		for _, u := range c.units.Units {
+			c.file.Units = append(c.file.Units, reader.ColumnUnit{Column: u.Column.Text, Unit: column.ParseUnit(u.Unit.Value)})
 		}
 	}
 	if c.file.DecimalMark != 0 && c.file.DecimalMark == c.file.Delimiter {
@@ -131,15 +138,15 @@ func (c *clauses) readFile(r lang.Reading) (err error) {
 	case *lang.SheetReading:
 		err = problem.NotThereYet(c.st.at(r), "SHEET")
 	case *lang.EncodingReading:
-		err = problem.NotThereYet(c.st.at(r), "ENCODING")
+		err = c.readEncoding(r)
 	case *lang.TimeReading:
-		err = problem.NotThereYet(c.st.at(r), "TIME (…)")
+		err = c.readTimes(r)
 	case *lang.PreambleReading:
-		err = problem.NotThereYet(c.st.at(r), "PREAMBLE")
+		err = c.readPreamble(r)
 	case *lang.CensoredReading:
 		err = problem.NotThereYet(c.st.at(r), "CENSORED")
 	case *lang.UnpivotReading:
-		err = problem.NotThereYet(c.st.at(r), "UNPIVOT")
+		c.unpivot = r
 	case *lang.StretchedClause:
 		err = problem.NotThereYet(c.st.at(r), "STRETCHED")
 	default:
@@ -218,6 +225,9 @@ func (c *clauses) applyUnits(table *column.Table, origin string) (*column.Table,
 	schema := append(column.Schema(nil), table.Schema...)
 	cols := append([]column.Vector(nil), table.Cols...)
 	for _, u := range c.units.Units {
+		if c.unpivots(u.Column) {
+			continue // the reader has given it its unit before it became rows
+		}
 		i, err := findColumn(schema, u.Column, c.st.at(u.Column), origin)
 		if err != nil {
 			return nil, err
@@ -226,6 +236,19 @@ func (c *clauses) applyUnits(table *column.Table, origin string) (*column.Table,
 		schema[i].Unit, cols[i].Unit = unit, unit
 	}
 	return &column.Table{Schema: schema, Cols: cols, N: table.N}, nil
+}
+
+// unpivots reports whether a column became rows.
+func (c *clauses) unpivots(name lang.Name) bool {
+	if c.unpivot == nil {
+		return false
+	}
+	for _, n := range c.unpivot.Columns {
+		if name.Matches(n.Text) {
+			return true
+		}
+	}
+	return false
 }
 
 // findColumn is the column that a name means.

@@ -25,8 +25,11 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 	object := catalog.Object{Kind: kindOf(t.Kind), Key: t.Name.Key(), Name: t.Name.Text, Created: time.Now().UTC()}
 	var table *column.Table
 	origin := "the query"
-	if t.File != nil {
-		origin = t.File.Value
+	if named := t.File; t.Query == nil {
+		if named == nil {
+			named = t.Files
+		}
+		origin = named.Value
 		table, err = s.importFile(ctx, st, t, clauses, &object)
 	} else {
 		table, err = s.collect(ctx, st, t, clauses)
@@ -52,6 +55,9 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 		thing = "site"
 	}
 	if !s.checkOnly {
+		if len(object.Sources) > 1 {
+			origin = plural(len(object.Sources), "file") + " " + origin
+		}
 		s.say("%s: %s from %s, %s", t.Name.Text, plural(table.N, thing), origin, st.seconds())
 	}
 	return nil

@@ -80,9 +80,12 @@ func (s *Session) describeOrigin(st *statement, o *catalog.Object) {
 		thing = "site"
 	}
 	from := "a query"
-	if len(o.Sources) > 0 {
+	switch n := len(o.Sources); {
+	case n == 1:
 		f := o.Sources[0]
 		from = fmt.Sprintf("%s (%d bytes, SHA-256 %s)", f.Path, f.Size, f.SHA256)
+	case n > 1:
+		from = fmt.Sprintf("%d files, %s to %s", n, o.Sources[0].Path, o.Sources[n-1].Path)
 	}
 	st.notes.Add(note.Note, note.Import, "%s of %s from %s", strings.ToLower(o.Kind.String()), plural(o.Rows, thing), from)
 	for _, n := range o.Notes {

@@ -30,11 +30,18 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 	case *lang.List:
 		return s.list(st, t)
 	case *lang.Describe:
+		if t.File != nil {
+			return s.describeFile(ctx, st, t)
+		}
 		return s.describe(st, t)
+	case *lang.Explain:
+		return s.explain(ctx, st, t)
 	case *lang.Run:
 		return s.runFile(ctx, st, t)
 	case *lang.Set:
 		return s.set(st, t)
+	case *lang.Help:
+		return s.help(st, t)
 	case *lang.Quit:
 		return errQuit
 	}
@@ -45,12 +52,8 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 func refuse(st *statement, tree lang.Statement) error {
 	what := ""
 	switch t := tree.(type) {
-	case *lang.Explain:
-		what = "EXPLAIN"
 	case *lang.Require:
 		what = "REQUIRE"
-	case *lang.Help:
-		what = "HELP"
 	case *lang.Draw:
 		what = "DRAW"
 		if t.Show {
@@ -67,17 +70,9 @@ func refuse(st *statement, tree lang.Statement) error {
 		if !t.Frame.IsZero() {
 			what = "IN FRAME"
 		}
-	case *lang.CreateData:
-		if t.Files != nil {
-			what = "FROM FILES"
-		}
 	case *lang.Drop:
 		if t.Kind == lang.Diagrams || t.Kind == lang.FrameOb {
 			what = "DROP " + string(t.Kind)
-		}
-	case *lang.Describe:
-		if t.File != nil {
-			what = "DESCRIBE FILE"
 		}
 	case *lang.Save:
 		if t.WithProvenance {

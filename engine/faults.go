@@ -4,14 +4,37 @@ import (
 	"errors"
 	"fmt"
 	"strings"
+	"unicode"
 
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
+	"nearcell/catalog/reader/timeform"
 	"nearcell/engine/problem"
 	"nearcell/lang"
 )
 
-// importProblem words the faults of a file: what is wrong at which line and
+// importProblem words what kept files from being read: a column that a clause
+// names and they have not, or their faults.
+func (c *clauses) importProblem(err error, at problem.Place, file string) error {
+	var none *reader.ColumnError
+	if !errors.As(err, &none) {
+		return importProblem(err, at, file)
+	}
+	if c.times != nil {
+		for _, t := range c.times.Columns {
+			if t.Column.Text == none.Column {
+				at = c.st.at(t.Column)
+			}
+		}
+	}
+	p := problem.New("no-column", at, "there is no column '%s' in %s", none.Column, file).Because(err)
+	if near := lang.Nearest(none.Column, none.Have); near != "" {
+		return p.WithHint("did you mean '%s'?", near)
+	}
+	return p.WithHint("it has %s", listed(none.Have, 12))
+}
+
+// importProblem words the faults of files: what is wrong at which line and
 // column, the line itself with the place marked, and the way out.
 func importProblem(err error, at problem.Place, file string) error {
 	var faults *reader.Faults
@@ -19,38 +42,112 @@ func importProblem(err error, at problem.Place, file string) error {
 		return err
 	}
 	for i := range faults.List {
-		faults.List[i].Text = strings.TrimSpace(faults.List[i].Text)
+		f := &faults.List[i]
+		f.Text = strings.TrimSpace(f.Text)
+		if f.File == "" {
+			f.File = file
+		}
 	}
 	first := faults.List[0]
-	if first.Line == 0 {
-		return problem.New("import", at, "'%s' was not imported: %s", file, faultText(first)).Because(err)
-	}
 	count := len(faults.List) + faults.More
+	if first.Line == 0 && count == 1 {
+		p := problem.New("import", at, "'%s' was not imported: %s", first.File, faultText(first)).Because(err)
+		p.Hint = faultHint(first)
+		return p
+	}
 	p := problem.New("import", at, "'%s' was not imported: %s", file, plural(count, "fault")).Because(err)
 	var detail strings.Builder
-	values := false
 	for i, f := range faults.List {
 		if i == listedFaults && count > listedFaults+1 {
 			fmt.Fprintf(&detail, "%s: and %d more\n", file, count-listedFaults)
 			break
 		}
-		values = values || valueFault(f.Kind)
-		detail.WriteString(faultLine(file, f))
+		detail.WriteString(faultLine(f))
+		if p.Hint == "" {
+			p.Hint = faultHint(f)
+		}
 	}
 	p.Detail = strings.TrimRight(detail.String(), "\n")
-	switch {
-	case values && first.Text != "":
-		p.Hint = fmt.Sprintf("MISSING %s reads such a value as missing, REFUSED TO 'refused.csv' sets such lines aside",
-			quoted(first.Text))
-	case first.Kind == reader.FieldCount || first.Kind == reader.BareQuote:
-		p.Hint = "mend the file, or REFUSED TO 'refused.csv' sets such lines aside"
-	}
 	return p
 }
 
+// faultHint is the way out of a fault, empty where its text says it.
+func faultHint(f reader.Fault) string {
+	switch f.Kind {
+	case reader.NotANumber, reader.NotATimestamp, reader.NotABoolean, reader.NotFinite, reader.OutOfRange, reader.NotThisTime:
+		if f.Text == "" {
+			return ""
+		}
+		missing := fmt.Sprintf("MISSING %s reads such a value as missing, REFUSED TO 'refused.csv' sets such lines aside", quoted(f.Text))
+		switch {
+		case isCode(f):
+			return "where the column holds codes and not numbers, put a letter before each of them in the file (K5A, K1), or make it the ID of a campaign; REFUSED TO 'refused.csv' sets such lines aside"
+		case f.Kind == reader.NotATimestamp || f.Kind == reader.NotThisTime:
+			var g timeform.Guess
+			g.Add([]byte(f.Text))
+			if pattern, _ := g.Pattern(); pattern != "" && pattern != f.Detail {
+				return fmt.Sprintf("TIME (%s '%s') reads such times", lang.QuoteName(f.FieldName), pattern)
+			}
+		}
+		return missing
+	case reader.FieldCount, reader.BareQuote, reader.NulByte:
+		return "mend the file, or REFUSED TO 'refused.csv' sets such lines aside"
+	case reader.NoSuchTime:
+		return "mend the file, or REFUSED TO 'refused.csv' sets such lines aside"
+	case reader.SkippedTime:
+		return "a logger that keeps one offset all year is read with that: ZONE '+01:00'"
+	case reader.RepeatedTime:
+		return "the rows of one logger must run through both hours in their order; a logger that keeps one offset all year is read with that: ZONE '+01:00'; REFUSED TO 'refused.csv' sets such lines aside"
+	case reader.HeadingRepeated:
+		return "give them different names in the heading of the file"
+	case reader.HeadingEmpty:
+		return "give it a name in the heading of the file; if that stands in another line, HEADING AT LINE says in which"
+	case reader.NoPreamble:
+		if f.Detail != "" {
+			return fmt.Sprintf("it has %s: did you mean that?", quoted(f.Detail))
+		}
+		if f.Got <= 1 {
+			return "the heading is the first line; HEADING AT LINE says in which it stands"
+		}
+		return fmt.Sprintf("the heading is line %d; DESCRIBE FILE shows what stands before it", f.Got)
+	case reader.PreambleRepeated:
+		return "take more of the line, so that it stands there once"
+	case reader.ColumnTaken:
+		return "give PREAMBLE's column another name"
+	case reader.ColumnMissing, reader.ColumnAdded:
+		return "files that are read as one have the same columns, in any order; leave such a file out of the pattern, or mend its heading"
+	case reader.UnitsDiffer:
+		return "bring the files to one unit"
+	case reader.NotInEncoding:
+		if f.Detail == string(reader.Latin1) {
+			return "try ENCODING 'windows-1252'"
+		}
+	}
+	return ""
+}
+
+// isCode tells a code such as 5A among numbers from a number with a slip in it.
+func isCode(f reader.Fault) bool {
+	if f.Kind != reader.NotANumber || f.Want != column.Integer || len(f.Text) > 8 {
+		return false
+	}
+	digits, letters := 0, 0
+	for _, r := range f.Text {
+		switch {
+		case r >= '0' && r <= '9':
+			digits++
+		case unicode.IsLetter(r):
+			letters++
+		default:
+			return false
+		}
+	}
+	return digits > 0 && letters > 0
+}
+
 // faultLine is a fault with its line of the file and the mark under the place.
-func faultLine(file string, f reader.Fault) string {
-	head := fmt.Sprintf("%s:%s%s", file, faultPlaceShort(f), faultText(f))
+func faultLine(f reader.Fault) string {
+	head := fmt.Sprintf("%s:%s%s", f.File, faultPlaceShort(f), faultText(f))
 	if f.Source == "" || f.Column == 0 {
 		return head + "\n"
 	}
@@ -76,6 +173,9 @@ func byteOffset(line string, n int) int {
 }
 
 func faultPlaceShort(f reader.Fault) string {
+	if f.Line == 0 {
+		return " "
+	}
 	if f.Column == 0 {
 		return fmt.Sprintf("%d: ", f.Line)
 	}
@@ -87,14 +187,6 @@ func faultPlace(f reader.Fault) string {
 		return fmt.Sprintf("line %d: ", f.Line)
 	}
 	return fmt.Sprintf("line %d column %d: ", f.Line, f.Column)
-}
-
-func valueFault(k reader.FaultKind) bool {
-	switch k {
-	case reader.NotANumber, reader.NotATimestamp, reader.NotABoolean, reader.NotFinite, reader.OutOfRange:
-		return true
-	}
-	return false
 }
 
 // faultText is what is wrong, without its place.
@@ -121,9 +213,9 @@ func faultText(f reader.Fault) string {
 	case reader.OutOfRange:
 		return fmt.Sprintf("%s%s is beyond the range of numbers", quoted(f.Text), in)
 	case reader.NotUTF8:
-		return "bytes that are no UTF-8 text" + in + " (save the file as UTF-8)"
+		return "bytes that are no UTF-8 text" + in + " (ENCODING 'latin1' or 'windows-1252' may read them)"
 	case reader.UTF16:
-		return "the file is UTF-16 (save it as UTF-8)"
+		return "the file is UTF-16 (ENCODING 'utf-16' reads it)"
 	case reader.EmptyFile:
 		return "the file is empty"
 	case reader.NoHeading:
@@ -132,8 +224,46 @@ func faultText(f reader.Fault) string {
 		return fmt.Sprintf("two columns are called %s", quoted(f.Text))
 	case reader.HeadingEmpty:
 		return fmt.Sprintf("column %d has no name in the heading", f.Field)
+	case reader.NulByte:
+		return "a byte 0" + in + ", as loggers leave that lose power while they write"
+	case reader.NotThisTime:
+		return fmt.Sprintf("%s%s is not written as %s", quoted(f.Text), in, quoted(f.Detail))
+	case reader.NoSuchTime:
+		return fmt.Sprintf("%s%s is no date or time of day", quoted(f.Text), in)
+	case reader.SkippedTime:
+		return fmt.Sprintf("%s%s never was: the clocks of %s skip it", quoted(f.Text), in, f.Detail)
+	case reader.RepeatedTime:
+		return fmt.Sprintf("%s%s came twice on the clocks of %s, and the order of the rows does not tell which one it is", quoted(f.Text), in, f.Detail)
+	}
+	return filesFaultText(f, in)
+}
+
+// filesFaultText is faultText for what stands outside the records.
+func filesFaultText(f reader.Fault, in string) string {
+	switch f.Kind {
+	case reader.NoPreamble:
+		return fmt.Sprintf("%s does not stand in the lines before the heading", quoted(f.Text))
+	case reader.PreambleRepeated:
+		return fmt.Sprintf("%s stands twice before the heading, first in line %d", quoted(f.Text), f.Got)
+	case reader.ColumnTaken:
+		return fmt.Sprintf("PREAMBLE makes a column %s, and the file has one", quoted(f.Text))
+	case reader.ColumnMissing:
+		return fmt.Sprintf("there is no column %s, which '%s' has", quoted(f.Text), f.Detail)
+	case reader.ColumnAdded:
+		return fmt.Sprintf("there is a column %s, which '%s' has not", quoted(f.Text), f.Detail)
+	case reader.UnitsDiffer:
+		return fmt.Sprintf("the unit%s is %s here and %s in the files before", in, textOrNone(f.Text), textOrNone(f.Detail))
+	case reader.NotInEncoding:
+		return fmt.Sprintf("bytes that are no %s text", f.Detail)
 	}
 	return f.Kind.String()
+}
+
+func textOrNone(unit string) string {
+	if unit == "" {
+		return "not said"
+	}
+	return unit
 }
 
 // quoted writes a text as the language does, cut to a readable length.
@@ -143,50 +273,6 @@ func quoted(s string) string {
 		s = string(r[:most]) + "…"
 	}
 	return "'" + strings.ReplaceAll(s, "'", "''") + "'"
-}
-
-// importNotes words what a reader met that is no fault but ought to be known.
-func importNotes(f *reader.Facts, file string) []string {
-	var notes []string
-	add := func(format string, args ...any) {
-		notes = append(notes, file+": "+fmt.Sprintf(format, args...))
-	}
-	for _, c := range f.StayedText {
-		switch c.Reason {
-		case reader.MixedValues:
-			add("column '%s' is TEXT, since %s; the first is %s in line %d", c.Column,
-				noNumbers(c.NotNumeric), quoted(c.FirstText), c.FirstLine)
-		case reader.LeadingZeros:
-			add("column '%s' is TEXT, since codes such as %s in line %d would lose their zeros as numbers",
-				c.Column, quoted(c.FirstText), c.FirstLine)
-		case reader.TooLong:
-			add("column '%s' is TEXT, since %s in line %d has more digits than a number keeps",
-				c.Column, quoted(c.FirstText), c.FirstLine)
-		}
-	}
-	if len(f.NaiveTimes) > 0 {
-		add("time stamps without a zone are taken as UTC in %s", listed(f.NaiveTimes, 6))
-	}
-	if len(f.AllMissing) > 0 {
-		add("no value at all in %s", listed(f.AllMissing, 6))
-	}
-	if f.NumericHeading {
-		add("every heading is a number: perhaps the file has no heading, and its first row was taken for one")
-	}
-	if f.TrailingDelimiter {
-		add("the heading ends with a delimiter; the column without a name was dropped")
-	}
-	for _, c := range f.UnitConflicts {
-		add("the heading gives '%s' the unit %s, UNITS says %s", c.Column, c.Heading, c.Said)
-	}
-	return notes
-}
-
-func noNumbers(n int) string {
-	if n == 1 {
-		return "1 value is no number"
-	}
-	return fmt.Sprintf("%d values are no numbers", n)
 }
 
 // missingNote tells of the NULLs in the attributes of a table.

@@ -1,10 +1,10 @@
 package engine
 
 import (
-	"bufio"
 	"bytes"
 	"context"
 	"errors"
+	"fmt"
 	"io/fs"
 	"os"
 	"path/filepath"
@@ -21,24 +21,24 @@ import (
 
 // readerFor is the reader of a file by its ending; files without a known one
 // are read as CSV, since loggers write .txt and .dat.
-func readerFor(st *statement, file *lang.Text) (reader.Reader, error) {
-	switch ending := strings.ToLower(filepath.Ext(file.Value)); ending {
+func readerFor(at problem.Place, name string) (reader.Reader, error) {
+	switch ending := strings.ToLower(filepath.Ext(name)); ending {
 	case ".xlsx", ".xls", ".parquet", ".las", ".laz", ".ply", ".jsonl", ".json", ".gz", ".zst":
-		return nil, problem.NotThereYet(st.at(file), "reading "+ending+" files")
+		return nil, problem.NotThereYet(at, "reading "+ending+" files")
 	}
 	return csv.Reader{}, nil
 }
 
-// importFile reads the file of a CREATE statement and says what it met.
+// importFile reads the file or the files of a CREATE statement and says what it met.
 func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateData, c *clauses,
 	object *catalog.Object) (*column.Table, error) {
-	source, err := openSource(st, t.File)
+	sources, read, err := openSources(st, t)
 	if err != nil {
 		return nil, err
 	}
-	read, err := readerFor(st, t.File)
-	if err != nil {
-		return nil, err
+	named := t.File
+	if t.Files != nil {
+		named = t.Files
 	}
 	o := c.file
 	if c.id != nil {
@@ -46,29 +46,97 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 	} else if object.Kind == catalog.Campaign {
 		o.TextColumns = []string{"id"}
 	}
-	refused := newRefusals(c, source)
+	refused, err := newRefusals(st, c, t.Files, sources)
+	if err != nil {
+		return nil, err
+	}
 	if refused != nil {
 		o.Refused = refused.take
 	}
-	result, err := read.Read(ctx, source, o)
+	result, err := read.ReadFiles(ctx, sources, o)
 	if err != nil {
-		return nil, importProblem(err, st.at(t.File), t.File.Value)
+		return nil, c.importProblem(err, st.at(named), named.Value)
 	}
 	if refused != nil && !s.checkOnly {
-		if err := refused.save(st, result.Facts.Refused); err != nil {
+		if err := refused.save(st, result); err != nil {
 			return nil, err
 		}
 	}
-	said := importNotes(&result.Facts, t.File.Value)
+	said := importNotes(result, named.Value)
 	for _, text := range said {
 		st.notes.Add(note.Note, note.Import, "%s", text)
 	}
 	object.Notes = said
-	object.Sources = []catalog.SourceFile{{
-		Path: t.File.Value, SHA256: result.Facts.SHA256, Size: result.Facts.Bytes,
-		ModTime: source.ModTime, Rows: result.Facts.Rows,
-	}}
-	return c.applyUnits(result.Table, t.File.Value)
+	for i, f := range result.Files {
+		object.Sources = append(object.Sources, catalog.SourceFile{
+			Path: f.Name, SHA256: f.SHA256, Size: f.Bytes, ModTime: sources[i].ModTime, Rows: f.Rows,
+		})
+	}
+	table := result.Table
+	if t.Files != nil {
+		if table, err = withSourceFile(table, result.Files, st.at(t.Files)); err != nil {
+			return nil, err
+		}
+	}
+	if c.unpivot != nil {
+		if table, err = c.unpivotTable(table, named.Value); err != nil {
+			return nil, err
+		}
+	}
+	return c.applyUnits(table, named.Value)
+}
+
+// openSources reads the bytes of what a CREATE statement names, in name order.
+func openSources(st *statement, t *lang.CreateData) ([]*reader.Source, reader.Reader, error) {
+	if t.File != nil {
+		source, err := openSource(st, t.File)
+		if err != nil {
+			return nil, nil, err
+		}
+		read, err := readerFor(st.at(t.File), t.File.Value)
+		return []*reader.Source{source}, read, err
+	}
+	names, err := matching(st, t.Files)
+	if err != nil {
+		return nil, nil, err
+	}
+	var sources []*reader.Source
+	var read reader.Reader
+	for _, name := range names {
+		source, err := openSource(st, &lang.Text{At: t.Files.At, Value: name})
+		if err != nil {
+			return nil, nil, err
+		}
+		if read, err = readerFor(st.at(t.Files), name); err != nil {
+			return nil, nil, err
+		}
+		sources = append(sources, source)
+	}
+	return sources, read, nil
+}
+
+// withSourceFile adds the column that tells which file a row was read from.
+func withSourceFile(table *column.Table, files []reader.FileFacts, at problem.Place) (*column.Table, error) {
+	const name = "source_file"
+	for _, f := range table.Schema {
+		if strings.EqualFold(f.Name, name) {
+			return nil, problem.New("column-twice", at, "the files have a column '%s', which is the name of the column that tells the files apart", f.Name).
+				WithHint("give it another name in the headings of the files")
+		}
+	}
+	b := column.NewBuilder(column.Text, nil)
+	b.Grow(table.N)
+	for _, f := range files {
+		for range f.Rows {
+			b.AppendText(f.Name)
+		}
+	}
+	field := column.Field{Name: name, Type: column.Text, Meaning: "file that the row was read from"}
+	return &column.Table{
+		N:      table.N,
+		Schema: append(append(column.Schema(nil), table.Schema...), field),
+		Cols:   append(append([]column.Vector(nil), table.Cols...), b.Finish()),
+	}, nil
 }
 
 // openSource reads the bytes of a file that a statement names.
@@ -80,10 +148,14 @@ func openSource(st *statement, file *lang.Text) (*reader.Source, error) {
 		if near := nearestFile(path); near != "" {
 			return nil, p.WithHint("did you mean '%s'?", near)
 		}
+		if strings.ContainsAny(file.Value, "*?[") {
+			return nil, p.WithHint("FROM FILES '%s' reads all files of a pattern", file.Value)
+		}
 		return nil, p.WithHint("a relative path starts at the script's folder")
 	}
 	if err == nil && info.IsDir() {
-		return nil, problem.New("no-file", st.at(file), "'%s' is a folder", file.Value)
+		return nil, problem.New("no-file", st.at(file), "'%s' is a folder", file.Value).
+			WithHint("FROM FILES '%s/*.csv' reads the files in it", strings.TrimRight(file.Value, "/"))
 	}
 	source, err := reader.Open(file.Value, path)
 	if err != nil {
@@ -110,33 +182,35 @@ func nearestFile(path string) string {
 // refusals collects the lines at fault for the file that REFUSED TO names.
 type refusals struct {
 	file   *lang.Text
-	buffer bytes.Buffer
+	lines  []refusedLine
 	faults []reader.Fault
+	many   bool
 }
 
-// newRefusals starts the file with the heading of the source, so that it can be
-// mended and imported like any other.
-func newRefusals(c *clauses, source *reader.Source) *refusals {
+// refusedLine is a line at fault, as its file has it.
+type refusedLine struct {
+	file string
+	raw  []byte
+}
+
+// newRefusals starts the collection; nil where the statement has no REFUSED TO.
+// The file may not be one of those that are read: the next run would read it too.
+func newRefusals(st *statement, c *clauses, pattern *lang.Text, sources []*reader.Source) (*refusals, error) {
 	if c.refusedTo == nil {
-		return nil
+		return nil, nil
 	}
-	r := &refusals{file: c.refusedTo}
-	r.buffer.Write(headingLine(source.Data, c.file.Heading))
-	r.buffer.WriteByte('\n')
-	return r
-}
-
-// headingLine is line number n of a file (0: the first that is not blank).
-func headingLine(data []byte, n int) []byte {
-	lines := bufio.NewScanner(bytes.NewReader(data))
-	lines.Buffer(nil, len(data)+1)
-	for number := 1; lines.Scan(); number++ {
-		line := bytes.TrimSuffix(lines.Bytes(), []byte("\r"))
-		if number == n || n == 0 && len(bytes.TrimSpace(line)) > 0 {
-			return line
+	path := filepath.Clean(st.path(c.refusedTo.Value))
+	for _, source := range sources {
+		if filepath.Clean(st.path(source.Name)) == path {
+			return nil, problem.New("clause", st.at(c.refusedTo), "'%s' is one of the files that are read", c.refusedTo.Value).
+				WithHint("give the refused lines a file of their own")
 		}
 	}
-	return nil
+	if pattern != nil && matches(st, pattern, path) {
+		return nil, problem.New("clause", st.at(c.refusedTo), "'%s' would be one of the files '%s' the next time", c.refusedTo.Value, pattern.Value).
+			WithHint("put the refused lines into another folder")
+	}
+	return &refusals{file: c.refusedTo, many: pattern != nil}, nil
 }
 
 const listedFaults = 3
@@ -146,38 +220,76 @@ func (r *refusals) take(line int, raw []byte, f reader.Fault) error {
 		f.Text = strings.TrimSpace(f.Text)
 		r.faults = append(r.faults, f)
 	}
-	r.buffer.Write(raw)
-	r.buffer.WriteByte('\n')
+	r.lines = append(r.lines, refusedLine{file: f.File, raw: bytes.Clone(raw)})
 	return nil
 }
 
 // save writes the file, with the heading alone where no line was refused: an
-// older file must not be taken for this import's.
-func (r *refusals) save(st *statement, count int) error {
+// older file must not be taken for this import's. It begins with the heading of
+// its source, so that it can be mended and imported like any other; lines of
+// several files are told apart by a last column.
+func (r *refusals) save(st *statement, result *reader.Result) error {
+	var buffer bytes.Buffer
+	first := &result.Files[0]
+	buffer.WriteString(first.Heading)
+	r.tag(&buffer, first, "source_file")
+	facts := map[string]*reader.FileFacts{}
+	for i := range result.Files {
+		facts[result.Files[i].Name] = &result.Files[i]
+	}
+	for _, l := range r.lines {
+		f := facts[l.file]
+		if f.Heading != first.Heading {
+			return problem.New("import", st.at(r.file), "lines of '%s' and of '%s' cannot be set aside in one file: their headings differ", first.Name, f.Name).
+				WithHint("bring their columns into one order, or import them one by one")
+		}
+		buffer.Write(l.raw)
+		r.tag(&buffer, f, f.Name)
+	}
 	err := WriteAside(st.path(r.file.Value), func(f *os.File) error {
-		_, err := f.Write(r.buffer.Bytes())
+		_, err := f.Write(buffer.Bytes())
 		return err
 	})
 	if err != nil {
 		return fileProblem(err, st.at(r.file), r.file.Value, "be written")
 	}
-	if count == 0 {
+	if len(r.lines) == 0 {
 		return nil
 	}
+	verb := "were"
+	if len(r.lines) == 1 {
+		verb = "was"
+	}
+	st.notes.Add(note.Warning, note.Import, "%s %s refused to %s: %s", plural(len(r.lines), "line"), verb, r.file.Value, r.told())
+	return nil
+}
+
+// tag ends a line, with the name of its file where there are several.
+func (r *refusals) tag(b *bytes.Buffer, f *reader.FileFacts, name string) {
+	if r.many {
+		b.WriteRune(f.Delimiter)
+		if strings.ContainsRune(name, f.Delimiter) || strings.ContainsAny(name, "\"\r\n") {
+			name = `"` + strings.ReplaceAll(name, `"`, `""`) + `"`
+		}
+		b.WriteString(name)
+	}
+	b.WriteByte('\n')
+}
+
+// told lists the first faults.
+func (r *refusals) told() string {
 	text := ""
 	for i, f := range r.faults {
 		if i > 0 {
 			text += "; "
 		}
+		if r.many {
+			text += f.File + " "
+		}
 		text += faultPlace(f) + faultText(f)
 	}
-	if count > len(r.faults) {
-		text += "; …"
+	if len(r.lines) > len(r.faults) {
+		text += fmt.Sprintf("; and %d more", len(r.lines)-len(r.faults))
 	}
-	verb := "were"
-	if count == 1 {
-		verb = "was"
-	}
-	st.notes.Add(note.Warning, note.Import, "%s %s refused to %s: %s", plural(count, "line"), verb, r.file.Value, text)
-	return nil
+	return text
 }

@@ -101,6 +101,9 @@ func sourceText(o *catalog.Object) string {
 	for _, f := range o.Sources {
 		names = append(names, f.Path)
 	}
+	if n := len(names); n > 3 {
+		return names[0] + " … " + names[n-1] + " (" + plural(n, "file") + ")"
+	}
 	return strings.Join(names, ", ")
 }
 
