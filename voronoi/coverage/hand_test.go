@@ -180,7 +180,7 @@ func TestLattices(t *testing.T) {
 			map[float64]float64{root(0.5): 2, root(3. / 8): 4}},
 	} {
 		for _, shift := range []float64{0, 1.0 / 3, 5e5} {
-			sites := lattice(c.a, c.b, c.c, c.motif, 3.6)
+			sites := lattice(c.a, c.b, c.c, c.motif, 2.7)
 			for i := range sites {
 				sites[i] = add(scale(0.7, sites[i]), Vec{X: shift, Y: shift / 2, Z: -shift})
 			}

@@ -47,9 +47,10 @@ func box(t testing.TB, lo, hi Vec) solid.Solid {
 	return b
 }
 
+// gapsOf takes sites on walls in, on whichever side rounding put them.
 func gapsOf(t testing.TB, sites []Vec, body solid.Solid) []Gap {
 	t.Helper()
-	d, err := voronoi.New(sites, voronoi.Options{Solid: body})
+	d, err := voronoi.New(sites, voronoi.Options{Solid: body, Tolerance: 1e-9})
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -24,7 +24,7 @@ func (s *search) run(ctx context.Context, o Options) ([]Gap, error) {
 	var guard sync.Mutex // of failure and calls of Progress
 	var failure error
 	work := func() {
-		k := &seeker{search: s}
+		k := &seeker{search: s, ball: ball{tree: s.tree}}
 		for {
 			chunk := int(next.Add(1)) - 1
 			if chunk >= chunks {

@@ -17,12 +17,41 @@ type seeker struct {
 	cell  polyhedron.Cell
 	body  polyhedron.Cell // the cell in a part of the solid
 	lower []bool          // by vertex of a body: an edge leads farther away
-	walk  index.Iterator
+	ball  ball
 	near  []nearSite
 	parts []nearPart
 	buf   []solid.Plane
 	cone  cone
 	found []Gap
+}
+
+// ball lists the sites about a place. It is the scratch of one goroutine.
+type ball struct {
+	tree   *index.Tree
+	leaves index.Leaves
+	reach2 float64
+	meets  func(*index.Box, float64) bool // bound once
+	in     []int32                        // numbers in the tree
+}
+
+// list makes b.in the sites within reach of a place, and a few beyond.
+func (b *ball) list(at Vec, reach float64) {
+	if b.meets == nil {
+		b.meets = func(_ *index.Box, dist2 float64) bool { return dist2 <= b.reach2 }
+	}
+	b.in, b.reach2 = b.in[:0], float64(reach*reach)*(1+0x1p-49)
+	points := b.tree.Points()
+	for b.leaves.Start(b.tree, at); ; {
+		from, to, ok := b.leaves.Next(b.meets)
+		if !ok {
+			return
+		}
+		for i := from; i < to; i++ {
+			if d := sub(points[i], at); dot(d, d) <= b.reach2 {
+				b.in = append(b.in, i)
+			}
+		}
+	}
 }
 
 // nearSite is a site that is nearest to a place, or about as near.
@@ -102,11 +131,22 @@ func (k *seeker) look(c *polyhedron.Cell, p Vec) {
 			}
 		}
 	}
+	before := len(k.found)
 	for i, lower := range k.lower {
-		if !lower {
+		if !lower && !k.isKnown(add(p, c.Vertex(i)), k.found[before:]) {
 			k.try(c.Vertex(i), p)
 		}
 	}
+}
+
+// isKnown tells of a place that is one of these but for rounding.
+func (k *seeker) isKnown(at Vec, found []Gap) bool {
+	for i := range found {
+		if g := &found[i]; length(sub(g.At, at)) <= float64(1e-13*g.Radius)+k.grain {
+			return true
+		}
+	}
+	return false
 }
 
 // scales are the differences of distance, relative to it, below which sites count as
@@ -141,16 +181,11 @@ func (k *seeker) try(v, p Vec) {
 // returns false if the cell's own site is not among them.
 func (k *seeker) gather(v, p Vec, r float64) bool {
 	k.near = k.near[:0]
-	limit := float64(r*(1+2*coarsest)) + k.grain
-	k.walk.Start(k.tree, add(p, v))
-	for {
-		n, ok := k.walk.Next()
-		if !ok || n.Dist2 > float64(limit*limit) {
-			break
-		}
+	k.ball.list(add(p, v), float64(r*(1+2*coarsest))+k.grain)
+	for _, i := range k.ball.in {
 		// The difference of two sites loses nothing that they had.
-		away := sub(v, sub(k.tree.Point(n.Point), p))
-		k.near = append(k.near, nearSite{k.of[n.Point], away, length(away)})
+		away := sub(v, sub(k.tree.Point(i), p))
+		k.near = append(k.near, nearSite{k.of[i], away, length(away)})
 	}
 	slices.SortFunc(k.near, func(a, b nearSite) int { return cmp.Or(cmp.Compare(a.far, b.far), cmp.Compare(a.site, b.site)) })
 	return len(k.near) > 0 && k.near[0].far >= r*(1-coarsest) && k.near[0].far > 0
@@ -232,22 +267,24 @@ func (k *seeker) gap(at Vec, r float64) Gap {
 		g.At, g.Place = k.settle(at, 2*float64(coarsest*r)+2*k.grain)
 	}
 	g.At = add(g.At, Vec{}) // -0 + 0 is 0
-	k.walk.Start(k.tree, g.At)
-	limit := math.Inf(1)
+	// The place may have moved a little, and rounding with it.
+	k.ball.list(g.At, float64(r*(1+8*coarsest))+8*k.grain)
+	g.Radius = math.Inf(1)
+	for _, i := range k.ball.in {
+		g.Radius = min(g.Radius, length(sub(k.tree.Point(i), g.At)))
+	}
 	g.Site = math.MaxInt32
-	for {
-		n, ok := k.walk.Next()
-		if !ok || n.Dist2 > limit {
-			break
+	for _, i := range k.ball.in {
+		if length(sub(k.tree.Point(i), g.At)) <= float64(g.Radius*(1+equal))+k.grain {
+			g.Site = min(g.Site, k.of[i])
 		}
-		if math.IsInf(limit, 1) {
-			g.Radius = length(sub(k.tree.Point(n.Point), g.At))
-			limit = float64(n.Dist2*(1+2e-9)) + float64(k.grain*g.Radius)
-		}
-		g.Site = min(g.Site, k.of[n.Point])
 	}
 	return g
 }
+
+// equal is the difference of distance, relative to it, within which sites are equally
+// near to a gap in the eyes of a user.
+const equal = 1e-9
 
 // settle puts a place that lies on walls but for rounding exactly there, as far as
 // numbers allow, and says what part of the surface it is on.
