@@ -188,6 +188,9 @@ func (c *completer) names(p place, typed string) []candidate {
 	switch p.want {
 	case wantColumns, wantBare:
 		add(c.columns(p))
+		if p.noFrom && typed != "" {
+			add(engine.ComputedColumns())
+		}
 		if p.want == wantColumns && p.qualifier == "" && (typed != "" || len(list) == 0) {
 			words(engine.Functions(), "(")
 		}

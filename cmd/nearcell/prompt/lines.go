@@ -10,6 +10,7 @@ import (
 type gathered struct {
 	text   string
 	hinted bool // how statements end was said
+	open   byte // the quote of which was said that it is open
 }
 
 // add takes a line and tells whether everything can run now.
@@ -37,7 +38,7 @@ func (g *gathered) empty() bool { return len(lang.Split(g.text)) == 0 }
 // take gives the text and begins anew.
 func (g *gathered) take() string {
 	text := g.text
-	g.text = ""
+	g.text, g.open = "", 0
 	return text
 }
 
@@ -59,22 +60,30 @@ func isExit(text string) bool {
 	return strings.EqualFold(strings.Trim(text, " \t\r\n;"), "EXIT")
 }
 
-// hint says why a line did not run, once for each reason, where a newcomer may
-// wonder: the semicolon, or a quote that is still open.
-func (g *gathered) hint(line string) string {
-	switch {
-	case strings.HasSuffix(strings.TrimSpace(line), ";"):
-		switch unclosed(strings.TrimSuffix(g.text, "\n")) {
-		case '\'':
-			return "a text is not closed yet: end it with ' (Ctrl-C drops the statement)"
-		case '"':
-			return `a quoted name is not closed yet: end it with " (Ctrl-C drops the statement)`
-		case '*':
-			return "a comment is not closed yet: end it with */ (Ctrl-C drops the statement)"
+// hint says why a line did not run, where a newcomer may wonder: a quote that is
+// still open, or the semicolon, the latter once.
+func (g *gathered) hint() string {
+	open := unclosed(strings.TrimSuffix(g.text, "\n"))
+	what := ""
+	switch open {
+	case '\'':
+		what = "a text is not closed yet: end it with '"
+	case '"':
+		what = `a quoted name is not closed yet: end it with "`
+	case '*':
+		what = "a comment is not closed yet: end it with */"
+	}
+	if what == "" {
+		g.open = 0
+		if g.hinted {
+			return ""
 		}
-	case !g.hinted:
 		g.hinted = true
 		return "the statement goes on until a ; ends it (Ctrl-C drops it)"
 	}
-	return ""
+	if g.open == open && !strings.HasSuffix(strings.TrimSpace(g.text), ";") {
+		return "" // said before
+	}
+	g.open = open
+	return what + " (Ctrl-C drops the statement)"
 }

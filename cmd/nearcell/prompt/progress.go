@@ -6,6 +6,8 @@ import (
 	"strings"
 	"sync"
 	"time"
+
+	"github.com/clipperhouse/displaywidth"
 )
 
 const (
@@ -149,8 +151,13 @@ func (c clearing) Write(b []byte) (int, error) {
 	return c.w.Write(b)
 }
 
-// colours dims notes and marks warnings and carets.
-type colours struct{ w io.Writer }
+// words dims notes and marks warnings and carets, and breaks notes that are wider
+// than the terminal at their blanks.
+type words struct {
+	w      io.Writer
+	width  func() int
+	colour bool
+}
 
 const (
 	dim    = "\x1b[2m"
@@ -160,25 +167,51 @@ const (
 )
 
 // Write implements io.Writer: what is written at once are whole lines.
-func (c colours) Write(b []byte) (int, error) {
+func (c words) Write(b []byte) (int, error) {
 	lines := strings.SplitAfter(string(b), "\n")
 	for i, line := range lines {
-		body := strings.TrimSuffix(line, "\n")
+		body, ended := strings.CutSuffix(line, "\n")
 		style := ""
 		switch {
 		case strings.HasPrefix(line, "note: "):
-			style = dim
+			style, body = dim, broken(body, "      ", c.width())
 		case strings.HasPrefix(line, "warning: "):
-			style = yellow
+			style, body = yellow, broken(body, "         ", c.width())
 		case i > 0 && strings.Contains(body, "^") && strings.Trim(body, " \t^") == "":
 			style = red
 		}
-		if style != "" {
-			lines[i] = style + body + plain + line[len(body):]
+		if c.colour && style != "" {
+			body = style + body + plain
 		}
+		if ended {
+			body += "\n"
+		}
+		lines[i] = body
 	}
 	if _, err := io.WriteString(c.w, strings.Join(lines, "")); err != nil {
 		return 0, err
 	}
 	return len(b), nil
+}
+
+// broken breaks a line at blanks so that it fits, with the lines after the first
+// indented.
+func broken(line, indent string, width int) string {
+	var b strings.Builder
+	used := 0
+	for i, word := range strings.Split(line, " ") {
+		n := displaywidth.String(word)
+		switch {
+		case i == 0:
+		case used+1+n >= width && used > len(indent):
+			b.WriteString("\n" + indent)
+			used = len(indent)
+		default:
+			b.WriteByte(' ')
+			used++
+		}
+		b.WriteString(word)
+		used += n
+	}
+	return b.String()
 }

@@ -209,7 +209,7 @@ func (p *prompt) loop() error {
 			return err
 		}
 		if !g.add(line) {
-			p.hint(g.hint(line))
+			p.hint(g.hint())
 			continue
 		}
 		if g.empty() {

@@ -64,8 +64,8 @@ func (t *Terminal) Out(w io.Writer) io.Writer {
 // Err is where words go.
 func (t *Terminal) Err() io.Writer {
 	var w io.Writer = t.err
-	if t.colour {
-		w = colours{w}
+	if t.errIs {
+		w = words{w, func() int { width, _ := sizeOf(t.err); return width }, t.colour}
 	}
 	if t.progress == nil {
 		return w
