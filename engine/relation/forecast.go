@@ -48,9 +48,11 @@ const (
 	// typicalCell is about what a cell of an ordinary set of sites takes, in
 	// seconds on one core of a small machine (see voronoi.Diagram.Cost).
 	typicalCell = 30e-6
-	// sampledDiagrams of the diagrams of FOR EACH are looked at; the others are
-	// taken to be like them.
-	sampledDiagrams = 32
+	// Diagrams of FOR EACH are looked at as far as they have lookedSites sites
+	// together, and the time of a cell is measured in probedDiagrams of them, spread
+	// evenly; the others are taken to be like these.
+	lookedSites    = 1 << 18
+	probedDiagrams = 4
 )
 
 // Guess is a forecast of a relation over a query that is not looked at: of so
@@ -117,6 +119,9 @@ type alike struct {
 	parts []*Part
 	rows  float64  // asked for, those outside the solid among them
 	sites []uint64 // asked for in any of the parts
+	// of those that were looked at
+	handle *diagram.Handle
+	cells  int // to be built
 }
 
 func (s *sites) forecast(ctx context.Context, want voronoi.Measures, faces bool) (*Forecast, error) {
@@ -124,28 +129,68 @@ func (s *sites) forecast(ctx context.Context, want voronoi.Measures, faces bool)
 	f.Cost.OneByOne = true
 	groups := s.alike()
 	f.Diagrams = float64(len(groups))
-	step := max(1, (len(groups)+sampledDiagrams-1)/sampledDiagrams)
 	var seen, all float64 // rows
+	var looked []*alike
+	step := stepOver(groups)
 	for i, g := range groups {
 		f.Parts += float64(len(g.parts))
 		all += g.rows
-		if i%step == 0 {
-			seen += g.rows
-			if err := s.look(ctx, f, g, want, faces); err != nil {
-				return nil, err
-			}
+		if i%step > 0 {
+			continue
+		}
+		seen += g.rows
+		looked = append(looked, g)
+		if err := s.look(ctx, f, g, want, faces); err != nil {
+			return nil, err
 		}
 	}
+	s.probe(f, looked, want)
 	if step > 1 && seen > 0 {
 		f.Counted, f.RowsExact = false, false
-		scale := all / seen
-		f.Rows *= scale
-		f.Known = int(float64(f.Known)*scale + 0.5)
-		f.Cost.Cells = int(float64(f.Cost.Cells)*scale + 0.5)
-		f.Cost.Seconds *= scale
-		f.Cost.Bytes = int64(float64(f.Cost.Bytes) * scale)
+		f.scale(all / seen)
 	}
 	return f, nil
+}
+
+// stepOver is how many diagrams to go on after each one that is looked at.
+func stepOver(groups []*alike) int {
+	total := 0
+	for _, g := range groups {
+		total += len(g.parts[0].Sites)
+	}
+	return max(1, min(len(groups), (total+lookedSites-1)/lookedSites))
+}
+
+func (f *Forecast) scale(by float64) {
+	f.Rows *= by
+	f.Known = int(float64(f.Known)*by + 0.5)
+	f.Cost.Cells = int(float64(f.Cost.Cells)*by + 0.5)
+	f.Cost.Seconds *= by
+	f.Cost.Bytes = int64(float64(f.Cost.Bytes) * by)
+}
+
+// probe sets the time that the cells of a forecast take.
+func (s *sites) probe(f *Forecast, looked []*alike, want voronoi.Measures) {
+	var probed voronoi.Cost
+	step := max(1, (len(looked)+probedDiagrams-1)/probedDiagrams)
+	cells := 0
+	for i := 0; i < len(looked) && f.Cost.Cells > 0; i += step {
+		g := looked[i]
+		if g.cells == 0 {
+			step = 1 // all known: the next may not be
+			continue
+		}
+		c := g.handle.Cost(want, g.cells)
+		cells += g.cells
+		probed.Seconds += c.Seconds
+		probed.Bytes += c.Bytes
+		f.Cost.OneByOne = f.Cost.OneByOne && c.OneByOne
+		f.Cost.Slow = f.Cost.Slow || c.Slow
+	}
+	if cells > 0 {
+		f.Cost.Seconds = probed.Seconds * float64(f.Cost.Cells) / float64(cells)
+		f.Cost.Bytes = probed.Bytes * int64(f.Cost.Cells) / int64(cells)
+	}
 }
 
 // alike are the diagrams of the parts with something to show, each once, in the
@@ -175,8 +220,7 @@ func (s *sites) alike() []*alike {
 	return groups
 }
 
-// look adds what a diagram says of its parts. It is built, its cells are not,
-// but for a few by which their cost is measured.
+// look adds what a diagram says of its parts. It is built, its cells are not.
 func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Measures, faces bool) error {
 	first := g.parts[0]
 	h, err := s.env.Diagrams.Get(ctx, first.Sites, s.options())
@@ -211,16 +255,9 @@ func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Me
 	if faces {
 		known = h.KnownContacts(cells)
 	}
+	g.handle, g.cells = h, len(cells)-known
 	f.Known += known
-	if known == len(cells) {
-		return nil
-	}
-	c := h.Cost(want, len(cells)-known)
-	f.Cost.Cells += c.Cells
-	f.Cost.Seconds += c.Seconds
-	f.Cost.Bytes += c.Bytes
-	f.Cost.OneByOne = f.Cost.OneByOne && c.OneByOne
-	f.Cost.Slow = f.Cost.Slow || c.Slow
+	f.Cost.Cells += g.cells
 	return nil
 }
 
