@@ -15,10 +15,10 @@
 //
 // # Where peaks can be
 //
-// Within the cell of a site p the landscape is |x - p|, which is strictly convex. A
-// convex function has no peak in the middle of a segment, so a peak in the cell lies in
-// the middle of no segment of cell and solid: it is a corner of what cell and solid have
-// in common. Every such corner is one of four kinds:
+// Within the cell of a site p the landscape is |x - p|. Its square is strictly convex: on
+// any segment it is greatest at an end and nowhere else. So a peak in the cell lies in the
+// middle of no segment of cell and solid: it is a corner of the polyhedra that cell and
+// solid have in common. Every such corner is of one of four kinds:
 //
 //  1. a vertex of the diagram inside the solid ([Inside]),
 //  2. an edge of a cell that passes through a wall ([Wall]),
@@ -41,8 +41,9 @@
 // re-entrant corner is the union of several. For one cone the condition says that the
 // unit vectors from x to the sites, together with the outward normals of the planes
 // that x lies on, surround the origin on all sides. Without a solid it says that x lies
-// strictly inside the convex hull of its nearest sites. On the hull's surface it is none:
-// the middle of a rectangle's circle is lower than what is above it.
+// strictly inside the convex hull of its nearest sites. On the surface of that hull it is
+// none: the middle of four sites at the corners of a square is lower than the places
+// above and below it.
 //
 // Peaks are isolated: between two of them the distance dips.
 //

@@ -24,6 +24,9 @@
 // faces exactly there. Such a face counts as a contact only where the solid is on both
 // of its sides, and a wall belongs to the cell that has the solid on its inner side.
 //
+// Box and Prism are [Divided]: they hand out their convex parts, the walls at a place and
+// their corners, for those who look for places and not for measures.
+//
 // Walls are numbered along the outline, counter-clockwise from its smallest corner (by
 // x, then y), then along the holes; floor and ceiling come last.
 //
