@@ -37,7 +37,14 @@ type builder struct {
 	// offered counts the sites held against cells, the measure of work that Cost
 	// goes by.
 	offered int
-	useful  func(*index.Box, float64) bool // canMatter, bound once
+	walker  *walker // of the tetrahedralisation; nil: none is used
+	idle    *walker // what walker was the last time that it was used
+
+	// known: near holds all neighbours of the cell in work, and onHull tells whether
+	// its site lies on the convex hull. No search is needed.
+	known, onHull bool
+
+	useful func(*index.Box, float64) bool // canMatter, bound once
 
 	support  []int32 // scratch of bounded
 	work     solid.Work
@@ -51,6 +58,7 @@ type builder struct {
 // builder takes a builder from the diagram's pool; free gives it back.
 func (d *Diagram) builder() *builder {
 	if b, ok := d.pool.Get().(*builder); ok {
+		b.walker = nil
 		return b
 	}
 	b := &builder{d: d, used: index.NewUsed(d.tree.Len())}
@@ -59,6 +67,19 @@ func (d *Diagram) builder() *builder {
 }
 
 func (d *Diagram) free(b *builder) { d.pool.Put(b) }
+
+// use says which way cells are made: with the tetrahedralisation, or nil without it.
+func (b *builder) use(g *dual) {
+	switch {
+	case g == nil:
+		b.walker = nil
+	case b.walker == nil || b.walker.g != g:
+		if b.idle == nil || b.idle.g != g {
+			b.idle = newWalker(g)
+		}
+		b.walker = b.idle
+	}
+}
 
 // build makes c the cell of the place p (shifted by the origin; at is the same
 // place in the user's coordinates) among all sites but self. In a convex solid the
@@ -89,19 +110,23 @@ func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool
 // near holds the nearest sites: see gather.
 func (b *builder) cut(c *polyhedron.Cell, p Vec, self int32) {
 	tree := b.d.tree
-	b.used.Reset()
-	if self >= 0 {
-		b.used.Add(self)
+	if !b.known {
+		b.used.Reset()
+		if self >= 0 {
+			b.used.Add(self)
+		}
 	}
 	b.now, b.at, b.reach2 = c, p, reach2(c)
 	for _, q := range b.near {
 		if q.Dist2 > float64(4*b.reach2) {
 			return // all others are farther still: the cell is final
 		}
-		b.used.Add(q.Point)
+		if !b.known {
+			b.used.Add(q.Point)
+		}
 		b.bisect(q.Point)
 	}
-	if len(b.near) < firstNeighbours {
+	if b.known || len(b.near) < firstNeighbours {
 		return // there are no others
 	}
 	b.leaves.Start(tree, p)
@@ -120,6 +145,9 @@ func (b *builder) cut(c *polyhedron.Cell, p Vec, self int32) {
 
 // gather finds the sites nearest to p, itself left out.
 func (b *builder) gather(p Vec, self int32) {
+	if b.known {
+		return
+	}
 	b.used.Reset()
 	if self >= 0 {
 		b.used.Add(self)
@@ -181,14 +209,14 @@ func reach2(c *polyhedron.Cell) float64 {
 // 2^90 times the extent of the sites; it counts as unbounded.
 func (b *builder) buildOpen(c *polyhedron.Cell, p Vec, self int32) (bounded bool) {
 	size := b.d.sizeFrom(p)
-	if n := len(b.near); n == firstNeighbours && b.inBox(c, p, self, 4*math.Sqrt(b.near[n-1].Dist2)) {
+	if n := min(len(b.near), firstNeighbours); (n == firstNeighbours || b.known) && b.inBox(c, p, self, 4*math.Sqrt(b.near[n-1].Dist2)) {
 		return true
 	}
 	closed := b.inFarBox(c, p, self, size*farBox, false)
 	if reach := math.Sqrt(b.reach2); closed && reach <= size*farReach && b.inBox(c, p, self, 2*reach) {
 		return true // once more, without the rounding of the far box
 	}
-	if !closed && !b.bounded(c, p, self) {
+	if !closed && (b.known && b.onHull || !b.known && !b.bounded(c, p, self)) {
 		return false
 	}
 	for _, grown := range [...]float64{farBox, 0x1p60, 0x1p90} {

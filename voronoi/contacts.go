@@ -78,19 +78,24 @@ func (d *Diagram) describe(to []Contact, cell int32, from []share) []Contact {
 func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, error) {
 	later := make([][]share, len(cells))
 	hints := make([][]int32, len(cells))
-	err := d.forEach(ctx, len(cells), 0, len(cells), func(b *builder, k int) error {
+	g, err := d.choose(ctx, Neighbours, len(cells))
+	if err != nil {
+		return nil, err
+	}
+	err = d.forEach(ctx, len(cells), 0, len(cells), func(b *builder, k int) error {
+		b.use(g)
 		all, err := b.shares(cells[k])
 		if err != nil {
 			return err
 		}
 		later[k] = keep(all, func(s share) bool { return s.other > cells[k] })
-		for i := range b.cell.NumFaces() {
-			if label, _ := b.cell.Face(i); label >= 0 && label < cells[k] {
+		b.eachNeighbour(func(label int32) {
+			if label >= 0 && label < cells[k] {
 				if _, asked := slices.BinarySearch(cells, label); !asked {
 					hints[k] = append(hints[k], label)
 				}
 			}
-		}
+		})
 		return nil
 	})
 	if err != nil {
@@ -101,6 +106,7 @@ func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, err
 	earlier = slices.Compact(earlier)
 	fromEarlier := make([][]share, len(earlier))
 	err = d.forEach(ctx, len(earlier), len(cells), len(cells)+len(earlier), func(b *builder, k int) error {
+		b.use(g)
 		all, err := b.shares(earlier[k])
 		if err != nil {
 			return err
@@ -115,6 +121,21 @@ func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, err
 		return nil, err
 	}
 	return merge(cells, later, earlier, fromEarlier), nil
+}
+
+// eachNeighbour calls do for the labels of the faces of the cell that shares built, or
+// more: for all cells that can touch it.
+func (b *builder) eachNeighbour(do func(label int32)) {
+	if w := b.walker; w != nil {
+		for i := range w.faces {
+			do(w.g.cell[w.faces[i].q])
+		}
+		return
+	}
+	for i := range b.cell.NumFaces() {
+		label, _ := b.cell.Face(i)
+		do(label)
+	}
 }
 
 // keep copies the shares that pass.
@@ -169,10 +190,18 @@ func merge(cells []int32, later [][]share, earlier []int32, fromEarlier [][]shar
 // shares builds a cell and lists its contacts, one for each neighbour, in a buffer
 // that the next call overwrites.
 func (b *builder) shares(cell int32) ([]share, error) {
+	if b.walker != nil {
+		return b.sharesGlobal(cell)
+	}
 	d := b.d
 	p := d.tree.Point(cell)
 	at := add(p, d.origin)
-	bounded := b.build(&b.cell, p, at, cell)
+	return b.sharesOf(at, b.build(&b.cell, p, at, cell))
+}
+
+// sharesOf lists the contacts of b.cell.
+func (b *builder) sharesOf(at Vec, bounded bool) ([]share, error) {
+	d := b.d
 	b.list = b.list[:0]
 	if d.solid == nil || d.convex {
 		for i := range b.cell.NumFaces() {

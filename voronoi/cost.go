@@ -1,27 +1,85 @@
 package voronoi
 
-// Cost estimates what Measure takes for n cells (less than 0: all). It builds a few
-// cells, spread over the diagram, the first time it is asked, and counts the sites
-// that had to be held against each; the estimate is the same on every run. The
-// constants were measured on one core of a small machine.
+import (
+	"context"
+
+	"nearcell/voronoi/delaunay"
+)
+
+// Cost estimates what Measure takes for n cells (less than 0: all), and says in which
+// of the two ways it will make them. It builds a few cells, spread over the diagram, the
+// first time it is asked, and counts the sites that had to be held against each; the
+// estimate is the same on every run. The constants were measured on one core of a small
+// machine.
 func (d *Diagram) Cost(want Measures, n int) Cost {
 	if n < 0 || n > d.tree.Len() {
 		n = d.tree.Len()
 	}
 	c := Cost{OneByOne: true, Cells: n, Bytes: int64(n) * bytesPerRow(want)}
-	perCell := secondsPerLookup
-	if d.needsCell(want) {
-		d.probe.Do(d.probeCells)
-		perCell = secondsPerCell + secondsPerSite*d.offered
-		c.Slow = d.offered > slowFrom
-		if d.solid != nil && !d.convex {
-			perCell += secondsPerSolid
-		}
-	} else {
+	if !d.needsCell(want) {
 		c.Cells = 0
+		c.Seconds = float64(n) * secondsPerLookup / float64(max(1, min(d.threads, n)))
+		return c
 	}
-	c.Seconds = float64(n) * perCell / float64(max(1, min(d.threads, n)))
+	d.probe.Do(d.probeCells)
+	single, whole := d.seconds(n)
+	seconds := single
+	c.OneByOne = !d.worthWhole(n)
+	if !c.OneByOne {
+		seconds = whole
+		c.Bytes += d.globalBytes()
+	}
+	c.Slow = c.OneByOne && d.offered > slowFrom
+	if d.solid != nil && !d.convex {
+		seconds += secondsPerSolid * float64(n)
+	}
+	c.Seconds = seconds / float64(max(1, min(d.threads, n)))
 	return c
+}
+
+// seconds estimates for one thread how long n cells take one by one, and with the
+// tetrahedralisation of all sites. It needs the probe.
+func (d *Diagram) seconds(n int) (single, whole float64) {
+	single = float64(n) * (secondsPerCell + secondsPerSite*d.offered)
+	whole = secondsPerBuild + float64(d.tree.Len())*secondsPerVertex + float64(n)*secondsPerStar
+	return single, whole
+}
+
+// worthWhole is the choice between the two ways. It depends on the sites, the solid
+// and the number of cells alone: the last bits of measures may differ between the ways,
+// and must not depend on the number of threads or on what was asked before.
+//
+// One by one a cell takes 5 µs and 0.1 µs for each site held against it: of these there
+// are about a hundred on ordinary data and thousands on curved surfaces, as a probe
+// tells. All of n sites take about 2.5 µs each for the tetrahedralisation and 2 µs a
+// cell after that, so that the ways break even at about a sixth of all cells, or at a
+// few thousand of a million on surfaces.
+func (d *Diagram) worthWhole(n int) bool {
+	all := d.tree.Len()
+	if all < wholeFrom || d.facts.Dimension < 3 || d.memory > 0 && d.globalBytes() > d.memory {
+		return false
+	}
+	if n < fewCells {
+		return false
+	}
+	d.probe.Do(d.probeCells)
+	single, whole := d.seconds(n)
+	return whole < single
+}
+
+// choose returns the tetrahedralisation if n cells are to be made with it, nil if they
+// are to be made one by one.
+func (d *Diagram) choose(ctx context.Context, want Measures, n int) (*dual, error) {
+	if !d.needsCell(want) || !d.worthWhole(n) {
+		return nil, nil
+	}
+	return d.dual(ctx)
+}
+
+// globalBytes is what the tetrahedralisation and the circumcentres take.
+func (d *Diagram) globalBytes() int64 {
+	n := d.tree.Len()
+	return delaunay.Estimate(n) + int64(n)*bytesPerVertex
 }
 
 const (
@@ -29,6 +87,17 @@ const (
 	secondsPerCell   = 5e-6
 	secondsPerSite   = 0.1e-6
 	secondsPerSolid  = 20e-6
+	secondsPerBuild  = 100e-6
+	secondsPerVertex = 2.5e-6
+	secondsPerStar   = 2e-6
+
+	// wholeFrom is the number of sites from which a tetrahedralisation is thought of;
+	// fewCells are made one by one whatever they cost.
+	wholeFrom = 500
+	fewCells  = 32
+
+	// bytesPerVertex: coordinates twice, numbers, and 6.8 circumcentres of 40 bytes.
+	bytesPerVertex = 24 + 24 + 8 + 272
 
 	// slowFrom is the number of sites held against a cell from which a diagram is
 	// slow. Uniform, clustered, flat and regular sets have 70 to 130.

@@ -10,21 +10,32 @@ func TestCost(t *testing.T) {
 		slow  bool
 	}{{"uniform", random(4000, 41), false}, {"sheet", sheet(4000, 42), false}, {"lattice", grid(15), false}, {"sphere", sphere, true}} {
 		d := diagram(t, k.sites, Options{Solid: unitBox, Threads: 1})
-		c := d.Cost(Volume, -1)
-		if c.Slow != k.slow || !c.OneByOne || c.Cells != d.Facts().Distinct || c.Bytes < 8*int64(c.Cells) {
-			t.Errorf("%s: %+v", k.name, c)
+		few := d.Cost(Volume, 40)
+		if few.Slow != (k.slow && few.OneByOne) || few.Cells != 40 || few.Bytes < 8*40 {
+			t.Errorf("%s: %+v", k.name, few)
 		}
-		if perCell := c.Seconds / float64(c.Cells); perCell < 5e-6 || !k.slow && perCell > 50e-6 {
-			t.Errorf("%s: %v s a cell", k.name, perCell)
+		if perCell := few.Seconds / 40; !k.slow && (perCell < 5e-6 || perCell > 50e-6 || !few.OneByOne) {
+			t.Errorf("%s: %+v for a few", k.name, few)
 		}
-		if again := diagram(t, k.sites, Options{Solid: unitBox, Threads: 1}).Cost(Volume, -1); again != c {
-			t.Errorf("%s: %+v, then %+v", k.name, c, again)
+		all := d.Cost(Volume, -1)
+		if all.OneByOne || all.Slow || all.Cells != d.Facts().Distinct || all.Bytes < few.Bytes {
+			t.Errorf("%s: %+v for all", k.name, all)
 		}
-		if one := d.Cost(All, 1); one.Cells != 1 || one.Seconds >= c.Seconds {
+		for _, again := range []Options{{Solid: unitBox, Threads: 1}, {Solid: unitBox, Threads: 5}} {
+			c := diagram(t, k.sites, again).Cost(Volume, -1)
+			if c.OneByOne != all.OneByOne || again.Threads == 1 && c != all {
+				t.Errorf("%s: %+v, then %+v", k.name, all, c)
+			}
+		}
+		if one := d.Cost(All, 1); one.Cells != 1 || one.Seconds >= all.Seconds || !one.OneByOne || one.Slow != k.slow {
 			t.Errorf("%s: one cell costs %+v", k.name, one)
 		}
-		if none := d.Cost(NearestFace|Bounded, -1); none.Cells != 0 || none.Seconds >= c.Seconds || none.Slow {
+		if none := d.Cost(NearestFace|Bounded, -1); none.Cells != 0 || none.Seconds >= all.Seconds || none.Slow || !none.OneByOne {
 			t.Errorf("%s: no cell costs %+v", k.name, none)
+		}
+		small := diagram(t, k.sites, Options{Solid: unitBox, Memory: 1 << 16})
+		if c := small.Cost(Volume, -1); !c.OneByOne || c.Slow != k.slow || c.Bytes >= all.Bytes {
+			t.Errorf("%s: %+v with little memory", k.name, c)
 		}
 	}
 }

@@ -34,6 +34,10 @@ type Diagram struct {
 
 	pool sync.Pool // of *builder
 
+	memory   int64
+	building sync.Mutex
+	whole    *dual // guarded by building; nil: not built
+
 	probe   sync.Once
 	offered float64 // set by probe: sites held against a cell, on average
 }
@@ -44,7 +48,7 @@ func New(sites []Vec, o Options) (*Diagram, error) {
 	if err := check(sites, o); err != nil {
 		return nil, err
 	}
-	d := &Diagram{solid: o.Solid, threads: o.Threads, progress: o.Progress}
+	d := &Diagram{solid: o.Solid, threads: o.Threads, progress: o.Progress, memory: o.Memory}
 	if d.threads <= 0 {
 		d.threads = runtime.GOMAXPROCS(0)
 	}

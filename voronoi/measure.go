@@ -26,7 +26,12 @@ func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*C
 			out.Multiplicity[row] = d.count[c]
 		}
 	}
+	g, err := d.choose(ctx, want, len(r.cells))
+	if err != nil {
+		return nil, err
+	}
 	err = d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
+		b.use(g)
 		rows := r.rows[r.start[k]:r.start[k+1]]
 		if err := b.measure(r.cells[k], want, out, rows[0]); err != nil {
 			return err
@@ -108,6 +113,9 @@ func (d *Diagram) needsCell(want Measures) bool {
 
 // measure fills one row with the measures of one cell.
 func (b *builder) measure(cell int32, want Measures, out *Cells, row int32) error {
+	if b.walker != nil {
+		return b.measureGlobal(cell, want, out, row)
+	}
 	d := b.d
 	p := d.tree.Point(cell)
 	if want&NearestFace != 0 {

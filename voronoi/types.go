@@ -17,6 +17,9 @@ type Options struct {
 	// Threads is how many goroutines compute cells; 0: as many as there are
 	// processors. The results are the same for any number.
 	Threads int
+	// Memory is the most bytes that the tetrahedralisation of all sites may take; 0:
+	// no limit. Where it is too little, cells are made one by one.
+	Memory int64
 	// Progress is told now and then how many cells are done, from one goroutine at
 	// a time. It may be nil.
 	Progress func(done, total int)

@@ -1,0 +1,344 @@
+package voronoi
+
+import (
+	"context"
+	"math"
+	"slices"
+
+	"nearcell/voronoi/delaunay"
+	"nearcell/voronoi/index"
+	"nearcell/voronoi/polyhedron"
+)
+
+// The second way to cells: the tetrahedralisation of all sites, whose circumcentres
+// are the vertices of the cells. It is built once and kept.
+
+// dual is the tetrahedralisation of the diagram, built when it is first asked for.
+func (d *Diagram) dual(ctx context.Context) (*dual, error) {
+	d.building.Lock()
+	defer d.building.Unlock()
+	if d.whole != nil {
+		return d.whole, nil
+	}
+	n := d.tree.Len()
+	flat := make([]float64, 0, 3*n)
+	for _, p := range d.tree.Points() {
+		flat = append(flat, p.X, p.Y, p.Z)
+	}
+	t, err := delaunay.BuildFlat(ctx, flat, delaunay.Options{Threads: d.threads, Progress: d.buildProgress()})
+	if err != nil {
+		return nil, err
+	}
+	g, err := newDual(ctx, t, d.tree.Point, n, d.threads)
+	if err != nil {
+		return nil, err
+	}
+	if d.isBox {
+		g.enclose(d.lo, d.hi, d.origin, d.labels, d.threads)
+	}
+	d.whole = g
+	return g, nil
+}
+
+// buildProgress tells of the build as cells that are not done yet.
+func (d *Diagram) buildProgress() func(done, total int) {
+	if d.progress == nil {
+		return nil
+	}
+	return func(done, total int) { d.progress(0, total) }
+}
+
+// Tetrahedra is the Delaunay tetrahedralisation of the sites that take part, built
+// when it is first asked for and kept. Its sites are those of the diagram in another
+// order, one for each place, moved by Facts().Origin: site tells the diagram's site
+// (the representative of its group) of one of them. It fails as delaunay.Build does.
+func (d *Diagram) Tetrahedra(ctx context.Context) (t *delaunay.T, site func(i int32) int32, err error) {
+	if limit, need := d.memory, d.globalBytes(); limit > 0 && need > limit {
+		return nil, nil, &delaunay.MemoryError{Need: need, Limit: limit}
+	}
+	g, err := d.dual(ctx)
+	if err != nil {
+		return nil, nil, err
+	}
+	return g.t, func(i int32) int32 { return d.site[i] }, nil
+}
+
+// take makes w ready for the cell and tells whether it was measured face by face; if
+// not, b.cell is the polyhedron, finished but for a solid that is not convex. The
+// labels of the sums are points, those of b.cell cells.
+func (b *builder) take(cell int32, k wants) (summed, bounded bool) {
+	w, d := b.walker, b.d
+	w.star(w.g.point[cell])
+	p := d.tree.Point(cell)
+	at := add(p, d.origin)
+	if d.solid == nil {
+		if !w.open && !w.spoilt && w.far2 <= farShare2*w.nearest2() {
+			w.whole(k)
+			return true, true
+		}
+		b.knowNeighbours()
+		bounded = b.build(&b.cell, p, at, cell)
+		b.known = false
+		return false, bounded
+	}
+	if !w.open && !w.spoilt && b.inSolid(at) && w.far2 <= farShare2*w.nearest2() {
+		w.whole(k)
+		return true, true
+	}
+	if d.isBox && w.clippable() && w.inBox(k) {
+		return true, true
+	}
+	b.knowNeighbours()
+	b.build(&b.cell, p, at, cell)
+	b.known = false
+	return false, true
+}
+
+// farShare2 is the square of the ratio of the farthest vertex to the nearest site from
+// which a cell is cut plane by plane: its vertices have lost digits.
+const farShare2 = 0x1p24
+
+// inSolid tells whether the cell of the star at hand lies in the solid.
+func (b *builder) inSolid(at Vec) bool {
+	w, d := b.walker, b.d
+	if d.isBox {
+		lo, hi := w.g.localBox(w.p)
+		return w.any == 0 && lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
+	}
+	far := math.Sqrt(w.far2) * (1 + 1e-9)
+	if lo, hi := sub(d.lo, at), sub(d.hi, at); far > min(-lo.X, -lo.Y, -lo.Z, hi.X, hi.Y, hi.Z) {
+		return false
+	}
+	return d.solid.Distance(at) > far
+}
+
+// clippable tells whether the star at hand can be cut by the box face by face.
+func (w *walker) clippable() bool {
+	lo, hi := w.g.localBox(w.p)
+	return !w.open && !w.spoilt && !w.g.awkward[w.p] && w.far2 <= farShare2*w.nearest2() &&
+		lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
+}
+
+// nearest2 is the squared distance to the nearest site, which is a neighbour.
+func (w *walker) nearest2() float64 {
+	near := math.Inf(1)
+	for i := range w.faces {
+		n := sub(w.g.at[w.faces[i].q], w.own)
+		near = min(near, dot(n, n))
+	}
+	return near
+}
+
+// knowNeighbours tells the builder the sites that the next cell is to be cut by: the
+// neighbours of the star at hand, nearest first.
+func (b *builder) knowNeighbours() {
+	w := b.walker
+	b.known, b.onHull = true, w.open
+	b.near = b.near[:0]
+	for i := range w.faces {
+		q := w.faces[i].q
+		n := sub(w.g.at[q], w.own)
+		b.near = append(b.near, index.Neighbour{Point: w.g.cell[q], Dist2: dot(n, n)})
+	}
+	slices.SortFunc(b.near, func(a, c index.Neighbour) int {
+		switch {
+		case a.Dist2 < c.Dist2:
+			return -1
+		case a.Dist2 > c.Dist2:
+			return 1
+		}
+		return int(a.Point - c.Point)
+	})
+}
+
+// measureGlobal fills one row as measure does.
+func (b *builder) measureGlobal(cell int32, want Measures, out *Cells, row int32) error {
+	d, w := b.d, b.walker
+	if want&Bounded != 0 {
+		out.Bounded[row] = true
+	}
+	k := wants{moments: want&Centroid != 0, shape: want&Faces != 0}
+	summed, bounded := b.take(cell, k)
+	if want&NearestFace != 0 {
+		out.NearestFace[row] = math.Sqrt(w.nearest2()) / 2
+	}
+	at := add(d.tree.Point(cell), d.origin)
+	switch {
+	case !bounded:
+		measureUnbounded(&b.cell, want, out, row)
+	case summed:
+		w.sums.fill(at, want, out, row)
+		if want&Faces != 0 && !out.Shaped[row] {
+			b.shapeAnew(cell, out, row)
+		}
+	case d.solid == nil || d.convex:
+		measureConvex(&b.cell, at, want, out, row)
+	default:
+		return b.measureClipped(at, want, out, row)
+	}
+	return nil
+}
+
+// shapeAnew counts faces, edges and vertices of a cell with artefacts of rounding on
+// the polyhedron. The cell lies in the solid or is cut by a convex one.
+func (b *builder) shapeAnew(cell int32, out *Cells, row int32) {
+	p := b.d.tree.Point(cell)
+	b.knowNeighbours()
+	b.build(&b.cell, p, add(p, b.d.origin), cell)
+	b.known = false
+	shape(&b.cell, Faces, out, row)
+}
+
+// fill writes the measures of a bounded cell.
+func (s *cellSums) fill(at Vec, want Measures, out *Cells, row int32) {
+	if want&Volume != 0 {
+		out.Volume[row] = s.volume()
+	}
+	if want&Centroid != 0 {
+		if c, ok := s.centroid(); ok {
+			out.Centroid[row], out.HasCentroid[row] = add(at, c), true
+		}
+	}
+	if want&Farthest != 0 {
+		out.Farthest[row] = math.Sqrt(s.far2)
+	}
+	if want&Faces != 0 {
+		out.Faces[row], out.Edges[row], out.Vertices[row], out.Shaped[row] = s.shape()
+	}
+	if want&(Area|WallArea|Clipped|Neighbours) == 0 {
+		return
+	}
+	contacts, walls, neighbours := 0.0, 0.0, int32(0)
+	for i := range s.parts {
+		switch p := &s.parts[i]; {
+		case !s.counts(p):
+		case p.isWall:
+			walls += p.area
+		default:
+			contacts += p.area
+			neighbours++
+		}
+	}
+	if want&Area != 0 {
+		out.Area[row] = contacts + walls
+	}
+	if want&WallArea != 0 {
+		out.WallArea[row] = walls
+	}
+	if want&Clipped != 0 {
+		out.Clipped[row] = walls > 0
+	}
+	if want&Neighbours != 0 {
+		out.Neighbours[row] = neighbours
+	}
+}
+
+// sharesGlobal is shares on the tetrahedralisation.
+func (b *builder) sharesGlobal(cell int32) ([]share, error) {
+	d, w := b.d, b.walker
+	summed, bounded := b.take(cell, wants{moments: true, middles: true})
+	at := add(d.tree.Point(cell), d.origin)
+	if !summed {
+		return b.sharesOf(at, bounded)
+	}
+	b.list = b.list[:0]
+	for i := range w.sums.parts {
+		if p := &w.sums.parts[i]; !p.isWall && w.sums.counts(p) {
+			b.list = append(b.list, share{w.g.cell[p.q], p.area, add(at, p.middle)})
+		}
+	}
+	return b.list, nil
+}
+
+// CellsInBox measures all cells of a tetrahedralisation, cut by a box that holds its
+// sites. It is Diagram.Measure for callers that have the tetrahedralisation and need
+// no search. Entry s of the arrays belongs to site s; for sites in the place of
+// another all are zero, and Inside is false. All measures but Faces can be had.
+func CellsInBox(ctx context.Context, t *delaunay.T, lo, hi Vec, want Measures, threads int) (*Cells, error) {
+	n := t.NumSites()
+	g, err := newDual(ctx, t, func(s int32) Vec { return t.Site(int(s)) }, n, threads)
+	if err != nil {
+		return nil, err
+	}
+	o := polyhedron.Wall
+	g.enclose(lo, hi, Vec{}, [6]int32{o(0), o(1), o(2), o(3), o(4), o(5)}, threads)
+	sites := make([]int32, n)
+	for i := range sites {
+		sites[i] = int32(i)
+	}
+	out := newCells(want&^Faces, sites)
+	idle := make(chan *walker, threads+1)
+	parallel(threads, t.NumPoints()+1, func(from, to int) {
+		var w *walker
+		select {
+		case w = <-idle:
+		default:
+			w = newWalker(g)
+		}
+		for p := max(1, from); p < to && ctx.Err() == nil; p++ {
+			if t.PointSite(int32(p)) >= 0 {
+				w.measureInBox(int32(p), want&^Faces, out)
+			}
+		}
+		select {
+		case idle <- w:
+		default:
+		}
+	})
+	return out, ctx.Err()
+}
+
+func (w *walker) measureInBox(p int32, want Measures, out *Cells) {
+	row := w.g.cell[p]
+	out.Inside[row], out.Multiplicity[row] = true, 1
+	w.star(p)
+	if want&Bounded != 0 {
+		out.Bounded[row] = true
+	}
+	if want&NearestFace != 0 {
+		out.NearestFace[row] = math.Sqrt(w.nearest2()) / 2
+	}
+	k := wants{moments: want&Centroid != 0}
+	at := add(w.own, w.g.origin)
+	switch {
+	case w.any == 0 && w.clippable():
+		w.whole(k)
+	case w.clippable() && w.inBox(k):
+	default:
+		w.cutPlanes()
+		measureConvex(&w.cell, at, want, out, row)
+		return
+	}
+	w.sums.fill(at, want, out, row)
+}
+
+// cutPlanes makes w.cell what the box and the neighbours leave.
+func (w *walker) cutPlanes() {
+	g, c := w.g, &w.cell
+	lo, hi := g.localBox(w.p)
+	c.SetBox(lo, hi, g.labels)
+	w.near = w.near[:0]
+	for i := range w.faces {
+		n := sub(g.at[w.faces[i].q], w.own)
+		w.near = append(w.near, index.Neighbour{Point: w.faces[i].q, Dist2: dot(n, n)})
+	}
+	slices.SortFunc(w.near, func(a, b index.Neighbour) int {
+		switch {
+		case a.Dist2 < b.Dist2:
+			return -1
+		case a.Dist2 > b.Dist2:
+			return 1
+		}
+		return int(a.Point - b.Point)
+	})
+	far := reach2(c)
+	for _, q := range w.near {
+		if q.Dist2 > float64(4*far) {
+			break
+		}
+		n := sub(g.at[q.Point], w.own)
+		if c.Bisect(n, lostBySub(g.at[q.Point], w.own, n), q.Point) == polyhedron.Cut {
+			far = reach2(c)
+		}
+	}
+}

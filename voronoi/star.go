@@ -1,0 +1,177 @@
+package voronoi
+
+import (
+	"slices"
+
+	"nearcell/voronoi/index"
+	"nearcell/voronoi/polyhedron"
+)
+
+// walker measures cells of a dual. It is the scratch of one goroutine.
+type walker struct {
+	g     *dual
+	stamp uint32
+	seen  []uint32 // by point: the stamp of the last star that it was in
+
+	// The star at hand.
+	p      int32
+	own    Vec
+	faces  []face
+	loop   []Vec   // Voronoi vertices around each face, seen from p
+	key    []int32 // of each, the point that its facet to the next one has beside p and q
+	out    []uint8 // of each, the outcode
+	open   bool    // p lies on the convex hull
+	spoilt bool    // a vertex could not be computed
+	any    uint8   // all outcodes together
+	far2   float64 // squared distance of the farthest vertex
+
+	// The part of the cell in the box: see boxed.go.
+	lo, hi  Vec // seen from p
+	polygon rim
+	spare   rim
+	walls   [6]wall
+	ends    [12]int8 // upper less lower ends on the edges of the box
+
+	sums cellSums
+	cell polyhedron.Cell
+	near []index.Neighbour
+}
+
+// face is the Voronoi face towards the point q.
+type face struct {
+	q        int32
+	from, to int32 // loop[from:to]
+
+	tet    uint32 // where the walk around the edge begins
+	ip, iq uint8  // the corners of p and q there
+}
+
+func newWalker(g *dual) *walker { return &walker{g: g, seen: make([]uint32, len(g.at))} }
+
+// afterPair[i][j] are the corners x and y that make (i, j, x, y) an even permutation.
+var afterPair = func() (after [4][4][2]uint8) {
+	for i := range uint8(4) {
+		for j := range uint8(4) {
+			for x := range uint8(4) {
+				y := 6 - i - j - x
+				if i == j || i == x || j == x || y > 3 {
+					continue
+				}
+				p := [4]uint8{i, j, x, y}
+				odd := false
+				for a := range p {
+					for b := range a {
+						odd = odd != (p[b] > p[a])
+					}
+				}
+				if !odd {
+					after[i][j] = [2]uint8{x, y}
+				}
+			}
+		}
+	}
+	return after
+}()
+
+// star walks around every Delaunay edge at p and collects the faces of its cell, by
+// neighbour. The loops run counter-clockwise seen from outside and begin at the vertex
+// with the lowest key: they do not depend on how the tetrahedra are numbered.
+func (w *walker) star(p int32) {
+	g := w.g
+	w.stamp++
+	w.p, w.own = p, g.at[p]
+	w.faces, w.loop, w.key, w.out = w.faces[:0], w.loop[:0], w.key[:0], w.out[:0]
+	w.open, w.spoilt, w.any, w.far2 = false, false, 0, 0
+	w.seen[p] = w.stamp
+	begin, _ := g.t.PointTet(p)
+	v, _ := g.t.Record(begin)
+	ip := corner(v, p)
+	for k := range uint8(4) {
+		if k != ip && v[k] != 0 {
+			w.discover(v[k], begin, ip, k)
+			break
+		}
+	}
+	for i := 0; i < len(w.faces); i++ {
+		w.around(i)
+	}
+	// Insertion sort: there are about fifteen.
+	f := w.faces
+	for i := 1; i < len(f); i++ {
+		for j := i; j > 0 && f[j].q < f[j-1].q; j-- {
+			f[j], f[j-1] = f[j-1], f[j]
+		}
+	}
+}
+
+func corner(v *[4]int32, p int32) uint8 {
+	switch p {
+	case v[0]:
+		return 0
+	case v[1]:
+		return 1
+	case v[2]:
+		return 2
+	}
+	return 3
+}
+
+func (w *walker) discover(q int32, tet uint32, ip, iq uint8) {
+	w.seen[q] = w.stamp
+	w.faces = append(w.faces, face{q: q, tet: tet, ip: ip, iq: iq})
+}
+
+// around walks around the edge from p to one neighbour, that of face i.
+func (w *walker) around(i int) {
+	g, p, q := w.g, w.p, w.faces[i].q
+	tet, ip, iq := w.faces[i].tet, w.faces[i].ip, w.faces[i].iq
+	begin := tet
+	from, lowest := len(w.loop), 0
+	real := uint32(len(g.centres))
+	v, n := g.t.Record(tet)
+	for {
+		xy := &afterPair[ip&3][iq&3]
+		x, y := xy[0]&3, xy[1]&3
+		key := v[y]
+		if tet >= real {
+			w.open = true
+			w.loop, w.out = append(w.loop, Vec{}), append(w.out, 0)
+		} else {
+			c := &g.centres[tet]
+			a := &g.at[c.from]
+			o := Vec{X: c.o.X + (a.X - w.own.X), Y: c.o.Y + (a.Y - w.own.Y), Z: c.o.Z + (a.Z - w.own.Z)}
+			w.loop, w.out = append(w.loop, o), append(w.out, c.out)
+			w.any |= c.out
+			w.spoilt = w.spoilt || c.bad
+			if d := float64(o.X*o.X) + float64(o.Y*o.Y) + float64(o.Z*o.Z); d > w.far2 {
+				w.far2 = d
+			}
+		}
+		w.key = append(w.key, key)
+		if key < w.key[from+lowest] {
+			lowest = len(w.key) - 1 - from
+		}
+		if w.seen[key] != w.stamp && key != 0 {
+			w.discover(key, tet, ip, y)
+		}
+		next := n[x]
+		if tet = next >> 2; tet == begin {
+			break
+		}
+		v, n = g.t.Record(tet)
+		ip, iq = corner(v, p), corner(v, q)
+	}
+	w.faces[i].from, w.faces[i].to = int32(from), int32(len(w.loop))
+	if lowest > 0 {
+		rotate(w.loop[from:], lowest)
+		rotate(w.key[from:], lowest)
+		rotate(w.out[from:], lowest)
+	}
+}
+
+// rotate moves entry k to the front.
+func rotate[T any](s []T, k int) {
+	slices.Reverse(s[:k])
+	slices.Reverse(s[k:])
+	slices.Reverse(s)
+}
