@@ -122,7 +122,7 @@ func (g *gapRows) part(ctx context.Context, p *Part, out *gapBatch) error {
 	found, err := h.Gaps(ctx, p.Sites, g.env.Threads, g.progress())
 	var undivided *coverage.UndividedError
 	if errors.As(err, &undivided) {
-		return problem.New("undivided", g.b.Place, "GAPS cannot be told in %s: it has no convex parts to look through", g.b.Clauses.SolidName).
+		return problem.New("failed", g.b.Place, "GAPS cannot be told in %s: it has no convex parts to look through", g.b.Clauses.SolidName).
 			WithHint("a BOX or a PRISM has")
 	}
 	if err != nil {
