@@ -266,9 +266,40 @@ func TestRepeatedCells(t *testing.T) {
 	// a join that repeats nothing
 	once := &plan.Join{Left: cells, Right: first, LeftKeys: join.LeftKeys, RightKeys: join.RightKeys}
 	expectNotes(t, aggregate(once, nil, calls(both, "SUM", siteVolume)[0]))
-	// cubic metre hours are no plain sum over space
-	hours := must(expr.NewArith(lang.Times, plantest.Column(schema, siteVolume), plantest.Column(schema, siteTemp), plantest.Nowhere))
-	expectNotes(t, aggregate(r, nil, plan.Call{Fn: sum.Fn, Args: []expr.Expr{hours}, Text: "SUM(volume * temp)"}))
+}
+
+// Cubic metre hours, and whatever else has a factor, are no plain sum over
+// space; sums and differences of measures are, and so is a factor of one.
+func TestRepeatedCellsWithAFactor(t *testing.T) {
+	r := crowdOf(sites(), siteT)
+	schema := r.Schema()
+	volume := plantest.Column(schema, siteVolume)
+	number := func(f float64, unit string) expr.Expr {
+		return expr.NewConst(column.Value{Type: column.Real, F: f, Unit: column.Symbol(unit)}, plantest.Nowhere)
+	}
+	arith := func(l expr.Expr, op lang.Op, r expr.Expr) expr.Expr {
+		return must(expr.NewArith(op, l, r, plantest.Nowhere))
+	}
+	for _, c := range []struct {
+		sum  expr.Expr
+		warn bool
+	}{
+		{arith(volume, lang.Times, plantest.Column(schema, siteTemp)), false},
+		{arith(volume, lang.Times, number(0.25, "h")), false},
+		{arith(number(1, "h"), lang.Times, volume), false},
+		{arith(volume, lang.Times, number(0.25, "")), false},
+		{arith(volume, lang.Divide, number(4, "")), false},
+		{arith(volume, lang.Times, number(1, "")), true},
+		{arith(volume, lang.Divide, number(1, "")), true},
+		{arith(volume, lang.Plus, volume), true},
+		{must(expr.NewNeg(volume, plantest.Nowhere)), true},
+	} {
+		call := plan.Call{Fn: function.LookupAggregate("SUM"), Args: []expr.Expr{c.sum}, Text: "SUM(" + c.sum.String() + ")"}
+		said := notesOf(t, aggregate(r, nil, call))
+		if warned := len(said) == 1 && contains(said[0], "counts more than once"); warned != c.warn || len(said) > 1 {
+			t.Errorf("%s: %q", call.Text, said)
+		}
+	}
 }
 
 // No plan fails, or gives other rows, because somebody listens.

@@ -6,6 +6,7 @@ import (
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
+	"nearcell/lang"
 )
 
 // Origin says from which column of which relation a column comes unchanged.
@@ -216,6 +217,9 @@ func CellSums(n *Aggregate) []CellSum {
 		if !isSum(c) || c.Weight != nil || c.Distinct {
 			continue
 		}
+		if !addsOnly(c.Args[0]) {
+			continue
+		}
 		r := measuresOnly(reads(c.Args[0], input))
 		if r == nil || len(r.Bound.Clauses.Each) == 0 && cellsOf(n.Input) == r {
 			continue
@@ -225,9 +229,37 @@ func CellSums(n *Aggregate) []CellSum {
 	return found
 }
 
+// addsOnly reports whether an expression is a column, or columns added up and
+// taken off. A factor says that more than space is meant: volume * HOURS(…) over
+// the partitions of FOR EACH adds up to cubic metre hours. The bare number 1 says
+// nothing.
+func addsOnly(e expr.Expr) bool {
+	switch e := e.(type) {
+	case *expr.Column:
+		return true
+	case *expr.Neg:
+		return addsOnly(e.X)
+	case *expr.Arith:
+		switch e.Op {
+		case lang.Plus, lang.Minus:
+			return addsOnly(e.Left) && addsOnly(e.Right)
+		case lang.Times:
+			return isOne(e.Left) && addsOnly(e.Right) || isOne(e.Right) && addsOnly(e.Left)
+		case lang.Divide:
+			return isOne(e.Right) && addsOnly(e.Left)
+		}
+	}
+	return false
+}
+
+// isOne reports whether an expression is the number 1 without a unit.
+func isOne(e expr.Expr) bool {
+	v, ok := expr.Const(e)
+	return ok && !v.Null && v.Unit == nil && (v.Type == column.Integer && v.I == 1 || v.Type == column.Real && v.F == 1)
+}
+
 // measuresOnly is the one relation whose extensive columns, and no others, are
-// given: a product with anything else (hours, a share) is no longer a plain sum
-// over space.
+// given.
 func measuresOnly(used []Origin) *Relation {
 	var r *Relation
 	for _, o := range used {
