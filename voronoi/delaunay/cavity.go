@@ -153,37 +153,43 @@ func (w *worker) fill(p int32) {
 		outer := &tets[r>>2]
 		back := &faceBack[r&3]
 		outer.n[r&3] = id << 2
-		var l [3]uint32
-		var v [3]int32
-		for k := range 3 {
-			a := outer.v[back[k]&3]
-			q := &pts[a]
-			n := q.local
-			if n >= known || locals[n].v != a {
-				n = known
-				known++
-				x, y, z := q.x-px, q.y-py, q.z-pz
-				locals[n] = local{x, y, z, x*x + y*y + z*z, a}
-				q.local, q.tet = n, id
-			}
-			l[k], v[k] = n, a
+		v1, v2, v3 := outer.v[back[0]&3], outer.v[back[1]&3], outer.v[back[2]&3]
+		q1, q2, q3 := &pts[v1], &pts[v2], &pts[v3]
+		l1, l2, l3 := q1.local, q2.local, q3.local
+		if l1 >= known || locals[l1].v != v1 {
+			l1 = known
+			known++
+			q1.local, q1.tet = l1, id
+			locals[l1].set(q1, px, py, pz, v1)
 		}
-		facets[i] = facet{l[0], l[1], l[2], id}
+		if l2 >= known || locals[l2].v != v2 {
+			l2 = known
+			known++
+			q2.local, q2.tet = l2, id
+			locals[l2].set(q2, px, py, pz, v2)
+		}
+		if l3 >= known || locals[l3].v != v3 {
+			l3 = known
+			known++
+			q3.local, q3.tet = l3, id
+			locals[l3].set(q3, px, py, pz, v3)
+		}
+		facets[i] = facet{l1, l2, l3, id}
 		if stride != 0 {
-			table[l[0]*stride+l[1]] = id<<2 + 3
-			table[l[1]*stride+l[2]] = id<<2 + 1
-			table[l[2]*stride+l[0]] = id<<2 + 2
+			table[l1*stride+l2] = id<<2 + 3
+			table[l2*stride+l3] = id<<2 + 1
+			table[l3*stride+l1] = id<<2 + 2
 		}
 		t := &tets[id]
-		t.v = [4]int32{p, v[0], v[1], v[2]}
+		t.v[0], t.v[1], t.v[2], t.v[3] = p, v1, v2, v3
 		t.n[0] = r
-		if l[0] == 0 || l[1] == 0 || l[2] == 0 {
+		if v1 == 0 || v2 == 0 || v3 == 0 {
 			t.lo, t.hi = loGhost, float32(math.Inf(1))
 			w.ghost = id
 			continue
 		}
 		hint = id
-		a, b, c := &locals[l[0]], &locals[l[1]], &locals[l[2]]
+		a, b, c := &locals[l1], &locals[l2], &locals[l3]
 		ax, ay, az := b.y*c.z-b.z*c.y, b.z*c.x-b.x*c.z, b.x*c.y-b.y*c.x
 		bx, by, bz := c.y*a.z-c.z*a.y, c.z*a.x-c.x*a.z, c.x*a.y-c.y*a.x
 		cx, cy, cz := a.y*b.z-a.z*b.y, a.z*b.x-a.x*b.z, a.x*b.y-a.y*b.x
@@ -193,7 +199,7 @@ func (w *worker) fill(p int32) {
 		oy := (a.q*ay + b.q*by + c.q*cy) * inv
 		oz := (a.q*az + b.q*bz + c.q*cz) * inv
 		r2 := ox*ox + oy*oy + oz*oz
-		t.c = [3]float64{px + ox, py + oy, pz + oz}
+		t.c[0], t.c[1], t.c[2] = px+ox, py+oy, pz+oz
 		p2 := a.q * b.q * c.q
 		if det*det*plainKappa2 > p2+kappaFloor && r2 > smallestSphere {
 			t.lo, t.hi = float32(r2*(1-plainMargin)), float32(r2*(1+plainMargin))

@@ -60,7 +60,7 @@
 // About 2 µs a site on one thread, 1.2 µs on two; n log n for the sort, linear for the
 // rest, as long as the sites are spread in space or over surfaces. On two skew curves
 // there are n²/4 tetrahedra, and nothing helps. Memory is 64 bytes a tetrahedron and 40
-// a site: with the 7.2 tetrahedra a site that are reserved about 500 bytes, and 30 more
+// a site: with the 7.2 tetrahedra a site that are reserved about 500 bytes, and 16 more
 // while the sites are sorted; Estimate says it before the build, and Options.Memory
 // sets a limit.
 //

@@ -46,6 +46,7 @@ const (
 
 func (m *mesh) setLimits() {
 	m.whole = m.frame.bits <= maxBits
+	m.fine = m.frame.bits > coarseBits && !m.frame.rounded
 	if m.whole {
 		m.limits = limitsOf[m.frame.bits]
 	}
@@ -57,6 +58,10 @@ type limits struct {
 	inExact, inWrap64, inWrap128 float64
 	orientExact, orientWrap64    float64
 }
+
+// coarseBits is how many bits coordinates may have for the float determinants of near
+// sites to be exact: with more, corners of boxes are looked for first.
+const coarseBits = 24
 
 // mostUnit is the largest k that limits are kept for: beyond it they would underflow.
 const mostUnit = 100
@@ -203,8 +208,10 @@ func signInt(x int64) int {
 func (m *mesh) inSphere(v [4]int32, e int32) bool {
 	pts := m.pts
 	a, b, c, d, o := &pts[v[0]], &pts[v[1]], &pts[v[2]], &pts[v[3]], &pts[e]
-	if codes, ok := oneBox(a, b, c, d, o); ok && !m.frame.rounded {
-		return boxTie(codes)
+	if m.fine {
+		if codes, ok := oneBox(a, b, c, d, o); ok {
+			return boxTie(codes)
+		}
 	}
 	ax, ay, az := a.x-o.x, a.y-o.y, a.z-o.z
 	bx, by, bz := b.x-o.x, b.y-o.y, b.z-o.z
@@ -216,8 +223,9 @@ func (m *mesh) inSphere(v [4]int32, e int32) bool {
 	qb := bx*bx + by*by + bz*bz
 	qc := cx*cx + cy*cy + cz*cz
 	qd := dx*dx + dy*dy + dz*dz
-	det := (qa*(bz*cd-cz*bd+dz*bc) - qb*(az*cd-cz*ad+dz*ac)) +
-		(qc*(az*bd-bz*ad+dz*ab) - qd*(az*bc-bz*ac+cz*ab))
+	ta, tb := bz*cd-cz*bd+dz*bc, az*cd-cz*ad+dz*ac
+	tc, td := az*bd-bz*ad+dz*ab, az*bc-bz*ac+cz*ab
+	det := (qa*ta - qb*tb) + (qc*tc - qd*td)
 	n := ((qa * qb) * (qc * qd)) * ((qa + qb) + (qc + qd))
 	if det*det > inFactor*n && n > filterFloor {
 		return det > 0
@@ -229,16 +237,39 @@ func (m *mesh) inSphere(v [4]int32, e int32) bool {
 	if !ok {
 		return predicate.InSpherePerturbed(m.vec(v[0]), m.vec(v[1]), m.vec(v[2]), m.vec(v[3]), m.vec(e)) > 0
 	}
-	s := 0
 	if n < l.inExact && n > filterFloor {
-		s = signOf(det)
-	} else {
-		s = l.inSphereWhole(a, b, c, d, o, n)
+		if det != 0 {
+			return det > 0
+		}
+		// The minors are exact too, and are the orientations that a tie asks for.
+		return smallTie([4][4]float64{{ax, ay, az, ta}, {bx, by, bz, -tb}, {cx, cy, cz, tc}, {dx, dy, dz, -td}})
 	}
-	if s != 0 {
+	if s := l.inSphereWhole(a, b, c, d, o, n); s != 0 {
 		return s > 0
 	}
 	return m.tie(v, e)
+}
+
+// smallTie is tie for four corners seen from the point asked about, each with the
+// orientation of the tetrahedron in which that point takes its place.
+func smallTie(r [4][4]float64) bool {
+	for {
+		best := -1
+		var x, y, z float64 // the point asked about
+		for k := range r {
+			p := &r[k]
+			if p[0] > x || p[0] == x && (p[1] > y || p[1] == y && p[2] > z) {
+				best, x, y, z = k, p[0], p[1], p[2]
+			}
+		}
+		if best < 0 {
+			return false
+		}
+		if o := r[best][3]; o != 0 {
+			return o > 0
+		}
+		r[best] = [4]float64{}
+	}
 }
 
 // tie decides for a point on the sphere.

@@ -69,6 +69,6 @@ func ExampleEstimate() {
 	_, err := delaunay.Build(context.Background(), make([]r3.Vec, 1000), delaunay.Options{Memory: 100_000})
 	fmt.Println(err)
 	// Output:
-	// 534 MB for a million sites
-	// delaunay: the tetrahedralisation needs 795944 bytes, more than the limit of 100000
+	// 518 MB for a million sites
+	// delaunay: the tetrahedralisation needs 779943 bytes, more than the limit of 100000
 }

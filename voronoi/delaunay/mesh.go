@@ -52,6 +52,7 @@ type mesh struct {
 	used  int64 // records of tets in use, on a free list or in a worker's block
 
 	whole  bool // coordinates are multiples of 2^-bits for bits <= maxBits
+	fine   bool // coordinates have many bits, but are not rounded
 	limits limits
 }
 
@@ -86,6 +87,11 @@ type worker struct {
 type local struct {
 	x, y, z, q float64
 	v          int32
+}
+
+func (l *local) set(q *point, px, py, pz float64, v int32) {
+	x, y, z := q.x-px, q.y-py, q.z-pz
+	l.x, l.y, l.z, l.q, l.v = x, y, z, x*x+y*y+z*z, v
 }
 
 type facet struct{ a, b, c, id uint32 }

@@ -23,7 +23,7 @@ const (
 	tetBytes       = 64
 	pointBytes     = 32
 	indexBytes     = 8  // order and place
-	sortBytes      = 32 // given back after the sort
+	sortBytes      = 16 // given back after the sort
 	workerBytes    = 1 << 17
 	mostSites      = 1 << 27
 	ownershipBytes = 1

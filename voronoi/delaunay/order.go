@@ -18,11 +18,32 @@ const (
 	maxRounds = 15
 )
 
-// ranked is a site with its place in the order: the round above the Hilbert code.
-type ranked struct {
-	key   uint64
-	index uint32
+// ranked is a site with its place in the order, in one word: its round, its cell along
+// the Hilbert curve and its index, which takes as many bits as it needs. Small words
+// are half of what a sort costs; cells that hold many sites are divided again.
+type ranked uint64
+
+// packing says where the parts of a ranked are.
+type packing struct {
+	index uint // bits of the index
+	drop  uint // bits of the Hilbert code that are dropped
+	round uint // where the round begins
 }
+
+func packingFor(n int) packing {
+	p := packing{index: uint(bits.Len(uint(max(n-1, 1))))}
+	for 3*hilbertBits-p.drop+p.index > 60 {
+		p.drop += 3
+	}
+	p.round = p.index + 3*hilbertBits - p.drop
+	return p
+}
+
+func (p packing) pack(round int, code uint64, index int) ranked {
+	return ranked(uint64(round)<<p.round | code>>p.drop<<p.index | uint64(index))
+}
+
+func (p packing) site(r ranked) int { return int(r & (1<<p.index - 1)) }
 
 // mix is the finaliser of splitmix64 (Steele, Lea and Flood 2014).
 func mix(h uint64) uint64 {
@@ -54,6 +75,7 @@ func roundsFor(n int) int {
 func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, ends []int) {
 	n := len(sites) / 3
 	rounds := roundsFor(n)
+	pack := packingFor(n)
 	list := make([]ranked, n)
 	counts := make([]int, rounds+1)
 	var lock sync.Mutex
@@ -64,7 +86,7 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 			r := roundOf(i, rounds)
 			mine[r]++
 			x, y, z := f.internal(sites, i)
-			list[i] = ranked{uint64(r)<<(3*hilbertBits) | cell.code(x, y, z), uint32(i)}
+			list[i] = pack.pack(r, cell.code(x, y, z), i)
 		}
 		lock.Lock()
 		for r, c := range mine {
@@ -72,11 +94,11 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 		}
 		lock.Unlock()
 	})
-	list = radixSort(list, make([]ranked, n))
-	refine(f, sites, list)
+	list = radixSort(list, make([]ranked, n), pack.index)
+	pack.refine(f, sites, list)
 	order = make([]uint32, n)
-	for i := range list {
-		order[i] = list[i].index
+	for i, r := range list {
+		order[i] = uint32(pack.site(r))
 	}
 	end := 0
 	for _, c := range counts {
@@ -101,29 +123,29 @@ func (g *grid) code(x, y, z float64) uint64 {
 
 const radixBits = 11
 
-// radixSort sorts by key, stable, least digit first; list and spare change roles and
-// the sorted one is returned.
-func radixSort(list, spare []ranked) []ranked {
-	var differ uint64
+// radixSort sorts by the bits from low on, stable, least digit first; list and spare
+// change roles and the sorted one is returned.
+func radixSort(list, spare []ranked, low uint) []ranked {
+	var differ ranked
 	for i := range list {
-		differ |= list[i].key ^ list[0].key
+		differ |= list[i] ^ list[0]
 	}
-	for shift := 0; shift < 64; shift += radixBits {
+	for shift := low; shift < 64; shift += radixBits {
 		const mask = 1<<radixBits - 1
 		if differ>>shift&mask == 0 {
 			continue
 		}
 		var start [1 << radixBits]uint32
-		for i := range list {
-			start[list[i].key>>shift&mask]++
+		for _, r := range list {
+			start[r>>shift&mask]++
 		}
 		sum := uint32(0)
 		for d := range start {
 			start[d], sum = sum, sum+start[d]
 		}
-		for i := range list {
-			d := list[i].key >> shift & mask
-			spare[start[d]] = list[i]
+		for _, r := range list {
+			d := r >> shift & mask
+			spare[start[d]] = r
 			start[d]++
 		}
 		list, spare = spare, list
@@ -131,52 +153,44 @@ func radixSort(list, spare []ranked) []ranked {
 	return list
 }
 
-// refine sorts runs of equal keys again, each in a cube of its own: far clusters
+// refine sorts sites of one cell again, each cell in a cube of its own: far clusters
 // share one cell of the cube around all sites.
-func refine(f *frame, sites []float64, list []ranked) {
+func (p packing) refine(f *frame, sites []float64, list []ranked) {
 	const enough = 16
 	for lo := 0; lo < len(list); {
 		hi := lo + 1
-		for hi < len(list) && list[hi].key == list[lo].key {
+		for hi < len(list) && list[hi]>>p.index == list[lo]>>p.index {
 			hi++
 		}
 		if hi-lo > enough {
-			refineRun(f, sites, list[lo:hi])
+			p.refineCell(f, sites, list[lo:hi])
 		}
 		lo = hi
 	}
 }
 
-func refineRun(f *frame, sites []float64, run []ranked) {
+func (p packing) refineCell(f *frame, sites []float64, cell []ranked) {
 	b := emptyBounds()
-	for i := range run {
-		x, y, z := f.internal(sites, int(run[i].index))
-		b.add(x, y, z)
+	for _, r := range cell {
+		b.add(f.internal(sites, p.site(r)))
 	}
 	g, ok := b.grid()
 	if !ok {
 		return // all in one place
 	}
-	for i := range run {
-		x, y, z := f.internal(sites, int(run[i].index))
-		run[i].key = g.code(x, y, z)
+	for i, r := range cell {
+		s := p.site(r)
+		x, y, z := f.internal(sites, s)
+		cell[i] = p.pack(0, g.code(x, y, z), s)
 	}
-	if len(run) > 4096 {
-		if sorted := radixSort(run, make([]ranked, len(run))); &sorted[0] != &run[0] {
-			copy(run, sorted)
+	if len(cell) > 4096 {
+		if sorted := radixSort(cell, make([]ranked, len(cell)), p.index); &sorted[0] != &cell[0] {
+			copy(cell, sorted)
 		}
 	} else {
-		slices.SortStableFunc(run, func(a, b ranked) int {
-			switch {
-			case a.key < b.key:
-				return -1
-			case a.key > b.key:
-				return 1
-			}
-			return 0
-		})
+		slices.Sort(cell)
 	}
-	refine(f, sites, run)
+	p.refine(f, sites, cell)
 }
 
 // inChunks calls f for parts of 0..n-1 from as many goroutines as threads.
