@@ -141,7 +141,19 @@ func ListTopics() []string {
 }
 
 // Settings are the words that may follow SET.
-func Settings() []string { return slices.Clone(settings) }
+func Settings() []string { return settingNames() }
 
 // Statements are the words that begin a statement, in the order of HELP.
 func Statements() []string { return lang.StatementWords() }
+
+// ComputedColumns are the names of the columns that relations add to their
+// sites' own, sorted.
+func ComputedColumns() []string {
+	seen := map[string]bool{}
+	for _, d := range relation.All() {
+		for _, c := range d.Computed {
+			seen[c.Name] = true
+		}
+	}
+	return slices.Sorted(maps.Keys(seen))
+}

@@ -7,11 +7,9 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
-	"strings"
 
 	"nearcell/catalog"
 	"nearcell/catalog/column"
-	"nearcell/engine/present"
 	"nearcell/engine/problem"
 	"nearcell/lang"
 )
@@ -54,48 +52,6 @@ func (s *Session) RunFile(ctx context.Context, name string) error {
 	s.running = []string{whole}
 	defer func() { s.running = nil }()
 	return s.Run(ctx, name, string(data), filepath.Dir(name))
-}
-
-// settings are the names that SET knows.
-var settings = []string{"DIGITS", "ROWS"}
-
-var plannedSettings = []string{"CACHE"}
-
-// set is SET name value.
-func (s *Session) set(st *statement, t *lang.Set) error {
-	word := strings.ToUpper(t.Name.Text)
-	switch {
-	case word == "DIGITS":
-		return s.setCount(st, t, &s.digits, present.MaxDigits)
-	case word == "ROWS":
-		return s.setCount(st, t, &s.rowLimit, present.MaxTableRows)
-	case slices.Contains(plannedSettings, word):
-		return problem.NotThereYet(st.at(t), "SET "+word)
-	}
-	p := problem.New("setting", st.at(t.Name), "there is no setting '%s'", t.Name.Text)
-	if near := lang.Nearest(word, settings); near != "" {
-		return p.WithHint("did you mean %s?", near)
-	}
-	return p.WithHint("SET knows %s", listed(settings, 10))
-}
-
-// setCount sets a whole number from 1 to most.
-func (s *Session) setCount(st *statement, t *lang.Set, to *int, most int64) error {
-	refusal := func(at lang.Node) error {
-		return problem.New("setting", st.at(at), "SET %s takes a whole number from 1 to %d", strings.ToUpper(t.Name.Text), most)
-	}
-	if t.Value == nil {
-		return refusal(t)
-	}
-	v, err := s.constant(st, t.Value)
-	if err != nil {
-		return err
-	}
-	if v.Null || v.Type != column.Integer || v.I < 1 || v.I > most {
-		return refusal(t.Value)
-	}
-	*to = int(v.I)
-	return nil
 }
 
 // Check parses and binds scripts and computes nothing. Statements that create

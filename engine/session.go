@@ -31,6 +31,8 @@ type Options struct {
 	KeepGoing bool           // go on after a failing statement
 	Quiet     bool           // no confirmations, no row counts; notes stay
 	Progress  func(done, total int)
+	// CommandLine are the commands and options of the program, for HELP.
+	CommandLine []Switch
 	// Screen gives the characters of a line and the rows that tables may take
 	// where people read them, 0: no limit. It is asked for every result; nil is
 	// for files and pipes, which get everything.

@@ -26,10 +26,10 @@ var clauses = []Clause{
 		"SELECT id, volume FROM CELLS OF hall UNCLIPPED WHERE bounded;"},
 	{"FOR EACH", "FOR EACH column | FOR EACH (column, column)",
 		"Makes one partition for each value, such as an instant or a pass; the rows carry the value. The space of a site that is missing in one of them goes to its neighbours there.",
-		"SELECT t, AVG(temp) WEIGHTED BY volume AS mean FROM CELLS OF readings FOR EACH t WITHIN air GROUP BY t ORDER BY t;"},
+		"SELECT t, AVG(temp) WEIGHTED BY volume AS mean\nFROM CELLS OF readings FOR EACH t WITHIN air GROUP BY t ORDER BY t;"},
 	{"OMITTING", "OMITTING ('id', 'id') BECAUSE 'reason'",
 		"Leaves sites out before the partition, so that their space goes to their neighbours; a note tells of it with the reason. WHERE only chooses the rows that are shown and never changes which sites partition.",
-		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall OMITTING ('L08') BECAUSE 'hangs in the sun';"},
+		"SELECT AVG(temp) WEIGHTED BY volume\nFROM CELLS OF hall OMITTING ('L08') BECAUSE 'hangs in the sun';"},
 	{"MEASURED IN", "MEASURED IN solid | MEASURED IN (solid, solid)",
 		"All sites partition the solid; volumes, areas and sections count inside each of these parts only, with a row for each in the column part: the share of the racks over 8 °C.",
 		"SELECT part, SUM(volume) FROM CELLS OF hall MEASURED IN (racks, aisle) GROUP BY part;"},
@@ -80,7 +80,7 @@ var clauses = []Clause{
 	{"STAMP", "STAMP AT START | INSTANT | END", "What the time of a reading stands for: the start of its interval, its end, or the instant itself.",
 		"SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '1' HOUR METHOD MEAN STAMP AT START;"},
 	{"LONGEST GAP", "LONGEST GAP interval", "Across a longer gap nothing is filled in.",
-		"SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE LONGEST GAP INTERVAL '1' HOUR;"},
+		"SELECT * FROM SERIES OF log BY logger ON t\n  EVERY INTERVAL '15' MINUTE LONGEST GAP INTERVAL '1' HOUR;"},
 	{"BRIDGING", "BRIDGING interval", "A shorter return below the limit does not end an excursion.",
 		"SELECT * FROM EPISODES OF log BY logger ON t FOR temp ABOVE 8 BRIDGING INTERVAL '30' MINUTE;"},
 	{"UNTIL", "UNTIL BELOW value | UNTIL ABOVE value", "The excursion ends at another limit than that at which it begins.",
@@ -114,3 +114,6 @@ func Taking(clause string) []string {
 	}
 	return nouns
 }
+
+// PlannedRow is what a row of a relation that is not there yet is, "" for others.
+func PlannedRow(noun string) string { return planned[noun] }

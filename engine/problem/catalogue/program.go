@@ -6,8 +6,9 @@ var ofTheProgram = []Entry{
 		Code:    "strict",
 		Meaning: "A statement gave a warning, and the program was called with --strict. Its result has been printed.",
 		WayOut:  "Do away with the cause of the warning, or call without --strict.",
-		Example: `CREATE CAMPAIGN far AS (SELECT id, CASE WHEN id = 'L01' THEN 31.5 ELSE x END AS x, y, z FROM hall) WITHIN air;`,
-		Strict:  true,
+		Example: `CREATE CAMPAIGN far AS (
+  SELECT id, CASE WHEN id = 'L01' THEN 31.5 ELSE x END AS x, y, z FROM hall) WITHIN air;`,
+		Strict: true,
 	},
 	{
 		Code:    "memory",

@@ -1,0 +1,210 @@
+package engine
+
+import (
+	"strings"
+
+	"nearcell/engine/present"
+)
+
+// statementEntries are the statements, in the order in which HELP lists them.
+// What may be listed, set and saved is filled in from its own registry.
+func statementEntries() []entry {
+	return append(dataStatements(), sessionStatements()...)
+}
+
+// dataStatements are about questions and what they are put to.
+func dataStatements() []entry {
+	return []entry{
+		{
+			name: "SELECT", also: []string{"QUERY"},
+			syntax: []string{
+				"[WITH name AS (query), …]",
+				"SELECT [DISTINCT] item [AS name], … [FROM source [AS name], …] [WHERE condition]",
+				"  [GROUP BY item, …] [HAVING condition] [UNION [ALL] query]",
+				"  [ORDER BY item [ASC | DESC] [NULLS FIRST | LAST], …] [LIMIT n [OFFSET m]];",
+			},
+			meaning: "Asks a question and prints the answer as a table. A source is a campaign, a table, a view, a (query), or a relation such as CELLS OF hall, computed only as far as the query needs it.",
+			example: "SELECT level, AVG(temp) AS plain, AVG(temp) WEIGHTED BY volume AS by_space\nFROM CELLS OF hall WHERE temp IS NOT NULL GROUP BY level ORDER BY by_space DESC;",
+			see:     []string{"FROM", "JOIN", "WEIGHTED BY", "RELATIONS", "FUNCTIONS"},
+		},
+		{
+			name: "CREATE CAMPAIGN", also: []string{"CAMPAIGN", "CAMPAIGNS"},
+			syntax: []string{
+				"CREATE [OR REPLACE] CAMPAIGN name FROM 'file' | FROM FILES 'pattern' | AS (query)",
+				"  [ID column] [POSITION (x, y, z)] [WITHIN solid] {clause};",
+			},
+			meaning: "Keeps a set of sites: each has a position, an identifier and any attributes. Without ID a column id serves, else the number of the row; without POSITION the columns x, y, z. Whatever the file calls them, they are read as id, x, y, z.",
+			more:    []string{"A campaign has one row for each site. Readings over time belong to a table, which a query joins with the sites."},
+			example: "CREATE OR REPLACE CAMPAIGN hall FROM 'hall.csv' ID id POSITION (x, y, z)\n  WITHIN air TOLERANCE 0.05;",
+			forms:   []form{{"FROM FILES", "CREATE CAMPAIGN again FROM FILES 'hall*.csv';"}},
+			see:     []string{"FILES", "WITHIN", "DUPLICATES", "CREATE TABLE"},
+		},
+		{
+			name: "CREATE TABLE", also: []string{"TABLE", "TABLES"},
+			syntax:  []string{"CREATE [OR REPLACE] TABLE name FROM 'file' | FROM FILES 'pattern' | AS (query) {clause};"},
+			meaning: "Keeps rows, such as the readings of loggers over time. POSITION gives them x, y, z without making the table a campaign.",
+			example: "CREATE OR REPLACE TABLE log FROM 'log.csv' UNITS (temp '°C');",
+			see:     []string{"FILES", "CREATE CAMPAIGN"},
+		},
+		{
+			name: "CREATE SOLID", also: []string{"SOLID"},
+			syntax:  []string{"CREATE [OR REPLACE] SOLID name AS solid;"},
+			meaning: "Keeps a body of space, such as the air of a room, under a name. Campaigns and relations are closed at its walls by WITHIN.",
+			example: "CREATE OR REPLACE SOLID air AS\n  PRISM ((0, 0), (30, 0), (30, 12), (18, 12), (18, 18), (0, 18)) FROM 0 TO 7.5;",
+			see:     []string{"SOLIDS", "WITHIN"},
+		},
+		{
+			name: "CREATE VIEW", also: []string{"VIEW", "VIEWS"},
+			syntax:  []string{"CREATE [OR REPLACE] VIEW name AS (query);"},
+			meaning: "Keeps a query under a name; it is computed anew wherever the name is used. A :name in it has the value of that time.",
+			example: "CREATE VIEW warm AS (SELECT id, temp FROM hall WHERE temp > :upper);\nSELECT COUNT(*) FROM warm;",
+			see:     []string{"WITH", "LET"},
+		},
+		{
+			name: "CREATE FRAME", also: []string{"FRAME", "FRAMES"},
+			syntax:  []string{"CREATE [OR REPLACE] FRAME name MATCHING 'file';"},
+			meaning: "Keeps how the coordinates of a drawing become those of the site, from pairs of points.",
+			example: "CREATE FRAME plan MATCHING 'control.csv';",
+		},
+		{
+			name:    "DROP",
+			syntax:  []string{"DROP CAMPAIGN | TABLE | SOLID | VIEW | FRAME name;", "DROP DIAGRAMS;"},
+			meaning: "Removes a thing from the catalog. The file from which it was made stays.",
+			example: "DROP TABLE log;",
+			forms:   []form{{"DROP FRAME", "DROP FRAME plan;"}, {"DROP DIAGRAMS", "DROP DIAGRAMS;"}},
+		},
+		{
+			name: "LET", also: []string{"VALUE", "PARAMETER"},
+			syntax:  []string{"LET name = value;"},
+			meaning: "Sets a value that statements use as :name. The option --let name=value of the command line goes before it, so that a script runs with other values unchanged.",
+			example: "LET limit = 2 * 4;\nSELECT id, temp FROM hall WHERE temp > :limit;",
+			see:     []string{"LIST VALUES"},
+		},
+		{
+			name: "SAVE", also: []string{"OVERWRITE", "WITH UNITS", "QUOTE FORMULAS"},
+			syntax:  []string{"SAVE query TO 'file' [OVERWRITE] [WITH UNITS] [WITH PROVENANCE] [QUOTE FORMULAS];"},
+			meaning: "Writes the rows of a query to a file, by its ending: " + strings.Join(savedEndings(), ", ") + ". Numbers read back to the same bits. The file gets its name when it is whole, and one that is there is replaced only with OVERWRITE.",
+			more: []string{
+				"WITH UNITS writes the units into the heading: volume [m^3]. QUOTE FORMULAS puts an apostrophe before texts that a spreadsheet would compute. WITH PROVENANCE writes a second file beside it that says where the numbers come from.",
+			},
+			example: "SAVE SELECT id, volume, cx, cy, cz FROM CELLS OF hall TO 'cells.csv' WITH UNITS;",
+			forms: []form{
+				{"WITH PROVENANCE", "SAVE SELECT id FROM hall TO 'sites.csv' WITH PROVENANCE;"},
+				{".parquet", "SAVE SELECT id FROM hall TO 'sites.parquet';"},
+				{".xlsx", "SAVE SELECT id FROM hall TO 'sites.xlsx';"},
+				{".vtu", "SAVE SELECT id FROM CELLS OF hall TO 'cells.vtu';"},
+			},
+		},
+		{
+			name: "EXPLAIN", also: []string{"EXPLAIN MEASURED", "PLAN"},
+			syntax:  []string{"EXPLAIN query;", "EXPLAIN MEASURED query;"},
+			meaning: "Shows how a query will be computed: its steps, the rows and the geometry that each is thought to take. MEASURED runs it and shows what they took.",
+			example: "EXPLAIN SELECT id, volume FROM CELLS OF hall WHERE id = 'L01';",
+			forms:   []form{{"EXPLAIN MEASURED", "EXPLAIN MEASURED SELECT id, volume FROM CELLS OF hall;"}},
+		},
+		{
+			name: "REQUIRE", also: []string{"NONE", "VERDICTS"},
+			syntax:  []string{"REQUIRE 'what' condition;", "REQUIRE 'what' NONE (query);"},
+			meaning: "States a requirement and says whether it is met: PASS, FAIL or NOT DECIDED.",
+			example: "REQUIRE 'A1 nothing above 12 °C' NONE (SELECT id FROM hall WHERE temp > 12);",
+		},
+		{
+			name: "DRAW", also: []string{"SHADED BY", "LIMITS", "SHOWING", "ALONG", "COURSE", "HISTOGRAM", "PROFILE"},
+			syntax: []string{
+				"DRAW SECTION OF campaign AT z = height SHADED BY column [LIMITS (low, high)] TO 'file.svg';",
+				"DRAW CELLS OF campaign SHADED BY column TO 'file.html';",
+				"DRAW COURSE OF (query) ALONG t SHOWING a, b [LIMITS (low, high)] TO 'file.svg';",
+				"DRAW HISTOGRAM OF (query) SHOWING x [WEIGHTED BY w] TO 'file.svg';",
+				"DRAW PROFILE OF campaign FOR column ALONG z TO 'file.svg';",
+			},
+			meaning: "Draws a picture into a file.",
+			example: "DRAW SECTION OF hall AT z = 1.1 SHADED BY temp TO 'floor.svg';",
+		},
+		{
+			name:    "SHOW",
+			syntax:  []string{"SHOW SECTION OF campaign AT z = height SHADED BY column;"},
+			meaning: "Draws the same map as DRAW in the terminal.",
+			example: "SHOW SECTION OF hall AT z = 1.1 SHADED BY temp;",
+		},
+	}
+}
+
+// sessionStatements are about the session, the script and the report.
+func sessionStatements() []entry {
+	return []entry{
+		{
+			name: "LIST", also: listTopicNames(),
+			syntax:  []string{"LIST word;"},
+			meaning: "Lists what there is, in the catalog and in the language. These are the words.",
+			more:    listLines(),
+			example: "LIST GEOMETRY;",
+			forms:   plannedListForms(),
+			see:     []string{"DESCRIBE"},
+		},
+		{
+			name:    "DESCRIBE",
+			syntax:  []string{"DESCRIBE name;", "DESCRIBE CELLS;", "DESCRIBE CELLS OF campaign;"},
+			meaning: "Lists the columns of a campaign, a table, a view or a relation, with their types, units and meanings, and says where the data came from; of a solid its volume, surface and box.",
+			example: "DESCRIBE hall;",
+			see:     []string{"LIST", "DESCRIBE FILE"},
+		},
+		{
+			name:    "DESCRIBE FILE",
+			syntax:  []string{"DESCRIBE FILE 'file';"},
+			meaning: "Looks at a file before it is imported: how it seems to be written, its first rows, and a CREATE statement ready to paste.",
+			example: "DESCRIBE FILE 'log.csv';",
+			see:     []string{"FILES"},
+		},
+		{
+			name:    "RUN",
+			syntax:  []string{"RUN 'file.ncell';"},
+			meaning: "Runs the statements of another script, whose relative paths start at its own folder.",
+			example: "RUN 'small.ncell';",
+			see:     []string{"COMMAND LINE"},
+		},
+		{
+			name: "SET", also: []string{"SETTING"},
+			syntax:  settingSyntax(),
+			meaning: "Changes a setting of the session.",
+			example: "SET DIGITS 8;",
+			see:     []string{"SETTINGS", "LIST SETTINGS"},
+		},
+		{
+			name:    "TITLE",
+			syntax:  []string{"TITLE 'text';"},
+			meaning: "Gives the report its title.",
+			example: "TITLE 'Hall 4, summer mapping';",
+		},
+		{
+			name:    "TEXT",
+			syntax:  []string{"TEXT 'text';"},
+			meaning: "Writes a paragraph into the report.",
+			example: "TEXT 'The door to the dock stood open at noon.';",
+		},
+		{
+			name:    "HELP",
+			syntax:  []string{"HELP [topic];", "HELP ERROR;"},
+			meaning: "Explains a statement, a relation, a clause, a function, a setting, the code of an error, or a guide such as CAUTIONS. HELP ERROR explains the last error of the session.",
+			example: "HELP WEIGHTED BY;",
+		},
+		{
+			name: "QUIT", also: []string{"EXIT"},
+			syntax:  []string{"QUIT;"},
+			meaning: "Ends the prompt or the script.",
+			example: "QUIT;",
+		},
+	}
+}
+
+// savedEndings are the endings that SAVE writes, in the order of the formats.
+func savedEndings() []string {
+	var list []string
+	for _, f := range present.Formats {
+		for ending, format := range savable {
+			if format == f {
+				list = append(list, ending)
+			}
+		}
+	}
+	return list
+}
