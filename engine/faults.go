@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"strings"
 	"unicode"
+	"unicode/utf8"
 
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
@@ -151,14 +152,26 @@ func faultLine(f reader.Fault) string {
 	if f.Source == "" || f.Column == 0 {
 		return head + "\n"
 	}
-	start := byteOffset(f.Source, f.Column-1)
-	end := start + len(f.Text)
-	if end > len(f.Source) || f.Kind == reader.FieldCount {
-		end = len(f.Source)
+	line := printable(f.Source)
+	start := byteOffset(line, f.Column-1)
+	end := start + len(printable(f.Text))
+	if end > len(line) || f.Kind == reader.FieldCount {
+		end = len(line)
 	}
-	marked := lang.Caret("", f.Source, lang.Span{Start: start, End: end}, "")
+	marked := lang.Caret("", line, lang.Span{Start: start, End: end}, "")
 	_, below, _ := strings.Cut(marked, "\n")
 	return head + "\n" + strings.TrimRight(below, "\n") + "\n"
+}
+
+// printable writes a line of a file with as many characters and nothing that a
+// terminal would obey or trip over.
+func printable(s string) string {
+	return strings.Map(func(r rune) rune {
+		if unicode.IsControl(r) && r != '\t' {
+			return utf8.RuneError
+		}
+		return r
+	}, string([]rune(s)))
 }
 
 // byteOffset is where the character number n (from 0) of a line begins.

@@ -79,6 +79,9 @@ func patternProblem(err error, at problem.Place, pattern string) error {
 // zoneProblem names the nearest zones.
 func zoneProblem(err error, at problem.Place, zone string) error {
 	p := problem.New("clause", at, "there is no time zone '%s'", zone).Because(err)
+	if len(zone) <= 5 && !strings.Contains(zone, "/") && zone == strings.ToUpper(zone) { // CEST, MEZ: of many places, or of none
+		return p.WithHint("%s", zoneForms)
+	}
 	names := timeform.ZoneNames()
 	if near := lang.Nearest(zone, names); near != "" {
 		return p.WithHint("did you mean '%s'?", near)
@@ -95,8 +98,10 @@ func zoneProblem(err error, at problem.Place, zone string) error {
 			}
 		}
 	}
-	return p.WithHint("a zone is written as 'Europe/Zurich' or, where the clock never changes, as an offset: '+01:00'")
+	return p.WithHint("%s", zoneForms)
 }
+
+const zoneForms = "a zone is written as 'Europe/Zurich' or, where the clock never changes, as an offset: '+01:00'"
 
 // readPreamble takes PREAMBLE (column AFTER 'text', …).
 func (c *clauses) readPreamble(r *lang.PreambleReading) error {
