@@ -74,10 +74,6 @@ func refuse(st *statement, tree lang.Statement) error {
 		if t.Kind == lang.Diagrams || t.Kind == lang.FrameOb {
 			what = "DROP " + string(t.Kind)
 		}
-	case *lang.Save:
-		if t.WithProvenance {
-			what = "SAVE … WITH PROVENANCE"
-		}
 	}
 	if what == "" {
 		return nil

@@ -58,6 +58,13 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	if err != nil {
 		return fileProblem(err, st.at(t.To), t.To.Value, "be written")
 	}
+	if t.WithProvenance {
+		if err := s.saveProvenance(st, t, rows); err != nil {
+			return err
+		}
+	} else {
+		noteStaleProvenance(st, t)
+	}
 	s.say("%s saved to %s, %s", plural(rows, "row"), t.To.Value, st.seconds())
 	return nil
 }

@@ -24,6 +24,7 @@ import (
 // Options are what a session does not ask the language for.
 type Options struct {
 	Out, Err  io.Writer
+	Program   string         // name and version, for provenance
 	Format    present.Format // of printed results; "": table
 	Threads   int            // 0: all cores
 	Memory    int64          // bytes for diagrams that are kept, 0: a default

@@ -26,22 +26,22 @@ type flags struct {
 }
 
 func (f *flags) add(set *pflag.FlagSet) {
-	set.StringVar(&f.catalog, "catalog", ".nearcell", "folder of the catalog")
+	set.StringVar(&f.catalog, "catalog", ".nearcell", "the folder `DIR` holds the catalog")
 	set.BoolVar(&f.noCatalog, "no-catalog", false, "keep nothing")
-	set.StringVar(&f.as, "as", "", "how results are written: table, csv, json, jsonl (default table, or by the ending of --to)")
-	set.StringVar(&f.to, "to", "", "write results to a file")
-	set.StringArrayVar(&f.let, "let", nil, "name=value: sets :name; wins over LET")
+	set.StringVar(&f.as, "as", "", "how results are written, as `FORMAT` table, csv, json or jsonl (default table, or by the ending of --to)")
+	set.StringVar(&f.to, "to", "", "write results to `FILE`")
+	set.StringArrayVar(&f.let, "let", nil, "`name=value` sets :name; wins over LET")
 	set.BoolVar(&f.strict, "strict", false, "a warning fails its statement")
 	set.BoolVar(&f.keepGoing, "keep-going", false, "go on after a failing statement; the exit code still tells")
-	set.IntVar(&f.threads, "threads", 0, "threads to use (default all cores)")
-	set.StringVar(&f.memory, "memory", "", "memory that kept diagrams may use, such as 8GiB (default 2GiB)")
+	set.IntVar(&f.threads, "threads", 0, "use `n` threads (default all cores)")
+	set.StringVar(&f.memory, "memory", "", "memory that kept diagrams may use, a `SIZE` such as 8GiB (default 2GiB)")
 	set.BoolVar(&f.quiet, "quiet", false, "no confirmations and row counts; notes and warnings stay")
 	set.BoolVar(&f.plain, "plain", false, "no colour, no progress")
 }
 
 // options are the engine's, after the values have been looked at.
 func (f *flags) options() (engine.Options, error) {
-	o := engine.Options{Strict: f.strict, KeepGoing: f.keepGoing, Quiet: f.quiet, Threads: f.threads}
+	o := engine.Options{Program: "nearcell " + version, Strict: f.strict, KeepGoing: f.keepGoing, Quiet: f.quiet, Threads: f.threads}
 	if f.threads < 0 {
 		return o, usage("--threads takes a number of 1 or more")
 	}
