@@ -24,12 +24,15 @@ const (
 	margin = 2
 	// leastPiece is the least that a candidate is cut to.
 	leastPiece = 4
+	// leastWidth is what the library is told of a narrower terminal: it never
+	// ends where the prompt alone takes a line.
+	leastWidth = 12
 )
 
 // width is the terminal's, and never less than what is shown was cut to.
 func (a *adapter) width() int {
 	w, _ := a.size()
-	return max(w, int(a.need.Load()))
+	return max(w, int(a.need.Load()), leastWidth)
 }
 
 // Do implements readline.AutoCompleter. A panic here would be one in the

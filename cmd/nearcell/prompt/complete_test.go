@@ -6,6 +6,7 @@ import (
 	"io"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -13,6 +14,7 @@ import (
 
 	"nearcell/catalog"
 	"nearcell/engine"
+	"nearcell/engine/relation"
 )
 
 // session is one at an empty catalog in memory, fed with a script.
@@ -61,22 +63,66 @@ func TestComplete(t *testing.T) {
 	})
 }
 
+// shown writes candidates on one line. What a registry lists in full stands there
+// by its name, so that a new function or relation changes no story.
 func shown(typed string, list []string) string {
 	var b strings.Builder
 	if typed != "" {
 		fmt.Fprintf(&b, "typed: %s\n", typed)
 	}
+	for _, whole := range []struct {
+		name   string
+		words  []string
+		suffix string
+	}{
+		{"every function", engine.Functions(), "("},
+		{"every relation", engine.Nouns(), " OF "},
+		{"every relation", engine.Nouns(), ""},
+		{"every column of CELLS", columnsOf("CELLS"), ""},
+		{"every topic of LIST", engine.ListTopics(), ""},
+		{"every setting", engine.Settings(), " "},
+		{"every clause of CELLS", engine.ClausesOf("CELLS"), " "},
+		{"every clause of CONTACTS", engine.ClausesOf("CONTACTS"), " "},
+		{"every statement", engine.Statements(), " "},
+	} {
+		list = named(list, whole.words, whole.suffix, "<"+whole.name+">")
+	}
 	if len(list) == 0 {
 		b.WriteString("nothing\n")
 	}
-	for i, text := range list {
-		if i > 0 {
-			b.WriteString(" | ")
-		}
-		b.WriteString(strings.TrimRight(text, " "))
-		if strings.HasSuffix(text, " ") {
-			b.WriteString("␣")
+	b.WriteString(strings.ReplaceAll(strings.Join(list, " | ")+" | ", "  | ", "␣ | "))
+	return strings.TrimSuffix(b.String(), " | ") + "\n"
+}
+
+// columnsOf are the columns that a relation computes.
+func columnsOf(noun string) []string {
+	d, ok := relation.Lookup(noun)
+	if !ok {
+		return nil
+	}
+	var names []string
+	for _, c := range d.Computed {
+		names = append(names, c.Name)
+	}
+	return names
+}
+
+// named puts one name in the place of words that are all in a list.
+func named(list, words []string, suffix, name string) []string {
+	for _, w := range words {
+		if !slices.Contains(list, w+suffix) {
+			return list
 		}
 	}
-	return strings.TrimRight(b.String(), "\n") + "\n"
+	var kept []string
+	for _, x := range list {
+		in := slices.ContainsFunc(words, func(w string) bool { return w+suffix == x })
+		switch {
+		case !in:
+			kept = append(kept, x)
+		case !slices.Contains(kept, name):
+			kept = append(kept, name)
+		}
+	}
+	return kept
 }

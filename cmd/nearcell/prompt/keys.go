@@ -118,11 +118,13 @@ var edits = map[rune]bool{
 	readline.MetaBackward: true, readline.MetaForward: true, readline.MetaDelete: true, readline.MetaBackspace: true,
 }
 
-// filter says what a key does; false drops it. empty tells that the line is.
-func filter(r rune, empty bool, suspend func()) (rune, bool) {
+// filter says what a key does in a line of so many characters; false drops it.
+func filter(r rune, length int, suspend func()) (rune, bool) {
 	switch {
 	case r == keyDelete:
-		return readline.CharDelete, !empty
+		return readline.CharDelete, length > 0
+	case r == readline.CharTranspose: // it dies of a line with one character
+		return r, length > 1
 	case r == readline.CharCtrlZ:
 		suspend()
 		return r, false

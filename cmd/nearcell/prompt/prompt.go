@@ -48,7 +48,7 @@ type prompt struct {
 	keys    chan struct{}
 	lines   chan typedLine
 	signals chan os.Signal
-	empty   bool // the line is; known to the library's goroutine only
+	length  int // of the line; known to the library's goroutine only
 }
 
 // typedLine is what the library gives for a line.
@@ -68,7 +68,7 @@ func Run(o Options) (err error) {
 	defer func() { _ = term.Restore(fd, before) }() // it is gone if this fails
 	p := &prompt{
 		o: o, history: openHistory(o.Catalog), words: o.Terminal.err,
-		keys: make(chan struct{}), lines: make(chan typedLine), signals: make(chan os.Signal, 4), empty: true,
+		keys: make(chan struct{}), lines: make(chan typedLine), signals: make(chan os.Signal, 4),
 	}
 	signal.Notify(p.signals, endingSignals...)
 	defer signal.Stop(p.signals)
@@ -106,11 +106,22 @@ func (p *prompt) open(before *term.State) error {
 		return err
 	}
 	exit := func() error { return term.Restore(fd, before) }
-	config := &readline.Config{
+	config := p.config(&keys{in: p.o.Terminal.in}, screen, enter, exit)
+	edit, err := readline.NewEx(config)
+	p.edit = edit
+	if err == nil {
+		err = p.loadHistory()
+	}
+	return err
+}
+
+// config sets the line editor up.
+func (p *prompt) config(in io.ReadCloser, out io.Writer, enter, exit func() error) *readline.Config {
+	return &readline.Config{
 		Prompt:                 ask,
-		Stdin:                  &keys{in: p.o.Terminal.in},
-		Stdout:                 screen,
-		Stderr:                 screen,
+		Stdin:                  in,
+		Stdout:                 out,
+		Stderr:                 out,
 		HistoryLimit:           historyLines + 1,
 		DisableAutoSaveHistory: true,
 		HistorySearchFold:      true,
@@ -122,19 +133,16 @@ func (p *prompt) open(before *term.State) error {
 		FuncMakeRaw:            enter,
 		FuncExitRaw:            exit,
 		FuncFilterInputRune: func(r rune) (rune, bool) {
-			return filter(r, p.empty, func() { suspend(exit, enter) })
+			if op := p.edit.Operation; r == readline.CharKill && op.IsInCompleteMode() {
+				op.ExitCompleteMode(false) // it would show candidates that it has forgotten, and die of it
+			}
+			return filter(r, p.length, func() { suspend(exit, enter) })
 		},
-		Listener: readline.FuncListener(func(line []rune, pos int, _ rune) ([]rune, int, bool) {
-			p.empty = len(line) == 0
+		Listener: readline.FuncListener(func(line []rune, _ int, _ rune) ([]rune, int, bool) {
+			p.length = len(line)
 			return nil, 0, false
 		}),
 	}
-	edit, err := readline.NewEx(config)
-	p.edit = edit
-	if err == nil {
-		err = p.loadHistory()
-	}
-	return err
 }
 
 // loadHistory gives the library what was asked before. It is loaded anew after

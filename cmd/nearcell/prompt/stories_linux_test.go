@@ -3,6 +3,7 @@ package prompt
 import (
 	"fmt"
 	"os"
+	"os/exec"
 	"path/filepath"
 	"strings"
 	"syscall"
@@ -241,4 +242,26 @@ func TestWideTable(t *testing.T) {
 	p.asked(ask)
 	p.send(ctrlD)
 	p.ends(0)
+}
+
+// Who reads only the first line ends the program without a word.
+func TestClosedPipe(t *testing.T) {
+	folder := hall(t)
+	write(t, folder, "long.ncell", "CREATE TABLE n AS (VALUES (1), (2), (3), (4), (5), (6), (7), (8), (9), (10));\n"+
+		strings.Repeat("SELECT a.column1, b.column1, c.column1, d.column1 FROM n a CROSS JOIN n b CROSS JOIN n c CROSS JOIN n d;\n", 4))
+	run := exec.Command("sh", "-c", `"$0" --no-catalog --as csv run long.ncell | head -1`, built(t))
+	run.Dir = folder
+	var out, said strings.Builder
+	run.Stdout, run.Stderr = &out, &said
+	if err := run.Run(); err != nil {
+		t.Fatalf("%v\n%s", err, said.String())
+	}
+	if strings.Count(out.String(), "\n") != 1 {
+		t.Errorf("not one line: %q", out.String())
+	}
+	for _, word := range []string{"panic", "goroutine", "broken pipe", "input:", "\x1b"} {
+		if strings.Contains(said.String(), word) {
+			t.Errorf("it said\n%s", said.String())
+		}
+	}
 }
