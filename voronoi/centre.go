@@ -4,9 +4,12 @@ package voronoi
 type centre struct {
 	o    Vec   // seen from the corner with the lowest number,
 	from int32 // which is this
-	out  uint8 // bit w is set when it lies beyond side w of the box
-	bad  bool  // it could not be computed: overflow or underflow
+	out  uint8 // bit w is set when it lies beyond side w of the box; spoilt
 }
+
+// spoilt is the bit of centre.out that says that it could not be computed: something
+// was too large or too small.
+const spoilt = 1 << 7
 
 // plainKappa2 is the square of the ratio |u||v||w| / (u·v×w) of the edges at a corner
 // from which a tetrahedron is too flat for plain arithmetic. The centre errs by up to

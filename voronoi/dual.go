@@ -94,7 +94,10 @@ func (g *dual) computeCentres(lo, hi int) {
 			b, c = c, b
 		}
 		o := circumcentre(g.at[a], g.at[b], g.at[c], g.at[d])
-		g.centres[i] = centre{o: o, from: a, bad: !finite(o)}
+		g.centres[i] = centre{o: o, from: a}
+		if !finite(o) {
+			g.centres[i].out = spoilt
+		}
 	}
 }
 
@@ -105,7 +108,7 @@ func (g *dual) enclose(lo, hi, origin Vec, labels [6]int32, threads int) {
 		for i := from; i < to; i++ {
 			c := &g.centres[i]
 			l, h := g.localBox(c.from)
-			c.out = outcode(c.o, l, h)
+			c.out |= outcode(c.o, l, h)
 		}
 	})
 	g.corners, g.awkward = map[int32][]Vec{}, map[int32]bool{}

@@ -122,7 +122,7 @@ func (w *walker) whole(k wants) {
 		f := &w.faces[i]
 		s.addFace(f.q, sub(w.g.at[f.q], w.own), w.loop[f.from:f.to], k)
 	}
-	s.threes = len(w.loop)
+	s.threes = w.vertices
 }
 
 // shape is the number of faces, edges and vertices, if every face counts and no edge

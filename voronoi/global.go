@@ -72,7 +72,7 @@ func (b *builder) take(cell int32, k wants) (summed, bounded bool) {
 	p := d.tree.Point(cell)
 	at := add(p, d.origin)
 	if d.solid == nil {
-		if !w.open && !w.spoilt && w.far2 <= farShare2*w.nearest2() {
+		if w.sound() {
 			w.whole(k)
 			return true, true
 		}
@@ -81,7 +81,7 @@ func (b *builder) take(cell int32, k wants) (summed, bounded bool) {
 		b.known = false
 		return false, bounded
 	}
-	if !w.open && !w.spoilt && b.inSolid(at) && w.far2 <= farShare2*w.nearest2() {
+	if w.sound() && b.inSolid(at) {
 		w.whole(k)
 		return true, true
 	}
@@ -115,8 +115,12 @@ func (b *builder) inSolid(at Vec) bool {
 // clippable tells whether the star at hand can be cut by the box face by face.
 func (w *walker) clippable() bool {
 	lo, hi := w.g.localBox(w.p)
-	return !w.open && !w.spoilt && !w.g.awkward[w.p] && w.far2 <= farShare2*w.nearest2() &&
-		lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
+	return w.sound() && !w.g.awkward[w.p] && lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
+}
+
+// sound tells whether the vertices of the star at hand can be relied on.
+func (w *walker) sound() bool {
+	return !w.open && w.any&spoilt == 0 && w.far2 <= farShare2*w.nearest2()
 }
 
 // nearest2 is the squared distance to the nearest site, which is a neighbour.

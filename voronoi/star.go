@@ -1,7 +1,7 @@
 package voronoi
 
 import (
-	"slices"
+	"math"
 
 	"nearcell/voronoi/index"
 	"nearcell/voronoi/polyhedron"
@@ -14,16 +14,16 @@ type walker struct {
 	seen  []uint32 // by point: the stamp of the last star that it was in
 
 	// The star at hand.
-	p      int32
-	own    Vec
-	faces  []face
-	loop   []Vec   // Voronoi vertices around each face, seen from p
-	key    []int32 // of each, the point that its facet to the next one has beside p and q
-	out    []uint8 // of each, the outcode
-	open   bool    // p lies on the convex hull
-	spoilt bool    // a vertex could not be computed
-	any    uint8   // all outcodes together
-	far2   float64 // squared distance of the farthest vertex
+	p     int32
+	own   Vec
+	faces []face
+	loop  []Vec   // Voronoi vertices around each face, seen from p
+	out   []uint8 // of each, the outcode
+	open  bool    // p lies on the convex hull
+	any   uint8   // all outcodes together
+	// vertices is how many there are in the loops.
+	vertices int
+	far2     float64 // squared distance of the farthest vertex
 
 	// The part of the cell in the box: see boxed.go.
 	lo, hi  Vec // seen from p
@@ -80,9 +80,9 @@ func (w *walker) star(p int32) {
 	g := w.g
 	w.stamp++
 	w.p, w.own = p, g.at[p]
-	w.faces, w.loop, w.key, w.out = w.faces[:0], w.loop[:0], w.key[:0], w.out[:0]
-	w.open, w.spoilt, w.any, w.far2 = false, false, 0, 0
-	w.seen[p] = w.stamp
+	w.faces, w.loop, w.out = w.faces[:0], w.loop[:0], w.out[:0]
+	w.open, w.any, w.far2, w.vertices = false, 0, 0, 0
+	w.seen[p], w.seen[0] = w.stamp, w.stamp // the ghost is no neighbour
 	begin, _ := g.t.PointTet(p)
 	v, _ := g.t.Record(begin)
 	ip := corner(v, p)
@@ -104,16 +104,10 @@ func (w *walker) star(p int32) {
 	}
 }
 
+// corner is the place of p among the corners, found without a branch: the difference
+// in bits less one is negative only where there is none.
 func corner(v *[4]int32, p int32) uint8 {
-	switch p {
-	case v[0]:
-		return 0
-	case v[1]:
-		return 1
-	case v[2]:
-		return 2
-	}
-	return 3
+	return uint8(((v[1]^p)-1)>>31&1 | ((v[2]^p)-1)>>31&2 | ((v[3]^p)-1)>>31&3)
 }
 
 func (w *walker) discover(q int32, tet uint32, ip, iq uint8) {
@@ -126,32 +120,31 @@ func (w *walker) around(i int) {
 	g, p, q := w.g, w.p, w.faces[i].q
 	tet, ip, iq := w.faces[i].tet, w.faces[i].ip, w.faces[i].iq
 	begin := tet
-	from, lowest := len(w.loop), 0
-	real := uint32(len(g.centres))
+	from, lowest, least := len(w.loop), 0, int32(math.MaxInt32)
+	loop, out, own, any, far2 := w.loop, w.out, w.own, w.any, w.far2
+	seen, stamp, centres, at := w.seen, w.stamp, g.centres, g.at
 	v, n := g.t.Record(tet)
 	for {
 		xy := &afterPair[ip&3][iq&3]
 		x, y := xy[0]&3, xy[1]&3
-		key := v[y]
-		if tet >= real {
+		key := v[y] // the third point of the facet towards the next vertex
+		if key < least {
+			least, lowest = key, len(loop)-from
+		}
+		if int(tet) >= len(centres) {
 			w.open = true
-			w.loop, w.out = append(w.loop, Vec{}), append(w.out, 0)
+			loop, out = append(loop, Vec{}), append(out, 0)
 		} else {
-			c := &g.centres[tet]
-			a := &g.at[c.from]
-			o := Vec{X: c.o.X + (a.X - w.own.X), Y: c.o.Y + (a.Y - w.own.Y), Z: c.o.Z + (a.Z - w.own.Z)}
-			w.loop, w.out = append(w.loop, o), append(w.out, c.out)
-			w.any |= c.out
-			w.spoilt = w.spoilt || c.bad
-			if d := float64(o.X*o.X) + float64(o.Y*o.Y) + float64(o.Z*o.Z); d > w.far2 {
-				w.far2 = d
+			c := &centres[tet]
+			a := &at[c.from]
+			o := Vec{X: c.o.X + (a.X - own.X), Y: c.o.Y + (a.Y - own.Y), Z: c.o.Z + (a.Z - own.Z)}
+			loop, out = append(loop, o), append(out, c.out)
+			any |= c.out
+			if d := float64(o.X*o.X) + float64(o.Y*o.Y) + float64(o.Z*o.Z); d > far2 {
+				far2 = d
 			}
 		}
-		w.key = append(w.key, key)
-		if key < w.key[from+lowest] {
-			lowest = len(w.key) - 1 - from
-		}
-		if w.seen[key] != w.stamp && key != 0 {
+		if seen[key] != stamp {
 			w.discover(key, tet, ip, y)
 		}
 		next := n[x]
@@ -161,17 +154,13 @@ func (w *walker) around(i int) {
 		v, n = g.t.Record(tet)
 		ip, iq = corner(v, p), corner(v, q)
 	}
-	w.faces[i].from, w.faces[i].to = int32(from), int32(len(w.loop))
-	if lowest > 0 {
-		rotate(w.loop[from:], lowest)
-		rotate(w.key[from:], lowest)
-		rotate(w.out[from:], lowest)
+	w.loop, w.out, w.any, w.far2 = loop, out, any, far2
+	w.vertices += len(loop) - from
+	f := &w.faces[i]
+	f.from, f.to = int32(from), int32(len(w.loop))
+	if lowest > 0 { // begin there: the first ones once more behind the others
+		w.loop = append(w.loop, w.loop[from:from+lowest]...)
+		w.out = append(w.out, w.out[from:from+lowest]...)
+		f.from, f.to = f.from+int32(lowest), f.to+int32(lowest)
 	}
-}
-
-// rotate moves entry k to the front.
-func rotate[T any](s []T, k int) {
-	slices.Reverse(s[:k])
-	slices.Reverse(s[k:])
-	slices.Reverse(s)
 }
