@@ -180,6 +180,7 @@ func (a *app) inSession(f func(context.Context, *engine.Session) error) error {
 	}
 	t := a.terminal()
 	options.Err, options.Progress = a.words(t), t.Progress()
+	options.CommandLine = switches()
 	if a.flags.to == "" {
 		options.Screen = t.Screen(false)
 	}

@@ -30,7 +30,7 @@ func (f *flags) add(set *pflag.FlagSet) {
 	set.BoolVar(&f.noCatalog, "no-catalog", false, "keep nothing")
 	set.StringVar(&f.as, "as", "", "how results are written, as `FORMAT` table, csv, json or jsonl (default table, or by the ending of --to)")
 	set.StringVar(&f.to, "to", "", "write results to `FILE`")
-	set.StringArrayVar(&f.let, "let", nil, "`name=value` sets :name; wins over LET")
+	set.StringArrayVar(&f.let, "let", nil, "sets a value, `name=value`, that statements read as :name; wins over LET")
 	set.BoolVar(&f.strict, "strict", false, "a warning fails its statement")
 	set.BoolVar(&f.keepGoing, "keep-going", false, "go on after a failing statement; the exit code still tells")
 	set.IntVar(&f.threads, "threads", 0, "use `n` threads (default all cores)")

@@ -34,7 +34,10 @@ func manual(w io.Writer, root *cobra.Command) error {
 		}
 	}
 	p.heading("OPTIONS")
-	root.PersistentFlags().VisitAll(func(f *pflag.Flag) { p.item(flagText(f), f.Usage) })
+	root.PersistentFlags().VisitAll(func(f *pflag.Flag) {
+		_, usage := pflag.UnquoteUsage(f)
+		p.item(flagText(f), usage)
+	})
 	p.language()
 	p.heading("EXIT STATUS")
 	p.item("0", "all went well")
@@ -127,8 +130,8 @@ func flagText(f *pflag.Flag) string {
 	if f.Shorthand != "" {
 		text = "-" + f.Shorthand + ", " + text
 	}
-	if f.Value.Type() != "bool" {
-		text += " " + f.Value.Type()
+	if name, _ := pflag.UnquoteUsage(f); name != "" {
+		text += " " + name
 	}
 	return text
 }
