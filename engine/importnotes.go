@@ -52,7 +52,7 @@ func importNotes(r *reader.Result, origin string) []string {
 	each(func(f *reader.FileFacts) bool { return f.TrailingDelimiter },
 		"the heading ends with a delimiter; the column without a name was dropped")
 	each(func(f *reader.FileFacts) bool { return f.TrailingFields },
-		"every row ends with a delimiter and nothing behind it; that was dropped")
+		"rows end with a delimiter that the heading has not, and nothing behind it; that was dropped")
 	for _, c := range f.UnitConflicts {
 		add("the heading gives '%s' the unit %s, UNITS says %s", c.Column, c.Heading, c.Said)
 	}

@@ -106,7 +106,11 @@ func (im *importer) fileColumns() int { return len(im.columns) - len(im.o.Preamb
 // recordFault judges the record that was just read.
 func (im *importer) recordFault(s *scanner, f *file) (reader.Fault, bool) {
 	n := len(f.head.names)
-	return s.recordFault(f.clean, n+f.trailing, n+f.trailing+f.head.extra)
+	x, bad := s.recordFault(f.clean, n, n+f.trailing+f.head.extra)
+	if x.Kind == reader.FieldCount && f.trailing > 0 {
+		x.Expected = n
+	}
+	return x, bad
 }
 
 // tick is called for every record: every so often it looks whether to go on.

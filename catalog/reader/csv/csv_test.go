@@ -12,11 +12,17 @@ import (
 
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
+	"nearcell/catalog/reader/timeform"
 )
 
 // TestStories runs the golden stories of testdata/stories. The command read takes a
 // file and prints what became of it. \r, \t and \xNN in the file stand for those
 // bytes; the options are those of reader.Options by short names, and
+//
+//	time=(column, pattern, zone), preamble=(column, text)  \_ stands for a blank
+//	encoding=…
+//
+// The command files takes several, each behind a line "== name".
 //
 //	crlf     every line ends with CR LF
 //	unended  the last line has no line break
@@ -26,7 +32,7 @@ import (
 func TestStories(t *testing.T) {
 	datadriven.Walk(t, "testdata/stories", func(t *testing.T, path string) {
 		datadriven.RunTest(t, path, func(t *testing.T, d *datadriven.TestData) string {
-			if d.Cmd != "read" {
+			if d.Cmd != "read" && d.Cmd != "files" {
 				t.Fatalf("no such command: %s", d.Cmd)
 			}
 			return story(t, d)
@@ -48,15 +54,26 @@ func story(t *testing.T, d *datadriven.TestData) string {
 	if strings.Contains(text, `\`) {
 		text = unescape(t, text)
 	}
+	sources := []*reader.Source{{Name: "f.csv", Data: []byte(text)}}
+	if d.Cmd == "files" {
+		sources = nil
+		for _, part := range strings.Split("\n"+text, "\n== ")[1:] {
+			name, data, _ := strings.Cut(part, "\n")
+			sources = append(sources, &reader.Source{Name: name, Data: []byte(data)})
+		}
+	}
 	var b strings.Builder
 	o := storyOptions(t, d)
 	if d.HasArg("refused") {
 		o.Refused = func(line int, raw []byte, f reader.Fault) error {
+			if d.Cmd == "files" {
+				b.WriteString(f.File + ": ")
+			}
 			fmt.Fprintf(&b, "refused line %d, %d:%d %s: %q\n", line, f.Line, f.Column, f.Kind, raw)
 			return nil
 		}
 	}
-	r, err := Reader{}.Read(context.Background(), &reader.Source{Name: "f.csv", Data: []byte(text)}, o)
+	r, err := Reader{}.ReadFiles(context.Background(), sources, o)
 	var faults *reader.Faults
 	switch {
 	case errors.As(err, &faults):
@@ -121,6 +138,22 @@ func storyOptions(t *testing.T, d *datadriven.TestData) reader.Options {
 			for i := 0; i+1 < len(a.Vals); i += 2 {
 				o.Units = append(o.Units, reader.ColumnUnit{Column: a.Vals[i], Unit: column.ParseUnit(a.Vals[i+1])})
 			}
+		case "time":
+			form, err := timeform.Parse(strings.ReplaceAll(a.Vals[1], `\_`, " "))
+			if err != nil {
+				t.Fatal(err)
+			}
+			c := reader.TimeColumn{Column: a.Vals[0], Form: form}
+			if len(a.Vals) > 2 {
+				if c.Zone, err = timeform.LoadZone(a.Vals[2]); err != nil {
+					t.Fatal(err)
+				}
+			}
+			o.Times = append(o.Times, c)
+		case "preamble":
+			o.Preamble = append(o.Preamble, reader.PreambleField{Column: a.Vals[0], After: strings.ReplaceAll(a.Vals[1], `\_`, " ")})
+		case "encoding":
+			o.Encoding = reader.Encoding(a.Vals[0])
 		case "crlf", "unended", "bom", "refused", "facts":
 		default:
 			t.Fatalf("no such option: %s", a.Key)
@@ -131,6 +164,9 @@ func storyOptions(t *testing.T, d *datadriven.TestData) reader.Options {
 
 func printFaults(b *strings.Builder, faults *reader.Faults) {
 	for _, f := range faults.List {
+		if f.File != "f.csv" {
+			b.WriteString(f.File + ": ")
+		}
 		fmt.Fprintf(b, "%d:%d %s", f.Line, f.Column, f.Kind)
 		if f.Got != 0 || f.Expected != 0 {
 			fmt.Fprintf(b, " (got %d, expected %d)", f.Got, f.Expected)
@@ -140,6 +176,11 @@ func printFaults(b *strings.Builder, faults *reader.Faults) {
 		}
 		if f.Field != 0 {
 			fmt.Fprintf(b, ", field %d %q %q", f.Field, f.FieldName, f.Text)
+		} else if f.Text != "" {
+			fmt.Fprintf(b, ", %q", f.Text)
+		}
+		if f.Detail != "" {
+			fmt.Fprintf(b, ", %s", f.Detail)
 		}
 		b.WriteByte('\n')
 		if f.Column > 0 {
@@ -187,7 +228,11 @@ func printFacts(b *strings.Builder, r *reader.Result, all bool) {
 			f.Rows, f.Bytes, f.Lines, f.Blank, f.Refused, f.Delimiter, f.BOM, f.CRLF, f.Missing)
 	}
 	for _, s := range f.StayedText {
-		fmt.Fprintf(b, "stayed text: %s, reason %d, %d not numeric, first %q on line %d\n", s.Column, s.Reason, s.NotNumeric, s.FirstText, s.FirstLine)
+		fmt.Fprintf(b, "stayed text: %s, reason %d, %d not numeric, first %q on line %d", s.Column, s.Reason, s.NotNumeric, s.FirstText, s.FirstLine)
+		if s.Pattern != "" {
+			fmt.Fprintf(b, ", pattern %s, or %q", s.Pattern, s.Other)
+		}
+		b.WriteByte('\n')
 	}
 	for _, u := range f.UnitConflicts {
 		fmt.Fprintf(b, "unit of %s: heading %s, said %s\n", u.Column, u.Heading, u.Said)
@@ -203,6 +248,20 @@ func printFacts(b *strings.Builder, r *reader.Result, all bool) {
 	}
 	if f.NumericHeading {
 		b.WriteString("the heading is all numbers\n")
+	}
+	for i := range r.Files {
+		if l := r.Files[i].UnitsLine; l > 0 {
+			fmt.Fprintf(b, "line %d of %s gives units\n", l, r.Files[i].Name)
+		}
+	}
+	for _, u := range f.UnitsRow {
+		fmt.Fprintf(b, "units: %s %q %v\n", u.Column, u.Text, u.Unit)
+	}
+	for _, h := range f.Repeated {
+		fmt.Fprintf(b, "repeated hour: %s of %s, %d rows, first on line %d, by %q\n", h.Column, h.File, h.Rows, h.FirstLine, h.By)
+	}
+	if f.TrailingFields {
+		b.WriteString("every record ends with empty fields\n")
 	}
 	if f.TrailingDelimiter {
 		b.WriteString("the heading ends with a delimiter\n")

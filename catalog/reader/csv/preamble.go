@@ -60,12 +60,14 @@ func (f *file) behind(after string, end int) (constant, *reader.Fault) {
 // rest is the value behind byte i of a line of the preamble, which may be written
 // as a record too.
 func (f *file) rest(line []byte, i int) []byte {
+	if value, ok := f.quotedRest(line, i); ok {
+		return value
+	}
 	delim := string(f.facts.Delimiter)
 	if f.facts.Delimiter == ' ' {
 		delim = "\x00" // no field ends at a blank here
 	}
 	value := trim(line[i:])
-	value = bytes.TrimPrefix(value, []byte(`"`)) // of a quoted field that the text ends
 	if bytes.HasPrefix(value, []byte(delim)) {
 		s := newScanner(value, f.facts.Delimiter, len(delim), 1)
 		for s.next() {
@@ -78,10 +80,40 @@ func (f *file) rest(line []byte, i int) []byte {
 	for bytes.HasSuffix(value, []byte(delim)) {
 		value = trim(bytes.TrimSuffix(value, []byte(delim)))
 	}
-	if bytes.Count(value, []byte(`"`))%2 == 1 {
-		value = bytes.TrimSuffix(value, []byte(`"`))
-	} else if len(value) > 1 && value[0] == '"' && value[len(value)-1] == '"' {
+	if len(value) > 1 && value[0] == '"' && value[len(value)-1] == '"' {
 		value = value[1 : len(value)-1]
 	}
 	return trim(value)
+}
+
+// quotedRest is the value behind byte i of a line where that lies in a quoted
+// field: the rest of the field, or the next field if nothing is left of it.
+func (f *file) quotedRest(line []byte, i int) ([]byte, bool) {
+	s := newScanner(line, f.facts.Delimiter, 0, 1)
+	if !s.next() || s.rec.fault.kind != reader.NoFault {
+		return nil, false
+	}
+	for k := len(s.rec.fields) - 1; k >= 0; k-- {
+		x := &s.rec.fields[k]
+		if x.start >= i {
+			continue
+		}
+		if !x.quoted {
+			return nil, false
+		}
+		inside := bytes.TrimSuffix(line[i:s.fieldEnd(k)], []byte(`"`))
+		if inside = trim(bytes.ReplaceAll(inside, []byte(`""`), []byte(`"`))); len(inside) > 0 || k+1 == len(s.rec.fields) {
+			return inside, true
+		}
+		return trim(s.rec.fields[k+1].text), true
+	}
+	return nil, false
+}
+
+// fieldEnd is where field k of the record ends, behind its closing mark.
+func (s *scanner) fieldEnd(k int) int {
+	if k+1 < len(s.rec.fields) {
+		return s.rec.fields[k+1].start - len(s.delim)
+	}
+	return s.rec.end
 }

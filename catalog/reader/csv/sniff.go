@@ -199,13 +199,20 @@ func (s *sheet) hasData(i int) bool {
 	return false
 }
 
+// hasUnits reports whether record i is a line of units and not itself a heading:
+// h or m may be either, °C and m/s are units.
 func (s *sheet) hasUnits(i int) bool {
+	known, sure := false, false
+	seen := map[string]bool{}
 	for k, b := range s.records[i].fields {
 		if k < len(s.data) && s.data[k] && len(b) > 0 && isKnownUnit(string(bytes.Trim(b, "[]()"))) {
-			return true
+			known = true
+			sure = sure || bytes.ContainsAny(b, "°%/[(³²µ")
 		}
+		sure = sure || len(b) == 0 && k < s.fields-1 || string(b) == "-" || seen[string(b)]
+		seen[string(b)] = true
 	}
-	return false
+	return known && sure
 }
 
 // comma is the first number with a decimal comma, if more numbers have one than a

@@ -161,7 +161,7 @@ func isKnownUnit(text string) bool {
 	}
 	parts := strings.FieldsFunc(text, func(r rune) bool { return r == '/' || r == '*' || r == '·' || r == ' ' })
 	for _, p := range parts {
-		p = strings.TrimRight(p, "0123456789^-⁻¹²³")
+		p = strings.TrimRight(p, "23^-⁻¹²³")
 		if others[p] || baseUnits[p] {
 			continue
 		}
