@@ -134,11 +134,14 @@ func projectLine(n *Project) string {
 	what := "columns: "
 	parts := make([]string, len(n.Exprs))
 	for i, e := range n.Exprs {
-		if _, plain := expr.AsColumn(e); !plain {
+		parts[i] = e.String()
+		computed := parts[i]
+		if c, plain := e.(*expr.Column); plain {
+			computed = c.Field.Name
+		} else {
 			what = "compute: "
 		}
-		parts[i] = e.String()
-		if name := n.Fields[i].Name; name != parts[i] {
+		if name := n.Fields[i].Name; name != computed {
 			parts[i] += " AS " + name
 		}
 	}

@@ -11,14 +11,14 @@ SELECT id, temp FROM hall WHERE temp > 8 ORDER BY temp DESC LIMIT 3
 ----
 limit 3
   sort: temp DESC
-    compute: id, temp
+    columns: id, temp
       keep where: temp > 8
         read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT * FROM hall
 ----
-compute: id, x, y, z, temp, area
+columns: id, x, y, z, temp, area
   read campaign hall: id, x, y, z, temp, area
 
 plan
@@ -26,23 +26,23 @@ SELECT DISTINCT area FROM hall ORDER BY area
 ----
 sort: area
   distinct rows
-    compute: area
+    columns: area
       read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT id FROM hall ORDER BY temp, 1 LIMIT 2 OFFSET 1
 ----
 limit 2 offset 1
-  compute: id
+  columns: id
     sort: temp, id
-      compute: id, temp
+      columns: id, temp
         read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT AVG(temp) AS plain, AVG(temp) WEIGHTED BY volume AS by_space, SHARE(temp > :limit) WEIGHTED BY volume AS over_limit, SUM(volume) AS room
 FROM CELLS OF hall
 ----
-compute: "AVG(temp)" AS plain, "AVG(temp) WEIGHTED BY volume" AS by_space, "SHARE(temp > :limit) WEIGHTED BY volume" AS over_limit, "SUM(volume)" AS room
+columns: "AVG(temp)" AS plain, "AVG(temp) WEIGHTED BY volume" AS by_space, "SHARE(temp > :limit) WEIGHTED BY volume" AS over_limit, "SUM(volume)" AS room
   aggregate all rows: AVG(temp), AVG(temp) WEIGHTED BY volume, SHARE(temp > :limit) WEIGHTED BY volume, SUM(volume)
     cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
       read campaign hall: id, x, y, z, temp, area
@@ -62,10 +62,10 @@ FROM CELLS OF (SELECT s.id, s.x, s.y, s.z, l.t, l.temp FROM hall s JOIN log l ON
 GROUP BY t ORDER BY t
 ----
 sort: t
-  compute: t, "AVG(temp) WEIGHTED BY volume" AS mean
+  columns: t, "AVG(temp) WEIGHTED BY volume" AS mean
     group by t: AVG(temp) WEIGHTED BY volume
       cells of (query) within air for each t: id, x, y, z, t, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
-        compute: id, x, y, z, t, temp
+        columns: id, x, y, z, t, temp
           keep where: temp IS NOT NULL
             inner join on logger = id
               read campaign hall: id, x, y, z, temp, area
@@ -111,9 +111,9 @@ mz REAL [m]
 plan
 SELECT id, volume FROM CELLS OF (SELECT id, x, y, z FROM hall)
 ----
-compute: id, volume
+columns: id, volume
   cells of (query): id, x, y, z, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
-    compute: id, x, y, z
+    columns: id, x, y, z
       read campaign hall: id, x, y, z, temp, area
 note: CELLS OF (query) has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along
 
@@ -121,7 +121,7 @@ note: CELLS OF (query) has no WITHIN, so its cells end nowhere: only a campaign 
 plan
 SELECT id, volume FROM CELLS OF walk
 ----
-compute: id, volume
+columns: id, volume
   cells of walk: id, x, y, z, dust, pass, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
     read campaign walk: id, x, y, z, dust, pass
 
@@ -129,7 +129,7 @@ plan
 SELECT logger, COUNT(temp) AS got FROM log GROUP BY logger HAVING COUNT(temp) < 0.99 * 672 ORDER BY got
 ----
 sort: got
-  compute: logger, "COUNT(temp)" AS got
+  columns: logger, "COUNT(temp)" AS got
     keep having: "COUNT(temp)" < 0.99 * 672
       group by logger: COUNT(temp)
         read table log: logger, t, temp, co2, n, ok
@@ -145,9 +145,9 @@ sort: since
 plan
 SELECT logger AS l, COUNT(*) FROM log GROUP BY 1 HAVING COUNT(*) > 3 ORDER BY COUNT(*) DESC, AVG(temp)
 ----
-compute: l, "COUNT(*)" AS COUNT(*)
+columns: l, "COUNT(*)"
   sort: "COUNT(*)" DESC, "AVG(temp)"
-    compute: logger AS l, "COUNT(*)" AS COUNT(*), "AVG(temp)" AS AVG(temp)
+    columns: logger AS l, "COUNT(*)", "AVG(temp)"
       keep having: "COUNT(*)" > 3
         group by logger: COUNT(*), AVG(temp)
           read table log: logger, t, temp, co2, n, ok
@@ -156,7 +156,7 @@ compute: l, "COUNT(*)" AS COUNT(*)
 plan
 SELECT temp > 8 AS warm, COUNT(*) AS many FROM log GROUP BY warm HAVING many > 3 ORDER BY many + 1
 ----
-compute: warm, many
+columns: warm, many
   sort: "many + 1"
     compute: "temp > 8" AS warm, "COUNT(*)" AS many, "COUNT(*)" + 1 AS many + 1
       keep having: "COUNT(*)" > 3
@@ -167,7 +167,7 @@ compute: warm, many
 plan
 SELECT FLOOR_TO(t, INTERVAL '1' HOUR) AS t, COUNT(*) FROM log GROUP BY t
 ----
-compute: FLOOR_TO(t, INTERVAL '1' HOUR) AS t, "COUNT(*)" AS COUNT(*)
+compute: FLOOR_TO(t, INTERVAL '1' HOUR) AS t, "COUNT(*)"
   group by t: COUNT(*)
     read table log: logger, t, temp, co2, n, ok
 note: GROUP BY t groups by the column t of log, not by the item of SELECT that is called so
@@ -175,7 +175,7 @@ note: GROUP BY t groups by the column t of log, not by the item of SELECT that i
 plan
 SELECT COUNT(DISTINCT logger), SUM(n) FILTER (WHERE ok) AS good, FIRST(temp ORDER BY t DESC) FROM log
 ----
-compute: "COUNT(DISTINCT logger)" AS COUNT(DISTINCT logger), "SUM(n) FILTER (WHERE ok)" AS good, "FIRST(temp ORDER BY t DESC)" AS FIRST(temp ORDER BY t DESC)
+columns: "COUNT(DISTINCT logger)", "SUM(n) FILTER (WHERE ok)" AS good, "FIRST(temp ORDER BY t DESC)"
   aggregate all rows: COUNT(DISTINCT logger), SUM(n) FILTER (WHERE ok), FIRST(temp ORDER BY t DESC)
     read table log: logger, t, temp, co2, n, ok
 
@@ -189,7 +189,7 @@ compute: "SUM(temp * n)" / "SUM(n)" + "SUM(n)" AS SUM(temp * n) / SUM(n) + SUM(n
 plan
 SELECT h.id, l.temp, h.temp AS other FROM hall AS h LEFT JOIN log l ON h.id = l.logger AND l.temp > 5
 ----
-compute: id, temp, temp AS other
+columns: id, temp, temp AS other
   left join on id = logger AND temp > 5
     read campaign hall: id, x, y, z, temp, area
     read table log: logger, t, temp, co2, n, ok
@@ -197,10 +197,10 @@ compute: id, temp, temp AS other
 plan
 SELECT * FROM hall JOIN (SELECT logger AS id, AVG(temp) AS mean FROM log GROUP BY logger) m USING (id)
 ----
-compute: id, x, y, z, temp, area, mean
+columns: id, x, y, z, temp, area, mean
   inner join on id = id
     read campaign hall: id, x, y, z, temp, area
-    compute: logger AS id, "AVG(temp)" AS mean
+    columns: logger AS id, "AVG(temp)" AS mean
       group by logger: AVG(temp)
         read table log: logger, t, temp, co2, n, ok
 
@@ -218,7 +218,7 @@ mean REAL [°C]
 plan
 SELECT a.id, b.id FROM hall a, hall b WHERE a.id < b.id
 ----
-compute: id, id
+columns: id, id
   keep where: id < id
     cross join
       read campaign hall: id, x, y, z, temp, area
@@ -227,14 +227,14 @@ compute: id, id
 plan
 WITH warm (who, degrees) AS (SELECT id, temp FROM hall WHERE temp > 5), two AS (SELECT who FROM warm) SELECT COUNT(*) FROM two CROSS JOIN warm
 ----
-compute: "COUNT(*)" AS COUNT(*)
+columns: "COUNT(*)"
   aggregate all rows: COUNT(*)
     cross join
-      compute: who
-        compute: id, temp
+      columns: who
+        columns: id, temp
           keep where: temp > 5
             read campaign hall: id, x, y, z, temp, area
-      compute: id, temp
+      columns: id, temp
         keep where: temp > 5
           read campaign hall: id, x, y, z, temp, area
 
@@ -244,9 +244,9 @@ SELECT id FROM hall UNION ALL SELECT logger FROM log ORDER BY id LIMIT 5
 limit 5
   sort: id
     union all
-      compute: id
+      columns: id
         read campaign hall: id, x, y, z, temp, area
-      compute: logger
+      columns: logger
         read table log: logger, t, temp, co2, n, ok
 
 columns
@@ -286,9 +286,9 @@ input:1: 2 names for the 12 columns of hall or walk
 plan
 SELECT j.a FROM (SELECT id, x FROM hall) AS j (a, b) WHERE j.b > 1
 ----
-compute: a
+columns: a
   keep where: b > 1
-    compute: id, x
+    columns: id, x
       read campaign hall: id, x, y, z, temp, area
 
 # The campaign's own column called area is read as own_area.
@@ -301,7 +301,7 @@ area REAL [m²]
 plan
 SELECT c.id, k.b FROM CELLS OF hall AS c JOIN CONTACTS OF hall AS k ON k.a = c.id WHERE c.volume > 5
 ----
-compute: id, b
+columns: id, b
   keep where: volume > 5
     inner join on a = id
       cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
@@ -320,21 +320,21 @@ cells REAL [m]
 plan
 SELECT number FROM (SELECT id AS number FROM hall) AS each
 ----
-compute: number
-  compute: id AS number
+columns: number
+  columns: id AS number
     read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT "Temp", Temp, temp FROM "Cases"
 ----
-compute: Temp, Temp, temp
+columns: Temp, Temp, temp
   read table Cases: Temp, temp, "x
 
 # AVG(temp) is what is called temp where single readings have no meaning any more.
 plan
 SELECT logger, AVG(temp) AS temp FROM log GROUP BY logger HAVING temp > 5 ORDER BY ABS(temp - 5)
 ----
-compute: logger, temp
+columns: logger, temp
   sort: "ABS(temp - 5)"
     compute: logger, "AVG(temp)" AS temp, ABS("AVG(temp)" - 5) AS ABS(temp - 5)
       keep having: "AVG(temp)" > 5

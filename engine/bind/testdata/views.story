@@ -8,17 +8,17 @@ SELECT id, x, y, z, temp FROM hall WHERE temp > :limit
 plan
 SELECT id FROM warm
 ----
-compute: id
-  compute: id, x, y, z, temp
+columns: id
+  columns: id, x, y, z, temp
     keep where: temp > 8.0
       read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT id, volume FROM CELLS OF warm WITHIN air OMITTING ('L17') BECAUSE 'moved'
 ----
-compute: id, volume
+columns: id, volume
   cells of warm within air omitting 'L17': id, x, y, z, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
-    compute: id, x, y, z, temp
+    columns: id, x, y, z, temp
       keep where: temp > 8.0
         read campaign hall: id, x, y, z, temp, area
 
@@ -68,19 +68,19 @@ view b:1: the view 'a' uses itself: a uses b uses a
 plan
 WITH hall AS (SELECT 1 AS one) SELECT one, id FROM hall CROSS JOIN warm
 ----
-compute: one, id
+columns: one, id
   cross join
     compute: 1 AS one
       one row
-    compute: id, x, y, z, temp
+    columns: id, x, y, z, temp
       keep where: temp > 8.0
         read campaign hall: id, x, y, z, temp, area
 
 plan
 WITH warm AS (SELECT id FROM warm) SELECT id FROM warm
 ----
-compute: id
-  compute: id
-    compute: id, x, y, z, temp
+columns: id
+  columns: id
+    columns: id, x, y, z, temp
       keep where: temp > 8.0
         read campaign hall: id, x, y, z, temp, area
