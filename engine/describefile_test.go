@@ -1,0 +1,154 @@
+package engine_test
+
+import (
+	"bytes"
+	"context"
+	"encoding/csv"
+	"fmt"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"pgregory.net/rapid"
+
+	"nearcell/catalog"
+	"nearcell/engine"
+	"nearcell/engine/present"
+)
+
+// offered runs DESCRIBE FILE and gives the statement that it offers, and the notes.
+func offered(t interface{ Fatalf(string, ...any) }, folder, file string) (statement, notes string, err error) {
+	var out, said bytes.Buffer
+	s := engine.New(catalog.Memory(), engine.Options{Out: &out, Err: &said, Format: present.AsCSV, Quiet: true})
+	if err := s.Run(context.Background(), "test", "DESCRIBE FILE '"+strings.ReplaceAll(file, "'", "''")+"';", folder); err != nil {
+		return "", said.String(), err
+	}
+	_, last, ok := strings.Cut(out.String(), "\nstatement\n")
+	if !ok {
+		t.Fatalf("%s: no statement in %q", file, out.String())
+	}
+	rows, err := csv.NewReader(strings.NewReader(last)).ReadAll()
+	if err != nil || len(rows) != 1 {
+		t.Fatalf("%s: %q", file, last)
+	}
+	return rows[0][0], said.String(), nil
+}
+
+// paste runs an offered statement in a session of its own; it returns how many
+// rows the thing then has.
+func paste(t interface{ Fatalf(string, ...any) }, folder, statement string) int {
+	var out, said bytes.Buffer
+	s := engine.New(catalog.Memory(), engine.Options{Out: &out, Err: &said, Format: present.AsCSV, Quiet: true})
+	name := strings.Fields(statement)[2]
+	if err := s.Run(context.Background(), "test", statement+"\nSELECT COUNT(*) AS n FROM "+name+";", folder); err != nil {
+		t.Fatalf("%s\n%s", statement, said.String())
+	}
+	rows := 0
+	if _, err := fmt.Sscanf(out.String(), "n\n%d\n", &rows); err != nil {
+		t.Fatalf("%s: %q", statement, out.String())
+	}
+	return rows
+}
+
+// What DESCRIBE FILE offers runs as it stands, for every file that the project
+// has, good and bad. One file has nothing in it.
+func TestDescribedFilesCanBeRead(t *testing.T) {
+	folder := t.TempDir()
+	files := 0
+	for _, pattern := range []string{"../testdata/*/*.csv", "../testdata/*/*/*.csv", "problem/catalogue/testdata/*.csv"} {
+		paths, err := filepath.Glob(pattern)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, path := range paths {
+			data, err := os.ReadFile(path)
+			if err != nil {
+				t.Fatal(err)
+			}
+			name := fmt.Sprintf("%d-%s", files, filepath.Base(path)) // a place of its own for refused lines
+			if err := os.WriteFile(filepath.Join(folder, name), data, 0o600); err != nil {
+				t.Fatal(err)
+			}
+			files++
+			statement, notes, err := offered(t, folder, name)
+			if len(data) == 0 {
+				if err == nil || !strings.Contains(notes, "the file is empty") {
+					t.Errorf("%s: %s", name, notes)
+				}
+				continue
+			}
+			if err != nil {
+				t.Errorf("%s: %s", path, notes)
+				continue
+			}
+			lines := bytes.Count(bytes.TrimRight(data, "\n"), []byte("\n"))
+			if rows := paste(t, folder, statement); rows > lines || rows < lines*3/4-1 {
+				t.Errorf("%s: %d rows of %d lines by\n%s", path, rows, lines, statement)
+			}
+		}
+	}
+	if files < 20 {
+		t.Fatalf("only %d files", files)
+	}
+}
+
+// Files as loggers write them, put together by chance, all INVENTED.
+func TestDescribedExports(t *testing.T) {
+	folder := t.TempDir()
+	rapid.Check(t, func(t *rapid.T) {
+		var b strings.Builder
+		d := rapid.SampledFrom([]string{",", ";", "\t", "|"}).Draw(t, "delimiter")
+		comma := d != "," && rapid.Bool().Draw(t, "decimal comma")
+		number := func() string {
+			s := fmt.Sprintf("%.2f", rapid.Float64Range(-20, 40).Draw(t, "value"))
+			if comma {
+				s = strings.ReplaceAll(s, ".", ",")
+			}
+			return s
+		}
+		end := rapid.SampledFrom([]string{"\n", "\r\n"}).Draw(t, "line end")
+		tail := rapid.SampledFrom([]string{"", "", d}).Draw(t, "at the end of a line")
+		preamble := rapid.SampledFrom([]int{0, 0, 2, 14}).Draw(t, "preamble")
+		for i := range preamble {
+			if i < 5 {
+				b.WriteString([]string{"Serial: 0012", "Model" + d + "Polarfuchs", "Place: rack A", "", "Interval: 15 min"}[i] + end)
+			} else {
+				fmt.Fprintf(&b, "Line %d: %d%s", i, i, end)
+			}
+		}
+		pattern := rapid.SampledFrom([]string{"%02d.04.2031 %02d:15", "2031-04-%02d %02d:15:00", "%d/4/2031 %d:15", "04/%02d/2031 %02d:15:00 AM"}).Draw(t, "time")
+		names := rapid.SampledFrom([][]string{{"t", "temp", "rh"}, {"Time", "Temp (°C)", "x"}, {"t", "temp [°C]", "select"}}).Draw(t, "names")
+		b.WriteString(strings.Join(names, d) + tail + end)
+		if rapid.Bool().Draw(t, "a line of units") {
+			b.WriteString(d + "°C" + d + "%" + tail + end)
+		}
+		missing := rapid.SampledFrom([]string{"", "---", "n/a", "NaN", "err"}).Draw(t, "missing")
+		rows := rapid.IntRange(6, 40).Draw(t, "rows")
+		for i := range rows {
+			value := number()
+			if i > 3 && rapid.IntRange(0, 9).Draw(t, "is missing") == 0 {
+				value = missing
+			}
+			b.WriteString(fmt.Sprintf(pattern, i/12+1, i%12+1) + d + value + d + number() + tail + end)
+		}
+		if err := os.WriteFile(filepath.Join(folder, "it's.csv"), []byte(b.String()), 0o600); err != nil {
+			t.Fatalf("%v", err)
+		}
+		statement, notes, err := offered(t, folder, "it's.csv")
+		if err != nil {
+			t.Fatalf("%s\n%s", b.String(), notes)
+		}
+		if got := paste(t, folder, statement); got != rows {
+			t.Fatalf("%d rows of %d by\n%s\nfrom\n%s", got, rows, statement, b.String())
+		}
+		for _, clause := range []struct {
+			word string
+			want bool
+		}{{"TIME (", !strings.HasPrefix(pattern, "2031-")}, {"HEADING AT LINE", preamble > 0}, {"DECIMAL MARK", comma}, {"PREAMBLE (", preamble > 0}, {"REFUSED TO", false}} {
+			if strings.Contains(statement, clause.word) != clause.want {
+				t.Fatalf("%s in\n%s\nfor\n%s", clause.word, statement, b.String())
+			}
+		}
+	})
+}
