@@ -229,6 +229,25 @@ func (s *Session) HelpTopics() []string {
 	return append(names, "ERROR")
 }
 
+// HelpWords are the words that may stand behind HELP and those that were said,
+// for completion: whole topics at first, then what is left of them.
+func (s *Session) HelpWords(said string) []string {
+	var list []string
+	for _, name := range s.HelpTopics() {
+		rest := strings.TrimLeft(name, "-") // two dashes would begin a comment
+		if key := topicKey(said); key != "" {
+			var ok bool
+			if rest, ok = strings.CutPrefix(topicKey(name), key+" "); !ok {
+				continue
+			}
+		}
+		if rest, _, _ = strings.Cut(rest, "="); rest != "" && !strings.ContainsAny(rest, "'…;") {
+			list = append(list, rest)
+		}
+	}
+	return list
+}
+
 // writeOverview is HELP alone: what to type first, and the topics.
 func (s *Session) writeOverview(p *page) {
 	p.say("nearcell gives each reading of a 3D campaign the space nearest to it, closed at the walls of the room, and answers questions about that space in tables.")

@@ -216,9 +216,7 @@ func (c *completer) names(p place, typed string) []candidate {
 	case wantSettings:
 		words(engine.Settings(), " ")
 	case wantHelp:
-		words(engine.Statements(), "")
-		words(engine.Nouns(), "")
-		words(engine.Functions(), "")
+		words(c.session.HelpWords(p.topic), "")
 	case wantTypes:
 		words(types(), "")
 	case wantHeadings:

@@ -39,6 +39,7 @@ type place struct {
 	noQuery   bool     // there is no query around the cursor
 	noFrom    bool     // the query around the cursor has no FROM so far
 	last      token    // before the cursor
+	topic     string   // the words behind HELP so far
 }
 
 // source is an item behind FROM.
@@ -96,6 +97,11 @@ func placeOf(src string, list []token) place {
 		return p
 	}
 	p.want = p.wanted(src, nested)
+	if p.want == wantHelp {
+		for _, t := range inner.list[1:inner.at] {
+			p.topic += t.text + " "
+		}
+	}
 	if p.want == wantColumns && endsOperand(p.last) {
 		p.want = wantNothing // an alias
 	}
