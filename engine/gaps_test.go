@@ -73,6 +73,22 @@ func TestEnvelope(t *testing.T) {
 	if got := a.number("SELECT SUM(volume) FROM CELLS OF hall WITHIN ENVELOPE OF hall MARGIN 1.5;"); math.Abs(got-box) > 1e-12*box {
 		t.Errorf("the envelope holds %v, want %v", got, box)
 	}
+	// Whoever weighs open cells is offered it, by the campaign's own name; what is offered
+	// works.
+	for of, offer := range map[string]string{
+		"hall": "such as ENVELOPE OF hall MARGIN 1, or",
+		"(SELECT h.id, h.x, h.y, h.z, h.temp FROM hall h)": "such as ENVELOPE OF hall MARGIN 1, or",
+		"(SELECT id, x, y, z, 1 AS temp FROM plain)":       "put the campaign WITHIN a solid, or",
+	} {
+		a.text("CREATE OR REPLACE TABLE plain FROM 'twenty.csv';")
+		a.notes.Reset()
+		err := a.session.Run(t.Context(), "test", "SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF "+of+";", reference)
+		if err == nil || a.session.LastCode() != "weight" {
+			t.Errorf("%s: %v", of, err)
+		}
+		a.says(offer)
+	}
+	a.is("SELECT AVG(temp) WEIGHTED BY volume BETWEEN MIN(temp) AND MAX(temp) FROM CELLS OF hall WITHIN ENVELOPE OF hall MARGIN 1;", "TRUE")
 	a.text("CREATE SOLID around AS ENVELOPE OF hall MARGIN 1.5;")
 	a.is("SELECT COUNT(*) FROM CELLS OF hall WITHIN around WHERE NOT bounded;", "0")
 }

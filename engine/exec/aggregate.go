@@ -170,6 +170,7 @@ func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups
 		if errors.As(err, &f) && f.Code != "weight" {
 			at = c.call.Place
 		}
+		offerEnvelope(err, s.node, c.call.Weight)
 		return s.fault(w, err, at, b)
 	}
 	c.cells.add(b, on, groups)

@@ -119,6 +119,10 @@ func (t *tally) selected(active []uint64, n int) []int32 {
 	return rows
 }
 
+// OpenCell is the hint of a weight that is infinite. Who knows the campaign can name a
+// solid around it.
+const OpenCell = "a cell that nothing closes off is unbounded: put the campaign WITHIN a solid, or leave such cells out with WHERE bounded"
+
 // checkWeights refuses weights that are no share of anything.
 func (t *tally) checkWeights(on []uint64, n int, weight *column.Vector) ([]float64, error) {
 	w := weight.F
@@ -151,7 +155,7 @@ func (t *tally) checkWeights(on []uint64, n int, weight *column.Vector) ([]float
 		f.Message = "the weight is no number"
 	default:
 		f.Message = "the weight is infinite"
-		f.Hint = "a cell that nothing closes off is unbounded: put the campaign WITHIN a solid, or leave such cells out with WHERE bounded"
+		f.Hint = OpenCell
 	}
 	return nil, f
 }
