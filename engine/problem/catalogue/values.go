@@ -35,7 +35,7 @@ var ofValues = []Entry{
 	{
 		Code:    "weight",
 		Meaning: "A weight is negative, infinite or NULL. A weight is a share of space or time, and such a one would falsify the whole mean.",
-		WayOut:  "Cells are unbounded where no solid closes them: put the campaign WITHIN one, or leave them out with WHERE bounded, which makes the answer one of the inner cells.",
+		WayOut:  "Cells are unbounded where no solid closes them: put the campaign WITHIN one, such as ENVELOPE OF hall MARGIN 1, or leave them out with WHERE bounded, which makes the answer one of the inner cells.",
 		Example: "SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCLIPPED;",
 	},
 }
