@@ -177,8 +177,12 @@ func (c words) Write(b []byte) (int, error) {
 			style, body = dim, broken(body, "      ", c.width())
 		case strings.HasPrefix(line, "warning: "):
 			style, body = yellow, broken(body, "         ", c.width())
-		case i > 0 && strings.Contains(body, "^") && strings.Trim(body, " \t^") == "":
+		case isCaret(body):
 			style = red
+		case i+2 < len(lines) && isCaret(lines[i+2]): // what an error says
+			body = broken(body, "    ", c.width())
+		case i+1 < len(lines) && isCaret(lines[i+1]):
+			body, lines[i+1] = nearCaret(body, lines[i+1], c.width())
 		}
 		if c.colour && style != "" {
 			body = style + body + plain
@@ -192,6 +196,28 @@ func (c words) Write(b []byte) (int, error) {
 		return 0, err
 	}
 	return len(b), nil
+}
+
+// isCaret tells whether a line is the marks under a place.
+func isCaret(line string) bool {
+	return strings.Contains(line, "^") && strings.Trim(line, " \t^\n") == ""
+}
+
+// nearCaret cuts a line that is wider than the terminal to the part around the
+// marks under it, so that both stay one below the other.
+func nearCaret(line, marks string, width int) (string, string) {
+	source, under := []rune(line), []rune(strings.TrimRight(marks, "\n"))
+	if displaywidth.String(line) < width || width < leastWidth {
+		return line, marks
+	}
+	caret := strings.IndexByte(marks, '^')
+	left := max(0, min(caret-width/2, len(source)-width+2))
+	source = source[left:min(len(source), left+width-2)]
+	under = under[min(left, len(under)):min(len(under), left+width-2)]
+	if left > 0 {
+		source[0], source[1] = '…', ' '
+	}
+	return string(source), string(under) + "\n"
 }
 
 // broken breaks a line at blanks so that it fits, with the lines after the first
