@@ -34,7 +34,6 @@ type Count struct {
 // GeometryCount is what a relation took from its diagrams.
 type GeometryCount struct {
 	Cells int64 // computed, for measures and for contacts
-	Built int   // diagrams made; others were there
 }
 
 // NewMeasured starts the counts of a plan.
@@ -261,12 +260,14 @@ type meteredRows struct {
 }
 
 func (s *meteredRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
+	if s.env.Diagrams == nil {
+		return s.Rows.Run(ctx, emit)
+	}
 	before := s.env.Diagrams.Stats()
 	err := s.Rows.Run(ctx, emit)
 	after := s.env.Diagrams.Stats()
 	s.m.geometry = &GeometryCount{
 		Cells: after.Cells - before.Cells + after.Contacts - before.Contacts,
-		Built: after.Built - before.Built,
 	}
 	s.m.keep(max(0, after.Bytes-before.Bytes))
 	return err
