@@ -31,6 +31,8 @@ type Env struct {
 	// in it is told to its meter and to that of the statement.
 	whole  *Env
 	holder *meter
+	// queries are those of the run that the environment serves.
+	queries *queries
 	// chunk and batch are the numbers of rows of a chunk and of a batch of a
 	// table, 0: the usual ones. Tests set them: results must not depend on them
 	// (but for the last bits of sums).
@@ -89,7 +91,17 @@ type Worker struct {
 
 // NewWorker is a worker with its own scratch memory.
 func NewWorker(env *Env) *Worker {
-	return &Worker{Env: env, works: []*expr.Work{new(expr.Work)}, local: map[any]any{}}
+	w := &Worker{Env: env, local: map[any]any{}}
+	w.works = []*expr.Work{w.newWork()}
+	return w
+}
+
+func (w *Worker) newWork() *expr.Work {
+	work := new(expr.Work)
+	if w.Env.queries != nil {
+		work.Asker = asker{w}
+	}
+	return work
 }
 
 // Work is the scratch memory for the current batch.
@@ -108,7 +120,7 @@ func (w *Worker) deeper(b *column.Batch, emit Emit) error {
 	before := w.row
 	w.depth++
 	if w.depth == len(w.works) {
-		w.works = append(w.works, new(expr.Work))
+		w.works = append(w.works, w.newWork())
 	}
 	w.begin(-1)
 	err := emit(b)
@@ -170,7 +182,8 @@ var errEnough = errors.New("exec: enough rows")
 // Run computes a plan and hands its rows to emit, in order, in batches without
 // a mask (On is nil) that are valid until emit returns.
 func Run(ctx context.Context, env *Env, n plan.Node, emit func(*column.Batch) error) error {
-	r := &runner{env: env}
+	r := start(ctx, env)
+	defer env.queries.finish()
 	p, err := r.open(ctx, n)
 	if err != nil {
 		return err
@@ -187,7 +200,8 @@ func Run(ctx context.Context, env *Env, n plan.Node, emit func(*column.Batch) er
 // Collect computes a plan into a table. Where the plan is a table as it lies,
 // the result is a view of it.
 func Collect(ctx context.Context, env *Env, n plan.Node) (*column.Table, error) {
-	r := &runner{env: env}
+	r := start(ctx, env)
+	defer env.queries.finish()
 	return r.collect(ctx, n)
 }
 

@@ -11,7 +11,7 @@ import (
 // knows of its rows and its work beforehand. Errors are those that running it
 // would give.
 func Forecast(ctx context.Context, env *Env, n *plan.Relation) (*relation.Forecast, error) {
-	r := &runner{env: env}
+	r := start(ctx, env)
 	o, err := r.openSites(ctx, n)
 	if err != nil {
 		return nil, err

@@ -19,9 +19,17 @@ type buildSide struct {
 	start, rows []int32
 }
 
-// openBuild computes the right side with its keys. Key expressions that read a
-// column cost nothing; others are computed beside the columns.
+// openBuild is the right side of a join.
 func (r *runner) openBuild(ctx context.Context, n *plan.Join) (*buildSide, error) {
+	if s, ok := n.Right.(*plan.Shared); ok && len(n.RightKeys) > 0 {
+		return r.commonSide(ctx, s, n.RightKeys, n.LeftKeys)
+	}
+	return r.buildSide(ctx, n)
+}
+
+// buildSide computes the right side with its keys. Key expressions that read a
+// column cost nothing; others are computed beside the columns.
+func (r *runner) buildSide(ctx context.Context, n *plan.Join) (*buildSide, error) {
 	right := n.Right
 	schema := right.Schema()
 	at := make([]int, len(n.RightKeys))
@@ -183,6 +191,8 @@ type joinLocal struct {
 	holds     []uint64
 	current   int32
 	matched   bool
+	met, stay []uint64 // of a semi or anti join: left rows with a match, rows to hand on
+	masked    column.Batch
 }
 
 func (s *joinStep) local(w *Worker) *joinLocal {
@@ -212,9 +222,21 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 		l.keys = room(l.keys, b.N)
 		l.reader.find(cols, b.On, b.N, l.keys)
 	}
+	if s.one() {
+		return s.runOne(ctx, w, l, b, emit)
+	}
 	if s.right.keys != nil && s.rest == nil {
 		return s.runKeys(ctx, w, l, b, emit)
 	}
+	if err := s.walk(ctx, w, l, b, emit); err != nil {
+		return err
+	}
+	s.finishRow(l)
+	return s.handOn(ctx, w, l, b, emit)
+}
+
+// walk decides the pairs of all active left rows.
+func (s *joinStep) walk(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, emit Emit) error {
 	var err error
 	forEachOn(b.On, b.N, func(i int) {
 		if err == nil {
@@ -224,11 +246,39 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 	if err != nil {
 		return err
 	}
-	if err := s.settle(ctx, w, l, b, emit); err != nil {
+	return s.settle(ctx, w, l, b, emit)
+}
+
+// one reports whether the join gives left rows alone, each at most once.
+func (s *joinStep) one() bool { return s.kind == plan.Semi || s.kind == plan.Anti }
+
+// runOne gives the left rows with a match, or those without, under a mask as a
+// filter does.
+func (s *joinStep) runOne(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, emit Emit) error {
+	l.met = bitsFor(l.met, b.N)
+	if s.right.keys != nil && s.rest == nil {
+		forEachOn(b.On, b.N, func(i int) {
+			if l.keys[i] >= 0 {
+				column.SetBit(l.met, i)
+			}
+		})
+	} else if err := s.walk(ctx, w, l, b, emit); err != nil {
 		return err
 	}
-	s.finishRow(l)
-	return s.handOn(ctx, w, l, b, emit)
+	l.stay = bitsFor(l.stay, b.N)
+	forEachOn(b.On, b.N, func(i int) {
+		if column.Bit(l.met, i) == (s.kind == plan.Semi) {
+			column.SetBit(l.stay, i)
+		}
+	})
+	switch column.Count(l.stay) {
+	case 0:
+		return nil
+	case b.N:
+		return emit(b)
+	}
+	l.masked = column.Batch{N: b.N, Cols: b.Cols, On: l.stay}
+	return emit(&l.masked)
 }
 
 // runKeys joins a batch where equal keys are all that is asked.
@@ -254,16 +304,21 @@ func (s *joinStep) runKeys(ctx context.Context, w *Worker, l *joinLocal, b *colu
 	return s.handOn(ctx, w, l, b, emit)
 }
 
-// candidates lists the right rows that left row i may match.
+// candidates lists the right rows that left row i may match; of a semi or anti
+// join no more than it takes to know.
 func (s *joinStep) candidates(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, i int32, emit Emit) error {
+	known := func() bool { return s.one() && column.Bit(l.met, int(i)) }
 	if s.right.keys == nil {
-		for r := range int32(s.right.table.N) {
+		for r := int32(0); int(r) < s.right.table.N && !known(); r++ {
 			if err := s.candidate(ctx, w, l, b, i, r, emit); err != nil {
 				return err
 			}
 		}
 	} else if k := l.keys[i]; k >= 0 {
 		for _, r := range s.right.rows[s.right.start[k]:s.right.start[k+1]] {
+			if known() {
+				break
+			}
 			if err := s.candidate(ctx, w, l, b, i, r, emit); err != nil {
 				return err
 			}
@@ -297,6 +352,10 @@ func (s *joinStep) settle(ctx context.Context, w *Worker, l *joinLocal, b *colum
 			l.current, l.matched = i, false
 		}
 		if r := l.maybe.right[k]; r >= 0 && (s.rest == nil || column.Bit(l.holds, k)) {
+			if s.one() {
+				column.SetBit(l.met, int(i))
+				continue
+			}
 			l.matched = true
 			l.out.add(i, r)
 		}

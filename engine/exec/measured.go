@@ -146,7 +146,7 @@ func (r *runner) envOf(m *meter) *Env {
 		return r.env
 	}
 	e := r.env
-	return &Env{Env: e.Env, Memory: e.Memory, Measured: e.Measured, chunk: e.chunk, batch: e.batch, whole: e, holder: m}
+	return &Env{Env: e.Env, Memory: e.Memory, Measured: e.Measured, chunk: e.chunk, batch: e.batch, whole: e, holder: m, queries: e.queries}
 }
 
 // metered puts the meter of a node around what opens it: its source where it

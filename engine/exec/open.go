@@ -48,6 +48,12 @@ func (r *runner) openNode(ctx context.Context, n plan.Node) (*pipeline, error) {
 		return r.openJoin(ctx, n)
 	case *plan.Union:
 		return r.openUnion(ctx, n)
+	case *plan.Matched:
+		return r.openMatched(ctx, n)
+	case *plan.Shared:
+		return r.openShared(n)
+	case *plan.Lookup:
+		return r.openLookup(ctx, n)
 	}
 	return r.openSink(ctx, n)
 }
@@ -134,11 +140,10 @@ func (r *runner) openJoin(ctx context.Context, n *plan.Join) (*pipeline, error) 
 	if err != nil {
 		return nil, err
 	}
-	schema := n.Schema()
 	step := &joinStep{kind: n.Kind, leftKeys: n.LeftKeys, rest: n.Rest, leftScope: scopeOf(left.schema), right: right}
-	step.restReads = make([]bool, len(schema))
+	step.restReads = make([]bool, len(n.Both()))
 	expr.Columns(n.Rest, step.restReads)
-	return left.with(step, schema), nil
+	return left.with(step, n.Schema()), nil
 }
 
 func (r *runner) openUnion(ctx context.Context, n *plan.Union) (*pipeline, error) {

@@ -7,7 +7,7 @@
 // NewCompare, NewCase …) check types and units, bring the two sides of an
 // operator to one type, and return a *problem.Problem at the place of the part
 // that is wrong, with both types and a way out. Nodes are exported with their
-// parts for the rules of the planner to look at; only Column and Literal are
+// parts for the rules of the planner to look at; only Column, Literal and Outer are
 // leaves.
 //
 // Eval gives a vector for the whole batch. Kernels run over all rows at full
@@ -48,6 +48,12 @@
 // anything else without a unit leaves the result without one. * and / multiply
 // units, ^ by a constant integer raises them and any other power drops them.
 // CAST drops the unit: that is the way to put different ones together.
+//
+// # Queries
+//
+// A query inside an expression (Subquery) is a leaf whose plan is a secret of
+// whoever runs it (Work.Asker). The values of the row at hand on which it depends
+// are its children; inside its plan they are read by Outer.
 //
 // # Limitations
 //

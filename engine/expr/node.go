@@ -161,9 +161,10 @@ func coerce(e Expr, t column.Type) Expr {
 	return &Cast{base: base{t, e.Unit(), e.Place()}, X: e, implicit: true}
 }
 
-// constant reports whether e reads no column.
+// constant reports whether e reads no column and asks no query.
 func constant(e Expr) bool {
-	if _, ok := e.(*Column); ok {
+	switch e.(type) {
+	case *Column, *Outer, *Subquery:
 		return false
 	}
 	for _, c := range e.Children() {

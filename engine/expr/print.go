@@ -34,6 +34,10 @@ func level(e Expr) int {
 		return bindNot
 	case *Compare, *Between, *In, *Like:
 		return bindCompare
+	case *Subquery:
+		if e.Kind == InQuery {
+			return bindCompare
+		}
 	case *Is, *Distinct:
 		return bindIs
 	case *Concat:
@@ -273,4 +277,18 @@ func (e *MakePoint) String() string { return "POINT(" + list(e.Children()) + ")"
 // String is (a, b) OVERLAPS (c, d).
 func (e *Overlaps) String() string {
 	return "(" + list(e.Ends[:2]) + ") OVERLAPS (" + list(e.Ends[2:]) + ")"
+}
+
+// String is outer(name).
+func (e *Outer) String() string { return "outer(" + quoteName(e.Field.Name) + ")" }
+
+// String is (query), x IN (query) or EXISTS (query).
+func (e *Subquery) String() string {
+	switch e.Kind {
+	case InQuery:
+		return inside(e.X, bindAdd) + " " + notWord(e.Not) + "IN " + e.Query.String()
+	case ExistsQuery:
+		return "EXISTS " + e.Query.String()
+	}
+	return e.Query.String()
 }

@@ -234,6 +234,12 @@ func sameNode(a, b Expr) bool {
 	case *Call:
 		b, ok := b.(*Call)
 		return ok && a.Fn == b.Fn
+	case *Outer:
+		b, ok := b.(*Outer)
+		return ok && a.Index == b.Index
+	case *Subquery:
+		b, ok := b.(*Subquery)
+		return ok && a.Kind == b.Kind && a.Not == b.Not && a.Query.Same(b.Query)
 	}
 	return false
 }

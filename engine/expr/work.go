@@ -8,6 +8,8 @@ import (
 // Work is the scratch memory of one goroutine. The zero Work is ready.
 type Work struct {
 	function.Arena
+	// Asker computes the queries inside expressions; nil: there can be none.
+	Asker    Asker
 	repeated map[*Literal]column.Vector
 }
 

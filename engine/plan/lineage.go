@@ -34,7 +34,11 @@ func Lineage(n Node) []Origin {
 	case *Aggregate:
 		return through(Lineage(n.Input), n.Keys, len(n.Keys)+len(n.Calls))
 	case *Join:
-		return append(append([]Origin(nil), Lineage(n.Left)...), Lineage(n.Right)...)
+		left := append([]Origin(nil), Lineage(n.Left)...)
+		if n.Kind == Semi || n.Kind == Anti {
+			return left
+		}
+		return append(left, Lineage(n.Right)...)
 	}
 	return make([]Origin, len(n.Schema()))
 }
@@ -131,6 +135,9 @@ func removalsAbove(n Node, r *Relation) []Removal {
 		}
 		return nil
 	case *Join:
+		if n.Kind == Semi || n.Kind == Anti {
+			return removalsAbove(n.Left, r)
+		}
 		return append(removalsAbove(n.Left, r), removalsAbove(n.Right, r)...)
 	case *Filter:
 		found := removalsAbove(n.Input, r)
@@ -138,7 +145,7 @@ func removalsAbove(n Node, r *Relation) []Removal {
 			found = appendRemoval(found, n, r, n.Cond, Lineage(n.Input))
 		}
 		return found
-	case *Aggregate, *Union:
+	case *Aggregate, *Union, *Matched:
 		return nil
 	}
 	var found []Removal

@@ -86,10 +86,14 @@ type Call struct {
 // JoinKind is the kind of a join.
 type JoinKind uint8
 
-// The joins there are; a cross join is an inner one without any condition.
+// The joins there are; a cross join is an inner one without any condition. Semi
+// gives the left rows that have a match, once each, and Anti those that have none:
+// their columns are the left ones alone. RIGHT and FULL joins are made of these.
 const (
 	Inner JoinKind = iota
 	Left
+	Semi
+	Anti
 )
 
 // Join matches rows: where there are key pairs by hash, else by a nested loop.
@@ -133,4 +137,46 @@ type Distinct struct {
 type Union struct {
 	Parts  []Node
 	Fields column.Schema
+}
+
+// MatchedKind is the kind of a Matched.
+type MatchedKind uint8
+
+// The set operations beside UNION.
+const (
+	Intersect MatchedKind = iota
+	Except
+)
+
+// Matched is INTERSECT or EXCEPT: of the left rows those that stand, or do not
+// stand, on the right side, too; NULLs count as equal, the columns have equal
+// types. Without All equal rows are one; with it a row that stands m times left and
+// n times right comes min(m, n) or max(m - n, 0) times. The rows come in the order
+// of the left side; where some of equal ones are left out, it is the last ones of
+// an Intersect and the first ones of an Except.
+type Matched struct {
+	Kind        MatchedKind
+	All         bool
+	Left, Right Node
+}
+
+// Common is a part of a plan that is computed once, however often it is used.
+type Common struct {
+	Name string // of WITH, else what it is for
+	Plan Node
+}
+
+// Shared is one use of a common part: a leaf whose rows are those of its plan.
+type Shared struct {
+	Common *Common
+	Fields column.Schema
+}
+
+// Lookup is the rows of a common part for which Keys (over its columns) equal
+// Values (which read no column), found by hash; in the order of the part.
+type Lookup struct {
+	Common *Common
+	Fields column.Schema
+	Keys   []expr.Expr
+	Values []expr.Expr
 }

@@ -54,8 +54,19 @@ func pruned(n Node, need []bool) (Node, []int) {
 		return &Distinct{in}, to
 	case *Union:
 		return prunedUnion(n, need)
+	case *Matched:
+		c := *n
+		all := slices.Repeat([]bool{true}, len(need))
+		c.Left, c.Right = exactlyAll(n.Left, all), exactlyAll(n.Right, all)
+		return &c, numbered(all)
 	}
-	return n, numbered(need)
+	return n, numbered(slices.Repeat([]bool{true}, len(need)))
+}
+
+// exactlyAll is a node pruned inside, with all its columns.
+func exactlyAll(n Node, all []bool) Node {
+	in, to := pruned(n, all)
+	return exactly(in, to, all)
 }
 
 // numbered gives the needed columns their numbers, in order.
@@ -182,10 +193,11 @@ func markCall(below []bool, schema column.Schema, c *Call) {
 }
 
 func prunedJoin(n *Join, need []bool) (Node, []int) {
-	need = slices.Clone(need)
-	mark(need, n.Schema(), n.Rest)
 	split := len(n.Left.Schema())
-	left, right := need[:split], need[split:]
+	both := make([]bool, len(n.Both()))
+	copy(both, need)
+	mark(both, n.Both(), n.Rest)
+	left, right := both[:split], both[split:]
 	for i := range n.LeftKeys {
 		mark(left, n.Left.Schema(), n.LeftKeys[i])
 		mark(right, n.Right.Schema(), n.RightKeys[i])
@@ -204,7 +216,7 @@ func prunedJoin(n *Join, need []bool) (Node, []int) {
 		to = append(to, t)
 	}
 	c.Rest = expr.Remap(n.Rest, to)
-	return &c, to
+	return &c, to[:len(need)]
 }
 
 // prunedUnion brings all parts to the same columns, which they may have pruned

@@ -60,16 +60,19 @@ func push(n Node, conds []condition) Node {
 func filtered(n Node, conds []condition) Node {
 	for len(conds) > 0 {
 		clause := conds[0].clause
-		var same []expr.Expr
+		var same, queries []expr.Expr
 		var others []condition
 		for _, c := range conds {
-			if c.clause == clause {
-				same = append(same, c.e)
-			} else {
+			switch {
+			case c.clause != clause:
 				others = append(others, c)
+			case expr.HasQuery(c.e):
+				queries = append(queries, c.e) // last, for fewer rows
+			default:
+				same = append(same, c.e)
 			}
 		}
-		n = &Filter{Input: n, Cond: expr.AndAll(same), Clause: clause}
+		n = &Filter{Input: n, Cond: expr.AndAll(append(same, queries...)), Clause: clause}
 		conds = others
 	}
 	return n
@@ -81,7 +84,9 @@ func pushFilter(n *Filter, conds []condition) Node {
 	var down []condition
 	var stay []expr.Expr
 	for _, e := range expr.Conjuncts(n.Cond) {
-		if e.CanFail() {
+		// what reads the row outside of a query stays above what does not: that
+		// is computed once for all of these rows
+		if e.CanFail() || expr.HasOuter(e) {
 			stay = append(stay, e)
 		} else {
 			down = append(down, condition{e, n.Clause})
@@ -150,9 +155,12 @@ func pushJoin(n *Join, conds []condition) Node {
 	if n.Rest != nil {
 		var rest []expr.Expr
 		for _, e := range expr.Conjuncts(n.Rest) {
-			if e.CanFail() {
+			switch {
+			case e.CanFail():
 				rest = append(rest, e)
-			} else {
+			case n.Kind == Inner && expr.HasOuter(e):
+				stay = append(stay, condition{e, "ON"})
+			default:
 				own = append(own, condition{e, "ON"})
 			}
 		}

@@ -53,8 +53,16 @@ func (n *Aggregate) Schema() column.Schema { return n.Fields }
 // Inputs is the one input.
 func (n *Aggregate) Inputs() []Node { return []Node{n.Input} }
 
-// Schema is the left columns, then the right ones.
+// Schema is the left columns, then the right ones, where the kind has them.
 func (n *Join) Schema() column.Schema {
+	if n.Kind == Semi || n.Kind == Anti {
+		return n.Left.Schema()
+	}
+	return n.Both()
+}
+
+// Both is the columns that Rest refers to: the left, then the right ones.
+func (n *Join) Both() column.Schema {
 	left, right := n.Left.Schema(), n.Right.Schema()
 	fields := make(column.Schema, 0, len(left)+len(right))
 	return append(append(fields, left...), right...)
@@ -86,6 +94,24 @@ func (n *Union) Schema() column.Schema { return n.Fields }
 
 // Inputs is the parts, in order.
 func (n *Union) Inputs() []Node { return n.Parts }
+
+// Schema is the left side's.
+func (n *Matched) Schema() column.Schema { return n.Left.Schema() }
+
+// Inputs is the left, then the right side.
+func (n *Matched) Inputs() []Node { return []Node{n.Left, n.Right} }
+
+// Schema is that of the common part.
+func (n *Shared) Schema() column.Schema { return n.Fields }
+
+// Inputs of a leaf are none: the common part is computed once, apart.
+func (*Shared) Inputs() []Node { return nil }
+
+// Schema is that of the common part.
+func (n *Lookup) Schema() column.Schema { return n.Fields }
+
+// Inputs of a leaf are none.
+func (*Lookup) Inputs() []Node { return nil }
 
 // withInputs is a copy of n over other inputs, in the order of Inputs.
 func withInputs(n Node, in []Node) Node {
@@ -125,6 +151,10 @@ func withInputs(n Node, in []Node) Node {
 	case *Union:
 		c := *n
 		c.Parts = in
+		return &c
+	case *Matched:
+		c := *n
+		c.Left, c.Right = in[0], in[1]
 		return &c
 	}
 	return n // a leaf
@@ -189,6 +219,10 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 	case *Sort:
 		c := *n
 		c.Keys = mapKeys(n.Keys, f)
+		return &c
+	case *Lookup:
+		c := *n
+		c.Keys, c.Values = mapList(n.Keys, f), mapList(n.Values, f)
 		return &c
 	}
 	return n
