@@ -46,6 +46,10 @@ func (e exit) Error() string { return fmt.Sprintf("exit code %d", int(e)) }
 func execute(args []string, in io.Reader, out, errOut io.Writer) int {
 	a := &app{in: in, out: out, err: errOut}
 	root := a.command()
+	if err := completeInShells(root); err != nil {
+		fmt.Fprintf(errOut, "nearcell: %v\n", err)
+		return exitFailed
+	}
 	root.SetArgs(args)
 	root.SetIn(in)
 	root.SetOut(out)

@@ -30,7 +30,7 @@ func manual(w io.Writer, root *cobra.Command) error {
 	p.item("nearcell", "the prompt; without a terminal, runs what the standard input says")
 	for _, c := range root.Commands() {
 		if c.IsAvailableCommand() {
-			p.item("nearcell "+c.Use, c.Short)
+			p.item("nearcell "+callOf(c), c.Short)
 		}
 	}
 	p.heading("OPTIONS")
@@ -96,7 +96,7 @@ func (p *page) synopsis(root *cobra.Command) {
 	for _, c := range root.Commands() {
 		if c.IsAvailableCommand() {
 			p.line(".br")
-			p.line(".B nearcell %s", troff(c.Use))
+			p.line(".B nearcell %s", troff(callOf(c)))
 			p.line("[options]")
 		}
 	}
@@ -123,6 +123,14 @@ func (p *page) language() {
 	for _, f := range function.Aggregates() {
 		p.item(f.Signature, f.Meaning)
 	}
+}
+
+// callOf is how a command is called; the library's own has its shells below it.
+func callOf(c *cobra.Command) string {
+	if c.HasSubCommands() {
+		return c.Use + " SHELL"
+	}
+	return c.Use
 }
 
 func flagText(f *pflag.Flag) string {
