@@ -158,7 +158,7 @@ func FromArrays(a *Arrays) (*T, error) {
 		a.Dimension < -1 || a.Dimension > 3, len(a.Repeats)%2 != 0:
 		return nil, errors.New("delaunay: arrays whose lengths do not fit")
 	}
-	f, bad := newFrame(a.Sites)
+	f, bad := newFrame(a.Sites, 1)
 	if bad >= 0 {
 		return nil, &CoordinateError{bad}
 	}

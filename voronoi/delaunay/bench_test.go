@@ -53,7 +53,7 @@ func BenchmarkOrder(b *testing.B) {
 	for _, s := range sites {
 		flat = append(flat, s.X, s.Y, s.Z)
 	}
-	f, _ := newFrame(flat)
+	f, _ := newFrame(flat, 1)
 	for b.Loop() {
 		insertionOrder(f, flat, 1)
 	}

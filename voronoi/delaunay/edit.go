@@ -71,7 +71,7 @@ func (t *T) admit(p r3.Vec) bool {
 		return false // survey again
 	}
 	one := *f
-	if !one.survey([]float64{p.X, p.Y, p.Z}) || one.rounded {
+	if !one.survey([]float64{p.X, p.Y, p.Z}, 1) || one.rounded {
 		return false
 	}
 	for k := range 3 {
@@ -89,7 +89,7 @@ func (t *T) admit(p r3.Vec) bool {
 
 // reframe chooses another frame for all sites and computes every sphere again.
 func (t *T) reframe() {
-	f, _ := newFrame(t.sites)
+	f, _ := newFrame(t.sites, 1)
 	t.frame = f
 	t.setLimits()
 	for p := 1; p < len(t.pts); p++ {

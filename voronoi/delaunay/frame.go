@@ -3,6 +3,7 @@ package delaunay
 import (
 	"math"
 	"math/bits"
+	"sync"
 )
 
 // frame maps the sites' coordinates to the internal ones: moved by an origin and
@@ -60,23 +61,39 @@ func (f *frame) cells() grid {
 
 // newFrame looks at all sites; bad is the first with a coordinate that is not finite,
 // or -1.
-func newFrame(sites []float64) (f *frame, bad int) {
+func newFrame(sites []float64, threads int) (f *frame, bad int) {
 	b := emptyBounds()
-	for i := 0; i+2 < len(sites); i += 3 {
-		x, y, z := sites[i], sites[i+1], sites[i+2]
-		if s := (x - x) + (y - y) + (z - z); s != 0 { // NaN for NaN and infinities
-			return nil, i / 3
+	bad = -1
+	var lock sync.Mutex
+	inChunks(len(sites)/3, threads, func(lo, hi int) {
+		mine := emptyBounds()
+		fault := -1
+		for i := lo; i < hi; i++ {
+			x, y, z := sites[3*i], sites[3*i+1], sites[3*i+2]
+			if s := (x - x) + (y - y) + (z - z); s != 0 { // NaN for NaN and infinities
+				fault = i
+				break
+			}
+			mine.add(x, y, z)
 		}
-		b.add(x, y, z)
-	}
+		lock.Lock()
+		defer lock.Unlock()
+		if fault >= 0 && (bad < 0 || fault < bad) {
+			bad = fault
+		}
+		if lo < hi {
+			b.add(mine.lo[0], mine.lo[1], mine.lo[2])
+			b.add(mine.hi[0], mine.hi[1], mine.hi[2])
+		}
+	})
 	f = &frame{scale: 1, scale2: 1}
-	if len(sites) == 0 {
-		return f, -1
+	if bad >= 0 || len(sites) == 0 {
+		return f, bad
 	}
 	f.place(b, true)
-	if !f.survey(sites) {
+	if !f.survey(sites, threads) {
 		f.place(b, false)
-		f.survey(sites)
+		f.survey(sites, threads)
 	}
 	return f, -1
 }
@@ -115,37 +132,60 @@ func exponentAbove(x float64) int {
 // survey checks that the frame is exact for all sites, and finds the bounds and the
 // common last binary place of the internal coordinates. It returns false when the
 // origin has to be given up.
-func (f *frame) survey(sites []float64) bool {
-	f.box = emptyBounds()
-	f.rounded = false
-	whole := true
-	var union int64
+func (f *frame) survey(sites []float64, threads int) bool {
+	all := surveyed{box: emptyBounds(), exact: true, whole: true}
+	var lock sync.Mutex
+	inChunks(len(sites)/3, threads, func(lo, hi int) {
+		one := f.surveyPart(sites[3*lo : 3*hi])
+		lock.Lock()
+		defer lock.Unlock()
+		all.exact = all.exact && one.exact
+		all.whole = all.whole && one.whole
+		all.rounded = all.rounded || one.rounded
+		all.union |= one.union
+		if lo < hi {
+			all.box.add(one.box.lo[0], one.box.lo[1], one.box.lo[2])
+			all.box.add(one.box.hi[0], one.box.hi[1], one.box.hi[2])
+		}
+	})
+	f.box, f.rounded = all.box, all.rounded
+	f.bits = maxBits + 1
+	if all.whole && !f.rounded {
+		f.bits = maxBits - min(bits.TrailingZeros64(uint64(all.union)), maxBits)
+	}
+	return all.exact
+}
+
+// surveyed is what survey finds out about some sites.
+type surveyed struct {
+	box                   bounds
+	exact, whole, rounded bool
+	union                 int64 // the bits that occur in units of 2^-maxBits
+}
+
+func (f *frame) surveyPart(sites []float64) surveyed {
+	s := surveyed{box: emptyBounds(), exact: true, whole: true}
 	for i := 0; i+2 < len(sites); i += 3 {
 		x, y, z := sites[i]-f.x0, sites[i+1]-f.y0, sites[i+2]-f.z0
-		if x+f.x0 != sites[i] || y+f.y0 != sites[i+1] || z+f.z0 != sites[i+2] ||
-			roundedDifference(sites[i], f.x0, x) || roundedDifference(sites[i+1], f.y0, y) ||
+		if roundedDifference(sites[i], f.x0, x) || roundedDifference(sites[i+1], f.y0, y) ||
 			roundedDifference(sites[i+2], f.z0, z) {
-			return false
+			s.exact = false
+			return s
 		}
 		sx, sy, sz := float64(x*f.scale)*f.scale2, float64(y*f.scale)*f.scale2, float64(z*f.scale)*f.scale2
 		if tooSmall(x, sx) || tooSmall(y, sy) || tooSmall(z, sz) {
-			f.rounded = true
+			s.rounded = true
 		}
-		x, y, z = sx, sy, sz
-		f.box.add(x, y, z)
+		s.box.add(sx, sy, sz)
 		const unit = 1 << maxBits
-		a, b, c := x*unit, y*unit, z*unit
+		a, b, c := sx*unit, sy*unit, sz*unit
 		ia, ib, ic := int64(a), int64(b), int64(c)
 		if float64(ia) != a || float64(ib) != b || float64(ic) != c {
-			whole = false
+			s.whole = false
 		}
-		union |= ia | ib | ic
+		s.union |= ia | ib | ic
 	}
-	f.bits = maxBits + 1
-	if whole && !f.rounded {
-		f.bits = maxBits - min(bits.TrailingZeros64(uint64(union)), maxBits)
-	}
-	return true
+	return s
 }
 
 // tooSmall reports whether scaling x to s may have lost bits.

@@ -370,40 +370,74 @@ func (w *worker) searchOwned(seed uint32, p int32) bool {
 		from := queue[head]
 		head++
 		t := &tets[from>>2]
-		refs := [3]uint32{t.n[(from+1)&3], t.n[(from+2)&3], t.n[(from+3)&3]}
-		t0, t1, t2 := &tets[refs[0]>>2], &tets[refs[1]>>2], &tets[refs[2]>>2]
+		r0, r1, r2 := t.n[(from+1)&3], t.n[(from+2)&3], t.n[(from+3)&3]
+		t0, t1, t2 := &tets[r0>>2], &tets[r1>>2], &tets[r2>>2]
 		x0, y0, z0 := t0.c[0]-px, t0.c[1]-py, t0.c[2]-pz
 		x1, y1, z1 := t1.c[0]-px, t1.c[1]-py, t1.c[2]-pz
 		x2, y2, z2 := t2.c[0]-px, t2.c[1]-py, t2.c[2]-pz
 		d0 := x0*x0 + y0*y0 + z0*z0
 		d1 := x1*x1 + y1*y1 + z1*z1
 		d2 := x2*x2 + y2*y2 + z2*z2
-		ins := [3]uint32{bit(d0 < float64(t0.lo)), bit(d1 < float64(t1.lo)), bit(d2 < float64(t2.lo))}
-		outs := [3]uint32{bit(d0 > float64(t0.hi)), bit(d1 > float64(t1.hi)), bit(d2 > float64(t2.hi))}
-		for i, r := range refs {
-			q := &tets[r>>2]
-			old := uint32(q.v[0]) >> 31
-			in, out := ins[i], outs[i]
-			if in|out|old == 0 {
-				in = bit(w.slowConflict(r>>2, p))
-				out = 1 - in
-			}
-			o := owner[q.v[r&3]&ownMask]
-			if in&bit(o != me)&bit(o != noOwner) != 0 {
-				w.unmark(tail)
-				return false
-			}
-			// A mixed tetrahedron must not be written, not even what it holds.
-			target := spare
-			if in != 0 {
-				target = r >> 2
-			}
-			tets[target].v[0] |= marked
-			queue[tail] = r
-			rim[edge] = r
-			tail += int(in &^ old)
-			edge += int(out &^ old)
+		in0, out0 := bit(d0 < float64(t0.lo)), bit(d0 > float64(t0.hi))
+		in1, out1 := bit(d1 < float64(t1.lo)), bit(d1 > float64(t1.hi))
+		in2, out2 := bit(d2 < float64(t2.lo)), bit(d2 > float64(t2.hi))
+
+		// A mixed tetrahedron must not be written, not even with what it holds: marks
+		// for those outside go to a spare record.
+		var old, target uint32
+		old = uint32(t0.v[0]) >> 31
+		if in0|out0|old == 0 {
+			in0 = bit(w.slowConflict(r0>>2, p))
+			out0 = 1 - in0
 		}
+		if o := owner[t0.v[r0&3]&ownMask]; in0&bit(o != me)&bit(o != noOwner) != 0 {
+			w.unmark(tail)
+			return false
+		}
+		if target = spare; in0 != 0 {
+			target = r0 >> 2
+		}
+		tets[target].v[0] |= marked
+		queue[tail] = r0
+		rim[edge] = r0
+		tail += int(in0 &^ old)
+		edge += int(out0 &^ old)
+
+		old = uint32(t1.v[0]) >> 31
+		if in1|out1|old == 0 {
+			in1 = bit(w.slowConflict(r1>>2, p))
+			out1 = 1 - in1
+		}
+		if o := owner[t1.v[r1&3]&ownMask]; in1&bit(o != me)&bit(o != noOwner) != 0 {
+			w.unmark(tail)
+			return false
+		}
+		if target = spare; in1 != 0 {
+			target = r1 >> 2
+		}
+		tets[target].v[0] |= marked
+		queue[tail] = r1
+		rim[edge] = r1
+		tail += int(in1 &^ old)
+		edge += int(out1 &^ old)
+
+		old = uint32(t2.v[0]) >> 31
+		if in2|out2|old == 0 {
+			in2 = bit(w.slowConflict(r2>>2, p))
+			out2 = 1 - in2
+		}
+		if o := owner[t2.v[r2&3]&ownMask]; in2&bit(o != me)&bit(o != noOwner) != 0 {
+			w.unmark(tail)
+			return false
+		}
+		if target = spare; in2 != 0 {
+			target = r2 >> 2
+		}
+		tets[target].v[0] |= marked
+		queue[tail] = r2
+		rim[edge] = r2
+		tail += int(in2 &^ old)
+		edge += int(out2 &^ old)
 	}
 	w.dead, w.edge = tail, edge
 	return true

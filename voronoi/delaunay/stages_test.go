@@ -127,7 +127,7 @@ func TestStagesAgreeWithPredicate(t *testing.T) {
 		for _, s := range sites {
 			flat = append(flat, s.X, s.Y, s.Z)
 		}
-		f, _ := newFrame(flat)
+		f, _ := newFrame(flat, 1)
 		m := &mesh{frame: f, sites: flat, pts: make([]point, 1)}
 		m.setLimits()
 		for i := range sites {
