@@ -69,7 +69,22 @@ func importProblem(err error, at problem.Place, file string) error {
 		}
 	}
 	p.Detail = strings.TrimRight(detail.String(), "\n")
+	if count >= 3 && allFieldCounts(faults.List) {
+		p.Hint = fmt.Sprintf("if the heading stands in another line, HEADING AT LINE says in which: DESCRIBE FILE %s guesses it; else REFUSED TO 'refused.csv' sets such lines aside",
+			lang.QuoteText(first.File))
+	}
 	return p
+}
+
+// allFieldCounts reports whether lines have other numbers of fields than the
+// heading and nothing else is wrong.
+func allFieldCounts(list []reader.Fault) bool {
+	for _, f := range list {
+		if f.Kind != reader.FieldCount {
+			return false
+		}
+	}
+	return true
 }
 
 // faultHint is the way out of a fault, empty where its text says it.
@@ -232,7 +247,7 @@ func faultText(f reader.Fault) string {
 	case reader.EmptyFile:
 		return "the file is empty"
 	case reader.NoHeading:
-		return "there is no heading where it should be (HEADING AT LINE n says in which line it stands)"
+		return "no heading stands here (HEADING AT LINE says in which line it does, DESCRIBE FILE guesses it)"
 	case reader.HeadingRepeated:
 		return fmt.Sprintf("two columns are called %s", quoted(f.Text))
 	case reader.HeadingEmpty:

@@ -17,6 +17,7 @@ func (g *fileGuess) shape() {
 	t := g.result.Table
 	g.unitsInHeadings(t)
 	g.preambleFields()
+	g.columnsOfLoggers(t)
 	if !g.findPosition(t) {
 		return
 	}
@@ -135,6 +136,25 @@ func (g *fileGuess) unitsInHeadings(t *column.Table) {
 		plain, unit := cutUnit(f.Name)
 		if numbers && t.Cols[i].Unit == nil && unit != "" && plain+"_"+unit != f.Name {
 			g.units = append(g.units, reader.ColumnUnit{Column: f.Name, Unit: column.ParseUnit(unit)})
+		}
+	}
+}
+
+// numbered is a name such as L01.
+var numbered = regexp.MustCompile(`^(.*?)[0-9]+$`)
+
+// columnsOfLoggers tells of columns that hold one logger each.
+func (g *fileGuess) columnsOfLoggers(t *column.Table) {
+	byStem := map[string][]string{}
+	for _, f := range t.Schema {
+		m := numbered.FindStringSubmatch(f.Name)
+		if m == nil || f.Type != column.Real && f.Type != column.Integer {
+			continue
+		}
+		names := append(byStem[m[1]], lang.QuoteName(f.Name))
+		if byStem[m[1]] = names; len(names) == 3 {
+			g.doubts = append(g.doubts, fmt.Sprintf("columns such as %s may be one logger each: UNPIVOT (value FOR logger IN (%s, …)) makes a row of every reading",
+				names[0], strings.Join(names, ", ")))
 		}
 	}
 }

@@ -62,7 +62,7 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 			return nil, err
 		}
 	}
-	said := importNotes(result, named.Value)
+	said := append(importNotes(result, named.Value), c.zoneNotes(named.Value)...)
 	for _, text := range said {
 		st.notes.Add(note.Note, note.Import, "%s", text)
 	}

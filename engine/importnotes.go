@@ -47,6 +47,8 @@ func importNotes(r *reader.Result, origin string) []string {
 			add("%s", text)
 		}
 	}
+	each(func(f *reader.FileFacts) bool { return f.Undivided },
+		"all of it was read as one column: perhaps the heading stands in another line, or DELIMITER is needed; DESCRIBE FILE guesses both")
 	each(func(f *reader.FileFacts) bool { return f.NumericHeading },
 		"every heading is a number: perhaps there is no heading, and the first row was taken for one")
 	each(func(f *reader.FileFacts) bool { return f.TrailingDelimiter },

@@ -2,6 +2,7 @@ package engine
 
 import (
 	"errors"
+	"fmt"
 	"strings"
 
 	"nearcell/catalog/reader"
@@ -32,6 +33,17 @@ func (c *clauses) readTimes(r *lang.TimeReading) error {
 	}
 	c.times = r
 	return nil
+}
+
+// zoneNotes tell which columns were local time: what is printed of them is UTC.
+func (c *clauses) zoneNotes(origin string) []string {
+	var notes []string
+	for _, t := range c.file.Times {
+		if t.Zone != nil && t.Zone.String() != "UTC" {
+			notes = append(notes, fmt.Sprintf("%s: %s is local time of %s in the file and kept in UTC", origin, t.Column, t.Zone))
+		}
+	}
+	return notes
 }
 
 // patternProblem words what is wrong with a pattern.

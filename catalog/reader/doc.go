@@ -3,8 +3,8 @@
 //
 // # Model
 //
-// A reader takes a Source, the whole file in memory, and Options, and gives a
-// Result: a table and the Facts of its reading. It gives facts and never text
+// A reader takes one Source or several, each a whole file in memory, and Options,
+// and gives a Result: one table and the Facts of its reading. It gives facts and never text
 // for users: what was naive, refused, left as text or not found in the heading
 // is listed in Facts, and what is wrong with the file in Faults, each with its
 // line, column and field. Whoever talks to the user words them.
@@ -16,5 +16,5 @@
 //
 // # Limitations
 //
-// The whole file is held in memory while it is read.
+// All files of a table are held in memory while they are read.
 package reader

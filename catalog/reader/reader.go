@@ -113,6 +113,7 @@ type FileFacts struct {
 	UnitsLine   int  // the line under the heading that gives units; 0: none
 	CRLF        bool // the heading ends with CR LF
 
+	Undivided                                         bool // one column, and most of its values look like several
 	NumericHeading, TrailingDelimiter, TrailingFields bool // as in Facts
 }
 

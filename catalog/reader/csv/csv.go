@@ -154,7 +154,7 @@ func (im *importer) infer() error {
 func (im *importer) inferFile(f *file) error {
 	s := f.records()
 	n := len(f.head.names)
-	extraUsed := false
+	extraUsed, undivided, records := false, 0, 0
 	for k := 0; s.next(); k++ {
 		if err := im.tick(k, s.pos); err != nil {
 			return err
@@ -165,6 +165,9 @@ func (im *importer) inferFile(f *file) error {
 		}
 		if _, bad := im.recordFault(s, f); bad {
 			continue
+		}
+		if records++; n == 1 && bytes.ContainsAny(s.rec.fields[0].text, ",;\t|") && !s.rec.fields[0].quoted {
+			undivided++
 		}
 		for i := range s.rec.fields {
 			x := &s.rec.fields[i]
@@ -177,6 +180,7 @@ func (im *importer) inferFile(f *file) error {
 			}
 		}
 	}
+	f.facts.Undivided = im.o.Delimiter == 0 && 2*undivided > records
 	lines := s.line
 	if s.lineStart == len(f.data) {
 		lines-- // the last line break begins no line

@@ -34,6 +34,40 @@
 // texts that the other decimal mark would make numbers. The columns of Options.TextColumns are INTEGER
 // only where every value is an integer written plainly, and never at fault.
 //
+// A TEXT column whose values are times by one of the patterns that are common on
+// instruments is reported too, with that pattern.
+//
+// # Times
+//
+// Columns of Options.Times are TIMESTAMP, by their pattern and on the clocks of
+// their zone; a value of another shape is a fault. Local times that a clock change
+// skips are faults. Those that it repeats are decided by the order of the rows of
+// their file: first as one sequence, then as one for each value of one of its TEXT
+// or INTEGER columns (a logger), strictly in time and, where no column gives that,
+// with rows that may repeat an instant. Every such sequence must run through time
+// without a step back over the whole file, and within the repeated hour the local
+// time must step back exactly once; else the rows stay faults (package timeform).
+//
+// # Several files
+//
+// They make one table, in their order. Each has a heading with the same names, in
+// any order, and finds its own delimiter where none is said. Types are decided over
+// all of them. Headings must agree on units, or Options.Units says what the files
+// without one are in.
+//
+// # Around the records
+//
+// Options.Preamble makes a column of what stands behind a text in the lines before
+// the heading: the rest of the line, without delimiters at its end; or the next
+// field, where the text ends a field. A text that stands there twice is a fault.
+// Such a column is never at fault: it is of a type where all files have a value of
+// that type, else TEXT.
+//
+// The line under the heading is one of units, and no record, where at least one of
+// its fields is a unit that is common on instruments and every field that is not
+// empty or a dash stands over numbers or times, is no number, no time and no word
+// for a missing value. Facts.UnitsRow tells what was taken.
+//
 // # NULL
 //
 // The empty field is NULL, and so are a field of blanks and the texts of
@@ -49,11 +83,14 @@
 // A file of nothing but blank lines, a heading line that is not there, a heading
 // with an empty or a repeated name are faults of the file as a whole. A heading
 // alone is a table without rows. Delimiters at the end of the heading, as some
-// loggers write them, make no column if no record has anything there.
+// loggers write them, make no column if no record has anything there. The same
+// holds for empty fields that end the records and that the heading has not: the
+// first record tells how many there are.
 //
 // # Limitations
 //
-// Only UTF-8. No comments. Intervals and points are not recognised and stay
+// UTF-8, or what reader.Decode turns into it. No comments. A date and a time of day
+// in two columns stay two columns. Intervals and points are not recognised and stay
 // TEXT. An infinity in a numeric column is a fault even where it was written
 // by this program.
 package csv

@@ -37,14 +37,20 @@ func (im *importer) settleColumn(f *file, i int) error {
 	for _, strict := range []bool{true, false} {
 		for k := -1; k < maxKeys; k++ {
 			var group []uint32
-			name := ""
+			name, whole := "", false
 			if k >= 0 {
 				var ok bool
 				if group, name, ok = im.groups(f, k, len(local)); !ok {
 					break
 				}
+				// Readings that are whole numbers might fall into sequences by
+				// chance: numbers are taken only where they leave nothing open.
+				whole = im.types[im.find(name)] == column.Integer
 			}
 			s := zone.Settle(local, group, strict)
+			if whole && len(s.Undecided) > 0 {
+				continue
+			}
 			if s.Orderly && (!found || len(s.Undecided) < len(best.Undecided)) {
 				best, by, found = s, name, true
 			}
@@ -109,7 +115,8 @@ func (f *file) fieldOf(i int) int {
 // that may tell loggers apart; ok is false where there are not so many.
 func (im *importer) groups(f *file, k, records int) (group []uint32, name string, ok bool) {
 	for i := range im.fileColumns() {
-		if t := im.types[i]; t != column.Text && t != column.Integer {
+		c := &im.columns[i]
+		if t := im.types[i]; t != column.Text && t != column.Integer || c.unit != nil {
 			continue
 		}
 		if k--; k >= 0 {
