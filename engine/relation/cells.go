@@ -88,8 +88,11 @@ func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
 
 func (c *cellRows) Cost() (voronoi.Cost, error) { return c.cost(c.want) }
 
-func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
-	defer c.tell() // where emit has had enough rows, too
+func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err error) {
+	defer func() { // where emit has had enough rows, too
+		c.said.partial = err != nil
+		c.tell()
+	}()
 	out := newBatches(c.b, c.r.Need, c.own, emit)
 	rows := make([]int32, 0, BatchRows)
 	flush := func() error {

@@ -81,8 +81,11 @@ type pairs struct {
 	a, b []int32
 }
 
-func (c *contactRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
-	defer c.tell() // where emit has had enough rows, too
+func (c *contactRows) Run(ctx context.Context, emit func(*column.Batch) error) (err error) {
+	defer func() { // where emit has had enough rows, too
+		c.said.partial = err != nil
+		c.tell()
+	}()
 	out := &pairs{batches: newBatches(c.b, c.r.Need, c.each+contactDistance, emit)}
 	for i, p := range c.parts {
 		if err := c.part(ctx, p, out); err != nil {

@@ -22,6 +22,17 @@ type findings struct {
 
 	contacts  int // shown
 	openFaces int // of them, without an end
+
+	partial bool // not all of them were asked for
+}
+
+// computed counts cells or contacts; those that nobody asked for are not among
+// them.
+func (f *findings) computed(n int, noun string) string {
+	if f.partial {
+		noun = "computed " + noun
+	}
+	return count(n, noun)
 }
 
 // tell writes the notes.
@@ -37,7 +48,7 @@ func (s *sites) tell() {
 	}
 	if f.unbounded > 0 {
 		s.env.Notes.Add(note.Note, note.Cells, "%d of %s of %s %s unbounded (no solid): volume, area and farthest are Infinity, "+
-			"cx, cy, cz NULL; WITHIN a solid closes them", f.unbounded, count(f.rows, "cell"), b.Name, verb(f.unbounded, "is", "are"))
+			"cx, cy, cz NULL; WITHIN a solid closes them", f.unbounded, f.computed(f.rows, "cell"), b.Name, verb(f.unbounded, "is", "are"))
 	}
 	if f.unshaped > 0 {
 		s.env.Notes.Add(note.Note, note.Cells, "%s of %s %s cut by a re-entrant part of %s: edges and vertices are NULL there, faces = contacts + walls",
@@ -49,7 +60,7 @@ func (s *sites) tell() {
 	}
 	if f.openFaces > 0 {
 		s.env.Notes.Add(note.Note, note.Cells, "%d of %s of %s %s unbounded (no solid): area is Infinity, mx, my, mz NULL; WITHIN a solid closes them",
-			f.openFaces, count(f.contacts, "contact"), b.Name, verb(f.openFaces, "is", "are"))
+			f.openFaces, f.computed(f.contacts, "contact"), b.Name, verb(f.openFaces, "is", "are"))
 	}
 }
 

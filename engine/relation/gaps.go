@@ -88,8 +88,11 @@ type gapBatch struct {
 	places []uint32
 }
 
-func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) error {
-	defer g.tell() // where emit has had enough rows, too
+func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) (err error) {
+	defer func() { // where emit has had enough rows, too
+		g.said.partial = err != nil
+		g.tell()
+	}()
 	out := &gapBatch{batches: newBatches(g.b, g.r.Need, g.each, emit)}
 	for i, p := range g.parts {
 		if err := g.part(ctx, p, out); err != nil {
