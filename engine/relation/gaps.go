@@ -17,7 +17,7 @@ import (
 var gaps = &Definition{
 	Noun:    "GAPS",
 	RowIs:   "place locally farthest from every site",
-	Meaning: "the centres of the empty spheres that no small move within the solid makes larger",
+	Meaning: "where nobody measured: each farther from every site than all around it",
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"STRETCHED"},
 	Open:    openGaps,
