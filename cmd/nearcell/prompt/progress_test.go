@@ -101,7 +101,7 @@ func TestWords(t *testing.T) {
 		{true, "warning: short\n", yellow + "warning: short" + plain + "\n"},
 		{true, "1 row, 0.1 s\n", "1 row, 0.1 s\n"},
 		{false, "input:1: there is no such thing\n  a + b\n      ^\n", "input:1: there is no\n    such thing\n  a + b\n      ^\n"},
-		{false, "input:1: no\n  SELECT a, b, c FROM somewhere;\n                      ^^^^^\n", "input:1: no\n… c FROM somewhere;\n           ^^^^^\n"},
+		{false, "input:1: no\n  SELECT a, b, c FROM somewhere;\n                      ^^^^^\n", "input:1: no\n… , c FROM somewhere\n           ^^^^^\n"},
 		{false, "note: one two three four five six\n", "note: one two three\n      four five six\n"},
 		{false, "note: onetwothreefourfivesixseveneight nine\n", "note: onetwothreefourfivesixseveneight\n      nine\n"},
 	} {
