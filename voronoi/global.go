@@ -346,3 +346,24 @@ func (w *walker) cutPlanes() {
 		}
 	}
 }
+
+// Kept is how many bytes the tetrahedralisation takes that the diagram keeps; 0: none
+// was built.
+func (d *Diagram) Kept() int64 {
+	d.building.Lock()
+	defer d.building.Unlock()
+	if d.whole == nil {
+		return 0
+	}
+	return d.globalBytes()
+}
+
+// CostOfTetrahedra estimates what Tetrahedra takes.
+func (d *Diagram) CostOfTetrahedra() Cost {
+	n := d.tree.Len()
+	return Cost{
+		Seconds: (secondsPerBuild + float64(n)*secondsPerVertex) / float64(max(1, d.threads)),
+		Bytes:   d.globalBytes(),
+		Cells:   n,
+	}
+}

@@ -263,7 +263,7 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 	if within != nil && unclipped != nil {
 		return problem.New("clauses", b.at(unclipped), "WITHIN and UNCLIPPED say the opposite of each other")
 	}
-	if within == nil && unclipped == nil && !campaign {
+	if within == nil && unclipped == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") {
 		b.say(note.Note, note.Sites, "%s has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along", rel.Title())
 	}
 	return nil

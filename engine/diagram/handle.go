@@ -28,6 +28,7 @@ type Handle struct {
 	known    []voronoi.Measures
 	cells    voronoi.Cells
 	contacts [][]voronoi.Contact // nil: not computed
+	kept     int64               // bytes of a tetrahedralisation
 	gaps     *[]coverage.Gap     // nil: not looked for
 }
 
@@ -119,7 +120,7 @@ func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int
 			return nil, err
 		}
 		h.store.count(len(got.Sites), 0)
-		h.store.grow(h, h.merge(want, got))
+		h.store.grow(h, h.merge(want, got)+h.keptMore())
 	}
 	view := h.cells
 	return &view, nil
@@ -325,6 +326,6 @@ func (h *Handle) lists(ctx context.Context, sites []int32, progress func(done, t
 			return nil, err
 		}
 	}
-	h.store.grow(h, bytes)
+	h.store.grow(h, bytes+h.keptMore())
 	return h.contacts, nil
 }

@@ -8,15 +8,11 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts, gaps}
+var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
 var planned = map[string]string{
-	"TETRAHEDRA":      "Delaunay tetrahedron",
-	"TRIANGLES":       "Delaunay triangle",
-	"VERTICES":        "Voronoi vertex",
-	"HULL":            "triangle of the convex hull",
 	"PLACEMENTS":      "proposed further site",
 	"REDUNDANCY":      "site, least missed first",
 	"SPACING":         "campaign",
