@@ -243,14 +243,14 @@ func (p *prompt) hint(text string) {
 
 // run runs statements and remembers them.
 func (p *prompt) run(text string) (ended bool, err error) {
+	if isExit(text) {
+		return true, nil
+	}
 	for _, line := range oneLines(text) {
 		p.history.add(line)
 	}
 	if err := p.loadHistory(); err != nil {
 		return true, err
-	}
-	if isExit(text) {
-		return true, nil
 	}
 	return p.execute(text)
 }
