@@ -195,6 +195,8 @@ func (s *scope) noColumn(b *binder, c *lang.Column) error {
 		p.WithHint("a text stands between single quotes: '%s'", c.Name.Text)
 	case b.env.Params != nil && c.Qualifier.IsZero() && b.hasParam(c.Name.Text):
 		p.WithHint("the value set by LET is written :%s", c.Name.Text)
+	default:
+		p.Hint = elsewhere(c.Name.Text, what, names)
 	}
 	return p
 }

@@ -10,9 +10,37 @@ input:1: there is no column 'tmep' in CELLS OF hall (did you mean 'temp'?)
 plan
 SELECT id, humidity FROM hall
 ----
-input:1: there is no column 'humidity' in hall
+input:1: there is no column 'humidity' in hall (it has id, x, y, z, temp, area)
   SELECT id, humidity FROM hall
              ^^^^^^^^
+
+plan
+SELECT id, volume FROM hall
+----
+input:1: there is no column 'volume' in hall (CELLS OF hall has it)
+  SELECT id, volume FROM hall
+             ^^^^^^
+
+plan
+SELECT a, volume FROM CONTACTS OF hall
+----
+input:1: there is no column 'volume' in CONTACTS OF hall (CELLS OF hall has it)
+  SELECT a, volume FROM CONTACTS OF hall
+            ^^^^^^
+
+plan
+SELECT avg temp FROM hall
+----
+input:1: there is no column 'avg' in hall (a function is written with brackets: AVG([DISTINCT] x))
+  SELECT avg temp FROM hall
+         ^^^
+
+plan
+SELECT STDDEV(temp), LEN(id) FROM hall
+----
+input:1: there is no function 'STDDEV' (write STDDEV_SAMP(x), or STDDEV_POP(x) of all there is)
+  SELECT STDDEV(temp), LEN(id) FROM hall
+         ^^^^^^
 
 plan
 SELECT id FROM hal
@@ -129,7 +157,7 @@ input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING)
 plan
 SELECT * FROM CELLS OF hall FOR EACH hour
 ----
-input:1: there is no column 'hour' in hall
+input:1: there is no column 'hour' in hall (it has id, x, y, z, temp, area)
   SELECT * FROM CELLS OF hall FOR EACH hour
                                        ^^^^
 
@@ -374,7 +402,7 @@ input:1: column 1 of UNION is in °C ('temp') on one side and in ppm ('co2') on 
 plan
 SELECT id FROM hall UNION ALL SELECT logger FROM log ORDER BY logger
 ----
-input:1: there is no column 'logger' in the columns of this query
+input:1: there is no column 'logger' in the columns of this query (it has id)
   SELECT id FROM hall UNION ALL SELECT logger FROM log ORDER BY logger
                                                                 ^^^^^^
 
@@ -444,7 +472,7 @@ input:1: (query) gives 2 columns called 'id' (name one of them otherwise: SELECT
 plan
 SELECT id FROM hall JOIN log USING (id)
 ----
-input:1: there is no column 'id' in log
+input:1: there is no column 'id' in log (it has logger, t, temp, co2, n, ok)
   SELECT id FROM hall JOIN log USING (id)
                                       ^^
 
@@ -458,7 +486,7 @@ input:1: 'temp' may be any of 2 columns (write c.temp or log.temp)
 plan
 SELECT who FROM (SELECT id FROM hall) AS q
 ----
-input:1: there is no column 'who' in q
+input:1: there is no column 'who' in q (it has id)
   SELECT who FROM (SELECT id FROM hall) AS q
          ^^^
 

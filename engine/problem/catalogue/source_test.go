@@ -24,7 +24,10 @@ type found struct {
 	t     *testing.T
 	files *token.FileSet
 	codes map[string]string
-	calls int
+	// named are the constants that are given as codes, texts the constants that
+	// there are, both by name.
+	named, texts map[string]string
+	calls        int
 }
 
 func (f *found) code(e ast.Expr) {
@@ -33,9 +36,9 @@ func (f *found) code(e ast.Expr) {
 		if code, err := strconv.Unquote(e.Value); err == nil && code != "" {
 			f.codes[code] = f.files.Position(e.Pos()).String()
 		}
-	case *ast.Ident: // a constant CodeTypes, which is collected where it is declared, or a code that is passed on
-		if e.Name != "code" && !strings.HasPrefix(e.Name, "Code") {
-			f.t.Errorf("%s: %s is no code that can be read", f.files.Position(e.Pos()), e.Name)
+	case *ast.Ident:
+		if e.Name != "code" { // which is passed on
+			f.named[e.Name] = f.files.Position(e.Pos()).String()
 		}
 	case *ast.SelectorExpr:
 		if !strings.HasPrefix(e.Sel.Name, "Code") {
@@ -70,7 +73,13 @@ func (f *found) visit(n ast.Node) bool {
 		}
 	case *ast.ValueSpec:
 		for i, name := range n.Names {
-			if strings.HasPrefix(name.Name, "Code") && i < len(n.Values) {
+			if i >= len(n.Values) {
+				continue
+			}
+			if text, ok := n.Values[i].(*ast.BasicLit); ok && text.Kind == token.STRING {
+				f.texts[name.Name], _ = strconv.Unquote(text.Value)
+			}
+			if strings.HasPrefix(name.Name, "Code") {
 				f.code(n.Values[i])
 			}
 		}
@@ -105,7 +114,7 @@ func calledName(c *ast.CallExpr) (name, in string) {
 
 // TestSource: every code of the source is documented, and no other.
 func TestSource(t *testing.T) {
-	f := &found{t: t, files: token.NewFileSet(), codes: map[string]string{}}
+	f := &found{t: t, files: token.NewFileSet(), codes: map[string]string{}, named: map[string]string{}, texts: map[string]string{}}
 	for _, room := range []string{"../..", "../../../cmd/nearcell"} {
 		err := filepath.WalkDir(room, func(path string, d fs.DirEntry, err error) error {
 			if err != nil {
@@ -130,6 +139,12 @@ func TestSource(t *testing.T) {
 	}
 	if f.calls < 100 {
 		t.Fatalf("only %d errors found in the source", f.calls)
+	}
+	for name, at := range f.named {
+		if f.texts[name] == "" {
+			t.Errorf("%s: %s is no code that can be read", at, name)
+		}
+		f.codes[f.texts[name]] = at
 	}
 	for code, at := range f.codes {
 		if _, ok := catalogue.Lookup(code); !ok {
