@@ -24,17 +24,21 @@
 //
 // # The terminal
 //
-// The library for editing lines panics, in a goroutine of its own, at a
-// candidate that is wider than the terminal; candidates are cut and dropped so
-// that this cannot happen. It suspends its parent at Ctrl-Z, ends at the Delete key
-// on an empty line, and takes pasted tabs for a wish to complete; keys.go stands
-// between it and the terminal. Its Close may block, so it is never called: the
-// terminal's state is kept at the start and put back at the end, whatever the
-// end is.
+// The library for editing lines panics, in a goroutine of its own, at a candidate
+// that is wider than the terminal (adapter.go cuts them), at Ctrl-T in a line of one
+// character, at Ctrl-K while it shows candidates, and at the end of a search of an
+// empty history; it never comes back from a terminal as wide as the prompt. It
+// suspends its parent at Ctrl-Z, ends at the Delete key on an empty line, and takes
+// pasted tabs for a wish to complete. keys.go and the line editor's configuration
+// stand between all this and the user, and a test types at random to find more.
+// Its Close may block, so it is never called: the terminal's state is kept at the
+// start and put back at the end, whatever the end is.
 //
 // # Limitations
 //
-// Completion looks at the statement at the cursor only. It offers what has an
-// engine, not all of the language. A statement that holds the character ␤ itself
-// is not kept in the history.
+// Completion looks at the statement at the cursor only, and only appends. The words
+// that it asks the parser for may be of statements that the engine refuses so far.
+// A statement that holds the character ␤ itself is not kept in the history. The
+// sizes of tables and of the line of progress are those of the terminal when they
+// are printed. Without job control, Ctrl-Z waits a second and does nothing.
 package prompt
