@@ -242,7 +242,11 @@ func (g *fileGuess) findings() []string {
 		add("its bytes are no UTF-8; they are read as %s: look at letters such as ü and °", l.Encoding)
 	}
 	if len(l.Preamble) > 0 {
-		add("the heading is line %d; before it stand %s: %s", l.Heading, plural(len(l.Preamble), "line"), listed(quotedAll(l.Preamble), 6))
+		verb := "stand"
+		if len(l.Preamble) == 1 {
+			verb = "stands"
+		}
+		add("the heading is line %d; before it %s %s: %s", l.Heading, verb, plural(len(l.Preamble), "line"), listed(quotedAll(l.Preamble), 6))
 	}
 	if l.Comma != "" {
 		add("numbers have a decimal comma, as %s in line %d", quoted(l.Comma), l.CommaAt)

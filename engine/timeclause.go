@@ -24,10 +24,20 @@ func (c *clauses) readTimes(r *lang.TimeReading) error {
 			return patternProblem(err, c.st.at(t.Form), t.Form.Value)
 		}
 		column := reader.TimeColumn{Column: t.Column.Text, Form: form}
+		zone := ""
 		if t.Zone != nil {
-			if column.Zone, err = timeform.LoadZone(t.Zone.Value); err != nil {
-				return zoneProblem(err, c.st.at(t.Zone), t.Zone.Value)
+			zone = t.Zone.Value
+		} else if form.SaysUTC() {
+			zone = "UTC"
+		}
+		if t.Zone != nil || form.SaysUTC() {
+			if column.Zone, err = timeform.LoadZone(zone); err != nil {
+				return zoneProblem(err, c.st.at(t.Zone), zone)
 			}
+		}
+		if form.SaysUTC() && !isUTC(zone) {
+			return problem.New("clause", c.st.at(t.Zone), "the Z in the pattern says UTC, and ZONE says %s", zone).
+				WithHint("leave ZONE out, or write the Z of a local time as \"Z\" in double quotation marks")
 		}
 		c.file.Times = append(c.file.Times, column)
 	}
@@ -35,11 +45,20 @@ func (c *clauses) readTimes(r *lang.TimeReading) error {
 	return nil
 }
 
+// isUTC reports whether a zone is UTC by one of its names.
+func isUTC(zone string) bool {
+	switch strings.ToUpper(zone) {
+	case "UTC", "Z", "+00:00", "+00", "+0000", "ETC/UTC":
+		return true
+	}
+	return false
+}
+
 // zoneNotes tell which columns were local time: what is printed of them is UTC.
 func (c *clauses) zoneNotes(origin string) []string {
 	var notes []string
 	for _, t := range c.file.Times {
-		if t.Zone != nil && t.Zone.String() != "UTC" {
+		if t.Zone != nil && !isUTC(t.Zone.String()) {
 			notes = append(notes, fmt.Sprintf("%s: %s is local time of %s in the file and kept in UTC", origin, t.Column, t.Zone))
 		}
 	}

@@ -18,6 +18,13 @@ type Form struct {
 // String is the pattern as it was written.
 func (f *Form) String() string { return f.text }
 
+// SaysUTC reports whether the pattern ends with a Z, which is how ISO 8601 says
+// that a time is UTC.
+func (f *Form) SaysUTC() bool {
+	last := len(f.items) - 1
+	return last > 0 && f.items[last].part == literal && f.items[last].text == "Z" && f.items[last-1].digits()
+}
+
 // part is what an item of a pattern stands for.
 type part uint8
 
