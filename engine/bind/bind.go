@@ -24,7 +24,11 @@ type Env struct {
 // Query binds a query to a plan. The plan is the query as written: no rule has
 // touched it, every relation needs all its columns.
 func Query(env *Env, q *lang.Query) (plan.Node, error) {
-	return newBinder(env).query(q)
+	n, err := newBinder(env).query(q)
+	if err != nil {
+		return nil, err
+	}
+	return plan.Inline(n), nil
 }
 
 // Expression binds an expression without columns: the value of LET, of SET, of

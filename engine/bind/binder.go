@@ -19,6 +19,8 @@ type binder struct {
 	source *problem.Source
 	ctes   *cte     // the names of WITH that are visible
 	views  []string // keys of the views (or solids) being bound, outermost first
+	outer  *outside // where the query stands, if it stands in an expression
+	quiet  bool     // bound only for its faults
 
 	sources *int // bound so far in the whole statement
 }
@@ -30,10 +32,13 @@ const maxSources = 5000
 
 func newBinder(env *Env) *binder { return &binder{env: env, source: env.Source, sources: new(int)} }
 
-// cte is a name of WITH; its query sees the names before it.
+// cte is a name of WITH; its query sees the names before it. It is bound once:
+// however often it is used, the plan has it once.
 type cte struct {
 	def    *lang.CTE
 	before *cte
+	outer  *outside  // where its WITH stands
+	bound  [2]*bound // [1]: quietly, for its faults
 }
 
 // at is the place of a node in the text that is being bound.

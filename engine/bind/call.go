@@ -58,7 +58,10 @@ func (x *exprs) arguments(c *lang.Call, fn *function.Scalar) ([]expr.Expr, error
 		}
 		return []expr.Expr{expr.NewConst(column.String(strings.ToUpper(word.Name.Text)), x.at(word)), t}, nil
 	}
-	if c.Separators != nil && fn.Name != "SUBSTRING" {
+	if fn.Name == "TRIM" && len(c.Args) == 2 && (len(c.Separators) != 1 || c.Separators[0] != lang.FromWord) {
+		return nil, problem.New("arguments", x.at(c), "TRIM is written TRIM(text), or TRIM(' ' FROM text) for a character of its own")
+	}
+	if c.Separators != nil && fn.Name != "SUBSTRING" && fn.Name != "TRIM" {
 		return nil, problem.New("arguments", x.at(c), "the arguments of %s are separated by commas", fn.Name).WithHint("%s", fn.Signature)
 	}
 	return x.all(c.Args)
@@ -114,6 +117,9 @@ func (x *exprs) noFunction(c *lang.Call) error {
 // aggregate binds an aggregate: where rows are groups it becomes a column of the
 // aggregation.
 func (x *exprs) aggregate(c *lang.Call, fn *function.Aggregate) (expr.Expr, error) {
+	if e, ok, err := x.ofOutside(c); ok {
+		return e, err
+	}
 	switch {
 	case x.within != "":
 		return nil, problem.New("nested-aggregate", x.at(c), "%s stands inside %s, and an aggregate cannot hold another", fn.Name, x.within).

@@ -50,11 +50,11 @@ func (x *exprs) bind(e lang.Expr) (expr.Expr, error) {
 	case *lang.Call:
 		return x.call(e)
 	case *lang.Subquery:
-		return nil, x.notYet(e, "a query as a value").WithHint("join the query in FROM: … CROSS JOIN (SELECT …) AS q")
+		return x.scalar(e)
 	case *lang.Exists:
-		return nil, x.notYet(e, "EXISTS").WithHint("join the query in FROM")
+		return x.exists(e)
 	case *lang.AtTimeZone:
-		return nil, x.notYet(e, "AT TIME ZONE").WithHint("times are kept in UTC; add an INTERVAL")
+		return x.atTimeZone(e)
 	}
 	return nil, problem.New("failed", x.at(e), "an expression of an unknown kind")
 }
@@ -100,7 +100,7 @@ func (x *exprs) made(n lang.Node, args ...expr.Expr) func(expr.Expr, error) (exp
 // column binds the name of a column.
 func (x *exprs) column(c *lang.Column) (expr.Expr, error) {
 	if x.scope == nil {
-		return nil, x.nothingHere(c)
+		return x.outward(c, x.nothingHere(c))
 	}
 	i, err := x.scope.resolve(x.binder, c)
 	if err != nil {
@@ -119,7 +119,7 @@ func (x *exprs) column(c *lang.Column) (expr.Expr, error) {
 // says why not.
 func (x *exprs) alias(c *lang.Column, err error) (expr.Expr, error) {
 	if !c.Qualifier.IsZero() {
-		return nil, err
+		return x.outward(c, err)
 	}
 	hits, _ := x.scope.find(x.binder, c.Qualifier, c.Name)
 	if len(hits) > 1 {
@@ -133,6 +133,10 @@ func (x *exprs) alias(c *lang.Column, err error) (expr.Expr, error) {
 	if len(hits) > 0 {
 		return nil, err
 	}
+	e, outerErr := x.outward(c, err)
+	if outerErr == nil {
+		return e, nil
+	}
 	for _, item := range x.hidden {
 		if !item.Alias.IsZero() && c.Name.Matches(item.Alias.Text) {
 			p := problem.New("no-column", x.at(c), "'%s' names an item of SELECT, which %s does not know yet", c.Name.Text, x.clause)
@@ -142,7 +146,7 @@ func (x *exprs) alias(c *lang.Column, err error) (expr.Expr, error) {
 			return nil, p.WithHint("repeat the expression, or put the query into FROM (SELECT …)")
 		}
 	}
-	return nil, err
+	return nil, outerErr
 }
 
 // nothingHere refuses a column where only values may stand.
@@ -240,7 +244,7 @@ func (x *exprs) predicate(e lang.Expr) (expr.Expr, error) {
 
 func (x *exprs) in(e *lang.In) (expr.Expr, error) {
 	if e.Query != nil {
-		return nil, x.notYet(e, "IN (query)").WithHint("JOIN the query with ON instead; SELECT DISTINCT in it keeps rows from repeating")
+		return x.inQuery(e)
 	}
 	v, err := x.all(append([]lang.Expr{e.Operand}, e.List...))
 	if err != nil {

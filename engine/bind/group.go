@@ -74,6 +74,15 @@ func sameShape(a, b lang.Expr) bool {
 	case *lang.Like:
 		_, ok := b.(*lang.Like)
 		return ok
+	case *lang.Subquery:
+		_, ok := b.(*lang.Subquery)
+		return ok
+	case *lang.Exists:
+		_, ok := b.(*lang.Exists)
+		return ok
+	case *lang.AtTimeZone:
+		_, ok := b.(*lang.AtTimeZone)
+		return ok
 	}
 	return false
 }

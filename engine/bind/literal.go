@@ -149,6 +149,9 @@ func (b *binder) value(e lang.Expr) (column.Value, error) {
 	if v, ok := expr.Const(x); ok {
 		return v, nil
 	}
+	if expr.HasQuery(x) {
+		return column.Value{}, problem.New("query-here", b.at(e), "a query cannot stand here").WithHint("here a value is needed before any query runs")
+	}
 	var w expr.Work
 	v, err := x.Eval(&w, &column.Batch{N: 1}, nil)
 	if err != nil {

@@ -27,7 +27,7 @@ type scopeSource struct {
 type scopeColumn struct {
 	column.Field
 	source int
-	merged bool // the second copy of a column of USING: only seen when qualified
+	merged bool // a copy of a column of USING: only seen when qualified
 	costly bool // left out of *
 }
 
@@ -173,6 +173,9 @@ func (s *scope) noSource(b *binder, q lang.Name) error {
 func (s *scope) noColumn(b *binder, c *lang.Column) error {
 	what, names := s.what(), []string(nil)
 	for _, x := range s.columns {
+		if x.Name == "" {
+			continue
+		}
 		if t := s.sources[x.source]; c.Qualifier.IsZero() || c.Qualifier.Matches(t.alias) {
 			names = append(names, x.Name)
 			if !c.Qualifier.IsZero() {
@@ -220,6 +223,9 @@ func (s *scope) renamed(b *binder, a *lang.Aliased) (*scope, error) {
 		t.sources = []scopeSource{{alias: a.Alias.Text, what: what, notYet: notYet}}
 		for i := range t.columns {
 			t.columns[i].source = 0
+			if t.columns[i].merged {
+				t.columns[i].Name = "" // under its source alone, which has no name any more
+			}
 		}
 	}
 	if len(a.Columns) == 0 {

@@ -20,7 +20,7 @@ func (b *binder) query(q *lang.Query) (plan.Node, error) {
 				return nil, problem.New("same-name", b.at(&c.Name), "WITH names '%s' twice", c.Name.Text)
 			}
 		}
-		inner.ctes = &cte{def: c, before: inner.ctes}
+		inner.ctes = &cte{def: c, before: inner.ctes, outer: b.outer}
 	}
 	if err := inner.checkCTEs(q); err != nil {
 		return nil, err
@@ -47,8 +47,8 @@ func (b *binder) checkCTEs(q *lang.Query) error {
 		quiet := *b
 		env := *b.env
 		env.Notes = nil
-		quiet.env = &env
-		if _, err := quiet.bindCTE(c); err != nil {
+		quiet.env, quiet.quiet = &env, true
+		if _, err := quiet.bindCTE(c, &c.def.Name); err != nil {
 			return err
 		}
 	}
@@ -301,7 +301,7 @@ func (c *selection) star(it *lang.Item) error {
 	var costly []string
 	for i, col := range c.from.columns {
 		switch {
-		case source >= 0 && col.source != source, source < 0 && col.merged:
+		case source >= 0 && col.source != source, source < 0 && col.merged, col.Name == "":
 			continue
 		case col.costly:
 			costly = append(costly, col.Name)

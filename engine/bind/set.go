@@ -25,15 +25,8 @@ func (b *binder) body(body lang.Body) (plan.Node, error) {
 	return nil, problem.New("failed", b.at(body), "a query of an unknown kind")
 }
 
-// setOp binds UNION and UNION ALL.
+// setOp binds UNION, INTERSECT and EXCEPT.
 func (b *binder) setOp(s *lang.SetOp) (plan.Node, error) {
-	if s.Kind != lang.Union {
-		p := b.notYet(s, string(s.Kind))
-		if s.Kind == lang.Except {
-			return nil, p.WithHint("LEFT JOIN the rows to be left out and keep WHERE … IS NULL")
-		}
-		return nil, p.WithHint("JOIN the two queries USING their columns")
-	}
 	left, err := b.body(s.Left)
 	if err != nil {
 		return nil, err
@@ -42,15 +35,25 @@ func (b *binder) setOp(s *lang.SetOp) (plan.Node, error) {
 	if err != nil {
 		return nil, err
 	}
-	fields, err := b.unionFields(s.Right, left.Schema(), right.Schema())
+	fields, err := b.unionFields(s, left.Schema(), right.Schema())
 	if err != nil {
 		return nil, err
 	}
-	u := &plan.Union{Fields: fields}
-	for _, part := range []plan.Node{left, right} {
-		if part, err = b.fitted(s, part, fields); err != nil {
+	parts := [2]plan.Node{left, right}
+	for i := range parts {
+		if parts[i], err = b.fitted(s, parts[i], fields); err != nil {
 			return nil, err
 		}
+	}
+	if s.Kind != lang.Union {
+		m := &plan.Matched{Kind: plan.Intersect, All: s.All, Left: parts[0], Right: parts[1]}
+		if s.Kind == lang.Except {
+			m.Kind = plan.Except
+		}
+		return m, nil
+	}
+	u := &plan.Union{Fields: fields}
+	for _, part := range parts {
 		if inner, ok := part.(*plan.Union); ok {
 			u.Parts = append(u.Parts, inner.Parts...)
 			continue
@@ -64,9 +67,10 @@ func (b *binder) setOp(s *lang.SetOp) (plan.Node, error) {
 }
 
 // unionFields are the columns of both sides under the names of the left one.
-func (b *binder) unionFields(n lang.Node, left, right column.Schema) (column.Schema, error) {
+func (b *binder) unionFields(s *lang.SetOp, left, right column.Schema) (column.Schema, error) {
+	n, kind := s.Right, s.Kind
 	if len(left) != len(right) {
-		return nil, problem.New("columns", b.at(n), "UNION joins rows of equal columns, but its sides have %s and %d", count(len(left), "column"), len(right))
+		return nil, problem.New("columns", b.at(n), "%s joins rows of equal columns, but its sides have %s and %d", kind, count(len(left), "column"), len(right))
 	}
 	fields := make(column.Schema, len(left))
 	for i, l := range left {
@@ -79,14 +83,14 @@ func (b *binder) unionFields(n lang.Node, left, right column.Schema) (column.Sch
 		case l.Type.Numeric() && r.Type.Numeric():
 			fields[i].Type = column.Real
 		default:
-			return nil, problem.New("types", b.at(n), "column %d of UNION is %s ('%s') on one side and %s ('%s') on the other",
-				i+1, l.Type, l.Name, r.Type, r.Name).WithHint("CAST one of them")
+			return nil, problem.New("types", b.at(n), "column %d of %s is %s ('%s') on one side and %s ('%s') on the other",
+				i+1, kind, l.Type, l.Name, r.Type, r.Name).WithHint("CAST one of them")
 		}
 		switch {
 		case column.SameUnit(l.Unit, r.Unit):
 		case l.Unit != nil && r.Unit != nil:
-			return nil, problem.New("units", b.at(n), "column %d of UNION is in %s ('%s') on one side and in %s ('%s') on the other",
-				i+1, l.Unit, l.Name, r.Unit, r.Name)
+			return nil, problem.New("units", b.at(n), "column %d of %s is in %s ('%s') on one side and in %s ('%s') on the other",
+				i+1, kind, l.Unit, l.Name, r.Unit, r.Name)
 		default:
 			fields[i].Unit = nil // one side does not say
 		}

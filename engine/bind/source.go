@@ -88,7 +88,7 @@ func (b *binder) subquery(q *lang.Query) (bound, error) {
 // named binds a name after FROM or OF: of WITH, else of the catalog.
 func (b *binder) named(n *lang.Name) (bound, error) {
 	if c := b.findCTE(n); c != nil {
-		return b.bindCTE(c)
+		return b.bindCTE(c, n)
 	}
 	o, err := b.object(n)
 	if err != nil {
@@ -123,20 +123,34 @@ func (b *binder) findCTE(n *lang.Name) *cte {
 	return nil
 }
 
-// bindCTE binds the query of a name of WITH for one use of it.
-func (b *binder) bindCTE(c *cte) (bound, error) {
-	inner := *b
-	inner.ctes = c.before
-	node, err := inner.query(c.def.Query)
-	if err != nil {
-		return bound{}, err
+// bindCTE binds the query of a name of WITH, or gives what it was bound to.
+func (b *binder) bindCTE(c *cte, at lang.Node) (bound, error) {
+	kept := &c.bound[0]
+	if b.quiet {
+		kept = &c.bound[1]
 	}
-	name := c.def.Name.Text
-	s := newScope(name, name, node.Schema())
-	if len(c.def.Columns) > 0 {
-		err = s.rename(b, c.def.Columns)
+	if *kept == nil {
+		inner := *b
+		inner.ctes, inner.outer = c.before, c.outer
+		node, err := inner.query(c.def.Query)
+		if err != nil {
+			return bound{}, err
+		}
+		name := c.def.Name.Text
+		s := newScope(name, name, node.Schema())
+		if len(c.def.Columns) > 0 {
+			if err := s.rename(b, c.def.Columns); err != nil {
+				return bound{}, err
+			}
+		}
+		common := &plan.Common{Name: name, Plan: node}
+		*kept = &bound{&plan.Shared{Common: common, Fields: node.Schema()}, s}
 	}
-	return bound{node, s}, err
+	if b.outer != c.outer && plan.ReadsOuter((*kept).node) {
+		return bound{}, b.notYet(at, "a name of WITH that depends on a row outside, in a query further inside,").
+			WithHint("put its query there")
+	}
+	return **kept, nil
 }
 
 // object finds a name in the catalog.

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/function"
 	"nearcell/lang"
 )
 
@@ -267,6 +268,9 @@ func (e *Call) String() string {
 		if l, ok := e.Args[0].(*Literal); ok {
 			return "EXTRACT(" + strings.ToUpper(l.Value.S) + " FROM " + e.Args[1].String() + ")"
 		}
+	}
+	if e.Fn.Name == function.ZoneFunction {
+		return inside(e.Args[0], bindPrimary) + " " + e.Fn.Name + " " + inside(e.Args[1], bindPrimary)
 	}
 	return e.Fn.Name + "(" + list(e.Args) + ")"
 }

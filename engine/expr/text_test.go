@@ -150,6 +150,12 @@ func (r *reader) buildOperator(n lang.Expr) (Expr, error) {
 				return NewCast(x, t, at)
 			}
 		}
+	case *lang.AtTimeZone:
+		args, err := r.list([]lang.Expr{n.Operand, n.Zone})
+		if err != nil {
+			return nil, err
+		}
+		return NewCall(function.LookupScalar(function.ZoneFunction), args, at)
 	case *lang.Overlaps:
 		args, err := r.list(append(append([]lang.Expr{}, n.Left.Values...), n.Right.Values...))
 		if err != nil {
