@@ -50,6 +50,9 @@ func (s *Session) nothingToDescribe(st *statement, t *lang.Describe) error {
 	if near := lang.Nearest(t.Name.Text, names); near != "" {
 		return p.WithHint("did you mean '%s'?", near)
 	}
+	if s.writeTopic(&page{}, t.Name.Text) {
+		return p.WithHint("HELP %s tells of the word of the language", strings.ToUpper(t.Name.Text))
+	}
 	return p.WithHint("LIST CAMPAIGNS, TABLES, SOLIDS, VIEWS and GEOMETRY show what there is")
 }
 

@@ -99,6 +99,10 @@ func (s *Session) writeTopic(p *page, words string) bool {
 		writePage(p, topic{name: strings.ToUpper(words), kind: "a function", there: func() bool { return false }, write: func(*page) {}})
 		return true
 	}
+	if here := function.Elsewhere(words); here != "" {
+		p.say("This language has no function " + strings.ToUpper(words) + ". Write " + here + ".")
+		return true
+	}
 	return writeContaining(p, groups, key)
 }
 
