@@ -207,8 +207,7 @@ func (p *prompt) loop() error {
 			}
 			g.take()
 			continue
-		case errors.Is(err, io.EOF):
-			fmt.Fprintln(p.screen())
+		case errors.Is(err, io.EOF): // the line editor has ended its line
 			if !g.empty() {
 				p.hint("the last statement was not ended with ; and did not run")
 			}
