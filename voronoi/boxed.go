@@ -81,15 +81,14 @@ func (w *walker) inBox(k wants) bool {
 		if all != 0 {
 			continue
 		}
-		n := sub(g.at[f.q], w.own)
 		if some == 0 {
-			s.addFace(f.q, n, w.loop[f.from:f.to], k)
+			s.addFace(f.q, f.n, w.loop[f.from:f.to], k)
 			s.threes += int(f.to - f.from)
 			continue
 		}
 		w.cutFace(f, some)
 		if len(w.polygon.v) >= 3 {
-			s.addFace(f.q, n, w.polygon.v, k)
+			s.addFace(f.q, f.n, w.polygon.v, k)
 			w.alongWalls(k)
 		}
 	}

@@ -12,11 +12,12 @@ import (
 // each computed once. Cells of it are measured by walkers. Its vertices are the
 // tetrahedralisation's points, whose numbers depend on the coordinates alone.
 type dual struct {
-	t       *delaunay.T
-	at      []Vec    // by point; at[0] is none
-	cell    []int32  // by point: the number that others know it by
-	point   []int32  // by that number
-	centres []centre // by real tetrahedron
+	t         *delaunay.T
+	at        []Vec    // by point; at[0] is none
+	cell      []int32  // by point: the number that others know it by
+	point     []int32  // by that number
+	centres   []centre // by real tetrahedron
+	incidence incidence
 
 	boxed   bool // cells end at the box
 	lo, hi  Vec  // of it, in the coordinates of at with origin added
@@ -40,11 +41,18 @@ func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, thr
 		}
 	})
 	g.centres = make([]centre, t.NumTets())
-	parallel(threads, t.NumTets(), func(lo, hi int) {
+	var listed sync.WaitGroup
+	if threads > 1 {
+		listed.Go(g.listIncidence)
+	} else {
+		g.listIncidence()
+	}
+	parallel(max(1, threads-1), t.NumTets(), func(lo, hi int) {
 		if ctx.Err() == nil {
 			g.computeCentres(lo, hi)
 		}
 	})
+	listed.Wait()
 	return g, ctx.Err()
 }
 

@@ -120,7 +120,7 @@ func (w *walker) whole(k wants) {
 	s.reset()
 	for i := range w.faces {
 		f := &w.faces[i]
-		s.addFace(f.q, sub(w.g.at[f.q], w.own), w.loop[f.from:f.to], k)
+		s.addFace(f.q, f.n, w.loop[f.from:f.to], k)
 	}
 	s.threes = w.vertices
 }

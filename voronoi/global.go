@@ -120,17 +120,7 @@ func (w *walker) clippable() bool {
 
 // sound tells whether the vertices of the star at hand can be relied on.
 func (w *walker) sound() bool {
-	return !w.open && w.any&spoilt == 0 && w.far2 <= farShare2*w.nearest2()
-}
-
-// nearest2 is the squared distance to the nearest site, which is a neighbour.
-func (w *walker) nearest2() float64 {
-	near := math.Inf(1)
-	for i := range w.faces {
-		n := sub(w.g.at[w.faces[i].q], w.own)
-		near = min(near, dot(n, n))
-	}
-	return near
+	return !w.open && w.any&spoilt == 0 && w.far2 <= farShare2*w.near2
 }
 
 // knowNeighbours tells the builder the sites that the next cell is to be cut by: the
@@ -140,8 +130,7 @@ func (b *builder) knowNeighbours() {
 	b.known, b.onHull = true, w.open
 	b.near = b.near[:0]
 	for i := range w.faces {
-		q := w.faces[i].q
-		n := sub(w.g.at[q], w.own)
+		q, n := w.faces[i].q, w.faces[i].n
 		b.near = append(b.near, index.Neighbour{Point: w.g.cell[q], Dist2: dot(n, n)})
 	}
 	slices.SortFunc(b.near, func(a, c index.Neighbour) int {
@@ -164,7 +153,7 @@ func (b *builder) measureGlobal(cell int32, want Measures, out *Cells, row int32
 	k := wants{moments: want&Centroid != 0, shape: want&Faces != 0}
 	summed, bounded := b.take(cell, k)
 	if want&NearestFace != 0 {
-		out.NearestFace[row] = math.Sqrt(w.nearest2()) / 2
+		out.NearestFace[row] = math.Sqrt(w.near2) / 2
 	}
 	at := add(d.tree.Point(cell), d.origin)
 	switch {
@@ -300,7 +289,7 @@ func (w *walker) measureInBox(p int32, want Measures, out *Cells) {
 		out.Bounded[row] = true
 	}
 	if want&NearestFace != 0 {
-		out.NearestFace[row] = math.Sqrt(w.nearest2()) / 2
+		out.NearestFace[row] = math.Sqrt(w.near2) / 2
 	}
 	k := wants{moments: want&Centroid != 0}
 	at := add(w.own, w.g.origin)
@@ -323,7 +312,7 @@ func (w *walker) cutPlanes() {
 	c.SetBox(lo, hi, g.labels)
 	w.near = w.near[:0]
 	for i := range w.faces {
-		n := sub(g.at[w.faces[i].q], w.own)
+		n := w.faces[i].n
 		w.near = append(w.near, index.Neighbour{Point: w.faces[i].q, Dist2: dot(n, n)})
 	}
 	slices.SortFunc(w.near, func(a, b index.Neighbour) int {

@@ -2,6 +2,7 @@ package voronoi
 
 import (
 	"math"
+	"slices"
 
 	"nearcell/voronoi/index"
 	"nearcell/voronoi/polyhedron"
@@ -12,6 +13,16 @@ type walker struct {
 	g     *dual
 	stamp uint32
 	seen  []uint32 // by point: the stamp of the last star that it was in
+
+	// Scratch of quickStar: neighbours by the order in which they were met, their order
+	// by number, the vertices by that of the tetrahedra, and the table.
+	local     []uint32 // by point: stamp and number in the star
+	neighbour [mostNeighbours]int32
+	byNumber  [mostNeighbours]uint64
+	entry     [mostNeighbours]uint8
+	vertex    [2 * mostNeighbours]Vec
+	code      [2 * mostNeighbours]uint8
+	links     [mostNeighbours][mostNeighbours]link
 
 	// The star at hand.
 	p     int32
@@ -24,6 +35,7 @@ type walker struct {
 	// vertices is how many there are in the loops.
 	vertices int
 	far2     float64 // squared distance of the farthest vertex
+	near2    float64 // squared distance of the nearest site, which is a neighbour
 
 	// The part of the cell in the box: see boxed.go.
 	lo, hi  Vec // seen from p
@@ -40,13 +52,16 @@ type walker struct {
 // face is the Voronoi face towards the point q.
 type face struct {
 	q        int32
+	n        Vec   // place of q, seen from p
 	from, to int32 // loop[from:to]
 
 	tet    uint32 // where the walk around the edge begins
 	ip, iq uint8  // the corners of p and q there
 }
 
-func newWalker(g *dual) *walker { return &walker{g: g, seen: make([]uint32, len(g.at))} }
+func newWalker(g *dual) *walker {
+	return &walker{g: g, seen: make([]uint32, len(g.at)), local: make([]uint32, len(g.at))}
+}
 
 // afterPair[i][j] are the corners x and y that make (i, j, x, y) an even permutation.
 var afterPair = func() (after [4][4][2]uint8) {
@@ -73,10 +88,22 @@ var afterPair = func() (after [4][4][2]uint8) {
 	return after
 }()
 
-// star walks around every Delaunay edge at p and collects the faces of its cell, by
-// neighbour. The loops run counter-clockwise seen from outside and begin at the vertex
-// with the lowest key: they do not depend on how the tetrahedra are numbered.
+// star collects the faces of the cell of p, by neighbour. The loops run
+// counter-clockwise seen from outside and begin at the vertex that leaves by the facet
+// with the lowest third point: they do not depend on how the tetrahedra are numbered.
 func (w *walker) star(p int32) {
+	if w.stamp >= 1<<24-2 {
+		w.stamp = 0
+		clear(w.seen)
+		clear(w.local)
+	}
+	if !w.quickStar(p) {
+		w.slowStar(p)
+	}
+}
+
+// slowStar walks around every Delaunay edge at p.
+func (w *walker) slowStar(p int32) {
 	g := w.g
 	w.stamp++
 	w.p, w.own = p, g.at[p]
@@ -95,12 +122,12 @@ func (w *walker) star(p int32) {
 	for i := 0; i < len(w.faces); i++ {
 		w.around(i)
 	}
-	// Insertion sort: there are about fifteen.
-	f := w.faces
-	for i := 1; i < len(f); i++ {
-		for j := i; j > 0 && f[j].q < f[j-1].q; j-- {
-			f[j], f[j-1] = f[j-1], f[j]
-		}
+	slices.SortFunc(w.faces, func(a, b face) int { return int(a.q - b.q) })
+	w.near2 = math.Inf(1)
+	for i := range w.faces {
+		f := &w.faces[i]
+		f.n = sub(g.at[f.q], w.own)
+		w.near2 = min(w.near2, dot(f.n, f.n))
 	}
 }
 
