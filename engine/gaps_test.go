@@ -73,12 +73,15 @@ func TestEnvelope(t *testing.T) {
 	if got := a.number("SELECT SUM(volume) FROM CELLS OF hall WITHIN ENVELOPE OF hall MARGIN 1.5;"); math.Abs(got-box) > 1e-12*box {
 		t.Errorf("the envelope holds %v, want %v", got, box)
 	}
+	a.text("CREATE CAMPAIGN \"Hall 5\" FROM 'twenty.csv';")
 	// Whoever weighs open cells is offered it, by the campaign's own name; what is offered
 	// works.
 	for of, offer := range map[string]string{
 		"hall": "such as ENVELOPE OF hall MARGIN 1, or",
-		"(SELECT h.id, h.x, h.y, h.z, h.temp FROM hall h)": "such as ENVELOPE OF hall MARGIN 1, or",
-		"(SELECT id, x, y, z, 1 AS temp FROM plain)":       "put the campaign WITHIN a solid, or",
+		"(SELECT h.id, h.x, h.y, h.z, h.temp FROM hall h)":                                     "such as ENVELOPE OF hall MARGIN 1, or",
+		"(SELECT id, x, y, z, 1 AS temp FROM plain)":                                           "put the campaign WITHIN a solid, or",
+		"(SELECT h.id, h.x, h.y, h.z, 1 AS temp FROM hall h JOIN \"Hall 5\" f ON f.id = h.id)": "put the campaign WITHIN a solid, or",
+		"\"Hall 5\"": "such as ENVELOPE OF \"Hall 5\" MARGIN 1, or",
 	} {
 		a.text("CREATE OR REPLACE TABLE plain FROM 'twenty.csv';")
 		a.notes.Reset()

@@ -22,6 +22,7 @@ var arrows = map[string][]string{
 	"voronoi/index":            {},
 	"voronoi/solid":            {"voronoi/predicate", "voronoi/polyhedron"},
 	"voronoi/delaunay":         {"voronoi/predicate"},
+	"voronoi/coverage":         {"voronoi", "voronoi/index", "voronoi/polyhedron", "voronoi/solid"},
 	"voronoi":                  {"voronoi/predicate", "voronoi/polyhedron", "voronoi/index", "voronoi/solid"},
 	"catalog/column":           {},
 	"catalog/reader":           {"catalog/column", "catalog/reader/timeform"},
