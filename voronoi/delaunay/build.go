@@ -45,6 +45,9 @@ func BuildFlat(ctx context.Context, sites []float64, o Options) (*T, error) {
 	if need := Estimate(n); o.Memory > 0 && need > o.Memory {
 		return nil, &MemoryError{need, o.Memory}
 	}
+	if err := ctx.Err(); err != nil {
+		return nil, err
+	}
 	f, bad := newFrame(sites, defaultThreads(o.Threads))
 	if bad >= 0 {
 		return nil, &CoordinateError{bad}
