@@ -45,10 +45,6 @@ func (r *runner) commonTable(c *plan.Common) (*column.Table, error) {
 	if !rows.was {
 		rows.was = true
 		in := &runner{env: q.env}
-		if q.env.Measured != nil {
-			// meters know the nodes of the plan alone
-			in.env = &Env{Env: q.env.Env, Memory: q.env.Memory, chunk: q.env.chunk, batch: q.env.batch, whole: q.env, holder: &meter{}, queries: q}
-		}
 		if fresh {
 			in = r
 		}

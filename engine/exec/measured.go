@@ -36,7 +36,9 @@ type GeometryCount struct {
 	Cells int64 // computed, for measures and for contacts
 }
 
-// NewMeasured starts the counts of a plan.
+// NewMeasured starts the counts of a plan, of its common parts and of the queries
+// in its expressions that are computed once. Those that are computed for many rows
+// outside are not counted step by step: their time is that of the step that asks.
 func NewMeasured(n plan.Node) *Measured {
 	m := &Measured{meters: map[plan.Node]*meter{}}
 	m.add(n, nil)
@@ -44,6 +46,9 @@ func NewMeasured(n plan.Node) *Measured {
 }
 
 func (m *Measured) add(n plan.Node, above *meter) {
+	if m.meters[n] != nil {
+		return // a common part that is used again
+	}
 	x := &meter{above: above}
 	if _, nothing := n.(*plan.One); !nothing { // single rows are one node all over the plan
 		m.meters[n] = x
@@ -51,14 +56,25 @@ func (m *Measured) add(n plan.Node, above *meter) {
 	for _, in := range n.Inputs() {
 		m.add(in, x)
 	}
+	for _, q := range plan.QueriesOf(n) {
+		if len(q.Outer) == 0 {
+			m.add(q.Query.(*plan.Query).Plan, nil)
+		}
+	}
+	if c := plan.CommonOf(n); c != nil {
+		m.add(c.Plan, nil)
+	}
 }
 
-// Of is the count of a node.
+// Of is the count of a node; of one that is not counted it is zero.
 func (m *Measured) Of(n plan.Node) Count {
 	if _, nothing := n.(*plan.One); nothing {
 		return Count{Ran: true, Rows: 1}
 	}
 	x := m.meters[n]
+	if x == nil {
+		return Count{}
+	}
 	return Count{
 		Ran: x.ran.Load(), Rows: x.rows.Load(), Time: time.Duration(x.time.Load()), Bytes: x.most.Load(), Geometry: x.geometry,
 	}

@@ -269,6 +269,9 @@ func (a *answers) run(outer []column.Value) answer {
 	env := &Env{Env: q.env.Env, Memory: q.env.Memory, chunk: q.env.chunk, batch: q.env.batch, whole: q.env, holder: held, queries: q}
 	defer func() { q.env.release(held.kept.Load()) }()
 	env.Progress = nil
+	if len(outer) == 0 {
+		env.Measured = q.env.Measured
+	}
 	if len(outer) > 0 && env.Notes != nil {
 		env.Notes = &q.said
 	}

@@ -39,6 +39,16 @@ func (e *Estimator) columnValues(n Node, at int) values {
 		return e.capped(v, n)
 	case *Distinct:
 		return e.columnValues(n.Input, at)
+	case *Shared:
+		return e.columnValues(n.Common.Plan, at)
+	case *Lookup:
+		v := e.columnValues(n.Common.Plan, at)
+		v.exact = false
+		return e.capped(v, n)
+	case *Matched:
+		v := e.columnValues(n.Left, at)
+		v.exact = false
+		return e.capped(v, n)
 	case *Project:
 		return e.values(n.Exprs[at], n.Input)
 	case *Aggregate:
@@ -118,6 +128,8 @@ func stored(n Node, at int) (*column.Vector, bool) {
 			return stored(n.Right, at-left)
 		}
 		return stored(n.Left, at)
+	case *Shared:
+		return stored(n.Common.Plan, at)
 	case *Relation:
 		if site := n.Bound.Columns[at].Site; site >= 0 {
 			return stored(n.Input, site)

@@ -57,6 +57,9 @@ func (e *Estimator) walk(n Node) error {
 			return err
 		}
 	}
+	if err := e.elsewhere(n); err != nil {
+		return err
+	}
 	if unused {
 		e.idle--
 	}
@@ -68,6 +71,31 @@ func (e *Estimator) walk(n Node) error {
 		x.Rows = math.MaxInt64
 	}
 	e.known[n] = x
+	return nil
+}
+
+// elsewhere estimates the common part that a node uses and the queries in its
+// expressions. Nobody looks at what depends on the row outside.
+func (e *Estimator) elsewhere(n Node) error {
+	if c := CommonOf(n); c != nil {
+		if _, done := e.known[c.Plan]; !done {
+			if err := e.walk(c.Plan); err != nil {
+				return err
+			}
+		}
+	}
+	for _, q := range QueriesOf(n) {
+		if len(q.Outer) > 0 {
+			e.idle++
+		}
+		err := e.walk(q.Query.(*Query).Plan)
+		if len(q.Outer) > 0 {
+			e.idle--
+		}
+		if err != nil {
+			return err
+		}
+	}
 	return nil
 }
 
@@ -93,6 +121,17 @@ func (e *Estimator) node(n Node) (Estimate, error) {
 		return e.join(n), nil
 	case *Limit:
 		return e.limit(n), nil
+	case *Matched:
+		return e.matched(n), nil
+	case *Shared:
+		in := e.known[n.Common.Plan]
+		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
+	case *Lookup:
+		rows := e.rows(n.Common.Plan)
+		for _, k := range n.Keys {
+			rows /= max(1, e.values(k, n.Common.Plan).count)
+		}
+		return Estimate{Rows: rows}, nil
 	case *Union:
 		sum := Estimate{Exact: true}
 		for _, in := range n.Parts {
@@ -133,6 +172,9 @@ func (e *Estimator) limit(n *Limit) Estimate {
 // the other: a pair of keys leaves one of max(d_left, d_right) pairs.
 func (e *Estimator) join(n *Join) Estimate {
 	left, right := e.known[n.Left], e.known[n.Right]
+	if n.Kind == Semi || n.Kind == Anti {
+		return e.matching(n)
+	}
 	rows := left.Rows * right.Rows
 	for i := range n.LeftKeys {
 		l, r := e.values(n.LeftKeys[i], n.Left), e.values(n.RightKeys[i], n.Right)
@@ -147,6 +189,40 @@ func (e *Estimator) join(n *Join) Estimate {
 		exact = exact && right.Rows > 0
 	}
 	return Estimate{Rows: rows, Exact: exact}
+}
+
+// matching takes a left row to have a match with the share of the values of the
+// left keys that the right side can have.
+func (e *Estimator) matching(n *Join) Estimate {
+	left, right := e.known[n.Left], e.known[n.Right]
+	share := 1.0
+	for i := range n.LeftKeys {
+		l, r := e.values(n.LeftKeys[i], n.Left), e.values(n.RightKeys[i], n.Right)
+		share *= min(1, r.count/max(1, l.count))
+	}
+	if n.Rest != nil {
+		share = min(share, max(e.share(n.Rest, n)*right.Rows, 0))
+	}
+	if right.Rows == 0 {
+		share = 0
+	}
+	if n.Kind == Anti {
+		share = 1 - share
+	}
+	return Estimate{Rows: left.Rows * share, Exact: left.Exact && (left.Rows == 0 || right.Exact && right.Rows == 0)}
+}
+
+// matched takes half of the rows of the smaller side to stand on both.
+func (e *Estimator) matched(n *Matched) Estimate {
+	left := e.known[n.Left]
+	if !n.All {
+		left = e.groups(n.Left, columnsOf(n.Left.Schema()))
+	}
+	both := min(left.Rows, e.rows(n.Right)) / 2
+	if n.Kind == Except {
+		return Estimate{Rows: left.Rows - both, Exact: left.Exact && e.known[n.Right].Exact && both == 0}
+	}
+	return Estimate{Rows: both, Exact: left.Exact && e.known[n.Right].Exact && both == 0}
 }
 
 // groups counts the combinations of the values of keys, at most the rows there
@@ -203,9 +279,12 @@ func (e *Estimator) atHand(n Node) bool {
 	ok := true
 	var look func(Node)
 	look = func(n Node) {
-		if _, geometric := n.(*Relation); geometric || e.rows(n) > LookedAt {
+		if _, geometric := n.(*Relation); geometric || e.rows(n) > LookedAt || len(QueriesOf(n)) > 0 {
 			ok = false
 			return
+		}
+		if c := CommonOf(n); c != nil {
+			look(c.Plan)
 		}
 		if s, is := n.(*Scan); is {
 			stored += float64(s.Table.N)

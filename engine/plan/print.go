@@ -57,6 +57,12 @@ func Line(n Node) string {
 		return "distinct rows"
 	case *Union:
 		return "union all"
+	case *Matched:
+		return matchedLine(n)
+	case *Shared:
+		return "rows of " + n.Common.Name
+	case *Lookup:
+		return fmt.Sprintf("rows of %s found by hash: %s = %s", n.Common.Name, exprs(n.Keys), exprs(n.Values))
 	}
 	return fmt.Sprintf("%T", n)
 }
@@ -168,8 +174,13 @@ func aggregateLine(n *Aggregate) string {
 
 func joinLine(n *Join) string {
 	line := "inner join"
-	if n.Kind == Left {
+	switch n.Kind {
+	case Left:
 		line = "left join"
+	case Semi:
+		line = "keep rows with a match"
+	case Anti:
+		line = "keep rows without a match"
 	}
 	for i := range n.LeftKeys {
 		if i == 0 {
@@ -186,6 +197,17 @@ func joinLine(n *Join) string {
 		line += " on " + n.Rest.String()
 	case len(n.LeftKeys) == 0 && n.Kind == Inner:
 		line = "cross join"
+	}
+	return line
+}
+
+func matchedLine(n *Matched) string {
+	line := "intersect"
+	if n.Kind == Except {
+		line = "except"
+	}
+	if n.All {
+		line += " all"
 	}
 	return line
 }

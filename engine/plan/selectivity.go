@@ -53,8 +53,24 @@ func (e *Estimator) share(cond expr.Expr, n Node) float64 {
 		return negated(c.Not, e.is(c, n))
 	case *expr.Column:
 		return shareOfFlag
+	case *expr.Subquery:
+		return e.asked(c, n)
 	}
 	return shareOfOther
+}
+
+// asked is the share of the values of IN that the query can have, one half for
+// EXISTS.
+func (e *Estimator) asked(c *expr.Subquery, n Node) float64 {
+	if c.Kind != expr.InQuery {
+		return shareOfFlag
+	}
+	q := c.Query.(*Query).Plan
+	there := e.rows(q)
+	if len(q.Schema()) > 0 {
+		there = e.columnValues(q, 0).count
+	}
+	return negated(c.Not, min(1, there/max(1, e.values(c.X, n).count)))
 }
 
 func negated(not bool, share float64) float64 {
@@ -103,7 +119,11 @@ func (e *Estimator) values(x expr.Expr, n Node) values {
 		return e.columnValues(n, at)
 	}
 	most := 1.0
-	used := make([]bool, len(n.Schema()))
+	fields := n.Schema()
+	if j, ok := n.(*Join); ok {
+		fields = j.Both()
+	}
+	used := make([]bool, len(fields))
 	expr.Columns(x, used)
 	for at, u := range used {
 		if u {
