@@ -8,7 +8,7 @@ import (
 )
 
 // chunkSize is how many cells a goroutine takes at a time; the context is looked at
-// between chunks.
+// before each.
 const chunkSize = 64
 
 // run looks through all cells and gives what it finds, cell by cell in their order.
@@ -30,9 +30,11 @@ func (s *search) run(ctx context.Context, o Options) ([]Gap, error) {
 			if chunk >= chunks {
 				return
 			}
-			err := ctx.Err()
+			var err error
 			for i := chunk * chunkSize; i < min(n, (chunk+1)*chunkSize) && err == nil; i++ {
-				err = k.cellOf(int32(i))
+				if err = ctx.Err(); err == nil { // on a sphere of sites a cell takes its time
+					err = k.cellOf(int32(i))
+				}
 			}
 			if err != nil {
 				guard.Lock()

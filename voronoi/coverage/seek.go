@@ -1,9 +1,7 @@
 package coverage
 
 import (
-	"cmp"
 	"math"
-	"slices"
 
 	"nearcell/voronoi/index"
 	"nearcell/voronoi/polyhedron"
@@ -19,6 +17,7 @@ type seeker struct {
 	lower []bool          // by vertex of a body: an edge leads farther away
 	ball  ball
 	near  []nearSite
+	least float64 // distance of the nearest of them
 	parts []nearPart
 	buf   []solid.Plane
 	cone  cone
@@ -56,7 +55,6 @@ func (b *ball) list(at Vec, reach float64) {
 
 // nearSite is a site that is nearest to a place, or about as near.
 type nearSite struct {
-	site int32
 	away Vec     // from the site to the place
 	far  float64 // length of away
 }
@@ -177,18 +175,19 @@ func (k *seeker) try(v, p Vec) {
 	}
 }
 
-// gather lists the sites about as near to the place as the nearest, by distance. It
-// returns false if the cell's own site is not among them.
+// gather lists the sites about as near to the place as the nearest. It returns false
+// if the cell's own site is not among them.
 func (k *seeker) gather(v, p Vec, r float64) bool {
-	k.near = k.near[:0]
+	k.near, k.least = k.near[:0], math.Inf(1)
 	k.ball.list(add(p, v), float64(r*(1+2*coarsest))+k.grain)
 	for _, i := range k.ball.in {
 		// The difference of two sites loses nothing that they had.
 		away := sub(v, sub(k.tree.Point(i), p))
-		k.near = append(k.near, nearSite{k.of[i], away, length(away)})
+		far := length(away)
+		k.near = append(k.near, nearSite{away, far})
+		k.least = min(k.least, far)
 	}
-	slices.SortFunc(k.near, func(a, b nearSite) int { return cmp.Or(cmp.Compare(a.far, b.far), cmp.Compare(a.site, b.site)) })
-	return len(k.near) > 0 && k.near[0].far >= r*(1-coarsest) && k.near[0].far > 0
+	return len(k.near) > 0 && k.least >= r*(1-coarsest)
 }
 
 // reach lists the parts of the solid that the place lies in or about.
@@ -229,10 +228,9 @@ func (k *seeker) at(part *nearPart, v Vec) {
 func (k *seeker) isPeak(r, scale float64) bool {
 	k.cone.c = k.cone.c[:0]
 	for _, n := range k.near {
-		if n.far > k.near[0].far*(1+scale) {
-			break
+		if n.far <= k.least*(1+scale) {
+			k.cone.c = append(k.cone.c, towards(n))
 		}
-		k.cone.c = append(k.cone.c, scaled(n))
 	}
 	if k.solid == nil {
 		return k.cone.isClosed(slackAt(scale))
@@ -256,9 +254,9 @@ func (k *seeker) isPeak(r, scale float64) bool {
 	return in
 }
 
-// scaled is the unit vector from the place to the site: moving along it, or in any
+// towards is the unit vector from the place to the site: moving along it, or in any
 // direction at an acute angle to it, brings the site nearer.
-func scaled(n nearSite) Vec { return scale(-1/n.far, n.away) }
+func towards(n nearSite) Vec { return scale(-1/n.far, n.away) }
 
 // gap describes a place that is one, found at about this distance from its site.
 func (k *seeker) gap(at Vec, r float64) Gap {
