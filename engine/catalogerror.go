@@ -45,12 +45,15 @@ func wordStore(err error) error {
 	var locked *store.LockedError
 	switch {
 	case errors.As(err, &damaged):
+		p.Code = "catalog"
 		p.Message = "the catalog's file " + damaged.Path + " is damaged and is not used"
 		p.Hint = "CREATE OR REPLACE makes the thing again from its source"
 	case errors.As(err, &newer):
+		p.Code = "catalog"
 		p.Message = "the catalog was written by a later version of this program"
 		p.Hint = "use that version, or another --catalog"
 	case errors.As(err, &locked):
+		p.Code = "catalog"
 		p.Message = "another process is changing the catalog"
 		p.Hint = "wait for it to end"
 	}

@@ -3,7 +3,9 @@ package catalogue_test
 import (
 	"bytes"
 	"context"
+	"io/fs"
 	"os"
+	"path/filepath"
 	"strings"
 	"testing"
 
@@ -59,5 +61,48 @@ func TestExamples(t *testing.T) {
 				t.Log(out.String())
 			}
 		})
+	}
+}
+
+// TestCatalogCode: a damaged file of the catalog is told under the code catalog.
+func TestCatalogCode(t *testing.T) {
+	dir, ctx := filepath.Join(t.TempDir(), "kept"), context.Background()
+	var out bytes.Buffer
+	with := func(text string) string {
+		c, err := catalog.Open(dir)
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer c.Close()
+		s := engine.New(c, engine.Options{Out: &out, Err: &out})
+		if err := s.Run(ctx, "example", text, "testdata"); err != nil {
+			return s.LastCode()
+		}
+		return ""
+	}
+	if code := with("CREATE TABLE log FROM 'log.csv';"); code != "" {
+		t.Fatal(out.String())
+	}
+	damaged := 0
+	err := filepath.WalkDir(dir, func(path string, d fs.DirEntry, err error) error {
+		if err != nil || d.IsDir() || !strings.Contains(path, "arrow") {
+			return err
+		}
+		data, err := os.ReadFile(path)
+		if err != nil {
+			return err
+		}
+		for i := len(data) / 4; i < len(data)/2; i++ {
+			data[i] ^= 0xff
+		}
+		damaged++
+		return os.WriteFile(path, data, 0o600)
+	})
+	if err != nil || damaged == 0 {
+		t.Fatalf("%d files damaged: %v", damaged, err)
+	}
+	out.Reset()
+	if code := with("SELECT * FROM log;"); code != "catalog" || !strings.Contains(out.String(), "damaged") {
+		t.Errorf("a damaged file is told under the code %q:\n%s", code, out.String())
 	}
 }

@@ -48,19 +48,10 @@ DESCRIBE a;`,
 		Code:    "too-large",
 		Meaning: "The views and names of WITH in a query, each written out where it is used, have too many sources.",
 		WayOut:  "CREATE TABLE … AS (query) keeps the rows of a step, so that later steps read them instead.",
-		Example: `WITH a AS (SELECT * FROM log UNION ALL SELECT * FROM log),
-  b AS (SELECT * FROM a UNION ALL SELECT * FROM a),
-  c AS (SELECT * FROM b UNION ALL SELECT * FROM b),
-  d AS (SELECT * FROM c UNION ALL SELECT * FROM c),
-  e AS (SELECT * FROM d UNION ALL SELECT * FROM d),
-  f AS (SELECT * FROM e UNION ALL SELECT * FROM e),
-  g AS (SELECT * FROM f UNION ALL SELECT * FROM f),
-  h AS (SELECT * FROM g UNION ALL SELECT * FROM g),
-  i AS (SELECT * FROM h UNION ALL SELECT * FROM h),
-  j AS (SELECT * FROM i UNION ALL SELECT * FROM i),
-  k AS (SELECT * FROM j UNION ALL SELECT * FROM j),
-  l AS (SELECT * FROM k UNION ALL SELECT * FROM k)
-SELECT COUNT(*) FROM l;`,
+		Example: `CREATE VIEW v1 AS (SELECT 1 AS n FROM log a, log b, log c, log d, log e, log f, log g, log h, log i);
+CREATE VIEW v2 AS (SELECT 1 AS n FROM v1 a, v1 b, v1 c, v1 d, v1 e, v1 f, v1 g, v1 h, v1 i);
+CREATE VIEW v3 AS (SELECT 1 AS n FROM v2 a, v2 b, v2 c, v2 d, v2 e, v2 f, v2 g, v2 h, v2 i);
+SELECT COUNT(*) FROM v3 a, v3 b, v3 c, v3 d, v3 e, v3 f, v3 g, v3 h, v3 i;`,
 	},
 	{
 		Code:    "run-cycle",

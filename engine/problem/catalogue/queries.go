@@ -69,6 +69,18 @@ var ofQueries = []Entry{
 		Example: "SELECT id FROM hall UNION ALL SELECT logger, temp FROM log;",
 	},
 	{
+		Code:    "many-rows",
+		Meaning: "A query in brackets stands where one value is needed, and gives more than one row.",
+		WayOut:  "An aggregate, a WHERE that leaves one row, or LIMIT 1 with ORDER BY makes one of them; x IN (query) compares with all.",
+		Example: "SELECT id FROM hall WHERE temp > (SELECT temp FROM log);",
+	},
+	{
+		Code:    "query-here",
+		Meaning: "A query in brackets stands where no query can be computed.",
+		WayOut:  "Write its value out. A campaign can be made AS (SELECT …), which may compute anything.",
+		Example: "CREATE CAMPAIGN up FROM 'hall.csv' POSITION (x, y, z + (SELECT MIN(z) FROM hall));",
+	},
+	{
 		Code:    "distinct-weight",
 		Meaning: "An aggregate is to take each value once and to weigh it by its rows, which may differ in weight.",
 		WayOut:  "Leave DISTINCT out, or weigh in a query of its own.",
