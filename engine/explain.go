@@ -30,7 +30,7 @@ func (s *Session) explain(ctx context.Context, st *statement, t *lang.Explain) e
 	if err != nil {
 		return err
 	}
-	e := &explained{estimates: estimates}
+	e := &explained{estimates: estimates, shown: map[*plan.Common]bool{}}
 	if t.Measured {
 		e.measured = exec.NewMeasured(node)
 		env := s.execEnv(st)
@@ -39,7 +39,7 @@ func (s *Session) explain(ctx context.Context, st *statement, t *lang.Explain) e
 			return err
 		}
 	}
-	e.add(node, 0)
+	e.add(node, 0, false)
 	if s.o.Format != present.AsTable {
 		return s.showTable(st, e.table())
 	}
@@ -70,19 +70,24 @@ type explained struct {
 	estimates map[plan.Node]plan.Estimate
 	measured  *exec.Measured // nil: it was not run
 	steps     []step
+	shown     map[*plan.Common]bool
 }
 
 type step struct {
 	line     string
 	depth    int
+	title    bool // of a query inside, no step itself
+	often    bool // in a query that is computed for many rows outside: not counted
 	estimate plan.Estimate
 	count    exec.Count
 	geometry string
 }
 
-func (e *explained) add(n plan.Node, depth int) {
-	x := step{line: plan.Line(n), depth: depth, estimate: e.estimates[n]}
-	if e.measured != nil {
+// add lists a node, what it takes its rows from, and then what it asks: the
+// queries in its expressions and, where it is first used, a common part.
+func (e *explained) add(n plan.Node, depth int, often bool) {
+	x := step{line: plan.Line(n), depth: depth, often: often, estimate: e.estimates[n]}
+	if e.measured != nil && !often {
 		x.count = e.measured.Of(n)
 	}
 	if f := x.estimate.Geometry; f != nil {
@@ -90,7 +95,20 @@ func (e *explained) add(n plan.Node, depth int) {
 	}
 	e.steps = append(e.steps, x)
 	for _, in := range n.Inputs() {
-		e.add(in, depth+1)
+		e.add(in, depth+1, often)
+	}
+	if c := plan.CommonOf(n); c != nil && !e.shown[c] {
+		e.shown[c] = true
+		e.add(c.Plan, depth+1, often)
+	}
+	for _, q := range plan.QueriesOf(n) {
+		inside := q.Query.(*plan.Query)
+		title := inside.String() + ", computed once:"
+		if len(q.Outer) > 0 {
+			title = inside.String() + ", computed for each different row outside:"
+		}
+		e.steps = append(e.steps, step{line: title, depth: depth + 1, title: true})
+		e.add(inside.Plan, depth+2, often || len(q.Outer) > 0)
 	}
 }
 
@@ -215,10 +233,15 @@ func (e *explained) text(width int) string {
 }
 
 func (e *explained) numbers(x *step) []string {
-	list := []string{estimatedRows(x.estimate)}
+	list := []string{""}
+	if !x.title {
+		list[0] = estimatedRows(x.estimate)
+	}
 	switch {
 	case e.measured == nil:
 		return list
+	case x.title || x.often:
+		return append(list, "", "", "")
 	case !x.count.Ran:
 		return append(list, "not run", "", "")
 	}
@@ -274,6 +297,9 @@ func (e *explained) table() *column.Table {
 		row := []column.Value{
 			column.String(x.line), column.Int(int64(x.depth)), column.Int(wholeRows(x.estimate)),
 			column.NullOf(column.Integer), column.NullOf(column.Real), column.NullOf(column.Integer), column.NullOf(column.Text),
+		}
+		if x.title {
+			row[2] = column.NullOf(column.Integer)
 		}
 		if x.count.Ran {
 			row[3], row[4], row[5] = column.Int(x.count.Rows), column.Float(x.count.Time.Seconds()), column.Int(x.count.Bytes)
