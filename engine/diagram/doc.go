@@ -7,7 +7,8 @@
 // their order, the solid and the tolerance. Who asks for a diagram that is
 // being built waits for it; who asks for measures that are being computed waits
 // for those. A Handle remembers the measures of every cell that was asked for,
-// so that 672 instants with the same loggers cost one partition.
+// so that 672 instants with the same loggers cost one partition. It remembers contacts
+// and gaps likewise.
 //
 // Everything here is numbers: the store knows no identifiers, no columns and
 // writes no notes.

@@ -21,6 +21,9 @@
 // A Request says which columns are needed and which rows are shown; it never
 // says which sites partition. Rows that are not shown cost nothing.
 //
+// GAPS has a row for each place, not for each site: its rows come largest first, and
+// which of them have a certain nearest site is known only when all are.
+//
 // A new relation is one file and one registry line.
 //
 // # Laws
