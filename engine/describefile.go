@@ -252,7 +252,7 @@ func (g *fileGuess) findings() []string {
 		add("numbers have a decimal comma, as %s in line %d", quoted(l.Comma), l.CommaAt)
 	}
 	if len(g.o.Missing) > 0 {
-		add("taken as missing where numbers or times stand: %s", listed(quotedAll(g.o.Missing), 12))
+		add("read as missing, in every column: %s", listed(quotedAll(g.o.Missing), 12))
 	}
 	for _, c := range g.o.Times {
 		add("%s is written as '%s' and taken as UTC: if it is local time, write ZONE 'Europe/Zurich', or what it is, behind the pattern", c.Column, c.Form)

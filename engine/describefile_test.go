@@ -152,3 +152,47 @@ func TestDescribedExports(t *testing.T) {
 		}
 	})
 }
+
+// What is offered for a few files, and what is said about them.
+func TestOfferedStatements(t *testing.T) {
+	for _, c := range []struct{ name, text, statement, notes string }{
+		{
+			"sites", "logger;X (m);Y (m);Depth (m);Temp (°C)\nA1;1,5;2,25;3;4,5\nA2;2,5;2,5;3;n/a\nA3;2,5;3,5;3;4,1\nA4;3;3;3;4,2\n",
+			"CREATE CAMPAIGN sites FROM 'sites.csv'\n  ID logger\n  POSITION (\"X (m)\", \"Y (m)\", -\"Depth (m)\")\n  DELIMITER ';'\n  DECIMAL MARK ','\n" +
+				"  MISSING ('n/a')\n  UNITS (\"X (m)\" 'm', \"Y (m)\" 'm', \"Depth (m)\" 'm', \"Temp (°C)\" '°C');",
+			"read as missing, in every column: 'n/a'",
+		},
+		{
+			"gap", "id,x,y,z\nL01,1,2,3\nL02,1,,3\n",
+			"CREATE TABLE gap FROM 'gap.csv';", "some rows have no whole position",
+		},
+		{
+			"again", "x,y,z,temp\n1,2,3,4\n1,2,3,5\n1,2,3,6\n",
+			"CREATE TABLE again FROM 'again.csv';", "most positions come again",
+		},
+		{
+			"2 halls", "day,v\n04/05/2031,1\n04/06/2031,2\n",
+			"CREATE TABLE file_2_halls FROM '2 halls.csv'\n  TIME (day 'DD/MM/YYYY');", "do not tell whether its pattern is 'DD/MM/YYYY' or 'MM/DD/YYYY'",
+		},
+		{
+			"select", "sep=;\nx_km;y_km;z_km;id\n1,5;2;3;7\n1,5;3;3;8\n",
+			"CREATE CAMPAIGN \"select\" FROM 'select.csv'\n  ID id\n  POSITION (x_km, y_km, z_km)\n  COORDINATES IN km\n  HEADING AT LINE 2\n  DELIMITER ';'\n  DECIMAL MARK ',';",
+			"the heading is line 2; before it stands 1 line: 'sep=;'",
+		},
+		{
+			"codes", "id,v\n1,1\n2,2\n3,3\n4,4\n5,5A\n",
+			"CREATE TABLE codes FROM 'codes.csv'\n  REFUSED TO 'codes-refused.csv';", "1 line at fault would be set aside; the first: line 6 column 3: '5A' in column 'v' is no number",
+		},
+	} {
+		folder := t.TempDir()
+		if err := os.WriteFile(filepath.Join(folder, c.name+".csv"), []byte(c.text), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		statement, notes, err := offered(t, folder, c.name+".csv")
+		if err != nil || statement != c.statement || !strings.Contains(notes, c.notes) {
+			t.Errorf("%s:\n%s\n%s", c.name, statement, notes)
+			continue
+		}
+		paste(t, folder, statement)
+	}
+}

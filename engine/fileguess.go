@@ -59,14 +59,16 @@ func cutUnit(name string) (plain, unit string) {
 // coordinates.
 func (g *fileGuess) findPosition(t *column.Table) bool {
 	found := [3]int{-1, -1, -1}
+	gaps := false
 	for i, f := range t.Schema {
-		if f.Type != column.Real && f.Type != column.Integer || t.Cols[i].NullCount() > 0 || t.N == 0 {
+		if f.Type != column.Real && f.Type != column.Integer || t.N == 0 {
 			continue
 		}
 		plain, unit := cutUnit(f.Name)
 		for k := range axes {
 			if found[k] < 0 && axes[k][strings.ToLower(plain)] {
 				found[k] = i
+				gaps = gaps || t.Cols[i].NullCount() > 0
 				if f.Unit == nil && unit != "" && strings.HasSuffix(f.Name, "_"+unit) {
 					g.length = unit
 				}
@@ -82,7 +84,10 @@ func (g *fileGuess) findPosition(t *column.Table) bool {
 			g.position[k] = "-" + g.position[k]
 		}
 	}
-	return true
+	if gaps {
+		g.doubts = append(g.doubts, "some rows have no whole position: they make a table; a campaign needs one in every row")
+	}
+	return !gaps
 }
 
 // identifierNames are names of columns that identify a site.
