@@ -165,3 +165,46 @@ func TestSeams(t *testing.T) {
 		}
 	}
 }
+
+// Plans that touch themselves: holes that stand on a side with a corner, share a corner
+// with the outline or with one another, and cut the plan in two. Around such corners the
+// directions into the room are several cones.
+func TestTouchingHoles(t *testing.T) {
+	square := []solid.Vec2{{X: 0, Y: 0}, {X: 8, Y: 0}, {X: 8, Y: 8}, {X: 0, Y: 8}}
+	total := 0
+	for i, holes := range [][][]solid.Vec2{
+		{{{X: 4, Y: 0}, {X: 6, Y: 3}, {X: 2, Y: 3}}},
+		{{{X: 0, Y: 0}, {X: 6, Y: 2}, {X: 2, Y: 6}}},
+		{{{X: 2, Y: 2}, {X: 4, Y: 4}, {X: 2, Y: 5}}, {{X: 4, Y: 4}, {X: 6, Y: 3}, {X: 6, Y: 6}}},
+		{{{X: 3, Y: 0}, {X: 5, Y: 0}, {X: 5, Y: 8}, {X: 3, Y: 8}}},
+		{{{X: 0, Y: 4}, {X: 4, Y: 0}, {X: 8, Y: 4}, {X: 4, Y: 8}}},
+	} {
+		body, err := solid.NewPrism(square, holes, 0, 3)
+		if err != nil {
+			t.Fatal(err)
+		}
+		r := rand.New(rand.NewPCG(uint64(i), 41))
+		sites := make([]Vec, 3+4*i)
+		for k := range sites {
+			sites[k] = placeIn(body, r)
+		}
+		g := gapsOf(t, sites, body)
+		for _, x := range g {
+			total++
+			for range 300 {
+				q := add(x.At, scale(1e-6*x.Radius, direction(r)))
+				if inside(body, q) && toNearest(sites, q) > x.Radius*(1+1e-12) {
+					t.Fatalf("plan %d: %v is higher than %+v", i, q, x)
+				}
+			}
+		}
+		for range 6 {
+			if p, d := climb(sites, body, placeIn(body, r), r); d > g[0].Radius*(1+1e-12) {
+				t.Errorf("plan %d: %v is %v from every site, the largest gap %v", i, p, d, g[0].Radius)
+			}
+		}
+	}
+	if total < 40 {
+		t.Errorf("only %d gaps", total)
+	}
+}
