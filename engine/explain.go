@@ -48,7 +48,7 @@ func (s *Session) explain(ctx context.Context, st *statement, t *lang.Explain) e
 		return err
 	}
 	s.results++
-	s.say("%s, %s", plural(len(e.steps), "step"), st.seconds())
+	s.say("%s, %s", plural(e.count(), "step"), st.seconds())
 	return nil
 }
 
@@ -71,6 +71,17 @@ type explained struct {
 	measured  *exec.Measured // nil: it was not run
 	steps     []step
 	shown     map[*plan.Common]bool
+}
+
+// count is the number of steps, titles aside.
+func (e *explained) count() int {
+	n := 0
+	for _, x := range e.steps {
+		if !x.title {
+			n++
+		}
+	}
+	return n
 }
 
 type step struct {

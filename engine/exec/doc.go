@@ -54,6 +54,16 @@
 // of cells that a WHERE took out of sums and weights and of sums that count a cell
 // twice. Each of these is said only where it happened.
 //
+// # Measuring
+//
+// With Env.Measured each step of a plan is put into a meter that counts its rows,
+// its own time and what it keeps; without it there is none. A worker's clock turns
+// to the step that has the batch, twice for each step and batch. The time of several
+// workers is added up, that of a relation is by the clock. A step whose expressions
+// ask a query counts the time of the query as well. Steps of a query that depends on
+// the row outside are not counted. Forecast is what a relation knows of its rows
+// and work before it runs: it computes the sites, not the relation.
+//
 // # Degenerate inputs
 //
 // Tables without rows or without columns, batches of which nothing is active,

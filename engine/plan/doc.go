@@ -56,6 +56,19 @@
 // weights and sums) and CellSums (sums of measures that may count a cell twice).
 // Whether it happened is seen only when the plan runs.
 //
+// # Estimates
+//
+// An Estimator says how many rows the nodes of a plan will give, from what is
+// known without running it: the rows of stored tables, how many different values
+// their columns have (texts, and columns of up to 131,072 rows, are counted, longer
+// ones sampled), NULLs, the range of time stamps. Conditions without such a count
+// take a fixed share, parts of an AND are taken to be independent, and of two sides
+// of a join the values of the one with fewer are taken to be among the other's.
+// Estimates that are Exact are promises (tested with random plans). The work of a
+// relation is told by whoever can look at its sites, as long as they come from few
+// stored rows without another relation; else it is guessed from their estimate, as
+// an upper bound, since nobody knows which partitions of FOR EACH are alike.
+//
 // # Limitations
 //
 // Joins are not reordered: the right side is the one kept in memory. Conditions

@@ -191,21 +191,21 @@ func (e *Estimator) join(n *Join) Estimate {
 	return Estimate{Rows: rows, Exact: exact}
 }
 
-// matching takes a left row to have a match with the share of the values of the
-// left keys that the right side can have.
+// matching takes a left row to have as many partners as there are right rows for
+// each value of the keys, if the right side has its value, and to fail the rest of
+// the condition with each of them by chance.
 func (e *Estimator) matching(n *Join) Estimate {
 	left, right := e.known[n.Left], e.known[n.Right]
-	share := 1.0
+	share, partners := 1.0, right.Rows
 	for i := range n.LeftKeys {
 		l, r := e.values(n.LeftKeys[i], n.Left), e.values(n.RightKeys[i], n.Right)
 		share *= min(1, r.count/max(1, l.count))
+		partners /= max(1, r.count)
 	}
 	if n.Rest != nil {
-		share = min(share, max(e.share(n.Rest, n)*right.Rows, 0))
+		partners *= e.share(n.Rest, n)
 	}
-	if right.Rows == 0 {
-		share = 0
-	}
+	share *= min(1, partners)
 	if n.Kind == Anti {
 		share = 1 - share
 	}

@@ -35,6 +35,14 @@
 //  4. Parts with equal places share one computation.
 //  5. What is shown never changes what is computed for it.
 //
+// # Forecasts
+//
+// Before they run, rows can tell how many they will be and which cells have to be
+// computed for them, in how many different diagrams. This builds the diagrams, up
+// to 262,144 sites of them, but no cells, other than the few by which a diagram
+// finds out what a cell costs (32 of each of four diagrams); a diagram that is
+// looked at stays for the query. Of more sites a part is looked at, evenly spread.
+//
 // # Degenerate inputs
 //
 // An identifier that is NULL or stands twice in a part, a coordinate that is
