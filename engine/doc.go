@@ -16,5 +16,5 @@
 // # Limitations
 //
 // What the language has and the engine has not is refused by name, never
-// misread: see refusals.go for the list.
+// misread: HELP STATEMENTS and its like mark it.
 package engine

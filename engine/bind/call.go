@@ -111,6 +111,9 @@ func (x *exprs) noFunction(c *lang.Call) error {
 	if _, ok := relation.Lookup(name); ok {
 		return p.WithHint("%s OF … is a relation and stands in FROM", name)
 	}
+	if here := function.Elsewhere(c.Name.Text); here != "" {
+		return p.WithHint("write %s", here)
+	}
 	return didYouMean(p, c.Name.Text, append(function.Names(), "POINT"))
 }
 
