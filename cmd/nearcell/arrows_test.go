@@ -23,7 +23,7 @@ var arrows = map[string][]string{
 	"voronoi/solid":            {"voronoi/predicate", "voronoi/polyhedron"},
 	"voronoi/delaunay":         {"voronoi/predicate"},
 	"voronoi/coverage":         {"voronoi", "voronoi/index", "voronoi/polyhedron", "voronoi/solid"},
-	"voronoi":                  {"voronoi/predicate", "voronoi/polyhedron", "voronoi/index", "voronoi/solid"},
+	"voronoi":                  {"voronoi/predicate", "voronoi/polyhedron", "voronoi/index", "voronoi/solid", "voronoi/delaunay"},
 	"catalog/column":           {},
 	"catalog/reader":           {"catalog/column", "catalog/reader/timeform"},
 	"catalog/reader/csv":       {"catalog/column", "catalog/reader", "catalog/reader/timeform"},
