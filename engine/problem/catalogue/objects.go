@@ -48,9 +48,12 @@ DESCRIBE a;`,
 		Code:    "too-large",
 		Meaning: "The views and names of WITH in a query, each written out where it is used, have too many sources.",
 		WayOut:  "CREATE TABLE … AS (query) keeps the rows of a step, so that later steps read them instead.",
-		Example: `CREATE VIEW v1 AS (SELECT 1 AS n FROM log a, log b, log c, log d, log e, log f, log g, log h, log i);
-CREATE VIEW v2 AS (SELECT 1 AS n FROM v1 a, v1 b, v1 c, v1 d, v1 e, v1 f, v1 g, v1 h, v1 i);
-CREATE VIEW v3 AS (SELECT 1 AS n FROM v2 a, v2 b, v2 c, v2 d, v2 e, v2 f, v2 g, v2 h, v2 i);
+		Example: `CREATE VIEW v1 AS (
+  SELECT 1 AS n FROM log a, log b, log c, log d, log e, log f, log g, log h, log i);
+CREATE VIEW v2 AS (
+  SELECT 1 AS n FROM v1 a, v1 b, v1 c, v1 d, v1 e, v1 f, v1 g, v1 h, v1 i);
+CREATE VIEW v3 AS (
+  SELECT 1 AS n FROM v2 a, v2 b, v2 c, v2 d, v2 e, v2 f, v2 g, v2 h, v2 i);
 SELECT COUNT(*) FROM v3 a, v3 b, v3 c, v3 d, v3 e, v3 f, v3 g, v3 h, v3 i;`,
 	},
 	{
