@@ -96,8 +96,9 @@ const (
 	wholeFrom = 500
 	fewCells  = 32
 
-	// bytesPerVertex: coordinates twice, numbers, and 6.8 circumcentres of 40 bytes.
-	bytesPerVertex = 24 + 24 + 8 + 272
+	// bytesPerVertex: coordinates twice, numbers, and 6.8 circumcentres of 48 bytes, each
+	// in four lists.
+	bytesPerVertex = 24 + 24 + 13 + 436
 
 	// slowFrom is the number of sites held against a cell from which a diagram is
 	// slow. Uniform, clustered, flat and regular sets have 70 to 130.

@@ -115,7 +115,7 @@ func (b *builder) inSolid(at Vec) bool {
 // clippable tells whether the star at hand can be cut by the box face by face.
 func (w *walker) clippable() bool {
 	lo, hi := w.g.localBox(w.p)
-	return w.sound() && !w.g.awkward[w.p] && lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
+	return w.sound() && (len(w.g.awkward) == 0 || !w.g.awkward[w.p]) && lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
 }
 
 // sound tells whether the vertices of the star at hand can be relied on.

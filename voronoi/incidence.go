@@ -74,8 +74,8 @@ func (w *walker) quickStar(p int32) bool {
 	own, any, far2 := g.at[p], uint8(0), 0.0
 	vertices, codes, ids := w.vertex[:len(list)], w.code[:len(list)], 0
 	for i, tet := range list {
-		v, _ := g.t.Record(tet)
 		c := &g.centres[tet]
+		v := &c.v
 		a := &g.at[c.from]
 		o := Vec{X: c.o.X + (a.X - own.X), Y: c.o.Y + (a.Y - own.Y), Z: c.o.Z + (a.Z - own.Z)}
 		vertices[i], codes[i] = o, c.out
@@ -90,13 +90,16 @@ func (w *walker) quickStar(p int32) bool {
 				e = stamp | uint32(ids)
 				w.local[q] = e
 				w.neighbour[ids&(mostNeighbours-1)] = q
+				w.entry[ids&(mostNeighbours-1)] = math.MaxUint64
 				ids++
 			}
 			id[k] = uint8(e) & (mostNeighbours - 1)
 		}
 		x, y, z := id[0], id[1], id[2]
 		w.links[x][y], w.links[y][z], w.links[z][x] = link{uint8(i), z}, link{uint8(i), x}, link{uint8(i), y}
-		w.entry[x], w.entry[y], w.entry[z] = y, z, x
+		// A face begins after the facet with the neighbour of the lowest number.
+		nx, ny, nz := uint64(v[rest[0]&3])<<8|uint64(x), uint64(v[rest[1]&3])<<8|uint64(y), uint64(v[rest[2]&3])<<8|uint64(z)
+		w.entry[x], w.entry[y], w.entry[z] = min(w.entry[x], ny), min(w.entry[y], nz), min(w.entry[z], nx)
 	}
 	w.p, w.own, w.open, w.any, w.far2, w.vertices = p, own, false, any, far2, 3*len(list)
 	w.sortNeighbours(ids)
@@ -125,24 +128,13 @@ func (w *walker) collect(ids int) {
 		id := uint8(x) & (mostNeighbours - 1)
 		q := w.neighbour[id]
 		row := &w.links[id]
-		begin := w.entry[id] & (mostNeighbours - 1)
-		// The vertex that leaves by the facet with the lowest key comes first.
-		first, least := begin, int32(math.MaxInt32)
-		for at := begin; ; {
-			next := row[at].next & (mostNeighbours - 1)
-			if key := w.neighbour[next]; key < least {
-				least, first = key, at
-			}
-			if at = next; at == begin {
-				break
-			}
-		}
+		begin := uint8(w.entry[id]) & (mostNeighbours - 1)
 		from := len(loop)
-		for at := first; ; {
+		for at := begin; ; {
 			e := row[at]
 			i := e.tet & (2*mostNeighbours - 1)
 			loop, out = append(loop, w.vertex[i]), append(out, w.code[i])
-			if at = e.next & (mostNeighbours - 1); at == first {
+			if at = e.next & (mostNeighbours - 1); at == begin {
 				break
 			}
 		}

@@ -19,7 +19,7 @@ type walker struct {
 	local     []uint32 // by point: stamp and number in the star
 	neighbour [mostNeighbours]int32
 	byNumber  [mostNeighbours]uint64
-	entry     [mostNeighbours]uint8
+	entry     [mostNeighbours]uint64 // of each face, where it begins
 	vertex    [2 * mostNeighbours]Vec
 	code      [2 * mostNeighbours]uint8
 	links     [mostNeighbours][mostNeighbours]link
@@ -89,8 +89,8 @@ var afterPair = func() (after [4][4][2]uint8) {
 }()
 
 // star collects the faces of the cell of p, by neighbour. The loops run
-// counter-clockwise seen from outside and begin at the vertex that leaves by the facet
-// with the lowest third point: they do not depend on how the tetrahedra are numbered.
+// counter-clockwise seen from outside and begin where the numbers of the neighbours say:
+// they do not depend on how the tetrahedra are numbered.
 func (w *walker) star(p int32) {
 	if w.stamp >= 1<<24-2 {
 		w.stamp = 0
