@@ -102,7 +102,7 @@ func (e *explained) add(n plan.Node, depth int, often bool) {
 		x.count = e.measured.Of(n)
 	}
 	if f := x.estimate.Geometry; f != nil {
-		x.geometry = geometryText(f, x.count.Geometry)
+		x.geometry = geometryText(f, n.(*plan.Relation).Bound.Per(), x.count.Geometry)
 	}
 	e.steps = append(e.steps, x)
 	for _, in := range n.Inputs() {
@@ -125,7 +125,7 @@ func (e *explained) add(n plan.Node, depth int, often bool) {
 
 // geometryText says what a relation computes: "volume, farthest of 53 cells,
 // one by one, about 0.002 s".
-func geometryText(f *relation.Forecast, took *exec.GeometryCount) string {
+func geometryText(f *relation.Forecast, per string, took *exec.GeometryCount) string {
 	if len(f.Measures) == 0 {
 		return "nothing but which sites have a cell" + partitionText(f)
 	}
@@ -133,7 +133,7 @@ func geometryText(f *relation.Forecast, took *exec.GeometryCount) string {
 	if !f.Counted {
 		about = "about "
 	}
-	text := strings.Join(f.Measures, ", ") + " of " + about + plural(f.Cost.Cells+f.Known, "cell") + partitionText(f)
+	text := strings.Join(f.Measures, ", ") + " of " + about + plural(f.Cost.Cells+f.Known, per) + partitionText(f)
 	switch {
 	case f.Cost.Cells == 0 && f.Known > 0:
 		text += ", all known already"

@@ -22,13 +22,22 @@ type Forecast struct {
 	Counted   bool         // parts, diagrams and cells are counted, not estimated
 }
 
+// Per is what the work is counted in: the cells of a relation of cells, the sites
+// of others, which need all of them.
+func (b *Bound) Per() string {
+	if b.Def.Own || b.Def == contacts {
+		return "cell"
+	}
+	return "site"
+}
+
 // Forecaster is implemented by rows that can tell more than their Cost.
 type Forecaster interface {
 	Forecast(ctx context.Context) (*Forecast, error)
 }
 
-// ForecastOf is what rows say of themselves. Rows that only know their cost
-// give, for all that is known, a row a cell.
+// ForecastOf is what rows say of themselves. Of rows that only know their cost
+// the usual number is taken.
 func ForecastOf(ctx context.Context, b *Bound, rows Rows, need []bool) (*Forecast, error) {
 	if f, ok := rows.(Forecaster); ok {
 		return f.Forecast(ctx)
@@ -37,8 +46,28 @@ func ForecastOf(ctx context.Context, b *Bound, rows Rows, need []bool) (*Forecas
 	if err != nil {
 		return nil, err
 	}
-	return &Forecast{Rows: float64(c.Cells), Parts: 1, Diagrams: 1, Measures: b.Work(need), Cost: c}, nil
+	f := &Forecast{Rows: float64(c.Cells), Parts: 1, Diagrams: 1, Measures: b.Work(need), Cost: c}
+	if s, ok := rows.(interface{ base() *sites }); ok {
+		f.Rows, f.Parts = 0, 0
+		groups := s.base().alike()
+		f.Diagrams = float64(len(groups))
+		for _, g := range groups {
+			f.Parts += float64(len(g.parts))
+			f.Rows += g.rows
+		}
+	}
+	if many := rowsPerSite[b.Def.Noun]; many > 0 {
+		f.Rows *= many
+	}
+	return f, nil
 }
+
+func (s *sites) base() *sites { return s }
+
+// rowsPerSite are the usual numbers of rows of relations whose rows are not
+// sites: of random sites in space there are 24π²/35 tetrahedra for each, of which
+// two share a triangle (Meijering 1953). Gaps were counted in random sets.
+var rowsPerSite = map[string]float64{"TETRAHEDRA": 6.77, "VERTICES": 6.77, "TRIANGLES": 13.54, "GAPS": 2}
 
 // Estimates of what is not looked at.
 const (

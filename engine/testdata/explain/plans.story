@@ -234,3 +234,30 @@ EXPLAIN SELECT id, volume FROM CELLS OF hall OMITTING ('L99') BECAUSE 'moved';
 input:1: there is no site 'L99' in hall to leave out (did you mean 'L09'?)
   EXPLAIN SELECT id, volume FROM CELLS OF hall OMITTING ('L99') BECAUSE 'moved';
                                                          ^^^^^
+
+# Rows that are no sites: as many as there usually are.
+ask
+EXPLAIN SELECT COUNT(*) FROM TETRAHEDRA OF placed;
+----
+rows  step
+   1  columns: "COUNT(*)"
+   1    aggregate all rows: COUNT(*)
+~366      tetrahedra of placed: no columns
+              geometry: tetrahedra of about 54 sites, all at once, TIME
+  54        compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+  54          read campaign hall: id, x, y, z
+
+ask
+EXPLAIN SELECT MAX(radius) FROM GAPS OF readings FOR EACH t WITHIN air WHERE t < TIMESTAMP '2031-04-08';
+----
+  rows  step
+     1  columns: "MAX(radius)"
+     1    aggregate all rows: MAX(radius)
+~10358      gaps of readings within air for each t: radius; only t < TIMESTAMP '2031-04-08 00:00:00'
+                geometry: gaps of about 319 sites in 96 partitions, 6 of them different, one by one, TIME
+~36010        columns: id, x, y, z, t
+~36010          inner join by hash: id = logger
+    54            compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+    54              read campaign hall: id, x, y, z
+~36010            keep where: temp IS NOT NULL
+ 36047              read table log: t, logger, temp
