@@ -132,7 +132,8 @@ func uniqueIdentifiers(v *column.Vector, name string, at problem.Place, origin s
 	first := make(map[string]int, v.N)
 	for i := 0; i < v.N; i++ {
 		if v.IsNull(i) {
-			return problem.New("id-missing", at, "row %d of %s has no identifier in column '%s'", i+1, origin, name)
+			return problem.New("id-missing", at, "row %d of %s has no identifier in column '%s'", i+1, origin, name).
+				WithHint("mend the file, or leave such rows out: AS (SELECT … WHERE %s IS NOT NULL)", name)
 		}
 		text := identifierText(v, i)
 		if j, twice := first[text]; twice {

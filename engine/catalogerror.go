@@ -25,7 +25,7 @@ func catalogProblem(err error, at problem.Place) error {
 			WithHint("CREATE OR REPLACE %s replaces it, DROP %s removes it", kind, kind).Because(err)
 	case errors.As(err, &none) && none.Found != 0:
 		return problem.New("wrong-kind", at, "'%s' is %s, not %s", none.Key, kindWord(none.Found), kindWord(none.Kind)).
-			Because(err)
+			WithHint("DROP %s %s drops it", none.Found, none.Key).Because(err)
 	case errors.As(err, &none):
 		return problem.New("no-object", at, "there is no %s '%s'", strings.ToLower(none.Kind.String()), none.Key).
 			Because(err)

@@ -3,6 +3,7 @@ package engine
 import (
 	"fmt"
 	"math"
+	"strings"
 	"unicode/utf8"
 
 	"nearcell/catalog"
@@ -160,7 +161,14 @@ func (c *clauses) refuseFileClauses() error {
 	if c.fileClause == nil {
 		return nil
 	}
-	return problem.New("clause", c.st.at(c.fileClause), "this clause says how a file is read, and AS (query) reads none")
+	return problem.New("clause", c.st.at(c.fileClause), "%s says how a file is read, and AS (query) reads none", clauseWord(c.fileClause))
+}
+
+// clauseWord is how a clause of a file begins.
+func clauseWord(n lang.Node) string {
+	text := lang.Print(n)
+	word, _, _ := strings.Cut(text, " ")
+	return word
 }
 
 func (c *clauses) withinText(r *lang.WithinClause) (string, error) {

@@ -1,6 +1,8 @@
 package engine
 
 import (
+	"maps"
+	"slices"
 	"sort"
 	"strings"
 
@@ -27,29 +29,23 @@ var plannedLists = []string{"FRAMES", "DIAGRAMS"}
 
 func (s *Session) list(st *statement, t *lang.List) error {
 	word := strings.ToUpper(t.What.Text)
-	make, ok := lists[word]
+	table, ok := lists[word]
 	if !ok {
-		names := append([]string(nil), plannedLists...)
-		for _, p := range plannedLists {
-			if p == word {
-				return problem.NotThereYet(st.at(t), "LIST "+p)
-			}
+		if slices.Contains(plannedLists, word) {
+			return problem.NotThereYet(st.at(t), "LIST "+word)
 		}
-		for n := range lists {
-			names = append(names, n)
-		}
-		sort.Strings(names)
+		names := slices.Sorted(maps.Keys(lists))
 		p := problem.New("list", st.at(t.What), "LIST does not know '%s'", t.What.Text)
 		if near := lang.Nearest(word, names); near != "" {
 			return p.WithHint("did you mean %s?", near)
 		}
 		return p.WithHint("it lists %s", listed(names, 20))
 	}
-	table, err := make(s)
+	rows, err := table(s)
 	if err != nil {
 		return err
 	}
-	return s.showTable(st, table)
+	return s.showTable(st, rows)
 }
 
 // rows builds a small table of texts and numbers, row by row.

@@ -27,7 +27,7 @@ type Options struct {
 	Program   string         // name and version, for provenance
 	Format    present.Format // of printed results; "": table
 	Threads   int            // 0: all cores
-	Memory    int64          // bytes for diagrams that are kept, 0: a default
+	Memory    int64          // bytes for kept diagrams, and for one statement's intermediate results; 0: a default, no limit
 	Strict    bool           // a warning fails its statement
 	KeepGoing bool           // go on after a failing statement
 	Quiet     bool           // no confirmations, no row counts; notes stay
@@ -222,7 +222,7 @@ func (s *Session) bindEnv(st *statement) *bind.Env {
 }
 
 func (s *Session) execEnv(st *statement) *exec.Env {
-	return &exec.Env{Env: relation.Env{
+	return &exec.Env{Memory: s.o.Memory, Env: relation.Env{
 		Diagrams: s.diagrams, Notes: st.notes, Threads: s.o.Threads, Progress: s.o.Progress,
 	}}
 }
