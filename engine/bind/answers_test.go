@@ -250,7 +250,8 @@ func TestSmallAnswers(t *testing.T) {
 		{"SELECT n FROM v ORDER BY -n LIMIT 1 OFFSET 1", "3"},
 		{"SELECT a.n, b.n FROM v a JOIN v b ON a.k = b.k AND a.n < b.n", "1 3"},
 		{"SELECT a.n, b.x FROM v a LEFT JOIN v b ON a.n = b.n AND b.x > 3 ORDER BY a.n", "1 |2 |3 4|4 8"},
-		{"SELECT * FROM v JOIN (SELECT n, x AS y FROM v) w USING (n) WHERE n = 3", "a 3 4 4"},
+		{"SELECT * FROM v JOIN (SELECT n, x AS y FROM v) w USING (n) WHERE n = 3", "3 a 4 4"}, // as in the standard, the columns of USING come first
+		{"SELECT 7 AS x FROM v HAVING 1 = 1", "7"},                                            // one group, of all rows,
 		{"SELECT COUNT(*), COUNT(x), COUNT(DISTINCT k) FROM v WHERE n > 100", "0 0 0"},
 		{"SELECT n + 1, n FROM v WHERE k IS NULL", "5 4"},
 		{"SELECT n FROM v UNION SELECT 2 UNION ALL SELECT x FROM v WHERE x > 7 ORDER BY 1", "1|2|3|4|8"},

@@ -7,7 +7,7 @@
 // of the plan's rows; an expression's columns are indices into it. Sources nest:
 // a view's text is parsed and bound anew at each use with a text (problem.Source)
 // of its own, so that an error inside it points into the view; a name of WITH is
-// bound once for each use.
+// bound once, and where it is used more than once the plan has it as a common part.
 //
 // A SELECT becomes
 //
@@ -20,6 +20,15 @@
 // A relation becomes a node with a relation.Bound. The solid, the tolerance and
 // the other clauses of CREATE CAMPAIGN hold only where OF names the campaign
 // itself; a query or a view has no solid unless WITHIN names one.
+//
+// A query inside an expression is bound with the scope outside at hand (outside):
+// what means nothing among its own sources is looked up there, level by level, and
+// becomes an expr.Outer with the expression over the rows outside beside it. An
+// aggregate all of whose columns are outside belongs to the groups outside.
+//
+// RIGHT JOIN is LEFT JOIN with the sides exchanged, so that its rows come in the
+// order of the right side. FULL JOIN gives the rows of LEFT JOIN, then the right
+// rows without a partner. Columns of USING come first and stand once.
 //
 // # Names
 //
@@ -43,6 +52,8 @@
 //
 // # Limitations
 //
-// Not there yet: queries as values, IN (query), EXISTS, OVER, INTERSECT, EXCEPT,
-// RIGHT and FULL joins, AT TIME ZONE; MESH, BOXES, TERRAIN, PLUS and MINUS.
+// Not there yet: OVER; MESH, BOXES, TERRAIN, PLUS and MINUS. A name of WITH whose
+// query depends on a row outside cannot be used in a query further inside. Queries
+// stand in no LIMIT, LET or clause of a relation, where a value is needed before
+// any query runs.
 package bind

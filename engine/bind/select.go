@@ -179,8 +179,9 @@ func (c *selection) grouped(order []*lang.Key) error {
 	return nil
 }
 
-// groupless refuses a HAVING where nothing makes groups: a condition on single
-// rows was meant.
+// groupless refuses a HAVING that speaks of columns where nothing makes groups: a
+// condition on single rows was meant. (Without columns it is a condition on the one
+// group of all rows.)
 func (c *selection) groupless() error {
 	if c.s.Having == nil || len(c.s.GroupBy) > 0 || hasAggregate(c.s.Having) {
 		return nil
@@ -189,6 +190,14 @@ func (c *selection) groupless() error {
 		if it.Expr != nil && hasAggregate(it.Expr) {
 			return nil
 		}
+	}
+	columns := false
+	walk(c.s.Having, func(e lang.Expr) {
+		_, is := e.(*lang.Column)
+		columns = columns || is
+	})
+	if !columns {
+		return nil
 	}
 	return problem.New("no-groups", c.at(c.s.Having), "HAVING needs groups, and there is neither GROUP BY nor an aggregate").
 		WithHint("conditions on single rows stand in WHERE")

@@ -12,5 +12,5 @@ func (x *exprs) atTimeZone(e *lang.AtTimeZone) (expr.Expr, error) {
 	if err != nil {
 		return nil, err
 	}
-	return x.made(e, args...)(expr.NewCall(function.LookupScalar(function.ZoneFunction), args, x.at(e)))
+	return x.made(e, args...)(expr.NewCall(function.Zoned, args, x.at(e)))
 }

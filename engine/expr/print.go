@@ -269,7 +269,10 @@ func (e *Call) String() string {
 			return "EXTRACT(" + strings.ToUpper(l.Value.S) + " FROM " + e.Args[1].String() + ")"
 		}
 	}
-	if e.Fn.Name == function.ZoneFunction {
+	if e.Fn.Name == "TRIM" && len(e.Args) == 2 {
+		return "TRIM(" + e.Args[0].String() + " FROM " + e.Args[1].String() + ")"
+	}
+	if e.Fn == function.Zoned {
 		return inside(e.Args[0], bindPrimary) + " " + e.Fn.Name + " " + inside(e.Args[1], bindPrimary)
 	}
 	return e.Fn.Name + "(" + list(e.Args) + ")"

@@ -155,7 +155,7 @@ func (r *reader) buildOperator(n lang.Expr) (Expr, error) {
 		if err != nil {
 			return nil, err
 		}
-		return NewCall(function.LookupScalar(function.ZoneFunction), args, at)
+		return NewCall(function.Zoned, args, at)
 	case *lang.Overlaps:
 		args, err := r.list(append(append([]lang.Expr{}, n.Left.Values...), n.Right.Values...))
 		if err != nil {

@@ -15,10 +15,6 @@ func timeScalars() []*Scalar {
 			Example: "EXTRACT(HOUR FROM TIMESTAMP '2031-04-07 08:15:00') = 8", Check: checkExtract, Eval: evalExtract},
 		{Name: "HOURS", Signature: "HOURS(interval)", Meaning: "the length of an interval in hours",
 			Example: "HOURS(INTERVAL '15' MINUTE) = 0.25", Check: checkHours, Eval: evalHours},
-		{Name: ZoneFunction, Signature: "t AT TIME ZONE zone",
-			Meaning: "what the clocks of a zone ('Europe/Zurich', '+01:00') or at an interval from UTC show at a time stamp",
-			Example: "TIMESTAMP '2031-07-01 12:00:00' AT TIME ZONE 'Europe/Zurich' = TIMESTAMP '2031-07-01 14:00:00'",
-			CanFail: true, Check: checkZone, Eval: evalZone},
 	}
 }
 

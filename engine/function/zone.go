@@ -9,12 +9,17 @@ import (
 	"nearcell/catalog/column"
 )
 
-// ZoneFunction is the name under which AT TIME ZONE stands in the registry. It
-// has its own syntax and is never called by name.
-const ZoneFunction = "AT TIME ZONE"
+// Zoned is t AT TIME ZONE zone. It has its own syntax and cannot be called by
+// name, so that it is not among the registered functions.
+var Zoned = &Scalar{Name: zoned, Signature: "t AT TIME ZONE zone",
+	Meaning: "what the clocks of a zone ('Europe/Zurich', '+01:00') or at an interval from UTC show at a time stamp",
+	Example: "TIMESTAMP '2031-07-01 12:00:00' AT TIME ZONE 'Europe/Zurich' = TIMESTAMP '2031-07-01 14:00:00'",
+	CanFail: true, Check: checkZone, Eval: evalZone}
+
+const zoned = "AT TIME ZONE"
 
 func checkZone(args []Arg) (Result, error) {
-	if err := wantCount(ZoneFunction, args, 2, 2); err != nil {
+	if err := wantCount(zoned, args, 2, 2); err != nil {
 		return Result{}, err
 	}
 	zone := column.Text
@@ -22,11 +27,11 @@ func checkZone(args []Arg) (Result, error) {
 		zone = column.Interval
 	}
 	r := Result{column.Timestamp, nil, []column.Type{column.Timestamp, zone}}
-	if err := wantType(ZoneFunction, args, 0, column.Timestamp); err != nil {
+	if err := wantType(zoned, args, 0, column.Timestamp); err != nil {
 		return r, err
 	}
 	if zone == column.Text {
-		if err := wantType(ZoneFunction, args, 1, column.Text); err != nil {
+		if err := wantType(zoned, args, 1, column.Text); err != nil {
 			return r, err.(*ArgumentError).hint("write a zone such as 'Europe/Zurich', or an INTERVAL")
 		}
 		if c := args[1].Const; c != nil && !c.Null {

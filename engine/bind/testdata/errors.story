@@ -580,17 +580,6 @@ input:1: ORDER BY 1.0 is no position: SELECT has 1 column
                                ^^^
 
 plan
-WITH a AS (SELECT id FROM hall), b AS (SELECT a.id FROM a JOIN a a2 USING (id)), c AS (SELECT b.id FROM b JOIN b b2 USING (id)),
-  d AS (SELECT c.id FROM c JOIN c c2 USING (id)), e AS (SELECT d.id FROM d JOIN d d2 USING (id)), f AS (SELECT e.id FROM e JOIN e e2 USING (id)),
-  g AS (SELECT f.id FROM f JOIN f f2 USING (id)), h AS (SELECT g.id FROM g JOIN g g2 USING (id)), i AS (SELECT h.id FROM h JOIN h h2 USING (id)),
-  j AS (SELECT i.id FROM i JOIN i i2 USING (id)), k AS (SELECT j.id FROM j JOIN j j2 USING (id)), l AS (SELECT k.id FROM k JOIN k k2 USING (id))
-SELECT * FROM l
-----
-input:2: the views and the names of WITH unfold into more than 5000 sources (CREATE TABLE … AS (query) keeps a step's rows)
-    d AS (SELECT c.id FROM c JOIN c c2 USING (id)), e AS (SELECT d.id FROM d JOIN d d2 USING (id)), f AS (SELECT…
-                           ^^^^^^^^^^^^^^^^^^^^^^
-
-plan
 SELECT temp * 2 AS twice, twice + 1 FROM hall
 ----
 input:1: 'twice' names another item of SELECT, and items do not know each other (repeat the expression, or put the query into FROM (SELECT …))

@@ -198,11 +198,12 @@ plan
 SELECT * FROM hall JOIN (SELECT logger AS id, AVG(temp) AS mean FROM log GROUP BY logger) m USING (id)
 ----
 columns: id, x, y, z, temp, area, mean
-  inner join on id = id
-    read campaign hall: id, x, y, z, temp, area
-    columns: logger AS id, "AVG(temp)" AS mean
-      group by logger: AVG(temp)
-        read table log: logger, t, temp, co2, n, ok
+  columns: id, x, y, z, temp, area, id, mean
+    inner join on id = id
+      read campaign hall: id, x, y, z, temp, area
+      columns: logger AS id, "AVG(temp)" AS mean
+        group by logger: AVG(temp)
+          read table log: logger, t, temp, co2, n, ok
 
 columns
 SELECT * FROM hall JOIN (SELECT logger AS id, AVG(temp) AS mean FROM log GROUP BY logger) m USING (id)
@@ -231,12 +232,8 @@ columns: "COUNT(*)"
   aggregate all rows: COUNT(*)
     cross join
       columns: who
-        columns: id, temp
-          keep where: temp > 5
-            read campaign hall: id, x, y, z, temp, area
-      columns: id, temp
-        keep where: temp > 5
-          read campaign hall: id, x, y, z, temp, area
+        rows of warm
+      rows of warm
 
 plan
 SELECT id FROM hall UNION ALL SELECT logger FROM log ORDER BY id LIMIT 5
