@@ -2,10 +2,9 @@ package voronoi
 
 // centre is the circumcentre of a tetrahedron: a Voronoi vertex.
 type centre struct {
-	o    Vec      // seen from the corner with the lowest number,
-	from int32    // which is this
-	out  uint8    // bit w is set when it lies beyond side w of the box; spoilt
-	v    [4]int32 // the corners once more, beside what is read together with them
+	o    Vec   // seen from the corner with the lowest number,
+	from int32 // which is this
+	out  uint8 // bit w is set when it lies beyond side w of the box; spoilt
 }
 
 // spoilt is the bit of centre.out that says that it could not be computed: something

@@ -96,9 +96,9 @@ const (
 	wholeFrom = 500
 	fewCells  = 32
 
-	// bytesPerVertex: coordinates twice, numbers, and 6.8 circumcentres of 48 bytes, each
+	// bytesPerVertex: coordinates twice, numbers, and 6.8 circumcentres of 32 bytes, each
 	// in four lists.
-	bytesPerVertex = 24 + 24 + 13 + 436
+	bytesPerVertex = 24 + 24 + 13 + 328
 
 	// slowFrom is the number of sites held against a cell from which a diagram is
 	// slow. Uniform, clustered, flat and regular sets have 70 to 130.

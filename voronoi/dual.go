@@ -102,7 +102,7 @@ func (g *dual) computeCentres(lo, hi int) {
 			b, c = c, b
 		}
 		o := circumcentre(g.at[a], g.at[b], g.at[c], g.at[d])
-		g.centres[i] = centre{o: o, from: a, v: *v}
+		g.centres[i] = centre{o: o, from: a}
 		if !finite(o) {
 			g.centres[i].out = spoilt
 		}

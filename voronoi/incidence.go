@@ -74,8 +74,8 @@ func (w *walker) quickStar(p int32) bool {
 	own, any, far2 := g.at[p], uint8(0), 0.0
 	vertices, codes, ids := w.vertex[:len(list)], w.code[:len(list)], 0
 	for i, tet := range list {
+		v, _ := g.t.Record(tet)
 		c := &g.centres[tet]
-		v := &c.v
 		a := &g.at[c.from]
 		o := Vec{X: c.o.X + (a.X - own.X), Y: c.o.Y + (a.Y - own.Y), Z: c.o.Z + (a.Z - own.Z)}
 		vertices[i], codes[i] = o, c.out
