@@ -27,6 +27,7 @@ func main() {
 type arguments struct {
 	file, cells, profile string
 	threads              int
+	measures             bool
 }
 
 // parse takes flags before and after the file.
@@ -34,11 +35,12 @@ func parse(args []string, stderr io.Writer) (a arguments, err error) {
 	f := flag.NewFlagSet("kernelbench", flag.ContinueOnError)
 	f.SetOutput(stderr)
 	f.Usage = func() {
-		fmt.Fprintln(stderr, "usage: kernelbench FILE [-threads n] [-profile OUT] [-cells OUT]")
+		fmt.Fprintln(stderr, "usage: kernelbench FILE [-threads n] [-profile OUT] [-cells OUT [-measures]]")
 		f.PrintDefaults()
 	}
 	f.IntVar(&a.threads, "threads", 1, "goroutines that insert sites")
 	f.StringVar(&a.cells, "cells", "", "write cell volumes to this file")
+	f.BoolVar(&a.measures, "measures", false, "with -cells, compute areas and centroids too")
 	f.StringVar(&a.profile, "profile", "", "write a processor profile of the build to this file")
 	for {
 		if err = f.Parse(args); err != nil {
@@ -58,8 +60,6 @@ func parse(args []string, stderr io.Writer) (a arguments, err error) {
 		return a, errors.New("no file given")
 	case a.threads < 1:
 		return a, fmt.Errorf("-threads %d: at least one is needed", a.threads)
-	case a.cells != "":
-		return a, errors.New("-cells: not there yet")
 	}
 	return a, nil
 }
@@ -96,10 +96,18 @@ func run(args []string, stdout, stderr io.Writer) error {
 	if a.threads > 1 {
 		mode = "parallel"
 	}
+	more := ""
+	if a.cells != "" {
+		c, err := writeCells(a.cells, t, a.threads, a.measures)
+		if err != nil {
+			return err
+		}
+		more = fmt.Sprintf(`,"cells_seconds":%.6f,"cells_cpu_seconds":%.6f,"cells_total":%.17g`, c.seconds, c.cpu, c.total)
+	}
 	_, err = fmt.Fprintf(stdout, `{"lib":"nearcell","mode":%q,"threads":%d,"points":%d,"vertices":%d,"tets":%d,`+
-		`"seconds":%.6f,"cpu_seconds":%.6f,"rss_start":%d,"peak_rss":%d,"fingerprint":"%016x"}`+"\n",
+		`"seconds":%.6f,"cpu_seconds":%.6f,"rss_start":%d,"peak_rss":%d,"fingerprint":"%016x"%s}`+"\n",
 		mode, a.threads, t.NumSites(), t.NumVertices(), t.NumTets(),
-		seconds, done.cpu-ready.cpu, before.resident, done.peak, t.Fingerprint())
+		seconds, done.cpu-ready.cpu, before.resident, done.peak, t.Fingerprint(), more)
 	return err
 }
 

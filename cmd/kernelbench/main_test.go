@@ -70,3 +70,43 @@ func TestComplaints(t *testing.T) {
 		}
 	}
 }
+
+// The cells of the corners of a box and its middle fill it; a repeated site has none.
+func TestCells(t *testing.T) {
+	name := write(t, 0, 0, 0, 2, 0, 0, 0, 2, 0, 2, 2, 0, 0, 0, 2, 2, 0, 2, 0, 2, 2, 2, 2, 2, 1, 1, 1, 2, 2, 2)
+	cells := filepath.Join(t.TempDir(), "cells.f64")
+	for _, args := range [][]string{{name, "-cells", cells}, {name, "-cells", cells, "-measures", "-threads", "2"}} {
+		var out, complaints bytes.Buffer
+		if err := run(args, &out, &complaints); err != nil {
+			t.Fatal(err)
+		}
+		var line struct {
+			Total float64 `json:"cells_total"`
+		}
+		if err := json.Unmarshal(out.Bytes(), &line); err != nil || line.Total != 8 {
+			t.Errorf("%s gives %v, %v", out.Bytes(), line, err)
+		}
+		b, err := os.ReadFile(cells)
+		if err != nil || len(b) != 80 {
+			t.Fatalf("%d bytes, %v", len(b), err)
+		}
+		for i := range 10 {
+			v, want := math.Float64frombits(binary.LittleEndian.Uint64(b[8*i:])), 0.5
+			switch {
+			case i == 8: // a truncated octahedron of half the box
+				want = 4
+			case i == 9:
+				if !math.IsNaN(v) {
+					t.Errorf("a repeated site has the volume %v", v)
+				}
+				continue
+			}
+			if math.Abs(v-want) > 1e-15 {
+				t.Errorf("cell %d has the volume %v, want %v", i, v, want)
+			}
+		}
+	}
+	if err := run([]string{name, "-cells", filepath.Join(name, "x")}, &bytes.Buffer{}, &bytes.Buffer{}); err == nil {
+		t.Error("cells are written into a file that is no folder")
+	}
+}
