@@ -76,7 +76,9 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 	n := len(sites) / 3
 	rounds := roundsFor(n)
 	pack := packingFor(n)
-	list := make([]ranked, n)
+	list, spare := make([]ranked, n), make([]ranked, n)
+	adviseHugePages(list)
+	adviseHugePages(spare)
 	counts := make([]int, rounds+1)
 	var lock sync.Mutex
 	inChunks(n, threads, func(lo, hi int) {
@@ -94,7 +96,7 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 		}
 		lock.Unlock()
 	})
-	list = radixSort(list, make([]ranked, n), pack.index)
+	list = radixSort(list, spare, pack.index)
 	pack.refine(f, sites, list)
 	order = make([]uint32, n)
 	for i, r := range list {

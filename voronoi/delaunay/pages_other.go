@@ -1,0 +1,5 @@
+//go:build !linux
+
+package delaunay
+
+func adviseHugePages[E any]([]E) {}
