@@ -1,5 +1,7 @@
 package delaunay
 
+import "math"
+
 // Lattices are full of sites on one sphere, and on rectilinear ones such sites are the
 // corners of a box with axis-parallel edges, exactly so whatever the rounding of the
 // step. A corner is three bits, one an axis, set for the larger of its two values: as
@@ -25,24 +27,31 @@ func oneBox(a, b, c, d, o *point) (codes [5]uint8, ok bool) {
 }
 
 // twoValues sets bit i when value i is the larger of the two that occur; ok is false
-// when there are more.
+// when there are more. Zeros are positive here, so that equal values have equal bits.
 func twoValues(a, b, c, d, o float64) (larger uint8, ok bool) {
-	other := b
-	if other == o {
-		if other = c; other == o {
-			if other = d; other == o {
-				other = a
-			}
-		}
+	ua, ub, uc, ud, uo := math.Float64bits(a), math.Float64bits(b), math.Float64bits(c), math.Float64bits(d), math.Float64bits(o)
+	like := bit(ua == uo) | bit(ub == uo)<<1 | bit(uc == uo)<<2 | bit(ud == uo)<<3
+	other := ua
+	if ub != uo {
+		other = ub
 	}
-	if (a != o && a != other) || (b != o && b != other) || (c != o && c != other) || (d != o && d != other) {
+	if uc != uo {
+		other = uc
+	}
+	if ud != uo {
+		other = ud
+	}
+	unlike := bit(ua == other) | bit(ub == other)<<1 | bit(uc == other)<<2 | bit(ud == other)<<3
+	if like|unlike != 15 {
 		return 0, false
 	}
-	top := max(o, other)
-	if top == min(o, other) {
+	if math.Float64frombits(other) > o {
+		return uint8(unlike), true
+	}
+	if other == uo {
 		return 0, true
 	}
-	return uint8(bit(a == top) | bit(b == top)<<1 | bit(c == top)<<2 | bit(d == top)<<3 | bit(o == top)<<4), true
+	return uint8(like | 16), true
 }
 
 // boxOrient is the sign of det(b-a, c-a, d-a) for corners of a box.

@@ -109,11 +109,11 @@ func (w *worker) inConflict(t uint32, p int32) bool {
 func (w *worker) slowConflict(t uint32, p int32) bool {
 	m := w.m
 	q := &m.tets[t]
+	if q.lo != loGhost {
+		return m.inSphere(q.v[0]&ownMask, q.v[1], q.v[2], q.v[3], p)
+	}
 	v := q.v
 	v[0] &= ownMask
-	if q.lo != loGhost {
-		return m.inSphere(v, p)
-	}
 	g := ghostIn(&v)
 	v[g] = p
 	if o := m.orient(v[0], v[1], v[2], v[3]); o != 0 {

@@ -57,6 +57,7 @@ type limits struct {
 	unit                         float64 // 2^k
 	inExact, inWrap64, inWrap128 float64
 	orientExact, orientWrap64    float64
+	near                         float64 // squared length below which nearKey is right
 }
 
 // coarseBits is how many bits coordinates may have for the float determinants of near
@@ -81,6 +82,7 @@ func makeLimits() (l [mostUnit + 1]limits) {
 			orientExact: math.Ldexp(1, 102-6*k),
 			// 2 √(orientFactor·N) < 2^62 units: N < 2^(124-2+99-6k)
 			orientWrap64: math.Ldexp(1, 220-6*k),
+			near:         math.Ldexp(1, 32-2*k),
 		}
 	}
 	return l
@@ -205,9 +207,9 @@ func signInt(x int64) int {
 // v0..v3, ties broken by the perturbation of Devillers and Teillaud (2011): as if the
 // squared length of every point were raised by an infinitesimal, larger for
 // lexicographically larger points.
-func (m *mesh) inSphere(v [4]int32, e int32) bool {
+func (m *mesh) inSphere(v0, v1, v2, v3, e int32) bool {
 	pts := m.pts
-	a, b, c, d, o := &pts[v[0]], &pts[v[1]], &pts[v[2]], &pts[v[3]], &pts[e]
+	a, b, c, d, o := &pts[v0], &pts[v1], &pts[v2], &pts[v3], &pts[e]
 	if m.fine {
 		if codes, ok := oneBox(a, b, c, d, o); ok {
 			return boxTie(codes)
@@ -226,7 +228,8 @@ func (m *mesh) inSphere(v [4]int32, e int32) bool {
 	ta, tb := bz*cd-cz*bd+dz*bc, az*cd-cz*ad+dz*ac
 	tc, td := az*bd-bz*ad+dz*ab, az*bc-bz*ac+cz*ab
 	det := (qa*ta - qb*tb) + (qc*tc - qd*td)
-	n := ((qa * qb) * (qc * qd)) * ((qa + qb) + (qc + qd))
+	sum := (qa + qb) + (qc + qd)
+	n := ((qa * qb) * (qc * qd)) * sum
 	if det*det > inFactor*n && n > filterFloor {
 		return det > 0
 	}
@@ -235,40 +238,48 @@ func (m *mesh) inSphere(v [4]int32, e int32) bool {
 		l, ok = commonUnit(a, b, c, d, o)
 	}
 	if !ok {
-		return predicate.InSpherePerturbed(m.vec(v[0]), m.vec(v[1]), m.vec(v[2]), m.vec(v[3]), m.vec(e)) > 0
+		return predicate.InSpherePerturbed(m.vec(v0), m.vec(v1), m.vec(v2), m.vec(v3), m.vec(e)) > 0
 	}
 	if n < l.inExact && n > filterFloor {
 		if det != 0 {
 			return det > 0
 		}
-		// The minors are exact too, and are the orientations that a tie asks for.
-		return smallTie([4][4]float64{{ax, ay, az, ta}, {bx, by, bz, -tb}, {cx, cy, cz, tc}, {dx, dy, dz, -td}})
-	}
-	if s := l.inSphereWhole(a, b, c, d, o, n); s != 0 {
+		if sum < l.near {
+			// The minors are exact too, and are the orientations that a tie asks for.
+			u := l.unit
+			return nearTie(nearKey(ax*u, ay*u, az*u, ta), nearKey(bx*u, by*u, bz*u, -tb),
+				nearKey(cx*u, cy*u, cz*u, tc), nearKey(dx*u, dy*u, dz*u, -td))
+		}
+	} else if s := l.inSphereWhole(a, b, c, d, o, n); s != 0 {
 		return s > 0
 	}
-	return m.tie(v, e)
+	return m.tie([4]int32{v0, v1, v2, v3}, e)
 }
 
-// smallTie is tie for four corners seen from the point asked about, each with the
-// orientation of the tetrahedron in which that point takes its place.
-func smallTie(r [4][4]float64) bool {
+// nearKey puts a corner seen from the point asked about, whose coordinates are integers
+// below 2^16, into one number that orders corners as their coordinates do, and below
+// it the sign of the orientation when that point takes the corner's place.
+func nearKey(x, y, z, orientation float64) int64 {
+	return int64((x*(1<<17)+y)*(1<<17)+z)<<2 | int64(bit(orientation > 0)|bit(orientation < 0)<<1)
+}
+
+// nearTie is tie for the keys of four corners; the point asked about has key 0.
+func nearTie(a, b, c, d int64) bool {
 	for {
-		best := -1
-		var x, y, z float64 // the point asked about
-		for k := range r {
-			p := &r[k]
-			if p[0] > x || p[0] == x && (p[1] > y || p[1] == y && p[2] > z) {
-				best, x, y, z = k, p[0], p[1], p[2]
-			}
-		}
-		if best < 0 {
+		switch top := max(a, b, c, d); {
+		case top < 4:
 			return false
+		case top&3 != 0:
+			return top&1 != 0
+		case top == a:
+			a = 0
+		case top == b:
+			b = 0
+		case top == c:
+			c = 0
+		default:
+			d = 0
 		}
-		if o := r[best][3]; o != 0 {
-			return o > 0
-		}
-		r[best] = [4]float64{}
 	}
 }
 

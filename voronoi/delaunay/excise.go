@@ -97,7 +97,7 @@ func (h *hole) apex(a, b, c int32) int32 {
 		if e == a || e == b || e == c || h.t.orient(e, a, b, c) <= 0 {
 			continue
 		}
-		if best == 0 || h.t.inSphere([4]int32{best, a, b, c}, e) {
+		if best == 0 || h.t.inSphere(best, a, b, c, e) {
 			best = e
 		}
 	}

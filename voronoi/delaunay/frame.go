@@ -198,8 +198,9 @@ func roundedDifference(a, b, d float64) bool {
 	return (a-(d-bb))-(b+bb) != 0
 }
 
-// internal returns the internal coordinates of site i.
+// internal returns the internal coordinates of site i, zeros positive.
 func (f *frame) internal(sites []float64, i int) (x, y, z float64) {
 	s := sites[3*i : 3*i+3 : 3*i+3]
-	return float64((s[0]-f.x0)*f.scale) * f.scale2, float64((s[1]-f.y0)*f.scale) * f.scale2, float64((s[2]-f.z0)*f.scale) * f.scale2
+	x, y, z = s[0]-f.x0, s[1]-f.y0, s[2]-f.z0
+	return float64(x*f.scale)*f.scale2 + 0, float64(y*f.scale)*f.scale2 + 0, float64(z*f.scale)*f.scale2 + 0
 }

@@ -154,7 +154,7 @@ func TestStagesAgreeWithPredicate(t *testing.T) {
 			}
 			in := predicate.InSpherePerturbed(at(0), at(1), at(2), at(3), at(4)) > 0
 			tet := [4]int32{v[0], v[1], v[2], v[3]}
-			if got := m.inSphere(tet, v[4]); got != in {
+			if got := m.inSphere(tet[0], tet[1], tet[2], tet[3], v[4]); got != in {
 				t.Fatalf("in-sphere of %v: %v, want %v", v, got, in)
 			}
 			checkWhole(t, m, tet, v[4], predicate.InSphere(at(0), at(1), at(2), at(3), at(4)))
