@@ -78,10 +78,15 @@ func (s *cellSums) addFace(q int32, n Vec, loop []Vec, k wants) {
 			p.middle = Vec{X: a.X + first.X/(3*volume), Y: a.Y + first.Y/(3*volume), Z: a.Z + first.Z/(3*volume)}
 		}
 	}
-	for _, b := range loop {
-		p.far2 = max(p.far2, float64(b.X*b.X)+float64(b.Y*b.Y)+float64(b.Z*b.Z))
+	for i := range loop {
+		b := &loop[i]
+		if d := float64(b.X*b.X) + float64(b.Y*b.Y) + float64(b.Z*b.Z); d > p.far2 {
+			p.far2 = d
+		}
 	}
-	s.far2 = max(s.far2, p.far2)
+	if p.far2 > s.far2 {
+		s.far2 = p.far2
+	}
 	s.parts = append(s.parts, p)
 	if k.shape {
 		s.generic = s.generic && noShortEdge(loop)

@@ -47,9 +47,6 @@ func (g *dual) listIncidence() {
 // mostNeighbours is for how many the table of quickStar has room.
 const mostNeighbours = 64
 
-// link is an entry of the table: a tetrahedron of the star and the neighbour after.
-type link struct{ tet, next uint8 }
-
 // restOf[i] are the corners x, y, z that make (i, x, y, z) an even permutation.
 var restOf = [4][3]uint8{{1, 2, 3}, {0, 3, 2}, {0, 1, 3}, {0, 2, 1}}
 
@@ -72,39 +69,53 @@ func (w *walker) quickStar(p int32) bool {
 		return false
 	}
 	own, any, far2 := g.at[p], uint8(0), 0.0
-	vertices, codes, ids := w.vertex[:len(list)], w.code[:len(list)], 0
+	vertices, codes := w.vertex[:len(list)], w.code[:len(list)]
+	local, links, entry := w.local, &w.links, &w.entry
+	w.met = 0
 	for i, tet := range list {
 		v, _ := g.t.Record(tet)
 		c := &g.centres[tet]
-		a := &g.at[c.from]
-		o := Vec{X: c.o.X + (a.X - own.X), Y: c.o.Y + (a.Y - own.Y), Z: c.o.Z + (a.Z - own.Z)}
-		vertices[i], codes[i] = o, c.out
-		any |= c.out
-		far2 = max(far2, float64(o.X*o.X)+float64(o.Y*o.Y)+float64(o.Z*o.Z))
 		rest := &restOf[corner(v, p)&3]
-		var id [3]uint8
-		for k := range id {
-			q := v[rest[k]&3]
-			e := w.local[q]
-			if e&^0xff != stamp {
-				e = stamp | uint32(ids)
-				w.local[q] = e
-				w.neighbour[ids&(mostNeighbours-1)] = q
-				w.entry[ids&(mostNeighbours-1)] = math.MaxUint64
-				ids++
-			}
-			id[k] = uint8(e) & (mostNeighbours - 1)
+		qx, qy, qz := v[rest[0]&3], v[rest[1]&3], v[rest[2]&3]
+		ex, ey, ez := local[qx], local[qy], local[qz]
+		if ex&^0xff != stamp {
+			ex = w.meet(qx, stamp)
 		}
-		x, y, z := id[0], id[1], id[2]
-		w.links[x][y], w.links[y][z], w.links[z][x] = link{uint8(i), z}, link{uint8(i), x}, link{uint8(i), y}
+		if ey&^0xff != stamp {
+			ey = w.meet(qy, stamp)
+		}
+		if ez&^0xff != stamp {
+			ez = w.meet(qz, stamp)
+		}
+		x, y, z := ex&(mostNeighbours-1), ey&(mostNeighbours-1), ez&(mostNeighbours-1)
+		links[x][y], links[y][z], links[z][x] = uint16(i)<<8|uint16(z), uint16(i)<<8|uint16(x), uint16(i)<<8|uint16(y)
 		// A face begins after the facet with the neighbour of the lowest number.
-		nx, ny, nz := uint64(v[rest[0]&3])<<8|uint64(x), uint64(v[rest[1]&3])<<8|uint64(y), uint64(v[rest[2]&3])<<8|uint64(z)
-		w.entry[x], w.entry[y], w.entry[z] = min(w.entry[x], ny), min(w.entry[y], nz), min(w.entry[z], nx)
+		nx, ny, nz := uint64(qx)<<8|uint64(x), uint64(qy)<<8|uint64(y), uint64(qz)<<8|uint64(z)
+		entry[x], entry[y], entry[z] = min(entry[x], ny), min(entry[y], nz), min(entry[z], nx)
+
+		a := &g.at[c.from]
+		ox, oy, oz := c.o.X+(a.X-own.X), c.o.Y+(a.Y-own.Y), c.o.Z+(a.Z-own.Z)
+		vertices[i], codes[i] = Vec{X: ox, Y: oy, Z: oz}, c.out
+		any |= c.out
+		if d := float64(ox*ox) + float64(oy*oy) + float64(oz*oz); d > far2 {
+			far2 = d
+		}
 	}
 	w.p, w.own, w.open, w.any, w.far2, w.vertices = p, own, false, any, far2, 3*len(list)
-	w.sortNeighbours(ids)
-	w.collect(ids)
+	w.sortNeighbours(w.met)
+	w.collect(w.met)
 	return true
+}
+
+// meet gives a neighbour its number in the star.
+func (w *walker) meet(q int32, stamp uint32) uint32 {
+	i := w.met & (mostNeighbours - 1)
+	e := stamp | uint32(i)
+	w.local[q] = e
+	w.neighbour[i] = q
+	w.entry[i] = math.MaxUint64
+	w.met++
+	return e
 }
 
 // sortNeighbours orders the neighbours by number: there are about fifteen.
@@ -122,25 +133,32 @@ func (w *walker) sortNeighbours(ids int) {
 
 // collect reads the faces from the table.
 func (w *walker) collect(ids int) {
-	faces, loop, out := w.faces[:0], w.loop[:0], w.out[:0]
+	if n := w.vertices; cap(w.loop) < n {
+		w.loop, w.out = make([]Vec, 2*n), make([]uint8, 2*n)
+	}
+	faces, loop, out := w.faces[:0], w.loop[:w.vertices], w.out[:w.vertices]
 	near2 := math.Inf(1)
+	to := 0
 	for _, x := range w.byNumber[:ids] {
-		id := uint8(x) & (mostNeighbours - 1)
+		id := x & (mostNeighbours - 1)
 		q := w.neighbour[id]
 		row := &w.links[id]
-		begin := uint8(w.entry[id]) & (mostNeighbours - 1)
-		from := len(loop)
-		for at := begin; ; {
+		begin := uint16(w.entry[id]) & (mostNeighbours - 1)
+		from := to
+		for at := begin; to < len(loop) && to < len(out); {
 			e := row[at]
-			i := e.tet & (2*mostNeighbours - 1)
-			loop, out = append(loop, w.vertex[i]), append(out, w.code[i])
-			if at = e.next & (mostNeighbours - 1); at == begin {
+			i := e >> 8 & (2*mostNeighbours - 1)
+			loop[to], out[to] = w.vertex[i], w.code[i]
+			to++
+			if at = e & (mostNeighbours - 1); at == begin {
 				break
 			}
 		}
 		n := sub(w.g.at[q], w.own)
-		near2 = min(near2, dot(n, n))
-		faces = append(faces, face{q: q, n: n, from: int32(from), to: int32(len(loop))})
+		if d := dot(n, n); d < near2 {
+			near2 = d
+		}
+		faces = append(faces, face{q: q, n: n, from: int32(from), to: int32(to)})
 	}
 	w.faces, w.loop, w.out, w.near2 = faces, loop, out, near2
 }

@@ -22,7 +22,8 @@ type walker struct {
 	entry     [mostNeighbours]uint64 // of each face, where it begins
 	vertex    [2 * mostNeighbours]Vec
 	code      [2 * mostNeighbours]uint8
-	links     [mostNeighbours][mostNeighbours]link
+	links     [mostNeighbours][mostNeighbours]uint16 // tetrahedron << 8 | neighbour after
+	met       int
 
 	// The star at hand.
 	p     int32
