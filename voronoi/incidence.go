@@ -72,9 +72,15 @@ func (w *walker) quickStar(p int32) bool {
 	vertices, codes := w.vertex[:len(list)], w.code[:len(list)]
 	local, links, entry := w.local, &w.links, &w.entry
 	w.met = 0
+	// First all that lies far apart in memory, with nothing to wait for in between.
+	corners, centres := w.corners[:len(list)], w.centres[:len(list)]
 	for i, tet := range list {
 		v, _ := g.t.Record(tet)
-		c := &g.centres[tet]
+		corners[i] = *v
+		centres[i] = g.centres[tet]
+	}
+	for i := range corners {
+		v, c := &corners[i], &centres[i]
 		rest := &restOf[corner(v, p)&3]
 		qx, qy, qz := v[rest[0]&3], v[rest[1]&3], v[rest[2]&3]
 		ex, ey, ez := local[qx], local[qy], local[qz]

@@ -20,6 +20,8 @@ type walker struct {
 	neighbour [mostNeighbours]int32
 	byNumber  [mostNeighbours]uint64
 	entry     [mostNeighbours]uint64 // of each face, where it begins
+	corners   [2 * mostNeighbours][4]int32
+	centres   [2 * mostNeighbours]centre
 	vertex    [2 * mostNeighbours]Vec
 	code      [2 * mostNeighbours]uint8
 	links     [mostNeighbours][mostNeighbours]uint16 // tetrahedron << 8 | neighbour after
