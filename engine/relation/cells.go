@@ -142,7 +142,6 @@ func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int
 	if len(ks) == 0 || c.want == 0 {
 		return &voronoi.Cells{}, ks, nil
 	}
-	c.sheet(f, len(ks))
 	m, err := h.Measure(ctx, c.want, list, c.progress())
 	if err != nil {
 		return nil, nil, c.refused(err, p)

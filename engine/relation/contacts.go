@@ -129,7 +129,6 @@ func (c *contactRows) part(ctx context.Context, p *Part, out *pairs) error {
 	if len(ks) == 0 {
 		return nil
 	}
-	c.sheet(f, len(ks))
 	of := rowsOfSites(p)
 	if p.Share == nil {
 		// One row a site, in the order of the sites: rows come as contacts do.

@@ -121,7 +121,6 @@ func (g *gapRows) part(ctx context.Context, p *Part, out *gapBatch) error {
 	if err != nil {
 		return err
 	}
-	g.sheet(h.Facts(), len(p.Sites))
 	found, err := h.Gaps(ctx, p.Sites, g.env.Threads, g.progress())
 	var undivided *coverage.UndividedError
 	if errors.As(err, &undivided) {

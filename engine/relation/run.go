@@ -3,7 +3,6 @@ package relation
 import (
 	"context"
 	"errors"
-	"math"
 	"strconv"
 
 	"nearcell/catalog/column"
@@ -205,18 +204,6 @@ func (s *sites) partDone(i int) {
 	if s.env.Progress != nil && len(s.parts) > 1 {
 		s.env.Progress(i+1, len(s.parts))
 	}
-}
-
-// sheet says why the cells of a flat set of sites take long, where it is long
-// enough to ask why: a cell on a sheet takes some microseconds for every row of
-// sites across it.
-func (s *sites) sheet(f voronoi.Facts, cells int) {
-	const long = 3e5 // about a second
-	if !f.Flat || float64(cells)*math.Sqrt(float64(f.Distinct)) < long {
-		return
-	}
-	s.env.Notes.Add(note.Note, note.Slowness, "the sites of %s form a sheet (%s by %s, %s thick): each of its cells takes many times as long as others",
-		s.b.Name, s.length(f.Extent[0]), s.length(f.Extent[1]), s.length(f.Extent[2]))
 }
 
 // cost adds up the diagrams that are not alike.
