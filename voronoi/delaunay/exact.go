@@ -12,7 +12,7 @@ import (
 // The signs behind every combinatorial decision, on internal coordinates.
 //
 // Stage 1 is a norm filter. With ε = 2^-53 the float determinant of in-sphere errs by
-// at most 32√2 ε |a||b||c||d| √(|a|²+|b|²+|c|²+|d|²)/… : sixteen roundings a term,
+// at most 32√2 ε |a||b||c||d| √(|a|²+|b|²+|c|²+|d|²): sixteen roundings a term,
 // differences included, and terms whose magnitudes sum, by Cauchy and Schwarz, to at
 // most 2√2 |a||b||c||d| √(Σ|i|²). The square of that, (32√2 ε)² = 2048 ε² times
 //
@@ -29,7 +29,8 @@ import (
 // cospherical (box.go).
 //
 // Stage 2, when coordinates are multiples of a unit, all of them (whole) or those of
-// the points asked about (commonUnit): in units the determinant and every number on its way are integers.
+// the points asked about (commonUnit): in units the determinant and every number on
+// its way are integers.
 //   - If the bound on the terms' magnitudes is below 2^52, the float determinant was
 //     exact after all.
 //   - If stage 1 failed, the true determinant is below twice the bound; where that is
