@@ -111,8 +111,8 @@ func (r *runner) openLookup(ctx context.Context, n *plan.Lookup) (*pipeline, err
 	}
 	w := NewWorker(r.env)
 	cols, err := scopeOf(nil).evalAll(w, nil, n.Values, &column.Batch{N: 1}, nil)
-	if err != nil {
-		return nil, err
+	if err != nil { // whether a row meets it, the condition above finds out
+		return r.openShared(&plan.Shared{Common: n.Common, Fields: n.Fields})
 	}
 	for i := range cols {
 		cols[i] = keyColumn(&cols[i], side.keys.types[i])

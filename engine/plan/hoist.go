@@ -40,13 +40,13 @@ func hasQueries(n Node) bool {
 // hoisted is a plan with common parts in the place of what does not read the row
 // outside. limited: a step above may not take all rows.
 func hoisted(n Node, limited bool) Node {
-	if limited && exprsFail(n) {
-		return n
-	}
 	if !ReadsOuter(n) {
+		if limited && exprsFail(n) {
+			return n
+		}
 		return commonPart(n)
 	}
-	if f, ok := n.(*Filter); ok && !ReadsOuter(f.Input) {
+	if f, ok := n.(*Filter); ok && !ReadsOuter(f.Input) && !(limited && exprsFail(f.Input)) {
 		return lookup(f)
 	}
 	if l, ok := n.(*Limit); ok {
@@ -116,6 +116,13 @@ func lookup(f *Filter) Node {
 	} else {
 		l.Common = &Common{Name: "rows of a query", Plan: f.Input}
 	}
+	for _, v := range l.Values {
+		if v.CanFail() {
+			// then the Lookup gives all rows, and the condition fails where a row
+			// reaches what fails
+			return &Filter{Input: l, Cond: f.Cond, Clause: f.Clause}
+		}
+	}
 	if len(rest) == 0 {
 		return l
 	}
@@ -123,17 +130,17 @@ func lookup(f *Filter) Node {
 }
 
 // equalsOuter takes an equality apart into what reads columns and what reads the
-// row outside.
+// row outside. What reads the row outside may fail.
 func equalsOuter(e expr.Expr) (key, value expr.Expr, ok bool) {
 	eq, is := e.(*expr.Compare)
-	if !is || eq.Op != lang.Equals || e.CanFail() || expr.HasQuery(e) || !keyTypes(eq.Left.Type(), eq.Right.Type()) {
+	if !is || eq.Op != lang.Equals || expr.HasQuery(e) || !keyTypes(eq.Left.Type(), eq.Right.Type()) {
 		return nil, nil, false
 	}
 	key, value = eq.Left, eq.Right
 	if expr.HasOuter(key) {
 		key, value = value, key
 	}
-	if !readsColumns(key) || expr.HasOuter(key) || readsColumns(value) || !expr.HasOuter(value) {
+	if !readsColumns(key) || key.CanFail() || expr.HasOuter(key) || readsColumns(value) || !expr.HasOuter(value) {
 		return nil, nil, false
 	}
 	return key, value, true

@@ -173,7 +173,8 @@ type Shared struct {
 }
 
 // Lookup is the rows of a common part for which Keys (over its columns) equal
-// Values (which read no column), found by hash; in the order of the part.
+// Values (which read no column), found by hash; in the order of the part. Where a
+// value cannot be computed it is all rows.
 type Lookup struct {
 	Common *Common
 	Fields column.Schema

@@ -226,7 +226,7 @@ func groupsOf(s *expr.Subquery, width int) (groups, bool) {
 	schema := f.Input.Schema()
 	var rest []expr.Expr
 	for _, c := range expr.Conjuncts(f.Cond) {
-		if key, value, ok := equalsOuter(c); ok {
+		if key, value, ok := equalsOuter(c); ok && !value.CanFail() {
 			grouped.Keys = append(grouped.Keys, key)
 			grouped.Fields = append(grouped.Fields, column.Field{Name: key.String(), Type: key.Type(), Unit: key.Unit()})
 			g.left = append(g.left, beside(value, 0, s.Outer))

@@ -2,6 +2,9 @@ package oracle
 
 import (
 	"flag"
+	"os"
+	"slices"
+	"strings"
 	"testing"
 )
 
@@ -10,6 +13,7 @@ var (
 	queries = flag.Int("queries", 600, "how many")
 	deep    = flag.Int("deep", 3, "how deep they nest")
 	ask     = flag.String("ask", "", "a query to ask both sides about the tables of -seed")
+	record  = flag.String("record", "", "a file for the queries on which both sides agree, with their answers")
 	stop    = flag.Int("stop", 5, "differences after which to stop")
 )
 
@@ -61,4 +65,51 @@ func TestAsk(t *testing.T) {
 	t.Log("ours:", err, ours)
 	theirs, err := b.theirs(*ask)
 	t.Log("theirs:", err, theirs)
+}
+
+// The tables of a seed, and queries on which both sides agree, as a story that the
+// product's own tests tell without the other database (-record).
+func TestRecord(t *testing.T) {
+	if *record == "" {
+		t.Skip("no file was given")
+	}
+	b, err := New(*seed)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var out strings.Builder
+	out.WriteString("# Random queries and the answers that two databases agree on; recorded, not written by hand.\n")
+	for _, table := range tables {
+		rows, err := b.theirs("SELECT * FROM " + table.name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		out.WriteString("\ntable " + table.name + "\n" + strings.Join(table.columns, " ") + "\n----\n" + strings.ReplaceAll(strings.Join(rows, "\n")+"\n", " | \n", "\n"))
+	}
+	for n, got := uint64(0), 0; got < *queries; n++ {
+		q := NewGen(*seed, n).Random(int(n) % (*deep + 1))
+		if len(q.Ours()) > 600 { // a story is to be read
+			continue
+		}
+		if no, err := b.Check(q); no || err != nil {
+			continue
+		}
+		got++
+		rows, err := b.theirs(q.Theirs())
+		if err != nil {
+			t.Fatal(err)
+		}
+		how := "ordered"
+		if !q.Ordered {
+			how = "any-order"
+			slices.Sort(rows)
+		}
+		out.WriteString("\n" + how + "\n" + q.Ours() + "\n----\n")
+		for _, r := range rows {
+			out.WriteString(strings.TrimSuffix(r, " | ") + "\n")
+		}
+	}
+	if err := os.WriteFile(*record, []byte(out.String()), 0o644); err != nil {
+		t.Fatal(err)
+	}
 }
