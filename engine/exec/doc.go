@@ -42,6 +42,14 @@
 //     order of code points; FALSE before TRUE; points by x, y, z; Infinity last.
 //   - Distinct keeps the first of equal rows.
 //
+// # Queries in expressions
+//
+// A worker's expressions ask for the answers of queries (Worker, asker). One that
+// depends on nothing is computed once; the answers of others are kept by the values
+// outside that they depend on, up to 64 MiB, and then forgotten. Workers take turns
+// at the answers of one query. Of notes of a query computed for many rows only
+// warnings are told, three of them. What queries do is counted to the step around.
+//
 // # Errors and notes
 //
 // An error of a row becomes a problem at the expression's place that names the

@@ -49,6 +49,19 @@
 // its keys, a Union the same columns of each part. A column named id stays beside
 // expressions that may fail or weigh, so that messages can name the row.
 //
+// # Queries in expressions
+//
+// A Query is a plan of its own that reads the row outside by expr.Outer; it is
+// optimised with the plan that it stands in. Unnest makes semi, anti and grouped
+// left joins of those where that is plain. Safe: only where nothing in the query can
+// fail, as a join computes it for rows that nobody asks for. Hoist makes common
+// parts of what does not read the row outside, and finds by hash the rows that equal
+// its values. The rest is computed once for each combination of the values outside.
+//
+// A Common part (a name of WITH used twice, a side of FULL JOIN) is optimised once
+// and computed once; Shared and Lookup are its uses. Conditions and columns stop at
+// it. Inline takes those away that are used once.
+//
 // # Lineage
 //
 // Lineage follows columns back to the relation that computed them. On it rest
@@ -71,7 +84,7 @@
 //
 // # Limitations
 //
-// Joins are not reordered: the right side is the one kept in memory. Conditions
+// Lineage ends at common parts: what leaves out cells there is not noted. Joins are not reordered: the right side is the one kept in memory. Conditions
 // do not move through groups to their keys. A measure counts as lost or repeated
 // only as far as its column is handed through unchanged. Behind a view without
 // the site's identifier a repeated cell is only noticed where the numbers of rows
