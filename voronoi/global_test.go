@@ -6,6 +6,8 @@ import (
 	"math"
 	"testing"
 
+	"pgregory.net/rapid"
+
 	"nearcell/voronoi/delaunay"
 )
 
@@ -308,4 +310,44 @@ func TestCellsInBox(t *testing.T) {
 	if _, err := CellsInBox(stopped, tets, unitBox.lo, unitBox.hi, Volume, 2); err == nil {
 		t.Error("a context that has ended stops nothing")
 	}
+}
+
+// Law 9 on small sets of every kind: a few steps of a lattice, so that sites meet,
+// lie in the walls and on common spheres.
+func TestLaw9Small(t *testing.T) {
+	rapid.Check(t, func(r *rapid.T) {
+		steps := rapid.IntRange(1, 6).Draw(r, "steps")
+		at := func() float64 { return float64(rapid.IntRange(0, steps).Draw(r, "at")) / float64(steps) }
+		sites := make([]Vec, rapid.IntRange(5, 40).Draw(r, "n"))
+		jitter := rapid.SampledFrom([]float64{0, 1e-3, 1e-6, 1e-9}).Draw(r, "jitter")
+		for i := range sites {
+			sites[i] = v(at(), at(), at())
+			if jitter > 0 {
+				move := func(x float64) float64 {
+					return min(1, max(0, x+float64(jitter*rapid.Float64Range(-1, 1).Draw(r, "move"))))
+				}
+				sites[i] = v(move(sites[i].X), move(sites[i].Y), move(sites[i].Z))
+			}
+		}
+		d := diagram(t, sites, Options{Solid: unitBox})
+		if d.facts.Dimension < 3 {
+			return
+		}
+		a, b := measureBoth(t, d, All&^Faces)
+		var sum Sum
+		for i := range sites {
+			sum.Add(b.Volume[i])
+			// One by one, cells begin as the box, whose rounding stays.
+			if e := math.Abs(a.Volume[i] - b.Volume[i]); e > 1e-11*a.Volume[i]+1e-15 {
+				r.Fatalf("volume of %d is %v one by one, else %v; sites %v", i, a.Volume[i], b.Volume[i], sites)
+			}
+			if e := math.Abs(a.Area[i] - b.Area[i]); e > 1e-10*a.Area[i]+1e-15 {
+				r.Fatalf("area of %d is %v one by one, else %v; sites %v", i, a.Area[i], b.Area[i], sites)
+			}
+			if e := math.Abs(a.WallArea[i] - b.WallArea[i]); e > 1e-10*a.Area[i]+1e-15 {
+				r.Fatalf("walls of %d are %v one by one, else %v; sites %v", i, a.WallArea[i], b.WallArea[i], sites)
+			}
+		}
+		near(t, "all volumes", sum.Value(), 1, 1e-11)
+	})
 }
