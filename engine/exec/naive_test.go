@@ -41,6 +41,8 @@ func naive(n plan.Node) ([]row, error) {
 		return rows, nil
 	case *plan.Join:
 		return naiveJoin(n)
+	case *plan.Matched:
+		return naiveMatched(n)
 	case *plan.Union:
 		var rows []row
 		for _, p := range n.Parts {
@@ -190,7 +192,7 @@ func naiveJoin(n *plan.Join) ([]row, error) {
 	if err != nil {
 		return nil, err
 	}
-	schema := n.Schema()
+	schema := n.Both()
 	var rows []row
 	for _, l := range left {
 		matched := false
@@ -201,8 +203,13 @@ func naiveJoin(n *plan.Join) ([]row, error) {
 			}
 			if ok {
 				matched = true
-				rows = append(rows, slices.Concat(l, r))
+				if n.Kind == plan.Inner || n.Kind == plan.Left {
+					rows = append(rows, slices.Concat(l, r))
+				}
 			}
+		}
+		if n.Kind == plan.Semi && matched || n.Kind == plan.Anti && !matched {
+			rows = append(rows, l)
 		}
 		if !matched && n.Kind == plan.Left {
 			joined := slices.Clone(l)
@@ -460,4 +467,37 @@ func rowsOf(b *column.Batch) []row {
 		rows = append(rows, r)
 	})
 	return rows
+}
+
+// naiveMatched takes the right rows off one by one.
+func naiveMatched(n *plan.Matched) ([]row, error) {
+	left, err := naive(n.Left)
+	if err != nil {
+		return nil, err
+	}
+	right, err := naive(n.Right)
+	if err != nil {
+		return nil, err
+	}
+	there := map[string]int{}
+	for _, r := range right {
+		there[keyText(r)]++
+	}
+	seen := map[string]bool{}
+	var rows []row
+	for _, l := range left {
+		k := keyText(l)
+		if !n.All && seen[k] {
+			continue
+		}
+		seen[k] = true
+		is := there[k] > 0
+		if n.All {
+			there[k]--
+		}
+		if is == (n.Kind == plan.Intersect) {
+			rows = append(rows, l)
+		}
+	}
+	return rows, nil
 }

@@ -51,6 +51,9 @@ func Plan(rng *rand.Rand, depth, rows int) plan.Node {
 		}
 		n := in()
 		other := &plan.Filter{Input: n, Cond: Condition(rng, n.Schema(), 1), Clause: "WHERE"}
+		if rng.IntN(2) == 0 {
+			return &plan.Matched{Kind: plan.MatchedKind(rng.IntN(2)), All: rng.IntN(2) == 0, Left: n, Right: other}
+		}
 		return &plan.Union{Parts: []plan.Node{n, other}, Fields: n.Schema()}
 	}
 	return crowd(rng, in())
@@ -91,7 +94,7 @@ func project(rng *rand.Rand, n plan.Node) plan.Node {
 
 // Join is a random join: of equalities, other conditions, both or neither.
 func Join(rng *rand.Rand, left, right plan.Node) *plan.Join {
-	j := &plan.Join{Kind: plan.JoinKind(rng.IntN(2)), Left: left, Right: right}
+	j := &plan.Join{Kind: plan.JoinKind(rng.IntN(4)), Left: left, Right: right}
 	var conds []expr.Expr
 	for range rng.IntN(3) {
 		if len(left.Schema()) > 0 && len(right.Schema()) > 0 {
@@ -99,7 +102,7 @@ func Join(rng *rand.Rand, left, right plan.Node) *plan.Join {
 		}
 	}
 	for range rng.IntN(2) {
-		conds = append(conds, Condition(rng, j.Schema(), 1))
+		conds = append(conds, Condition(rng, j.Both(), 1))
 	}
 	j.Rest = expr.AndAll(conds)
 	return j
