@@ -49,17 +49,21 @@ func TestLaw9BothWays(t *testing.T) {
 				continue
 			}
 			a, b := measureBoth(t, d, All)
-			compareCells(t, fmt.Sprint(name, ", in a box: ", o.Solid != nil), d, a, b)
+			compareCells(t, fmt.Sprint(name, ", in a box: ", o.Solid != nil), d, a, b, leeway{})
 		}
 	}
 }
 
-func compareCells(t *testing.T, name string, d *Diagram, a, b *Cells, slack ...float64) {
+// leeway is what two ways are allowed beyond the ordinary: so many times the
+// difference, and other counts.
+type leeway struct {
+	times  float64
+	counts bool
+}
+
+func compareCells(t *testing.T, name string, d *Diagram, a, b *Cells, allow leeway) {
 	t.Helper()
-	more := 1.0
-	if len(slack) > 0 {
-		more = slack[0]
-	}
+	more := max(1, allow.times)
 	worst := map[string]float64{}
 	bad := 0
 	for i := range a.Volume {
@@ -84,6 +88,9 @@ func compareCells(t *testing.T, name string, d *Diagram, a, b *Cells, slack ...f
 		same("farthest", a.Farthest[i], b.Farthest[i], a.Farthest[i], 1e-9)
 		same("nearest face", a.NearestFace[i], b.NearestFace[i], 1, 0)
 		same("centroid", length(sub(a.Centroid[i], b.Centroid[i])), 0, a.Farthest[i], 1e-10)
+		if allow.counts {
+			continue
+		}
 		if a.Faces[i] != b.Faces[i] || a.Edges[i] != b.Edges[i] || a.Vertices[i] != b.Vertices[i] || a.Shaped[i] != b.Shaped[i] ||
 			a.Neighbours[i] != b.Neighbours[i] || a.Bounded[i] != b.Bounded[i] || a.Clipped[i] != b.Clipped[i] || a.HasCentroid[i] != b.HasCentroid[i] {
 			if bad++; bad < 10 {
@@ -102,7 +109,7 @@ func TestLaw9InSolids(t *testing.T) {
 		for kind, sites := range map[string][]Vec{"uniform": random(800, 21), "lattice": grid(9), "clustered": clustered(600, 22), "sheet": sheet(600, 23)} {
 			d := diagram(t, sites, Options{Solid: room})
 			a, b := measureBoth(t, d, All)
-			compareCells(t, name+", "+kind, d, a, b)
+			compareCells(t, name+", "+kind, d, a, b, leeway{})
 			if !d.convex && kind == "uniform" {
 				g, _ := d.dual(context.Background())
 				w, whole := newWalker(g), 0
@@ -131,7 +138,7 @@ func TestLaw9HardSets(t *testing.T) {
 			}
 			d := diagram(t, k.sites, o)
 			a, b := measureBoth(t, d, All)
-			compareCells(t, fmt.Sprint(name, ", in a box: ", o.Solid != nil), d, a, b, k.slack...)
+			compareCells(t, fmt.Sprint(name, ", in a box: ", o.Solid != nil), d, a, b, k.allow)
 		}
 	}
 }
@@ -140,8 +147,7 @@ type hardSet struct {
 	sites     []Vec
 	room      brick
 	tolerance float64
-	// slack is by how much more than elsewhere the ways may differ.
-	slack []float64
+	allow     leeway
 	// closed sets are compared in the box only.
 	closed bool
 }
@@ -186,14 +192,18 @@ func hardSets() map[string]hardSet {
 			far[i] = add(far[i], v(0.9, 0.9, 0.9))
 		}
 	}
+	// Two sites 10^-23 apart make tetrahedra whose centres two words do not hold.
+	twins := append(random(n, 68), v(1.0/3, 0, 2.0/3), v(1.0/3, 0x1p-76, 2.0/3), v(0.25, 0.5, 0.5), v(0.25+0x1p-52, 0.5, 0.5))
 	return map[string]hardSet{
+		// Which of two such sites a face belongs to is rounding.
+		"twins":            {sites: twins, room: unitBox, allow: leeway{counts: true}, closed: true},
 		"jittered lattice": {sites: jittered, room: unitBox},
 		"on walls":         {sites: onWalls, room: unitBox},
 		"outside":          {sites: outside, room: unitBox, tolerance: 0.02},
 		"world":            {sites: world, room: brick{v(512345, 5312345, 412), v(512346, 5312346, 413)}},
 		"thin":             {sites: thin, room: unitBox},
 		// One by one, cells of 1e-5 are cut out of a box of 1 and lose five digits.
-		"far clusters": {sites: far, room: unitBox, slack: []float64{10}},
+		"far clusters": {sites: far, room: unitBox, allow: leeway{times: 10}},
 		// Without a box, strips without width between unbounded cells of mirrored sites
 		// are told from faces by rounding in both ways.
 		"diagonal planes": {sites: fillUnit(n), room: unitBox, closed: true},
@@ -338,13 +348,13 @@ func TestLaw9Small(t *testing.T) {
 		for i := range sites {
 			sum.Add(b.Volume[i])
 			// One by one, cells begin as the box, whose rounding stays.
-			if e := math.Abs(a.Volume[i] - b.Volume[i]); e > 1e-11*a.Volume[i]+1e-15 {
+			if e := math.Abs(a.Volume[i] - b.Volume[i]); e > 1e-11*a.Volume[i]+1e-14 {
 				r.Fatalf("volume of %d is %v one by one, else %v; sites %v", i, a.Volume[i], b.Volume[i], sites)
 			}
-			if e := math.Abs(a.Area[i] - b.Area[i]); e > 1e-10*a.Area[i]+1e-15 {
+			if e := math.Abs(a.Area[i] - b.Area[i]); e > 1e-10*a.Area[i]+1e-14 {
 				r.Fatalf("area of %d is %v one by one, else %v; sites %v", i, a.Area[i], b.Area[i], sites)
 			}
-			if e := math.Abs(a.WallArea[i] - b.WallArea[i]); e > 1e-10*a.Area[i]+1e-15 {
+			if e := math.Abs(a.WallArea[i] - b.WallArea[i]); e > 1e-10*a.Area[i]+1e-14 {
 				r.Fatalf("walls of %d are %v one by one, else %v; sites %v", i, a.WallArea[i], b.WallArea[i], sites)
 			}
 		}

@@ -18,9 +18,9 @@ type Tetrahedron struct {
 func MeasureTetrahedron(a, b, c, d Vec) Tetrahedron {
 	u, v, w := difference(b, a), difference(c, a), difference(d, a)
 	six := math.Abs(u.dot(v.cross(w)).high)
-	o := fineCircumcentre(a, b, c, d)
-	t := Tetrahedron{Volume: six / 6, Centre: add(a, o), Radius: length(o), Shortest: math.Inf(1), MinDihedral: math.Inf(1)}
+	t := Tetrahedron{Volume: six / 6, Shortest: math.Inf(1), MinDihedral: math.Inf(1)}
 	p := [4]Vec{a, b, c, d}
+	end := 0 // of the shortest edge
 	for i := range 4 {
 		for j := range i {
 			// The faces at the edge i, j have the other corners k and l.
@@ -31,7 +31,10 @@ func MeasureTetrahedron(a, b, c, d Vec) Tetrahedron {
 			l := 6 - i - j - k
 			e := sub(p[j], p[i])
 			edge := length(e)
-			t.Shortest, t.Longest = min(t.Shortest, edge), max(t.Longest, edge)
+			if edge < t.Shortest {
+				t.Shortest, end = edge, i
+			}
+			t.Longest = max(t.Longest, edge)
 			// With normals m and n of the two faces that look along the edge the same
 			// way round, |m × n| = 6V|e|, and m·n is the cosine.
 			m, n := cross(e, sub(p[k], p[i])), cross(e, sub(p[l], p[i]))
@@ -39,6 +42,9 @@ func MeasureTetrahedron(a, b, c, d Vec) Tetrahedron {
 			t.MinDihedral, t.MaxDihedral = min(t.MinDihedral, angle), max(t.MaxDihedral, angle)
 		}
 	}
+	// Seen from there the other corners differ most.
+	o, _ := fineCircumcentre(p[end], p[(end+1)%4], p[(end+2)%4], p[(end+3)%4])
+	t.Centre, t.Radius = add(p[end], o), length(o)
 	return t
 }
 
@@ -56,5 +62,7 @@ func MeasureTriangle(a, b, c Vec) (area, radius float64, normal Vec) {
 // DualLength is the length of the Voronoi edge between the centres of the spheres
 // through a, b, c, d and a, b, c, e.
 func DualLength(a, b, c, d, e Vec) float64 {
-	return length(sub(fineCircumcentre(a, b, c, d), fineCircumcentre(a, b, c, e)))
+	o, _ := fineCircumcentre(a, b, c, d)
+	p, _ := fineCircumcentre(a, b, c, e)
+	return length(sub(o, p))
 }
