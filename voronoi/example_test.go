@@ -3,6 +3,7 @@ package voronoi_test
 import (
 	"context"
 	"fmt"
+	"slices"
 
 	"nearcell/voronoi"
 	"nearcell/voronoi/polyhedron"
@@ -102,4 +103,32 @@ func ExampleDiagram_Facts() {
 	// Output:
 	// 4 sites at 3 places, dimension 1, computed about x = 5.000001e+06
 	// at one place: [1 3]
+}
+
+// The tetrahedralisation is the dual of the cells: three sites at the corner of a cube
+// and one at its far corner make one tetrahedron.
+func ExampleDiagram_Tetrahedra() {
+	sites := []voronoi.Vec{{X: 10}, {X: 11}, {X: 10, Y: 1}, {X: 10, Z: 1}, {X: 10}}
+	d, err := voronoi.New(sites, voronoi.Options{})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	t, site, err := d.Tetrahedra(context.Background())
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	for i := range t.NumTets() {
+		corners := t.Tet(i)
+		for k, c := range corners {
+			corners[k] = site(c)
+		}
+		slices.Sort(corners[:])
+		p := func(k int) voronoi.Vec { return sites[corners[k]] }
+		m := voronoi.MeasureTetrahedron(p(0), p(1), p(2), p(3))
+		fmt.Printf("%d: volume %.4f, sphere of %.4f about %v\n", corners, m.Volume, m.Radius, m.Centre)
+	}
+	// Output:
+	// [0 1 2 3]: volume 0.1667, sphere of 0.8660 about {10.5 0.5 0.5}
 }

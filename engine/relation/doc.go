@@ -24,6 +24,12 @@
 // GAPS has a row for each place, not for each site: its rows come largest first, and
 // which of them have a certain nearest site is known only when all are.
 //
+// TETRAHEDRA, TRIANGLES, VERTICES and HULL are rows of one tetrahedralisation
+// (simplices.go), which the diagram keeps. Corners ascend within a row, and rows in the
+// order of their corners: a tetrahedron and its vertex, a triangle and its edge of a
+// cell are found by equal corners. Sites in one place are one corner, named by the
+// first. A condition on a says which rows are made.
+//
 // A new relation is one file and one registry line.
 //
 // # Laws
@@ -55,6 +61,8 @@
 //
 // FOR EACH over stamps of which half the partitions hold less than half of the
 // sites is refused: such stamps were never common to the sites.
+//
+// Sites in one plane or on one line have no tetrahedra, which is noted.
 //
 // # Exact and rounded
 //
