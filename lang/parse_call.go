@@ -19,7 +19,9 @@ func (p *parser) call() *Call {
 		c.At = p.since(start)
 		return c
 	default:
-		c.Distinct = p.take(kDistinct)
+		if c.Distinct = p.take(kDistinct); !c.Distinct {
+			p.take(kAll) // all rows, as without it
+		}
 		c.Args = []Expr{p.expr()}
 		if p.is(kAlong) && !c.Distinct {
 			p.alongAt(c)
