@@ -101,9 +101,7 @@ func typeAtRandom(t *testing.T, c *completer, pieces []string, seed uint64) {
 		t.Fatal(err)
 	}
 	p.edit = edit
-	if err := p.loadHistory(); err != nil {
-		t.Fatal(err)
-	}
+	p.renewHistory()
 	const most = 1000
 	go func() {
 		for range most {
@@ -120,9 +118,7 @@ func typeAtRandom(t *testing.T, c *completer, pieces []string, seed uint64) {
 			if err == io.EOF {
 				return
 			}
-			if err := p.loadHistory(); err != nil {
-				t.Fatal(err)
-			}
+			p.renewHistory()
 		case <-end:
 			t.Fatalf("seed %d: the editor hangs", seed)
 		}

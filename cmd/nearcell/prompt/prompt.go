@@ -7,7 +7,9 @@ import (
 	"io"
 	"os"
 	"os/signal"
+	"slices"
 	"strings"
+	"sync/atomic"
 	"time"
 
 	"github.com/chzyer/readline"
@@ -48,7 +50,8 @@ type prompt struct {
 	keys    chan struct{}
 	lines   chan typedLine
 	signals chan os.Signal
-	length  int // of the line; known to the library's goroutine only
+	length  int                      // of the line; known to the library's goroutine only
+	asked   atomic.Pointer[[]string] // what the library's history is to become
 }
 
 // typedLine is what the library gives for a line.
@@ -109,9 +112,7 @@ func (p *prompt) open(before *term.State) error {
 	config := p.config(&keys{in: p.o.Terminal.in}, screen, enter, exit)
 	edit, err := readline.NewEx(config)
 	p.edit = edit
-	if err == nil {
-		err = p.loadHistory()
-	}
+	p.renewHistory()
 	return err
 }
 
@@ -133,6 +134,7 @@ func (p *prompt) config(in io.ReadCloser, out io.Writer, enter, exit func() erro
 		FuncMakeRaw:            enter,
 		FuncExitRaw:            exit,
 		FuncFilterInputRune: func(r rune) (rune, bool) {
+			p.loadHistory()
 			if op := p.edit.Operation; r == readline.CharKill && op.IsInCompleteMode() {
 				op.ExitCompleteMode(false) // it would show candidates that it has forgotten, and die of it
 			}
@@ -145,21 +147,29 @@ func (p *prompt) config(in io.ReadCloser, out io.Writer, enter, exit func() erro
 	}
 }
 
-// loadHistory gives the library what was asked before. It is loaded anew after
-// each statement, since the library would put a line that was recalled and
+// renewHistory says that the library is to get what was asked so far. It gets it
+// anew after each statement, since it would put a line that was recalled and
 // changed in another's place.
-func (p *prompt) loadHistory() error {
+func (p *prompt) renewHistory() {
+	lines := slices.Clone(p.history.lines)
+	p.asked.Store(&lines)
+}
+
+// loadHistory gives the library its history before it looks at the next key. It
+// runs in the library's own goroutine, which may be busy with keys that were
+// typed ahead: a history that changes under it ends the program.
+func (p *prompt) loadHistory() {
+	lines := p.asked.Swap(nil)
+	if lines == nil {
+		return
+	}
 	p.edit.ResetHistory()
-	if len(p.history.lines) == 0 {
-		// Its search dies of a history without any line.
-		return p.edit.SaveHistory("")
+	if len(*lines) == 0 {
+		p.edit.SaveHistory("") // its search dies of a history without any line
 	}
-	for _, line := range p.history.lines {
-		if err := p.edit.SaveHistory(line); err != nil {
-			return err
-		}
+	for _, line := range *lines {
+		p.edit.SaveHistory(line) // fails only where the library keeps a file, and it keeps none
 	}
-	return nil
 }
 
 // read reads a line each time it is asked to.
@@ -248,9 +258,7 @@ func (p *prompt) run(text string) (ended bool, err error) {
 	for _, line := range oneLines(text) {
 		p.history.add(line)
 	}
-	if err := p.loadHistory(); err != nil {
-		return true, err
-	}
+	p.renewHistory()
 	return p.execute(text)
 }
 

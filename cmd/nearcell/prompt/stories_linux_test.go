@@ -149,7 +149,7 @@ func TestInterrupt(t *testing.T) {
 	p.send("CREATE CAMPAIGN walk FROM 'sites.csv' WITHIN PRISM ((0,0),(30,0),(30,12),(18,12),(18,18),(0,18)) FROM 0 TO 7;" + enter)
 	p.expect("sites.csv,") // the words before it tell how many lie outside
 	p.asked(ask)
-	const query = "SELECT COUNT(*) AS cells, MAX(faces), MAX(area), MAX(farthest), SUM(cx) FROM CELLS OF walk;"
+	const query = "SELECT COUNT(*) AS gaps, MAX(radius) FROM GAPS OF walk;"
 	p.send(query + enter)
 	p.expect(query)
 	p.expect(" a second, ") // the line of progress
