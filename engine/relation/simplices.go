@@ -143,9 +143,14 @@ func (r *simplexRows) part(ctx context.Context, p *Part, out *simplexBatch) erro
 	r.site = site
 	list := r.kind.list(t)
 	for i := range list {
+		if i%longLoop == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
 		r.place(&list[i])
 	}
-	sortSimplices(list, len(p.Sites))
+	if err := sortSimplices(ctx, list, len(p.Sites)); err != nil {
+		return err
+	}
 	first := firstRows(p)
 	for i := range list {
 		s := &list[i]
@@ -172,6 +177,9 @@ func (r *simplexRows) part(ctx context.Context, p *Part, out *simplexBatch) erro
 	return nil
 }
 
+// longLoop is after how many rounds a loop over all simplices looks at ctx.
+const longLoop = 1 << 13
+
 // place turns the corners into sites of the part, ascending.
 func (r *simplexRows) place(s *simplex) {
 	corners := s.corner[:r.kind.corners]
@@ -183,7 +191,7 @@ func (r *simplexRows) place(s *simplex) {
 
 // sortSimplices sorts by the corners: by counting for the first, then the few that
 // share it.
-func sortSimplices(list []simplex, sites int) {
+func sortSimplices(ctx context.Context, list []simplex, sites int) error {
 	start := make([]int, sites+1)
 	for i := range list {
 		start[list[i].corner[0]+1]++
@@ -200,10 +208,14 @@ func sortSimplices(list []simplex, sites int) {
 	}
 	copy(list, sorted)
 	for s := range sites {
+		if s%longLoop == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
 		slices.SortFunc(list[start[s]:start[s+1]], func(a, b simplex) int {
 			return slices.Compare(a.corner[:], b.corner[:])
 		})
 	}
+	return nil
 }
 
 func (r *simplexRows) flush(out *simplexBatch) error {
