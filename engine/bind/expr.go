@@ -3,6 +3,7 @@ package bind
 import (
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
+	"nearcell/engine/note"
 	"nearcell/engine/problem"
 	"nearcell/lang"
 )
@@ -206,7 +207,18 @@ func (x *exprs) binary(e *lang.Binary) (expr.Expr, error) {
 	case lang.Plus, lang.Minus, lang.Times, lang.Divide, lang.Modulo, lang.Power:
 		return make(expr.NewArith(e.Op, l, r, x.at(e)))
 	}
+	x.noteNull(e)
 	return make(expr.NewCompare(e.Op, l, r, x.at(e)))
+}
+
+// noteNull says that a comparison with NULL is never TRUE, since the rows that it
+// was meant to find are missed in silence.
+func (x *exprs) noteNull(e *lang.Binary) {
+	_, left := e.Left.(*lang.Null)
+	_, right := e.Right.(*lang.Null)
+	if left || right {
+		x.say(note.Note, note.Rows, "%s is never TRUE: IS NULL and IS NOT NULL ask for missing values", lang.Print(e))
+	}
 }
 
 // predicate binds BETWEEN, IN, LIKE, IS and OVERLAPS.
