@@ -198,6 +198,8 @@ func (c *cellCount) say(notes *note.Notes, call *plan.Call, groups int) {
 		what = fmt.Sprintf("that are only %d different ones in their group", c.cells.n)
 	case c.cells == nil && len(b.Clauses.Each) > 0 && c.shown.parts.Load() > int64(groups):
 		what = fmt.Sprintf("of %d partitions in %d %s", c.shown.parts.Load(), groups, plural(float64(groups), "group"))
+	case c.cells == nil && c.shown.rows.Load() == 0:
+		return // the cells were made elsewhere, in a common part: how many is not known here
 	case c.cells == nil && len(c.most) > 0 && slices.Max(c.most) > c.shown.rows.Load():
 		what = fmt.Sprintf("of which there are only %d", c.shown.rows.Load())
 	default:

@@ -29,6 +29,8 @@ func Lineage(n Node) []Origin {
 		return origins
 	case *Filter, *Sort, *Limit, *Distinct:
 		return Lineage(n.Inputs()[0])
+	case *Shared:
+		return Lineage(n.Common.Plan)
 	case *Project:
 		return through(Lineage(n.Input), n.Exprs, len(n.Exprs))
 	case *Aggregate:
