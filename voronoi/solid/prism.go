@@ -1,8 +1,14 @@
 package solid
 
+import "slices"
+
 // Prism is a floor plan raised from one height to another. The plan need not be
 // convex, can have holes and can be in several pieces.
-type Prism struct{ extrusion }
+type Prism struct {
+	extrusion
+	outer []Vec2 // as given
+	holes [][]Vec2
+}
 
 // NewPrism makes a prism with this outline between the heights z0 and z1, whichever
 // is the lower. Rings may run either way round and may repeat their first corner at
@@ -25,7 +31,11 @@ func NewPrism(outer []Vec2, holes [][]Vec2, z0, z1 float64) (*Prism, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &Prism{*x}, nil
+	kept := &Prism{extrusion: *x, outer: slices.Clone(outer)}
+	for _, h := range holes {
+		kept.holes = append(kept.holes, slices.Clone(h))
+	}
+	return kept, nil
 }
 
 // Box is a cuboid with the axes' directions.
