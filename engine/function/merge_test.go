@@ -20,7 +20,7 @@ func TestShufflesAndChunks(t *testing.T) {
 		xs[i] = (rng.Float64() - 0.3) * math.Pow(10, float64(rng.IntN(9)-4))
 		ws[i] = rng.Float64()
 	}
-	names := []string{"SUM", "AVG", "VAR_POP", "STDDEV_SAMP", "MKT", "MEDIAN"}
+	names := []string{"SUM", "AVG", "VAR_POP", "STDDEV_SAMP", "MKT", "MEDIAN", "LEVEL_AVG", "DIRECTION_AVG"}
 	want := map[string][2]float64{}
 	for _, name := range names {
 		w := reals(ws...)

@@ -19,6 +19,7 @@ func momentAggregates() []*Aggregate {
 		{Name: "MKT", Signature: "MKT(temp [, kJ/mol])",
 			Meaning: "the mean kinetic temperature, °C in and out (Haynes 1971); activation energy 83.144 kJ/mol if not given, R = 8.3144 J/(mol K)",
 			Example: "MKT(temp) WEIGHTED BY volume", Weighted: true, Check: checkMKT, New: newMKT},
+		levelAggregate(), directionAggregate(),
 	}
 }
 

@@ -14,8 +14,8 @@ var (
 )
 
 // planned are functions of the language that have no engine yet.
-var planned = []string{"DENSE_RANK", "DIRECTION_AVG", "FIRST_VALUE", "INTERPOLATE", "LAG", "LAST_VALUE",
-	"LEAD", "LEVEL_AVG", "RANK", "ROW_NUMBER"}
+var planned = []string{"DENSE_RANK", "FIRST_VALUE", "INTERPOLATE", "LAG", "LAST_VALUE",
+	"LEAD", "RANK", "ROW_NUMBER"}
 
 // LookupScalar finds a scalar function by its name or alias, in any case; nil
 // where there is none.

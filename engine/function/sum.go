@@ -42,6 +42,9 @@ func checkAvg(args []Arg, weight *Arg) (Result, error) {
 	if err := firstError(wantCount("AVG", args, 1, 1), checkWeight(weight)); err != nil {
 		return Result{}, err
 	}
+	if err := plainMean(args[0].Unit); err != nil {
+		return Result{}, err
+	}
 	switch t := args[0].Type; {
 	case t == column.Interval || t == column.Timestamp:
 		return Result{t, nil, []column.Type{t}}, nil

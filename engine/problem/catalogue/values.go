@@ -38,4 +38,10 @@ var ofValues = []Entry{
 		WayOut:  "Cells are unbounded where no solid closes them: put the campaign WITHIN one, such as ENVELOPE OF hall MARGIN 1, or leave them out with WHERE bounded, which makes the answer one of the inner cells.",
 		Example: "SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCLIPPED;",
 	},
+	{
+		Code:    "mean",
+		Meaning: "AVG of a column whose unit is dB, ° or pH. Levels and pH are logarithms and directions go round in a circle: adding them up and dividing gives a number that is the mean of nothing.",
+		WayOut:  "LEVEL_AVG is the mean of levels by their energy, DIRECTION_AVG that of directions by vectors. -LOG10(AVG(POWER(10, -CAST(ph AS REAL)))) is the pH of the mean acid. CAST(x AS REAL) drops the unit where the plain mean is meant all the same, as of slopes.",
+		Example: "CREATE TABLE noise AS (SELECT 80.0 AS level) UNITS (level 'dB');\nSELECT AVG(level) FROM noise;",
+	},
 }
