@@ -25,6 +25,10 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 		return bound{}, err
 	}
 	rel := &relation.Bound{Def: def, Name: b.operandName(r.Operand), Input: fields(in.scope), Place: b.at(r.Operand)}
+	if def.Over == relation.OverRows {
+		rel.ID, rel.X, rel.Y, rel.Z = -1, -1, -1, -1
+		return b.overRows(rel, r, in)
+	}
 	if err := b.position(rel, r); err != nil {
 		return bound{}, err
 	}
@@ -36,10 +40,15 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 	if err := b.clauses(rel, r, campaign != nil); err != nil {
 		return bound{}, err
 	}
+	return b.relationNode(rel, r, in)
+}
+
+// relationNode is the source that a bound relation makes.
+func (b *binder) relationNode(rel *relation.Bound, r *lang.Relation, in bound, beside ...plan.Node) (bound, error) {
 	rel.Layout()
-	node := &plan.Relation{Bound: rel, Input: in.node, Place: b.at(r)}
+	node := &plan.Relation{Bound: rel, Input: in.node, Beside: beside, Place: b.at(r)}
 	s := newScope("", rel.Title(), rel.Schema())
-	s.sources[0].notYet = def.NotYet
+	s.sources[0].notYet = rel.Def.NotYet
 	for i, c := range rel.Columns {
 		s.columns[i].costly = c.Costly
 	}
@@ -229,15 +238,10 @@ func (b *binder) laterOption(rel *relation.Bound, what string) error {
 func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) error {
 	var within, unclipped lang.Clause
 	for _, c := range r.Clauses {
-		name := clauseName(c)
-		if slices.Contains(rel.Def.Later, name) {
-			return b.notYet(c, name)
+		err := b.takes(rel, c)
+		if err != nil {
+			return err
 		}
-		if !slices.Contains(rel.Def.Clauses, name) {
-			return problem.New("no-clause", b.at(c), "%s takes no %s", rel.Def.Noun, name).
-				WithHint("it takes %s", strings.Join(rel.Def.Clauses, ", "))
-		}
-		var err error
 		switch c := c.(type) {
 		case *lang.WithinClause:
 			within = c
@@ -254,7 +258,7 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 			}
 			rel.Clauses.Because = c.Because.Value
 		default:
-			err = b.notYet(c, name)
+			err = b.notYet(c, clauseName(c))
 		}
 		if err != nil {
 			return err
@@ -265,6 +269,19 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 	}
 	if within == nil && unclipped == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") {
 		b.say(note.Note, note.Sites, "%s has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along", rel.Title())
+	}
+	return nil
+}
+
+// takes refuses a clause that the relation does not take, or not yet.
+func (b *binder) takes(rel *relation.Bound, c lang.Clause) error {
+	name := clauseName(c)
+	if slices.Contains(rel.Def.Later, name) {
+		return b.notYet(c, name)
+	}
+	if !slices.Contains(rel.Def.Clauses, name) {
+		return problem.New("no-clause", b.at(c), "%s takes no %s", rel.Def.Noun, name).
+			WithHint("it takes %s", strings.Join(rel.Def.Clauses, ", "))
 	}
 	return nil
 }
@@ -280,11 +297,10 @@ func (b *binder) within(rel *relation.Bound, c *lang.WithinClause) error {
 }
 
 func (b *binder) forEach(rel *relation.Bound, c *lang.ForEachClause) error {
-	s := newScope("", rel.Name, rel.Input)
 	rel.EachPlace = b.at(c)
 	for i := range c.Names {
 		n := &c.Names[i]
-		at, err := s.resolve(b, &lang.Column{At: n.At, Name: *n})
+		at, err := b.column(rel, n)
 		if err != nil {
 			return err
 		}

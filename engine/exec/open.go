@@ -188,6 +188,12 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 	if err != nil {
 		return overSites{}, err
 	}
+	beside := make([]*column.Table, len(n.Beside))
+	for i, in := range n.Beside {
+		if beside[i], err = r.collect(ctx, in); err != nil {
+			return overSites{}, err
+		}
+	}
 	if m := r.meter(n); m != nil {
 		defer m.took(time.Now())
 	}
@@ -202,7 +208,7 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 	if err != nil {
 		return overSites{}, err
 	}
-	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted})
+	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside})
 	return overSites{rows, sites, wanted}, placed(err, n)
 }
 

@@ -253,6 +253,13 @@ func (e *Estimator) groups(input Node, keys []expr.Expr) Estimate {
 // relation looks, where sites are few and at hand, else it guesses.
 func (e *Estimator) relation(n *Relation) (Estimate, error) {
 	var f *relation.Forecast
+	if n.Bound.Def.Over == relation.OverRows {
+		rows := e.rows(n.Input)
+		if n.Bound.Def.Guess != nil {
+			rows = n.Bound.Def.Guess(n.Bound, rows, func(c int) float64 { return e.columnValues(n.Input, c).count })
+		}
+		return Estimate{Rows: rows}, nil
+	}
 	if e.Look != nil && e.idle == 0 && e.atHand(n.Input) {
 		var err error
 		if f, err = e.Look(n); err != nil {
@@ -279,7 +286,7 @@ func (e *Estimator) atHand(n Node) bool {
 	ok := true
 	var look func(Node)
 	look = func(n Node) {
-		if _, geometric := n.(*Relation); geometric || e.rows(n) > LookedAt || len(QueriesOf(n)) > 0 {
+		if r, is := n.(*Relation); is && r.Bound.Def.Over == relation.OverSites || e.rows(n) > LookedAt || len(QueriesOf(n)) > 0 {
 			ok = false
 			return
 		}

@@ -39,10 +39,11 @@ type Scan struct {
 // is relation.Bound.Columns(); Need says which of them are asked for (the others
 // come out as NULL and must not be read), Wanted, where not nil, is a condition
 // over the columns of Input that says which rows are shown. It never says which
-// sites partition.
+// sites partition. Beside are further inputs that clauses name (EXPECTING).
 type Relation struct {
 	Bound  *relation.Bound
 	Input  Node
+	Beside []Node // the rows of Bound.Beside
 	Need   []bool
 	Wanted expr.Expr
 	Place  problem.Place

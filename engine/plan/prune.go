@@ -250,12 +250,9 @@ func exactly(n Node, to []int, need []bool) Node {
 // columns that nobody needs leave the relation's columns; computed ones keep
 // their place and are only marked.
 func prunedRelation(n *Relation, need []bool) (Node, []int) {
-	b := *n.Bound
+	b := n.Bound
 	below := make([]bool, len(b.Input))
-	for _, c := range [...]int{b.ID, b.X, b.Y, b.Z} {
-		below[c] = true
-	}
-	for _, c := range b.Clauses.Each {
+	for _, c := range b.Reads() {
 		below[c] = true
 	}
 	mark(below, b.Input, n.Wanted)
@@ -274,25 +271,17 @@ func prunedRelation(n *Relation, need []bool) (Node, []int) {
 	}
 	in, to := pruned(n.Input, below)
 	stay := slices.Repeat([]bool{true}, len(need))
-	left := make([]bool, len(to))
-	for i, t := range to {
-		left[i] = t >= 0
-	}
-	copy(stay[:own], left) // own columns are those of the input, one by one
-	b.Input = kept(b.Input, left)
-	b.ID, b.X, b.Y, b.Z = to[b.ID], to[b.X], to[b.Y], to[b.Z]
-	b.Clauses.Each = slices.Clone(b.Clauses.Each)
-	for i, c := range b.Clauses.Each {
-		b.Clauses.Each[i] = to[c]
-	}
-	b.Columns = slices.Clone(kept(n.Bound.Columns, stay))
-	for i := range b.Columns {
-		if c := &b.Columns[i]; c.Site >= 0 {
-			c.Site = to[c.Site]
-		}
+	for i, t := range to[:own] {
+		stay[i] = t >= 0 // own columns are those of the input, one by one
 	}
 	c := *n
-	c.Bound, c.Input, c.Need = &b, in, kept(need, stay)
+	c.Bound = b.Pruned(to)
+	c.Bound.Columns = kept(c.Bound.Columns, stay)
+	c.Input, c.Need = in, kept(need, stay)
 	c.Wanted = expr.Remap(n.Wanted, to)
+	c.Beside = make([]Node, len(n.Beside))
+	for i, in := range n.Beside {
+		c.Beside[i] = exactlyAll(in, slices.Repeat([]bool{true}, len(in.Schema())))
+	}
 	return &c, numbered(stay)
 }

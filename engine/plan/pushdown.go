@@ -206,6 +206,10 @@ func sides(left, right int) (toLeft, toRight []int) {
 func pushRelation(n *Relation, conds []condition) Node {
 	c := *n
 	c.Input = push(n.Input, nil)
+	c.Beside = make([]Node, len(n.Beside))
+	for i, in := range n.Beside {
+		c.Beside[i] = push(in, nil)
+	}
 	to := make([]int, len(n.Bound.Columns))
 	for i, col := range n.Bound.Columns {
 		to[i] = col.Site

@@ -32,8 +32,8 @@ func (n *Relation) Schema() column.Schema {
 	return fields
 }
 
-// Inputs is the sites.
-func (n *Relation) Inputs() []Node { return []Node{n.Input} }
+// Inputs is the sites, then what clauses name.
+func (n *Relation) Inputs() []Node { return append([]Node{n.Input}, n.Beside...) }
 
 // Schema is the input's.
 func (n *Filter) Schema() column.Schema { return n.Input.Schema() }
@@ -118,7 +118,7 @@ func withInputs(n Node, in []Node) Node {
 	switch n := n.(type) {
 	case *Relation:
 		c := *n
-		c.Input = in[0]
+		c.Input, c.Beside = in[0], in[1:]
 		return &c
 	case *Filter:
 		c := *n

@@ -2,6 +2,7 @@ package relation
 
 import (
 	"context"
+	"slices"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/diagram"
@@ -28,10 +29,22 @@ type Column struct {
 	Extensive bool
 }
 
+// Over says what a relation is made of.
+type Over uint8
+
+// OverSites is the rule: rows with id, x, y, z, of which diagrams are made.
+// OverRows is any rows: a log of readings, rows to rank. Then the ID, X, Y, Z of
+// a Bound are -1, and nothing of the geometry is asked.
+const (
+	OverSites Over = iota
+	OverRows
+)
+
 // Definition is a registry line: a relation of the language.
 type Definition struct {
 	Noun     string // "CELLS"
 	RowIs    string // "site"
+	Over     Over
 	Meaning  string
 	Clauses  []string // "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", …
 	Later    []string // clauses of the language that it will take and does not take yet
@@ -39,6 +52,10 @@ type Definition struct {
 	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
 	NotYet   []string // columns of the language that are not there yet
 	Open     func(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
+
+	// Guess tells how many rows a relation over rows is thought to give of so many
+	// of the input, whose columns have so many different values; nil: as many.
+	Guess func(b *Bound, rows float64, values func(column int) float64) float64
 
 	layout func(b *Bound) []Column
 }
@@ -54,6 +71,10 @@ type Clauses struct {
 	Tolerance  float64
 	Duplicates string       // SPLIT, MEAN, FIRST, FAIL; "" is SPLIT
 	Unit       *column.Unit // of length, nil: not known
+
+	By  []int // columns of the input named by BY
+	On  []int // the one named by ON, or none
+	For []int // those named by FOR
 }
 
 // Bound is a relation in a query after binding: what its rows look like.
@@ -61,8 +82,9 @@ type Bound struct {
 	Def     *Definition
 	Name    string // what OF names, for notes: "hall", "(query)"
 	Input   column.Schema
-	ID      int // column of the input that identifies a site
+	ID      int // column of the input that identifies a site, -1 with OverRows
 	X, Y, Z int
+	Beside  []Beside // what clauses such as EXPECTING name
 	Clauses Clauses
 	Columns []Column
 	Place   problem.Place
@@ -85,12 +107,58 @@ func (b *Bound) Title() string { return b.Def.Noun + " OF " + b.Name }
 // Layout fills b.Columns from b.Def, b.Input, b.ID, b.X, b.Y, b.Z and b.Clauses.
 func (b *Bound) Layout() { b.Columns = b.Def.layout(b) }
 
+// Beside is a further input of a relation, which a clause such as EXPECTING names.
+type Beside struct {
+	Name   string // as OF's, for notes
+	Input  column.Schema
+	Clause string // that it belongs to
+}
+
+// Reads are the columns of the input on which the rows rest, whatever is asked of
+// them.
+func (b *Bound) Reads() []int {
+	reads := slices.Concat(b.Clauses.Each, b.Clauses.By, b.Clauses.On, b.Clauses.For)
+	if b.Def.Over == OverSites {
+		reads = append(reads, b.ID, b.X, b.Y, b.Z)
+	}
+	return reads
+}
+
+// Pruned is b over an input that has only some of its columns left: column c is
+// now to[c], -1 where it is gone, which no column of Reads may be.
+func (b *Bound) Pruned(to []int) *Bound {
+	c := *b
+	if b.Def.Over == OverSites {
+		c.ID, c.X, c.Y, c.Z = to[b.ID], to[b.X], to[b.Y], to[b.Z]
+	}
+	for _, list := range [...]*[]int{&c.Clauses.Each, &c.Clauses.By, &c.Clauses.On, &c.Clauses.For} {
+		*list = slices.Clone(*list)
+		for i, at := range *list {
+			(*list)[i] = to[at]
+		}
+	}
+	c.Input = nil
+	for i, t := range to {
+		if t >= 0 {
+			c.Input = append(c.Input, b.Input[i])
+		}
+	}
+	c.Columns = slices.Clone(b.Columns)
+	for i := range c.Columns {
+		if col := &c.Columns[i]; col.Site >= 0 {
+			col.Site = to[col.Site]
+		}
+	}
+	return &c
+}
+
 // Request says what is asked for: which columns of Bound.Columns (Need), and
 // which rows of the input are shown (Wanted, nil: all). It never says which
 // sites partition.
 type Request struct {
 	Need   []bool
 	Wanted []uint64
+	Beside []*column.Table // the rows of Bound.Beside
 }
 
 // Env is what a relation may use of the running program.
