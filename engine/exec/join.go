@@ -99,7 +99,7 @@ func (s *buildSide) index(env *Env, at []int, left []expr.Expr) error {
 		reader.put(cols, mask, b.N, keyOf[lo:lo+b.N])
 	}
 	s.group(keyOf)
-	return env.keep(int64(len(keyOf))*8 + int64(len(s.keys.words))*8)
+	return env.keep(int64(len(keyOf))*8 + s.keys.bytes())
 }
 
 // keyColumn is a key as the type of the table's keys. Where an INTEGER meets a
@@ -191,7 +191,8 @@ type joinLocal struct {
 	holds     []uint64
 	current   int32
 	matched   bool
-	met, stay []uint64 // of a semi or anti join: left rows with a match, rows to hand on
+	wide      []column.Vector // of a unique right side: the left columns as they are, the right ones gathered
+	met, stay []uint64        // of a semi or anti join: left rows with a match, rows to hand on
 	masked    column.Batch
 }
 
@@ -226,6 +227,9 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 		return s.runOne(ctx, w, l, b, emit)
 	}
 	if s.right.keys != nil && s.rest == nil {
+		if done, err := s.runUnique(ctx, w, l, b, emit); done || err != nil {
+			return err
+		}
 		return s.runKeys(ctx, w, l, b, emit)
 	}
 	if err := s.walk(ctx, w, l, b, emit); err != nil {

@@ -41,7 +41,7 @@ func (r *keyReader) put(cols []column.Vector, on []uint64, n int, keys []int32) 
 		clear(keys[:n])
 	case t.oneText():
 		r.putText(&cols[0], on, n, keys)
-	case len(t.types) == 1 && t.width == 2:
+	case t.single != nil:
 		r.putSingle(&cols[0], on, n, keys)
 	default:
 		r.encode(cols, on, n, true)
@@ -62,6 +62,10 @@ func (r *keyReader) find(cols []column.Vector, on []uint64, n int, keys []int32)
 				keys[i] = t.codeKey[code]
 			}
 		})
+		return
+	}
+	if t.single != nil {
+		r.findSingle(&cols[0], on, n, keys)
 		return
 	}
 	r.encode(cols, on, n, false)
@@ -128,55 +132,6 @@ func (r *keyReader) remembered(c int, d *column.Dict) *codeMap {
 		}
 	}
 	return m
-}
-
-// putSingle is put for one column that is neither a text nor a point.
-func (r *keyReader) putSingle(v *column.Vector, on []uint64, n int, keys []int32) {
-	t := r.table
-	var key [2]uint64
-	one := func(i int, w uint64) {
-		key[0], key[1] = w, 0
-		if v.Valid != nil && !column.Bit(v.Valid, i) {
-			key[0], key[1] = 0, 1
-		}
-		keys[i] = t.put2(key[0], key[1])
-	}
-	switch {
-	case v.Type == column.Null:
-		forEachOn(on, n, func(i int) { keys[i] = t.put2(0, 1) })
-	case v.Type.Counted() && on == nil && v.Valid == nil:
-		for i, x := range v.I[:n] {
-			keys[i] = t.put2(uint64(x), 0)
-		}
-	case v.Type.Counted():
-		forEachOn(on, n, func(i int) { one(i, uint64(v.I[i])) })
-	case v.Type == column.Real:
-		forEachOn(on, n, func(i int) { one(i, realWord(v.F[i])) })
-	case v.Type == column.Boolean:
-		forEachOn(on, n, func(i int) { one(i, v.Bits[i>>6]>>(uint(i)&63)&1) })
-	}
-}
-
-// put2 is put for a key of two words, the common case.
-func (t *keyTable) put2(a, b uint64) int32 {
-	if 2*(t.n+1) > len(t.slots) {
-		t.resize(2 * len(t.slots))
-	}
-	mask := len(t.slots) - 1
-	h := (2 ^ a) * 0x9e3779b97f4a7c15
-	h ^= h >> 32
-	h = (h ^ b) * 0x9e3779b97f4a7c15
-	h ^= h >> 32
-	for i := int(h * 0x9e3779b97f4a7c15 >> t.shift); ; i = (i + 1) & mask {
-		k := t.slots[i]
-		if k == 0 {
-			t.slots[i] = int32(t.n) + 1
-			return t.add([]uint64{a, b})
-		}
-		if w := t.words[2*(k-1) : 2*k]; w[0] == a && w[1] == b {
-			return k - 1
-		}
-	}
 }
 
 // encode writes the keys of the active rows into r.words.

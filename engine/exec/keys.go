@@ -12,17 +12,18 @@ import (
 // keys: -0 is 0, a text is its code in the table's own dictionary whichever
 // dictionary it came with, NULLs are equal to each other.
 type keyTable struct {
-	types []column.Type
-	texts []*textCodes // of text columns, else nil
-	width int          // words a key
-	words []uint64     // n * width
-	n     int
-	slots []int32 // key + 1, 0: free; the length is a power of two
-	shift uint    // 64 - log2(len(slots))
+	types  []column.Type
+	texts  []*textCodes // of text columns, else nil
+	width  int          // words a key
+	words  []uint64     // n * width
+	n      int
+	slots  []int32    // key + 1, 0: free; the length is a power of two
+	shift  uint       // 64 - log2(len(slots))
+	single *wordTable // where the one column is a word: instead of slots
 	// codeKey gives the key of a text code where the one column is a text:
 	// such a table needs no slots.
 	codeKey []int32
-	nullKey int32 // the key of NULL in such a table, -1: none
+	nullKey int32 // the key of NULL in a table of one text or one word, -1: none
 }
 
 const firstSlots = 1 << 10
@@ -39,7 +40,10 @@ func newKeyTable(types []column.Type) *keyTable {
 		}
 	}
 	t.width += column.Words(len(types))
-	if !t.oneText() {
+	switch {
+	case singleWord(types):
+		t.single = &wordTable{}
+	case !t.oneText():
 		t.resize(firstSlots)
 	}
 	return t
@@ -77,6 +81,12 @@ func (t *keyTable) hash(key []uint64) uint64 {
 
 // put is the number of a key that is added if it is new.
 func (t *keyTable) put(key []uint64) int32 {
+	if t.single != nil {
+		if key[1] != 0 {
+			return t.putNull()
+		}
+		return t.putWord(key[0])
+	}
 	if 2*(t.n+1) > len(t.slots) {
 		t.resize(2 * len(t.slots))
 	}
@@ -111,6 +121,12 @@ func (t *keyTable) same(k int, key []uint64) bool {
 
 // find is the number of a key, -1 where it is not there.
 func (t *keyTable) find(key []uint64) int32 {
+	if t.single != nil {
+		if key[1] != 0 {
+			return -1
+		}
+		return t.findWord(key[0])
+	}
 	mask := len(t.slots) - 1
 	for i := int(t.hash(key) >> t.shift); ; i = (i + 1) & mask {
 		k := t.slots[i]
@@ -184,6 +200,15 @@ func wordsOf(ty column.Type) int {
 // marked reports whether column c of a key is NULL.
 func marked(key []uint64, width, columns, c int) bool {
 	return column.Bit(key[width-column.Words(columns):], c)
+}
+
+// bytes is about what the table takes.
+func (t *keyTable) bytes() int64 {
+	n := int64(8*len(t.words) + 4*len(t.slots) + 4*len(t.codeKey))
+	if t.single != nil {
+		n += int64(4*len(t.single.direct) + 16*len(t.single.slots))
+	}
+	return n
 }
 
 // columns are the keys as vectors, key k in row k.

@@ -29,7 +29,7 @@ func (r *runner) openMatched(ctx context.Context, n *plan.Matched) (*pipeline, e
 	if err := m.each(ctx, right, m.count); err != nil {
 		return nil, err
 	}
-	if err := env.keep(int64(8*len(m.keys.words) + 4*len(m.keys.slots))); err != nil {
+	if err := env.keep(m.keys.bytes()); err != nil {
 		return nil, err
 	}
 	known := m.keys.n

@@ -31,7 +31,7 @@ func newValueSet(x, values column.Type) *valueSet {
 	return s
 }
 
-func (s *valueSet) bytes() int64 { return int64(8*len(s.keys.words) + 4*len(s.keys.slots) + 128) }
+func (s *valueSet) bytes() int64 { return s.keys.bytes() + 128 }
 
 // add puts the active rows of a column into the set.
 func (s *valueSet) add(v *column.Vector, on []uint64, n int) {

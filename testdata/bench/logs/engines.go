@@ -85,7 +85,7 @@ func shown(v column.Value) string {
 	return strconv.FormatInt(v.I, 10)
 }
 
-func real(f float64) string { return strconv.FormatFloat(f, 'g', 9, 64) }
+func real(f float64) string { return strconv.FormatFloat(f, 'g', -1, 64) }
 
 // other is a database behind database/sql.
 type other struct {

@@ -5,11 +5,13 @@ import (
 	"errors"
 	"flag"
 	"fmt"
+	"math"
 	"os"
 	"regexp"
 	"runtime"
 	"runtime/pprof"
 	"slices"
+	"strconv"
 	"time"
 
 	"nearcell/catalog/column"
@@ -146,11 +148,21 @@ func difference(a, b answer) string {
 		return fmt.Sprintf("%d rows, not %d", len(b), len(a))
 	}
 	for i := range a {
-		if !slices.Equal(a[i], b[i]) {
+		if !slices.EqualFunc(a[i], b[i], alike) {
 			return fmt.Sprintf("row %d is %q, not %q", i+1, b[i], a[i])
 		}
 	}
 	return ""
+}
+
+// alike compares two values, numbers to nine digits.
+func alike(a, b string) bool {
+	if a == b {
+		return true
+	}
+	x, err1 := strconv.ParseFloat(a, 64)
+	y, err2 := strconv.ParseFloat(b, 64)
+	return err1 == nil && err2 == nil && math.Abs(x-y) <= 1e-9*max(math.Abs(x), math.Abs(y))
 }
 
 func median(d []time.Duration) float64 {
