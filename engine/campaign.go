@@ -15,6 +15,7 @@ import (
 	"nearcell/engine/expr"
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 	"nearcell/voronoi/solid"
 )
@@ -46,7 +47,7 @@ func (s *Session) campaignTable(st *statement, t *lang.CreateData, c *clauses, r
 		return nil, err
 	}
 	object.Options = catalog.CampaignOptions{
-		LengthUnit: unit, Within: c.within, Duplicates: c.duplicates, Tolerance: c.tolerance,
+		LengthUnit: unit, Within: c.within, Zones: c.zones, Duplicates: c.duplicates, Tolerance: c.tolerance,
 	}
 	table := campaignLayout(placed, id, idColumn, used)
 	for i := 1; i <= 3; i++ {
@@ -58,7 +59,8 @@ func (s *Session) campaignTable(st *statement, t *lang.CreateData, c *clauses, r
 		st.notes.Add(note.Note, note.Import, "%s", text)
 		object.Notes = append(object.Notes, text)
 	}
-	return table, s.noteOutside(st, c, table)
+	s.noteOutside(st, c, table)
+	return table, nil
 }
 
 // originPlace is where the statement says what the data come from.
@@ -320,34 +322,60 @@ func (c *clauses) length(placed *column.Table) (string, error) {
 }
 
 // noteOutside tells at once which sites the solid of the campaign leaves out.
-func (s *Session) noteOutside(st *statement, c *clauses, t *column.Table) error {
-	if c.within == "" {
-		return nil
+func (s *Session) noteOutside(st *statement, c *clauses, t *column.Table) {
+	if len(c.spaces) == 0 {
+		return
 	}
-	body, err := bind.Solid(s.bindEnv(st), c.withinAt.Solids[0])
-	if err != nil {
-		return err
+	what := "the solid"
+	if len(c.zones) > 0 {
+		what = "all zones"
+		c.noteVacant(t)
 	}
 	var names []string
 	for i := 0; i < t.N; i++ {
-		p := r3.Vec{X: t.Cols[1].F[i], Y: t.Cols[2].F[i], Z: t.Cols[3].F[i]}
-		if body.Side(p, c.tolerance) == solid.Outside {
-			names = append(names, fmt.Sprintf("%s (%s %s outside)", identifierText(&t.Cols[0], i),
-				s.number(body.Distance(p)), t.Schema[1].Unit))
+		if away, out := c.outside(t, i); out {
+			names = append(names, fmt.Sprintf("%s (%s %s outside)", identifierText(&t.Cols[0], i), s.number(away), t.Schema[1].Unit))
 		}
 	}
 	if len(names) == 0 {
-		return nil
+		return
 	}
 	if len(names) == t.N {
-		st.notes.Add(note.Warning, note.Sites, "all %d sites lie outside the solid: are its coordinates in the same unit and frame?", t.N)
-		return nil
+		st.notes.Add(note.Warning, note.Sites, "all %d sites lie outside %s: are its coordinates in the same unit and frame?", t.N, what)
+		return
 	}
 	verb := "lie"
 	if len(names) == 1 {
 		verb = "lies"
 	}
-	st.notes.Add(note.Warning, note.Sites, "%s of %d %s outside the solid and will be left out of its partition: %s",
-		plural(len(names), "site"), t.N, verb, listed(names, 5))
-	return nil
+	st.notes.Add(note.Warning, note.Sites, "%s of %d %s outside %s and will be left out of its partition: %s",
+		plural(len(names), "site"), t.N, verb, what, listed(names, 5))
+}
+
+// outside tells whether a site lies in none of the campaign's solids, and how far from
+// the nearest.
+func (c *clauses) outside(t *column.Table, row int) (away float64, out bool) {
+	p := r3.Vec{X: t.Cols[1].F[row], Y: t.Cols[2].F[row], Z: t.Cols[3].F[row]}
+	away = math.Inf(1)
+	for _, space := range c.spaces {
+		if space.Solid.Side(p, c.tolerance) != solid.Outside {
+			return 0, false
+		}
+		away = min(away, space.Solid.Distance(p))
+	}
+	return away, true
+}
+
+// noteVacant names zones that no site lies in.
+func (c *clauses) noteVacant(t *column.Table) {
+	for _, zone := range c.spaces {
+		one := clauses{spaces: []relation.Region{zone}, tolerance: c.tolerance}
+		vacant := true
+		for i := 0; i < t.N && vacant; i++ {
+			_, vacant = one.outside(t, i)
+		}
+		if vacant {
+			c.st.notes.Add(note.Warning, note.Sites, "no site lies in the zone %s: its space belongs to nobody", zone.Name)
+		}
+	}
 }

@@ -9,7 +9,9 @@ import (
 	"nearcell/catalog"
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
+	"nearcell/engine/bind"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
@@ -22,7 +24,9 @@ type clauses struct {
 	id         *lang.IDReading
 	position   *lang.PositionReading
 	units      *lang.UnitsReading
-	within     string // canonical text of the solid
+	within     string   // canonical text of the solid
+	zones      []string // canonical texts of the solids of WITHIN (a, b)
+	spaces     []relation.Region
 	withinAt   *lang.WithinClause
 	lengthUnit string
 	unitAt     lang.Node
@@ -79,7 +83,7 @@ func (c *clauses) read(r lang.Reading) (err error) {
 		}
 	case *lang.WithinClause:
 		c.withinAt = r
-		c.within, err = c.withinText(r)
+		err = c.readWithin(r)
 	case *lang.DuplicatesReading:
 		c.duplicates = string(r.Policy)
 	case *lang.ToleranceReading:
@@ -171,12 +175,25 @@ func clauseWord(n lang.Node) string {
 	return word
 }
 
-func (c *clauses) withinText(r *lang.WithinClause) (string, error) {
-	if r.Zones {
-		return "", problem.NotThereYet(c.st.at(r), "WITHIN (…) with zones")
+// readWithin makes the solid of the campaign, or its zones, to see that they can be.
+func (c *clauses) readWithin(r *lang.WithinClause) error {
+	var texts []string
+	for _, tree := range r.Solids {
+		body, text, err := c.s.solid(c.st, tree)
+		if err != nil {
+			return err
+		}
+		texts = append(texts, text)
+		c.spaces = append(c.spaces, relation.Region{Name: text, Solid: body})
 	}
-	_, text, err := c.s.solid(c.st, r.Solids[0])
-	return text, err
+	if !r.Zones {
+		c.within = texts[0]
+		return nil
+	}
+	c.zones = texts
+	var err error
+	c.spaces, err = bind.Zones(c.s.bindEnv(c.st), r.Solids)
+	return err
 }
 
 func (c *clauses) toleranceOf(r *lang.ToleranceReading) (float64, error) {

@@ -96,8 +96,8 @@ func (s *Session) describeOrigin(st *statement, o *catalog.Object) {
 	}
 	if o.Kind == catalog.Campaign {
 		within := "no solid"
-		if o.Options.Within != "" {
-			within = "WITHIN " + o.Options.Within
+		if w := withinOf(o); w != "" {
+			within = "WITHIN " + w
 		}
 		st.notes.Add(note.Note, note.Sites, "%s, DUPLICATES %s, TOLERANCE %s, coordinates in %s",
 			within, duplicatesOf(o), s.number(o.Options.Tolerance), lengthUnitOf(o))

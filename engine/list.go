@@ -112,11 +112,19 @@ func (s *Session) listCampaigns() (*column.Table, error) {
 		column.Field{Name: "tolerance", Type: column.Real}, text("coordinates"), text("from"))
 	for i := range objects {
 		o := &objects[i]
-		r.add(column.String(o.Name), column.Int(int64(o.Rows)), maybe(o.Options.Within),
+		r.add(column.String(o.Name), column.Int(int64(o.Rows)), maybe(withinOf(o)),
 			column.String(duplicatesOf(o)), column.Float(o.Options.Tolerance),
 			column.String(lengthUnitOf(o)), maybe(sourceText(o)))
 	}
 	return r.table(), nil
+}
+
+// withinOf is the solid of a campaign, or its zones, as WITHIN writes them.
+func withinOf(o *catalog.Object) string {
+	if len(o.Options.Zones) > 0 {
+		return "(" + strings.Join(o.Options.Zones, ", ") + ")"
+	}
+	return o.Options.Within
 }
 
 func duplicatesOf(o *catalog.Object) string {

@@ -211,11 +211,11 @@ func (b *binder) inherit(rel *relation.Bound, o *catalog.Object) error {
 	}
 	rel.Clauses.Tolerance = opt.Tolerance
 	rel.Clauses.Duplicates = opt.Duplicates
-	if len(opt.Zones) > 0 {
-		return b.laterOption(rel, "WITHIN (a, b), which makes zones, of the campaign '"+o.Name+"'")
-	}
 	if opt.Stretched != [3]float64{} && opt.Stretched != [3]float64{1, 1, 1} {
 		return b.laterOption(rel, "STRETCHED of the campaign '"+o.Name+"'")
+	}
+	if len(opt.Zones) > 0 {
+		return b.inheritZones(rel, o)
 	}
 	if opt.Within == "" {
 		return nil
@@ -248,7 +248,7 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 			err = b.within(rel, c)
 		case *lang.UnclippedClause:
 			unclipped = c
-			rel.Clauses.Solid, rel.Clauses.SolidName = nil, ""
+			rel.Clauses.Solid, rel.Clauses.SolidName, rel.Clauses.Zones = nil, "", nil
 		case *lang.ForEachClause:
 			err = b.forEach(rel, c)
 		case *lang.OmittingClause:
@@ -263,6 +263,9 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 		if err != nil {
 			return err
 		}
+	}
+	if err := b.zonesTaken(rel, r); err != nil {
+		return err
 	}
 	if within != nil && unclipped != nil {
 		return problem.New("clauses", b.at(unclipped), "WITHIN and UNCLIPPED say the opposite of each other")
@@ -284,16 +287,6 @@ func (b *binder) takes(rel *relation.Bound, c lang.Clause) error {
 			WithHint("it takes %s", strings.Join(rel.Def.Clauses, ", "))
 	}
 	return nil
-}
-
-func (b *binder) within(rel *relation.Bound, c *lang.WithinClause) error {
-	if c.Zones {
-		return b.notYet(c, "WITHIN (a, b), which makes zones,")
-	}
-	var err error
-	rel.Clauses.SolidName = b.text(c.Solids[0])
-	rel.Clauses.Solid, err = b.solid(c.Solids[0])
-	return err
 }
 
 func (b *binder) forEach(rel *relation.Bound, c *lang.ForEachClause) error {

@@ -13,7 +13,7 @@ import (
 // or from several.
 func Envelope(n *Aggregate, e expr.Expr) string {
 	for _, o := range reads(e, Lineage(n.Input)) {
-		if o.Relation == nil || o.Relation.Bound.Clauses.Solid != nil {
+		if o.Relation == nil || o.Relation.Bound.Closed() {
 			continue
 		}
 		if names := campaigns(o.Relation.Input, nil); len(names) == 1 {

@@ -6,6 +6,7 @@ import (
 
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
@@ -62,12 +63,16 @@ func (o Origin) extensive() bool {
 	return o.Relation != nil && o.Relation.Bound.Columns[o.Column].Extensive
 }
 
-// isEach reports whether the column is one of FOR EACH.
+// isEach reports whether the column is one of FOR EACH, or another that is the same in
+// all rows of a partition, such as zone.
 func (o Origin) isEach() bool {
 	if o.Relation == nil {
 		return false
 	}
 	b := o.Relation.Bound
+	if b.Columns[o.Column].Role != relation.NoRole {
+		return true
+	}
 	for _, c := range b.Clauses.Each {
 		if b.Columns[o.Column].Site == c {
 			return true
@@ -286,7 +291,11 @@ func identity(r *Relation, input []Origin) []int {
 	b := r.Bound
 	var want []int
 	for i, c := range b.Columns {
-		if b.Def.Own {
+		if c.Role != relation.NoRole {
+			if c.Role == relation.PartRole { // a cell has a row in each part
+				want = append(want, i)
+			}
+		} else if b.Def.Own {
 			if c.Site == b.ID {
 				want = append(want, i)
 			}

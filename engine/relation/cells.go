@@ -17,6 +17,7 @@ var cells = &Definition{
 	Later:   []string{"MEASURED IN", "STRETCHED", "UNCERTAINTY"},
 	Own:     true,
 	NotYet:  []string{"hidden"},
+	Zoned:   true,
 	Open:    openCells,
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
@@ -80,7 +81,7 @@ func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
 		return nil, err
 	}
 	c := &cellRows{sites: s, own: len(b.Input), want: b.measures(r.Need)}
-	if b.Clauses.Solid == nil && c.want&(voronoi.Volume|voronoi.Area|voronoi.Centroid|voronoi.Farthest) != 0 {
+	if !b.Closed() && c.want&(voronoi.Volume|voronoi.Area|voronoi.Centroid|voronoi.Farthest) != 0 {
 		c.want |= voronoi.Bounded // for the note
 	}
 	return c, nil
@@ -106,6 +107,7 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 		return err
 	}
 	for i, p := range c.parts {
+		out.now(p.Zone, noPart)
 		measured, ks, err := c.measured(ctx, p)
 		if err != nil {
 			return err
@@ -156,7 +158,7 @@ func (c *cellRows) count(p *Part, m *voronoi.Cells, ks []int32) {
 	shape := needed(c.r.Need, c.own+cellEdges) || needed(c.r.Need, c.own+cellVertices)
 	for _, k := range ks {
 		site := p.Site[k]
-		if c.b.Clauses.Solid == nil && c.want&voronoi.Bounded != 0 && c.want != voronoi.Bounded && !m.Bounded[site] {
+		if !c.b.Closed() && c.want&voronoi.Bounded != 0 && c.want != voronoi.Bounded && !m.Bounded[site] {
 			c.said.unbounded++
 		}
 		if shape && !m.Shaped[site] {

@@ -16,6 +16,7 @@ var contacts = &Definition{
 	Meaning: "the faces between the cells of two sites",
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"MEASURED IN", "STRETCHED"},
+	Zoned:   true,
 	Open:    openContacts,
 	layout:  layoutContacts,
 }
@@ -88,6 +89,7 @@ func (c *contactRows) Run(ctx context.Context, emit func(*column.Batch) error) (
 	}()
 	out := &pairs{batches: newBatches(c.b, c.r.Need, c.each+contactDistance, emit)}
 	for i, p := range c.parts {
+		out.now(p.Zone, noPart)
 		if err := c.part(ctx, p, out); err != nil {
 			return err
 		}

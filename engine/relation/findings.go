@@ -13,7 +13,10 @@ import (
 // thing is said once and not for every instant.
 type findings struct {
 	outside map[int32]float64 // rows of the input left out, and how far outside
-	onWall  int               // the largest number of sites on walls in one part
+	onWall  map[int32]int     // by zone, the largest number of sites on walls in one part
+	shared  map[int32][]int32 // rows on a wall of several zones: these zones, the row's own first
+	vacant  []int             // by zone, partitions without a site in it
+	groups  int               // partitions of FOR EACH
 
 	rows      int // shown
 	unbounded int // of them, without an end
@@ -24,6 +27,10 @@ type findings struct {
 	openFaces int // of them, without an end
 
 	partial bool // not all of them were asked for
+}
+
+func newFindings() *findings {
+	return &findings{outside: map[int32]float64{}, onWall: map[int32]int{}, shared: map[int32][]int32{}}
 }
 
 // computed counts cells or contacts; those that nobody asked for are not among
@@ -41,10 +48,15 @@ func (s *sites) tell() {
 	if len(f.outside) > 0 {
 		s.tellOutside()
 	}
-	if f.onWall > 0 {
+	s.tellZones()
+	onWall := 0
+	for _, n := range f.onWall {
+		onWall += n
+	}
+	if onWall > 0 {
 		s.env.Notes.Add(note.Note, note.Sites, "%s of %s %s on the surface of %s or within the tolerance %s of it and %s part",
-			count(f.onWall, "site"), b.Name, verb(f.onWall, "stands", "stand"), b.Clauses.SolidName, s.length(b.Clauses.Tolerance),
-			verb(f.onWall, "takes", "take"))
+			count(onWall, "site"), b.Name, verb(onWall, "stands", "stand"), b.Clauses.SolidName, s.length(b.Clauses.Tolerance),
+			verb(onWall, "takes", "take"))
 	}
 	if f.unbounded > 0 {
 		s.env.Notes.Add(note.Note, note.Cells, "%d of %s of %s %s unbounded (no solid): volume, area and farthest are Infinity, "+

@@ -231,7 +231,7 @@ func (s *sites) alike() []*alike {
 		if !s.wanted(p) {
 			continue
 		}
-		key := diagram.KeyOf(p.Sites, s.options())
+		key := diagram.KeyOf(p.Sites, s.options(p))
 		g := at[key]
 		if g == nil {
 			g = &alike{sites: make([]uint64, column.Words(len(p.Sites)))}
@@ -252,7 +252,7 @@ func (s *sites) alike() []*alike {
 // look adds what a diagram says of its parts. It is built, its cells are not.
 func (s *sites) look(ctx context.Context, f *Forecast, g *alike, want voronoi.Measures, faces bool) error {
 	first := g.parts[0]
-	h, err := s.env.Diagrams.Get(ctx, first.Sites, s.options())
+	h, err := s.env.Diagrams.Get(ctx, first.Sites, s.options(first))
 	if err != nil {
 		return s.refused(err, first)
 	}

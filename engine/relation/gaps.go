@@ -20,6 +20,7 @@ var gaps = &Definition{
 	Meaning: "where nobody measured: each farther from every site than all around it",
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"STRETCHED"},
+	Zoned:   true,
 	Open:    openGaps,
 	layout:  layoutGaps,
 }
@@ -95,6 +96,7 @@ func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) (err 
 	}()
 	out := &gapBatch{batches: newBatches(g.b, g.r.Need, g.each, emit)}
 	for i, p := range g.parts {
+		out.now(p.Zone, noPart)
 		if err := g.part(ctx, p, out); err != nil {
 			return err
 		}
@@ -106,7 +108,7 @@ func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) (err 
 // tell writes the notes.
 func (g *gapRows) tell() {
 	g.sites.tell()
-	if g.b.Clauses.Solid == nil && len(g.parts) > 0 {
+	if !g.b.Closed() && len(g.parts) > 0 {
 		g.env.Notes.Add(note.Note, note.Cells, "without a solid, only places among the sites of %s can be told: beyond the outermost "+
 			"the distance grows without end; WITHIN a solid gives those at its walls too", g.b.Name)
 	}

@@ -15,6 +15,7 @@ var hull = &Definition{
 	Meaning: "the surface of the smallest convex body that holds the sites",
 	Clauses: []string{"UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"STRETCHED"},
+	Zoned:   true,
 	Open:    openSimplices(&hullKind),
 	layout:  simplexLayout(&hullKind),
 }

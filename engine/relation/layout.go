@@ -11,6 +11,7 @@ import (
 // the name of a computed one is read as own_<name>.
 func (b *Bound) ownColumns(computed []Column) []Column {
 	taken := map[string]bool{}
+	computed = slices.Concat(computed, b.roles())
 	for _, c := range computed {
 		taken[lang.Fold(c.Name)] = true
 	}

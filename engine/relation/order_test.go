@@ -22,7 +22,7 @@ func BenchmarkArrange(b *testing.B) {
 		bound := s.bound()
 		b.Run(fmt.Sprintf("text=%v", text), func(b *testing.B) {
 			for range b.N {
-				if _, err := arrange(bound, s.env, in, newOrder(bound, in)); err != nil {
+				if _, err := arrange(bound, s.env, in, newOrder(bound, in), newFindings()); err != nil {
 					b.Fatal(err)
 				}
 			}

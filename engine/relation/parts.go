@@ -7,19 +7,22 @@ import (
 	"gonum.org/v1/gonum/spatial/r3"
 
 	"nearcell/catalog/column"
+	"nearcell/voronoi/solid"
 )
 
 // Part is the rows of the input that share one diagram: those with one value of
-// FOR EACH, or all of them.
+// FOR EACH, or all of them; and of these, those in one zone.
 //
 // Rows stand in the order of their identifiers, whatever their order in the
 // input. Several rows may refer to one site (equal coordinates); each then has
 // its share of what the site's cell measures.
 type Part struct {
-	Rows  []int32   // rows of the input
-	Site  []int32   // of each row, its site in Sites
-	Share []float64 // of each row, 1 / the number of rows of its site; nil: all 1
-	Sites []r3.Vec  // distinct places, in the order of their first row
+	Rows  []int32     // rows of the input
+	Site  []int32     // of each row, its site in Sites
+	Share []float64   // of each row, 1 / the number of rows of its site; nil: all 1
+	Sites []r3.Vec    // distinct places, in the order of their first row
+	Zone  int32       // of Clauses.Zones, -1 where there are none
+	Solid solid.Solid // that closes the diagram, nil: none
 }
 
 // share is the part of its site's measures that row k has.
@@ -32,13 +35,13 @@ func (p *Part) share(k int) float64 {
 
 // arrange sorts the input into parts. It refuses what has no partition:
 // missing identifiers and coordinates, identifiers that repeat in a part.
-func arrange(b *Bound, env *Env, input *column.Table, order *order) ([]*Part, error) {
+func arrange(b *Bound, env *Env, input *column.Table, order *order, said *findings) ([]*Part, error) {
 	rows, err := admitted(b, env, input)
 	if err != nil {
 		return nil, err
 	}
 	order.sort(rows)
-	var parts []*Part
+	var together [][]int32 // rows with one value of FOR EACH
 	for lo := 0; lo < len(rows); {
 		hi := lo + 1
 		for hi < len(rows) && order.samePart(rows[lo], rows[hi]) {
@@ -47,13 +50,18 @@ func arrange(b *Bound, env *Env, input *column.Table, order *order) ([]*Part, er
 		if err := distinct(b, input, order, rows[lo:hi]); err != nil {
 			return nil, err
 		}
-		part := &Part{Rows: slices.Clip(rows[lo:hi])}
-		place(b, input, part)
-		parts = append(parts, part)
+		together = append(together, slices.Clip(rows[lo:hi]))
 		lo = hi
 	}
-	if err := scattered(b, env, input, order, parts); err != nil {
+	if err := scattered(b, env, input, order, together); err != nil {
 		return nil, err
+	}
+	parts, err := zoned(b, input, together, said)
+	if err != nil {
+		return nil, err
+	}
+	for _, p := range parts {
+		place(b, input, p)
 	}
 	return parts, duplicates(b, env, input, order, parts)
 }

@@ -108,15 +108,15 @@ func someOf(names []string) string {
 // scattered refuses FOR EACH over stamps that are not common to the sites: 54
 // loggers that each have their own seconds make thousands of partitions of one
 // or two sites, each of which is given the whole room.
-func scattered(b *Bound, env *Env, input *column.Table, o *order, parts []*Part) error {
+func scattered(b *Bound, env *Env, input *column.Table, o *order, parts [][]int32) error {
 	if len(b.Clauses.Each) == 0 || len(parts) < 2 {
 		return nil
 	}
 	var rows []int32
 	sizes := make([]int, len(parts))
 	for i, p := range parts {
-		rows = append(rows, p.Rows...)
-		sizes[i] = len(p.Rows)
+		rows = append(rows, p...)
+		sizes[i] = len(p)
 	}
 	slices.Sort(sizes)
 	median := sizes[(len(sizes)-1)/2]

@@ -27,6 +27,23 @@ type Column struct {
 	Power int
 	// Extensive columns add up over the rows of a partition to the whole.
 	Extensive bool
+	// Role is set for the columns that Layout puts behind all others.
+	Role Role
+}
+
+// Role tells the columns that say where a row counts from those of the relation.
+type Role uint8
+
+const (
+	NoRole   Role = iota
+	ZoneRole      // zone: the zone that the row's sites lie in
+	PartRole      // part: the part of the solid that the row's measures count in
+)
+
+// Region is a solid under the name that rows carry for it.
+type Region struct {
+	Name  string
+	Solid solid.Solid
 }
 
 // Over says what a relation is made of.
@@ -49,6 +66,7 @@ type Definition struct {
 	Clauses  []string // "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", …
 	Later    []string // clauses of the language that it will take and does not take yet
 	Own      bool     // its rows carry the sites' own columns
+	Zoned    bool     // it takes zones: every diagram it asks for is that of a Part (see zones.go)
 	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
 	NotYet   []string // columns of the language that are not there yet
 	Open     func(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
@@ -62,8 +80,9 @@ type Definition struct {
 
 // Clauses are the bound clauses of one relation in a query.
 type Clauses struct {
-	Solid      solid.Solid // nil: unclipped
+	Solid      solid.Solid // nil: unclipped, or there are zones
 	SolidName  string      // as the user wrote it, for notes
+	Zones      []Region    // each is divided among its own sites alone; none: one space for all
 	Each       []int       // columns of the input named by FOR EACH
 	Omitting   []string
 	Because    string
@@ -104,8 +123,12 @@ func (b *Bound) Schema() column.Schema {
 // Title names the relation for messages: "CELLS OF hall".
 func (b *Bound) Title() string { return b.Def.Noun + " OF " + b.Name }
 
-// Layout fills b.Columns from b.Def, b.Input, b.ID, b.X, b.Y, b.Z and b.Clauses.
-func (b *Bound) Layout() { b.Columns = b.Def.layout(b) }
+// Closed tells whether solids end the cells: one, or zones.
+func (b *Bound) Closed() bool { return b.Clauses.Solid != nil || len(b.Clauses.Zones) > 0 }
+
+// Layout fills b.Columns from b.Def, b.Input, b.ID, b.X, b.Y, b.Z and b.Clauses:
+// the relation's own, and behind them those that say where a row counts.
+func (b *Bound) Layout() { b.Columns = append(b.Def.layout(b), b.roles()...) }
 
 // Beside is a further input of a relation, which a clause such as EXPECTING names.
 type Beside struct {

@@ -25,10 +25,10 @@ type sites struct {
 }
 
 func newSites(b *Bound, env *Env, input *column.Table, r Request) (*sites, error) {
-	s := &sites{b: b, env: env, input: input, r: r, said: &findings{outside: map[int32]float64{}}}
+	s := &sites{b: b, env: env, input: input, r: r, said: newFindings()}
 	s.order = newOrder(b, input)
 	var err error
-	s.parts, err = arrange(b, env, input, s.order)
+	s.parts, err = arrange(b, env, input, s.order, s.said)
 	if err != nil {
 		return nil, err
 	}
@@ -49,20 +49,24 @@ func newSites(b *Bound, env *Env, input *column.Table, r Request) (*sites, error
 // nobody is what an input without any site is: nothing without a solid; with
 // one, a space that would belong to nobody.
 func (s *sites) nobody() error {
-	if s.b.Clauses.Solid != nil {
+	if len(s.said.outside) > 0 {
+		return s.allOutsideZones()
+	}
+	if s.b.Closed() {
 		return problem.New("no-sites", s.b.Place, "there is no site in %s, so %s belongs to nobody", s.b.Name, s.b.Clauses.SolidName)
 	}
 	s.env.Notes.Add(note.Note, note.Sites, "there is no site in %s, so %s has no rows", s.b.Name, s.b.Title())
 	return nil
 }
 
-func (s *sites) options() voronoi.Options {
-	return voronoi.Options{Solid: s.b.Clauses.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads}
+// options are those of the diagram of a part: every diagram is made with them.
+func (s *sites) options(p *Part) voronoi.Options {
+	return voronoi.Options{Solid: p.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads}
 }
 
 // open gets the diagram of a part and takes note of what its facts say.
 func (s *sites) open(ctx context.Context, p *Part) (*diagram.Handle, error) {
-	h, err := s.env.Diagrams.Get(ctx, p.Sites, s.options())
+	h, err := s.env.Diagrams.Get(ctx, p.Sites, s.options(p))
 	if err != nil {
 		return nil, s.refused(err, p)
 	}
@@ -74,7 +78,7 @@ func (s *sites) open(ctx context.Context, p *Part) (*diagram.Handle, error) {
 		s.leftOut(p, f)
 	}
 	if len(f.OnWall) > 0 && s.b.Clauses.Tolerance > 0 {
-		s.said.onWall = max(s.said.onWall, len(f.OnWall))
+		s.said.onWall[p.Zone] = max(s.said.onWall[p.Zone], len(f.OnWall))
 	}
 	return h, nil
 }
@@ -213,12 +217,12 @@ func (s *sites) cost(want voronoi.Measures) (voronoi.Cost, error) {
 	seen := map[diagram.Key]bool{}
 	ctx := context.Background()
 	for _, p := range s.parts {
-		key := diagram.KeyOf(p.Sites, s.options())
+		key := diagram.KeyOf(p.Sites, s.options(p))
 		if seen[key] || !s.wanted(p) {
 			continue
 		}
 		seen[key] = true
-		h, err := s.env.Diagrams.Get(ctx, p.Sites, s.options())
+		h, err := s.env.Diagrams.Get(ctx, p.Sites, s.options(p))
 		if err != nil {
 			return sum, s.refused(err, p)
 		}

@@ -86,7 +86,7 @@ func (r *simplexRows) Cost() (voronoi.Cost, error) {
 		if !r.wanted(p) {
 			continue
 		}
-		h, err := r.env.Diagrams.Get(context.Background(), p.Sites, r.options())
+		h, err := r.env.Diagrams.Get(context.Background(), p.Sites, r.options(p))
 		if err != nil {
 			return sum, r.refused(err, p)
 		}
@@ -111,6 +111,7 @@ func (r *simplexRows) Run(ctx context.Context, emit func(*column.Batch) error) e
 		out.columns[r.each+r.kind.ids+i] = column.Vector{}
 	}
 	for i, p := range r.parts {
+		out.now(p.Zone, noPart)
 		if err := r.part(ctx, p, out); err != nil {
 			return err
 		}

@@ -15,6 +15,7 @@ var tetrahedra = &Definition{
 	Meaning: "the tetrahedra between sites whose spheres hold no other site",
 	Clauses: []string{"UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"STRETCHED"},
+	Zoned:   true,
 	Open:    openSimplices(&tetrahedronKind),
 	layout:  simplexLayout(&tetrahedronKind),
 }

@@ -15,6 +15,7 @@ var triangles = &Definition{
 	Meaning: "the faces of the Delaunay tetrahedra; each crosses one edge of the cells",
 	Clauses: []string{"UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"STRETCHED"},
+	Zoned:   true,
 	Open:    openSimplices(&triangleKind),
 	layout:  simplexLayout(&triangleKind),
 }

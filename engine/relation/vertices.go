@@ -17,6 +17,7 @@ var vertices = &Definition{
 	Meaning: "the places as far from four sites as from no other: centres of the spheres of TETRAHEDRA, with the same a, b, c, d",
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
 	Later:   []string{"STRETCHED"},
+	Zoned:   true,
 	Open:    openSimplices(&vertexKind),
 	layout:  simplexLayout(&vertexKind),
 }
@@ -57,9 +58,9 @@ func fillVertex(r *simplexRows, p *Part, t *delaunay.T, s *simplex, out []column
 	number(&out[vertexZ], row, m.Centre.Z)
 	number(&out[vertexRadius], row, m.Radius)
 	if v := &out[vertexInSolid]; v.Type != column.Null {
-		if r.b.Clauses.Solid == nil {
+		if p.Solid == nil {
 			v.SetNull(row)
-		} else if r.b.Clauses.Solid.Side(m.Centre, 0) != solid.Outside {
+		} else if p.Solid.Side(m.Centre, 0) != solid.Outside {
 			column.SetBit(v.Bits, row)
 		}
 	}
