@@ -3,6 +3,7 @@ package engine
 import (
 	"errors"
 	"fmt"
+	"slices"
 	"strings"
 
 	"nearcell/catalog"
@@ -125,7 +126,7 @@ func schemaTable(schema column.Schema, data *column.Table) *column.Table {
 // units for coordinates in metres.
 func relationColumns(d *relation.Definition) *column.Table {
 	r := newRows(text("column"), text("type"), text("unit"), text("meaning"))
-	for _, c := range d.Computed {
+	for _, c := range slices.Concat(d.Computed, d.Roles()) {
 		unit := c.Unit
 		if c.Power != 0 {
 			unit = column.Symbol("m").Pow(c.Power)

@@ -138,7 +138,7 @@ func writeRelation(p *page, d *relation.Definition) {
 	p.verbatim(syntax)
 	p.say(sentence(d.Meaning) + " One row for each " + d.RowIs + ".")
 	var rows [][]string
-	for _, c := range d.Computed {
+	for _, c := range slices.Concat(d.Computed, d.Roles()) {
 		rows = append(rows, []string{c.Name, c.Type.String(), relationUnit(c).String(), c.Meaning})
 	}
 	p.table(rows)
@@ -182,7 +182,7 @@ func clauseTopics() []topic {
 
 // clauseForms are forms of clauses that may be missing while the clause is there.
 var clauseForms = map[string][]form{
-	"WITHIN": {{"WITHIN (solid, solid)", "SELECT id FROM CELLS OF hall WITHIN (air, air);"}},
+	"WITHIN": {{"WITHIN (solid, solid)", "SELECT id FROM CELLS OF hall WITHIN (air, BOX (40,0,0) TO (45,5,3));"}},
 }
 
 // clauseWords are the capital words of a clause's syntax beside its name: NORMAL

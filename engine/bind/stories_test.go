@@ -73,7 +73,7 @@ func depot(t testing.TB) *catalog.Catalog {
 	put(catalog.Object{Kind: catalog.Campaign, Key: "walk", Table: tableOf(schema("id INTEGER, x REAL m, y REAL m, z REAL m, dust REAL, pass INTEGER"),
 		[]float64{1, 1, 2, 1, 5, 1}, []float64{2, 3, 4, 1, 6, 1})})
 	put(catalog.Object{Kind: catalog.Campaign, Key: "stretched", Options: catalog.CampaignOptions{Stretched: [3]float64{1, 1, 5}}, Table: tableOf(hall)})
-	put(catalog.Object{Kind: catalog.Campaign, Key: "zoned", Options: catalog.CampaignOptions{Zones: []string{"air", "air"}}, Table: tableOf(hall)})
+	put(catalog.Object{Kind: catalog.Campaign, Key: "zoned", Options: catalog.CampaignOptions{Zones: []string{"air", "BOX (40,0,0) TO (45,5,3)"}}, Table: tableOf(hall)})
 	put(catalog.Object{Kind: catalog.Table, Key: "log", Table: tableOf(schema("logger TEXT, t TIMESTAMP, temp REAL °C, co2 REAL ppm, n INTEGER, ok BOOLEAN"))})
 	put(catalog.Object{Kind: catalog.Table, Key: "points", Table: tableOf(schema("id TEXT, x TEXT, y REAL m, z REAL m"))})
 	put(catalog.Object{Kind: catalog.Table, Key: "mixed", Table: tableOf(schema("id TEXT, x REAL mm, y REAL m, z REAL m"))})

@@ -30,6 +30,24 @@
 // cell are found by equal corners. Sites in one place are one corner, named by the
 // first. A condition on a says which rows are made.
 //
+// # Zones
+//
+// WITHIN (a, b) makes zones (zones.go): the rows of one value of FOR EACH fall into one
+// part for each zone, each with a solid of its own, so that nothing reaches through a
+// wall. A site belongs to the zone that it lies strictly in; else to the first, in the
+// order of WITHIN, on whose surface it lies exactly; else to the nearest within the
+// tolerance. Sites that more than one zone could have are told, zones without a site
+// too. A relation takes zones by setting Definition.Zoned and by keeping to four rules:
+//
+//   - a diagram comes from sites.open, or is made with sites.options(part);
+//   - the solid is Part.Solid, never Clauses.Solid, and Bound.Closed tells whether there
+//     is any;
+//   - batches.now(part.Zone, noPart) stands before the rows of a part are put;
+//   - computed columns are found by their place in Def.Computed, behind the own ones:
+//     Layout puts the column zone behind all of them, and batches fill it.
+//
+// A relation without Zoned is refused in zones by name.
+//
 // A new relation is one file and one registry line.
 //
 // # Laws
@@ -71,6 +89,6 @@
 //
 // # Limitations
 //
-// Zones (WITHIN (a, b)), MEASURED IN, STRETCHED and UNCERTAINTY are not there
+// MEASURED IN, STRETCHED and UNCERTAINTY are not there
 // yet. The whole input is held in memory.
 package relation

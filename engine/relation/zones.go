@@ -23,7 +23,7 @@ import (
 // roles are the columns behind all others, present where their clause is.
 func (b *Bound) roles() []Column {
 	var list []Column
-	for _, c := range RoleColumns() {
+	for _, c := range roleColumns() {
 		if len(b.named(c.Role)) > 0 {
 			list = append(list, c)
 		}
@@ -31,11 +31,21 @@ func (b *Bound) roles() []Column {
 	return list
 }
 
-// RoleColumns are the columns that say where a row counts, which relations have with
-// WITHIN (a, b) and MEASURED IN.
-func RoleColumns() []Column {
+// Roles are the columns that say where a row counts, which the rows of a relation have
+// with WITHIN (a, b) or MEASURED IN alone.
+func (d *Definition) Roles() []Column {
+	var list []Column
+	for _, c := range roleColumns() {
+		if c.Role == ZoneRole && d.Zoned {
+			list = append(list, c)
+		}
+	}
+	return list
+}
+
+func roleColumns() []Column {
 	return []Column{
-		{Field: column.Field{Name: "zone", Type: column.Text, Meaning: "the solid of WITHIN (a, b) that the site lies in"}, Site: -1, Role: ZoneRole},
+		{Field: column.Field{Name: "zone", Type: column.Text, Meaning: "with WITHIN (a, b): the one that the site lies in"}, Site: -1, Role: ZoneRole},
 	}
 }
 

@@ -283,7 +283,7 @@ input:1: AVG needs a number here, not TEXT
 plan
 SELECT MAX(temp) WEIGHTED BY volume FROM CELLS OF hall
 ----
-input:1: MAX cannot be weighted (WEIGHTED BY may follow AVG, CORR, MEDIAN, MKT, QUANTILE, SHARE, STDDEV_POP, STDDEV_SAMP, SUM, VAR_POP, VAR_SAMP)
+input:1: MAX cannot be weighted (WEIGHTED BY may follow AVG, CORR, DIRECTION_AVG, LEVEL_AVG, MEDIAN, MKT, QUANTILE, SHARE, STDDEV_POP, STDDEV_SAMP, SUM, VAR_POP, VAR_SAMP)
   SELECT MAX(temp) WEIGHTED BY volume FROM CELLS OF hall
                                ^^^^^^
 
@@ -507,7 +507,7 @@ input:1: id (TEXT) cannot be compared with 5 (INTEGER) (CAST(id AS REAL) reads a
 plan
 SELECT COUNT(*) WEIGHTED BY 2 FROM hall
 ----
-input:1: COUNT cannot be weighted (WEIGHTED BY may follow AVG, CORR, MEDIAN, MKT, QUANTILE, SHARE, STDDEV_POP, STDDEV_SAMP, SUM, VAR_POP, VAR_SAMP)
+input:1: COUNT cannot be weighted (WEIGHTED BY may follow AVG, CORR, DIRECTION_AVG, LEVEL_AVG, MEDIAN, MKT, QUANTILE, SHARE, STDDEV_POP, STDDEV_SAMP, SUM, VAR_POP, VAR_SAMP)
   SELECT COUNT(*) WEIGHTED BY 2 FROM hall
                               ^
 
@@ -606,3 +606,17 @@ SELECT id FROM hall GROUP BY POINT(x, y, z)
 input:1: GROUP BY cannot order points (group by the coordinates)
   SELECT id FROM hall GROUP BY POINT(x, y, z)
                                ^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM CELLS OF hall WITHIN (air, air)
+----
+input:1: two of these solids are called 'air': rows could not tell one zone from the other
+  SELECT * FROM CELLS OF hall WITHIN (air, air)
+                                           ^^^
+
+plan
+SELECT * FROM CELLS OF hall WITHIN (air, BOX (20,0,0) TO (40,10,5))
+----
+input:1: the zones air and BOX (20,0,0) TO (40,10,5) overlap: 500 m³ lie in both and would count twice
+  SELECT * FROM CELLS OF hall WITHIN (air, BOX (20,0,0) TO (40,10,5))
+                                           ^^^^^^^^^^^^^^^^^^^^^^^^^

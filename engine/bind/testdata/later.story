@@ -43,25 +43,11 @@ input:1: MEASURED IN is not there yet
                               ^^^^^^^^^^^^^^^^^^^
 
 plan
-SELECT * FROM CELLS OF hall WITHIN (air, air)
-----
-input:1: WITHIN (a, b), which makes zones, is not there yet
-  SELECT * FROM CELLS OF hall WITHIN (air, air)
-                              ^^^^^^^^^^^^^^^^^
-
-plan
 SELECT * FROM CELLS OF stretched
 ----
 input:1: STRETCHED of the campaign 'stretched' is not there yet (make the campaign anew without it: CREATE OR REPLACE CAMPAIGN …)
   SELECT * FROM CELLS OF stretched
                          ^^^^^^^^^
-
-plan
-SELECT * FROM CELLS OF zoned
-----
-input:1: WITHIN (a, b), which makes zones, of the campaign 'zoned' is not there yet (make the campaign anew without it: CREATE OR REPLACE CAMPAIGN …)
-  SELECT * FROM CELLS OF zoned
-                         ^^^^^
 
 plan
 SELECT * FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH)

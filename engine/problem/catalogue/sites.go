@@ -9,6 +9,12 @@ var ofSites = []Entry{
 		Example: "SELECT * FROM CELLS OF log;",
 	},
 	{
+		Code:    "overlap",
+		Meaning: "Two zones of WITHIN (a, b) share space, which would be divided twice.",
+		WayOut:  "Take one out of the other with MINUS, or make them one room with PLUS.",
+		Example: "SELECT id, zone FROM CELLS OF hall WITHIN (air, BOX (20,0,0) TO (40,10,5));",
+	},
+	{
 		Code:    "no-place",
 		Meaning: "A site of a new campaign has no coordinate.",
 		WayOut:  "Mend the file, or leave the row out: REFUSED TO for a file, WHERE … IS NOT NULL for a query.",
