@@ -32,6 +32,9 @@ func (s *Session) describe(st *statement, t *lang.Describe) error {
 	if d, ok := relation.Lookup(t.Name.Text); ok && !t.Name.Quoted {
 		return s.showTable(st, relationColumns(d))
 	}
+	if t.Name.Is(verdictsName) {
+		return s.showTable(st, schemaTable(s.verdictTable().Schema, nil))
+	}
 	if noun, ok := relation.Planned(t.Name.Text); ok {
 		return problem.NotThereYet(st.at(t.Name), noun+" OF …")
 	}

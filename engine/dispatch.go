@@ -34,6 +34,8 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 			return s.describeFile(ctx, st, t)
 		}
 		return s.describe(st, t)
+	case *lang.Require:
+		return s.require(ctx, st, t)
 	case *lang.Explain:
 		return s.explain(ctx, st, t)
 	case *lang.Run:
@@ -52,8 +54,6 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 func refuse(st *statement, tree lang.Statement) error {
 	what := ""
 	switch t := tree.(type) {
-	case *lang.Require:
-		what = "REQUIRE"
 	case *lang.Draw:
 		what = "DRAW"
 		if t.Show {

@@ -65,7 +65,7 @@ func guides() []guide {
 		{name: "NOTES", also: []string{"NOTE", "WARNING", "WARNINGS", "STRICT"},
 			summary: "What the lines note: and warning: below an answer are.",
 			text: []string{
-				"Below an answer stands what it is to be read with: sites left out, merged or unbounded, values missing, weights that count for much. A warning is a note on something that may falsify the answer; with --strict a warning fails its statement. Notes, warnings and errors go to the standard error, so that a saved result holds rows only.",
+				"Below an answer stands what it is to be read with: sites left out, merged or unbounded, values missing, weights that count for much. A warning is a note on something that may falsify the answer; with --strict a warning fails its statement; --quiet keeps it. Notes, warnings and errors go to the standard error, so that a saved result holds rows only: where there was a warning, SAVE writes a file beside the saved one that says so.",
 			}},
 		{name: "CATALOG", also: []string{"FOLDER", "STORE"},
 			summary: "Where campaigns, tables, solids and views are kept.",
@@ -74,7 +74,7 @@ func guides() []guide {
 			}},
 		{name: "EXIT CODES", also: []string{"EXIT CODE"},
 			summary: "What the program returns to the one who called it.",
-			text:    []string{"0: all went well. 1: a statement failed. 2: the call was wrong. 130: interrupted. With --keep-going the rest of a script runs after a failure, and the code still tells of it."}},
+			text:    []string{"0: all went well. 1: a statement failed. 2: the call was wrong. 3: all statements ran, and a requirement failed (REQUIRE). 130: interrupted. With --keep-going the rest of a script runs after a failure, and the code still tells of it."}},
 	}
 }
 

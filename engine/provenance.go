@@ -31,6 +31,16 @@ type provenance struct {
 	Values    map[string]string `json:"values,omitempty"` // of the :names that are set
 	Inputs    []provenanceInput `json:"inputs"`
 	Notes     []string          `json:"notes,omitempty"`
+	// Requirements are those whose verdicts the statement reads.
+	Requirements []provenanceRequirement `json:"requirements,omitempty"`
+}
+
+// provenanceRequirement is what a verdict rests on.
+type provenanceRequirement struct {
+	Requirement string `json:"requirement"`
+	Verdict     string `json:"verdict"`
+	Script      string `json:"script"`
+	Statement   string `json:"statement"`
 }
 
 // provenanceInput is an object of the catalog that the statement reads, or that
@@ -73,6 +83,12 @@ func (s *Session) saveProvenance(st *statement, t *lang.Save, rows int64) error 
 		Program: s.o.Program, Script: st.source.Name,
 		Statement: st.source.Text[t.Span().Start:t.Span().End],
 		Inputs:    s.inputs(t),
+	}
+	if s.readsVerdicts(t) {
+		for i := range s.verdicts {
+			v := &s.verdicts[i]
+			p.Requirements = append(p.Requirements, provenanceRequirement{v.label, v.result, v.script, v.text})
+		}
 	}
 	for name, v := range s.params {
 		if p.Values == nil {
@@ -124,6 +140,11 @@ func fileSum(path string) (string, error) {
 func (s *Session) inputs(tree lang.Node) []provenanceInput {
 	found := map[string]*catalog.Object{}
 	s.follow(tree, found)
+	if s.readsVerdicts(tree) {
+		for i := range s.verdicts {
+			s.follow(s.verdicts[i].tree, found)
+		}
+	}
 	keys := make([]string, 0, len(found))
 	for k := range found {
 		keys = append(keys, k)
@@ -145,6 +166,20 @@ func (s *Session) inputs(tree lang.Node) []provenanceInput {
 		list = append(list, in)
 	}
 	return list
+}
+
+// readsVerdicts reports whether a statement reads the list of verdicts; a view
+// between them hides it.
+func (s *Session) readsVerdicts(tree lang.Node) bool {
+	reads := false
+	lang.Walk(tree, func(n lang.Node) bool {
+		if source, ok := n.(*lang.NameSource); ok && source.Name.Is(verdictsName) {
+			_, err := s.catalog.Get(source.Name.Key())
+			reads = reads || err != nil
+		}
+		return true
+	})
+	return reads
 }
 
 // follow collects what a tree names. A name that WITH gave to a query of its own

@@ -65,6 +65,9 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	} else {
 		noteStaleProvenance(st, t)
 	}
+	if err := s.saveWarnings(st, t); err != nil {
+		return err
+	}
 	s.say("%s saved to %s, %s", plural(rows, "row"), t.To.Value, st.seconds())
 	return nil
 }

@@ -53,6 +53,7 @@ type Session struct {
 	running   []string // scripts that RUN one another, for cycles
 	last      error    // that was printed, for HELP ERROR
 	checkOnly bool
+	verdicts  []verdict // of REQUIRE, in their order
 }
 
 // defaultDiagramMemory is what the diagrams of a session may hold on to.
@@ -218,7 +219,8 @@ func (s *Session) complain(err error) {
 
 // bindEnv is what the names of a statement may mean.
 func (s *Session) bindEnv(st *statement) *bind.Env {
-	return &bind.Env{Catalog: s.catalog, Source: st.source, Params: s.params, Folder: st.folder, Notes: st.notes}
+	return &bind.Env{Catalog: s.catalog, Source: st.source, Params: s.params, Folder: st.folder, Notes: st.notes,
+		Verdicts: s.verdictTable, VerdictWarnings: s.verdictWarnings}
 }
 
 func (s *Session) execEnv(st *statement) *exec.Env {

@@ -103,10 +103,15 @@ func dataStatements() []entry {
 			forms:   []form{{"EXPLAIN MEASURED", "EXPLAIN MEASURED SELECT id, volume FROM CELLS OF hall;"}},
 		},
 		{
-			name: "REQUIRE", also: []string{"NONE", "VERDICTS"},
-			syntax:  []string{"REQUIRE 'what' condition;", "REQUIRE 'what' NONE (query);"},
-			meaning: "States a requirement and says whether it is met: PASS, FAIL or NOT DECIDED.",
-			example: "REQUIRE 'A1 nothing above 12 °C' NONE (SELECT id FROM hall WHERE temp > 12);",
+			name: "REQUIRE", also: []string{"NONE", "VERDICTS", "VERDICT"},
+			syntax:  []string{"REQUIRE 'what' condition;", "REQUIRE 'what' NONE (query);", "SELECT … FROM VERDICTS;"},
+			meaning: "States a requirement and says whether it is met: PASS, FAIL or NOT DECIDED. Of a query no row may come out. The script goes on; VERDICTS lists what the requirements of the session came to, and the program returns 3 where one failed.",
+			more: []string{
+				"NOT DECIDED is what nothing can be said of: a condition that is NULL, and an answer that is empty because no row came as far as the condition, as of an empty log, or because values are missing in all of them. A relation such as EPISODES that finds nothing in the rows it looked at is an answer.",
+				"A limit that readings are equal to, or nearer to than 1e-9, is told of in a note.",
+			},
+			example: "REQUIRE 'A1 nothing above 12 °C' NONE (SELECT id FROM hall WHERE temp > 12);\nSELECT requirement, verdict, rows FROM VERDICTS;",
+			see:     []string{"EXIT CODES"},
 		},
 		{
 			name: "DRAW", also: []string{"SHADED BY", "LIMITS", "SHOWING", "ALONG", "COURSE", "HISTOGRAM", "PROFILE"},

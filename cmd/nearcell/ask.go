@@ -28,7 +28,8 @@ func (a *app) words(t *prompt.Terminal) io.Writer {
 }
 
 // ask is the prompt. A failing statement has been told; it does not make the
-// program fail.
+// program fail; a requirement that failed shows in the exit code, as it does of a
+// script.
 func (a *app) ask() error {
 	options, err := a.flags.options()
 	if err != nil {
@@ -48,9 +49,11 @@ func (a *app) ask() error {
 	if a.flags.noCatalog {
 		folder = ""
 	}
+	unmet := 0
 	err = a.withOutput(func(out io.Writer) error {
 		options.Out = t.Out(out)
 		s := engine.New(c, options)
+		defer func() { unmet = s.FailedRequirements() }()
 		if err := a.flags.letAll(s); err != nil {
 			return err
 		}
@@ -59,6 +62,8 @@ func (a *app) ask() error {
 		})
 	})
 	switch {
+	case err == nil && unmet > 0:
+		return exit(exitUnmet)
 	case err == nil:
 		return nil
 	case errors.Is(err, prompt.ErrTerminated):

@@ -27,6 +27,7 @@ const (
 	exitFine        = 0
 	exitFailed      = 1
 	exitUsage       = 2
+	exitUnmet       = 3
 	exitInterrupted = 130
 )
 
@@ -195,6 +196,7 @@ func (a *app) inSession(f func(context.Context, *engine.Session) error) error {
 	defer c.Close()
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
 	defer stop()
+	unmet := 0
 	err = a.withOutput(func(out io.Writer) error {
 		options.Out = t.Out(out)
 		s := engine.New(c, options)
@@ -202,14 +204,19 @@ func (a *app) inSession(f func(context.Context, *engine.Session) error) error {
 			return err
 		}
 		defer t.Working()()
+		defer func() { unmet = s.FailedRequirements() }()
 		return f(ctx, s)
 	})
-	return a.outcome(ctx, err)
+	return a.outcome(ctx, err, unmet)
 }
 
-// outcome maps an error to the exit code; ErrFailed has been told already.
-func (a *app) outcome(ctx context.Context, err error) error {
+// outcome maps an error and the number of requirements that failed to the exit
+// code; what went wrong has been told already. A script that broke off says more
+// than a requirement that failed before.
+func (a *app) outcome(ctx context.Context, err error, unmet int) error {
 	switch {
+	case err == nil && unmet > 0:
+		return exit(exitUnmet)
 	case err == nil:
 		return nil
 	case ctx.Err() != nil:

@@ -43,6 +43,7 @@ func manual(w io.Writer, root *cobra.Command) error {
 	p.item("0", "all went well")
 	p.item("1", "a statement failed")
 	p.item("2", "wrong usage")
+	p.item("3", "all statements ran, and a requirement failed")
 	p.item("130", "interrupted")
 	p.heading("FILES")
 	p.item(".nearcell", "the catalog, unless --catalog names another folder; the history of the prompt lies in it")

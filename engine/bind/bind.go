@@ -19,6 +19,10 @@ type Env struct {
 	Params  map[string]column.Value // values of LET and --let under lang.Fold(name)
 	Folder  string                  // relative paths of files start here
 	Notes   *note.Notes             // what binding has to say; nil: nowhere
+	// Verdicts are what the requirements of the session came to so far, and
+	// VerdictWarnings what was to be said with them; nil: none.
+	Verdicts        func() *column.Table
+	VerdictWarnings func() []string
 }
 
 // Query binds a query to a plan. The plan is the query as written: no rule has

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"nearcell/catalog"
+	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/problem"
 	"nearcell/engine/relation"
@@ -90,6 +91,9 @@ func (b *binder) named(n *lang.Name) (bound, error) {
 	if c := b.findCTE(n); c != nil {
 		return b.bindCTE(c, n)
 	}
+	if b.meansVerdicts(n) {
+		return b.verdicts(), nil
+	}
 	o, err := b.object(n)
 	if err != nil {
 		return bound{}, err
@@ -104,6 +108,30 @@ func (b *binder) named(n *lang.Name) (bound, error) {
 			WithHint("a solid stands after WITHIN")
 	}
 	return bound{}, problem.New("wrong-kind", b.at(n), "'%s' is a %s and has no rows", n.Text, strings.ToLower(o.Kind.String()))
+}
+
+// meansVerdicts reports whether a name is that of the list of verdicts; a thing of
+// the catalog goes before it.
+func (b *binder) meansVerdicts(n *lang.Name) bool {
+	if !n.Is("VERDICTS") || b.env.Verdicts == nil {
+		return false
+	}
+	_, err := b.env.Catalog.Get(n.Key())
+	var none *catalog.ErrNoSuch
+	return errors.As(err, &none)
+}
+
+// verdicts is the list of verdicts as a source. What was warned of when they were
+// reached is said again, so that it travels with them.
+func (b *binder) verdicts() bound {
+	t := b.env.Verdicts()
+	if b.env.VerdictWarnings != nil {
+		for _, text := range b.env.VerdictWarnings() {
+			b.say(note.Warning, note.Rows, "%s", text)
+		}
+	}
+	o := &catalog.Object{Name: "VERDICTS", Kind: catalog.Table, Table: t}
+	return bound{scan(o), newScope(o.Name, o.Name, t.Schema)}
 }
 
 func scan(o *catalog.Object) *plan.Scan {
@@ -162,9 +190,6 @@ func (b *binder) object(n *lang.Name) (*catalog.Object, error) {
 	var none *catalog.ErrNoSuch
 	if !errors.As(err, &none) {
 		return nil, problem.At(err, b.at(n))
-	}
-	if n.Is("VERDICTS") {
-		return nil, b.notYet(n, "VERDICTS")
 	}
 	p := problem.New("no-object", b.at(n), "there is no campaign, table or view '%s'", n.Text)
 	didYouMean(p, n.Text, b.objectNames(catalog.Campaign, catalog.Table, catalog.View))
