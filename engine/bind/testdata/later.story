@@ -73,7 +73,7 @@ input:1: INTERPOLATE(… ALONG …) is not there yet
 plan
 SELECT * FROM VERDICTS
 ----
-input:1: VERDICTS is not there yet
+input:1: there is no campaign, table or view 'VERDICTS'
   SELECT * FROM VERDICTS
                 ^^^^^^^^
 
