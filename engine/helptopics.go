@@ -130,6 +130,9 @@ func relationExample(noun string) string {
 
 func writeRelation(p *page, d *relation.Definition) {
 	syntax := d.Noun + " OF campaign | view | (query)"
+	if d.Over == relation.OverRows {
+		syntax = d.Noun + " OF table | view | (query)"
+	}
 	for _, c := range d.Clauses {
 		if clause, ok := relation.LookupClause(c); ok {
 			syntax += "\n  [" + clause.Syntax + "]"
@@ -143,7 +146,7 @@ func writeRelation(p *page, d *relation.Definition) {
 	}
 	p.table(rows)
 	if d.Own {
-		p.say("Beside these it has all columns of the sites. A column of theirs with one of these names is read with own_ before it: own_area.")
+		p.say("Beside these it has all columns of " + ownRows[d.Over] + ". A column of theirs with one of these names is read with own_ before it: own_area.")
 	}
 	later := slices.Concat(d.Later, d.NotYet)
 	for _, c := range d.Clauses {
@@ -152,6 +155,9 @@ func writeRelation(p *page, d *relation.Definition) {
 	notYet(p, later)
 	forExample(p, relationExample(d.Noun))
 }
+
+// ownRows are the rows whose own columns a relation carries.
+var ownRows = map[relation.Over]string{relation.OverSites: "the sites", relation.OverRows: "the rows"}
 
 // relationUnit is the unit of a relation's column for coordinates in metres.
 func relationUnit(c relation.Column) *column.Unit {

@@ -2,6 +2,7 @@ package bind
 
 import (
 	"nearcell/engine/plan"
+	"nearcell/engine/problem"
 	"nearcell/engine/relation"
 	"nearcell/lang"
 )
@@ -32,4 +33,9 @@ func (b *binder) overRows(rel *relation.Bound, r *lang.Relation, in bound) (boun
 // column finds a column of a relation's input that a clause names.
 func (b *binder) column(rel *relation.Bound, n *lang.Name) (int, error) {
 	return newScope("", rel.Name, rel.Input).resolve(b, &lang.Column{At: n.At, Name: *n})
+}
+
+// needsClause refuses a relation without a clause that it cannot do without.
+func (b *binder) needsClause(rel *relation.Bound, r *lang.Relation, clause, example string) error {
+	return problem.New("needs-clause", b.at(r), "%s needs %s", rel.Def.Noun, clause).WithHint("for example %s", example)
 }

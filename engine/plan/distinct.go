@@ -138,6 +138,39 @@ func stored(n Node, at int) (*column.Vector, bool) {
 	return nil, false
 }
 
+// ScanOf is the stored table or campaign that a column comes from unchanged, nil
+// where it was computed.
+func ScanOf(n Node, at int) *Scan {
+	switch n := n.(type) {
+	case *Scan:
+		return n
+	case *Filter, *Sort, *Limit, *Distinct:
+		return ScanOf(n.Inputs()[0], at)
+	case *Project:
+		if c, ok := expr.AsColumn(n.Exprs[at]); ok {
+			return ScanOf(n.Input, c)
+		}
+	case *Aggregate:
+		if at < len(n.Keys) {
+			if c, ok := expr.AsColumn(n.Keys[at]); ok {
+				return ScanOf(n.Input, c)
+			}
+		}
+	case *Join:
+		if left := len(n.Left.Schema()); at >= left {
+			return ScanOf(n.Right, at-left)
+		}
+		return ScanOf(n.Left, at)
+	case *Shared:
+		return ScanOf(n.Common.Plan, at)
+	case *Relation:
+		if site := n.Bound.Columns[at].Site; site >= 0 {
+			return ScanOf(n.Input, site)
+		}
+	}
+	return nil
+}
+
 // stored counts the values of a column once.
 func (e *Estimator) stored(t *column.Table, at int) values {
 	key := counted{t, at}

@@ -8,7 +8,7 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps}
+var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, seriesOf, audit, episodes}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
@@ -26,9 +26,6 @@ var planned = map[string]string{
 	"CLUSTERS":        "site",
 	"GRID":            "grid point in the solid",
 	"TRANSECT":        "point along the line",
-	"SERIES":          "logger and instant",
-	"AUDIT":           "logger",
-	"EPISODES":        "excursion",
 	"EXTREMES":        "ranked row",
 	"REPRESENTATIVES": "chosen site",
 }

@@ -105,6 +105,7 @@ type Bound struct {
 	X, Y, Z int
 	Beside  []Beside // what clauses such as EXPECTING name
 	Clauses Clauses
+	Log     LogClauses // of relations over a log
 	Columns []Column
 	Place   problem.Place
 	// EachPlace is the place of the FOR EACH clause.
@@ -140,7 +141,7 @@ type Beside struct {
 // Reads are the columns of the input on which the rows rest, whatever is asked of
 // them.
 func (b *Bound) Reads() []int {
-	reads := slices.Concat(b.Clauses.Each, b.Clauses.By, b.Clauses.On, b.Clauses.For)
+	reads := slices.Concat(b.Clauses.Each, b.Clauses.By, b.Clauses.On, b.Clauses.For, b.Log.Readings)
 	if b.Def.Over == OverSites {
 		reads = append(reads, b.ID, b.X, b.Y, b.Z)
 	}
@@ -159,6 +160,16 @@ func (b *Bound) Pruned(to []int) *Bound {
 		for i, at := range *list {
 			(*list)[i] = to[at]
 		}
+	}
+	c.Log.Carried = nil
+	for _, at := range b.Log.Carried {
+		if to[at] >= 0 {
+			c.Log.Carried = append(c.Log.Carried, to[at])
+		}
+	}
+	c.Log.Readings = slices.Clone(b.Log.Readings)
+	for i, at := range c.Log.Readings {
+		c.Log.Readings[i] = to[at]
 	}
 	c.Input = nil
 	for i, t := range to {

@@ -8,13 +8,6 @@ input:1: PLACEMENTS is not there yet
                 ^^^^^^^^^^
 
 plan
-SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE
-----
-input:1: SERIES is not there yet
-  SELECT * FROM SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE
-                ^^^^^^
-
-plan
 SELECT * FROM TRANSECT BETWEEN (0,0,1) AND (30,0,1) STEP 0.1
 ----
 input:1: TRANSECT is not there yet

@@ -27,6 +27,12 @@ var ofQueries = []Entry{
 		Example: "SELECT QUANTILE(temp) FROM hall;",
 	},
 	{
+		Code:    "needs-clause",
+		Meaning: "A relation stands without a clause that it cannot do without.",
+		WayOut:  "The message has an example; HELP and the name of the relation show all of its clauses.",
+		Example: "SELECT * FROM SERIES OF log BY logger ON t;",
+	},
+	{
 		Code:    "aggregate",
 		Meaning: "A function of many rows stands where each row is still single, or where there are no rows at all.",
 		WayOut:  "Conditions on groups stand in HAVING. To compare rows with a mean, compute it in a query of its own and join it.",
