@@ -39,7 +39,7 @@ var clauses = []Clause{
 	{"UNCERTAINTY", "UNCERTAINTY (column value EACH, value COMMON)",
 		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share.",
 		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON);"},
-	{"METHOD", "METHOD SIBSON | LAPLACE | LINEAR | NEAREST | IDW(power), of SERIES METHOD LINEAR | HOLD | MEAN | MAX | MIN",
+	{"METHOD", "METHOD SIBSON | LAPLACE | LINEAR | NEAREST | IDW(power) | HOLD | MEAN | MAX | MIN",
 		"How values between the sites are estimated. Of SERIES, how a row comes of the readings: on the straight line between two of them at its stamp (LINEAR, the rule), the last one before it (HOLD), " +
 			"the mean by time of its span (MEAN; at least half of the span must lie between readings), or the largest or smallest reading in its span (MAX, MIN). Texts and truth values are held.",
 		"SELECT * FROM RESIDUALS OF hall FOR temp METHOD SIBSON;"},
