@@ -2,6 +2,7 @@ package exec
 
 import (
 	"cmp"
+	"math"
 	"slices"
 
 	"nearcell/catalog/column"
@@ -85,6 +86,14 @@ func orderedReal(f float64) uint64 {
 		return ^w
 	}
 	return w | 1<<63
+}
+
+// fromOrdered is the number that orderedReal made a word of.
+func fromOrdered(w uint64) float64 {
+	if w>>63 != 0 {
+		return math.Float64frombits(w &^ (1 << 63))
+	}
+	return math.Float64frombits(^w)
 }
 
 // textRanks gives each code that v uses the place of its text; equal texts

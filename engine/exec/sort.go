@@ -19,6 +19,7 @@ type sortSink struct {
 	scope
 	parts []*column.Table // sorted where there is a top
 	rows  int             // of parts
+	bound *topBound       // where there is a top
 }
 
 func newSortSink(env *Env, n *plan.Sort) *sortSink {
@@ -33,6 +34,9 @@ func newSortSink(env *Env, n *plan.Sort) *sortSink {
 		}
 		s.keyAt = append(s.keyAt, at)
 	}
+	if n.Top > 0 && len(n.Keys) > 0 {
+		s.bound = &topBound{key: n.Keys[0]}
+	}
 	return s
 }
 
@@ -40,6 +44,7 @@ type sortPart struct {
 	sink *sortSink
 	rows *tableBuilder
 	cols []column.Vector
+	on   []uint64
 }
 
 func (s *sortSink) Part(int) Part {
@@ -58,10 +63,18 @@ func (p *sortPart) Consume(w *Worker, b *column.Batch) error {
 		}
 		p.cols = append(p.cols, v)
 	}
-	if err := p.rows.add(p.cols, b.On, b.N); err != nil {
+	on := b.On
+	if bound := p.sink.bound; bound != nil {
+		p.on = room(p.on, column.Words(b.N))
+		on = bound.within(p.on, &p.cols[p.sink.keyAt[0]], b.On, b.N)
+		if !anyOn(on, b.N) {
+			return nil
+		}
+	}
+	if err := p.rows.add(p.cols, on, b.N); err != nil {
 		return err
 	}
-	if p.sink.worthCutting(p.rows.n) { // a chunk may be long behind a join
+	if p.sink.worthCutting(p.rows.n) {
 		first := p.sink.first(p.rows.finish())
 		p.rows = newTableBuilder(p.sink.env, p.sink.keyed)
 		return p.rows.addAll(first.Cols, first.N)
@@ -69,9 +82,10 @@ func (p *sortPart) Consume(w *Worker, b *column.Batch) error {
 	return nil
 }
 
-// worthCutting reports whether so many rows are many more than the top.
+// worthCutting reports whether so many rows are so many more than the top that
+// putting them in order costs little for each of those that came since.
 func (s *sortSink) worthCutting(rows int) bool {
-	return s.node.Top > 0 && int64(rows) > 2*s.node.Top+int64(s.env.chunkRows())
+	return s.node.Top > 0 && int64(rows) > 2*s.node.Top+int64(s.env.batchRows())
 }
 
 // first is the rows of t that are among the first Top ones, in their order.
@@ -81,7 +95,11 @@ func (s *sortSink) first(t *column.Table) *column.Table {
 		return t
 	}
 	s.env.release((int64(t.N) - s.node.Top) * rowBytes(s.keyed))
-	return gatherTable(t, s.order(t)[:s.node.Top])
+	first := gatherTable(t, s.order(t)[:s.node.Top])
+	if s.bound != nil {
+		s.bound.tighten(&first.Cols[s.keyAt[0]], first.N-1)
+	}
+	return first
 }
 
 func (s *sortSink) order(t *column.Table) []int32 {
