@@ -22,6 +22,7 @@ type aggregateSink struct {
 	node  *plan.Aggregate
 	types []column.Type // of the keys
 	watch *cellWatch    // what may have to be said, nil: nobody listens
+	pairs []*pairSet    // of calls that count different values, else nil
 	all   *aggregatePart
 }
 
@@ -36,6 +37,11 @@ func newAggregateSink(env *Env, n *plan.Aggregate) (*aggregateSink, error) {
 			return nil, problem.New("distinct-weight", c.Place, "%s cannot count each value once and weigh it by its rows", c.Text).
 				WithHint("leave out DISTINCT or WEIGHTED BY")
 		}
+		var pairs *pairSet
+		if countsPairs(&c) {
+			pairs = newPairSet(env)
+		}
+		s.pairs = append(s.pairs, pairs)
 	}
 	return s, nil
 }
@@ -49,6 +55,8 @@ type aggregatePart struct {
 	group  []int32 // of each row of the batch
 	cols   []column.Vector
 	kept   int64 // bytes
+	chunk  int
+	to     []int32 // once merged: which group of all is which of these; nil: the same
 }
 
 // callState is one aggregate over the groups of a part.
@@ -60,19 +68,24 @@ type callState struct {
 	distinct *keyTable
 	reader   *keyReader
 	ids      []int32
+	pairs    *pairPart // of a COUNT(DISTINCT x): instead of distinct
 	args     []column.Vector
 	on       []uint64
 	largest  heaviest
 	cells    *cellCount // what a sum of measures has met, nil: not asked
 }
 
-func (s *aggregateSink) Part(int) Part { return s.newPart() }
+func (s *aggregateSink) Part(chunk int) Part {
+	p := s.newPart()
+	p.chunk = chunk
+	return p
+}
 
 func (s *aggregateSink) newPart() *aggregatePart {
 	p := &aggregatePart{sink: s, keys: newKeyTable(s.types), calls: make([]*callState, len(s.node.Calls))}
 	p.reader = newKeyReader(p.keys)
 	for i := range s.node.Calls {
-		p.calls[i] = newCallState(&s.node.Calls[i])
+		p.calls[i] = newCallState(&s.node.Calls[i], s.pairs[i])
 	}
 	if s.watch != nil {
 		for i, cells := range s.cellCounts() {
@@ -82,7 +95,7 @@ func (s *aggregateSink) newPart() *aggregatePart {
 	return p
 }
 
-func newCallState(c *plan.Call) *callState {
+func newCallState(c *plan.Call, pairs *pairSet) *callState {
 	setup := function.Setup{Weighted: c.Weight != nil}
 	for _, a := range c.Args {
 		setup.Args = append(setup.Args, a.Type())
@@ -97,7 +110,9 @@ func newCallState(c *plan.Call) *callState {
 	}
 	state := &callState{call: c, acc: c.Fn.New(setup)}
 	// the first of ordered values is the same whether or not equals are dropped
-	if c.Distinct && len(c.OrderBy) == 0 {
+	if pairs != nil {
+		state.pairs = &pairPart{set: pairs}
+	} else if c.Distinct && len(c.OrderBy) == 0 {
 		state.distinct = newKeyTable(append([]column.Type{column.Integer}, setup.Args...))
 		state.reader = newKeyReader(state.distinct)
 	}
@@ -152,6 +167,9 @@ func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups
 		args = append(args, v)
 	}
 	c.args = args
+	if c.pairs != nil {
+		return c.pairs.add(w, &args[0], on, b.N, groups)
+	}
 	if c.distinct != nil {
 		c.addDistinct(b.N, on, groups)
 		return nil
@@ -198,12 +216,16 @@ func (s *aggregateSink) Merge(part Part) error {
 	}
 	before := s.all.keys.n
 	to := s.all.keys.absorb(p.keys, nil)
+	p.to = to
 	s.env.release(p.kept)
 	if err := s.all.keep(before); err != nil {
 		return err
 	}
 	for i, c := range s.all.calls {
 		from := p.calls[i]
+		if c.pairs != nil {
+			continue // Later
+		}
 		if c.distinct != nil {
 			c.distinct.absorb(from.distinct, to)
 			continue
@@ -213,6 +235,19 @@ func (s *aggregateSink) Merge(part Part) error {
 		}
 		c.largest.merge(&from.largest)
 		c.cells.merge(from.cells, to)
+	}
+	return nil
+}
+
+// Later counts different values beside the merging of other parts.
+func (p *aggregatePart) Later() error {
+	for _, c := range p.calls {
+		if c.pairs == nil {
+			continue
+		}
+		if err := c.pairs.settle(p.to, p.chunk); err != nil {
+			return err
+		}
 	}
 	return nil
 }
@@ -268,6 +303,9 @@ func (s *aggregateSink) keyOrder(keys []column.Vector, n int) []int32 {
 // result is the values of all groups. The distinct values of a call with
 // DISTINCT go into its accumulator now that each stands there once.
 func (c *callState) result(groups int) (column.Vector, error) {
+	if c.pairs != nil {
+		return c.pairs.set.counts(groups), nil
+	}
 	if c.distinct != nil {
 		cols := c.distinct.columns()
 		group := make([]int32, c.distinct.n)

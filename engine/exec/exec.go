@@ -176,6 +176,19 @@ type Part interface {
 	Consume(w *Worker, b *column.Batch) error
 }
 
+// laterPart is a part that has more to do once it is merged, beside the merging of
+// others and in no order. Its worker calls Later; Finish comes after all of them.
+type laterPart interface {
+	Later() error
+}
+
+func later(p Part) error {
+	if p, ok := p.(laterPart); ok {
+		return p.Later()
+	}
+	return nil
+}
+
 // errEnough stops a source early; it never leaves this package.
 var errEnough = errors.New("exec: enough rows")
 

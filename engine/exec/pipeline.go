@@ -96,6 +96,9 @@ func (p *pipeline) streamInto(ctx context.Context, w *Worker, sink Sink) error {
 		if err := w.merge(sink, full); err != nil {
 			return err
 		}
+		if err := later(full); err != nil {
+			return err
+		}
 		rows = 0
 		chunk++
 		part = sink.Part(chunk)
@@ -106,6 +109,9 @@ func (p *pipeline) streamInto(ctx context.Context, w *Worker, sink Sink) error {
 	}
 	if merged := sink.Merge(part); merged != nil {
 		return merged
+	}
+	if err := later(part); err != nil {
+		return err
 	}
 	return err
 }

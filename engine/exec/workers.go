@@ -37,7 +37,15 @@ func (p *pipeline) chunksInto(ctx context.Context, env *Env, sink Sink) error {
 		w := NewWorker(env)
 		for {
 			c := int(next.Add(1)) - 1
-			if c >= chunks || !t.take(c, p.fill(ctx, w, c, sink), sink) {
+			if c >= chunks {
+				return
+			}
+			f := p.fill(ctx, w, c, sink)
+			if !t.take(c, f, sink) {
+				return
+			}
+			if err := later(f.part); err != nil {
+				t.fail(err)
 				return
 			}
 		}
@@ -108,6 +116,16 @@ func (t *turnstile) take(chunk int, f filled, sink Sink) bool {
 	}
 	t.moved.Broadcast()
 	return !t.stopped
+}
+
+// fail ends the work with an error of what came after a merge.
+func (t *turnstile) fail(err error) {
+	t.mu.Lock()
+	defer t.mu.Unlock()
+	if t.err == nil {
+		t.err = err
+	}
+	t.stop()
 }
 
 // stop makes all workers leave; t.mu is held.

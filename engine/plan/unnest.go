@@ -210,7 +210,7 @@ type groups struct {
 func groupsOf(s *expr.Subquery, width int) (groups, bool) {
 	q := s.Query.(*Query)
 	p, ok := q.Plan.(*Project)
-	if !ok || len(p.Exprs) != 1 || canFail(q.Plan) || anyFails(s.Outer) || expr.HasOuter(p.Exprs[0]) {
+	if !ok || len(p.Exprs) != 1 || canFailHere(q.Plan) || anyFails(s.Outer) || expr.HasOuter(p.Exprs[0]) {
 		return groups{}, false
 	}
 	a, ok := p.Input.(*Aggregate)
