@@ -42,11 +42,12 @@ type Plane struct {
 
 // Facts describe a solid in numbers.
 type Facts struct {
-	Kind    string // "box" or "prism"
+	Kind    string // "box", "prism", …
 	Walls   int    // plane walls, floor and ceiling included
 	Corners int    // corners of the surface
 	Holes   int    // holes in the floor plan that do not reach its outline
 	Pieces  int    // pieces whose interiors are apart
+	Voids   int    // hollows that no way leads out of
 	Convex  bool
 }
 

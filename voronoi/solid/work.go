@@ -9,6 +9,9 @@ import (
 // Work is the scratch that Solid.Measure needs: one for each goroutine. The zero
 // value is ready. Once warm it allocates nothing.
 type Work struct {
+	// Own is the scratch of solids of other rooms, theirs to fill.
+	Own any
+
 	x    *extrusion
 	site Vec
 	want Want

@@ -1,0 +1,249 @@
+package mesh
+
+import (
+	"cmp"
+	"slices"
+)
+
+// stitch puts every corner that lies in the middle of a side of a loop into that loop, so
+// that loops that run along each other have the same corners.
+func (a *arrangement) stitch() {
+	used := make([]bool, len(a.points))
+	for _, loop := range a.pieces {
+		for _, i := range loop {
+			used[i] = true
+		}
+	}
+	var ids []int32
+	for i := range used {
+		if used[i] {
+			ids = append(ids, int32(i))
+		}
+	}
+	t := newTree(len(ids), func(i int32) (lo, hi Vec) { p := a.points[ids[i]].f; return p, p })
+	type side struct{ from, to int32 }
+	known := map[side][]int32{}
+	for k, loop := range a.pieces {
+		var out []int32
+		changed := false
+		for i, x := range loop {
+			y := loop[(i+1)%len(loop)]
+			key := side{min(x, y), max(x, y)}
+			between, ok := known[key]
+			if !ok {
+				between = a.between(t, ids, key.from, key.to)
+				known[key] = between
+			}
+			out = append(out, x)
+			if x == key.from {
+				out = append(out, between...)
+			} else {
+				for j := len(between) - 1; j >= 0; j-- {
+					out = append(out, between[j])
+				}
+			}
+			changed = changed || len(between) > 0
+		}
+		if changed {
+			a.pieces[k] = out
+		}
+	}
+}
+
+// between lists the corners strictly between two others on their segment, in order.
+func (a *arrangement) between(t *tree, ids []int32, from, to int32) []int32 {
+	p, q := &a.points[from], &a.points[to]
+	var out []int32
+	t.along(p.f, q.f, 4*a.grain, func(i int32) {
+		x := ids[i]
+		if x == from || x == to {
+			return
+		}
+		r := &a.points[x]
+		if segmentDistance(sub(p.f, r.f), sub(q.f, r.f)) <= 4*a.grain && onSegment(p, q, r) {
+			out = append(out, x)
+		}
+	})
+	if len(out) < 2 {
+		return out
+	}
+	d := sub(q.f, p.f)
+	axis := 0
+	for k := range 3 {
+		if abs(component(d, k)) > abs(component(d, axis)) {
+			axis = k
+		}
+	}
+	way := signOf(component(d, axis))
+	slices.SortFunc(out, func(x, y int32) int {
+		u, v := &a.points[x], &a.points[y]
+		if c := cmp.Compare(component(u.f, axis), component(v.f, axis)); c != 0 {
+			return way * c
+		}
+		return way * u.rat()[axis].Cmp(&v.rat()[axis])
+	})
+	return out
+}
+
+func abs(x float64) float64 { return max(x, -x) }
+
+// along calls do for the items whose leaf comes within tol of the segment pq.
+func (t *tree) along(p, q Vec, tol float64, do func(i int32)) {
+	if len(t.nodes) == 0 {
+		return
+	}
+	stack := []int32{0}
+	for len(stack) > 0 {
+		k := stack[len(stack)-1]
+		stack = stack[:len(stack)-1]
+		n := &t.nodes[k]
+		from, to := 0.0, 1.0
+		for axis := range 3 {
+			x, d := component(p, axis), component(q, axis)-component(p, axis)
+			lo, hi := component(n.lo, axis)-tol-x, component(n.hi, axis)+tol-x
+			if d == 0 {
+				if lo > 0 || hi < 0 {
+					to = -1
+				}
+				continue
+			}
+			u, v := lo/d, hi/d
+			from, to = max(from, min(u, v)-1e-9), min(to, max(u, v)+1e-9)
+		}
+		if from > to {
+			continue
+		}
+		if n.to == 0 {
+			stack = append(stack, n.from, k+1)
+			continue
+		}
+		for _, i := range t.items[n.from:n.to] {
+			do(i)
+		}
+	}
+}
+
+// mesh rounds the corners and makes triangles of the pieces.
+func (a *arrangement) mesh(kind string, precision float64) (*Mesh, error) {
+	number := make([]int32, len(a.points))
+	for i := range number {
+		number[i] = -1
+	}
+	byPlace := map[Vec]int32{}
+	var v []Vec
+	var t [][3]int32
+	of := func(i int32) int32 {
+		if number[i] < 0 {
+			p := add(a.points[i].f, Vec{})
+			k, ok := byPlace[p]
+			if !ok {
+				k = int32(len(v))
+				byPlace[p] = k
+				v = append(v, p)
+			}
+			number[i] = k
+		}
+		return number[i]
+	}
+	for _, loop := range a.pieces {
+		first := a.apex(loop)
+		for k := 1; k+1 < len(loop); k++ {
+			c := [3]int32{of(loop[first]), of(loop[(first+k)%len(loop)]), of(loop[(first+k+1)%len(loop)])}
+			if c[0] != c[1] && c[1] != c[2] && c[2] != c[0] {
+				t = append(t, c)
+			}
+		}
+	}
+	if len(t) == 0 {
+		return nil, &Error{Fault: NothingLeft}
+	}
+	return closed(v, t, kind, precision)
+}
+
+// apex is the corner of a loop from which a fan has the largest smallest triangle.
+func (a *arrangement) apex(loop []int32) int {
+	best, most := 0, -1.0
+	if len(loop) == 3 {
+		return 0
+	}
+	for i := range loop {
+		smallest := inf
+		for k := 1; k+1 < len(loop); k++ {
+			p, q, r := a.points[loop[i]].f, a.points[loop[(i+k)%len(loop)]].f, a.points[loop[(i+k+1)%len(loop)]].f
+			smallest = min(smallest, length(cross(sub(q, p), sub(r, p))))
+		}
+		if smallest > most {
+			best, most = i, smallest
+		}
+	}
+	return best
+}
+
+// closed makes the mesh of a closed surface that bounds a solid, and counts its pieces
+// and voids. Components as thin as rounding are left out.
+func closed(v []Vec, t [][3]int32, kind string, precision float64) (*Mesh, error) {
+	list := uses(t)
+	if err := balance(v, list); err != nil {
+		return nil, &Error{Fault: NotClosed, At: err.(*Error).Edges[0][0]}
+	}
+	of, n := components(v, t, list)
+	volumes, areas := make([]sum, n), make([]sum, n)
+	lo, hi := v[t[0][0]], v[t[0][0]]
+	for i, c := range t {
+		p := v[c[0]]
+		q, r := sub(v[c[1]], p), sub(v[c[2]], p)
+		o := sub(p, v[t[0][0]])
+		volumes[of[i]].add(dot(o, cross(q, r)) / 6)
+		areas[of[i]].add(length(cross(q, r)) / 2)
+		for _, x := range c {
+			lo, hi = least(lo, v[x]), most(hi, v[x])
+		}
+	}
+	thin := nearFactor * length(sub(hi, lo))
+	shells, voids := 0, 0
+	kept := t[:0:0]
+	for k := range n {
+		volume := volumes[k].value()
+		switch {
+		case abs(volume) <= thin*areas[k].value():
+			continue
+		case volume > 0:
+			shells++
+		default:
+			voids++
+		}
+		for i := range t {
+			if int(of[i]) == k {
+				kept = append(kept, t[i])
+			}
+		}
+	}
+	if shells == 0 {
+		return nil, &Error{Fault: NothingLeft}
+	}
+	m := finish(v, kept, uses(kept), kind, precision)
+	m.pieces, m.voids = shells, voids
+	m.skipFilms()
+	return m, nil
+}
+
+// skipFilms finds triangles on both sides of a film of the solid, or of a gap in it, that
+// is thinner than faces can be told apart: what walls leave that coincide but for
+// rounding. They are no walls.
+func (m *Mesh) skipFilms() {
+	gone := 0.0
+	for i := range m.t {
+		if m.wall[i] < 0 {
+			continue
+		}
+		a, b, c := m.corners(int32(i))
+		middle := scale(1.0/3, add(a, add(b, c)))
+		step := scale(shift*m.near, m.n[i])
+		if in, out := m.side(sub(middle, step)), m.side(add(middle, step)); in == out {
+			m.wall[i] = -1
+			gone += m.size[i]
+		}
+	}
+	m.films = gone
+	m.area -= gone
+}
