@@ -73,6 +73,8 @@ type callState struct {
 	on       []uint64
 	largest  heaviest
 	cells    *cellCount // what a sum of measures has met, nil: not asked
+	ledger   *ledger    // what a weighted answer speaks for, nil: of no closed space, or not asked
+	near     *nearCount // what limits can hardly tell apart, nil: none or not asked
 }
 
 func (s *aggregateSink) Part(chunk int) Part {
@@ -90,6 +92,12 @@ func (s *aggregateSink) newPart() *aggregatePart {
 	if s.watch != nil {
 		for i, cells := range s.cellCounts() {
 			p.calls[i].cells = cells
+		}
+		for i, book := range s.ledgers() {
+			p.calls[i].ledger = book
+		}
+		for _, c := range p.calls {
+			c.near = newNearCount(c.call)
 		}
 	}
 	return p
@@ -146,6 +154,9 @@ func (p *aggregatePart) keep(before int) error {
 }
 
 func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups []int32) error {
+	if err := c.near.look(s.scope, w, b); err != nil {
+		return err
+	}
 	on := b.On
 	if c.call.Filter != nil {
 		cond, err := s.eval(w, c.call.Filter, b, b.On)
@@ -192,6 +203,7 @@ func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups
 		return s.fault(w, err, at, b)
 	}
 	c.cells.add(b, on, groups)
+	c.ledger.add(b, on, args)
 	if weight != nil && len(s.node.Keys) == 0 && s.id >= 0 {
 		c.largest.look(weight, args, on, b.N, &b.Cols[s.id])
 	}
@@ -223,6 +235,8 @@ func (s *aggregateSink) Merge(part Part) error {
 	}
 	for i, c := range s.all.calls {
 		from := p.calls[i]
+		c.near.merge(from.near)
+		c.ledger.merge(from.ledger)
 		if c.pairs != nil {
 			continue // Later
 		}
@@ -286,9 +300,11 @@ func (s *aggregateSink) say() {
 		return
 	}
 	s.weightNotes()
+	s.ledgerNotes()
 	s.watch.say(s.env.Notes)
 	for _, c := range s.all.calls {
 		c.cells.say(s.env.Notes, c.call, s.all.keys.n)
+		c.near.say(s.env.Notes, c.call)
 	}
 }
 

@@ -34,13 +34,10 @@ func (r *runner) watch(n *plan.Aggregate) *cellWatch {
 	}
 	w := &cellWatch{shown: map[*plan.Relation]*shownRows{}}
 	for _, m := range plan.CellSums(n) {
-		if r.shown[m.Relation] == nil {
-			if r.shown == nil {
-				r.shown = map[*plan.Relation]*shownRows{}
-			}
-			r.shown[m.Relation] = &shownRows{}
-		}
-		w.shown[m.Relation] = r.shown[m.Relation]
+		w.shown[m.Relation] = r.countShown(m.Relation)
+	}
+	for _, m := range plan.Weighings(n) {
+		w.shown[m.Relation] = r.countShown(m.Relation)
 	}
 	for _, m := range plan.Removals(n) {
 		c := &removal{Removal: m}
@@ -51,6 +48,17 @@ func (r *runner) watch(n *plan.Aggregate) *cellWatch {
 		r.removals[m.Step] = c
 	}
 	return w
+}
+
+// countShown is the counter of what a relation gives.
+func (r *runner) countShown(n *plan.Relation) *shownRows {
+	if r.shown[n] == nil {
+		if r.shown == nil {
+			r.shown = map[*plan.Relation]*shownRows{}
+		}
+		r.shown[n] = &shownRows{}
+	}
+	return r.shown[n]
 }
 
 // count tells a watched step's counter of the rows that came and stayed in a

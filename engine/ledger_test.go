@@ -1,0 +1,96 @@
+package engine
+
+import (
+	"bytes"
+	"context"
+	"strings"
+	"testing"
+
+	"nearcell/catalog"
+)
+
+// ledgerSetting is a room of 4 × 2 × 2 m with three sites on a line: the cells are
+// 4, 8 and 4 m³ (from x = 0 to 1, to 3, to 4). The site b has no reading; at the
+// second instant it has none either. Beside it lies a store of 2 m³ without a site.
+const ledgerSetting = `
+CREATE SOLID room AS BOX (0, 0, 0) TO (4, 2, 2);
+CREATE SOLID store AS BOX (5, 0, 0) TO (6, 2, 1);
+CREATE SOLID hut AS BOX (0, 0, 0) TO (4, 2, 1);
+CREATE CAMPAIGN hall AS (SELECT * FROM (VALUES ('a', 0.5, 1.0, 1.0, 4.0), ('b', 1.5, 1.0, 1.0, NULL), ('c', 4.5, 1.0, 1.0, 6.0)) AS v (id, x, y, z, temp))
+  WITHIN room TOLERANCE 1;
+CREATE TABLE week AS (SELECT * FROM (VALUES (1, 5.0, 'a'), (1, NULL, 'b'), (1, 8.0, 'c'), (2, 5.0, 'a'), (2, 7.9, 'b'), (2, 2.22 + 4.23 + 1.55, 'c')) AS v (t, temp, logger)) UNITS (temp '°C');
+CREATE VIEW readings AS (SELECT h.id, h.x, h.y, h.z, w.t, w.temp FROM hall h JOIN week w ON w.logger = h.id);
+CREATE TABLE twice AS (SELECT * FROM (VALUES (1), (2)) AS v (n));
+`
+
+// TestLedger: what a weighted answer speaks for, by hand: the cells are 4 m³ (x up to
+// 1), 8 m³ (up to 3) and 4 m³.
+func TestLedger(t *testing.T) {
+	const mean = "SELECT AVG(temp) WEIGHTED BY volume AS m FROM CELLS OF "
+	for query, want := range map[string]string{
+		mean + "(SELECT id, x, y, z, 4.0 AS temp FROM hall) WITHIN room": "note: AVG(temp) WEIGHTED BY volume: of 16 m³ of room all is answered for",
+		mean + "hall":                              "note: AVG(temp) WEIGHTED BY volume: of 16 m³ of room 8 (50.0 %) answered for, 8 NULL, so that nobody spoke for it, 0 removed by WHERE, 0 outside any partition",
+		mean + "hall WHERE id <> 'a'":              "of 16 m³ of room 4 (25.0 %) answered for, 8 NULL, so that nobody spoke for it, 4 removed by WHERE, 0 outside any partition",
+		mean + "hall WHERE volume > 5 OR temp > 5": "of 16 m³ of room 4 (25.0 %) answered for, 8 NULL, so that nobody spoke for it, 4 removed by WHERE, 0 outside any partition",
+		// the zone without a site is in no row; a small one is half the room high
+		mean + "hall WITHIN (room, store)": "of 18 m³ of room and store 8 (44.4 %) answered for, 8 NULL, so that nobody spoke for it, 0 removed by WHERE, 2 outside any partition",
+		mean + "hall WITHIN hut":           "of 8 m³ of hut 4 (50.0 %) answered for, 4 NULL",
+		"SELECT AVG(temp) FILTER (WHERE id <> 'c') WEIGHTED BY volume AS m FROM CELLS OF hall": "of 16 m³ of room 4 (25.0 %) answered for, 8 NULL, so that nobody spoke for it, 4 left out by FILTER, 0 removed by WHERE",
+		// two instants: in the first one the 8 m³ of b are NULL
+		"SELECT t, AVG(temp) WEIGHTED BY volume AS m FROM CELLS OF (SELECT * FROM readings WHERE id <> 'c') FOR EACH t WITHIN room GROUP BY t":     "of 2 partitions of room, 32 m³ together, 20 (62.5 %) answered for, 12 NULL",
+		"SELECT AVG(temp) WEIGHTED BY (volume * 2) AS m FROM CELLS OF (SELECT * FROM readings WHERE id <> 'c') FOR EACH t WITHIN room WHERE t = 1": "of 16 m³ of room 4 (25.0 %) answered for, 12 NULL",
+		// a join that loses a cell, and one that repeats them
+		"SELECT AVG(c.temp) WEIGHTED BY volume AS m FROM CELLS OF hall AS c JOIN twice ON c.id = 'a' AND n = 1": "of 16 m³ of room 4 (25.0 %) answered for, 0 NULL, so that nobody spoke for it, 12 removed by WHERE or a join, 0 outside",
+		"SELECT AVG(c.temp) WEIGHTED BY volume AS m FROM CELLS OF hall AS c CROSS JOIN twice":                   "warning: AVG(c.temp) WEIGHTED BY volume: the weights add up to 32 m³, and room has only 16 m³: cells are counted more than once",
+		// no closed space, no ledger
+		mean + "hall UNCLIPPED WHERE bounded":                           "",
+		"SELECT AVG(temp) WEIGHTED BY farthest AS m FROM CELLS OF hall": "",
+		// through a view and a subquery
+		"SELECT AVG(temp) WEIGHTED BY v AS m FROM (SELECT temp, volume AS v FROM CELLS OF hall)": "note: AVG(temp) WEIGHTED BY v: of 16 m³ of room 8 (50.0 %) answered for",
+	} {
+		for _, threads := range []int{1, 2} {
+			var out, words bytes.Buffer
+			s := New(catalog.Memory(), Options{Out: &out, Err: &words, Quiet: true, Threads: threads})
+			if err := s.Run(context.Background(), "input", ledgerSetting, t.TempDir()); err != nil {
+				t.Fatal(words.String())
+			}
+			words.Reset()
+			if err := s.Run(context.Background(), "input", query+";", "."); err != nil {
+				t.Errorf("%s: %s", query, words.String())
+				continue
+			}
+			if want == "" && strings.Contains(words.String(), "answered for") || !strings.Contains(words.String(), want) {
+				t.Errorf("%s says\n%s\nwant\n%s", query, words.String(), want)
+			}
+		}
+	}
+}
+
+// TestNearLimit: SHARE and FILTER tell of readings at their limits, where nothing
+// could go wrong on the way.
+func TestNearLimit(t *testing.T) {
+	for query, want := range map[string]string{
+		"SELECT SHARE(temp > 8) FROM week":                            "note: SHARE(temp > 8): 2 values of temp lie within 1e-9 of the limit 8 and 1 of them differ from it",
+		"SELECT SHARE(8 < temp) FROM week WHERE t = 1":                "note: SHARE(8 < temp): 1 value of temp is equal to the limit 8",
+		"SELECT COUNT(*) FILTER (WHERE temp >= 7.9) FROM week":        "1 value of temp is equal to the limit 7.9: whether it counts",
+		"SELECT t, SHARE(temp BETWEEN 2 AND 8) FROM week GROUP BY t":  "2 values of temp lie within",
+		"SELECT SHARE(ROUND(temp, 2) > 8.5) FROM week":                "",
+		"SELECT SHARE(temp > 8.5) FROM week":                          "",
+		"SELECT SHARE(t > 1) FROM week":                               "", // whole numbers are what they are
+		"SELECT SHARE(temp = 8) FROM week":                            "",
+		"SELECT SHARE(temp > 100 AND LN(temp - 100) > 1.0) FROM week": "", // would fail if it were computed for every row
+	} {
+		var out, words bytes.Buffer
+		s := New(catalog.Memory(), Options{Out: &out, Err: &words, Quiet: true})
+		if err := s.Run(context.Background(), "input", ledgerSetting, t.TempDir()); err != nil {
+			t.Fatal(words.String())
+		}
+		words.Reset()
+		if err := s.Run(context.Background(), "input", query+";", "."); err != nil {
+			t.Errorf("%s: %s", query, words.String())
+		}
+		if want == "" && strings.Contains(words.String(), "limit") || !strings.Contains(words.String(), want) {
+			t.Errorf("%s says\n%s\nwant\n%s", query, words.String(), want)
+		}
+	}
+}
