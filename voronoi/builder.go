@@ -82,7 +82,8 @@ func (b *builder) use(g *dual) {
 }
 
 // build makes c the cell of the place p (shifted by the origin; at is the same
-// place in the user's coordinates) among all sites but self. In a convex solid the
+// place in the user's coordinates) among all sites but self. The finished cell is in
+// true units, whatever the distances. In a convex solid the
 // cell is cut by the solid, in any other by its bounding box. Labels are cell
 // numbers. bounded is false if the cell reaches to infinity; c is then closed by
 // Open faces.
@@ -90,10 +91,18 @@ func (b *builder) build(c *polyhedron.Cell, p, at Vec, self int32) (bounded bool
 	d := b.d
 	b.gather(p, self)
 	if d.solid == nil {
-		return b.buildOpen(c, p, self)
+		bounded = b.buildOpen(c, p, self)
+		if d.stretched {
+			c.Divide(d.stretch)
+		}
+		return bounded
 	}
-	c.SetBox(sub(d.lo, at), sub(d.hi, at), d.labels)
+	lo, hi := d.localBox(at)
+	c.SetBox(lo, hi, d.labels)
 	b.cut(c, p, self)
+	if d.stretched {
+		c.Divide(d.stretch)
+	}
 	if d.convex && !d.isBox && !c.Empty() {
 		d.solid.ClipConvex(c, at)
 	}

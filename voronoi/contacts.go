@@ -58,12 +58,12 @@ func (d *Diagram) Contacts(ctx context.Context, sites []int32, yield func(site i
 
 // describe turns the contacts of a cell into those of its site.
 func (d *Diagram) describe(to []Contact, cell int32, from []share) []Contact {
-	p := d.tree.Point(cell)
+	p := d.spot(cell)
 	for _, s := range from {
 		to = append(to, Contact{
 			Other:    d.site[s.other],
 			Area:     s.area,
-			Distance: length(sub(d.tree.Point(s.other), p)),
+			Distance: length(sub(d.spot(s.other), p)),
 			Middle:   s.middle,
 		})
 	}
@@ -195,7 +195,7 @@ func (b *builder) shares(cell int32) ([]share, error) {
 	}
 	d := b.d
 	p := d.tree.Point(cell)
-	at := add(p, d.origin)
+	at := d.place(cell)
 	return b.sharesOf(at, b.build(&b.cell, p, at, cell))
 }
 
@@ -243,6 +243,9 @@ func (b *builder) sharesOf(at Vec, bounded bool) ([]share, error) {
 func (b *builder) wholeFace(i int, other int32, at Vec, bounded bool) share {
 	if !bounded && b.cell.Reaches(i) {
 		n, _ := b.cell.FacePlane(i)
+		if b.d.stretched { // the plane does not stand upright on the line between the sites
+			n = sub(b.d.place(other), at)
+		}
 		half := Vec{X: n.X / 2, Y: n.Y / 2, Z: n.Z / 2}
 		return share{other, math.Inf(1), add(at, half)}
 	}

@@ -35,6 +35,11 @@ func contentKey(sites []Vec, o Options) [16]byte {
 		buf = append(buf, key[:]...)
 		number(o.Tolerance)
 	}
+	if IsStretch(o.Stretch) {
+		number(o.Stretch.X)
+		number(o.Stretch.Y)
+		number(o.Stretch.Z)
+	}
 	write(buf)
 	var key [16]byte
 	binary.LittleEndian.PutUint64(key[:8], a.Sum64())

@@ -125,7 +125,7 @@ func (d *Diagram) probeCells() {
 		// early, should the work end the loop.
 		i := int32(uint64(k) * 2654435769 % probeSpan * uint64(n) / probeSpan)
 		p := d.tree.Point(i)
-		b.build(&b.cell, p, add(p, d.origin), i)
+		b.build(&b.cell, p, d.place(i), i)
 		built++
 	}
 	d.offered = float64(b.offered) / float64(built)

@@ -3,6 +3,7 @@ package voronoi
 import (
 	"math"
 	"runtime"
+	"slices"
 	"sync"
 
 	"nearcell/voronoi/index"
@@ -24,6 +25,14 @@ type Diagram struct {
 	key    [16]byte
 	facts  Facts
 	origin Vec
+
+	// Distances are stretched; then the tree's points are, too, and places are where
+	// the sites of the cells truly stand. plain is the index of these for true distances.
+	stretched bool
+	stretch   Vec
+	places    []Vec
+	plain     *index.Tree
+	plainOf   []int32 // by cell: its number there
 
 	// Distinct sites that take part are numbered by the tree's order, which depends
 	// on their coordinates alone. In the code such a number is called a cell.
@@ -48,7 +57,8 @@ func New(sites []Vec, o Options) (*Diagram, error) {
 	if err := check(sites, o); err != nil {
 		return nil, err
 	}
-	d := &Diagram{solid: o.Solid, threads: o.Threads, progress: o.Progress, memory: o.Memory}
+	d := &Diagram{solid: o.Solid, threads: o.Threads, progress: o.Progress, memory: o.Memory,
+		stretched: IsStretch(o.Stretch), stretch: o.Stretch}
 	if d.threads <= 0 {
 		d.threads = runtime.GOMAXPROCS(0)
 	}
@@ -58,8 +68,9 @@ func New(sites []Vec, o Options) (*Diagram, error) {
 	d.sort(sites, o.Tolerance, inside)
 	first, groups := distinct(sites, inside)
 	d.facts.Groups = groups
-	d.build(sites, first)
-	d.survey()
+	if err := d.build(sites, first); err != nil {
+		return nil, err
+	}
 	return d, nil
 }
 
@@ -77,6 +88,9 @@ func check(sites []Vec, o Options) error {
 				return &NotFiniteError{i, axis, x}
 			}
 		}
+	}
+	if err := checkStretch(o.Stretch); err != nil {
+		return err
 	}
 	if !(o.Tolerance >= 0) || math.IsInf(o.Tolerance, 0) {
 		return &ToleranceError{o.Tolerance}
@@ -112,7 +126,7 @@ func (d *Diagram) sort(sites []Vec, tolerance float64, inside []bool) {
 
 // build shifts the distinct sites and makes the index. first[i] is the
 // representative of site i, -1 for a site outside.
-func (d *Diagram) build(sites []Vec, first []int32) {
+func (d *Diagram) build(sites []Vec, first []int32) error {
 	n := 0
 	for i, f := range first {
 		if f == int32(i) {
@@ -134,8 +148,39 @@ func (d *Diagram) build(sites []Vec, first []int32) {
 	for i := range places {
 		places[i] = sub(places[i], d.origin)
 	}
+	d.survey(places)
+	if d.stretched {
+		if err := d.buildStretched(places, first, representative); err != nil {
+			return err
+		}
+		return nil
+	}
 	d.tree = index.New(places)
 	d.number(first, representative)
+	return nil
+}
+
+// buildStretched makes the index of the stretched places, and beside it that of the
+// places as they are.
+func (d *Diagram) buildStretched(places []Vec, first, representative []int32) error {
+	d.plain = index.New(places)
+	truly := slices.Clone(places)
+	if err := d.stretchAll(places, representative); err != nil {
+		return err
+	}
+	d.tree = index.New(places)
+	d.number(first, representative)
+	n := d.tree.Len()
+	back := make([]int32, n) // number among the places to that in plain
+	for i := range int32(n) {
+		back[d.plain.Original(i)] = i
+	}
+	d.places, d.plainOf = make([]Vec, n), make([]int32, n)
+	for i := range int32(n) {
+		k := d.tree.Original(i)
+		d.places[i], d.plainOf[i] = add(truly[k], d.origin), back[k]
+	}
+	return nil
 }
 
 // number links sites and cells.
@@ -212,11 +257,15 @@ func (d *Diagram) Solid() solid.Solid { return d.solid }
 
 // Nearest is the site nearest to p among those that take part, the
 // representative of its group, and the distance; -1 and +Inf if none takes part.
-// Sites equally near are told apart by their coordinates alone.
+// Sites equally near are told apart by their coordinates alone. With stretched
+// distances it is the site nearest in these; the distance is the true one.
 func (d *Diagram) Nearest(p Vec) (site int32, distance float64) {
-	i, d2 := d.tree.Nearest(sub(p, d.origin))
+	i, d2 := d.tree.Nearest(d.local(p))
 	if i < 0 {
 		return -1, math.Inf(1)
+	}
+	if d.stretched {
+		return d.site[i], length(sub(d.places[i], p))
 	}
 	return d.site[i], math.Sqrt(d2)
 }

@@ -54,9 +54,9 @@ func exactShift(places []Vec, coordinate func(Vec) float64) float64 {
 	return x0
 }
 
-// survey fills the facts about the shape of the set of sites.
-func (d *Diagram) survey() {
-	p := d.tree.Points()
+// survey fills the facts about the shape of the set of sites, given as distinct places
+// shifted by the origin.
+func (d *Diagram) survey(p []Vec) {
 	d.facts.Dimension = dimension(p)
 	d.facts.Extent = extent(p)
 	// A sheet is thinner than the distance between its sites.

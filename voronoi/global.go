@@ -33,7 +33,7 @@ func (d *Diagram) dual(ctx context.Context) (*dual, error) {
 	if err != nil {
 		return nil, err
 	}
-	if d.isBox {
+	if d.isBox && !d.stretched {
 		g.enclose(d.lo, d.hi, d.origin, d.labels, d.threads)
 	}
 	d.whole = g
@@ -70,7 +70,13 @@ func (b *builder) take(cell int32, k wants) (summed, bounded bool) {
 	w, d := b.walker, b.d
 	w.star(w.g.point[cell])
 	p := d.tree.Point(cell)
-	at := add(p, d.origin)
+	at := d.place(cell)
+	if d.stretched { // the sums of faces hold where these stand upright on the lines between sites
+		b.knowNeighbours()
+		bounded = b.build(&b.cell, p, at, cell)
+		b.known = false
+		return false, bounded
+	}
 	if d.solid == nil {
 		if w.sound() {
 			w.whole(k)
@@ -154,8 +160,11 @@ func (b *builder) measureGlobal(cell int32, want Measures, out *Cells, row int32
 	summed, bounded := b.take(cell, k)
 	if want&NearestFace != 0 {
 		out.NearestFace[row] = math.Sqrt(w.near2) / 2
+		if d.stretched {
+			out.NearestFace[row] = d.nearestFace(cell, b)
+		}
 	}
-	at := add(d.tree.Point(cell), d.origin)
+	at := d.place(cell)
 	switch {
 	case !bounded:
 		measureUnbounded(&b.cell, want, out, row)
@@ -177,7 +186,7 @@ func (b *builder) measureGlobal(cell int32, want Measures, out *Cells, row int32
 func (b *builder) shapeAnew(cell int32, out *Cells, row int32) {
 	p := b.d.tree.Point(cell)
 	b.knowNeighbours()
-	b.build(&b.cell, p, add(p, b.d.origin), cell)
+	b.build(&b.cell, p, b.d.place(cell), cell)
 	b.known = false
 	shape(&b.cell, Faces, out, row)
 }
@@ -230,7 +239,7 @@ func (s *cellSums) fill(at Vec, want Measures, out *Cells, row int32) {
 func (b *builder) sharesGlobal(cell int32) ([]share, error) {
 	d, w := b.d, b.walker
 	summed, bounded := b.take(cell, wants{moments: true, middles: true})
-	at := add(d.tree.Point(cell), d.origin)
+	at := d.place(cell)
 	if !summed {
 		return b.sharesOf(at, bounded)
 	}

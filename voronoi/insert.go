@@ -9,7 +9,7 @@ import "nearcell/voronoi/polyhedron"
 //
 // In a convex solid the cell is cut by the solid; in any other it is cut by the
 // solid's bounding box only, and Solid.Measure tells what of it lies inside. For a
-// p outside the solid c can be empty.
+// p outside the solid c can be empty. The cell is in true units, whatever the distances.
 //
 // It fails with *NotFiniteError (its site is then -1).
 func (d *Diagram) Insert(p Vec, c *polyhedron.Cell) error {
@@ -21,7 +21,7 @@ func (d *Diagram) Insert(p Vec, c *polyhedron.Cell) error {
 	b := d.builder()
 	defer d.free(b)
 	p = positive(p)
-	local := sub(p, d.origin)
+	local := d.local(p)
 	self := int32(-1)
 	if i, d2 := d.tree.Nearest(local); d2 == 0 && d.tree.Point(i) == local {
 		self = i

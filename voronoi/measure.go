@@ -119,10 +119,14 @@ func (b *builder) measure(cell int32, want Measures, out *Cells, row int32) erro
 	d := b.d
 	p := d.tree.Point(cell)
 	if want&NearestFace != 0 {
-		b.used.Reset()
-		b.used.Add(cell)
-		_, d2, _ := d.tree.NearestWithin(p, math.Inf(1), b.used)
-		out.NearestFace[row] = math.Sqrt(d2) / 2
+		if d.stretched {
+			out.NearestFace[row] = d.nearestFace(cell, b)
+		} else {
+			b.used.Reset()
+			b.used.Add(cell)
+			_, d2, _ := d.tree.NearestWithin(p, math.Inf(1), b.used)
+			out.NearestFace[row] = math.Sqrt(d2) / 2
+		}
 	}
 	if want&Bounded != 0 {
 		out.Bounded[row] = true // until the cell proves otherwise
@@ -130,7 +134,7 @@ func (b *builder) measure(cell int32, want Measures, out *Cells, row int32) erro
 	if !d.needsCell(want) {
 		return nil
 	}
-	at := add(p, d.origin)
+	at := d.place(cell)
 	bounded := b.build(&b.cell, p, at, cell)
 	switch {
 	case !bounded:

@@ -14,6 +14,9 @@ type Options struct {
 	Solid solid.Solid
 	// Tolerance is how far outside the solid a site may lie and still take part.
 	Tolerance float64
+	// Stretch multiplies distances along x, y and z before they are compared; the zero
+	// value leaves them as they are. All measures are in true units.
+	Stretch Vec
 	// Threads is how many goroutines compute cells; 0: as many as there are
 	// processors. The results are the same for any number.
 	Threads int
