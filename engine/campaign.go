@@ -47,7 +47,7 @@ func (s *Session) campaignTable(st *statement, t *lang.CreateData, c *clauses, r
 		return nil, err
 	}
 	object.Options = catalog.CampaignOptions{
-		LengthUnit: unit, Within: c.within, Zones: c.zones, Duplicates: c.duplicates, Tolerance: c.tolerance,
+		LengthUnit: unit, Within: c.within, Zones: c.zones, Stretched: c.stretched, Duplicates: c.duplicates, Tolerance: c.tolerance,
 	}
 	table := campaignLayout(placed, id, idColumn, used)
 	for i := 1; i <= 3; i++ {

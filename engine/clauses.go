@@ -32,6 +32,7 @@ type clauses struct {
 	unitAt     lang.Node
 	duplicates string
 	tolerance  float64
+	stretched  [3]float64
 	file       reader.Options
 	fileClause lang.Node // one of the clauses that only a file can have
 	refusedTo  *lang.Text
@@ -84,6 +85,8 @@ func (c *clauses) read(r lang.Reading) (err error) {
 	case *lang.WithinClause:
 		c.withinAt = r
 		err = c.readWithin(r)
+	case *lang.StretchedClause:
+		c.stretched, err = bind.Stretch(c.s.bindEnv(c.st), r)
 	case *lang.DuplicatesReading:
 		c.duplicates = string(r.Policy)
 	case *lang.ToleranceReading:
@@ -152,8 +155,6 @@ func (c *clauses) readFile(r lang.Reading) (err error) {
 		err = problem.NotThereYet(c.st.at(r), "CENSORED")
 	case *lang.UnpivotReading:
 		c.unpivot = r
-	case *lang.StretchedClause:
-		err = problem.NotThereYet(c.st.at(r), "STRETCHED")
 	default:
 		err = problem.NotThereYet(c.st.at(r), "this clause")
 	}

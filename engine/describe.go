@@ -103,8 +103,12 @@ func (s *Session) describeOrigin(st *statement, o *catalog.Object) {
 		if w := withinOf(o); w != "" {
 			within = "WITHIN " + w
 		}
-		st.notes.Add(note.Note, note.Sites, "%s, DUPLICATES %s, TOLERANCE %s, coordinates in %s",
-			within, duplicatesOf(o), s.number(o.Options.Tolerance), lengthUnitOf(o))
+		stretched := ""
+		if k := o.Options.Stretched; k != [3]float64{} {
+			stretched = fmt.Sprintf(", STRETCHED (%s, %s, %s)", s.number(k[0]), s.number(k[1]), s.number(k[2]))
+		}
+		st.notes.Add(note.Note, note.Sites, "%s%s, DUPLICATES %s, TOLERANCE %s, coordinates in %s",
+			within, stretched, duplicatesOf(o), s.number(o.Options.Tolerance), lengthUnitOf(o))
 	}
 }
 

@@ -66,3 +66,22 @@ func DualLength(a, b, c, d, e Vec) float64 {
 	p, _ := fineCircumcentre(a, b, c, e)
 	return length(sub(o, p))
 }
+
+// StretchedCentre is the place that is as far from a, b, c, d in distances stretched by s
+// as from one another: the vertex of a stretched diagram, in true units.
+func StretchedCentre(a, b, c, d, s Vec) Vec {
+	return add(a, centreFrom(a, b, c, d, s))
+}
+
+// centreFrom is the same as seen from a.
+func centreFrom(a, b, c, d, s Vec) Vec {
+	from := func(p Vec) Vec { return stretch(sub(p, a), s) }
+	o, _ := fineCircumcentre(Vec{}, from(b), from(c), from(d))
+	return Vec{X: o.X / s.X, Y: o.Y / s.Y, Z: o.Z / s.Z}
+}
+
+// StretchedDualLength is DualLength of a diagram with distances stretched by s: the true
+// length of its edge.
+func StretchedDualLength(a, b, c, d, e, s Vec) float64 {
+	return length(sub(centreFrom(a, b, c, d, s), centreFrom(a, b, c, e, s)))
+}

@@ -7,9 +7,11 @@ import (
 	"strings"
 
 	"nearcell/catalog"
+	"nearcell/catalog/column"
 	"nearcell/engine/problem"
 	"nearcell/engine/relation"
 	"nearcell/lang"
+	"nearcell/voronoi"
 	"nearcell/voronoi/solid"
 )
 
@@ -60,8 +62,44 @@ func (b *binder) inheritZones(rel *relation.Bound, o *catalog.Object) error {
 	return err
 }
 
-// zonesTaken refuses zones of a relation that does not know them.
-func (b *binder) zonesTaken(rel *relation.Bound, r *lang.Relation) error {
+// Stretch are the factors of STRETCHED.
+func Stretch(env *Env, c *lang.StretchedClause) ([3]float64, error) {
+	return newBinder(env).factors(c)
+}
+
+// stretched takes the factors of the distances over.
+func (b *binder) stretched(rel *relation.Bound, c *lang.StretchedClause) error {
+	k, err := b.factors(c)
+	rel.Clauses.Stretch = voronoi.Vec{X: k[0], Y: k[1], Z: k[2]}
+	return err
+}
+
+func (b *binder) factors(c *lang.StretchedClause) (k [3]float64, err error) {
+	for i, e := range [3]lang.Expr{c.X, c.Y, c.Z} {
+		if k[i], err = b.real(e, "a factor of STRETCHED"); err != nil {
+			return k, err
+		}
+		if !(k[i] >= leastFactor && k[i] <= mostFactor) {
+			return k, problem.New("stretched", b.at(e), "a factor of STRETCHED is a number greater than 0, not %s", column.FormatReal(k[i])).
+				WithHint("STRETCHED (1, 1, 5): a metre up counts as five; 1 leaves an axis as it is")
+		}
+	}
+	return k, nil
+}
+
+// Factors beyond these help nobody and cost digits.
+const (
+	leastFactor = 1e-9
+	mostFactor  = 1e9
+)
+
+// spaceTaken refuses zones and stretched distances of a campaign in a relation that does
+// not know them.
+func (b *binder) spaceTaken(rel *relation.Bound, r *lang.Relation) error {
+	if voronoi.IsStretch(rel.Clauses.Stretch) && !slices.Contains(rel.Def.Clauses, "STRETCHED") {
+		return problem.NotThereYet(rel.Place, rel.Def.Noun+" of the stretched distances of "+rel.Name).
+			WithHint("OF (SELECT * FROM %s) WITHIN … has plain distances", rel.Name)
+	}
 	if len(rel.Clauses.Zones) == 0 || rel.Def.Zoned {
 		return nil
 	}

@@ -12,6 +12,7 @@ import (
 	"nearcell/engine/problem"
 	"nearcell/engine/relation"
 	"nearcell/lang"
+	"nearcell/voronoi"
 )
 
 // relation binds a geometric relation as a source without a name.
@@ -211,9 +212,7 @@ func (b *binder) inherit(rel *relation.Bound, o *catalog.Object) error {
 	}
 	rel.Clauses.Tolerance = opt.Tolerance
 	rel.Clauses.Duplicates = opt.Duplicates
-	if opt.Stretched != [3]float64{} && opt.Stretched != [3]float64{1, 1, 1} {
-		return b.laterOption(rel, "STRETCHED of the campaign '"+o.Name+"'")
-	}
+	rel.Clauses.Stretch = voronoi.Vec{X: opt.Stretched[0], Y: opt.Stretched[1], Z: opt.Stretched[2]}
 	if len(opt.Zones) > 0 {
 		return b.inheritZones(rel, o)
 	}
@@ -228,10 +227,6 @@ func (b *binder) inherit(rel *relation.Bound, o *catalog.Object) error {
 	rel.Clauses.SolidName = inner.text(s)
 	rel.Clauses.Solid, err = inner.solid(s)
 	return err
-}
-
-func (b *binder) laterOption(rel *relation.Bound, what string) error {
-	return problem.NotThereYet(rel.Place, what).WithHint("make the campaign anew without it: CREATE OR REPLACE CAMPAIGN …")
 }
 
 // clauses binds the clauses of the relation itself.
@@ -249,6 +244,8 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 		case *lang.UnclippedClause:
 			unclipped = c
 			rel.Clauses.Solid, rel.Clauses.SolidName, rel.Clauses.Zones = nil, "", nil
+		case *lang.StretchedClause:
+			err = b.stretched(rel, c)
 		case *lang.ForEachClause:
 			err = b.forEach(rel, c)
 		case *lang.OmittingClause:
@@ -264,7 +261,7 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 			return err
 		}
 	}
-	if err := b.zonesTaken(rel, r); err != nil {
+	if err := b.spaceTaken(rel, r); err != nil {
 		return err
 	}
 	if within != nil && unclipped != nil {

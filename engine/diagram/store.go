@@ -38,6 +38,12 @@ func KeyOf(sites []voronoi.Vec, o voronoi.Options) Key {
 		buf = append(buf, k[:]...)
 		number(o.Tolerance)
 	}
+	if voronoi.IsStretch(o.Stretch) {
+		buf = append(buf, "stretched"...)
+		number(o.Stretch.X)
+		number(o.Stretch.Y)
+		number(o.Stretch.Z)
+	}
 	h.Write(buf)
 	var key Key
 	copy(key[:], h.Sum(nil))

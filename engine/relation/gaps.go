@@ -18,8 +18,7 @@ var gaps = &Definition{
 	Noun:    "GAPS",
 	RowIs:   "place locally farthest from every site",
 	Meaning: "where nobody measured: each farther from every site than all around it",
-	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
-	Later:   []string{"STRETCHED"},
+	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
 	Zoned:   true,
 	Open:    openGaps,
 	layout:  layoutGaps,
@@ -41,7 +40,7 @@ func init() {
 		gapX:      measure("x", column.Real, 1, 0, "where nobody measured, x"),
 		gapY:      measure("y", column.Real, 1, 0, "where nobody measured, y"),
 		gapZ:      measure("z", column.Real, 1, 0, "where nobody measured, z"),
-		gapRadius: measure("radius", column.Real, 1, 0, "distance from there to the nearest site"),
+		gapRadius: measure("radius", column.Real, 1, 0, "distance from there to the nearest site; STRETCHED: the true one to the truly nearest"),
 		gapA:      measure("a", column.Text, 0, 0, "identifier of the nearest site; of several as near, the first"),
 		gapPlace:  measure("place", column.Text, 0, 0, "'inside', or on a 'wall', 'edge' or 'corner' of the solid"),
 	}

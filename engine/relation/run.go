@@ -10,6 +10,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
 	"nearcell/voronoi"
+	"nearcell/voronoi/solid"
 )
 
 // sites is what the relations over sites share: the arranged input and what is
@@ -27,6 +28,7 @@ type sites struct {
 func newSites(b *Bound, env *Env, input *column.Table, r Request) (*sites, error) {
 	s := &sites{b: b, env: env, input: input, r: r, said: newFindings()}
 	s.order = newOrder(b, input)
+	s.tellStretch()
 	var err error
 	s.parts, err = arrange(b, env, input, s.order, s.said)
 	if err != nil {
@@ -61,7 +63,8 @@ func (s *sites) nobody() error {
 
 // options are those of the diagram of a part: every diagram is made with them.
 func (s *sites) options(p *Part) voronoi.Options {
-	return voronoi.Options{Solid: p.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads}
+	return voronoi.Options{Solid: p.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads,
+		Stretch: s.b.Clauses.Stretch}
 }
 
 // open gets the diagram of a part and takes note of what its facts say.
@@ -87,6 +90,8 @@ func (s *sites) open(ctx context.Context, p *Part) (*diagram.Handle, error) {
 func (s *sites) refused(err error, p *Part) error {
 	var notFinite *voronoi.NotFiniteError
 	var noVolume *voronoi.NoVolumeError
+	var stretch *voronoi.StretchError
+	var rigid *solid.StretchError
 	name := func(site int) string { return idText(s.order.id, int(p.Rows[p.firstRow(int32(site))])) }
 	switch {
 	case errors.Is(err, context.Canceled), errors.Is(err, context.DeadlineExceeded):
@@ -94,6 +99,14 @@ func (s *sites) refused(err error, p *Part) error {
 	case errors.As(err, &notFinite):
 		return problem.New("no-position", s.b.Place, "the coordinate %c = %s of site %s is too large to compute with",
 			'x'+rune(notFinite.Axis), column.FormatReal(notFinite.X), name(notFinite.Site))
+	case errors.As(err, &stretch) && stretch.A >= 0:
+		return problem.New("stretched", s.b.Place, "sites %s and %s are so near each other that they are one place when STRETCHED",
+			name(stretch.A), name(stretch.B)).WithHint("OMITTING one of them, or factors that are powers of two, which round nothing")
+	case errors.As(err, &stretch):
+		return problem.New("stretched", s.b.Place, "the factors (%s, %s, %s) of STRETCHED are too large or too small to compute with",
+			column.FormatReal(stretch.Factor.X), column.FormatReal(stretch.Factor.Y), column.FormatReal(stretch.Factor.Z))
+	case errors.As(err, &rigid):
+		return problem.New("stretched", s.b.Place, "%s is a %s, in which stretched distances have no %s yet", s.b.Clauses.SolidName, rigid.Kind, s.b.Def.Noun)
 	case errors.As(err, &noVolume):
 		return problem.New("no-volume", s.b.Place, "%s has no volume", s.b.Clauses.SolidName)
 	}

@@ -137,7 +137,7 @@ func (r *simplexRows) part(ctx context.Context, p *Part, out *simplexBatch) erro
 	if err != nil {
 		return r.refused(err, p)
 	}
-	if d := t.Dimension(); d < 3 {
+	if d := min(t.Dimension(), h.Facts().Dimension); d < 3 {
 		r.flat[d]++
 		return nil
 	}
@@ -241,6 +241,9 @@ func (r *simplexRows) flush(out *simplexBatch) error {
 // tell writes the notes.
 func (r *simplexRows) tell() {
 	r.sites.tell()
+	if r.stretched() && r.b.Def != vertices {
+		r.env.Notes.Add(note.Note, note.Sites, "which rows %s has is told by stretched distances; what they say of size, shape and spheres is that of the true places", r.b.Title())
+	}
 	for d, what := range [...]string{"stand in one place", "lie on one line", "lie in one plane"} {
 		n := r.flat[d]
 		switch {

@@ -13,8 +13,7 @@ var triangles = &Definition{
 	Noun:    "TRIANGLES",
 	RowIs:   "Delaunay triangle",
 	Meaning: "the faces of the Delaunay tetrahedra; each crosses one edge of the cells",
-	Clauses: []string{"UNCLIPPED", "FOR EACH", "OMITTING"},
-	Later:   []string{"STRETCHED"},
+	Clauses: []string{"UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
 	Zoned:   true,
 	Open:    openSimplices(&triangleKind),
 	layout:  simplexLayout(&triangleKind),
@@ -76,7 +75,7 @@ func fillTriangle(r *simplexRows, p *Part, t *delaunay.T, s *simplex, out []colu
 	if !onHull {
 		// The two opposite corners in an order of their own: no numbering shows.
 		d, e := r.site(t.Tet(int(s.tet))[s.face]), r.site(t.Tet(other)[corner])
-		dual = voronoi.DualLength(a, b, c, p.Sites[min(d, e)], p.Sites[max(d, e)])
+		dual = r.dualLength(a, b, c, p.Sites[min(d, e)], p.Sites[max(d, e)])
 	}
 	number(&out[triangleDual], row, dual)
 }

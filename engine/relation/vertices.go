@@ -1,7 +1,10 @@
 package relation
 
 import (
+	"math"
 	"strconv"
+
+	"gonum.org/v1/gonum/spatial/r3"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/note"
@@ -15,8 +18,7 @@ var vertices = &Definition{
 	Noun:    "VERTICES",
 	RowIs:   "Voronoi vertex",
 	Meaning: "the places as far from four sites as from no other: centres of the spheres of TETRAHEDRA, with the same a, b, c, d",
-	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
-	Later:   []string{"STRETCHED"},
+	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
 	Zoned:   true,
 	Open:    openSimplices(&vertexKind),
 	layout:  simplexLayout(&vertexKind),
@@ -42,7 +44,7 @@ func init() {
 		vertexX:       measure("x", column.Real, 1, 0, "the place, x"),
 		vertexY:       measure("y", column.Real, 1, 0, "the place, y"),
 		vertexZ:       measure("z", column.Real, 1, 0, "the place, z"),
-		vertexRadius:  measure("radius", column.Real, 1, 0, "its distance to each of the four sites"),
+		vertexRadius:  measure("radius", column.Real, 1, 0, "its distance to each of the four sites; STRETCHED: the true one to the nearest of them"),
 		vertexA:       measure("a", column.Text, 0, 0, "identifier of the first site"),
 		vertexB:       measure("b", column.Text, 0, 0, "identifier of the second site"),
 		vertexC:       measure("c", column.Text, 0, 0, "identifier of the third site"),
@@ -52,21 +54,47 @@ func init() {
 }
 
 func fillVertex(r *simplexRows, p *Part, t *delaunay.T, s *simplex, out []column.Vector, row int) {
-	m := p.tetrahedron(s)
-	number(&out[vertexX], row, m.Centre.X)
-	number(&out[vertexY], row, m.Centre.Y)
-	number(&out[vertexZ], row, m.Centre.Z)
-	number(&out[vertexRadius], row, m.Radius)
+	centre, radius := r.vertex(p, s)
+	number(&out[vertexX], row, centre.X)
+	number(&out[vertexY], row, centre.Y)
+	number(&out[vertexZ], row, centre.Z)
+	number(&out[vertexRadius], row, radius)
 	if v := &out[vertexInSolid]; v.Type != column.Null {
 		if p.Solid == nil {
 			v.SetNull(row)
-		} else if p.Solid.Side(m.Centre, 0) != solid.Outside {
+		} else if p.Solid.Side(centre, 0) != solid.Outside {
 			column.SetBit(v.Bits, row)
 		}
 	}
 	if r.coincides(p, t, s) {
 		r.coincident++
 	}
+}
+
+// vertex is the place as far from the four sites as from one another, and the distance:
+// of stretched distances the true one to the nearest of the four.
+func (r *simplexRows) vertex(p *Part, s *simplex) (centre voronoi.Vec, radius float64) {
+	if !r.stretched() {
+		m := p.tetrahedron(s)
+		return m.Centre, m.Radius
+	}
+	c := &s.corner
+	centre = voronoi.StretchedCentre(p.Sites[c[0]], p.Sites[c[1]], p.Sites[c[2]], p.Sites[c[3]], r.b.Clauses.Stretch)
+	radius = math.Inf(1)
+	for _, site := range c {
+		at := p.Sites[site]
+		radius = min(radius, r3.Norm(r3.Sub(centre, at)))
+	}
+	return centre, radius
+}
+
+// dualLength is the true length of the edge that the cells of a, b and c share, from the
+// vertex that they have with d to that with e.
+func (r *simplexRows) dualLength(a, b, c, d, e voronoi.Vec) float64 {
+	if r.stretched() {
+		return voronoi.StretchedDualLength(a, b, c, d, e, r.b.Clauses.Stretch)
+	}
+	return voronoi.DualLength(a, b, c, d, e)
 }
 
 // samePlace is the share of its radius by which two vertices may be apart and count as
@@ -91,7 +119,7 @@ func (r *simplexRows) coincides(p *Part, t *delaunay.T, s *simplex) bool {
 		a, b, c := own[(k+1)%4], own[(k+2)%4], own[(k+3)%4]
 		at := func(i int32) voronoi.Vec { return p.Sites[r.site(i)] }
 		theirs := opposite(t.Tet(other), a, b, c)
-		if voronoi.DualLength(at(a), at(b), at(c), at(own[k]), at(theirs)) <= samePlace*p.tetrahedron(s).Radius {
+		if _, radius := r.vertex(p, s); r.dualLength(at(a), at(b), at(c), at(own[k]), at(theirs)) <= samePlace*radius {
 			return true
 		}
 	}

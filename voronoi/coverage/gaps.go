@@ -54,6 +54,9 @@ type Options struct {
 	// Progress is told now and then how many cells are done, from one goroutine at
 	// a time. It may be nil.
 	Progress func(done, total int)
+	// Within has the gaps looked for in this part of the solid alone: places of it that
+	// are farther from every site than all around them in it. Nil: the whole solid.
+	Within solid.Divided
 }
 
 var (
@@ -78,9 +81,15 @@ func (e *UndividedError) Error() string {
 // centre of the largest empty sphere with its centre in the solid (Toussaint 1983 in
 // the plane).
 //
+// With stretched distances the places are the peaks of these; the radius is the true
+// distance to the site that is truly nearest.
+//
 // The error is ErrSites, an *[UndividedError], or that of ctx.
 func Gaps(ctx context.Context, d *voronoi.Diagram, sites []Vec, o Options) ([]Gap, error) {
-	s, err := newSearch(d, sites)
+	if voronoi.IsStretch(d.Stretch()) {
+		return stretchedGaps(ctx, d, sites, o)
+	}
+	s, err := newSearch(d, sites, o)
 	if err != nil {
 		return nil, err
 	}
@@ -107,12 +116,19 @@ type search struct {
 	grain float64
 }
 
-func newSearch(d *voronoi.Diagram, sites []Vec) (*search, error) {
+func newSearch(d *voronoi.Diagram, sites []Vec, o Options) (*search, error) {
 	if len(sites) != d.Len() {
 		return nil, ErrSites
 	}
 	s := &search{d: d, sites: sites}
-	if body := d.Solid(); body != nil {
+	switch body := d.Solid(); {
+	case o.Within != nil:
+		part, err := within(body, o.Within)
+		if err != nil {
+			return nil, err
+		}
+		s.solid, s.corners = part, part.Corners()
+	case body != nil:
 		divided, ok := body.(solid.Divided)
 		if !ok {
 			return nil, &UndividedError{body.Facts().Kind}

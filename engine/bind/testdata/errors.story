@@ -143,14 +143,14 @@ input:1: WITHIN and UNCLIPPED say the opposite of each other
 plan
 SELECT * FROM CELLS OF hall METHOD SIBSON
 ----
-input:1: CELLS takes no METHOD (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING)
+input:1: CELLS takes no METHOD (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, STRETCHED)
   SELECT * FROM CELLS OF hall METHOD SIBSON
                               ^^^^^^^^^^^^^
 
 plan
 SELECT * FROM CELLS OF hall AT z = 1.1
 ----
-input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING)
+input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, STRETCHED)
   SELECT * FROM CELLS OF hall AT z = 1.1
                               ^^^^^^^^^^
 
@@ -620,3 +620,22 @@ SELECT * FROM CELLS OF hall WITHIN (air, BOX (20,0,0) TO (40,10,5))
 input:1: the zones air and BOX (20,0,0) TO (40,10,5) overlap: 500 m³ lie in both and would count twice
   SELECT * FROM CELLS OF hall WITHIN (air, BOX (20,0,0) TO (40,10,5))
                                            ^^^^^^^^^^^^^^^^^^^^^^^^^
+
+plan
+SELECT * FROM CELLS OF hall STRETCHED (1, 1, 0)
+----
+input:1: a factor of STRETCHED is a number greater than 0, not 0 (STRETCHED (1, 1, 5): a metre up counts as five; 1 leaves an axis as it is)
+  SELECT * FROM CELLS OF hall STRETCHED (1, 1, 0)
+                                               ^
+
+plan
+SELECT * FROM CELLS OF hall STRETCHED (1, -5, 1)
+----
+input:1: a factor of STRETCHED is a number greater than 0, not -5 (STRETCHED (1, 1, 5): a metre up counts as five; 1 leaves an axis as it is)
+  SELECT * FROM CELLS OF hall STRETCHED (1, -5, 1)
+                                            ^^
+
+plan
+SELECT * FROM CELLS OF hall STRETCHED (1, 'a', 1)
+----
+syntax: expected y but found the text 'a'

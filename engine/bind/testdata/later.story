@@ -22,25 +22,11 @@ input:1: the column 'hidden' of CELLS OF hall is not there yet
          ^^^^^^
 
 plan
-SELECT * FROM CELLS OF hall STRETCHED (1, 1, 5)
-----
-input:1: STRETCHED is not there yet
-  SELECT * FROM CELLS OF hall STRETCHED (1, 1, 5)
-                              ^^^^^^^^^^^^^^^^^^^
-
-plan
 SELECT * FROM CELLS OF hall MEASURED IN (racks)
 ----
 input:1: MEASURED IN is not there yet
   SELECT * FROM CELLS OF hall MEASURED IN (racks)
                               ^^^^^^^^^^^^^^^^^^^
-
-plan
-SELECT * FROM CELLS OF stretched
-----
-input:1: STRETCHED of the campaign 'stretched' is not there yet (make the campaign anew without it: CREATE OR REPLACE CAMPAIGN …)
-  SELECT * FROM CELLS OF stretched
-                         ^^^^^^^^^
 
 plan
 SELECT * FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH)

@@ -15,6 +15,12 @@ var ofSites = []Entry{
 		Example: "SELECT id, zone FROM CELLS OF hall WITHIN (air, BOX (20,0,0) TO (40,10,5));",
 	},
 	{
+		Code:    "stretched",
+		Meaning: "A factor of STRETCHED is not a number greater than 0, or sites or solid cannot be stretched by it.",
+		WayOut:  "STRETCHED (1, 1, 5) has a metre up count as five; 1 leaves an axis as it is.",
+		Example: "SELECT id FROM CELLS OF hall STRETCHED (1, 1, 0);",
+	},
+	{
 		Code:    "no-place",
 		Meaning: "A site of a new campaign has no coordinate.",
 		WayOut:  "Mend the file, or leave the row out: REFUSED TO for a file, WHERE … IS NOT NULL for a query.",
