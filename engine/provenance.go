@@ -57,10 +57,11 @@ type provenanceInput struct {
 
 // provenanceOptions are the clauses of a campaign, those not said included.
 type provenanceOptions struct {
-	Within      string  `json:"within,omitempty"`
-	Duplicates  string  `json:"duplicates"`
-	Tolerance   float64 `json:"tolerance"`
-	Coordinates string  `json:"coordinates"`
+	Within      string      `json:"within,omitempty"` // zones in parentheses
+	Stretched   *[3]float64 `json:"stretched,omitempty"`
+	Duplicates  string      `json:"duplicates"`
+	Tolerance   float64     `json:"tolerance"`
+	Coordinates string      `json:"coordinates"`
 }
 
 type provenanceFile struct {
@@ -156,8 +157,11 @@ func (s *Session) inputs(tree lang.Node) []provenanceInput {
 		in := provenanceInput{Name: o.Name, Kind: o.Kind.String(), Text: o.Text, Rows: o.Rows, Created: o.Created}
 		if o.Kind == catalog.Campaign {
 			in.Options = &provenanceOptions{
-				Within: o.Options.Within, Duplicates: duplicatesOf(o), Tolerance: o.Options.Tolerance,
+				Within: withinOf(o), Duplicates: duplicatesOf(o), Tolerance: o.Options.Tolerance,
 				Coordinates: lengthUnitOf(o),
+			}
+			if o.Options.Stretched != [3]float64{} {
+				in.Options.Stretched = &o.Options.Stretched
 			}
 		}
 		for _, f := range o.Sources {
@@ -203,6 +207,9 @@ func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
 			s.followSolid(o.Text, found)
 		case catalog.Campaign:
 			s.followSolid(o.Options.Within, found)
+			for _, z := range o.Options.Zones {
+				s.followSolid(z, found)
+			}
 		}
 	}
 	lang.Walk(tree, func(n lang.Node) bool {
@@ -215,6 +222,10 @@ func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
 			add(n.Name)
 		case *lang.EnvelopeSolid:
 			add(n.Of)
+		case *lang.MeasuredInClause:
+			for _, part := range n.Parts {
+				add(part)
+			}
 		}
 		return true
 	})
