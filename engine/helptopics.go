@@ -229,6 +229,15 @@ func functionTopics() []topic {
 				forExample(p, "SELECT "+f.Example+" FROM CELLS OF hall;")
 			}})
 	}
+	for _, f := range function.Windows() {
+		list = append(list, topic{name: f.Name, kind: "a function of a row among others", summary: sentence(f.Meaning),
+			write: func(p *page) {
+				p.verbatim(f.Signature)
+				p.say(sentence(f.Meaning))
+				forExample(p, "SELECT id, "+f.Example+" FROM hall;")
+				p.say("OVER says among which rows: HELP OVER.")
+			}})
+	}
 	return list
 }
 

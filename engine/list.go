@@ -185,6 +185,9 @@ func (s *Session) listFunctions() (*column.Table, error) {
 	for _, f := range function.Aggregates() {
 		r.add(column.String(f.Name), column.String("aggregate"), column.String(f.Signature), column.String(f.Meaning))
 	}
+	for _, f := range function.Windows() {
+		r.add(column.String(f.Name), column.String("window"), column.String(f.Signature), column.String(f.Meaning))
+	}
 	return r.table(), nil
 }
 

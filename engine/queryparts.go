@@ -116,8 +116,13 @@ func queryExpressions() []entry {
 		},
 		{
 			name: "OVER", also: []string{"WINDOW", "PARTITION BY", "ROWS BETWEEN"},
-			syntax:  []string{"AVG(x) OVER (PARTITION BY item ORDER BY item ROWS BETWEEN n PRECEDING AND CURRENT ROW)"},
-			meaning: "Computes an aggregate for every row over the rows around it.",
+			syntax: []string{"function(…) [FILTER (WHERE condition)] [WEIGHTED BY weight] OVER ([PARTITION BY item, …] [ORDER BY item, …] [frame])",
+				"frame: ROWS | RANGE start, or ROWS | RANGE BETWEEN start AND end",
+				"start, end: UNBOUNDED PRECEDING, n PRECEDING, CURRENT ROW, n FOLLOWING, UNBOUNDED FOLLOWING"},
+			meaning: "Computes a function for every row over the rows around it: an aggregate, or ROW_NUMBER, RANK, LAG and others of HELP FUNCTIONS. " +
+				"PARTITION BY makes parts that know nothing of each other. The frame says which rows of the part count: ROWS counts rows, RANGE goes by the key of ORDER BY, " +
+				"such as RANGE INTERVAL '1' HOUR PRECEDING. Without a frame it is all rows up to the current one and its equals, without ORDER BY the whole part. " +
+				"OVER stands in SELECT and ORDER BY, and is computed after GROUP BY and HAVING.",
 			example: "SELECT logger, t, AVG(temp) OVER (PARTITION BY logger ORDER BY t) FROM log;",
 		},
 		{

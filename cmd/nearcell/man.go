@@ -124,6 +124,10 @@ func (p *page) language() {
 	for _, f := range function.Aggregates() {
 		p.item(f.Signature, f.Meaning)
 	}
+	p.heading("WINDOW FUNCTIONS")
+	for _, f := range function.Windows() {
+		p.item(f.Signature, f.Meaning)
+	}
 }
 
 // callOf is how a command is called; the library's own has its shells below it.

@@ -15,7 +15,10 @@ import (
 // call binds a function or an aggregate.
 func (x *exprs) call(c *lang.Call) (expr.Expr, error) {
 	if c.Over != nil {
-		return nil, x.notYet(c.Over, "OVER (…)").WithHint("group in a query of its own and JOIN it")
+		return x.over(c)
+	}
+	if fn := function.LookupWindow(c.Name.Text); fn != nil {
+		return nil, problem.New("window", x.at(c), "%s needs OVER (…), which says among which rows", fn.Name).WithHint("%s", fn.Signature)
 	}
 	if fn := function.LookupAggregate(c.Name.Text); fn != nil {
 		return x.aggregate(c, fn)
@@ -143,34 +146,39 @@ func (x *exprs) aggregate(c *lang.Call, fn *function.Aggregate) (expr.Expr, erro
 	inner := *x
 	inner.within, inner.aliases = fn.Name, nil
 	call := plan.Call{Fn: fn, Distinct: c.Distinct, Place: x.at(c), Text: x.text(c)}
-	var err error
-	if call.Args, err = inner.all(c.Args); err != nil {
-		return nil, err
-	}
-	if c.Filter != nil {
-		f := inner
-		f.clause = "FILTER"
-		if call.Filter, err = f.condition(c.Filter); err != nil {
-			return nil, err
-		}
-	}
-	if c.Weight != nil {
-		if call.Weight, err = inner.bind(c.Weight); err != nil {
-			return nil, err
-		}
-	}
-	for _, k := range c.OrderBy {
-		e, err := inner.bind(k.Expr)
-		if err != nil {
-			return nil, err
-		}
-		call.OrderBy = append(call.OrderBy, sortKey(e, k))
-	}
-	result, err := x.checked(c, &call)
+	result, err := inner.aggregateParts(c, &call)
 	if err != nil {
 		return nil, err
 	}
 	return x.group.call(x, call, column.Field{Name: call.Text, Type: result.Type, Unit: result.Unit}), nil
+}
+
+// aggregateParts binds the arguments of an aggregate and what follows it.
+func (x *exprs) aggregateParts(c *lang.Call, call *plan.Call) (function.Result, error) {
+	var err error
+	if call.Args, err = x.all(c.Args); err != nil {
+		return function.Result{}, err
+	}
+	if c.Filter != nil {
+		f := *x
+		f.clause = "FILTER"
+		if call.Filter, err = f.condition(c.Filter); err != nil {
+			return function.Result{}, err
+		}
+	}
+	if c.Weight != nil {
+		if call.Weight, err = x.bind(c.Weight); err != nil {
+			return function.Result{}, err
+		}
+	}
+	for _, k := range c.OrderBy {
+		e, err := x.bind(k.Expr)
+		if err != nil {
+			return function.Result{}, err
+		}
+		call.OrderBy = append(call.OrderBy, sortKey(e, k))
+	}
+	return x.checked(c, call)
 }
 
 // aggregateClauses checks what follows an aggregate against what it takes.
@@ -224,17 +232,27 @@ func (x *exprs) checked(c *lang.Call, call *plan.Call) (function.Result, error) 
 		}
 		return result, x.faulty(err, at, call.Args)
 	}
-	for i, t := range result.Args {
-		if i < len(call.Args) && call.Args[i].Type() != t {
-			if call.Args[i], err = x.made(c)(expr.NewCast(call.Args[i], t, call.Args[i].Place())); err != nil {
-				return result, err
-			}
-		}
+	if err := x.castArgs(c, call.Args, result.Args); err != nil {
+		return result, err
 	}
 	if call.Weight != nil && call.Weight.Type() == column.Integer {
 		call.Weight, err = x.made(c)(expr.NewCast(call.Weight, column.Real, call.Weight.Place()))
 	}
 	return result, err
+}
+
+// castArgs casts arguments to the types that the function wants.
+func (x *exprs) castArgs(c *lang.Call, args []expr.Expr, types []column.Type) error {
+	for i, t := range types {
+		if i < len(args) && args[i].Type() != t {
+			cast, err := x.made(c)(expr.NewCast(args[i], t, args[i].Place()))
+			if err != nil {
+				return err
+			}
+			args[i] = cast
+		}
+	}
+	return nil
 }
 
 func argument(e expr.Expr) function.Arg {

@@ -11,11 +11,14 @@
 //
 // A SELECT becomes
 //
-//	FROM -> filter WHERE -> [aggregate -> filter HAVING] -> project -> [distinct] -> [sort] -> [limit]
+//	FROM -> filter WHERE -> [aggregate -> filter HAVING] -> [windows] -> project -> [distinct] -> [sort] -> [limit]
 //
 // with hidden columns behind the shown ones where ORDER BY needs them. Where
 // rows are groups, an expression that equals a key or is an aggregate becomes a
 // column of the aggregation; any other column is an error with a way out.
+//
+// Functions with OVER of one partition and order are computed together. Where rows
+// are groups, what stands in OVER and in its function's brackets speaks of the groups.
 //
 // A relation becomes a node with a relation.Bound. The solid, the tolerance and
 // the other clauses of CREATE CAMPAIGN hold only where OF names the campaign
@@ -52,7 +55,7 @@
 //
 // # Limitations
 //
-// Not there yet: OVER; MESH, BOXES, TERRAIN, PLUS and MINUS. A name of WITH whose
+// Not there yet: MESH, BOXES, TERRAIN, PLUS and MINUS. A name of WITH whose
 // query depends on a row outside cannot be used in a query further inside. Queries
 // stand in no LIMIT, LET or clause of a relation, where a value is needed before
 // any query runs.

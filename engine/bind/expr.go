@@ -17,6 +17,10 @@ type exprs struct {
 	// group is set where rows are groups: in SELECT, HAVING and ORDER BY of a
 	// query with aggregates. Columns then refer to the output of the aggregation.
 	group *grouping
+	// windows is set where OVER may stand: in SELECT and ORDER BY. window names the
+	// function in whose OVER or arguments an expression is being bound.
+	windows *windowing
+	window  string
 	// within names the aggregate whose arguments are being bound.
 	within string
 	// aliases give the items of SELECT by their aliases, where no column has the

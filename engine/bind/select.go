@@ -82,6 +82,7 @@ type selection struct {
 	from   *scope
 	group  *grouping // nil: rows are not grouped
 	items  []item
+	over   *windowing
 	hidden int // sort keys behind the items that are not shown
 }
 
@@ -99,7 +100,7 @@ func (b *binder) selectRows(s *lang.Select, order []*lang.Key) (plan.Node, error
 	if err != nil {
 		return nil, err
 	}
-	c := &selection{binder: b, s: s, from: src.scope}
+	c := &selection{binder: b, s: s, from: src.scope, over: new(windowing)}
 	node := src.node
 	if s.Where != nil {
 		where := &exprs{binder: b, scope: src.scope, clause: "WHERE", hidden: s.Items}
@@ -131,6 +132,13 @@ func (b *binder) selectRows(s *lang.Select, order []*lang.Key) (plan.Node, error
 			node = &plan.Filter{Input: node, Cond: having, Clause: "HAVING"}
 		}
 	}
+	if len(c.over.nodes) > 0 {
+		out, give := c.over.plan(node)
+		node = out
+		for i := range c.items {
+			c.items[i].expr = give(c.items[i].expr)
+		}
+	}
 	return c.output(node, keys), nil
 }
 
@@ -139,6 +147,9 @@ func (c *selection) exprs(clause string) *exprs {
 	x := &exprs{binder: c.binder, scope: c.from, clause: clause, group: c.group, hidden: c.s.Items}
 	if clause != "SELECT" {
 		x.aliases = c.byAlias
+	}
+	if clause != "HAVING" {
+		x.windows = c.over
 	}
 	return x
 }

@@ -56,6 +56,12 @@ func walkCall(c *lang.Call, visit func(lang.Expr)) {
 		walk(k.Expr, visit)
 	}
 	walkAll([]lang.Expr{c.Along, c.AtValue, c.Filter, c.Weight}, visit)
+	if c.Over != nil {
+		walkAll(c.Over.PartitionBy, visit)
+		for _, k := range c.Over.OrderBy {
+			walk(k.Expr, visit)
+		}
+	}
 }
 
 func walkAll(list []lang.Expr, visit func(lang.Expr)) {

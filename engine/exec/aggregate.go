@@ -104,6 +104,20 @@ func (s *aggregateSink) newPart() *aggregatePart {
 }
 
 func newCallState(c *plan.Call, pairs *pairSet) *callState {
+	setup := newSetup(c)
+	state := &callState{call: c, acc: c.Fn.New(setup)}
+	// the first of ordered values is the same whether or not equals are dropped
+	if pairs != nil {
+		state.pairs = &pairPart{set: pairs}
+	} else if c.Distinct && len(c.OrderBy) == 0 {
+		state.distinct = newKeyTable(append([]column.Type{column.Integer}, setup.Args...))
+		state.reader = newKeyReader(state.distinct)
+	}
+	return state
+}
+
+// newSetup is what an aggregate is made for.
+func newSetup(c *plan.Call) function.Setup {
 	setup := function.Setup{Weighted: c.Weight != nil}
 	for _, a := range c.Args {
 		setup.Args = append(setup.Args, a.Type())
@@ -116,15 +130,7 @@ func newCallState(c *plan.Call, pairs *pairSet) *callState {
 	for _, k := range c.OrderBy {
 		setup.Keys = append(setup.Keys, function.Key{Type: k.Expr.Type(), Descending: k.Descending})
 	}
-	state := &callState{call: c, acc: c.Fn.New(setup)}
-	// the first of ordered values is the same whether or not equals are dropped
-	if pairs != nil {
-		state.pairs = &pairPart{set: pairs}
-	} else if c.Distinct && len(c.OrderBy) == 0 {
-		state.distinct = newKeyTable(append([]column.Type{column.Integer}, setup.Args...))
-		state.reader = newKeyReader(state.distinct)
-	}
-	return state
+	return setup
 }
 
 func (p *aggregatePart) Consume(w *Worker, b *column.Batch) error {

@@ -61,6 +61,19 @@ func (r *runner) countShown(n *plan.Relation) *shownRows {
 	return r.shown[n]
 }
 
+// watchWindow is watch for the weights and sums of a window.
+func (r *runner) watchWindow(n *plan.Window) *cellWatch {
+	a := &plan.Aggregate{Input: n.Input}
+	for i := range n.Calls {
+		if n.Calls[i].Fn == nil {
+			c := n.Calls[i].Call
+			c.Distinct = true // of a window whose rows stay apart, none counts a cell twice unseen
+			a.Calls = append(a.Calls, c)
+		}
+	}
+	return r.watch(a)
+}
+
 // count tells a watched step's counter of the rows that came and stayed in a
 // batch. Rows that Parted leaves out do not count: their partition is out as a
 // whole.

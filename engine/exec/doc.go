@@ -28,7 +28,7 @@
 // # What nodes do
 //
 // Filter and Project are steps, Join is a step over its left side with the right
-// side in memory, Aggregate, Sort, Limit and Distinct are sinks, Relation
+// side in memory, Aggregate, Sort, Window, Limit and Distinct are sinks, Relation
 // collects its sites and is a source. Limit stops what feeds it as soon as it has
 // its rows.
 //
@@ -41,6 +41,11 @@
 //   - Sorts are stable. Texts are ordered by their bytes, which for UTF-8 is the
 //     order of code points; FALSE before TRUE; points by x, y, z; Infinity last.
 //   - Distinct keeps the first of equal rows.
+//   - A Window keeps the rows in their order. It parts them by hash, sorts each partition
+//     by itself and shares the partitions out among the workers; one that holds all rows is
+//     the work of one. Frames only move forwards, and a row enters each state twice at most:
+//     the time does not depend on their length (function.Slider). Offsets of RANGE are added
+//     to keys as decimal numbers, so that 0.8 is within 0.1 of 0.7.
 //
 // # Queries in expressions
 //

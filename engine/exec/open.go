@@ -71,6 +71,10 @@ func (r *runner) openSink(ctx context.Context, n plan.Node) (*pipeline, error) {
 		}
 		s.watch = r.watch(n)
 		sink = s
+	case *plan.Window:
+		s := newWindowSink(env, n)
+		s.watch = r.watchWindow(n)
+		sink = s
 	case *plan.Sort:
 		sink = newSortSink(env, n)
 	case *plan.Limit:

@@ -5,10 +5,10 @@ import "nearcell/catalog/column"
 func countAggregates() []*Aggregate {
 	return []*Aggregate{
 		{Name: "COUNT", Signature: "COUNT(*), COUNT([DISTINCT] x)", Meaning: "the number of rows, or of rows where x is not NULL",
-			Example: "COUNT(*)", Star: true, Check: checkCount, New: func(Setup) Accumulator { return &counter{} }},
+			Example: "COUNT(*)", Star: true, Check: checkCount, New: func(Setup) Accumulator { return &counter{} }, Slide: slideCount},
 		{Name: "SHARE", Signature: "SHARE(condition)", Meaning: "the fraction of the rows, or of their weight, for which a condition holds",
 			Example: "SHARE(temp > 8) WEIGHTED BY volume", Weighted: true, Check: checkShare,
-			New: func(s Setup) Accumulator { return &share{tally: tally{weighted: s.Weighted}} }},
+			New: func(s Setup) Accumulator { return &share{tally: tally{weighted: s.Weighted}} }, Slide: slideShare},
 	}
 }
 

@@ -15,7 +15,7 @@ func directionAggregate() *Aggregate {
 	return &Aggregate{Name: "DIRECTION_AVG", Signature: "DIRECTION_AVG(degrees)",
 		Meaning: "the mean of directions in degrees, by vectors, from 0 to below 360 (Mardia & Jupp 2000); NULL where they cancel out",
 		Example: "DIRECTION_AVG(10 * temp) WEIGHTED BY volume", Weighted: true, Check: checkDirection,
-		New: func(s Setup) Accumulator { return &directions{tally: tally{weighted: s.Weighted}} }}
+		New: func(s Setup) Accumulator { return &directions{tally: tally{weighted: s.Weighted}} }, Slide: slideDirection}
 }
 
 func checkDirection(args []Arg, weight *Arg) (Result, error) {
@@ -56,18 +56,26 @@ func (a *directions) Add(groups []int32, on []uint64, n int, args []column.Vecto
 		return err
 	}
 	for _, i := range rows {
-		angle, w := args[0].F[i], 1.0
-		if angle-angle != 0 {
-			return infiniteValue(int(i), "DIRECTION_AVG", angle)
-		}
+		w := 1.0
 		if weights != nil {
 			w = weights[i]
 		}
-		angle = turned(angle)
-		sin, cos := sinCosDegrees(angle)
 		a.sums = grow(a.sums, groups[i])
-		a.sums[groups[i]].add(&directionSum{twoProduct(sin, w), twoProduct(cos, w), 1, angle, false})
+		if err := a.sums[groups[i]].addAngle(args[0].F[i], w, i); err != nil {
+			return err
+		}
 	}
+	return nil
+}
+
+// addAngle adds a vector of length w.
+func (s *directionSum) addAngle(angle, w float64, row int32) error {
+	if angle-angle != 0 {
+		return infiniteValue(int(row), "DIRECTION_AVG", angle)
+	}
+	angle = turned(angle)
+	sin, cos := sinCosDegrees(angle)
+	s.add(&directionSum{twoProduct(sin, w), twoProduct(cos, w), 1, angle, false})
 	return nil
 }
 
@@ -106,17 +114,25 @@ func (a *directions) Result(groups int) (column.Vector, error) {
 		if a.weighted {
 			by = a.fact(g).sum
 		}
-		sin, cos := s.sin.over(by).value(), s.cos.over(by).value()
-		switch {
-		case !s.differ:
-			v.F[g] = s.first
-		case math.Hypot(sin, cos) < cancelled:
+		var ok bool
+		if v.F[g], ok = s.direction(by); !ok {
 			v.SetNull(g)
-		default:
-			v.F[g] = turned(math.Atan2(sin, cos) * 180 / math.Pi)
 		}
 	}
 	return v, nil
+}
+
+// direction is the mean direction of so many rows, or of so much weight, if the
+// directions do not cancel.
+func (s *directionSum) direction(by dd) (float64, bool) {
+	sin, cos := s.sin.over(by).value(), s.cos.over(by).value()
+	switch {
+	case !s.differ:
+		return s.first, true
+	case math.Hypot(sin, cos) < cancelled:
+		return 0, false
+	}
+	return turned(math.Atan2(sin, cos) * 180 / math.Pi), true
 }
 
 // turned is the same direction from 0 to below 360.

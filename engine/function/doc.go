@@ -13,6 +13,10 @@
 // batches, and is merged with others of its kind in the order of the chunks of
 // rows that they have seen.
 //
+// A Window is a function of a row's place in its partition, or of another row there.
+// Every Aggregate can be computed over frames as well (Slide), whose values are those of
+// an Accumulator of the frame's rows, to the bit.
+//
 // # Laws
 //
 //  1. SUM, AVG, the variances, CORR, MKT, SHARE and the weights are added up in

@@ -57,6 +57,9 @@ type Aggregate struct {
 	Check func(args []Arg, weight *Arg) (Result, error)
 	// New starts an accumulator.
 	New func(s Setup) Accumulator
+	// Slide prepares the aggregate over frames of these rows. What it gives makes one
+	// Slider for each goroutine. Picks: the values are those of rows (Slid.Pick).
+	Slide func(s Setup, r Rows) (Sliders, error)
 }
 
 // Setup is what an accumulator is made for.

@@ -21,7 +21,7 @@ func levelAggregate() *Aggregate {
 	return &Aggregate{Name: "LEVEL_AVG", Signature: "LEVEL_AVG(level)",
 		Meaning: "the mean of levels in dB by their energy: 10 lg of the mean of 10^(L/10) (equivalent continuous level, ISO 1996-1)",
 		Example: "LEVEL_AVG(60 + temp) WEIGHTED BY volume", Weighted: true, Check: checkLevel,
-		New: func(s Setup) Accumulator { return &levels{tally: tally{weighted: s.Weighted}} }}
+		New: func(s Setup) Accumulator { return &levels{tally: tally{weighted: s.Weighted}} }, Slide: slideLevel}
 }
 
 func checkLevel(args []Arg, weight *Arg) (Result, error) {
@@ -66,32 +66,50 @@ func (a *levels) Add(groups []int32, on []uint64, n int, args []column.Vector, w
 		return err
 	}
 	for _, i := range rows {
-		level, w := args[0].F[i], 1.0
-		if level-level != 0 {
-			return infiniteValue(int(i), "LEVEL_AVG", level)
-		}
+		w := 1.0
 		if weights != nil {
 			w = weights[i]
 		}
-		y := float64(max(-1<<40, min(1<<40, level)) * binaryPerDecibel)
-		k := math.Floor(y)
 		a.sums = grow(a.sums, groups[i])
-		s := &a.sums[groups[i]]
-		s.look(level, level)
-		s.add(twoProduct(math.Exp2(y-k), w), int(k), 1)
+		if err := a.sums[groups[i]].addLevel(args[0].F[i], w, i); err != nil {
+			return err
+		}
 	}
 	return nil
+}
+
+// addLevel adds the power of a level.
+func (s *levelSum) addLevel(level, w float64, row int32) error {
+	if level-level != 0 {
+		return infiniteValue(int(row), "LEVEL_AVG", level)
+	}
+	y := float64(max(-1<<40, min(1<<40, level)) * binaryPerDecibel)
+	k := math.Floor(y)
+	s.look(level, level)
+	s.add(twoProduct(math.Exp2(y-k), w), int(k), 1)
+	return nil
+}
+
+func (s *levelSum) merge(o *levelSum) {
+	if o.n > 0 {
+		s.look(o.low, o.high)
+		s.add(o.s, o.exponent, o.n)
+	}
+}
+
+// level is the mean level of so many rows, or of so much weight.
+func (s *levelSum) level(by dd) float64 {
+	level := (math.Log2(s.s.over(by).value()) + float64(s.exponent)) / binaryPerDecibel
+	return max(s.low, min(s.high, level)) + 0
 }
 
 func (a *levels) Merge(other Accumulator, to []int32) error {
 	o := other.(*levels)
 	a.mergeFacts(&o.tally, to)
 	for g := range o.sums {
-		if s := &o.sums[g]; s.n > 0 {
+		if o.sums[g].n > 0 {
 			a.sums = grow(a.sums, to[g])
-			t := &a.sums[to[g]]
-			t.look(s.low, s.high)
-			t.add(s.s, s.exponent, s.n)
+			a.sums[to[g]].merge(&o.sums[g])
 		}
 	}
 	return nil
@@ -109,8 +127,7 @@ func (a *levels) Result(groups int) (column.Vector, error) {
 		if a.weighted {
 			by = a.fact(g).sum
 		}
-		level := (math.Log2(s.s.over(by).value()) + float64(s.exponent)) / binaryPerDecibel
-		v.F[g] = max(s.low, min(s.high, level)) + 0
+		v.F[g] = s.level(by)
 	}
 	return v, nil
 }

@@ -79,22 +79,30 @@ func (a *kinetic) Add(groups []int32, on []uint64, n int, args []column.Vector, 
 	}
 	for _, i := range rows {
 		c, w := args[0].F[i], 1.0
-		if c-c != 0 {
-			return infiniteValue(int(i), "MKT", c)
-		}
-		if c <= absoluteZero {
-			return &RowFault{Row: int(i), Code: "no-value", Message: fmt.Sprintf("%s °C is not above absolute zero", column.FormatReal(c))}
-		}
 		if weights != nil {
 			w = weights[i]
 		}
-		t := c - absoluteZero
-		y := a.perKelvin * (c - 25) / (t * referenceMKT) * math.Log2E
-		y = max(y, -1<<40) // far colder than anything that counts
-		k := math.Floor(y)
 		a.sums = grow(a.sums, groups[i])
-		a.sums[groups[i]].add(twoProduct(math.Exp2(y-k), w), int(k), 1)
+		if err := a.addTo(&a.sums[groups[i]], c, w, i); err != nil {
+			return err
+		}
 	}
+	return nil
+}
+
+// addTo adds the rate at a temperature to a sum.
+func (a *kinetic) addTo(s *kineticSum, c, w float64, row int32) error {
+	if c-c != 0 {
+		return infiniteValue(int(row), "MKT", c)
+	}
+	if c <= absoluteZero {
+		return &RowFault{Row: int(row), Code: "no-value", Message: fmt.Sprintf("%s °C is not above absolute zero", column.FormatReal(c))}
+	}
+	t := c - absoluteZero
+	y := a.perKelvin * (c - 25) / (t * referenceMKT) * math.Log2E
+	y = max(y, -1<<40) // far colder than anything that counts
+	k := math.Floor(y)
+	s.add(twoProduct(math.Exp2(y-k), w), int(k), 1)
 	return nil
 }
 
@@ -138,18 +146,26 @@ func (a *kinetic) Result(groups int) (column.Vector, error) {
 			v.SetNull(g)
 			continue
 		}
-		s := &a.sums[g]
-		by := dd{hi: float64(s.n)}
+		by := dd{hi: float64(a.sums[g].n)}
 		if a.weighted {
 			by = a.fact(g).sum
 		}
-		mean := s.s.over(by).value()
-		// ln of the mean rate relative to that at 25 °C, times Tref·R/ΔH
-		u := (math.Log(mean) + float64(float64(s.exponent)*math.Ln2)) * referenceMKT / a.perKelvin
-		v.F[g] = 25 + referenceMKT*u/(1-u)
-		if v.F[g]-v.F[g] != 0 {
-			return v, &GroupFault{Group: g, Code: "no-value", Message: "MKT has no finite value"}
+		var err error
+		if v.F[g], err = a.valueOf(&a.sums[g], by, g); err != nil {
+			return v, err
 		}
 	}
 	return v, nil
+}
+
+// valueOf is the temperature of a sum of so many rows, or of so much weight.
+func (a *kinetic) valueOf(s *kineticSum, by dd, g int) (float64, error) {
+	mean := s.s.over(by).value()
+	// ln of the mean rate relative to that at 25 °C, times Tref·R/ΔH
+	u := (math.Log(mean) + float64(float64(s.exponent)*math.Ln2)) * referenceMKT / a.perKelvin
+	f := 25 + referenceMKT*u/(1-u)
+	if f-f != 0 {
+		return 0, &GroupFault{Group: g, Code: "no-value", Message: "MKT has no finite value"}
+	}
+	return f, nil
 }

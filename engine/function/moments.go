@@ -15,17 +15,17 @@ func momentAggregates() []*Aggregate {
 		variance("STDDEV_SAMP", "the square root of VAR_SAMP", 1, newVariance(true, true)),
 		{Name: "CORR", Signature: "CORR(y, x)", Meaning: "the correlation of two columns (Pearson); NULL where one of them does not vary",
 			Example: "CORR(temp, z) WEIGHTED BY volume", Weighted: true, Check: checkCorr,
-			New: func(s Setup) Accumulator { return &correlations{tally: tally{weighted: s.Weighted}} }},
+			New: func(s Setup) Accumulator { return &correlations{tally: tally{weighted: s.Weighted}} }, Slide: slideCorr},
 		{Name: "MKT", Signature: "MKT(temp [, kJ/mol])",
 			Meaning: "the mean kinetic temperature, °C in and out (Haynes 1971); activation energy 83.144 kJ/mol if not given, R = 8.3144 J/(mol K)",
-			Example: "MKT(temp) WEIGHTED BY volume", Weighted: true, Check: checkMKT, New: newMKT},
+			Example: "MKT(temp) WEIGHTED BY volume", Weighted: true, Check: checkMKT, New: newMKT, Slide: slideMKT},
 		levelAggregate(), directionAggregate(),
 	}
 }
 
 func variance(name, meaning string, power int, make func(Setup) Accumulator) *Aggregate {
 	return &Aggregate{Name: name, Signature: name + "([DISTINCT] x)", Meaning: meaning, Example: name + "(temp) WEIGHTED BY volume",
-		Weighted: true, New: make,
+		Weighted: true, New: make, Slide: slideVariance(make),
 		Check: func(args []Arg, weight *Arg) (Result, error) {
 			if err := firstError(wantCount(name, args, 1, 1), checkWeight(weight)); err != nil {
 				return Result{}, err
@@ -140,32 +140,44 @@ func (a *variances) Merge(other Accumulator, to []int32) error {
 func (a *variances) Result(groups int) (column.Vector, error) {
 	v := column.New(column.Real, nil, groups)
 	for g := range groups {
-		if g >= len(a.moments) || a.moments[g].n == 0 || a.sample && a.moments[g].n == 1 {
+		if g >= len(a.moments) {
 			v.SetNull(g)
 			continue
 		}
-		m := &a.moments[g]
-		by := m.w
-		switch {
-		case a.sample && a.weighted:
-			by = by.add(a.fact(g).squares.over(m.w).negative())
-		case a.sample:
-			by = by.plus(-1)
+		f, ok, err := a.valueOf(&a.moments[g], a.fact(g).squares, g)
+		if err != nil {
+			return v, err
 		}
-		if by.hi <= 0 {
-			v.SetNull(g) // one weight is everything, to 32 digits
-			continue
+		if v.F[g] = f; !ok {
+			v.SetNull(g)
 		}
-		f := m.squares().over(by).value()
-		if f-f != 0 {
-			return v, &GroupFault{Group: g, Code: "overflow", Message: a.name() + " has no finite value: the numbers are too large"}
-		}
-		if a.root {
-			f = math.Sqrt(f)
-		}
-		v.F[g] = f
 	}
 	return v, nil
+}
+
+// valueOf is the value of one state, with the sum of the squares of its weights.
+func (a *variances) valueOf(m *moment, squares dd, g int) (f float64, ok bool, err error) {
+	if m.n == 0 || a.sample && m.n == 1 {
+		return 0, false, nil
+	}
+	by := m.w
+	switch {
+	case a.sample && a.weighted:
+		by = by.add(squares.over(m.w).negative())
+	case a.sample:
+		by = by.plus(-1)
+	}
+	if by.hi <= 0 {
+		return 0, false, nil // one weight is everything, to 32 digits
+	}
+	f = m.squares().over(by).value()
+	if f-f != 0 {
+		return 0, false, &GroupFault{Group: g, Code: "overflow", Message: a.name() + " has no finite value: the numbers are too large"}
+	}
+	if a.root {
+		f = math.Sqrt(f)
+	}
+	return f, true, nil
 }
 
 func checkCorr(args []Arg, weight *Arg) (Result, error) {
@@ -217,12 +229,15 @@ func (a *correlations) Add(groups []int32, on []uint64, n int, args []column.Vec
 			w = weights[i]
 		}
 		a.joints = grow(a.joints, groups[i])
-		j := &a.joints[groups[i]]
-		j.y.add(y, w)
-		j.x.add(x, w)
-		j.xy = j.xy.add(twoSum(y, -j.y.c).mul(twoSum(x, -j.x.c)).times(w))
+		a.joints[groups[i]].add(y, x, w)
 	}
 	return nil
+}
+
+func (j *joint) add(y, x, w float64) {
+	j.y.add(y, w)
+	j.x.add(x, w)
+	j.xy = j.xy.add(twoSum(y, -j.y.c).mul(twoSum(x, -j.x.c)).times(w))
 }
 
 func (a *correlations) Merge(other Accumulator, to []int32) error {
@@ -238,24 +253,36 @@ func (a *correlations) Merge(other Accumulator, to []int32) error {
 func (a *correlations) Result(groups int) (column.Vector, error) {
 	v := column.New(column.Real, nil, groups)
 	for g := range groups {
-		if g >= len(a.joints) || a.joints[g].x.n == 0 {
+		if g >= len(a.joints) {
 			v.SetNull(g)
 			continue
 		}
-		j := &a.joints[g]
-		yy, xx := j.y.squares(), j.x.squares()
-		if yy.hi == 0 || xx.hi == 0 {
+		r, ok, err := a.joints[g].correlation(g)
+		if err != nil {
+			return v, err
+		}
+		if v.F[g] = r; !ok {
 			v.SetNull(g)
-			continue
 		}
-		xy := j.xy.add(j.y.m1.mul(j.x.m1).over(j.x.w).negative()).value()
-		r := xy / rootOfProduct(yy, xx)
-		if r != r || !yy.finite() || !xx.finite() {
-			return v, &GroupFault{Group: g, Code: "overflow", Message: "CORR has no finite value: the numbers are too large"}
-		}
-		v.F[g] = max(-1, min(1, r)) + 0
 	}
 	return v, nil
+}
+
+// correlation is the value of one state.
+func (j *joint) correlation(g int) (r float64, ok bool, err error) {
+	if j.x.n == 0 {
+		return 0, false, nil
+	}
+	yy, xx := j.y.squares(), j.x.squares()
+	if yy.hi == 0 || xx.hi == 0 {
+		return 0, false, nil
+	}
+	xy := j.xy.add(j.y.m1.mul(j.x.m1).over(j.x.w).negative()).value()
+	r = xy / rootOfProduct(yy, xx)
+	if r != r || !yy.finite() || !xx.finite() {
+		return 0, false, &GroupFault{Group: g, Code: "overflow", Message: "CORR has no finite value: the numbers are too large"}
+	}
+	return max(-1, min(1, r)) + 0, true, nil
 }
 
 // rootOfProduct is the root of a·b. For points on a line the product is a

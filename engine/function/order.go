@@ -9,18 +9,18 @@ import (
 func orderAggregates() []*Aggregate {
 	return []*Aggregate{
 		{Name: "MIN", Signature: "MIN(x)", Meaning: "the smallest value", Example: "MIN(temp)",
-			Check: checkExtreme("MIN"), New: func(s Setup) Accumulator { return &extreme{sign: -1, t: s.Args[0]} }},
+			Check: checkExtreme("MIN"), New: func(s Setup) Accumulator { return &extreme{sign: -1, t: s.Args[0]} }, Slide: slideExtreme(-1)},
 		{Name: "MAX", Signature: "MAX(x)", Meaning: "the largest value", Example: "MAX(temp)",
-			Check: checkExtreme("MAX"), New: func(s Setup) Accumulator { return &extreme{sign: 1, t: s.Args[0]} }},
+			Check: checkExtreme("MAX"), New: func(s Setup) Accumulator { return &extreme{sign: 1, t: s.Args[0]} }, Slide: slideExtreme(1)},
 		{Name: "FIRST", Signature: "FIRST(x ORDER BY t)", Meaning: "the value of x in the first row by t that has both",
-			Example: "FIRST(temp ORDER BY z)", Ordered: true, Check: checkEnd("FIRST"), New: newEnd(false)},
+			Example: "FIRST(temp ORDER BY z)", Ordered: true, Check: checkEnd("FIRST"), New: newEnd(false), Slide: slideEnd(false)},
 		{Name: "LAST", Signature: "LAST(x ORDER BY t)", Meaning: "the value of x in the last row by t that has both",
-			Example: "LAST(temp ORDER BY z)", Ordered: true, Check: checkEnd("LAST"), New: newEnd(true)},
+			Example: "LAST(temp ORDER BY z)", Ordered: true, Check: checkEnd("LAST"), New: newEnd(true), Slide: slideEnd(true)},
 		{Name: "QUANTILE", Signature: "QUANTILE(x, p)",
 			Meaning: "the smallest value up to which lies the fraction p of the rows, or of their weight (inverse of the distribution function; no interpolation)",
-			Example: "QUANTILE(temp, 0.95) WEIGHTED BY volume", Weighted: true, Check: checkQuantile, New: newQuantile},
+			Example: "QUANTILE(temp, 0.95) WEIGHTED BY volume", Weighted: true, Check: checkQuantile, New: newQuantile, Slide: slideQuantile},
 		{Name: "MEDIAN", Signature: "MEDIAN(x)", Meaning: "QUANTILE(x, 0.5): of an even number of rows the lower of the two in the middle",
-			Example: "MEDIAN(temp) WEIGHTED BY volume", Weighted: true, Check: checkMedian, New: newMedian},
+			Example: "MEDIAN(temp) WEIGHTED BY volume", Weighted: true, Check: checkMedian, New: newMedian, Slide: slideQuantile},
 	}
 }
 

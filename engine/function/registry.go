@@ -11,11 +11,12 @@ var (
 	aggregates  = sortedAggregates(countAggregates(), sumAggregates(), momentAggregates(), orderAggregates())
 	scalarOf    = index(scalars, func(s *Scalar) []string { return append([]string{s.Name}, s.Aliases...) })
 	aggregateOf = index(aggregates, func(a *Aggregate) []string { return []string{a.Name} })
+	windows     = windowFunctions()
+	windowOf    = index(windows, func(w *Window) []string { return []string{w.Name} })
 )
 
 // planned are functions of the language that have no engine yet.
-var planned = []string{"DENSE_RANK", "FIRST_VALUE", "INTERPOLATE", "LAG", "LAST_VALUE",
-	"LEAD", "RANK", "ROW_NUMBER"}
+var planned = []string{"INTERPOLATE"}
 
 // LookupScalar finds a scalar function by its name or alias, in any case; nil
 // where there is none.
@@ -24,6 +25,13 @@ func LookupScalar(name string) *Scalar { return scalarOf[strings.ToUpper(name)] 
 // LookupAggregate finds an aggregate by its name, in any case; nil where there
 // is none.
 func LookupAggregate(name string) *Aggregate { return aggregateOf[strings.ToUpper(name)] }
+
+// LookupWindow finds a window function by its name, in any case; nil where there is
+// none. (Aggregates are window functions, too, and are not among them.)
+func LookupWindow(name string) *Window { return windowOf[strings.ToUpper(name)] }
+
+// Windows are all window functions, sorted by name.
+func Windows() []*Window { return slices.Clone(windows) }
 
 // All are all scalar functions, sorted by name.
 func All() []*Scalar { return slices.Clone(scalars) }
@@ -38,6 +46,9 @@ func Names() []string {
 		names = append(names, name)
 	}
 	for name := range aggregateOf {
+		names = append(names, name)
+	}
+	for name := range windowOf {
 		names = append(names, name)
 	}
 	slices.Sort(names)

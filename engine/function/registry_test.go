@@ -11,9 +11,9 @@ import (
 // TestRegistry: every line is complete, names are found in any case, and what
 // is planned is not there yet.
 func TestRegistry(t *testing.T) {
-	want := strings.Fields(`ABS ACOS ASIN ATAN ATAN2 AVG CEIL CEILING CHARACTER_LENGTH CHAR_LENGTH COALESCE CORR COS COUNT DIRECTION_AVG DISTANCE EXP
-		EXTRACT FIRST FLOOR FLOOR_TO GREATEST HOURS LAST LEAST LEVEL_AVG LN LOG10 LOWER MAX MEDIAN MIN MKT MOD NULLIF PI POWER QUANTILE ROUND
-		SHARE SIGN SIN SQRT STDDEV_POP STDDEV_SAMP SUBSTRING SUM TAN TRIM UPPER VAR_POP VAR_SAMP`)
+	want := strings.Fields(`ABS ACOS ASIN ATAN ATAN2 AVG CEIL CEILING CHARACTER_LENGTH CHAR_LENGTH COALESCE CORR COS COUNT CUME_DIST DENSE_RANK DIRECTION_AVG DISTANCE EXP
+		EXTRACT FIRST FIRST_VALUE FLOOR FLOOR_TO GREATEST HOURS LAG LAST LAST_VALUE LEAD LEAST LEVEL_AVG LN LOG10 LOWER MAX MEDIAN MIN MKT MOD
+		NTH_VALUE NTILE NULLIF PERCENT_RANK PI POWER QUANTILE RANK ROUND ROW_NUMBER SHARE SIGN SIN SQRT STDDEV_POP STDDEV_SAMP SUBSTRING SUM TAN TRIM UPPER VAR_POP VAR_SAMP`)
 	if got := Names(); !slices.Equal(got, want) {
 		t.Errorf("the names are %v", got)
 	}
@@ -23,13 +23,19 @@ func TestRegistry(t *testing.T) {
 		}
 	}
 	for _, f := range Aggregates() {
-		if LookupAggregate(strings.ToLower(f.Name)) != f || f.Check == nil || f.New == nil || f.Meaning == "" ||
+		if LookupAggregate(strings.ToLower(f.Name)) != f || f.Check == nil || f.New == nil || f.Slide == nil || f.Meaning == "" ||
 			!strings.HasPrefix(f.Signature, f.Name+"(") || !strings.HasPrefix(f.Example, f.Name+"(") ||
 			!f.Weighted && strings.Contains(f.Example, "WEIGHTED BY") || f.Ordered != strings.Contains(f.Example, "ORDER BY") {
 			t.Errorf("%s is not complete", f.Name)
 		}
 	}
-	for _, name := range []string{"rank", "Interpolate"} {
+	for _, f := range Windows() {
+		if LookupWindow(strings.ToLower(f.Name)) != f || f.Check == nil || f.Meaning == "" ||
+			!strings.HasPrefix(f.Signature, f.Name+"(") || !strings.Contains(f.Example, f.Name+"(") || !strings.Contains(f.Example, "OVER (") {
+			t.Errorf("%s is not complete", f.Name)
+		}
+	}
+	for _, name := range []string{"INTERPOLATE", "Interpolate"} {
 		if !Planned(name) {
 			t.Errorf("%s is not planned", name)
 		}

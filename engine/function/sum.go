@@ -10,9 +10,9 @@ import (
 func sumAggregates() []*Aggregate {
 	return []*Aggregate{
 		{Name: "SUM", Signature: "SUM([DISTINCT] x)", Meaning: "the sum, with WEIGHTED BY that of x times the weight; NULL of no rows",
-			Example: "SUM(volume)", Weighted: true, Check: checkSum, New: newSum(false)},
+			Example: "SUM(volume)", Weighted: true, Check: checkSum, New: newSum(false), Slide: slideSum(false)},
 		{Name: "AVG", Signature: "AVG([DISTINCT] x)", Meaning: "the mean, with WEIGHTED BY the weighted mean; also of intervals and time stamps",
-			Example: "AVG(temp) WEIGHTED BY volume", Weighted: true, Check: checkAvg, New: newSum(true)},
+			Example: "AVG(temp) WEIGHTED BY volume", Weighted: true, Check: checkAvg, New: newSum(true), Slide: slideSum(true)},
 	}
 }
 
@@ -161,11 +161,14 @@ func (a *realSums) Merge(other Accumulator, to []int32) error {
 	a.mergeFacts(&o.tally, to)
 	for g := range o.sums {
 		a.sums = grow(a.sums, to[g])
-		s, t := &a.sums[to[g]], &o.sums[g]
-		s.n, s.plus, s.minus, s.overflowed = s.n+t.n, s.plus+t.plus, s.minus+t.minus, s.overflowed || t.overflowed
-		s.s = s.s.add(t.s)
+		a.sums[to[g]].merge(&o.sums[g])
 	}
 	return nil
+}
+
+func (s *realSum) merge(t *realSum) {
+	s.n, s.plus, s.minus, s.overflowed = s.n+t.n, s.plus+t.plus, s.minus+t.minus, s.overflowed || t.overflowed
+	s.s = s.s.add(t.s)
 }
 
 func (a *realSums) name() string {
@@ -201,7 +204,15 @@ func (a *realSums) Result(groups int) (column.Vector, error) {
 
 // sumOf is the sum or the mean of a group that has rows.
 func (a *realSums) sumOf(g int) (dd, error) {
-	s := &a.sums[g]
+	weight := dd{}
+	if a.weighted {
+		weight = a.fact(g).sum
+	}
+	return a.valueOf(&a.sums[g], weight, g)
+}
+
+// valueOf is the sum or the mean of a state that has rows, with their weight.
+func (a *realSums) valueOf(s *realSum, weight dd, g int) (dd, error) {
 	switch {
 	case s.plus > 0 && s.minus > 0:
 		return dd{}, &GroupFault{Group: g, Code: "no-value", Message: "the " + a.name() + " of Infinity and -Infinity has no value"}
@@ -214,7 +225,7 @@ func (a *realSums) sumOf(g int) (dd, error) {
 	if a.mean {
 		by := dd{hi: float64(s.n)}
 		if a.weighted {
-			by = a.fact(g).sum
+			by = weight
 		}
 		f = f.over(by)
 	}
@@ -312,17 +323,27 @@ func (a *intSums) Result(groups int) (column.Vector, error) {
 		s := &a.sums[g]
 		switch {
 		case t == column.Real:
-			v.F[g] = s.s.real().over(ofInt(s.n)).value() + 0
+			v.F[g] = s.mean()
 		case a.mean:
 			v.I[g] = roundToInt(s.s.real().over(ofInt(s.n)))
 		default:
-			i, ok := s.s.narrow()
-			if !ok {
-				return v, &GroupFault{Group: g, Code: "overflow", Message: "the SUM is beyond the 64 bits of an " + t.String(),
-					Hint: "SUM(CAST(… AS REAL)) adds REALs"}
+			var err error
+			if v.I[g], err = s.total(t, g); err != nil {
+				return v, err
 			}
-			v.I[g] = i
 		}
 	}
 	return v, nil
+}
+
+func (s *intSum) mean() float64 { return s.s.real().over(ofInt(s.n)).value() + 0 }
+
+// total is the sum as an INTEGER or an INTERVAL, if it fits.
+func (s *intSum) total(t column.Type, g int) (int64, error) {
+	i, ok := s.s.narrow()
+	if !ok {
+		return 0, &GroupFault{Group: g, Code: "overflow", Message: "the SUM is beyond the 64 bits of an " + t.String(),
+			Hint: "SUM(CAST(… AS REAL)) adds REALs"}
+	}
+	return i, nil
 }

@@ -37,6 +37,10 @@ func (e *Estimator) columnValues(n Node, at int) values {
 		v := e.columnValues(n.Input, at)
 		v.exact = false
 		return e.capped(v, n)
+	case *Window:
+		if at < len(n.Input.Schema()) {
+			return e.columnValues(n.Input, at)
+		}
 	case *Distinct:
 		return e.columnValues(n.Input, at)
 	case *Shared:
@@ -119,6 +123,10 @@ func stored(n Node, at int) (*column.Vector, bool) {
 		return stored(n.Input, at)
 	case *Limit:
 		return stored(n.Input, at)
+	case *Window:
+		if at < len(n.Input.Schema()) {
+			return stored(n.Input, at)
+		}
 	case *Project:
 		if c, ok := expr.AsColumn(n.Exprs[at]); ok {
 			return stored(n.Input, c)

@@ -6,7 +6,7 @@
 // A plan is a tree of nodes. Each node has a schema; its expressions refer by
 // index to the columns of its input (for a Join: the left columns, then the
 // right ones). Every node has one fixed order of rows: a Scan that of its table,
-// a Filter, a Project and a Distinct that of their input, a Join that of the left
+// a Filter, a Project, a Window and a Distinct that of their input, a Join that of the left
 // rows and for each of them of the right ones, an Aggregate that of its keys with
 // NULL last, a Relation that of its own rule, a Union that of its parts.
 //
@@ -32,7 +32,8 @@
 // side takes what speaks of it alone from above, the right side takes from ON what
 // speaks of it alone, and everything else stays where NULL-extended rows pass it.
 // A Limit, a Distinct, an Aggregate and a Sort with a top count or merge rows:
-// nothing moves through them. Into a Relation a condition on the sites' own
+// nothing moves through them. Through a Window go conditions on columns of its partition,
+// which leave out whole partitions. Into a Relation a condition on the sites' own
 // columns goes as Wanted, which says what is shown; it never goes below, since
 // the sites that it leaves out still partition.
 //

@@ -145,6 +145,9 @@ func (e *Estimator) node(n Node) (Estimate, error) {
 			in.Rows = min(in.Rows, float64(n.Top))
 		}
 		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
+	case *Window:
+		in := e.known[n.Input]
+		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
 	case *Project:
 		in := e.known[n.Input]
 		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil

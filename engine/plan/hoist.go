@@ -86,6 +86,9 @@ func exprsFail(n Node) bool {
 			}
 		}
 	}
+	if w, ok := n.(*Window); ok && windowFails(w) {
+		return true
+	}
 	for _, in := range n.Inputs() {
 		if exprsFail(in) {
 			return true

@@ -30,6 +30,8 @@ func Lineage(n Node) []Origin {
 		return origins
 	case *Filter, *Sort, *Limit, *Distinct:
 		return Lineage(n.Inputs()[0])
+	case *Window:
+		return append(slices.Clone(Lineage(n.Input)), make([]Origin, len(n.Calls))...)
 	case *Shared:
 		return Lineage(n.Common.Plan)
 	case *Project:
@@ -172,6 +174,8 @@ func cellsOf(n Node) *Relation {
 	case *Project:
 		return cellsOf(n.Input)
 	case *Sort:
+		return cellsOf(n.Input)
+	case *Window:
 		return cellsOf(n.Input)
 	}
 	return nil

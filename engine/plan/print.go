@@ -51,6 +51,8 @@ func Line(n Node) string {
 			line += fmt.Sprintf(", first %d", n.Top)
 		}
 		return line
+	case *Window:
+		return windowLine(n)
 	case *Limit:
 		return limitLine(n)
 	case *Distinct:

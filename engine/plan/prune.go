@@ -46,6 +46,8 @@ func pruned(n Node, need []bool) (Node, []int) {
 		}
 		in, to := pruned(n.Input, need)
 		return &Sort{in, remapKeys(n.Keys, to), n.Top}, to
+	case *Window:
+		return prunedWindow(n, need)
 	case *Limit:
 		in, to := pruned(n.Input, need)
 		return &Limit{in, n.Count, n.Offset}, to

@@ -37,6 +37,8 @@ func push(n Node, conds []condition) Node {
 			c.Input = push(n.Input, conds)
 			return &c
 		}
+	case *Window:
+		return pushWindow(n, conds)
 	case *Union:
 		c := *n
 		c.Parts = make([]Node, len(n.Parts))

@@ -165,7 +165,7 @@ func exprsOf(n Node) []expr.Expr {
 		return e
 	}
 	switch n.(type) {
-	case *Values, *Relation, *Filter, *Project, *Aggregate, *Join, *Sort, *Lookup:
+	case *Values, *Relation, *Filter, *Project, *Aggregate, *Join, *Sort, *Window, *Lookup:
 		mapExprs(n, add)
 	}
 	return list
@@ -181,6 +181,8 @@ func canFail(n Node) bool {
 		switch n := n.(type) {
 		case *Relation:
 			fails = true
+		case *Window:
+			fails = fails || windowFails(n)
 		case *Aggregate:
 			for i := range n.Calls {
 				fails = fails || callFails(&n.Calls[i])
@@ -217,7 +219,7 @@ func oneRow(n Node) bool {
 		return len(n.Keys) == 0
 	case *Limit:
 		return n.Count == 0 || n.Count == 1 || oneRow(n.Input)
-	case *Project, *Filter, *Sort, *Distinct:
+	case *Project, *Filter, *Sort, *Window, *Distinct:
 		return oneRow(n.Inputs()[0])
 	case *Join:
 		return (n.Kind == Semi || n.Kind == Anti || oneRow(n.Right)) && oneRow(n.Left)
@@ -289,6 +291,9 @@ func sameStep(a, b Node) bool {
 	case *Sort:
 		b, ok := b.(*Sort)
 		return ok && a.Top == b.Top && sameKeys(a.Keys, b.Keys)
+	case *Window:
+		b, ok := b.(*Window)
+		return ok && sameWindow(a, b)
 	case *Limit:
 		b, ok := b.(*Limit)
 		return ok && a.Count == b.Count && a.Offset == b.Offset

@@ -140,6 +140,10 @@ func withInputs(n Node, in []Node) Node {
 		c := *n
 		c.Input = in[0]
 		return &c
+	case *Window:
+		c := *n
+		c.Input = in[0]
+		return &c
 	case *Limit:
 		c := *n
 		c.Input = in[0]
@@ -220,6 +224,8 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 		c := *n
 		c.Keys = mapKeys(n.Keys, f)
 		return &c
+	case *Window:
+		return n.mapped(f)
 	case *Lookup:
 		c := *n
 		c.Keys, c.Values = mapList(n.Keys, f), mapList(n.Values, f)

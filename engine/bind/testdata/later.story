@@ -36,13 +36,6 @@ input:1: UNCERTAINTY is not there yet
                               ^^^^^^^^^^^^^^^^^^^^^^^^^^^
 
 plan
-SELECT RANK() OVER (ORDER BY temp) FROM hall
-----
-input:1: OVER (…) is not there yet (group in a query of its own and JOIN it)
-  SELECT RANK() OVER (ORDER BY temp) FROM hall
-                     ^^^^^^^^^^^^^^^
-
-plan
 SELECT INTERPOLATE(temp ALONG t AT :since OUTSIDE FAIL) FROM log
 ----
 input:1: INTERPOLATE(… ALONG …) is not there yet

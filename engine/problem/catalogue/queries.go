@@ -39,6 +39,18 @@ var ofQueries = []Entry{
 		Example: "SELECT id FROM hall WHERE temp > AVG(temp);",
 	},
 	{
+		Code:    "window",
+		Meaning: "A function with OVER stands where windows are not computed yet, or inside another one; or a function that needs OVER has none.",
+		WayOut:  "Windows stand in SELECT and ORDER BY. Elsewhere name it in a query of its own: SELECT id FROM (SELECT id, RANK() OVER (ORDER BY temp) AS place FROM hall) AS r WHERE place = 1.",
+		Example: "SELECT id FROM hall WHERE RANK() OVER (ORDER BY temp) = 1;",
+	},
+	{
+		Code:    "frame",
+		Meaning: "The frame of a window has no meaning: it ends before it begins, its offset does not fit, or the function takes none.",
+		WayOut:  "ROWS counts rows, with whole numbers; RANGE goes by differences of the one key of ORDER BY, which is a number or a time.",
+		Example: "SELECT id, AVG(temp) OVER (ORDER BY z ROWS 0.5 PRECEDING) FROM hall;",
+	},
+	{
 		Code:    "nested-aggregate",
 		Meaning: "An aggregate stands inside another.",
 		WayOut:  "Compute the inner one in a query of its own: SELECT AVG(highest) FROM (SELECT MAX(temp) AS highest FROM hall GROUP BY level).",

@@ -20,6 +20,11 @@ var (
 // Random queries give the rows that the other database gives, in every way in
 // which this one runs them. go test ./oracle -queries 20000 -seed 7 for more.
 func TestAgainstTheOther(t *testing.T) {
+	against(t, func(g *Gen, n uint64) *Query { return g.Random(int(n) % (*deep + 1)) })
+}
+
+// against asks random queries of both sides.
+func against(t *testing.T, random func(g *Gen, n uint64) *Query) {
 	var b *Bench
 	asked, refused, failed := 0, 0, 0
 	for n := range uint64(*queries) {
@@ -29,7 +34,7 @@ func TestAgainstTheOther(t *testing.T) {
 				t.Fatal(err)
 			}
 		}
-		q := NewGen(*seed, n).Random(int(n) % (*deep + 1))
+		q := random(NewGen(*seed, n), n)
 		asked++
 		no, err := b.Check(q)
 		if no {
@@ -40,7 +45,7 @@ func TestAgainstTheOther(t *testing.T) {
 			continue
 		}
 		if err != nil {
-			t.Errorf("query %d: %v\nours:   %s\ntheirs: %s", n, err, q.Ours(), q.Theirs())
+			t.Errorf("query %d (table seed %d): %v\nours:   %s\ntheirs: %s", n, *seed+n/100*100, err, q.Ours(), q.Theirs())
 			if failed++; failed >= *stop {
 				t.FailNow()
 			}

@@ -1,0 +1,406 @@
+package exec
+
+import (
+	"context"
+	"math"
+	"runtime"
+	"sync"
+	"sync/atomic"
+
+	"nearcell/catalog/column"
+	"nearcell/engine/expr"
+	"nearcell/engine/function"
+	"nearcell/engine/plan"
+	"nearcell/engine/problem"
+)
+
+// windowRun computes the calls of one window over all rows.
+type windowRun struct {
+	sink  *windowSink
+	env   *Env
+	all   *column.Table
+	rows  []int32 // by partition, in the order of the input
+	start []int32 // of each partition in rows, and the end
+	order []orderKey
+	ranks [][]uint64 // of the texts of an order key
+	calls []windowCall
+}
+
+func (r *windowRun) prepare(ctx context.Context) error {
+	s := r.sink
+	if r.all.N > math.MaxInt32-1 {
+		return problem.New("too-many-rows", problem.Place{}, "a window holds more than %d rows", math.MaxInt32-1)
+	}
+	if err := r.divide(ctx); err != nil {
+		return err
+	}
+	for i, k := range s.node.OrderBy {
+		v := &r.all.Cols[s.order[i]]
+		r.order = append(r.order, orderKey{v, k.Descending, k.NullsFirst})
+		r.ranks = append(r.ranks, nil)
+		if v.Type == column.Text {
+			r.ranks[i] = textRanks(v)
+		}
+	}
+	r.calls = make([]windowCall, len(s.node.Calls))
+	for i := range r.calls {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		if err := r.prepareCall(i); err != nil {
+			return s.fault(err, &s.node.Calls[i], r.all)
+		}
+	}
+	return nil
+}
+
+// divide puts the rows of each partition together.
+func (r *windowRun) divide(ctx context.Context) error {
+	n := r.all.N
+	r.rows = make([]int32, n)
+	if len(r.sink.part) == 0 {
+		for i := range r.rows {
+			r.rows[i] = int32(i)
+		}
+		r.start = []int32{0, int32(n)}
+		return nil
+	}
+	ids, count, err := r.numbers(ctx, r.sink.part)
+	if err != nil {
+		return err
+	}
+	r.start = make([]int32, count+1)
+	for _, g := range ids {
+		r.start[g+1]++
+	}
+	for g := range count {
+		r.start[g+1] += r.start[g]
+	}
+	next := append([]int32(nil), r.start...)
+	for i, g := range ids {
+		r.rows[next[g]] = int32(i)
+		next[g]++
+	}
+	return nil
+}
+
+// numbers numbers the different values of columns.
+func (r *windowRun) numbers(ctx context.Context, at []int) ([]int32, int, error) {
+	var types []column.Type
+	for _, c := range at {
+		types = append(types, r.all.Cols[c].Type)
+	}
+	t := newKeyTable(types)
+	read := newKeyReader(t)
+	ids := make([]int32, r.all.N)
+	cols := make([]column.Vector, len(at))
+	for lo := 0; lo < r.all.N; lo += BatchRows {
+		if err := ctx.Err(); err != nil {
+			return nil, 0, err
+		}
+		hi := min(lo+BatchRows, r.all.N)
+		for i, c := range at {
+			cols[i] = r.all.Cols[c].Slice(lo, hi)
+		}
+		read.put(cols, nil, hi-lo, ids[lo:hi])
+	}
+	return ids, t.n, nil
+}
+
+func (r *windowRun) prepareCall(i int) error {
+	s, n := r.sink, r.all.N
+	node, at := &s.node.Calls[i], s.calls[i]
+	c := &r.calls[i]
+	*c = windowCall{node: node, missing: -1, by: 1}
+	result := s.node.Fields[len(s.schema)+i].Type
+	if node.Fn != nil {
+		if constant := whichArg(node.Fn.Kind); constant >= 0 && constant < len(node.Args) {
+			if v, ok := expr.Const(node.Args[constant]); ok {
+				c.by = v.I
+			}
+		}
+		c.out = function.NewSlid(result, n, node.Fn.Kind >= function.PickFirst)
+		if node.Fn.Kind >= function.PickFirst {
+			c.picked = r.all.Cols[at.args[0]]
+			if len(at.args) == 3 {
+				c.missing = n
+				c.picked = stacked(&c.picked, &r.all.Cols[at.args[2]], result, n)
+			}
+		}
+		return nil
+	}
+	rows := function.Rows{N: n}
+	for _, a := range at.args {
+		rows.Args = append(rows.Args, r.all.Cols[a])
+	}
+	if at.filter >= 0 {
+		rows.On = trueRows(nil, &r.all.Cols[at.filter], nil, n)
+	}
+	if at.weight >= 0 {
+		rows.Weight = &r.all.Cols[at.weight]
+	}
+	if node.Distinct {
+		r.firstOnes(&rows, at)
+	}
+	var err error
+	if c.sliders, err = node.Call.Fn.Slide(newSetup(&node.Call), rows); err != nil {
+		return err
+	}
+	c.out = function.NewSlid(result, n, c.sliders.Picks)
+	if c.sliders.Picks {
+		c.picked = rows.Args[0]
+	}
+	return nil
+}
+
+// whichArg is the argument of a window function that is a number of rows.
+func whichArg(k function.WindowKind) int {
+	switch k {
+	case function.Ntile:
+		return 0
+	case function.PickNth, function.PickBefore, function.PickAfter:
+		return 1
+	}
+	return -1
+}
+
+// stacked is two columns one under the other.
+func stacked(a, b *column.Vector, t column.Type, n int) column.Vector {
+	g := newGatherer(column.Field{Type: t})
+	idx := activeRows(nil, nil, n)
+	g.add(a, idx)
+	g.add(b, idx)
+	return g.finish()
+}
+
+// firstOnes leaves of equal arguments the first of each partition (DISTINCT, which
+// stands over whole partitions alone).
+func (r *windowRun) firstOnes(rows *function.Rows, at windowColumns) {
+	cols := append([]int(nil), at.args...)
+	types := []column.Type{column.Integer}
+	partition := column.New(column.Integer, nil, rows.N)
+	for g := 0; g+1 < len(r.start); g++ {
+		for _, row := range r.rows[r.start[g]:r.start[g+1]] {
+			partition.I[row] = int64(g)
+		}
+	}
+	vectors := []column.Vector{partition}
+	for _, c := range cols {
+		types = append(types, r.all.Cols[c].Type)
+		vectors = append(vectors, r.all.Cols[c])
+	}
+	ids := make([]int32, rows.N)
+	t := newKeyTable(types)
+	newKeyReader(t).put(vectors, rows.On, rows.N, ids)
+	seen := make([]bool, t.n)
+	first := make([]uint64, column.Words(rows.N))
+	forEachOn(rows.On, rows.N, func(i int) {
+		if !seen[ids[i]] {
+			seen[ids[i]] = true
+			column.SetBit(first, i)
+		}
+	})
+	rows.On = first
+}
+
+// taskRows is about how many rows a worker takes at a time: whole partitions.
+const taskRows = 1 << 14
+
+// partitions computes all partitions, on all workers. Of several at fault the first
+// one's error is told: tasks are given out in order, and none after one at fault.
+func (r *windowRun) partitions(ctx context.Context) error {
+	var ends []int // the partition behind each task
+	for g, from := 0, int32(0); g+1 < len(r.start); g++ {
+		if r.start[g+1]-from >= taskRows || g+2 == len(r.start) {
+			ends = append(ends, g+1)
+			from = r.start[g+1]
+		}
+	}
+	threads := r.env.Threads
+	if threads <= 0 {
+		threads = runtime.GOMAXPROCS(0)
+	}
+	faults := make([]error, len(ends))
+	var next, last atomic.Int64
+	last.Store(int64(len(ends)))
+	work := func() {
+		w := &windowWorker{run: r, stop: ctx.Err}
+		for {
+			t := next.Add(1) - 1
+			if t >= last.Load() {
+				return
+			}
+			g := 0
+			if t > 0 {
+				g = ends[t-1]
+			}
+			for ; g < ends[t] && faults[t] == nil; g++ {
+				faults[t] = w.partition(r.rows[r.start[g]:r.start[g+1]])
+			}
+			if faults[t] != nil {
+				last.Store(min(last.Load(), t)) // a race loses a later task's mark at worst
+			}
+		}
+	}
+	var group sync.WaitGroup
+	var panicked atomic.Pointer[any]
+	for range min(threads, len(ends)) - 1 {
+		group.Go(func() {
+			defer func() {
+				if p := recover(); p != nil {
+					panicked.CompareAndSwap(nil, &p)
+				}
+			}()
+			work()
+		})
+	}
+	work()
+	group.Wait()
+	if p := panicked.Load(); p != nil {
+		panic(*p)
+	}
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	for _, err := range faults {
+		if err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// windowWorker owns the scratch of one goroutine.
+type windowWorker struct {
+	run         *windowRun
+	stop        func() error
+	words       []rowWord
+	spare       []rowWord
+	peers, ends []int32
+	lo, hi      []int32
+	sliders     []function.Slider // by call
+}
+
+func (w *windowWorker) partition(rows []int32) error {
+	r := w.run
+	if err := w.stop(); err != nil {
+		return err
+	}
+	if len(r.order) > 0 {
+		if err := w.sort(rows); err != nil {
+			return err
+		}
+	}
+	w.findPeers(rows)
+	if w.sliders == nil {
+		w.sliders = make([]function.Slider, len(r.calls))
+	}
+	for i := range r.calls {
+		c := &r.calls[i]
+		if c.node.Fn != nil && !c.node.Fn.Framed {
+			if c.out.Pick != nil {
+				c.node.Fn.Pick(rows, nil, nil, c.by, c.out)
+			} else {
+				c.node.Fn.Place(rows, w.peers, w.ends, c.by, c.out)
+			}
+			continue
+		}
+		w.frames(rows, c.node.Frame)
+		if c.node.Fn != nil {
+			c.node.Fn.Pick(rows, w.lo, w.hi, c.by, c.out)
+			continue
+		}
+		if w.sliders[i] == nil {
+			w.sliders[i] = c.sliders.New(c.out)
+		}
+		if err := w.sliders[i].Slide(rows, w.lo, w.hi, c.out, w.stop); err != nil {
+			return r.sink.fault(err, c.node, r.all)
+		}
+	}
+	return nil
+}
+
+// sort orders the rows of a partition by the keys; equals stay in their order.
+func (w *windowWorker) sort(rows []int32) error {
+	w.words = room(w.words, len(rows))
+	words, spare := w.words, w.spare
+	for i, row := range rows {
+		words[i].row = row
+	}
+	for k := len(w.run.order) - 1; k >= 0; k-- {
+		key := w.run.order[k]
+		if key.v.Type == column.Null {
+			continue
+		}
+		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
+			if err := w.stop(); err != nil {
+				return err
+			}
+			for i := range words {
+				words[i].word = w.run.word(k, part, words[i].row)
+			}
+			words, spare = radixSort(words, spare)
+		}
+		if key.v.Valid != nil {
+			words, spare = nullsToEnd(key, words, spare)
+		}
+	}
+	for i, x := range words {
+		rows[i] = x.row
+	}
+	w.words, w.spare = words, spare
+	return nil
+}
+
+// word is the value of an order key as a word of its order; of NULL it is that of 0.
+func (r *windowRun) word(k, part int, row int32) uint64 {
+	key, word := r.order[k], uint64(0)
+	if key.v.Valid == nil || column.Bit(key.v.Valid, int(row)) {
+		word = orderWord(key.v, int(row), part, r.ranks[k])
+	}
+	if key.descending {
+		return ^word
+	}
+	return word
+}
+
+// equal reports whether two rows are equal in the order.
+func (r *windowRun) equal(a, b int32) bool {
+	for k, key := range r.order {
+		if key.v.Type == column.Null {
+			continue
+		}
+		if key.v.IsNull(int(a)) != key.v.IsNull(int(b)) || r.word(k, 0, a) != r.word(k, 0, b) {
+			return false
+		}
+	}
+	return true
+}
+
+// findPeers finds the rows that are equal in the order; without one all are.
+func (w *windowWorker) findPeers(rows []int32) {
+	n := len(rows)
+	w.peers, w.ends = room(w.peers, n), room(w.ends, n)
+	first := 0
+	for k := 1; k <= n; k++ {
+		if k < n && w.run.equal(rows[k-1], rows[k]) {
+			continue
+		}
+		for j := first; j < k; j++ {
+			w.peers[j], w.ends[j] = int32(first), int32(k)
+		}
+		first = k
+	}
+}
+
+func (w *windowWorker) frames(rows []int32, f plan.Frame) {
+	w.lo, w.hi = room(w.lo, len(rows)), room(w.hi, len(rows))
+	if f.Range {
+		w.rangeFrames(rows, f)
+	} else {
+		rowFrames(w.lo, w.hi, f)
+	}
+	for k, lo := range w.lo {
+		w.hi[k] = max(w.hi[k], lo) // an empty frame
+	}
+}
