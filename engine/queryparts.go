@@ -116,7 +116,7 @@ func queryExpressions() []entry {
 		},
 		{
 			name: "OVER", also: []string{"WINDOW", "PARTITION BY", "ROWS BETWEEN"},
-			syntax: []string{"function(…) [FILTER (WHERE condition)] [WEIGHTED BY weight] OVER ([PARTITION BY item, …] [ORDER BY item, …] [frame])",
+			syntax: []string{"function(…) OVER ([PARTITION BY item, …] [ORDER BY item, …] [frame])", "aggregate(…) [FILTER (WHERE condition)] [WEIGHTED BY weight] OVER (…)",
 				"frame: ROWS | RANGE start, or ROWS | RANGE BETWEEN start AND end",
 				"start, end: UNBOUNDED PRECEDING, n PRECEDING, CURRENT ROW, n FOLLOWING, UNBOUNDED FOLLOWING"},
 			meaning: "Computes a function for every row over the rows around it: an aggregate, or ROW_NUMBER, RANK, LAG and others of HELP FUNCTIONS. " +

@@ -56,7 +56,7 @@ func windowFunctions() []*Window {
 			Example: "temp - LAG(temp) OVER (ORDER BY z)", Kind: PickBefore, Ordered: true, Check: checkNeighbour("LAG")},
 		{Name: "LAST_VALUE", Signature: "LAST_VALUE(x) OVER (…)",
 			Meaning: "x in the last row of the frame (which ends with the current row and its equals unless it says more)",
-			Example: "LAST_VALUE(id) OVER (ORDER BY temp ROWS BETWEEN UNBOUNDED PRECEDING AND UNBOUNDED FOLLOWING)",
+			Example: "LAST_VALUE(id) OVER (ORDER BY z ROWS BETWEEN 1 PRECEDING AND 1 FOLLOWING)",
 			Kind:    PickLast, Framed: true, Check: checkPick("LAST_VALUE", 1)},
 		{Name: "LEAD", Signature: "LEAD(x [, rows [, otherwise]]) OVER (… ORDER BY …)", Meaning: "x so many rows after (1 if not said); where there is none, otherwise or NULL",
 			Example: "LEAD(temp) OVER (ORDER BY z)", Kind: PickAfter, Ordered: true, Check: checkNeighbour("LEAD")},
