@@ -39,6 +39,7 @@ type builder struct {
 	offered int
 	walker  *walker // of the tetrahedralisation; nil: none is used
 	idle    *walker // what walker was the last time that it was used
+	tallies *tallies
 
 	// known: near holds all neighbours of the cell in work, and onHull tells whether
 	// its site lies on the convex hull. No search is needed.
@@ -58,7 +59,7 @@ type builder struct {
 // builder takes a builder from the diagram's pool; free gives it back.
 func (d *Diagram) builder() *builder {
 	if b, ok := d.pool.Get().(*builder); ok {
-		b.walker = nil
+		b.use(nil, nil)
 		return b
 	}
 	b := &builder{d: d, used: index.NewUsed(d.tree.Len())}
@@ -68,8 +69,10 @@ func (d *Diagram) builder() *builder {
 
 func (d *Diagram) free(b *builder) { d.pool.Put(b) }
 
-// use says which way cells are made: with the tetrahedralisation, or nil without it.
-func (b *builder) use(g *dual) {
+// use says which way cells are made: with the tetrahedralisation and the sums over its
+// triangles, which may be nil, or nil without it.
+func (b *builder) use(g *dual, y *tallies) {
+	b.tallies = y
 	switch {
 	case g == nil:
 		b.walker = nil

@@ -82,8 +82,11 @@ func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, err
 	if err != nil {
 		return nil, err
 	}
+	if g != nil {
+		g.list()
+	}
 	err = d.forEach(ctx, len(cells), 0, len(cells), func(b *builder, k int) error {
-		b.use(g)
+		b.use(g, nil)
 		all, err := b.shares(cells[k])
 		if err != nil {
 			return err
@@ -106,7 +109,7 @@ func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, err
 	earlier = slices.Compact(earlier)
 	fromEarlier := make([][]share, len(earlier))
 	err = d.forEach(ctx, len(earlier), len(cells), len(cells)+len(earlier), func(b *builder, k int) error {
-		b.use(g)
+		b.use(g, nil)
 		all, err := b.shares(earlier[k])
 		if err != nil {
 			return err

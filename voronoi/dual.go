@@ -2,6 +2,7 @@ package voronoi
 
 import (
 	"context"
+	"math"
 	"sync"
 	"sync/atomic"
 
@@ -9,29 +10,51 @@ import (
 )
 
 // dual is a tetrahedralisation with what its cells are made of: the circumcentres,
-// each computed once. Cells of it are measured by walkers. Its vertices are the
-// tetrahedralisation's points, whose numbers depend on the coordinates alone.
+// each computed once. Its vertices are the tetrahedralisation's points, whose numbers
+// depend on the coordinates alone.
 type dual struct {
-	t         *delaunay.T
-	at        []Vec    // by point; at[0] is none
-	cell      []int32  // by point: the number that others know it by
-	point     []int32  // by that number
-	centres   []centre // by real tetrahedron
+	t       *delaunay.T
+	at      []Vec    // by point; at[0] is none
+	cell    []int32  // by point: the number that others know it by
+	point   []int32  // by that number
+	centres []centre // by real tetrahedron
+
+	reach []uint64 // by point: squared distance to the farthest vertex of its cell, as bits; atomic
+	flags []uint32 // by point: what befalls its cell; atomic
+
+	listing   sync.Once // of incidence
 	incidence incidence
 
-	boxed   bool // cells end at the box
-	lo, hi  Vec  // of it, in the coordinates of at with origin added
-	origin  Vec
-	labels  [6]int32
-	corners map[int32][]Vec // by point: corners of the box in its cell, in true coordinates
-	awkward map[int32]bool  // points whose cells are cut from the box plane by plane
+	*enclosure                 // nil: cells end nowhere
+	corners    map[int32][]Vec // by point: corners of the box in its cell, in true coordinates
+	awkward    map[int32]bool  // points whose cells are cut from the box plane by plane
 }
 
+// enclosure is a box at which cells end.
+type enclosure struct {
+	lo, hi Vec // in the coordinates of dual.at with origin added
+	origin Vec
+	labels [6]int32
+}
+
+// Bits of dual.flags. The lowest six say that a vertex lies beyond a side of the box.
+const (
+	flagOut    = 1<<6 - 1
+	flagSpoilt = spoilt
+	flagHull   = 1 << 8
+)
+
 // newDual computes the circumcentres. places are the sites that t was made of, by
-// number; points of t are numbered as it numbers them.
-func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, threads int) (*dual, error) {
-	g := &dual{t: t, at: make([]Vec, t.NumPoints()+1), cell: make([]int32, t.NumPoints()+1), point: make([]int32, n)}
-	parallel(threads, t.NumPoints()+1, func(lo, hi int) {
+// number; points of t are numbered as it numbers them. box may be nil.
+func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, threads int, box *enclosure) (*dual, error) {
+	points := t.NumPoints() + 1
+	g := &dual{
+		t: t, at: make([]Vec, points), cell: make([]int32, points), point: make([]int32, n), enclosure: box,
+		centres: make([]centre, t.NumTets()), reach: make([]uint64, points), flags: make([]uint32, points),
+	}
+	delaunay.AdviseHugePages(g.at)
+	delaunay.AdviseHugePages(g.centres)
+	parallel(threads, points, func(lo, hi int) {
 		for p := max(1, lo); p < hi; p++ {
 			if s := t.PointSite(int32(p)); s >= 0 {
 				g.cell[p] = int32(s)
@@ -40,19 +63,21 @@ func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, thr
 			}
 		}
 	})
-	g.centres = make([]centre, t.NumTets())
-	var listed sync.WaitGroup
-	if threads > 1 {
-		listed.Go(g.listIncidence)
-	} else {
-		g.listIncidence()
-	}
-	parallel(max(1, threads-1), t.NumTets(), func(lo, hi int) {
+	parallel(threads, t.NumTets(), func(lo, hi int) {
 		if ctx.Err() == nil {
 			g.computeCentres(lo, hi)
 		}
 	})
-	listed.Wait()
+	for i := range t.NumGhosts() {
+		v, _ := t.Record(uint32(t.NumTets() + i))
+		for _, p := range v {
+			g.flags[p] |= flagHull
+			g.reach[p] = math.Float64bits(math.Inf(1))
+		}
+	}
+	if box != nil {
+		g.findCorners()
+	}
 	return g, ctx.Err()
 }
 
@@ -86,51 +111,70 @@ func (g *dual) computeCentres(lo, hi int) {
 		v, _ := g.t.Record(uint32(i))
 		a, b, c, d := v[0], v[1], v[2], v[3]
 		// In the order of their numbers, so that the bits are those of the set.
-		if b < a {
-			a, b = b, a
-		}
-		if d < c {
-			c, d = d, c
-		}
-		if c < a {
-			a, c = c, a
-		}
-		if d < b {
-			b, d = d, b
-		}
-		if c < b {
-			b, c = c, b
-		}
+		a, b = min(a, b), max(a, b)
+		c, d = min(c, d), max(c, d)
+		a, c = min(a, c), max(a, c)
+		b, d = min(b, d), max(b, d)
+		b, c = min(b, c), max(b, c)
 		o := circumcentre(g.at[a], g.at[b], g.at[c], g.at[d])
-		g.centres[i] = centre{o: o, from: a}
-		if !finite(o) {
-			g.centres[i].out = spoilt
+		far2, out := dot(o, o), uint8(0)
+		switch {
+		case !finite(o):
+			far2, out = math.Inf(1), spoilt
+		case g.enclosure != nil:
+			out = g.sidesBeyond(a, o, far2, min(b, c, d))
+		}
+		g.centres[i] = centre{o: o, from: a, out: out}
+		bits := math.Float64bits(far2)
+		for _, p := range [4]int32{a, b, c, d} {
+			raise(&g.reach[p], bits)
+			if out != 0 && atomic.LoadUint32(&g.flags[p])&uint32(out) != uint32(out) {
+				atomic.OrUint32(&g.flags[p], uint32(out))
+			}
 		}
 	}
 }
 
-// enclose says that cells end at a box, and marks the circumcentres outside it.
-func (g *dual) enclose(lo, hi, origin Vec, labels [6]int32, threads int) {
-	g.boxed, g.lo, g.hi, g.origin, g.labels = true, lo, hi, origin, labels
-	parallel(threads, len(g.centres), func(from, to int) {
-		for i := from; i < to; i++ {
-			c := &g.centres[i]
-			l, h := g.localBox(c.from)
-			c.out |= outcode(c.o, l, h)
+// raise makes x the larger of itself and bits. What it comes to does not depend on the
+// order of the calls, nor on who makes them.
+func raise(x *uint64, bits uint64) {
+	for {
+		old := atomic.LoadUint64(x)
+		if old >= bits || atomic.CompareAndSwapUint64(x, old, bits) {
+			return
 		}
-	})
+	}
+}
+
+// surelyBeyond is the share of its distance by which a far circumcentre has to lie
+// beyond a side of the box for that to be certain whatever was rounded.
+const surelyBeyond = 0x1p-36
+
+// sidesBeyond is the outcode of the centre o, seen from point a. A centre so far away
+// that its digits cannot be relied on is spoilt, unless it lies outside for certain.
+func (g *dual) sidesBeyond(a int32, o Vec, far2 float64, other int32) uint8 {
+	lo, hi := g.localBox(a)
+	out := outcode(o, lo, hi)
+	if out == 0 {
+		return 0 // the cell's own measures tell whether it is to be relied on
+	}
+	edge := sub(g.at[other], g.at[a])
+	if far2 <= farShare2*dot(edge, edge) {
+		return out
+	}
+	doubt := surelyBeyond * math.Sqrt(far2)
+	m := Vec{X: doubt, Y: doubt, Z: doubt}
+	if outcode(o, sub(lo, m), add(hi, m)) == 0 {
+		out |= spoilt
+	}
+	return out
+}
+
+// findCorners finds the cells in which the corners of the box lie.
+func (g *dual) findCorners() {
 	g.corners, g.awkward = map[int32][]Vec{}, map[int32]bool{}
 	for k := range 8 {
-		x := lo
-		if k&1 != 0 {
-			x.X = hi.X
-		}
-		if k&2 != 0 {
-			x.Y = hi.Y
-		}
-		if k&4 != 0 {
-			x.Z = hi.Z
-		}
+		x := g.boxCorner(k)
 		near := g.nearestPoints(x)
 		g.corners[near[0]] = append(g.corners[near[0]], x)
 		if len(near) > 1 { // a face passes through the corner, or nearly so
@@ -139,6 +183,21 @@ func (g *dual) enclose(lo, hi, origin Vec, labels [6]int32, threads int) {
 			}
 		}
 	}
+}
+
+// boxCorner is the corner with the upper side on every axis whose bit in k is set.
+func (e *enclosure) boxCorner(k int) Vec {
+	x := e.lo
+	if k&1 != 0 {
+		x.X = e.hi.X
+	}
+	if k&2 != 0 {
+		x.Y = e.hi.Y
+	}
+	if k&4 != 0 {
+		x.Z = e.hi.Z
+	}
+	return x
 }
 
 // localBox is the box seen from a point.

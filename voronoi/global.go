@@ -7,7 +7,6 @@ import (
 
 	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/index"
-	"nearcell/voronoi/polyhedron"
 )
 
 // The second way to cells: the tetrahedralisation of all sites, whose circumcentres
@@ -29,12 +28,13 @@ func (d *Diagram) dual(ctx context.Context) (*dual, error) {
 	if err != nil {
 		return nil, err
 	}
-	g, err := newDual(ctx, t, d.tree.Point, n, d.threads)
+	var box *enclosure
+	if d.isBox && !d.stretched {
+		box = &enclosure{d.lo, d.hi, d.origin, d.labels}
+	}
+	g, err := newDual(ctx, t, d.tree.Point, n, d.threads, box)
 	if err != nil {
 		return nil, err
-	}
-	if d.isBox && !d.stretched {
-		g.enclose(d.lo, d.hi, d.origin, d.labels, d.threads)
 	}
 	d.whole = g
 	return g, nil
@@ -111,7 +111,12 @@ func (b *builder) inSolid(at Vec) bool {
 		lo, hi := w.g.localBox(w.p)
 		return w.any == 0 && lo.X <= 0 && lo.Y <= 0 && lo.Z <= 0 && hi.X >= 0 && hi.Y >= 0 && hi.Z >= 0
 	}
-	far := math.Sqrt(w.far2) * (1 + 1e-9)
+	return d.holdsBall(at, w.far2)
+}
+
+// holdsBall tells whether the solid holds a ball about a place, surely.
+func (d *Diagram) holdsBall(at Vec, radius2 float64) bool {
+	far := math.Sqrt(radius2) * (1 + 1e-9)
 	if lo, hi := sub(d.lo, at), sub(d.hi, at); far > min(-lo.X, -lo.Y, -lo.Z, hi.X, hi.Y, hi.Z) {
 		return false
 	}
@@ -150,8 +155,28 @@ func (b *builder) knowNeighbours() {
 	})
 }
 
-// measureGlobal fills one row as measure does.
+// tallied are the measures that are read from the sums over the triangles.
+const tallied = Volume | Area | WallArea | Clipped | Centroid | Farthest | NearestFace | Bounded
+
+// measureGlobal fills one row as measure does: from the sums over the triangles where
+// these are good, else, and for counts, from the faces.
 func (b *builder) measureGlobal(cell int32, want Measures, out *Cells, row int32) error {
+	if y := b.tallies; y != nil && y.good(b.walker.g.point[cell]) {
+		p := b.walker.g.point[cell]
+		at := add(b.d.tree.Point(cell), b.d.origin)
+		if b.d.solid == nil || b.d.isBox || b.d.holdsBall(at, y.cells[p].far2) {
+			y.fill(p, at, want, out, row)
+			want &^= tallied
+		}
+	}
+	if want == 0 {
+		return nil
+	}
+	return b.measureFaces(cell, want, out, row)
+}
+
+// measureFaces fills one row from the faces of the cell.
+func (b *builder) measureFaces(cell int32, want Measures, out *Cells, row int32) error {
 	d, w := b.d, b.walker
 	if want&Bounded != 0 {
 		out.Bounded[row] = true
@@ -250,99 +275,6 @@ func (b *builder) sharesGlobal(cell int32) ([]share, error) {
 		}
 	}
 	return b.list, nil
-}
-
-// CellsInBox measures all cells of a tetrahedralisation, cut by a box that holds its
-// sites. It is Diagram.Measure for callers that have the tetrahedralisation and need
-// no search. Entry s of the arrays belongs to site s; for sites in the place of
-// another all are zero, and Inside is false. All measures but Faces can be had.
-func CellsInBox(ctx context.Context, t *delaunay.T, lo, hi Vec, want Measures, threads int) (*Cells, error) {
-	n := t.NumSites()
-	g, err := newDual(ctx, t, func(s int32) Vec { return t.Site(int(s)) }, n, threads)
-	if err != nil {
-		return nil, err
-	}
-	o := polyhedron.Wall
-	g.enclose(lo, hi, Vec{}, [6]int32{o(0), o(1), o(2), o(3), o(4), o(5)}, threads)
-	sites := make([]int32, n)
-	for i := range sites {
-		sites[i] = int32(i)
-	}
-	out := newCells(want&^Faces, sites)
-	idle := make(chan *walker, threads+1)
-	parallel(threads, t.NumPoints()+1, func(from, to int) {
-		var w *walker
-		select {
-		case w = <-idle:
-		default:
-			w = newWalker(g)
-		}
-		for p := max(1, from); p < to && ctx.Err() == nil; p++ {
-			if t.PointSite(int32(p)) >= 0 {
-				w.measureInBox(int32(p), want&^Faces, out)
-			}
-		}
-		select {
-		case idle <- w:
-		default:
-		}
-	})
-	return out, ctx.Err()
-}
-
-func (w *walker) measureInBox(p int32, want Measures, out *Cells) {
-	row := w.g.cell[p]
-	out.Inside[row], out.Multiplicity[row] = true, 1
-	w.star(p)
-	if want&Bounded != 0 {
-		out.Bounded[row] = true
-	}
-	if want&NearestFace != 0 {
-		out.NearestFace[row] = math.Sqrt(w.near2) / 2
-	}
-	k := wants{moments: want&Centroid != 0}
-	at := add(w.own, w.g.origin)
-	switch {
-	case w.any == 0 && w.clippable():
-		w.whole(k)
-	case w.clippable() && w.inBox(k):
-	default:
-		w.cutPlanes()
-		measureConvex(&w.cell, at, want, out, row)
-		return
-	}
-	w.sums.fill(at, want, out, row)
-}
-
-// cutPlanes makes w.cell what the box and the neighbours leave.
-func (w *walker) cutPlanes() {
-	g, c := w.g, &w.cell
-	lo, hi := g.localBox(w.p)
-	c.SetBox(lo, hi, g.labels)
-	w.near = w.near[:0]
-	for i := range w.faces {
-		n := w.faces[i].n
-		w.near = append(w.near, index.Neighbour{Point: w.faces[i].q, Dist2: dot(n, n)})
-	}
-	slices.SortFunc(w.near, func(a, b index.Neighbour) int {
-		switch {
-		case a.Dist2 < b.Dist2:
-			return -1
-		case a.Dist2 > b.Dist2:
-			return 1
-		}
-		return int(a.Point - b.Point)
-	})
-	far := reach2(c)
-	for _, q := range w.near {
-		if q.Dist2 > float64(4*far) {
-			break
-		}
-		n := sub(g.at[q.Point], w.own)
-		if c.Bisect(n, lostBySub(g.at[q.Point], w.own, n), q.Point) == polyhedron.Cut {
-			far = reach2(c)
-		}
-	}
 }
 
 // Kept is how many bytes the tetrahedralisation takes that the diagram keeps; 0: none

@@ -23,16 +23,20 @@ func measureBoth(t testing.TB, d *Diagram, want Measures) (single, whole *Cells)
 	if err != nil {
 		t.Fatal(err)
 	}
+	y, err := g.tally(ctx, want, d.threads)
+	if err != nil {
+		t.Fatal(err)
+	}
 	single, whole = newCells(want, r.sites), newCells(want, r.sites)
 	b := d.builder()
 	defer d.free(b)
 	for k, c := range r.cells {
 		row := r.rows[r.start[k]]
-		b.use(nil)
+		b.use(nil, nil)
 		if err := b.measure(c, want, single, row); err != nil {
 			t.Fatal(err)
 		}
-		b.use(g)
+		b.use(g, y)
 		if err := b.measure(c, want, whole, row); err != nil {
 			t.Fatal(err)
 		}
@@ -114,7 +118,7 @@ func TestLaw9InSolids(t *testing.T) {
 				g, _ := d.dual(context.Background())
 				w, whole := newWalker(g), 0
 				u := d.builder()
-				u.use(g)
+				u.use(g, nil)
 				for p := range g.cell[1:] {
 					w = u.walker
 					w.star(int32(p + 1))
@@ -232,7 +236,7 @@ func TestLaw9Contacts(t *testing.T) {
 		}
 		b := d.builder()
 		for c := range int32(d.tree.Len()) {
-			b.use(nil)
+			b.use(nil, nil)
 			one, err := b.shares(c)
 			if err != nil {
 				t.Fatal(err)
@@ -241,7 +245,7 @@ func TestLaw9Contacts(t *testing.T) {
 			for _, s := range one {
 				want[s.other] = s
 			}
-			b.use(g)
+			b.use(g, nil)
 			other, err := b.shares(c)
 			if err != nil {
 				t.Fatal(err)

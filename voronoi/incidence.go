@@ -6,14 +6,17 @@ import "math"
 // so that a star is read at once and not from neighbour to neighbour: the memory
 // answers many questions at the same time.
 type incidence struct {
-	start  []uint32 // tets[start[p]:start[p+1]] are those at point p
-	tets   []uint32
-	onHull []bool // point p lies on the convex hull: there is more than tets has
+	start []uint32 // tets[start[p]:start[p+1]] are those at point p
+	tets  []uint32
 }
+
+// list makes the lists, once. They are worth it where many stars are wanted; single
+// ones are found without.
+func (g *dual) list() { g.listing.Do(g.listIncidence) }
 
 func (g *dual) listIncidence() {
 	t, n := g.t, len(g.at)
-	x := incidence{start: make([]uint32, n+1), tets: make([]uint32, 4*t.NumTets()), onHull: make([]bool, n)}
+	x := incidence{start: make([]uint32, n+1), tets: make([]uint32, 4*t.NumTets())}
 	for i := range uint32(t.NumTets()) {
 		v, _ := t.Record(i)
 		x.start[v[0]]++
@@ -35,12 +38,6 @@ func (g *dual) listIncidence() {
 			x.tets[x.start[p]] = i
 		}
 	}
-	for i := range t.NumGhosts() {
-		v, _ := t.Record(uint32(t.NumTets() + i))
-		for _, p := range v {
-			x.onHull[p] = true
-		}
-	}
 	g.incidence = x
 }
 
@@ -51,7 +48,7 @@ const mostNeighbours = 64
 var restOf = [4][3]uint8{{1, 2, 3}, {0, 3, 2}, {0, 1, 3}, {0, 2, 1}}
 
 // quickStar is star for a point that is not on the hull and has not too many
-// neighbours; it reports false for others.
+// neighbours; it reports false for others, and where there are no lists.
 //
 // In a tetrahedron (p, x, y, z), positive, the walk around the edge to x comes from the
 // facet with y and leaves by the one with z; likewise around those to y and z. That is
@@ -59,7 +56,7 @@ var restOf = [4][3]uint8{{1, 2, 3}, {0, 3, 2}, {0, 1, 3}, {0, 2, 1}}
 // later were written for this star.
 func (w *walker) quickStar(p int32) bool {
 	g := w.g
-	if g.incidence.onHull[p] {
+	if g.incidence.start == nil || g.flags[p]&flagHull != 0 {
 		return false
 	}
 	w.stamp++

@@ -30,8 +30,17 @@ func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*C
 	if err != nil {
 		return nil, err
 	}
+	var y *tallies
+	if g != nil && want&tallied != 0 && !d.stretched {
+		if y, err = g.tally(ctx, want, d.threads); err != nil {
+			return nil, err
+		}
+	}
+	if g != nil && (want&^tallied != 0 || d.stretched) {
+		g.list()
+	}
 	err = d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
-		b.use(g)
+		b.use(g, y)
 		rows := r.rows[r.start[k]:r.start[k+1]]
 		if err := b.measure(r.cells[k], want, out, rows[0]); err != nil {
 			return err

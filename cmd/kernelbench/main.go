@@ -41,7 +41,7 @@ func parse(args []string, stderr io.Writer) (a arguments, err error) {
 	f.IntVar(&a.threads, "threads", 1, "goroutines that insert sites")
 	f.StringVar(&a.cells, "cells", "", "write cell volumes to this file")
 	f.BoolVar(&a.measures, "measures", false, "with -cells, compute areas and centroids too")
-	f.StringVar(&a.profile, "profile", "", "write a processor profile of the build to this file")
+	f.StringVar(&a.profile, "profile", "", "write a processor profile of build and cells to this file")
 	for {
 		if err = f.Parse(args); err != nil {
 			return a, err
@@ -83,12 +83,12 @@ func run(args []string, stdout, stderr io.Writer) error {
 		if err := pprof.StartCPUProfile(out); err != nil {
 			return err
 		}
+		defer pprof.StopCPUProfile()
 	}
 	ready, start := usage(), time.Now()
 	t, err := delaunay.BuildFlat(context.Background(), sites, delaunay.Options{Threads: a.threads})
 	seconds := time.Since(start).Seconds()
 	done := usage()
-	pprof.StopCPUProfile()
 	if err != nil {
 		return err
 	}

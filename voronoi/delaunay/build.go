@@ -78,7 +78,7 @@ func (b *builder) run() error {
 	m, n := b.m, len(b.m.sites)/3
 	m.setLimits()
 	m.tets = make([]tet, int(float64(n)*tetsPerSite)+blockSize*(b.threads+1))
-	adviseHugePages(m.tets)
+	AdviseHugePages(m.tets)
 	stop := b.faultPages()
 	m.order, b.ends = insertionOrder(m.frame, m.sites, b.threads)
 	b.gather()
@@ -103,7 +103,7 @@ func (b *builder) run() error {
 func (b *builder) gather() {
 	m, n := b.m, len(b.m.order)
 	m.pts = make([]point, n+1)
-	adviseHugePages(m.pts)
+	AdviseHugePages(m.pts)
 	m.pts[0].tet = noTet
 	inChunks(n, b.threads, func(lo, hi int) {
 		for i := lo; i < hi; i++ {

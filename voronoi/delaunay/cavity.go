@@ -271,7 +271,7 @@ func (w *worker) reserve(n int) bool {
 
 func (m *mesh) grow(by int) {
 	bigger := make([]tet, len(m.tets)+by)
-	adviseHugePages(bigger)
+	AdviseHugePages(bigger)
 	copy(bigger, m.tets)
 	m.tets = bigger
 }

@@ -77,8 +77,8 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 	rounds := roundsFor(n)
 	pack := packingFor(n)
 	list, spare := make([]ranked, n), make([]ranked, n)
-	adviseHugePages(list)
-	adviseHugePages(spare)
+	AdviseHugePages(list)
+	AdviseHugePages(spare)
 	counts := make([]int, rounds+1)
 	var lock sync.Mutex
 	inChunks(n, threads, func(lo, hi int) {

@@ -5,11 +5,11 @@ import (
 	"syscall"
 )
 
-// adviseHugePages asks for pages of 2 MiB behind a large slice. A build touches all of
+// AdviseHugePages asks for pages of 2 MiB behind a large slice. A build touches all of
 // its memory once and then jumps about in it: with pages of 4 KiB a third of the time
 // can go into the kernel's page faults, more than a hundred thousand of them for a
 // million sites. It is advice: where the kernel does not take it nothing is lost.
-func adviseHugePages[E any](s []E) {
+func AdviseHugePages[E any](s []E) {
 	const huge, madvHugePage = 1 << 21, 14
 	bytes := uintptr(len(s)) * reflect.TypeFor[E]().Size()
 	if bytes < 2*huge {

@@ -2,4 +2,5 @@
 
 package delaunay
 
-func adviseHugePages[E any]([]E) {}
+// AdviseHugePages does nothing here.
+func AdviseHugePages[E any]([]E) {}
