@@ -106,8 +106,23 @@ func parallel(threads, n int, do func(lo, hi int)) {
 	all.Wait()
 }
 
-func (g *dual) computeCentres(lo, hi int) {
+// touch reads what computeCentres needs for tetrahedra lo to hi-1, so that the memory
+// answers all at once. The result means nothing.
+func (g *dual) touch(lo, hi int) (sum uint64) {
 	for i := lo; i < hi; i++ {
+		v, _ := g.t.Record(uint32(i))
+		for _, p := range v {
+			sum += math.Float64bits(g.at[p].X) + atomic.LoadUint64(&g.reach[p])
+		}
+	}
+	return sum
+}
+
+func (g *dual) computeCentres(lo, hi int) (touched uint64) {
+	for i := lo; i < hi; i++ {
+		if (i-lo)%ahead == 0 {
+			touched += g.touch(i, min(hi, i+ahead))
+		}
 		v, _ := g.t.Record(uint32(i))
 		a, b, c, d := v[0], v[1], v[2], v[3]
 		// In the order of their numbers, so that the bits are those of the set.
@@ -133,6 +148,7 @@ func (g *dual) computeCentres(lo, hi int) {
 			}
 		}
 	}
+	return touched
 }
 
 // raise makes x the larger of itself and bits. What it comes to does not depend on the

@@ -52,6 +52,8 @@ type tallies struct {
 
 	area    bool // areas are added up
 	moments bool // first moments are
+
+	touched uint64 // of no meaning: see touch
 }
 
 // sizeOf is an e for which 2^e is above the square root of x2.
@@ -155,54 +157,77 @@ func (s *tallies) merge(z *tallies, lo, hi int) {
 	}
 }
 
+// ahead is how many tetrahedra are touched before they are worked on: the memory
+// answers their questions all at once.
+const ahead = 32
+
 // block adds the triangles of tetrahedra lo to hi-1, each with the lower of its two.
 func (s *tallies) block(lo, hi uint32) {
 	g := s.g
 	tets := uint32(len(g.centres))
-	for t := lo; t < hi; t++ {
-		v, links := g.t.Record(t)
-		inner := &g.centres[t]
-		if inner.out&spoilt != 0 {
-			continue // its cells are made in another way
-		}
-		for k := range links {
-			u := links[k] >> 2
-			if u < t {
-				continue
+	for ; lo < hi; lo += ahead {
+		end := min(hi, lo+ahead)
+		s.touch(lo, end)
+		for t := lo; t < end; t++ {
+			v, links := g.t.Record(t)
+			inner := &g.centres[t]
+			if inner.out&spoilt != 0 {
+				continue // its cells are made in another way
 			}
-			rest := &restOf[k&3]
-			a, b, c := v[rest[0]&3], v[rest[1]&3], v[rest[2]&3]
-			p, r := min(a, b, c), max(a, b, c)
-			q := a ^ b ^ c ^ p ^ r
-			// The normal of a, b, c looks from t to u; that of p, q, r may look back.
-			sign := evenness(a, b, c)
-			if u >= tets {
-				if g.enclosure != nil {
-					s.ray(p, q, r, inner, sign)
+			for k := range links {
+				u := links[k] >> 2
+				switch {
+				case u >= tets:
+					if g.enclosure != nil {
+						s.ray(v, k, inner)
+					}
+				case u > t:
+					outer := &g.centres[u]
+					switch out := inner.out | outer.out; {
+					case out == 0:
+						s.whole(v, k, inner, outer)
+					case inner.out&outer.out == 0 && out&spoilt == 0:
+						s.clipped(v, k, inner, outer)
+					}
 				}
-				continue
-			}
-			outer := &g.centres[u]
-			switch out := inner.out | outer.out; {
-			case out == 0:
-				s.whole(p, q, r, inner, outer, sign)
-			case inner.out&outer.out == 0 && out&spoilt == 0:
-				s.clipped(p, q, r, inner, outer, sign)
 			}
 		}
 	}
 }
 
-// evenness is +1 if x, y, z are in order but for a rotation, else -1.
-func evenness(x, y, z int32) float64 {
-	return float64(2*(below(x, y)+below(y, z)+below(z, x)) - 3)
+// touch reads what block needs for tetrahedra lo to hi-1.
+func (s *tallies) touch(lo, hi uint32) {
+	g := s.g
+	sum := s.touched
+	for t := lo; t < hi; t++ {
+		v, links := g.t.Record(t)
+		for k := range v {
+			c := &s.cells[v[k]]
+			sum += uint64(c.size) + math.Float64bits(c.far2)
+			if u := links[k] >> 2; u > t && int(u) < len(g.centres) {
+				sum += uint64(g.centres[u].from)
+			}
+		}
+	}
+	s.touched = sum
+}
+
+// facing returns the corners of face k in order, and +1 if the normal of the triangle in
+// that order looks out of the tetrahedron, else -1.
+func facing(v *[4]int32, k int) (p, q, r int32, sign float64) {
+	rest := &restOf[k&3]
+	a, b, c := v[rest[0]&3], v[rest[1]&3], v[rest[2]&3]
+	p, r = min(a, b, c), max(a, b, c)
+	// In the order a, b, c it looks out; so it does after a rotation.
+	return p, a ^ b ^ c ^ p ^ r, r, float64(2*(below(a, b)+below(b, c)+below(c, a)) - 3)
 }
 
 // below is 1 if x < y, for numbers that are not negative.
 func below(x, y int32) int32 { return int32(uint32(x-y) >> 31) }
 
 // whole adds a Voronoi edge between two centres that the box does not cut.
-func (s *tallies) whole(p, q, r int32, c, d *centre, sign float64) {
+func (s *tallies) whole(v *[4]int32, face int, c, d *centre) {
+	p, q, r, sign := facing(v, face)
 	i, j, k := &s.cells[p], &s.cells[q], &s.cells[r]
 	from := add(c.o, sub(s.cells[c.from].at, i.at))
 	to := add(d.o, sub(s.cells[d.from].at, i.at))

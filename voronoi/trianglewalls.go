@@ -38,7 +38,8 @@ func (g *dual) heightOver(at Vec, side int) float64 {
 }
 
 // clipped adds the part in the box of a Voronoi edge between two centres.
-func (s *tallies) clipped(p, q, r int32, c, d *centre, sign float64) {
+func (s *tallies) clipped(v *[4]int32, face int, c, d *centre) {
+	p, q, r, sign := facing(v, face)
 	if sign < 0 {
 		c, d = d, c
 	}
@@ -48,9 +49,10 @@ func (s *tallies) clipped(p, q, r int32, c, d *centre, sign float64) {
 	s.cut(p, q, r, x, y, c.out, d.out, false)
 }
 
-// ray adds the part in the box of a Voronoi edge that runs to infinity, along the
-// normal of the triangle if sign is positive, else against it.
-func (s *tallies) ray(p, q, r int32, c *centre, sign float64) {
+// ray adds the part in the box of a Voronoi edge that runs from a centre through a face
+// on the convex hull to infinity.
+func (s *tallies) ray(v *[4]int32, face int, c *centre) {
+	p, q, r, sign := facing(v, face)
 	at := s.cells[p].at
 	n := cross(sub(s.cells[q].at, at), sub(s.cells[r].at, at))
 	out := outcode(Vec{X: sign * n.X, Y: sign * n.Y, Z: sign * n.Z}, Vec{}, Vec{})
