@@ -50,6 +50,8 @@ func (r *runner) openNode(ctx context.Context, n plan.Node) (*pipeline, error) {
 		return r.openUnion(ctx, n)
 	case *plan.Matched:
 		return r.openMatched(ctx, n)
+	case *plan.Number:
+		return r.openNumber(ctx, n)
 	case *plan.Shared:
 		return r.openShared(n)
 	case *plan.Lookup:

@@ -43,6 +43,10 @@ func (e *Estimator) columnValues(n Node, at int) values {
 		}
 	case *Distinct:
 		return e.columnValues(n.Input, at)
+	case *Number:
+		if at < len(n.Input.Schema()) {
+			return e.columnValues(n.Input, at)
+		}
 	case *Shared:
 		return e.columnValues(n.Common.Plan, at)
 	case *Lookup:
@@ -136,6 +140,10 @@ func stored(n Node, at int) (*column.Vector, bool) {
 			return stored(n.Right, at-left)
 		}
 		return stored(n.Left, at)
+	case *Number:
+		if at < len(n.Input.Schema()) {
+			return stored(n.Input, at)
+		}
 	case *Shared:
 		return stored(n.Common.Plan, at)
 	case *Relation:
@@ -169,6 +177,10 @@ func ScanOf(n Node, at int) *Scan {
 			return ScanOf(n.Right, at-left)
 		}
 		return ScanOf(n.Left, at)
+	case *Number:
+		if at < len(n.Input.Schema()) {
+			return ScanOf(n.Input, at)
+		}
 	case *Shared:
 		return ScanOf(n.Common.Plan, at)
 	case *Relation:

@@ -37,6 +37,13 @@
 // columns goes as Wanted, which says what is shown; it never goes below, since
 // the sites that it leaves out still partition.
 //
+// Join order joins tables in another order where the one that is written costs more
+// than twice as much by the estimates: what nothing ties together yet waits, and small
+// sides are the ones kept in memory. Safe: conditions that can fail, or ask a query,
+// keep the order; where it matters, the rows are numbered before and put back in the
+// order that was written. It does not matter below groups, whose sums are added in
+// double-double: in another order they are the same to all bits that this holds.
+//
 // Join keys turns equalities between the sides into hash keys. Safe: NULL equals
 // nothing either way, and INTEGER meets REAL exactly either way. A side that can
 // fail stays in Rest, as keys are computed for rows without a partner too.
@@ -85,7 +92,7 @@
 //
 // # Limitations
 //
-// Lineage ends at common parts: what leaves out cells there is not noted. Joins are not reordered: the right side is the one kept in memory. Conditions
+// Lineage ends at common parts: what leaves out cells there is not noted. Of a join the right side is the one kept in memory. Conditions
 // do not move through groups to their keys. A measure counts as lost or repeated
 // only as far as its column is handed through unchanged. Behind a view without
 // the site's identifier a repeated cell is only noticed where the numbers of rows

@@ -145,11 +145,8 @@ func (e *Estimator) node(n Node) (Estimate, error) {
 			in.Rows = min(in.Rows, float64(n.Top))
 		}
 		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
-	case *Window:
-		in := e.known[n.Input]
-		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
-	case *Project:
-		in := e.known[n.Input]
+	case *Project, *Number, *Window:
+		in := e.known[n.Inputs()[0]]
 		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
 	}
 	return Estimate{}, nil

@@ -36,8 +36,8 @@ func joinKeys(n Node) (Node, error) {
 // keyPair takes an equality apart into what the left and what the right side
 // computes.
 func keyPair(e expr.Expr, left, right int) (l, r expr.Expr, ok bool) {
-	eq, is := e.(*expr.Compare)
-	if !is || eq.Op != lang.Equals || e.CanFail() || !keyTypes(eq.Left.Type(), eq.Right.Type()) {
+	eq, is := keyEquality(e)
+	if !is {
 		return nil, nil, false
 	}
 	toLeft, toRight := sides(left, right)
@@ -49,6 +49,12 @@ func keyPair(e expr.Expr, left, right int) (l, r expr.Expr, ok bool) {
 		return nil, nil, false
 	}
 	return l, expr.Remap(r, toRight), true
+}
+
+// keyEquality is a condition that may be a key, whichever side computes what.
+func keyEquality(e expr.Expr) (*expr.Compare, bool) {
+	eq, is := e.(*expr.Compare)
+	return eq, is && eq.Op == lang.Equals && !e.CanFail() && keyTypes(eq.Left.Type(), eq.Right.Type())
 }
 
 func keyTypes(a, b column.Type) bool {

@@ -32,6 +32,8 @@ func Lineage(n Node) []Origin {
 		return Lineage(n.Inputs()[0])
 	case *Window:
 		return append(slices.Clone(Lineage(n.Input)), make([]Origin, len(n.Calls))...)
+	case *Number:
+		return append(slices.Clone(Lineage(n.Input)), Origin{})
 	case *Shared:
 		return Lineage(n.Common.Plan)
 	case *Project:

@@ -161,6 +161,12 @@ type Matched struct {
 	Left, Right Node
 }
 
+// Number is its input with one more column behind: the number of each row, from 0.
+type Number struct {
+	Input Node
+	Field column.Field
+}
+
 // Common is a part of a plan that is computed once, however often it is used.
 type Common struct {
 	Name string // of WITH, else what it is for

@@ -23,6 +23,7 @@ func init() { // inside calls Optimise
 		{"unnest", unnest},
 		{"fold", fold},
 		{"push down", pushDown},
+		{"join order", joinOrder},
 		{"join keys", joinKeys},
 		{"top", top},
 		{"prune", prune},

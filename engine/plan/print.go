@@ -57,6 +57,8 @@ func Line(n Node) string {
 		return limitLine(n)
 	case *Distinct:
 		return "distinct rows"
+	case *Number:
+		return "number the rows"
 	case *Union:
 		return "union all"
 	case *Matched:

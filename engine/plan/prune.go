@@ -54,6 +54,10 @@ func pruned(n Node, need []bool) (Node, []int) {
 	case *Distinct:
 		in, to := pruned(n.Input, slices.Repeat([]bool{true}, len(need)))
 		return &Distinct{in}, to
+	case *Number:
+		last := len(need) - 1
+		in, to := pruned(n.Input, need[:last:last])
+		return &Number{in, n.Field}, append(slices.Clone(to), len(in.Schema()))
 	case *Union:
 		return prunedUnion(n, need)
 	case *Matched:

@@ -282,6 +282,9 @@ func sameStep(a, b Node) bool {
 	case *Distinct:
 		_, ok := b.(*Distinct)
 		return ok
+	case *Number:
+		_, ok := b.(*Number)
+		return ok
 	case *Aggregate:
 		b, ok := b.(*Aggregate)
 		return ok && len(a.Keys) == len(b.Keys) && sameCalls(a.Calls, b.Calls)

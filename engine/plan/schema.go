@@ -101,6 +101,15 @@ func (n *Matched) Schema() column.Schema { return n.Left.Schema() }
 // Inputs is the left, then the right side.
 func (n *Matched) Inputs() []Node { return []Node{n.Left, n.Right} }
 
+// Schema is the input's with the number behind.
+func (n *Number) Schema() column.Schema {
+	in := n.Input.Schema()
+	return append(in[:len(in):len(in)], n.Field)
+}
+
+// Inputs is the one input.
+func (n *Number) Inputs() []Node { return []Node{n.Input} }
+
 // Schema is that of the common part.
 func (n *Shared) Schema() column.Schema { return n.Fields }
 
@@ -149,6 +158,10 @@ func withInputs(n Node, in []Node) Node {
 		c.Input = in[0]
 		return &c
 	case *Distinct:
+		c := *n
+		c.Input = in[0]
+		return &c
+	case *Number:
 		c := *n
 		c.Input = in[0]
 		return &c

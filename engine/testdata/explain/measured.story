@@ -73,11 +73,12 @@ estimated   rows  seconds     MB  step
       ~54     54   ?.????                 columns: id, "AVG(temp)" AS mean
       ~54     54   ?.????  ?.???            group by id: AVG(temp)
    ~36010  36010   ?.????                     columns: id, temp
-   ~36010  36010   ?.????  ?.???                inner join by hash: id = logger
-       54     54   ?.????                         columns: id
-       54     54   ?.????                           read campaign hall: id
-   ~36010  36010   ?.????                         keep where: temp IS NOT NULL
-    36047  36047   ?.????                           read table log: logger, temp
+   ~36010  36010   ?.????                       columns: id, temp
+   ~36010  36010   ?.????  ?.???                  inner join by hash: logger = id
+   ~36010  36010   ?.????                           keep where: temp IS NOT NULL
+    36047  36047   ?.????                             read table log: logger, temp
+       54     54   ?.????                           columns: id
+       54     54   ?.????                             read campaign hall: id
 
 ask
 EXPLAIN MEASURED SELECT logger, COUNT(temp) AS got FROM log GROUP BY logger HAVING COUNT(temp) < 665 ORDER BY got;

@@ -139,11 +139,12 @@ EXPLAIN SELECT level, EXTRACT(HOUR FROM t) AS hour, MAX(temp) FROM readings GROU
    ~72  columns: level, "EXTRACT(HOUR FROM t)" AS hour, "MAX(temp)"
    ~72    group by level, EXTRACT(HOUR FROM t): MAX(temp)
 ~36010      columns: level, t, temp
-~36010        inner join by hash: id = logger
-    54          columns: id, level
-    54            read campaign hall: id, level
-~36010          keep where: temp IS NOT NULL
- 36047            read table log: t, logger, temp
+~36010        columns: level, t, temp
+~36010          inner join by hash: logger = id
+~36010            keep where: temp IS NOT NULL
+ 36047              read table log: t, logger, temp
+    54            columns: id, level
+    54              read campaign hall: id, level
 
 # Joins: by hash, of pairs, to the left.
 ask
@@ -161,11 +162,12 @@ EXPLAIN SELECT c.id, c.volume, g.over_limit FROM CELLS OF placed WITHIN air AS c
    ~54          columns: id, "SHARE(temp > :upper)" AS over_limit
    ~54            group by id: SHARE(temp > :upper)
 ~36010              columns: id, temp
-~36010                inner join by hash: id = logger
-    54                  columns: id
-    54                    read campaign hall: id
-~36010                  keep where: temp IS NOT NULL
- 36047                    read table log: logger, temp
+~36010                columns: id, temp
+~36010                  inner join by hash: logger = id
+~36010                    keep where: temp IS NOT NULL
+ 36047                      read table log: logger, temp
+    54                    columns: id
+    54                      read campaign hall: id
 
 ask
 EXPLAIN SELECT a.id, b.id FROM hall a CROSS JOIN hall b;
@@ -261,3 +263,35 @@ EXPLAIN SELECT MAX(radius) FROM GAPS OF readings FOR EACH t WITHIN air WHERE t <
     54              read campaign hall: id, x, y, z
 ~36010            keep where: temp IS NOT NULL
  36047              read table log: t, logger, temp
+
+# Join order: what nothing ties together yet waits; the order of the rows stays.
+ask
+EXPLAIN SELECT a.logger, b.t, h.level FROM log a, log b, hall h WHERE a.logger = h.id AND b.logger = h.id AND h.id = 'L05' AND b.temp = a.temp;
+----
+ rows  step
+ ~459  columns: logger, t, level
+ ~459    columns: logger, t, level
+ ~459      sort: "row of log", "row of log", "row of hall"
+ ~459        inner join by hash: temp = temp, id = logger
+ ~668          inner join by hash: logger = id
+36047            number the rows
+36047              read table log: logger, temp
+   ~1            keep where: id = 'L05'
+   54              number the rows
+   54                read campaign hall: id, level
+36047          number the rows
+36047            read table log: t, logger, temp
+
+ask
+EXPLAIN SELECT COUNT(*) FROM log a, log b, hall h WHERE a.logger = h.id AND h.id = b.logger AND h.level = 'floor';
+----
+    rows  step
+       1  columns: "COUNT(*)"
+       1    aggregate all rows: COUNT(*)
+~8020903      no columns
+~8020903        inner join by hash: id = logger
+  ~12016          inner join by hash: logger = id
+   36047            read table log: logger
+     ~18            keep where: level = 'floor'
+      54              read campaign hall: id, level
+   36047          read table log: logger
