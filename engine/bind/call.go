@@ -156,7 +156,7 @@ func (x *exprs) aggregate(c *lang.Call, fn *function.Aggregate) (expr.Expr, erro
 // aggregateParts binds the arguments of an aggregate and what follows it.
 func (x *exprs) aggregateParts(c *lang.Call, call *plan.Call) (function.Result, error) {
 	var err error
-	if call.Args, err = x.all(c.Args); err != nil {
+	if call.Args, err = x.aggregateArguments(c); err != nil {
 		return function.Result{}, err
 	}
 	if c.Filter != nil {
@@ -181,10 +181,37 @@ func (x *exprs) aggregateParts(c *lang.Call, call *plan.Call) (function.Result, 
 	return x.checked(c, call)
 }
 
+// aggregateArguments binds the arguments; those of INTERPOLATE are y, x, v and the
+// word behind OUTSIDE.
+func (x *exprs) aggregateArguments(c *lang.Call) ([]expr.Expr, error) {
+	if c.Along == nil {
+		return x.all(c.Args)
+	}
+	if len(c.Args) != 1 {
+		return nil, problem.New("arguments", x.at(c), "%s takes one value before ALONG, not %d", strings.ToUpper(c.Name.Text), len(c.Args))
+	}
+	args, err := x.all([]lang.Expr{c.Args[0], c.Along, c.AtValue})
+	if err != nil {
+		return nil, err
+	}
+	outside := function.OutsideNull
+	if !c.Outside.IsZero() {
+		var ok bool
+		if outside, ok = function.OutsideNamed(strings.ToUpper(c.Outside.Text)); !ok {
+			return nil, problem.New("arguments", x.at(&c.Outside), "OUTSIDE is NULL, HOLD or FAIL, not '%s'", c.Outside.Text)
+		}
+	}
+	return append(args, expr.NewConst(column.String(outside.String()), x.at(c))), nil
+}
+
 // aggregateClauses checks what follows an aggregate against what it takes.
 func (x *exprs) aggregateClauses(c *lang.Call, fn *function.Aggregate) error {
 	switch {
-	case c.Along != nil:
+	case fn.Along && c.Along == nil:
+		return problem.New("arguments", x.at(c), "%s needs ALONG and AT", fn.Name).WithHint("%s", fn.Signature)
+	case fn.Along && c.Distinct:
+		return problem.New("arguments", x.at(c), "%s takes no DISTINCT: rows that repeat change nothing", fn.Name)
+	case c.Along != nil && !fn.Along:
 		return problem.New("arguments", x.at(c), "%s takes no ALONG", fn.Name).WithHint("%s", fn.Signature)
 	case c.Separators != nil:
 		return problem.New("arguments", x.at(c), "the arguments of %s are separated by commas", fn.Name).WithHint("%s", fn.Signature)

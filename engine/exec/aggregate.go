@@ -309,6 +309,7 @@ func (s *aggregateSink) say() {
 	s.ledgerNotes()
 	s.watch.say(s.env.Notes)
 	for _, c := range s.all.calls {
+		sayContrary(s.env.Notes, c.call.Text, c.acc)
 		c.cells.say(s.env.Notes, c.call, s.all.keys.n)
 		c.near.say(s.env.Notes, c.call)
 	}

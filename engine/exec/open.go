@@ -46,6 +46,8 @@ func (r *runner) openNode(ctx context.Context, n plan.Node) (*pipeline, error) {
 		return p.with(&projectStep{scopeOf(p.schema), n.Exprs}, n.Fields), nil
 	case *plan.Join:
 		return r.openJoin(ctx, n)
+	case *plan.Interpolate:
+		return r.openInterpolate(ctx, n)
 	case *plan.Union:
 		return r.openUnion(ctx, n)
 	case *plan.Matched:

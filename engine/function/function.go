@@ -51,6 +51,7 @@ type Aggregate struct {
 	Example   string // a select item over columns temp, volume, …
 	Star      bool   // the argument may be * (COUNT)
 	Weighted  bool   // WEIGHTED BY may follow
+	Along     bool   // written y ALONG x AT v (INTERPOLATE): the arguments are y, x, v and the word behind OUTSIDE
 	Ordered   bool   // ORDER BY inside the parentheses must stand (FIRST, LAST)
 	// Check is given the arguments (of COUNT(*) none) and the weight, nil where
 	// none is given.

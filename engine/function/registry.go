@@ -8,7 +8,7 @@ import (
 // The registry is made once; nothing changes it later.
 var (
 	scalars     = sortedScalars(numberScalars(), realScalars(), textScalars(), timeScalars(), choiceScalars())
-	aggregates  = sortedAggregates(countAggregates(), sumAggregates(), momentAggregates(), orderAggregates())
+	aggregates  = sortedAggregates(countAggregates(), sumAggregates(), momentAggregates(), orderAggregates(), interpolateAggregates())
 	scalarOf    = index(scalars, func(s *Scalar) []string { return append([]string{s.Name}, s.Aliases...) })
 	aggregateOf = index(aggregates, func(a *Aggregate) []string { return []string{a.Name} })
 	windows     = windowFunctions()
@@ -16,7 +16,7 @@ var (
 )
 
 // planned are functions of the language that have no engine yet.
-var planned = []string{"INTERPOLATE"}
+var planned []string
 
 // LookupScalar finds a scalar function by its name or alias, in any case; nil
 // where there is none.

@@ -63,6 +63,10 @@ func (e *Estimator) columnValues(n Node, at int) values {
 		if at < len(n.Keys) {
 			return e.capped(e.values(n.Keys[at], n.Input), n)
 		}
+	case *Interpolate:
+		if at < len(n.Input.Schema()) {
+			return e.columnValues(n.Input, at)
+		}
 	case *Join:
 		// not capped: its own rows are estimated by this
 		if left := len(n.Left.Schema()); at >= left {
@@ -135,6 +139,10 @@ func stored(n Node, at int) (*column.Vector, bool) {
 		if c, ok := expr.AsColumn(n.Exprs[at]); ok {
 			return stored(n.Input, c)
 		}
+	case *Interpolate:
+		if at < len(n.Input.Schema()) {
+			return stored(n.Input, at)
+		}
 	case *Join:
 		if left := len(n.Left.Schema()); at >= left {
 			return stored(n.Right, at-left)
@@ -171,6 +179,10 @@ func ScanOf(n Node, at int) *Scan {
 			if c, ok := expr.AsColumn(n.Keys[at]); ok {
 				return ScanOf(n.Input, c)
 			}
+		}
+	case *Interpolate:
+		if at < len(n.Input.Schema()) {
+			return ScanOf(n.Input, at)
 		}
 	case *Join:
 		if left := len(n.Left.Schema()); at >= left {

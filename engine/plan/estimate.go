@@ -148,6 +148,9 @@ func (e *Estimator) node(n Node) (Estimate, error) {
 	case *Project, *Number, *Window:
 		in := e.known[n.Inputs()[0]]
 		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
+	case *Interpolate:
+		in := e.known[n.Input]
+		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
 	}
 	return Estimate{}, nil
 }

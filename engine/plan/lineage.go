@@ -40,6 +40,8 @@ func Lineage(n Node) []Origin {
 		return through(Lineage(n.Input), n.Exprs, len(n.Exprs))
 	case *Aggregate:
 		return through(Lineage(n.Input), n.Keys, len(n.Keys)+len(n.Calls))
+	case *Interpolate:
+		return append(append([]Origin(nil), Lineage(n.Input)...), Origin{}, Origin{})
 	case *Join:
 		left := append([]Origin(nil), Lineage(n.Left)...)
 		if n.Kind == Semi || n.Kind == Anti {
@@ -145,6 +147,8 @@ func removalsAbove(n Node, r *Relation) []Removal {
 			return appendRemoval(nil, n, r, n.Wanted, siteOrigins(n))
 		}
 		return nil
+	case *Interpolate:
+		return removalsAbove(n.Input, r)
 	case *Join:
 		if n.Kind == Semi || n.Kind == Anti {
 			return removalsAbove(n.Left, r)
@@ -173,12 +177,8 @@ func cellsOf(n Node) *Relation {
 		return n
 	case *Filter:
 		return cellsOf(n.Input)
-	case *Project:
-		return cellsOf(n.Input)
-	case *Sort:
-		return cellsOf(n.Input)
-	case *Window:
-		return cellsOf(n.Input)
+	case *Project, *Sort, *Window, *Interpolate:
+		return cellsOf(n.Inputs()[0])
 	}
 	return nil
 }

@@ -45,6 +45,8 @@ func Line(n Node) string {
 		return aggregateLine(n)
 	case *Join:
 		return joinLine(n)
+	case *Interpolate:
+		return interpolateLine(n)
 	case *Sort:
 		line := "sort: " + sortKeys(n.Keys)
 		if n.Top > 0 {

@@ -39,6 +39,8 @@ func pruned(n Node, need []bool) (Node, []int) {
 		return prunedAggregate(n, need)
 	case *Join:
 		return prunedJoin(n, need)
+	case *Interpolate:
+		return prunedInterpolate(n, need)
 	case *Sort:
 		need = slices.Clone(need)
 		for _, k := range n.Keys {

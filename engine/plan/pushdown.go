@@ -29,6 +29,8 @@ func push(n Node, conds []condition) Node {
 		return pushProject(n, conds)
 	case *Join:
 		return pushJoin(n, conds)
+	case *Interpolate:
+		return pushInterpolate(n, conds)
 	case *Relation:
 		return pushRelation(n, conds)
 	case *Sort:

@@ -165,7 +165,7 @@ func exprsOf(n Node) []expr.Expr {
 		return e
 	}
 	switch n.(type) {
-	case *Values, *Relation, *Filter, *Project, *Aggregate, *Join, *Sort, *Window, *Lookup:
+	case *Values, *Relation, *Filter, *Project, *Aggregate, *Join, *Interpolate, *Sort, *Window, *Lookup:
 		mapExprs(n, add)
 	}
 	return list
@@ -219,7 +219,7 @@ func oneRow(n Node) bool {
 		return len(n.Keys) == 0
 	case *Limit:
 		return n.Count == 0 || n.Count == 1 || oneRow(n.Input)
-	case *Project, *Filter, *Sort, *Window, *Distinct:
+	case *Project, *Filter, *Sort, *Window, *Distinct, *Interpolate:
 		return oneRow(n.Inputs()[0])
 	case *Join:
 		return (n.Kind == Semi || n.Kind == Anti || oneRow(n.Right)) && oneRow(n.Left)
@@ -291,6 +291,9 @@ func sameStep(a, b Node) bool {
 	case *Join:
 		b, ok := b.(*Join)
 		return ok && a.Kind == b.Kind && len(a.LeftKeys) == len(b.LeftKeys)
+	case *Interpolate:
+		b, ok := b.(*Interpolate)
+		return ok && a.Outside == b.Outside && len(a.LeftKeys) == len(b.LeftKeys)
 	case *Sort:
 		b, ok := b.(*Sort)
 		return ok && a.Top == b.Top && sameKeys(a.Keys, b.Keys)

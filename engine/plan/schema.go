@@ -145,6 +145,10 @@ func withInputs(n Node, in []Node) Node {
 		c := *n
 		c.Left, c.Right = in[0], in[1]
 		return &c
+	case *Interpolate:
+		c := *n
+		c.Input, c.Right = in[0], in[1]
+		return &c
 	case *Sort:
 		c := *n
 		c.Input = in[0]
@@ -232,6 +236,11 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 	case *Join:
 		c := *n
 		c.LeftKeys, c.RightKeys, c.Rest = mapList(n.LeftKeys, f), mapList(n.RightKeys, f), mapMaybe(n.Rest, f)
+		return &c
+	case *Interpolate:
+		c := *n
+		c.LeftKeys, c.RightKeys = mapList(n.LeftKeys, f), mapList(n.RightKeys, f)
+		c.Y, c.X, c.At = f(n.Y), f(n.X), f(n.At)
 		return &c
 	case *Sort:
 		c := *n

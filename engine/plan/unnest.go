@@ -27,6 +27,10 @@ func unnest(n Node) (Node, error) {
 		if f, ok := n.(*Filter); ok {
 			n = semiJoins(f)
 		}
+		switch n.(type) {
+		case *Filter, *Project:
+			n = merges(n)
+		}
 		switch n := n.(type) {
 		case *Filter, *Project, *Aggregate:
 			return groupedJoins(n), nil

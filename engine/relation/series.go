@@ -15,9 +15,9 @@ import (
 
 // seriesOf is SERIES OF log: what each logger would have read at common instants.
 var seriesOf = &Definition{
-	Noun:  "SERIES",
-	RowIs: "logger and instant",
-	Over:  OverRows,
+	Noun:    "SERIES",
+	RowIs:   "logger and instant",
+	Over:    OverRows,
 	Meaning: "readings of loggers that share no stamp, at common instants; NULL across too long a gap",
 	Clauses: []string{"BY", "EVERY", "METHOD", "STAMP", "LONGEST GAP"},
 	Own:     true,
