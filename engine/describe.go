@@ -145,6 +145,9 @@ func relationColumns(d *relation.Definition) *column.Table {
 
 // describeRelationOf is DESCRIBE CELLS OF hall: all columns, the sites' own too.
 func (s *Session) describeRelationOf(st *statement, t *lang.Describe) error {
+	if d, ok := relation.Lookup(t.Name.Text); ok && d.Over == relation.OverRows {
+		return s.showTable(st, relationColumns(d)) // of what else they have, clauses decide
+	}
 	q := &lang.Query{Body: &lang.Select{
 		Items: []*lang.Item{{Star: true}},
 		From:  []lang.Source{&lang.RelationSource{Relation: &lang.Relation{At: t.At, Noun: t.Name, Operand: t.Operand}}},

@@ -8,6 +8,7 @@ import (
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
 	"nearcell/engine/function"
+	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/problem"
 )
@@ -307,6 +308,10 @@ func (s *aggregateSink) say() {
 	}
 	s.weightNotes()
 	s.ledgerNotes()
+	for _, m := range plan.SmoothedExtremes(s.node) {
+		s.env.Notes.Add(note.Note, note.Rows, "%s is that of %s METHOD %s, not of the readings: extremes are taken from the raw rows, or from METHOD MAX and MIN",
+			s.node.Calls[m.Call].Text, m.Relation.Bound.Title(), m.Relation.Bound.Log.Method)
+	}
 	s.watch.say(s.env.Notes)
 	for _, c := range s.all.calls {
 		sayContrary(s.env.Notes, c.call.Text, c.acc)

@@ -299,6 +299,8 @@ func TestEmptyAndNull(t *testing.T) {
 			args = append(args, reals(1, 2))
 		case "QUANTILE":
 			args, consts = append(args, reals(.5, .5)), fraction(.5)
+		case "INTERPOLATE":
+			args, consts = append(args, reals(1, 2), reals(1, 1), texts("NULL", "NULL")), alongConsts(1, "NULL")
 		case "FIRST", "LAST":
 			args, keys = append(args, reals(1, 2)), []Key{{Type: column.Real}}
 		}

@@ -254,6 +254,9 @@ func randomInput(rng *rand.Rand, fn *Aggregate, n, groups int) *input {
 		in.args = append(in.args, number())
 	case "QUANTILE":
 		in.args, in.consts = append(in.args, repeatReal(.3, n)), fraction(.3)
+	case "INTERPOLATE":
+		outside := texts(slices.Repeat([]string{"HOLD"}, n)...)
+		in.args, in.consts = append(in.args, number(), repeatReal(2.1, n), outside), alongConsts(2.1, "HOLD")
 	case "FIRST", "LAST":
 		key := randomVector(rng, []column.Type{column.Real, column.Text, column.Timestamp}[rng.IntN(3)], n)
 		in.args, in.keys = append(in.args, key), []Key{{Type: key.Type, Descending: rng.IntN(2) == 0}}

@@ -50,7 +50,7 @@ func TestScattered(t *testing.T) {
 	}
 	_, err := (&setup{def: cells, input: table(sites, false), c: Clauses{Each: []int{4}}}).run()
 	wantProblem(t, err, "scattered", "FOR EACH t makes 500 partitions of hall, half of them with at most 1 of the 10 sites")
-	wantProblem(t, err, "scattered", "FLOOR_TO(t, INTERVAL '15' MINUTE)")
+	wantProblem(t, err, "scattered", "SERIES OF hall BY id ON t EVERY INTERVAL '15' MINUTE")
 
 	walk := randomSites(30, 5)
 	in := table(walk, false)

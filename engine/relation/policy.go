@@ -129,11 +129,19 @@ func scattered(b *Bound, env *Env, input *column.Table, o *order, parts [][]int3
 		name, len(parts), b.Name, median, total)
 	if b.Input[b.Clauses.Each[0]].Type == column.Timestamp {
 		return problem.New("scattered", b.EachPlace, "%s: each of these few would be given the whole space", text).
-			WithHint("bring the stamps to common instants first: OF (SELECT id, x, y, z, FLOOR_TO(%s, INTERVAL '15' MINUTE) AS %s, "+
-				"AVG(…) … GROUP BY …)", name, name)
+			WithHint("SERIES brings them to common instants: OF (SELECT id, x, y, z, %s, … FROM SERIES OF %s BY id ON %s EVERY INTERVAL '15' MINUTE AS s)",
+				name, seriesSource(b.Name), name)
 	}
 	if total < len(rows) { // identifiers recur, so a part could have held them all
 		env.Notes.Add(note.Warning, note.Sites, "%s; the space of the missing ones goes to their neighbours", text)
 	}
 	return nil
+}
+
+// seriesSource is what the hint puts behind SERIES OF.
+func seriesSource(name string) string {
+	if strings.HasPrefix(name, "(") {
+		return "(SELECT …)"
+	}
+	return name
 }

@@ -36,13 +36,6 @@ input:1: UNCERTAINTY is not there yet
                               ^^^^^^^^^^^^^^^^^^^^^^^^^^^
 
 plan
-SELECT INTERPOLATE(temp ALONG t AT :since OUTSIDE FAIL) FROM log
-----
-input:1: INTERPOLATE(… ALONG …) is not there yet
-  SELECT INTERPOLATE(temp ALONG t AT :since OUTSIDE FAIL) FROM log
-         ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
-
-plan
 SELECT * FROM VERDICTS
 ----
 input:1: there is no campaign, table or view 'VERDICTS'

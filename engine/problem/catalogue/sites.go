@@ -90,7 +90,7 @@ SELECT id, volume FROM CELLS OF stack;`,
 	{
 		Code:    "scattered",
 		Meaning: "FOR EACH over time makes partitions of few sites each, since the sites were not read at the same instants. Each of those few would be given the whole space.",
-		WayOut:  "Bring the stamps to common instants first: FLOOR_TO(t, INTERVAL '15' MINUTE) and GROUP BY.",
+		WayOut:  "SERIES OF log BY logger ON t EVERY INTERVAL '15' MINUTE brings the stamps to common instants.",
 		Example: `SELECT id, volume FROM CELLS OF (
   SELECT id, x, y, z, TIMESTAMP '2031-04-07 00:00:00' + x * INTERVAL '1' SECOND AS t FROM hall)
 FOR EACH t WITHIN air;`,
