@@ -23,7 +23,7 @@ func TestRegistry(t *testing.T) {
 		}
 	}
 	for _, f := range Aggregates() {
-		if LookupAggregate(strings.ToLower(f.Name)) != f || f.Check == nil || f.New == nil || f.Slide == nil || f.Meaning == "" ||
+		if LookupAggregate(strings.ToLower(f.Name)) != f || f.Check == nil || f.New == nil || (f.Slide == nil) != f.Along || f.Meaning == "" ||
 			!strings.HasPrefix(f.Signature, f.Name+"(") || !strings.HasPrefix(f.Example, f.Name+"(") ||
 			!f.Weighted && strings.Contains(f.Example, "WEIGHTED BY") || f.Ordered != strings.Contains(f.Example, "ORDER BY") {
 			t.Errorf("%s is not complete", f.Name)
