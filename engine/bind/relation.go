@@ -255,11 +255,14 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 			}
 			rel.Clauses.Because = c.Because.Value
 		default:
-			err = b.notYet(c, clauseName(c))
+			err = b.representativeClause(rel, c)
 		}
 		if err != nil {
 			return err
 		}
+	}
+	if err := b.representativesWhole(rel, r); err != nil {
+		return err
 	}
 	if err := b.spaceTaken(rel, r); err != nil {
 		return err
@@ -267,7 +270,7 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 	if within != nil && unclipped != nil {
 		return problem.New("clauses", b.at(unclipped), "WITHIN and UNCLIPPED say the opposite of each other")
 	}
-	if within == nil && unclipped == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") {
+	if within == nil && unclipped == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") && rel.Def.Noun != "REPRESENTATIVES" {
 		b.say(note.Note, note.Sites, "%s has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along", rel.Title())
 	}
 	return nil

@@ -59,7 +59,7 @@ var clauses = []Clause{
 	{"THRESHOLDS", "THRESHOLDS (value, value)", "Several limits, with a row for each.",
 		"SELECT * FROM EXCEEDANCE OF hall FOR temp THRESHOLDS (7, 8, 9);"},
 	{"NUMBER", "NUMBER count", "How many are proposed or chosen.",
-		"SELECT * FROM PLACEMENTS OF hall NUMBER 5;"},
+		"SELECT logger, temp, side, rank, tied FROM EXTREMES OF log FOR temp NUMBER 5;"},
 	{"CLEARANCE", "CLEARANCE distance", "How far proposed sites keep from the walls.",
 		"SELECT * FROM PLACEMENTS OF hall NUMBER 5 CLEARANCE 0.3;"},
 	{"AMONG", "AMONG points | AMONG (query)", "The places that may be proposed.",
@@ -98,7 +98,7 @@ var clauses = []Clause{
 		"The loggers that were to report, so that one without any reading has a row, too. The column with the name of the BY column counts; where there is but one column, that one.",
 		"SELECT * FROM AUDIT OF log BY logger ON t EXPECTING (SELECT id FROM hall);"},
 	{"KEEP", "KEEP ('id', 'id')", "Sites that are chosen in any case.",
-		"SELECT * FROM REPRESENTATIVES OF readings FOR EACH t FOR temp NUMBER 5 KEEP ('L07') BY MEAN;"},
+		"SELECT * FROM REPRESENTATIVES OF readings FOR EACH t FOR temp NUMBER 2 KEEP ('L02') BY MEAN;"},
 }
 
 // AllClauses are the clauses of the language, those too that no relation takes yet.

@@ -8,7 +8,7 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, seriesOf, audit, episodes}
+var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, seriesOf, audit, episodes, extremes, representatives}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
@@ -26,8 +26,6 @@ var planned = map[string]string{
 	"CLUSTERS":        "site",
 	"GRID":            "grid point in the solid",
 	"TRANSECT":        "point along the line",
-	"EXTREMES":        "ranked row",
-	"REPRESENTATIVES": "chosen site",
 }
 
 // All are the relations that there are.

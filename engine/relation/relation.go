@@ -107,6 +107,7 @@ type Bound struct {
 	Beside  []Beside // what clauses such as EXPECTING name
 	Clauses Clauses
 	Log     LogClauses // of relations over a log
+	Choice  ChoiceClauses
 	Columns []Column
 	Place   problem.Place
 	// EachPlace is the place of the FOR EACH clause.
@@ -142,7 +143,7 @@ type Beside struct {
 // Reads are the columns of the input on which the rows rest, whatever is asked of
 // them.
 func (b *Bound) Reads() []int {
-	reads := slices.Concat(b.Clauses.Each, b.Clauses.By, b.Clauses.On, b.Clauses.For, b.Log.Readings)
+	reads := slices.Concat(b.Clauses.Each, b.Clauses.By, b.Clauses.On, b.Clauses.For, b.Log.Readings, b.Choice.Spread)
 	if b.Def.Over == OverSites {
 		reads = append(reads, b.ID, b.X, b.Y, b.Z)
 	}
@@ -156,7 +157,7 @@ func (b *Bound) Pruned(to []int) *Bound {
 	if b.Def.Over == OverSites {
 		c.ID, c.X, c.Y, c.Z = to[b.ID], to[b.X], to[b.Y], to[b.Z]
 	}
-	for _, list := range [...]*[]int{&c.Clauses.Each, &c.Clauses.By, &c.Clauses.On, &c.Clauses.For} {
+	for _, list := range [...]*[]int{&c.Clauses.Each, &c.Clauses.By, &c.Clauses.On, &c.Clauses.For, &c.Choice.Spread} {
 		*list = slices.Clone(*list)
 		for i, at := range *list {
 			(*list)[i] = to[at]
