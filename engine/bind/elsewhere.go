@@ -14,7 +14,7 @@ import (
 func elsewhere(name, source string, columns []string) string {
 	for _, d := range relation.All() {
 		for _, c := range d.Computed {
-			if strings.EqualFold(c.Name, name) && !strings.HasPrefix(source, d.Noun+" ") {
+			if strings.EqualFold(c.Name, name) && c.Name != "id" && !strings.HasPrefix(source, d.Noun+" ") {
 				return d.Noun + " OF " + sitesOf(source) + " has it"
 			}
 		}

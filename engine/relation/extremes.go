@@ -17,9 +17,9 @@ import (
 // cannot be told from them.
 var extremes = &Definition{
 	Noun:    "EXTREMES",
-	RowIs:   "ranked row: the highest from rank 1 down, then the lowest from rank 1 up",
+	RowIs:   "ranked row, from the highest down and then from the lowest up",
 	Over:    OverRows,
-	Meaning: "the highest and the lowest rows by a column, ties listed, with the probability of being first",
+	Meaning: "the highest and the lowest rows, ties listed, and how likely each is the first",
 	Clauses: []string{"FOR", "NUMBER", "UNCERTAINTY"},
 	Own:     true,
 	Open:    openExtremes,
