@@ -24,12 +24,16 @@ const (
 	NothingLeft
 	// NotClosed: what is left of combined solids is not closed. It must not happen.
 	NotClosed
+	// NoPlan: the Count places of a survey lie on one line.
+	NoPlan
+	// TwoHeights: point Corner of a survey has the place of an earlier one and another height.
+	TwoHeights
 )
 
 var faultWords = map[Fault]string{
 	NotFinite: "coordinate not finite", NoCorner: "no such corner", Empty: "no triangles", Leak: "not closed",
 	Overlap: "overlaps itself", Nested: "one piece inside another", NoVolume: "no volume", NothingLeft: "nothing left",
-	NotClosed: "combination not closed",
+	NotClosed: "combination not closed", NoPlan: "places on one line", TwoHeights: "two heights at one place",
 }
 
 func (f Fault) String() string { return faultWords[f] }

@@ -227,6 +227,33 @@ func closed(v []Vec, t [][3]int32, kind string, precision float64) (*Mesh, error
 	return m, nil
 }
 
+// Restore makes the mesh of a surface that was tested before: of what Surface gives.
+func Restore(corners []Vec, triangles [][3]int32, precision float64) (*Mesh, error) {
+	b := &builder{}
+	if err := b.take(corners, triangles, 0); err != nil {
+		return nil, err
+	}
+	list := uses(b.t)
+	if err := balance(b.v, list); err != nil {
+		return nil, err
+	}
+	of, n := components(b.v, b.t, list)
+	volumes := make([]sum, n)
+	for i, t := range b.t {
+		p := sub(b.v[t[0]], b.v[0])
+		volumes[of[i]].add(dot(p, cross(sub(b.v[t[1]], b.v[0]), sub(b.v[t[2]], b.v[0]))) / 6)
+	}
+	m := finish(b.v, b.t, list, "mesh", precision)
+	for k := range volumes {
+		if volumes[k].value() > 0 {
+			m.pieces++
+		} else {
+			m.voids++
+		}
+	}
+	return m, nil
+}
+
 // skipFilms finds triangles on both sides of a film of the solid, or of a gap in it, that
 // is thinner than faces can be told apart: what walls leave that coincide but for
 // rounding. They are no walls.
