@@ -35,7 +35,7 @@ type Object struct {
 	Key  string // what it is found by: the folded name of a bare one, the name itself of a quoted one
 	Name string // as the user wrote it
 
-	Table   *column.Table // Campaign: id, x, y, z and the attributes; Table: as read. Nil in a List.
+	Table   *column.Table // Campaign: id, x, y, z and the attributes; Table: as read; Solid: what it took from files. Nil in a List.
 	Text    string        // Solid, View: the canonical text
 	Options CampaignOptions
 	Sources []SourceFile
@@ -82,6 +82,11 @@ func (o *Object) ContentKey() [16]byte {
 }
 
 func (o *Object) fingerprint() [16]byte {
+	if o.Table != nil && o.Kind == Solid {
+		key := o.Table.Key()
+		sum := sha256.Sum256(append(key[:], o.Text...))
+		return [16]byte(sum[:16])
+	}
 	if o.Table != nil {
 		return o.Table.Key()
 	}

@@ -180,12 +180,15 @@ func clauseWord(n lang.Node) string {
 func (c *clauses) readWithin(r *lang.WithinClause) error {
 	var texts []string
 	for _, tree := range r.Solids {
-		body, text, err := c.s.solid(c.st, tree)
+		kept, text, err := c.s.solid(c.st, tree)
 		if err != nil {
 			return err
 		}
+		if err := needsName(c.st, tree, kept); err != nil {
+			return err
+		}
 		texts = append(texts, text)
-		c.spaces = append(c.spaces, relation.Region{Name: text, Solid: body})
+		c.spaces = append(c.spaces, relation.Region{Name: text, Solid: kept.Body})
 	}
 	if !r.Zones {
 		c.within = texts[0]

@@ -117,16 +117,17 @@ func (s *Session) createSolid(st *statement, t *lang.CreateSolid) error {
 	if err := s.mayCreate(st, t.Name, catalog.Solid, t.Replace); err != nil {
 		return err
 	}
-	body, text, err := s.solid(st, t.Solid)
+	kept, text, err := s.solid(st, t.Solid)
 	if err != nil {
 		return err
 	}
-	object := catalog.Object{Kind: catalog.Solid, Key: t.Name.Key(), Name: t.Name.Text, Text: text, Created: time.Now().UTC()}
+	object := catalog.Object{Kind: catalog.Solid, Key: t.Name.Key(), Name: t.Name.Text, Text: text, Created: time.Now().UTC(),
+		Table: kept.Table, Sources: kept.Sources}
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
 	if !s.checkOnly {
-		s.say("%s: a solid of %s m³", t.Name.Text, s.number(body.Volume()))
+		s.say("%s: a solid of %s m³", t.Name.Text, s.number(kept.Body.Volume()))
 	}
 	return nil
 }

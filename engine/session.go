@@ -53,6 +53,7 @@ type Session struct {
 	running   []string // scripts that RUN one another, for cycles
 	last      error    // that was printed, for HELP ERROR
 	checkOnly bool
+	solids    *bind.SolidCache
 	verdicts  []verdict // of REQUIRE, in their order
 }
 
@@ -71,6 +72,7 @@ func New(c *catalog.Catalog, o Options) *Session {
 	return &Session{
 		o:        o,
 		catalog:  c,
+		solids:   &bind.SolidCache{},
 		params:   map[string]column.Value{},
 		fixed:    map[string]bool{},
 		diagrams: diagram.NewStore(memory),
@@ -220,7 +222,7 @@ func (s *Session) complain(err error) {
 // bindEnv is what the names of a statement may mean.
 func (s *Session) bindEnv(st *statement) *bind.Env {
 	return &bind.Env{Catalog: s.catalog, Source: st.source, Params: s.params, Folder: st.folder, Notes: st.notes,
-		Verdicts: s.verdictTable, VerdictWarnings: s.verdictWarnings}
+		Solids: s.solids, Verdicts: s.verdictTable, VerdictWarnings: s.verdictWarnings}
 }
 
 func (s *Session) execEnv(st *statement) *exec.Env {

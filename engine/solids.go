@@ -3,28 +3,35 @@ package engine
 import (
 	"nearcell/engine/bind"
 	"nearcell/engine/present"
+	"nearcell/engine/problem"
 	"nearcell/lang"
-	"nearcell/voronoi/solid"
 )
 
 // solid makes a solid and the text under which it is kept. A plain name stays a
 // name, so that a campaign follows its solid when that is replaced; anything
 // else is kept as it is at this moment, with values in place of parameters and
 // rings in place of files.
-func (s *Session) solid(st *statement, tree lang.Solid) (solid.Solid, string, error) {
+func (s *Session) solid(st *statement, tree lang.Solid) (*bind.KeptSolid, string, error) {
 	env := s.bindEnv(st)
-	body, err := bind.Solid(env, tree)
+	kept, err := bind.Keep(env, tree)
 	if err != nil {
 		return nil, "", err
 	}
 	if name, plain := tree.(*lang.SolidName); plain {
-		return body, lang.Print(name), nil
+		kept.Table, kept.Sources = nil, nil // they are the other solid's
+		return kept, lang.Print(name), nil
 	}
-	whole, err := bind.Canonical(env, tree)
-	if err != nil {
-		return nil, "", err
+	return kept, lang.Print(kept.Text), nil
+}
+
+// needsName refuses a campaign's solid that comes from a file and has no name: what it
+// takes from the file is kept with the solid.
+func needsName(st *statement, tree lang.Solid, kept *bind.KeptSolid) error {
+	if kept.Table == nil {
+		return nil
 	}
-	return body, lang.Print(whole), nil
+	return problem.New("solid-name", st.at(tree), "a campaign's solid that comes from a file needs a name of its own").
+		WithHint("CREATE SOLID room AS %s; then WITHIN room", lang.Print(tree))
 }
 
 // number writes a number for a message, to the session's digits.

@@ -19,6 +19,7 @@ type Env struct {
 	Params  map[string]column.Value // values of LET and --let under lang.Fold(name)
 	Folder  string                  // relative paths of files start here
 	Notes   *note.Notes             // what binding has to say; nil: nowhere
+	Solids  *SolidCache             // solids made before; nil: each is made anew
 	// Verdicts are what the requirements of the session came to so far, and
 	// VerdictWarnings what was to be said with them; nil: none.
 	Verdicts        func() *column.Table
@@ -57,9 +58,27 @@ func Solid(env *Env, s lang.Solid) (solid.Solid, error) {
 	return newBinder(env).solid(s)
 }
 
-// Canonical is a solid expression that stands on its own: values in place of
-// parameters, rings in place of files, the solids themselves in place of their
-// names. Its text is what the catalog keeps.
-func Canonical(env *Env, s lang.Solid) (lang.Solid, error) {
-	return newBinder(env).canonical(s)
+// KeptSolid is a solid and what the catalog keeps of it.
+type KeptSolid struct {
+	Body    solid.Solid
+	Text    lang.Solid           // values in place of parameters, rings in place of files, the solids themselves in place of their names
+	Table   *column.Table        // what MESH, BOXES and TERRAIN were made of; nil: nothing of the kind
+	Sources []catalog.SourceFile // the files they were read from
+}
+
+// Keep makes the solid that an expression describes, and what is to be kept so that it can
+// be made again without the files and names that it was made of.
+func Keep(env *Env, s lang.Solid) (*KeptSolid, error) {
+	b := newBinder(env)
+	own, err := b.canonical(s)
+	if err != nil {
+		return nil, err
+	}
+	body, err := b.make(own, s)
+	if err != nil {
+		return nil, err
+	}
+	k := &KeptSolid{Body: body, Text: own}
+	k.Table, k.Sources = b.keep(own)
+	return k, nil
 }

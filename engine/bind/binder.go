@@ -23,6 +23,9 @@ type binder struct {
 	quiet  bool     // bound only for its faults
 
 	sources *int // bound so far in the whole statement
+
+	contents map[lang.Solid]*Content // of the parts of solids that come from files
+	stored   *stored                 // in a solid of the catalog: its contents; else nil
 }
 
 // maxSources is how many sources a statement may unfold into. Views and names of

@@ -15,6 +15,7 @@ import (
 	"nearcell/engine/problem"
 	"nearcell/lang"
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
 
 // solid makes the solid of an expression.
@@ -23,15 +24,30 @@ func (b *binder) solid(s lang.Solid) (solid.Solid, error) {
 	if err != nil {
 		return nil, err
 	}
-	made, err := build(own)
-	if err != nil {
-		return nil, b.faultySolid(err, s)
+	return b.make(own, s)
+}
+
+// make makes the solid of an expression that stands on its own; s is the same as the user
+// wrote it.
+func (b *binder) make(own, s lang.Solid) (solid.Solid, error) {
+	if _, combined := own.(*lang.SolidOp); !combined {
+		made, err := b.build(own)
+		if err != nil {
+			return nil, b.faultySolid(err, s)
+		}
+		return made, nil
 	}
-	return made, nil
+	return cached(b.env.Solids, func() *map[[32]byte]solid.Solid { return &b.env.Solids.made }, b.bodyKey(own), func() (solid.Solid, error) {
+		made, err := b.build(own)
+		if err != nil {
+			return nil, b.faultySolid(err, s)
+		}
+		return made, nil
+	})
 }
 
 // build makes the solid of an expression that stands on its own.
-func build(s lang.Solid) (solid.Solid, error) {
+func (b *binder) build(s lang.Solid) (solid.Solid, error) {
 	switch s := s.(type) {
 	case *lang.BoxSolid:
 		box, err := solid.NewBox(corner(s.From), corner(s.To))
@@ -49,8 +65,45 @@ func build(s lang.Solid) (solid.Solid, error) {
 			return nil, err
 		}
 		return prism, nil
+	case *lang.SolidOp:
+		return b.buildOp(s)
+	case *lang.MeshSolid, *lang.BoxesSolid, *lang.TerrainSolid:
+		return b.contents[s].Body, nil
 	}
 	return nil, fmt.Errorf("no solid can be made of %T", s)
+}
+
+// buildOp makes a chain of MINUS and PLUS at once: corners where surfaces cross are rounded
+// once then.
+func (b *binder) buildOp(s *lang.SolidOp) (solid.Solid, error) {
+	var bodies []solid.Solid
+	var ops []mesh.Op
+	var chain func(s lang.Solid) error
+	chain = func(s lang.Solid) error {
+		op, ok := s.(*lang.SolidOp)
+		if !ok {
+			body, err := b.build(s)
+			bodies = append(bodies, body)
+			return err
+		}
+		if err := chain(op.Left); err != nil {
+			return err
+		}
+		right, err := b.build(op.Right)
+		if err != nil {
+			return err
+		}
+		how := mesh.Plus
+		if op.Minus {
+			how = mesh.Minus
+		}
+		bodies, ops = append(bodies, right), append(ops, how)
+		return nil
+	}
+	if err := chain(s); err != nil {
+		return nil, err
+	}
+	return mesh.Join(ops, bodies...)
 }
 
 func corner(p *lang.Point) solid.Vec {
@@ -101,6 +154,9 @@ func isDigits(s string) bool {
 
 // canonical brings a solid expression to its own terms.
 func (b *binder) canonical(s lang.Solid) (lang.Solid, error) {
+	if b.contents == nil {
+		b.contents = map[lang.Solid]*Content{}
+	}
 	switch s := s.(type) {
 	case *lang.BoxSolid:
 		from, err := b.point(s.From)
@@ -119,21 +175,21 @@ func (b *binder) canonical(s lang.Solid) (lang.Solid, error) {
 	case *lang.SolidName:
 		return b.namedSolid(s)
 	case *lang.SolidOp:
-		what := "PLUS"
-		if s.Minus {
-			what = "MINUS"
+		left, err := b.canonical(s.Left)
+		if err != nil {
+			return nil, err
 		}
-		p := b.notYet(s, what)
-		if s.Minus {
-			p.WithHint("a plan can have holes: PRISM (…) HOLE (…) FROM … TO …")
+		right, err := b.canonical(s.Right)
+		if err != nil {
+			return nil, err
 		}
-		return nil, p
+		return &lang.SolidOp{At: s.At, Minus: s.Minus, Left: left, Right: right}, nil
 	case *lang.MeshSolid:
-		return nil, b.notYet(s, "MESH")
+		return b.mesh(s)
 	case *lang.BoxesSolid:
-		return nil, b.notYet(s, "BOXES")
+		return b.boxesFile(s)
 	case *lang.TerrainSolid:
-		return nil, b.notYet(s, "TERRAIN")
+		return b.terrain(s)
 	}
 	return nil, problem.New("failed", b.at(s), "a solid of an unknown kind")
 }
@@ -286,7 +342,7 @@ func (b *binder) namedSolid(s *lang.SolidName) (lang.Solid, error) {
 		return nil, p
 	}
 	inner := &binder{env: b.env, sources: b.sources, source: &problem.Source{Name: "solid " + o.Name, Text: o.Text},
-		views: append([]string{o.Key}, b.views...)}
+		views: append([]string{o.Key}, b.views...), contents: b.contents, stored: &stored{object: o}}
 	for _, v := range b.views {
 		if v == o.Key {
 			return nil, problem.New("solid-cycle", b.at(s), "the solid '%s' is made of itself", o.Name)

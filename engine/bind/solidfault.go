@@ -7,10 +7,15 @@ import (
 	"nearcell/engine/problem"
 	"nearcell/lang"
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
 
 // faultySolid words what is wrong with the description of a solid.
 func (b *binder) faultySolid(err error, s lang.Solid) error {
+	var triangles *mesh.Error
+	if errors.As(err, &triangles) {
+		return b.faultyMesh(err, s, "")
+	}
 	var e *solid.Error
 	if !errors.As(err, &e) {
 		return problem.At(err, b.at(s))

@@ -165,18 +165,18 @@ func solidStory(t *testing.T, env *Env, d *datadriven.TestData, s lang.Solid) (s
 	if err != nil {
 		return "", err
 	}
-	own, err := Canonical(env, s)
+	kept, err := Keep(env, s)
 	if err != nil {
 		return "", err
 	}
-	again, err := lang.ParseSolid(lang.Print(own))
+	again, err := lang.ParseSolid(lang.Print(kept.Text))
 	if err != nil {
 		return "", err
 	}
 	if twice, err := Solid(&Env{Catalog: catalog.Memory()}, again); err != nil || twice.Key() != made.Key() {
 		t.Errorf("%s: the canonical text makes another solid (%v)", d.Pos, err)
 	}
-	return fmt.Sprintf("%.10g m³\n%s", made.Volume(), lang.Print(own)), nil
+	return fmt.Sprintf("%.10g m³\n%s", made.Volume(), lang.Print(kept.Text)), nil
 }
 
 // rendered tells whether an error has a place in a text.

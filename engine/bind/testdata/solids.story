@@ -157,30 +157,29 @@ input:1: corner 2 of the plan 'gap.csv' has no y
 solid
 air MINUS BOX (0,0,0) TO (4,3,7.5)
 ----
-input:1: MINUS is not there yet (a plan can have holes: PRISM (…) HOLE (…) FROM … TO …)
-  air MINUS BOX (0,0,0) TO (4,3,7.5)
-  ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^
+3420 m³
+PRISM ((0, 0), (30, 0), (30, 12), (18, 12), (18, 18), (0, 18)) FROM 0 TO 7.5 MINUS BOX (0, 0, 0) TO (4, 3, 7.5)
 
 solid
 MESH 'hall.stl'
 ----
-input:1: MESH is not there yet
+input:1: there is no file 'hall.stl' (a relative path starts at the script's folder)
   MESH 'hall.stl'
-  ^^^^^^^^^^^^^^^
+       ^^^^^^^^^^
 
 solid
 BOXES 'racks.csv'
 ----
-input:1: BOXES is not there yet
+input:1: there is no file 'racks.csv' (a relative path starts at the script's folder)
   BOXES 'racks.csv'
-  ^^^^^^^^^^^^^^^^^
+        ^^^^^^^^^^^
 
 solid
 TERRAIN 'bed.csv' TO 0
 ----
-input:1: TERRAIN is not there yet
+input:1: there is no file 'bed.csv' (did you mean 'bad.csv'?)
   TERRAIN 'bed.csv' TO 0
-  ^^^^^^^^^^^^^^^^^^^^^^
+          ^^^^^^^^^
 
 solid
 hall
