@@ -24,7 +24,7 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 	case *lang.Drop:
 		return s.drop(st, t)
 	case *lang.Let:
-		return s.let(st, t)
+		return s.let(ctx, st, t)
 	case *lang.Save:
 		return s.save(ctx, st, t)
 	case *lang.List:

@@ -98,21 +98,6 @@ func plural[N int | int64](n N, thing string) string {
 	return fmt.Sprintf("%d %ss", n, thing)
 }
 
-// let sets a value for :name.
-func (s *Session) let(st *statement, t *lang.Let) error {
-	value, err := s.constant(st, t.Value)
-	if err != nil {
-		return err
-	}
-	key := lang.Fold(t.Name.Text)
-	if s.fixed[key] {
-		st.notes.Add(note.Note, note.Import, "LET %s is passed over: --let gave :%s its value", t.Name.Text, t.Name.Text)
-		return nil
-	}
-	s.params[key] = value
-	return nil
-}
-
 // constant computes an expression without columns.
 func (s *Session) constant(st *statement, e lang.Expr) (column.Value, error) {
 	return bind.Value(s.bindEnv(st), e)

@@ -75,8 +75,8 @@ func dataStatements() []entry {
 		},
 		{
 			name: "LET", also: []string{"VALUE", "PARAMETER"},
-			syntax:  []string{"LET name = value;"},
-			meaning: "Sets a value that statements use as :name. The option --let name=value of the command line goes before it, so that a script runs with other values unchanged.",
+			syntax:  []string{"LET name = value;", "LET name = (query);"},
+			meaning: "Sets a value that statements use as :name. A query gives its one value when LET runs, and NULL where it finds none. The option --let name=value of the command line goes before it, so that a script runs with other values unchanged.",
 			example: "LET limit = 2 * 4;\nSELECT id, temp FROM hall WHERE temp > :limit;",
 			see:     []string{"LIST VALUES"},
 		},

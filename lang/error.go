@@ -78,7 +78,8 @@ var strayHints = map[string]string{
 	"„": `write a straight quote: ' for texts, " for names`,
 	"−": "write the minus of the keyboard: -", "–": "write the minus of the keyboard: -", "—": "write the minus of the keyboard: -",
 	"×": "write *", "·": "write *", "÷": "write /", "≤": "write <=", "≥": "write >=", "≠": "write <>", "²": "write ^2", "³": "write ^3",
-	":": "a value set by LET is written :name, without a blank", "°": "a unit is a text: '°C'", "::": "write CAST(x AS type)",
+	"\\": "commands are statements and end with ; : HELP; LIST TABLES; QUIT;",
+	":":  "a value set by LET is written :name, without a blank", "°": "a unit is a text: '°C'", "::": "write CAST(x AS type)",
 	"$": "a value set by LET is written :name", "@": "a value set by LET is written :name", "?": "a value set by LET is written :name",
 }
 

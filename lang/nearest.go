@@ -1,5 +1,7 @@
 package lang
 
+import "strings"
+
 import (
 	"strconv"
 )
@@ -24,6 +26,24 @@ func Nearest(word string, candidates []string) string {
 		}
 		if d := editDistance(a, b); d < bestDistance && d < min(len(a), len(b)) {
 			best, bestDistance = candidate, d
+		}
+	}
+	return best
+}
+
+// Shortened finds what a word is the beginning of, or what is the beginning of a
+// word: 'vol' for 'volume', 'temperature' for 'temp'; the shortest of several, "" where
+// there is none. Beginnings have at least three letters; case does not count.
+func Shortened(word string, candidates []string) string {
+	const least = 3
+	a, best := Fold(word), ""
+	for _, candidate := range candidates {
+		b := Fold(candidate)
+		if min(len(a), len(b)) < least || !strings.HasPrefix(a, b) && !strings.HasPrefix(b, a) {
+			continue
+		}
+		if best == "" || len(candidate) < len(best) {
+			best = candidate
 		}
 	}
 	return best

@@ -193,6 +193,9 @@ func noStatement(t *lexer.Token) *Error {
 	e := &Error{Span: tokenSpan(t), Message: "no statement begins with " + shown(t), Hint: nearHint(t, StatementWords())}
 	if e.Hint == "" {
 		e.Hint = "HELP lists the statements"
+		if t.Value == "/" || t.Value == "." || t.Value == "\\" {
+			e.Hint = "commands are statements, too, and end with ; : HELP; LIST TABLES; QUIT;"
+		}
 	}
 	if t.Type == tokEOF {
 		e.Message, e.Hint = "expected a statement but found nothing", ""
@@ -220,6 +223,9 @@ func ourFault(toks []lexer.Token, err error) *Error {
 	}
 	if fault.Hint == "" {
 		fault.Hint = nearHint(p.tok(), words)
+	}
+	if fault.Hint == "" && toks[0].Type == kDrop && p.i == 1 && isName(p.kind()) {
+		fault.Hint = "say what it is: DROP TABLE " + p.tok().Value + ", DROP CAMPAIGN " + p.tok().Value + " …"
 	}
 	if fault.Hint == "" && statementWords[p.kind()] && strings.HasSuffix(what, statementEnd) {
 		fault.Hint = "is a ; missing before it?"

@@ -19,6 +19,14 @@ func (p *parser) relation() *Relation {
 	start := p.start()
 	r := &Relation{}
 	if !p.beginsRelation() {
+		if p.i > 0 && p.toks[p.i-1].Type == kShow && isName(p.kind()) {
+			switch word := strings.ToUpper(p.tok().Value); word {
+			case "TABLES", "CAMPAIGNS", "SOLIDS", "VIEWS", "FRAMES", "DIAGRAMS", "GEOMETRY", "FUNCTIONS", "VALUES":
+				p.failHint("a relation", "LIST "+word+"; lists them")
+			case "COLUMNS", "DATABASES", "SCHEMAS", "ALL":
+				p.failHint("a relation", "LIST TABLES; and LIST CAMPAIGNS; list what there is, DESCRIBE name; its columns")
+			}
+		}
 		p.failHint("a relation", "for example CELLS OF hall, or TRANSECT BETWEEN (x, y, z) AND (x, y, z)")
 	}
 	r.Noun = p.word("what to make, such as CELLS,")

@@ -153,6 +153,9 @@ func (s *settingPart) Parse(lex *lexer.PeekingLexer) (err error) {
 		case isWord(t) && !(p.isOneOf(kTimestamp, kInterval) && p.ahead(1) == tokText):
 			return settingPart{word: p.word("a word")}
 		}
+		if p.tok().Value == "=" {
+			p.failHint("a value, a text or a word", "without the =: SET DIGITS 8")
+		}
 		return settingPart{value: p.value("a value, a text or a word")}
 	})
 	return err

@@ -115,7 +115,11 @@ func (b *binder) faulty(err error, call problem.Place, args []expr.Expr) error {
 
 // didYouMean hints at the nearest candidate, if one is near.
 func didYouMean(p *problem.Problem, word string, candidates []string) *problem.Problem {
-	if near := lang.Nearest(word, candidates); near != "" && p.Hint == "" {
+	near := lang.Nearest(word, candidates)
+	if near == "" {
+		near = lang.Shortened(word, candidates)
+	}
+	if near != "" && p.Hint == "" {
 		p.WithHint("did you mean '%s'?", near)
 	}
 	return p

@@ -57,6 +57,6 @@
 //
 // Not there yet: MESH, BOXES, TERRAIN, PLUS and MINUS. A name of WITH whose
 // query depends on a row outside cannot be used in a query further inside. Queries
-// stand in no LIMIT, LET or clause of a relation, where a value is needed before
-// any query runs.
+// stand in no LIMIT and in no clause of a relation, where a value is needed before
+// any query runs; LET computes one for them.
 package bind

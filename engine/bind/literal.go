@@ -150,7 +150,8 @@ func (b *binder) value(e lang.Expr) (column.Value, error) {
 		return v, nil
 	}
 	if expr.HasQuery(x) {
-		return column.Value{}, problem.New("query-here", b.at(e), "a query cannot stand here").WithHint("here a value is needed before any query runs")
+		return column.Value{}, problem.New("query-here", b.at(e), "a query cannot stand here").
+			WithHint("here a value is needed before any query runs: LET n = (SELECT …); before, and :n here")
 	}
 	var w expr.Work
 	v, err := x.Eval(&w, &column.Batch{N: 1}, nil)

@@ -191,6 +191,12 @@ func (s *scope) noColumn(b *binder, c *lang.Column) error {
 		}
 	}
 	p := problem.New("no-column", b.at(&c.Name), "there is no column '%s' in %s", c.Name.Text, what)
+	if len(s.sources) == 0 {
+		p.Message = "'" + c.Name.Text + "' is a column, but there are no columns here"
+		if !c.Name.Quoted && !b.hasParam(c.Name.Text) {
+			return p.WithHint("FROM says where it comes from")
+		}
+	}
 	didYouMean(p, c.Name.Text, names)
 	switch {
 	case p.Hint != "":

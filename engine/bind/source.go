@@ -2,6 +2,7 @@ package bind
 
 import (
 	"errors"
+	"path/filepath"
 	"slices"
 	"strings"
 
@@ -25,7 +26,7 @@ func (b *binder) from(sources []lang.Source) (bound, error) {
 	for _, s := range sources[1:] {
 		next, err := b.fromSource(s)
 		if err != nil {
-			return bound{}, err
+			return bound{}, behindComma(err, all.scope)
 		}
 		if err := b.clash(all.scope, next.scope, s); err != nil {
 			return bound{}, err
@@ -33,6 +34,21 @@ func (b *binder) from(sources []lang.Source) (bound, error) {
 		all = bound{&plan.Join{Kind: plan.Inner, Left: all.node, Right: next.node}, all.scope.beside(next.scope)}
 	}
 	return all, nil
+}
+
+// behindComma says, where a join behind a comma asks for a source before it, that
+// JOIN binds tighter than the comma.
+func behindComma(err error, before *scope) error {
+	var p *problem.Problem
+	if !errors.As(err, &p) || p.Code != "no-source" {
+		return err
+	}
+	for _, s := range before.sources {
+		if s.alias != "" && strings.Contains(lang.Fold(p.Message), "'"+lang.Fold(s.alias)+"'") {
+			p.Hint = "JOIN binds tighter than the comma, and its ON knows nothing before that: write CROSS JOIN in the place of the comma"
+		}
+	}
+	return err
 }
 
 // clash refuses two sources under one name.
@@ -196,10 +212,18 @@ func (b *binder) object(n *lang.Name) (*catalog.Object, error) {
 	if _, ok := relation.Lookup(n.Text); ok && p.Hint == "" {
 		p.WithHint("a relation is made of sites: %s OF campaign", strings.ToUpper(n.Text))
 	}
+	if p.Hint == "" && n.Quoted && looksLikeFile(n.Text) {
+		p.WithHint("a file is read first, its name between single quotes: CREATE TABLE … FROM '%s';", n.Text)
+	}
 	if p.Hint == "" && len(b.objectNames()) == 0 {
 		p.WithHint("the catalog is empty: CREATE CAMPAIGN %s FROM 'file.csv';", n.Text)
 	}
 	return nil, p
+}
+
+// looksLikeFile reports whether a name has a folder or an ending, as files have.
+func looksLikeFile(name string) bool {
+	return strings.ContainsAny(name, `/\`) || filepath.Ext(name) != ""
 }
 
 // objectNames are the names in the catalog of the given kinds (none: all), and

@@ -260,7 +260,7 @@ input:1: the column 'id' has many values where SELECT has one row for each group
 plan
 SELECT id FROM hall LIMIT (SELECT 1)
 ----
-input:1: a query cannot stand here (here a value is needed before any query runs)
+input:1: a query cannot stand here (here a value is needed before any query runs: LET n = (SELECT …); before, and :n here)
   SELECT id FROM hall LIMIT (SELECT 1)
                             ^^^^^^^^^^
 

@@ -204,6 +204,6 @@ input:1: there is no function 'RANC' (did you mean 'RANK'?)
 plan
 SELECT RANK() OVER (ORDER BY temp)
 ----
-input:1: there is no column 'temp' in 
+input:1: 'temp' is a column, but there are no columns here (FROM says where it comes from)
   SELECT RANK() OVER (ORDER BY temp)
                                ^^^^
