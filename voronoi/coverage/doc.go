@@ -28,7 +28,9 @@
 // They are found all at once: each cell is cut by the solid, where that is not convex
 // by each of its convex parts ([solid.Divided]), and the corners of the pieces are
 // looked at. The cuts between parts add corners that are none; the next step does away
-// with them. Vertices of the diagram alone would not do: in rooms most of the large
+// with them. Of a solid that knows its surface only ([solid.Faceted]) the corners of its
+// walls in the cell are looked at, and the vertices of the cell in the solid.
+// Vertices of the diagram alone would not do: in rooms most of the large
 // gaps are on walls.
 //
 // # Which of them are peaks
@@ -44,6 +46,11 @@
 // strictly inside the convex hull of its nearest sites. On the surface of that hull it is
 // none: the middle of four sites at the corners of a square is lower than the places
 // above and below it.
+//
+// Where a solid has no parts, the directions u with no (x-pi)·u < 0 are a convex cone. If
+// one of them leads into the solid, then either one lies in the surface, in one of the
+// sectors that the facets at x make, or all of them lead into the solid, and any will do
+// to ask for its side.
 //
 // Peaks are isolated: between two of them the distance dips.
 //
@@ -90,6 +97,6 @@
 // All cells are looked at, even if only the largest gaps are wanted, and nothing is kept.
 // In a solid of many convex parts each cell is held against each part's box. Walls that
 // meet at less than about 1e-6 are taken for one; what a gap makes of features of the
-// solid thinner than 1e-8 of its radius is not to be relied on. A solid must be convex
-// or know convex parts of itself.
+// solid thinner than 1e-8 of its radius is not to be relied on. A solid must be convex,
+// know convex parts of itself or know its surface.
 package coverage

@@ -64,11 +64,11 @@ var (
 	ErrSites = errors.New("coverage: the sites are not those of the diagram")
 )
 
-// UndividedError is a solid that is neither convex nor knows convex parts of itself.
+// UndividedError is a solid that knows neither convex parts of itself nor its surface.
 type UndividedError struct{ Kind string }
 
 func (e *UndividedError) Error() string {
-	return fmt.Sprintf("coverage: a solid of the kind %q has no convex parts", e.Kind)
+	return fmt.Sprintf("coverage: a solid of the kind %q has neither convex parts nor facets", e.Kind)
 }
 
 // Gaps finds all gaps of a diagram, by falling radius, equal ones by x, y, z. sites
@@ -104,6 +104,7 @@ func Gaps(ctx context.Context, d *voronoi.Diagram, sites []Vec, o Options) ([]Ga
 type search struct {
 	d       *voronoi.Diagram
 	solid   solid.Divided // nil: none
+	faceted solid.Faceted // or this one, known by its surface
 	convex  bool          // the diagram's cells are cut by the solid already
 	corners []Vec         // of the solid
 
@@ -129,11 +130,13 @@ func newSearch(d *voronoi.Diagram, sites []Vec, o Options) (*search, error) {
 		}
 		s.solid, s.corners = part, part.Corners()
 	case body != nil:
-		divided, ok := body.(solid.Divided)
-		if !ok {
+		if divided, ok := body.(solid.Divided); ok {
+			s.solid, s.convex, s.corners = divided, body.Planes() != nil, divided.Corners()
+		} else if faceted, ok := body.(solid.Faceted); ok {
+			s.faceted, s.corners = faceted, faceted.Corners()
+		} else {
 			return nil, &UndividedError{body.Facts().Kind}
 		}
-		s.solid, s.convex, s.corners = divided, body.Planes() != nil, divided.Corners()
 	}
 	s.list()
 	s.setGrain()
@@ -174,6 +177,10 @@ func (s *search) setGrain() {
 	}
 	if s.solid != nil {
 		lo, hi = s.solid.Bounds()
+		size = max(size, largest(lo), largest(hi))
+	}
+	if s.faceted != nil {
+		lo, hi = s.faceted.Bounds()
 		size = max(size, largest(lo), largest(hi))
 	}
 	s.grain = 0x1p-46 * size

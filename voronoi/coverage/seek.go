@@ -22,6 +22,12 @@ type seeker struct {
 	buf   []solid.Plane
 	cone  cone
 	found []Gap
+
+	// For solids that are known by their surface.
+	work    solid.Work
+	sectors []solid.Sector
+	at0     Vec     // the place in question
+	reach0  float64 // its distance from its site
 }
 
 // ball lists the sites about a place. It is the scratch of one goroutine.
@@ -72,6 +78,10 @@ func (k *seeker) cellOf(i int32) error {
 		return err
 	}
 	if k.cell.Empty() {
+		return nil
+	}
+	if k.faceted != nil {
+		k.facetCell(p)
 		return nil
 	}
 	if k.solid == nil || k.convex {
@@ -167,6 +177,7 @@ func (k *seeker) try(v, p Vec) {
 	if r <= k.grain || !k.gather(v, p, r) || k.solid != nil && !k.reach(v, p, r) {
 		return
 	}
+	k.at0, k.reach0 = add(p, v), r
 	for _, s := range scales {
 		if k.isPeak(r, s) {
 			k.found = append(k.found, k.gap(add(p, v), r))
@@ -232,6 +243,9 @@ func (k *seeker) isPeak(r, scale float64) bool {
 			k.cone.c = append(k.cone.c, towards(n))
 		}
 	}
+	if k.faceted != nil {
+		return k.facetPeak(float64(scale*r)+k.grain, slackAt(scale))
+	}
 	if k.solid == nil {
 		return k.cone.isClosed(slackAt(scale))
 	}
@@ -261,7 +275,7 @@ func towards(n nearSite) Vec { return scale(-1/n.far, n.away) }
 // gap describes a place that is one, found at about this distance from its site.
 func (k *seeker) gap(at Vec, r float64) Gap {
 	g := Gap{At: at}
-	if k.solid != nil {
+	if k.solid != nil || k.faceted != nil {
 		g.At, g.Place = k.settle(at, 2*float64(coarsest*r)+2*k.grain)
 	}
 	g.At = add(g.At, Vec{}) // -0 + 0 is 0
@@ -293,7 +307,11 @@ func (k *seeker) settle(at Vec, tol float64) (Vec, Place) {
 			break
 		}
 	}
-	k.buf = k.solid.WallsAt(at, tol, k.buf[:0])
+	if k.faceted != nil {
+		k.buf = k.faceted.WallsAt(at, tol, k.buf[:0])
+	} else {
+		k.buf = k.solid.WallsAt(at, tol, k.buf[:0])
+	}
 	for _, w := range k.buf {
 		for _, axis := range [3]struct{ n, x *float64 }{{&w.N.X, &at.X}, {&w.N.Y, &at.Y}, {&w.N.Z, &at.Z}} {
 			if math.Abs(*axis.n) == 1 {

@@ -14,6 +14,7 @@ type Op int8
 const (
 	Plus  Op = iota // what lies in one or in both
 	Minus           // what lies in the first and not in the second
+	Both            // what lies in both
 )
 
 // expression says which places belong to a combination: a leaf, or two expressions.
@@ -32,6 +33,8 @@ func (e *expression) holds(in []bool) bool {
 		return in[e.leaf]
 	case e.op == Plus:
 		return e.a.holds(in) || e.b.holds(in)
+	case e.op == Both:
+		return e.a.holds(in) && e.b.holds(in)
 	}
 	return e.a.holds(in) && !e.b.holds(in)
 }
@@ -66,7 +69,7 @@ type SurfaceError struct{ Kind string }
 
 func (e *SurfaceError) Error() string { return "mesh: a " + e.Kind + " has no triangles" }
 
-// Combine makes a PLUS b or a MINUS b of any two solids. Where their surfaces cross, the
+// Combine makes a PLUS b, a MINUS b, or what both share, of any two solids. Where their surfaces cross, the
 // corners of the result are computed exactly and then rounded once; where faces lie in
 // one plane, that is decided exactly. The error is an *[Error] or a *[SurfaceError].
 func Combine(op Op, a, b solid.Solid) (*Mesh, error) {
