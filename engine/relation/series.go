@@ -376,9 +376,11 @@ func (w *courses) read(i, lo, hi int, v *column.Vector) error {
 	if w.between(i) {
 		return w.readBetween(i, lo, hi, v)
 	}
-	after := w.b.Log.LongestGap
-	if after == 0 {
-		after = w.b.Log.Every
+	after := int64(0) // only HOLD knows anything behind the last reading
+	if w.b.Log.Method == "HOLD" {
+		if after = w.b.Log.LongestGap; after == 0 {
+			after = w.b.Log.Every
+		}
 	}
 	rows := make([]int32, n)
 	switch {
