@@ -101,7 +101,7 @@ func (e *explained) add(n plan.Node, depth int, often bool) {
 	if e.measured != nil && !often {
 		x.count = e.measured.Of(n)
 	}
-	if f := x.estimate.Geometry; f != nil {
+	if f := x.estimate.Geometry; f != nil && n.(*plan.Relation).Bound.Def.Over == relation.OverSites {
 		x.geometry = geometryText(f, n.(*plan.Relation).Bound.Per(), x.count.Geometry)
 	}
 	e.steps = append(e.steps, x)

@@ -118,8 +118,11 @@ func relationTopics() []topic {
 	return list
 }
 
-// relationExample is the first example of a clause that shows the relation.
+// relationExample is a relation's own example, or the first of a clause that shows it.
 func relationExample(noun string) string {
+	if d, ok := relation.Lookup(noun); ok && d.Example != "" {
+		return d.Example
+	}
 	for _, c := range relation.AllClauses() {
 		if strings.Contains(c.Example, " "+noun+" OF ") {
 			return c.Example

@@ -21,6 +21,9 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 	if err != nil {
 		return bound{}, err
 	}
+	if def.Over == relation.OverNothing {
+		return b.overNothing(&relation.Bound{Def: def}, r)
+	}
 	in, campaign, err := b.sites(r)
 	if err != nil {
 		return bound{}, err
@@ -41,7 +44,11 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 	if err := b.clauses(rel, r, campaign != nil); err != nil {
 		return bound{}, err
 	}
-	return b.relationNode(rel, r, in)
+	beside, err := b.estimatingInput(rel, r)
+	if err != nil {
+		return bound{}, err
+	}
+	return b.relationNode(rel, r, in, beside...)
 }
 
 // relationNode is the source that a bound relation makes.
@@ -67,7 +74,7 @@ func fields(s *scope) column.Schema {
 
 // noun finds the relation by its noun.
 func (b *binder) noun(r *lang.Relation) (*relation.Definition, error) {
-	if def, ok := relation.Lookup(r.Noun.Text); ok && r.Operand != nil {
+	if def, ok := relation.Lookup(r.Noun.Text); ok && (r.Operand != nil || def.Over == relation.OverNothing) {
 		return def, nil
 	}
 	if name, ok := relation.Planned(r.Noun.Text); ok {
@@ -255,7 +262,13 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 			}
 			rel.Clauses.Because = c.Because.Value
 		default:
-			err = b.representativeClause(rel, c)
+			var known bool
+			if rel.Def.Noun != "REPRESENTATIVES" {
+				known, err = b.estimatingClause(rel, c)
+			}
+			if !known {
+				err = b.representativeClause(rel, c)
+			}
 		}
 		if err != nil {
 			return err

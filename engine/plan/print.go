@@ -114,8 +114,22 @@ func relationLine(n *Relation) string {
 func clauses(b *relation.Bound) string {
 	c := &b.Clauses
 	text := ""
-	if c.Solid != nil {
+	if c.Solid != nil && b.Def.Over != relation.OverNothing {
 		text += " within " + shortened(c.SolidName)
+	}
+	for i, of := range c.For {
+		if i == 0 {
+			text += " for "
+		} else {
+			text += ", "
+		}
+		text += b.Input[of].Name
+	}
+	for _, beside := range b.Beside {
+		text += " " + strings.ToLower(beside.Clause) + " " + shortened(beside.Name)
+	}
+	if c.MethodText != "" {
+		text += " by " + c.MethodText
 	}
 	for i, each := range c.Each {
 		if i == 0 {

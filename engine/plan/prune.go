@@ -275,6 +275,8 @@ func prunedRelation(n *Relation, need []bool) (Node, []int) {
 			below[i] = true
 		case c.Site >= 0:
 			below[c.Site] = true
+		case c.From > 0:
+			below[c.From-1] = true
 		}
 	}
 	in, to := pruned(n.Input, below)

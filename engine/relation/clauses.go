@@ -40,19 +40,22 @@ var clauses = []Clause{
 		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share.",
 		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON);"},
 	{"METHOD", "METHOD SIBSON | LAPLACE | LINEAR | NEAREST | IDW(power) | HOLD | MEAN | MAX | MIN",
-		"How values between the sites are estimated. Of SERIES, how a row comes of the readings: on the straight line between two of them at its stamp (LINEAR, the rule), the last one before it (HOLD), " +
+		"How values between the sites are estimated. SIBSON (the rule) weighs each site by what the cell of the place would take from it, LAPLACE by the areas of that cell's faces over the distances, " +
+			"LINEAR by the place in its Delaunay tetrahedron; NEAREST takes the nearest site, IDW the twelve nearest by an inverse power of the distance. In a solid SIBSON and LAPLACE use cells that end at its walls, " +
+			"as if nothing passed through them: they are defined everywhere in it, and a field that rises evenly is flattened near a wall. Without one they reproduce even rises and are NULL outside the convex hull of the sites, as LINEAR always is. " +
+			"Of SERIES, how a row comes of the readings: on the straight line between two of them at its stamp (LINEAR, the rule), the last one before it (HOLD), " +
 			"the mean by time of its span (MEAN; at least half of the span must lie between readings), or the largest or smallest reading in its span (MAX, MIN). Texts and truth values are held.",
 		"SELECT * FROM RESIDUALS OF hall FOR temp METHOD SIBSON;"},
 	{"FOR", "FOR column",
-		"The reading that the relation is about.",
+		"The reading that the relation is about. Sites without a value of it take no part: their space goes to those that have one.",
 		"SELECT * FROM RESIDUALS OF hall FOR temp;"},
 	{"AT", "AT points | AT (query) | AT z = value",
-		"Where to estimate, or where to cut.",
+		"Where to estimate, or where to cut. Points are rows with the columns x, y, z, of a table, a campaign, a query, GRID or TRANSECT; their other columns are carried along, under own_… where an attribute has the name.",
 		"SELECT * FROM SECTION OF hall AT z = 1.1;"},
 	{"THROUGH", "THROUGH (x, y, z) NORMAL (nx, ny, nz)",
 		"Cuts along any plane: a point of it and what stands upright on it.",
 		"SELECT * FROM SECTION OF hall THROUGH (0, 0, 1) NORMAL (0, 1, 1);"},
-	{"ABOVE", "ABOVE value", "The limit that is exceeded.",
+	{"ABOVE", "ABOVE value", "The limit that is exceeded. A reading that equals it is not above it.",
 		"SELECT * FROM EXCEEDANCE OF hall FOR temp ABOVE 8;"},
 	{"BELOW", "BELOW value", "The limit that is fallen short of.",
 		"SELECT * FROM EPISODES OF log BY logger ON t FOR temp BELOW 2;"},
@@ -70,7 +73,7 @@ var clauses = []Clause{
 		"SELECT * FROM SPACING OF hall ACROSS 5 UP 2;"},
 	{"AGAINST", "AGAINST campaign | AGAINST (query)", "The other campaign, whose attributes carry the prefix other_.",
 		"SELECT * FROM OVERLAY OF hall AGAINST hall;"},
-	{"STEP", "STEP length", "The distance from one point to the next.",
+	{"STEP", "STEP length", "The distance from one point to the next. The points of GRID are the middles of cubes with this edge, counted from the lowest corner of the solid's bounding box, as far as they lie in the solid.",
 		"SELECT * FROM GRID OF air STEP 0.5;"},
 	{"WEIGHTS", "WEIGHTS AREA | CONTACT | CONDUCTANCE", "How strongly cells that touch count as neighbours: all alike (CONTACT), by the area of their face, or by the area over the distance.",
 		"SELECT * FROM AUTOCORRELATION OF hall FOR temp WEIGHTS AREA;"},

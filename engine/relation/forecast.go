@@ -22,9 +22,12 @@ type Forecast struct {
 	Counted   bool         // parts, diagrams and cells are counted, not estimated
 }
 
-// Per is what the work is counted in: the cells of a relation of cells, the sites
-// of others, which need all of them.
+// Per is what the work is counted in: the cells of a relation of cells, the points of
+// one of points, the sites of others, which need all of them.
 func (b *Bound) Per() string {
+	if len(b.Beside) > 0 && b.Beside[0].Clause == "AT" {
+		return "point"
+	}
 	if b.Def.Own || b.Def == contacts {
 		return "cell"
 	}

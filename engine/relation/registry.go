@@ -8,7 +8,8 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, seriesOf, audit, episodes, extremes, representatives}
+var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, estimates, weights, residuals, exceedance, grid, transect,
+	seriesOf, audit, episodes, extremes, representatives}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
@@ -16,16 +17,10 @@ var planned = map[string]string{
 	"PLACEMENTS":      "proposed further site",
 	"REDUNDANCY":      "site, least missed first",
 	"SPACING":         "campaign",
-	"ESTIMATES":       "row of points",
-	"WEIGHTS":         "point and neighbour",
-	"RESIDUALS":       "site",
-	"EXCEEDANCE":      "campaign and threshold",
 	"SECTION":         "cell cut by the plane",
 	"OVERLAY":         "pair of cells that share space",
 	"AUTOCORRELATION": "campaign",
 	"CLUSTERS":        "site",
-	"GRID":            "grid point in the solid",
-	"TRANSECT":        "point along the line",
 }
 
 // All are the relations that there are.

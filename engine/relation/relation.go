@@ -20,6 +20,7 @@ import (
 type Column struct {
 	column.Field
 	Site     int
+	From     int // 1 + the column of the input on which its values rest where Site does not say; 0: none
 	Measures voronoi.Measures
 	Costly   bool // left out of SELECT *, named there
 	// Power is the column's dimension in lengths (3: a volume), from which its
@@ -51,10 +52,12 @@ type Over uint8
 
 // OverSites is the rule: rows with id, x, y, z, of which diagrams are made.
 // OverRows is any rows: a log of readings, rows to rank. Then the ID, X, Y, Z of
-// a Bound are -1, and nothing of the geometry is asked.
+// a Bound are -1, and nothing of the geometry is asked. OverNothing is a relation
+// without an input: its clauses, and perhaps a solid, say all.
 const (
 	OverSites Over = iota
 	OverRows
+	OverNothing
 )
 
 // Definition is a registry line: a relation of the language.
@@ -63,6 +66,7 @@ type Definition struct {
 	RowIs    string // "site"
 	Over     Over
 	Meaning  string
+	Example  string   // a query over a campaign hall, a solid air, a table log; "": that of a clause
 	Clauses  []string // "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", …
 	Later    []string // clauses of the language that it will take and does not take yet
 	Own      bool     // its rows carry the sites' own columns
@@ -95,6 +99,8 @@ type Clauses struct {
 	By  []int // columns of the input named by BY
 	On  []int // the one named by ON, or none
 	For []int // those named by FOR
+
+	Estimating
 }
 
 // Bound is a relation in a query after binding: what its rows look like.
@@ -181,8 +187,12 @@ func (b *Bound) Pruned(to []int) *Bound {
 	}
 	c.Columns = slices.Clone(b.Columns)
 	for i := range c.Columns {
-		if col := &c.Columns[i]; col.Site >= 0 {
+		col := &c.Columns[i]
+		if col.Site >= 0 {
 			col.Site = to[col.Site]
+		}
+		if col.From > 0 {
+			col.From = to[col.From-1] + 1
 		}
 	}
 	return &c

@@ -8,13 +8,6 @@ input:1: PLACEMENTS is not there yet
                 ^^^^^^^^^^
 
 plan
-SELECT * FROM TRANSECT BETWEEN (0,0,1) AND (30,0,1) STEP 0.1
-----
-input:1: TRANSECT is not there yet
-  SELECT * FROM TRANSECT BETWEEN (0,0,1) AND (30,0,1) STEP 0.1
-                ^^^^^^^^
-
-plan
 SELECT hidden FROM CELLS OF hall
 ----
 input:1: the column 'hidden' of CELLS OF hall is not there yet

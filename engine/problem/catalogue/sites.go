@@ -21,6 +21,18 @@ var ofSites = []Entry{
 		Example: "SELECT id FROM CELLS OF hall STRETCHED (1, 1, 0);",
 	},
 	{
+		Code:    "not-finite",
+		Meaning: "A reading is infinite, and nothing can be estimated from it.",
+		WayOut:  "Leave the site out with OF (SELECT … WHERE …), or make the reading NULL.",
+		Example: "SELECT * FROM RESIDUALS OF (SELECT id, x, y, z, CAST('Infinity' AS REAL) AS temp FROM hall) FOR temp;",
+	},
+	{
+		Code:    "no-solid",
+		Meaning: "What is asked for needs a space with an end, and there is no solid.",
+		WayOut:  "WITHIN a solid, or a campaign that was made WITHIN one.",
+		Example: "SELECT * FROM EXCEEDANCE OF hall FOR temp ABOVE 8 METHOD SIBSON UNCLIPPED;",
+	},
+	{
 		Code:    "no-place",
 		Meaning: "A site of a new campaign has no coordinate.",
 		WayOut:  "Mend the file, or leave the row out: REFUSED TO for a file, WHERE … IS NOT NULL for a query.",
