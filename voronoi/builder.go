@@ -54,12 +54,19 @@ type builder struct {
 	inside   []float64       // scratch of shares
 	slab     polyhedron.Cell // scratch of clippedMiddle
 	slabOut  solid.Measures
+
+	full    polyhedron.Cell // the whole cell, where it is measured in parts
+	planes  []solid.Plane   // scratch of eachPiece
+	touched []int32         // scratch of measureIn
+	inParts []share         // scratch of sharesIn
+	parts   *within         // contacts are measured in these; nil: whole
 }
 
 // builder takes a builder from the diagram's pool; free gives it back.
 func (d *Diagram) builder() *builder {
 	if b, ok := d.pool.Get().(*builder); ok {
 		b.use(nil, nil)
+		b.parts = nil
 		return b
 	}
 	b := &builder{d: d, used: index.NewUsed(d.tree.Len())}

@@ -15,6 +15,7 @@ type share struct {
 	other  int32 // cell
 	area   float64
 	middle Vec
+	part   int32 // where contacts are measured in parts
 }
 
 // Contacts calls yield once for each of the given sites, in their order (nil: all
@@ -29,11 +30,16 @@ type share struct {
 // It holds about 40 bytes for each contact that was asked for. An error of yield
 // ends the calls and is returned.
 func (d *Diagram) Contacts(ctx context.Context, sites []int32, yield func(site int32, contacts []Contact) error) error {
+	return d.contacts(ctx, sites, nil, yield)
+}
+
+// contacts is Contacts, or ContactsIn where parts are given.
+func (d *Diagram) contacts(ctx context.Context, sites []int32, parts *within, yield func(site int32, contacts []Contact) error) error {
 	r, err := d.request(sites)
 	if err != nil {
 		return err
 	}
-	list, err := d.contactsOf(ctx, r.cells)
+	list, err := d.contactsOf(ctx, r.cells, parts)
 	if err != nil {
 		return err
 	}
@@ -65,9 +71,10 @@ func (d *Diagram) describe(to []Contact, cell int32, from []share) []Contact {
 			Area:     s.area,
 			Distance: length(sub(d.spot(s.other), p)),
 			Middle:   s.middle,
+			Part:     s.part,
 		})
 	}
-	slices.SortFunc(to, func(a, b Contact) int { return cmp.Compare(a.Other, b.Other) })
+	slices.SortFunc(to, func(a, b Contact) int { return cmp.Or(cmp.Compare(a.Other, b.Other), cmp.Compare(a.Part, b.Part)) })
 	return to
 }
 
@@ -75,7 +82,7 @@ func (d *Diagram) describe(to []Contact, cell int32, from []share) []Contact {
 // builds these cells and takes from each its contacts with later cells; what it
 // says about earlier cells is only a hint to build those, in a second pass, if they
 // were not asked for.
-func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, error) {
+func (d *Diagram) contactsOf(ctx context.Context, cells []int32, parts *within) ([][]share, error) {
 	later := make([][]share, len(cells))
 	hints := make([][]int32, len(cells))
 	g, err := d.choose(ctx, Neighbours, len(cells))
@@ -87,6 +94,7 @@ func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, err
 	}
 	err = d.forEach(ctx, len(cells), 0, len(cells), func(b *builder, k int) error {
 		b.use(g, nil)
+		b.parts = parts
 		all, err := b.shares(cells[k])
 		if err != nil {
 			return err
@@ -110,6 +118,7 @@ func (d *Diagram) contactsOf(ctx context.Context, cells []int32) ([][]share, err
 	fromEarlier := make([][]share, len(earlier))
 	err = d.forEach(ctx, len(earlier), len(cells), len(cells)+len(earlier), func(b *builder, k int) error {
 		b.use(g, nil)
+		b.parts = parts
 		all, err := b.shares(earlier[k])
 		if err != nil {
 			return err
@@ -164,7 +173,7 @@ func merge(cells []int32, later [][]share, earlier []int32, fromEarlier [][]shar
 	visit := func(do func(k int, s share)) {
 		give := func(owner int32, s share) {
 			if k, asked := slices.BinarySearch(cells, s.other); asked {
-				do(k, share{owner, s.area, s.middle})
+				do(k, share{owner, s.area, s.middle, s.part})
 			}
 		}
 		for k, shares := range later {
@@ -193,6 +202,9 @@ func merge(cells []int32, later [][]share, earlier []int32, fromEarlier [][]shar
 // shares builds a cell and lists its contacts, one for each neighbour, in a buffer
 // that the next call overwrites.
 func (b *builder) shares(cell int32) ([]share, error) {
+	if b.parts != nil {
+		return b.sharesIn(cell)
+	}
 	if b.walker != nil {
 		return b.sharesGlobal(cell)
 	}
@@ -208,7 +220,7 @@ func (b *builder) sharesOf(at Vec, bounded bool) ([]share, error) {
 	b.list = b.list[:0]
 	if d.solid == nil || d.convex {
 		for i := range b.cell.NumFaces() {
-			if label, _ := b.cell.Face(i); label >= 0 && b.cell.Counts(i) {
+			if label, _ := b.cell.Face(i); label >= 0 && label != partLabel && b.cell.Counts(i) {
 				b.list = append(b.list, b.wholeFace(i, label, at, bounded))
 			}
 		}
@@ -250,10 +262,10 @@ func (b *builder) wholeFace(i int, other int32, at Vec, bounded bool) share {
 			n = sub(b.d.place(other), at)
 		}
 		half := Vec{X: n.X / 2, Y: n.Y / 2, Z: n.Z / 2}
-		return share{other, math.Inf(1), add(at, half)}
+		return share{other, math.Inf(1), add(at, half), 0}
 	}
 	area, middle := b.cell.FaceMiddle(i)
-	return share{other, area, add(at, middle)}
+	return share{other, area, add(at, middle), 0}
 }
 
 // slabLabel marks the face that splits a slab off: a wall that no solid has.

@@ -271,7 +271,7 @@ func (b *builder) sharesGlobal(cell int32) ([]share, error) {
 	b.list = b.list[:0]
 	for i := range w.sums.parts {
 		if p := &w.sums.parts[i]; !p.isWall && w.sums.counts(p) {
-			b.list = append(b.list, share{w.g.cell[p.q], p.area, add(at, p.middle)})
+			b.list = append(b.list, share{w.g.cell[p.q], p.area, add(at, p.middle), 0})
 		}
 	}
 	return b.list, nil

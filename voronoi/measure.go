@@ -325,7 +325,7 @@ func (b *builder) contactsInside(m *solid.Measures) (area float64, n int32) {
 // contact: the face is no artefact of rounding, nor is its part inside.
 func (b *builder) touches(i int, a float64) bool {
 	label, _ := b.cell.Face(i)
-	return label >= 0 && b.cell.Counts(i) && a > crumbShare*b.cell.Surface()
+	return label >= 0 && label != partLabel && b.cell.Counts(i) && a > crumbShare*b.cell.Surface()
 }
 
 // crumbShare of a cell's surface: smaller contacts are none.

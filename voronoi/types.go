@@ -85,6 +85,7 @@ type Contact struct {
 	Area     float64 // +Inf: unbounded
 	Distance float64 // between the two sites
 	Middle   Vec     // centroid of the face; halfway between the sites if it is unbounded
+	Part     int32   // of ContactsIn; 0 otherwise
 }
 
 // Group is a set of sites with equal coordinates.

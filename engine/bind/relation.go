@@ -239,6 +239,7 @@ func (b *binder) inherit(rel *relation.Bound, o *catalog.Object) error {
 // clauses binds the clauses of the relation itself.
 func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) error {
 	var within, unclipped lang.Clause
+	var measured *lang.MeasuredInClause
 	for _, c := range r.Clauses {
 		err := b.takes(rel, c)
 		if err != nil {
@@ -251,6 +252,8 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 		case *lang.UnclippedClause:
 			unclipped = c
 			rel.Clauses.Solid, rel.Clauses.SolidName, rel.Clauses.Zones = nil, "", nil
+		case *lang.MeasuredInClause:
+			measured = c
 		case *lang.StretchedClause:
 			err = b.stretched(rel, c)
 		case *lang.ForEachClause:
@@ -280,10 +283,15 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 	if err := b.spaceTaken(rel, r); err != nil {
 		return err
 	}
+	if measured != nil {
+		if err := b.measuredIn(rel, measured); err != nil {
+			return err
+		}
+	}
 	if within != nil && unclipped != nil {
 		return problem.New("clauses", b.at(unclipped), "WITHIN and UNCLIPPED say the opposite of each other")
 	}
-	if within == nil && unclipped == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") && rel.Def.Noun != "REPRESENTATIVES" {
+	if within == nil && unclipped == nil && measured == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") && rel.Def.Noun != "REPRESENTATIVES" {
 		b.say(note.Note, note.Sites, "%s has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along", rel.Title())
 	}
 	return nil

@@ -30,6 +30,8 @@ type Handle struct {
 	contacts [][]voronoi.Contact // nil: not computed
 	kept     int64               // bytes of a tetrahedralisation
 	gaps     *[]coverage.Gap     // nil: not looked for
+	regions  map[Key]*inRegions  // by the key of the regions
+	gapsIn   map[Key][]coverage.Gap
 }
 
 // Bytes that a diagram without measures, a contact and its list take.

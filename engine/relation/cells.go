@@ -3,8 +3,10 @@ package relation
 import (
 	"context"
 	"math"
+	"strings"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/note"
 	"nearcell/voronoi"
 )
 
@@ -13,8 +15,8 @@ var cells = &Definition{
 	Noun:    "CELLS",
 	RowIs:   "site",
 	Meaning: "the space nearer to a site than to any other",
-	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
-	Later:   []string{"MEASURED IN", "UNCERTAINTY"},
+	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
+	Later:   []string{"UNCERTAINTY"},
 	Own:     true,
 	NotYet:  []string{"hidden"},
 	Zoned:   true,
@@ -81,7 +83,7 @@ func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
 		return nil, err
 	}
 	c := &cellRows{sites: s, own: len(b.Input), want: b.measures(r.Need)}
-	if !b.Closed() && c.want&(voronoi.Volume|voronoi.Area|voronoi.Centroid|voronoi.Farthest) != 0 {
+	if !b.Closed() && !b.measuredIn() && c.want&(voronoi.Volume|voronoi.Area|voronoi.Centroid|voronoi.Farthest) != 0 {
 		c.want |= voronoi.Bounded // for the note
 	}
 	return c, nil
@@ -106,7 +108,18 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 		rows = rows[:0]
 		return err
 	}
+	if names := c.withoutValue(); c.b.measuredIn() && len(names) > 0 {
+		c.env.Notes.Add(note.Note, note.Cells, "with MEASURED IN, %s of %s %s NULL: a part of a cell has none", strings.Join(names, " and "),
+			c.b.Title(), are(len(names)))
+	}
 	for i, p := range c.parts {
+		if c.b.measuredIn() {
+			if err := c.partInRegions(ctx, p, &rows, out, flush); err != nil {
+				return err
+			}
+			c.partDone(i)
+			continue
+		}
 		out.now(p.Zone, noPart)
 		measured, ks, err := c.measured(ctx, p)
 		if err != nil {

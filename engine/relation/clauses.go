@@ -31,8 +31,9 @@ var clauses = []Clause{
 		"Leaves sites out before the partition, so that their space goes to their neighbours; a note tells of it with the reason. WHERE only chooses the rows that are shown and never changes which sites partition.",
 		"SELECT AVG(temp) WEIGHTED BY volume\nFROM CELLS OF hall OMITTING ('L08') BECAUSE 'hangs in the sun';"},
 	{"MEASURED IN", "MEASURED IN solid | MEASURED IN (solid, solid)",
-		"All sites partition the solid; volumes, areas and sections count inside each of these parts only, with a row for each in the column part: the share of the racks over 8 °C.",
-		"SELECT part, SUM(volume) FROM CELLS OF hall MEASURED IN (racks, aisle) GROUP BY part;"},
+		"All sites partition the solid; volumes, areas, contacts and gaps count inside each of these parts only, with a row for each in the column part: the share of the racks over 8 °C. " +
+			"A cell that does not reach into a part has no row in it; what of a part lies outside the solid does not count. The surface of a part is no wall.",
+		"CREATE SOLID racks AS BOX (2,2,0) TO (12,10,4);\nSELECT SUM(volume) AS stored, SHARE(temp > 8) WEIGHTED BY volume AS too_warm\nFROM CELLS OF hall MEASURED IN racks;"},
 	{"STRETCHED", "STRETCHED (sx, sy, sz)",
 		"Distances are measured in a stretched space: with (1, 1, 5) a metre up counts as five. All results are in true units.",
 		"SELECT id, volume FROM CELLS OF hall STRETCHED (1, 1, 5);"},

@@ -1,6 +1,7 @@
 package relation
 
 import (
+	"cmp"
 	"context"
 	"math"
 	"slices"
@@ -14,8 +15,7 @@ var contacts = &Definition{
 	Noun:    "CONTACTS",
 	RowIs:   "ordered pair of touching cells, both (a, b) and (b, a)",
 	Meaning: "the faces between the cells of two sites",
-	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
-	Later:   []string{"MEASURED IN"},
+	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Zoned:   true,
 	Open:    openContacts,
 	layout:  layoutContacts,
@@ -135,7 +135,7 @@ func (c *contactRows) part(ctx context.Context, p *Part, out *pairs) error {
 	if p.Share == nil {
 		// One row a site, in the order of the sites: rows come as contacts do.
 		at := 0
-		err = h.Contacts(ctx, list, c.progress(), func(site int32, contacts []voronoi.Contact) error {
+		err = c.contactsIn(h)(ctx, list, c.progress(), func(site int32, contacts []voronoi.Contact) error {
 			for at < len(ks) && p.Site[ks[at]] < site {
 				at++
 			}
@@ -145,7 +145,7 @@ func (c *contactRows) part(ctx context.Context, p *Part, out *pairs) error {
 			return c.row(p, of, ks[at], contacts, out)
 		})
 	} else {
-		err = c.sharedPart(ctx, h.Contacts, p, of, ks, list, out)
+		err = c.sharedPart(ctx, c.contactsIn(h), p, of, ks, list, out)
 	}
 	if err != nil {
 		return c.refused(err, p)
@@ -207,8 +207,11 @@ func (c *contactRows) row(p *Part, of [][]int32, k int32, contacts []voronoi.Con
 			list = append(list, touching{other, x})
 		}
 	}
-	slices.SortFunc(list, func(a, b touching) int { return int(a.k) - int(b.k) })
+	slices.SortFunc(list, func(a, b touching) int { return cmp.Or(int(a.k)-int(b.k), int(a.contact.Part)-int(b.contact.Part)) })
 	for _, t := range list {
+		if c.b.measuredIn() {
+			out.now(p.Zone, t.contact.Part)
+		}
 		c.put(p, k, t, out)
 		if out.room() == 0 {
 			if err := c.flush(out); err != nil {

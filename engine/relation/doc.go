@@ -48,6 +48,20 @@
 //
 // A relation without Zoned is refused in zones by name.
 //
+// # Stretched distances
+//
+// Clauses.Stretch goes with sites.options into the diagram. What it measures is in true
+// units all the same. A relation that measures places itself takes Clauses.Stretch into
+// account before it says STRETCHED in its Clauses; one that does not is refused of a
+// campaign with stretched distances.
+//
+// # Measured in parts
+//
+// With MEASURED IN (measuredin.go) a row counts in one of the regions Clauses.Measured,
+// which binding has found to be solid.Divided, and says so in the column part, which
+// comes as zone does: batches.now(part.Zone, region). Which sites divide the space does
+// not change. Diagram handles measure cells, contacts and gaps in regions.
+//
 // A new relation is one file and one registry line.
 //
 // # Laws
@@ -89,6 +103,6 @@
 //
 // # Limitations
 //
-// MEASURED IN, STRETCHED and UNCERTAINTY are not there
-// yet. The whole input is held in memory.
+// UNCERTAINTY is not there yet. Parts that are not solid.Divided, such as meshes, are
+// refused. Contacts in parts are not remembered by the diagram. The whole input is held in memory.
 package relation

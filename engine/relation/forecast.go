@@ -157,7 +157,7 @@ type alike struct {
 }
 
 func (s *sites) forecast(ctx context.Context, want voronoi.Measures, faces bool) (*Forecast, error) {
-	f := &Forecast{Measures: s.b.Work(s.r.Need), RowsExact: !faces, Counted: true}
+	f := &Forecast{Measures: s.b.Work(s.r.Need), RowsExact: !faces && !s.b.measuredIn(), Counted: true}
 	f.Cost.OneByOne = true
 	groups := s.alike()
 	f.Diagrams = float64(len(groups))

@@ -18,7 +18,7 @@ var gaps = &Definition{
 	Noun:    "GAPS",
 	RowIs:   "place locally farthest from every site",
 	Meaning: "where nobody measured: each farther from every site than all around it",
-	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
+	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Zoned:   true,
 	Open:    openGaps,
 	layout:  layoutGaps,
@@ -42,7 +42,7 @@ func init() {
 		gapZ:      measure("z", column.Real, 1, 0, "where nobody measured, z"),
 		gapRadius: measure("radius", column.Real, 1, 0, "distance from there to the nearest site; STRETCHED: the true one to the truly nearest"),
 		gapA:      measure("a", column.Text, 0, 0, "identifier of the nearest site; of several as near, the first"),
-		gapPlace:  measure("place", column.Text, 0, 0, "'inside', or on a 'wall', 'edge' or 'corner' of the solid"),
+		gapPlace:  measure("place", column.Text, 0, 0, "'inside', or on a 'wall', 'edge' or 'corner' of the solid; MEASURED IN: of the part"),
 	}
 }
 
@@ -59,6 +59,8 @@ func layoutGaps(b *Bound) []Column {
 	}
 	return append(columns, computed...)
 }
+
+type gap = coverage.Gap
 
 // placeNames are the texts of the column place, by coverage.Place.
 var placeNames = &column.Dict{Texts: []string{
@@ -107,7 +109,7 @@ func (g *gapRows) Run(ctx context.Context, emit func(*column.Batch) error) (err 
 // tell writes the notes.
 func (g *gapRows) tell() {
 	g.sites.tell()
-	if !g.b.Closed() && len(g.parts) > 0 {
+	if !g.b.Closed() && !g.b.measuredIn() && len(g.parts) > 0 {
 		g.env.Notes.Add(note.Note, note.Cells, "without a solid, only places among the sites of %s can be told: beyond the outermost "+
 			"the distance grows without end; WITHIN a solid gives those at its walls too", g.b.Name)
 	}
@@ -122,7 +124,19 @@ func (g *gapRows) part(ctx context.Context, p *Part, out *gapBatch) error {
 	if err != nil {
 		return err
 	}
-	found, err := h.Gaps(ctx, p.Sites, g.env.Threads, g.progress())
+	first := firstRows(p)
+	err = g.gapsIn(ctx, h, p, func(region int32, found []gap) error {
+		out.now(p.Zone, region)
+		for i := range found {
+			g.put(&found[i], p.Rows[first[found[i].Site]], out)
+			if out.room() == 0 {
+				if err := g.flush(out); err != nil {
+					return err
+				}
+			}
+		}
+		return nil
+	})
 	var undivided *coverage.UndividedError
 	if errors.As(err, &undivided) {
 		return problem.New("failed", g.b.Place, "GAPS cannot be told in %s: it has no convex parts to look through", g.b.Clauses.SolidName).
@@ -130,15 +144,6 @@ func (g *gapRows) part(ctx context.Context, p *Part, out *gapBatch) error {
 	}
 	if err != nil {
 		return g.refused(err, p)
-	}
-	first := firstRows(p)
-	for i := range found {
-		g.put(&found[i], p.Rows[first[found[i].Site]], out)
-		if out.room() == 0 {
-			if err := g.flush(out); err != nil {
-				return err
-			}
-		}
 	}
 	return nil
 }

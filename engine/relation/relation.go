@@ -87,6 +87,7 @@ type Clauses struct {
 	Solid      solid.Solid // nil: unclipped, or there are zones
 	SolidName  string      // as the user wrote it, for notes
 	Stretch    voronoi.Vec // factors of the distances; zero: plain
+	Measured   []Region    // measures count in each of these (solid.Divided), none: in the whole
 	Zones      []Region    // each is divided among its own sites alone; none: one space for all
 	Each       []int       // columns of the input named by FOR EACH
 	Omitting   []string

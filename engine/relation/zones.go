@@ -36,7 +36,7 @@ func (b *Bound) roles() []Column {
 func (d *Definition) Roles() []Column {
 	var list []Column
 	for _, c := range roleColumns() {
-		if c.Role == ZoneRole && d.Zoned {
+		if c.Role == ZoneRole && d.Zoned || c.Role == PartRole && d.takes("MEASURED IN") {
 			list = append(list, c)
 		}
 	}
@@ -45,6 +45,7 @@ func (d *Definition) Roles() []Column {
 
 func roleColumns() []Column {
 	return []Column{
+		{Field: column.Field{Name: "part", Type: column.Text, Meaning: "with MEASURED IN: where this row counts; cells that do not reach into it have no row"}, Site: -1, Role: PartRole},
 		{Field: column.Field{Name: "zone", Type: column.Text, Meaning: "with WITHIN (a, b): the one that the site lies in"}, Site: -1, Role: ZoneRole},
 	}
 }
@@ -54,7 +55,7 @@ func (b *Bound) named(r Role) []Region {
 	if r == ZoneRole {
 		return b.Clauses.Zones
 	}
-	return nil
+	return b.Clauses.Measured
 }
 
 // regions are the texts of a role's column, by number.

@@ -143,14 +143,14 @@ input:1: WITHIN and UNCLIPPED say the opposite of each other
 plan
 SELECT * FROM CELLS OF hall METHOD SIBSON
 ----
-input:1: CELLS takes no METHOD (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, STRETCHED)
+input:1: CELLS takes no METHOD (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEASURED IN, STRETCHED)
   SELECT * FROM CELLS OF hall METHOD SIBSON
                               ^^^^^^^^^^^^^
 
 plan
 SELECT * FROM CELLS OF hall AT z = 1.1
 ----
-input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, STRETCHED)
+input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEASURED IN, STRETCHED)
   SELECT * FROM CELLS OF hall AT z = 1.1
                               ^^^^^^^^^^
 
@@ -639,3 +639,31 @@ plan
 SELECT * FROM CELLS OF hall STRETCHED (1, 'a', 1)
 ----
 syntax: expected y but found the text 'a'
+
+plan
+SELECT * FROM CELLS OF hall MEASURED IN (racks)
+----
+input:1: there is no solid 'racks' (CREATE SOLID racks AS BOX (0,0,0) TO (30,18,7.5); makes one)
+  SELECT * FROM CELLS OF hall MEASURED IN (racks)
+                                           ^^^^^
+
+plan
+SELECT * FROM CELLS OF hall MEASURED IN (air, air)
+----
+input:1: two of these solids are called 'air': rows could not tell one part from the other
+  SELECT * FROM CELLS OF hall MEASURED IN (air, air)
+                                                ^^^
+
+plan
+SELECT * FROM CELLS OF hall MEASURED IN hall
+----
+input:1: 'hall' is a campaign, not a solid (ENVELOPE OF hall is the box around its sites)
+  SELECT * FROM CELLS OF hall MEASURED IN hall
+                                          ^^^^
+
+plan
+SELECT * FROM TETRAHEDRA OF hall MEASURED IN air
+----
+input:1: TETRAHEDRA takes no MEASURED IN (it takes UNCLIPPED, FOR EACH, OMITTING, STRETCHED)
+  SELECT * FROM TETRAHEDRA OF hall MEASURED IN air
+                                   ^^^^^^^^^^^^^^^

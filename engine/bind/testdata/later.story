@@ -15,13 +15,6 @@ input:1: the column 'hidden' of CELLS OF hall is not there yet
          ^^^^^^
 
 plan
-SELECT * FROM CELLS OF hall MEASURED IN (racks)
-----
-input:1: MEASURED IN is not there yet
-  SELECT * FROM CELLS OF hall MEASURED IN (racks)
-                              ^^^^^^^^^^^^^^^^^^^
-
-plan
 SELECT * FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH)
 ----
 input:1: UNCERTAINTY is not there yet
