@@ -141,7 +141,6 @@ func (p *aggregatePart) Consume(w *Worker, b *column.Batch) error {
 		return err
 	}
 	p.cols = cols
-	before := p.keys.n
 	p.group = room(p.group, b.N)
 	p.reader.put(cols, b.On, b.N, p.group)
 	for _, c := range p.calls {
@@ -149,15 +148,32 @@ func (p *aggregatePart) Consume(w *Worker, b *column.Batch) error {
 			return err
 		}
 	}
-	return p.keep(before)
+	return p.keep()
 }
 
-// keep counts the groups from number `before` on against the limit of memory: a
-// group costs its key and, at a guess, eight words an aggregate.
-func (p *aggregatePart) keep(before int) error {
-	bytes := int64(p.keys.n-before) * int64(8*p.keys.width+64*len(p.calls))
-	p.kept += bytes
-	return p.sink.env.keep(bytes)
+// keep counts what the part holds against the limit of memory: a group costs its
+// key and, at a guess, eight words an aggregate; beside that come the values that a
+// MEDIAN or a DISTINCT keeps.
+func (p *aggregatePart) keep() error {
+	bytes := int64(p.keys.n) * int64(8*p.keys.width+64*len(p.calls))
+	for _, c := range p.calls {
+		bytes += c.bytes()
+	}
+	grown := bytes - p.kept
+	p.kept = bytes
+	return p.sink.env.keep(grown)
+}
+
+// bytes is what a call keeps beside its groups.
+func (c *callState) bytes() int64 {
+	n := int64(0)
+	if c.distinct != nil {
+		n = c.distinct.bytes()
+	}
+	if acc, ok := c.acc.(function.Sized); ok {
+		n += acc.Bytes()
+	}
+	return n
 }
 
 func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups []int32) error {
@@ -233,13 +249,8 @@ func (s *aggregateSink) Merge(part Part) error {
 		s.all = p
 		return nil
 	}
-	before := s.all.keys.n
 	to := s.all.keys.absorb(p.keys, nil)
 	p.to = to
-	s.env.release(p.kept)
-	if err := s.all.keep(before); err != nil {
-		return err
-	}
 	for i, c := range s.all.calls {
 		from := p.calls[i]
 		c.near.merge(from.near)
@@ -257,7 +268,8 @@ func (s *aggregateSink) Merge(part Part) error {
 		c.largest.merge(&from.largest)
 		c.cells.merge(from.cells, to)
 	}
-	return nil
+	s.env.release(p.kept)
+	return s.all.keep()
 }
 
 // Later counts different values beside the merging of other parts.
@@ -288,7 +300,7 @@ func (s *aggregateSink) Finish(context.Context) (Source, error) {
 		out.Cols = append(out.Cols, gather(&keys[i], order))
 	}
 	for _, c := range p.calls {
-		v, err := c.result(p.keys.n)
+		v, err := c.result(s.env, p.keys.n)
 		if err != nil {
 			return nil, s.groupFault(err, c.call)
 		}
@@ -330,9 +342,15 @@ func (s *aggregateSink) keyOrder(keys []column.Vector, n int) []int32 {
 
 // result is the values of all groups. The distinct values of a call with
 // DISTINCT go into its accumulator now that each stands there once.
-func (c *callState) result(groups int) (column.Vector, error) {
+func (c *callState) result(env *Env, groups int) (column.Vector, error) {
 	if c.pairs != nil {
 		return c.pairs.set.counts(groups), nil
+	}
+	if acc, ok := c.acc.(function.Sized); ok { // sorting takes as much again
+		if err := env.keep(acc.Bytes()); err != nil {
+			return column.Vector{}, err
+		}
+		defer env.release(acc.Bytes())
 	}
 	if c.distinct != nil {
 		cols := c.distinct.columns()

@@ -71,7 +71,7 @@ func (e *Env) keep(bytes int64) error {
 	}
 	kept := e.kept.Add(bytes)
 	if e.Memory > 0 && kept > e.Memory {
-		return problem.New("memory", problem.Place{}, "the intermediate results need more than %d MiB", e.Memory>>20).
+		return problem.New("memory", problem.Place{}, "%s need%s", inBetween, e.tooMuch()).
 			WithHint("ask for fewer columns or rows, or give more with --memory")
 	}
 	return nil

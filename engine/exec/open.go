@@ -16,6 +16,7 @@ import (
 // relation) is computed here, before the first row comes out.
 func (r *runner) open(ctx context.Context, n plan.Node) (*pipeline, error) {
 	p, err := r.openNode(ctx, n)
+	err = blame(err, n)
 	if m := r.meter(n); m != nil && err == nil {
 		return p.metered(m), nil
 	}

@@ -96,6 +96,9 @@ type Accumulator interface {
 	Weights(groups int) []WeightFacts
 }
 
+// Sized is an Accumulator that keeps more than a few words a group; Bytes is how much.
+type Sized interface{ Bytes() int64 }
+
 // WeightFacts is what stands behind one weighted value.
 type WeightFacts struct {
 	Rows       int     // rows with a value and a weight above 0

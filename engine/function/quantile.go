@@ -78,6 +78,11 @@ func (a *quantiles) Add(groups []int32, on []uint64, n int, args []column.Vector
 	return nil
 }
 
+// Bytes is what the values take.
+func (a *quantiles) Bytes() int64 {
+	return int64(4*cap(a.groups) + 8*cap(a.keys) + 8*cap(a.weights))
+}
+
 func (a *quantiles) Merge(other Accumulator, to []int32) error {
 	o := other.(*quantiles)
 	a.mergeFacts(&o.tally, to)
