@@ -285,7 +285,7 @@ func (p *aggregatePart) Later() error {
 	return nil
 }
 
-func (s *aggregateSink) Finish(context.Context) (Source, error) {
+func (s *aggregateSink) Finish(ctx context.Context) (Source, error) {
 	if s.all == nil {
 		s.all = s.newPart()
 	}
@@ -294,7 +294,10 @@ func (s *aggregateSink) Finish(context.Context) (Source, error) {
 		p.keys.add(nil) // without keys there is one group, of no rows too
 	}
 	keys := p.keys.columns()
-	order := s.keyOrder(keys, p.keys.n)
+	order, err := s.keyOrder(ctx, keys, p.keys.n)
+	if err != nil {
+		return nil, err
+	}
 	out := &column.Table{Schema: s.node.Fields, N: p.keys.n}
 	for i := range keys {
 		out.Cols = append(out.Cols, gather(&keys[i], order))
@@ -332,12 +335,12 @@ func (s *aggregateSink) say() {
 	}
 }
 
-func (s *aggregateSink) keyOrder(keys []column.Vector, n int) []int32 {
+func (s *aggregateSink) keyOrder(ctx context.Context, keys []column.Vector, n int) ([]int32, error) {
 	by := make([]orderKey, len(keys))
 	for i := range keys {
 		by[i].v = &keys[i]
 	}
-	return argsort(by, n)
+	return argsort(ctx, by, n)
 }
 
 // result is the values of all groups. The distinct values of a call with

@@ -50,7 +50,7 @@ func (r *runner) lines(ctx context.Context, n *plan.Interpolate) (*lines, error)
 		for i := range at {
 			at[i] = i
 		}
-		if err := side.index(env, at, n.LeftKeys); err != nil {
+		if err := side.index(ctx, env, at, n.LeftKeys); err != nil {
 			return nil, err
 		}
 	} else {

@@ -64,7 +64,7 @@ func (r *runner) buildSide(ctx context.Context, n *plan.Join) (*buildSide, error
 		if m != nil {
 			defer m.took(time.Now())
 		}
-		err = side.index(r.envOf(m), at, n.LeftKeys)
+		err = side.index(ctx, r.envOf(m), at, n.LeftKeys)
 	}
 	side.table = &column.Table{Schema: schema, Cols: table.Cols[:len(schema)], N: table.N}
 	return side, err
@@ -72,7 +72,7 @@ func (r *runner) buildSide(ctx context.Context, n *plan.Join) (*buildSide, error
 
 // index groups the rows by the key columns at; rows with a NULL key match
 // nothing and are in no group.
-func (s *buildSide) index(env *Env, at []int, left []expr.Expr) error {
+func (s *buildSide) index(ctx context.Context, env *Env, at []int, left []expr.Expr) error {
 	types := make([]column.Type, len(at))
 	for i, c := range at {
 		types[i] = s.table.Schema[c].Type
@@ -86,6 +86,9 @@ func (s *buildSide) index(env *Env, at []int, left []expr.Expr) error {
 	on := make([]uint64, column.Words(BatchRows))
 	cols := make([]column.Vector, len(at))
 	for lo := 0; lo < s.table.N; lo += BatchRows {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
 		b := s.table.Batch(lo, min(lo+BatchRows, s.table.N))
 		mask := on[:column.Words(b.N)]
 		column.FillOn(mask, b.N)

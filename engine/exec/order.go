@@ -2,6 +2,7 @@ package exec
 
 import (
 	"cmp"
+	"context"
 	"math"
 	"slices"
 
@@ -18,7 +19,7 @@ type orderKey struct {
 // argsort is the order of rows 0..n-1 by the keys; rows with equal keys keep
 // their order. Keys become words whose order is that of the values, which are
 // sorted by their bytes from the last key to the first.
-func argsort(keys []orderKey, n int) []int32 {
+func argsort(ctx context.Context, keys []orderKey, n int) ([]int32, error) {
 	rows := make([]rowWord, n)
 	for i := range rows {
 		rows[i].row = int32(i)
@@ -34,6 +35,9 @@ func argsort(keys []orderKey, n int) []int32 {
 			ranks = textRanks(key.v)
 		}
 		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
+			if err := ctx.Err(); err != nil {
+				return nil, err
+			}
 			for i := range rows {
 				rows[i].word = 0 // of NULLs, whatever their slot holds
 				if key.v.Valid == nil || column.Bit(key.v.Valid, int(rows[i].row)) {
@@ -43,7 +47,7 @@ func argsort(keys []orderKey, n int) []int32 {
 					rows[i].word = ^rows[i].word
 				}
 			}
-			rows, spare = radixSort(rows, spare)
+			rows, spare = radixSortUntil(ctx, rows, spare)
 		}
 		if key.v.Valid != nil {
 			rows, spare = nullsToEnd(key, rows, spare)
@@ -53,7 +57,7 @@ func argsort(keys []orderKey, n int) []int32 {
 	for i, r := range rows {
 		order[i] = r.row
 	}
-	return order
+	return order, ctx.Err()
 }
 
 type rowWord struct {
@@ -138,6 +142,12 @@ func nullsToEnd(key orderKey, rows, spare []rowWord) (sorted, other []rowWord) {
 // bytes that all rows share cost nothing. It gives back the sorted and the
 // spare slice.
 func radixSort(rows, spare []rowWord) (sorted, other []rowWord) {
+	return radixSortUntil(context.Background(), rows, spare)
+}
+
+// radixSortUntil looks at ctx between two bytes; once it is cancelled the order is
+// any.
+func radixSortUntil(ctx context.Context, rows, spare []rowWord) (sorted, other []rowWord) {
 	if inOrder(rows) {
 		return rows, spare
 	}
@@ -156,6 +166,9 @@ func radixSort(rows, spare []rowWord) (sorted, other []rowWord) {
 		next := &counts[b]
 		if int(next[byte(rows[0].word>>(8*b))]) == len(rows) {
 			continue
+		}
+		if ctx.Err() != nil {
+			return rows, spare
 		}
 		at := int32(0)
 		for d, c := range next {

@@ -95,19 +95,20 @@ func (s *sortSink) first(t *column.Table) *column.Table {
 		return t
 	}
 	s.env.release((int64(t.N) - s.node.Top) * rowBytes(s.keyed))
-	first := gatherTable(t, s.order(t)[:s.node.Top])
+	order, _ := s.order(context.Background(), t) // of few rows more than the top
+	first := gatherTable(t, order[:s.node.Top])
 	if s.bound != nil {
 		s.bound.tighten(&first.Cols[s.keyAt[0]], first.N-1)
 	}
 	return first
 }
 
-func (s *sortSink) order(t *column.Table) []int32 {
+func (s *sortSink) order(ctx context.Context, t *column.Table) ([]int32, error) {
 	keys := make([]orderKey, len(s.node.Keys))
 	for i, k := range s.node.Keys {
 		keys[i] = orderKey{&t.Cols[s.keyAt[i]], k.Descending, k.NullsFirst}
 	}
-	return argsort(keys, t.N)
+	return argsort(ctx, keys, t.N)
 }
 
 // Merge appends a part. Parts come in the order of their chunks and the sort is
@@ -132,12 +133,15 @@ func (s *sortSink) Merge(p Part) error {
 	return nil
 }
 
-func (s *sortSink) Finish(context.Context) (Source, error) {
+func (s *sortSink) Finish(ctx context.Context) (Source, error) {
 	all, err := joined(s.env, s.keyed, s.parts)
 	if err != nil {
 		return nil, err
 	}
-	idx := s.order(all)
+	idx, err := s.order(ctx, all)
+	if err != nil {
+		return nil, err
+	}
 	if s.node.Top > 0 && int64(len(idx)) > s.node.Top {
 		idx = idx[:s.node.Top]
 	}

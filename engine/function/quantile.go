@@ -124,8 +124,7 @@ func (a *quantiles) plainQuantiles(v *column.Vector, start []int) {
 			v.SetNull(g)
 			continue
 		}
-		slices.Sort(part)
-		setKey(v, g, part[rankOf(a.p, len(part))-1])
+		setKey(v, g, selected(part, rankOf(a.p, len(part))-1))
 	}
 }
 
