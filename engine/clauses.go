@@ -38,6 +38,7 @@ type clauses struct {
 	refusedTo  *lang.Text
 	times      *lang.TimeReading
 	unpivot    *lang.UnpivotReading
+	censored   *lang.CensoredReading
 }
 
 // readClauses looks at every clause; what belongs to a later day is refused by name.
@@ -152,7 +153,7 @@ func (c *clauses) readFile(r lang.Reading) (err error) {
 	case *lang.PreambleReading:
 		err = c.readPreamble(r)
 	case *lang.CensoredReading:
-		err = problem.NotThereYet(c.st.at(r), "CENSORED")
+		c.censored = r
 	case *lang.UnpivotReading:
 		c.unpivot = r
 	default:

@@ -53,6 +53,7 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 	if refused != nil {
 		o.Refused = refused.take
 	}
+	o.Censored = c.censoredFields()
 	result, err := read.ReadFiles(ctx, sources, o)
 	if err != nil {
 		return nil, c.importProblem(err, st.at(named), named.Value)
@@ -83,7 +84,10 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 			return nil, err
 		}
 	}
-	return c.applyUnits(table, named.Value)
+	if table, err = c.applyUnits(table, named.Value); err != nil {
+		return nil, err
+	}
+	return c.boundColumns(table, named.Value)
 }
 
 // openSources reads the bytes of what a CREATE statement names, in name order.

@@ -114,7 +114,7 @@ func fileReadings() []entry {
 		},
 		{
 			name: "CENSORED", syntax: []string{"CENSORED (dust)"},
-			meaning: "Columns with values such as <0.5, below what the instrument can tell.",
+			meaning: "Columns with values such as <0.5, below what the instrument can tell, or >5. The column dust stays as it is written; dust_low and dust_high beside it are the bounds: 0 and 0.5, or 5 and Infinity, and twice the value where it was measured. An aggregate takes one of the bounds; QUANTILE and MEDIAN of dust itself answer where both agree.",
 			example: "CREATE TABLE again FROM 'dust.csv' CENSORED (dust);",
 		},
 		{

@@ -58,6 +58,7 @@ type Options struct {
 	Heading     int          // line of the heading, from 1; 0: the first line that is not blank
 	Units       []ColumnUnit // units of columns; they win over those in the heading
 	TextColumns []string     // identifiers: INTEGER where every value is one and written plainly, else TEXT
+	Censored    []string     // columns of measured values of which some are bounds, <0.1 or >5: TEXT
 	Times       []TimeColumn // columns of times that are not written as ISO 8601 has them
 	Preamble    []PreambleField
 	Encoding    Encoding // "": UTF-8

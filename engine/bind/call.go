@@ -143,6 +143,9 @@ func (x *exprs) aggregate(c *lang.Call, fn *function.Aggregate) (expr.Expr, erro
 	if err := x.aggregateClauses(c, fn); err != nil {
 		return nil, err
 	}
+	if e, isCensored, err := x.censored(c, fn); isCensored {
+		return e, err
+	}
 	inner := *x
 	inner.within, inner.aliases = fn.Name, nil
 	call := plan.Call{Fn: fn, Distinct: c.Distinct, Place: x.at(c), Text: x.text(c)}

@@ -23,7 +23,9 @@ var extremes = &Definition{
 	Clauses: []string{"FOR", "NUMBER", "UNCERTAINTY"},
 	Own:     true,
 	Open:    openExtremes,
-	Guess:   func(b *Bound, rows float64, _ func(int) float64) float64 { return 2 * min(rows, float64(b.Choice.Number)) },
+	Guess: func(b *Bound, rows float64, _ func(int) float64) float64 {
+		return 2 * min(rows, float64(b.Choice.Number))
+	},
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
 		return append(b.ownColumns(computed), computed...)

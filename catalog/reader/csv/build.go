@@ -145,6 +145,13 @@ func (im *importer) value(i int, f *field, c *cell, in *file, n int) reader.Faul
 	}
 	switch t {
 	case column.Text:
+		if im.columns[i].censored {
+			if _, ok := reader.ParseCensored(string(b), im.mark); !ok {
+				return reader.NotANumber
+			}
+			c.b = b
+			return reader.NoFault
+		}
 		c.b = f.text
 	case column.Integer, column.Real:
 		return im.number(t, b, c)

@@ -232,6 +232,13 @@ func (im *importer) applyOptions() error {
 			im.facts.UnknownText = append(im.facts.UnknownText, name)
 		}
 	}
+	for _, name := range im.o.Censored {
+		i := im.find(name)
+		if i < 0 {
+			return &reader.ColumnError{Column: name, Have: im.names()}
+		}
+		im.columns[i].censored = true
+	}
 	for k := range im.o.Times {
 		t := &im.o.Times[k]
 		i := im.find(t.Column)

@@ -13,6 +13,7 @@ type tally struct {
 	name      string
 	unit      *column.Unit
 	text      bool               // one of Options.TextColumns
+	censored  bool               // one of Options.Censored
 	constant  bool               // of the preamble: one value a file, never at fault
 	time      *reader.TimeColumn // of Options.Times, and its index there
 	timeIndex int
@@ -43,7 +44,7 @@ func (s *sample) keep(line int, b []byte, file string) {
 // add takes a trimmed value that is not missing.
 func (t *tally) add(b []byte, mark byte, line int, file string) {
 	t.present++
-	if t.time != nil {
+	if t.time != nil || t.censored {
 		return
 	}
 	l := lookAt(b, mark)
@@ -99,6 +100,8 @@ func (t *tally) decide() (column.Type, *reader.StayedText) {
 	switch {
 	case t.time != nil:
 		return column.Timestamp, nil
+	case t.censored:
+		return column.Text, nil
 	case t.text && t.plain == t.present && t.present > 0:
 		return column.Integer, nil
 	case t.text:

@@ -44,4 +44,10 @@ var ofValues = []Entry{
 		WayOut:  "LEVEL_AVG is the mean of levels by their energy, DIRECTION_AVG that of directions by vectors. -LOG10(AVG(POWER(10, -CAST(ph AS REAL)))) is the pH of the mean acid. CAST(x AS REAL) drops the unit where the plain mean is meant all the same, as of slopes.",
 		Example: "CREATE TABLE noise AS (SELECT 80.0 AS level) UNITS (level 'dB');\nSELECT AVG(level) FROM noise;",
 	},
+	{
+		Code:    "censored",
+		Meaning: "A column that CENSORED has read holds values that are only bounds, such as <0.1: an aggregate has to say whether the least or the most that they can be is meant. Or a value of it is neither a number nor a bound.",
+		WayOut:  "AVG(dust_low) and AVG(dust_high) are what the mean can be at least and at most. QUANTILE(dust, p) and MEDIAN(dust) answer where both bounds agree. MISSING 'n/a' reads a mark as a missing value.",
+		Example: "CREATE TABLE again FROM 'dust.csv' CENSORED (dust);\nSELECT AVG(dust) FROM again;",
+	},
 }
