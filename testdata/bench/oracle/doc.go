@@ -9,6 +9,11 @@
 // fractions, so that sums are exact in any order. Rows are compared as a multiset,
 // or as a list where ORDER BY leaves no choice.
 //
+// Gen writes three kinds of queries: of everything nested in everything (Random), with
+// windows (Windowed), and in the shapes of collections of test questions, with chains of
+// signs, NOT in front of everything and NULL wherever a value may stand (Corpus). Chains
+// of up to sixty-four tables behind commas must come out in their one row.
+//
 // Each query runs with and without the rules of the planner, and with 1, 2 and 4
 // threads, whose results must have the same bytes.
 //
@@ -27,6 +32,10 @@
 //     the query is passed over.
 //   - LIKE tells upper from lower case here; there a setting makes it so.
 //   - BOOLEAN is a type here and a number there: TRUE is compared as 1.
+//   - ON behind a comma knows nothing of what stands before the comma here, as in the
+//     standard; there it does.
+//   - The functions of a row's place take no frame here, as in the standard, and
+//     RANK, LAG and their like need an order.
 //   - Types are fixed here; there values have types. Columns of one type only are
 //     compared, joined and united.
 //
