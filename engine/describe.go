@@ -182,10 +182,10 @@ func (s *Session) describeSolid(st *statement, t *lang.Describe, o *catalog.Obje
 	}
 	m := column.Symbol("m")
 	lo, hi := body.Bounds()
-	r := newRows(text("solid"), realField("volume", m.Pow(3)), realField("surface", m.Pow(2)), whole("pieces"),
+	r := newRows(text("solid"), realField("volume", m.Pow(3)), realField("surface", m.Pow(2)), whole("pieces"), whole("voids"),
 		realField("x_from", m), realField("x_to", m), realField("y_from", m), realField("y_to", m),
 		realField("z_from", m), realField("z_to", m))
-	r.add(column.String(o.Name), column.Float(body.Volume()), column.Float(body.Area()), column.Int(int64(body.Pieces())),
+	r.add(column.String(o.Name), column.Float(body.Volume()), column.Float(body.Area()), column.Int(int64(body.Pieces())), column.Int(int64(body.Facts().Voids)),
 		column.Float(lo.X), column.Float(hi.X), column.Float(lo.Y), column.Float(hi.Y), column.Float(lo.Z), column.Float(hi.Z))
 	st.notes.Add(note.Note, note.Output, "the solid is %s; its lengths are taken as metres", o.Text)
 	return s.showTable(st, r.table())

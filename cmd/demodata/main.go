@@ -56,5 +56,7 @@ func generate() ([]file, error) {
 	add("sites2.csv", after.writeSites)
 	add("log2.csv", after.writeLog)
 	add("walk.csv", func(b *bytes.Buffer, f *fence) { writeWalk(b, f, before) })
+	add("hall4.obj", func(b *bytes.Buffer, _ *fence) { writeMesh(b) })
+	add("racks.csv", func(b *bytes.Buffer, _ *fence) { writeRacks(b) })
 	return files, f.err
 }

@@ -58,6 +58,12 @@ func (s *surface) meeting(i, j int32) (how, edge, above int) {
 	if !low || !high {
 		return apart, 0, 0
 	}
+	if sure, yes := s.sectionsOverlap(i, j, si, sj); sure {
+		if yes {
+			return crossed, 0, 0
+		}
+		return apart, 0, 0
+	}
 	p, q := s.section(i, j, si), s.section(j, i, sj)
 	if overlap(p, q) {
 		return crossed, 0, 0
@@ -136,6 +142,73 @@ func (s *surface) section(i, j int32, sides [3]int) [2]point {
 		}
 	}
 	return out
+}
+
+// sectionsOverlap tells in rounded numbers whether the sections of two triangles share
+// more than a point, if these can tell. A corner that both have is the same number in
+// both.
+func (s *surface) sectionsOverlap(i, j int32, si, sj [3]int) (sure, yes bool) {
+	p, ep, okP := s.roughSection(i, j, si)
+	q, eq, okQ := s.roughSection(j, i, sj)
+	if !okP || !okQ {
+		return false, false
+	}
+	d := sub(p[1], p[0])
+	axis := 0
+	for k := range 3 {
+		if abs(component(d, k)) > abs(component(d, axis)) {
+			axis = k
+		}
+	}
+	a, b, c, e := component(p[0], axis), component(p[1], axis), component(q[0], axis), component(q[1], axis)
+	margin := 4 * (ep + eq)
+	if abs(b-a) <= margin || abs(e-c) <= margin {
+		return false, false
+	}
+	shared := min(max(a, b), max(c, e)) - max(min(a, b), min(c, e))
+	switch {
+	case shared > margin:
+		return true, true
+	case shared < -margin:
+		return true, false
+	case shared == 0:
+		for _, x := range s.t[i] {
+			for _, y := range s.t[j] {
+				if v := component(s.v[x], axis); x == y && (v == a || v == b) && (v == c || v == e) {
+					return true, false
+				}
+			}
+		}
+	}
+	return false, false
+}
+
+// roughSection is section in rounded numbers, and a bound of what rounding did to them.
+func (s *surface) roughSection(i, j int32, sides [3]int) (out [2]Vec, bound float64, ok bool) {
+	a, b, c := s.corners(j)
+	n := cross(sub(b, a), sub(c, a))
+	reach := length(sub(b, a)) * length(sub(c, a))
+	k := 0
+	for x := range 3 {
+		p, q := s.v[s.t[i][x]], s.v[s.t[i][(x+1)%3]]
+		if sides[x] == 0 && k < 2 {
+			out[k] = p
+			k++
+		}
+		if sides[x]*sides[(x+1)%3] < 0 && k < 2 {
+			hp, hq := dot(n, sub(p, a)), dot(n, sub(q, a))
+			size := length(sub(p, a)) + length(sub(q, a))
+			slip := rounding * reach * (size + largest(a) + largest(p)) / abs(hp-hq)
+			if !(slip < 1e-3) || signOf(hp) != sides[x] || signOf(hq) == sides[x] {
+				return out, 0, false
+			}
+			d := sub(q, p)
+			out[k] = add(p, scale(hp/(hp-hq), d))
+			bound = max(bound, slip*length(d)+0x1p-50*(largest(p)+largest(q)))
+			k++
+		}
+	}
+	return out, bound, k == 2
 }
 
 // overlap tells whether two segments of one line share more than a point.
