@@ -40,7 +40,7 @@ func interpolateLine(n *Interpolate) string {
 	return line + "; outside " + strings.ToLower(n.Outside.String())
 }
 
-// merges puts an Interpolate under a Project or a Filter for each of its scalar
+// merges puts an Interpolate under a Project, a Filter or an Aggregate for each of its scalar
 // queries that is INTERPOLATE over rows that equalities tie to the row outside: the
 // rows are sorted once, and not looked through for every row outside.
 //
@@ -78,7 +78,7 @@ func merges(n Node) Node {
 		return n
 	}
 	out := withInputs(replaced, append([]Node{in}, n.Inputs()[1:]...))
-	if project {
+	if _, filter := n.(*Filter); !filter {
 		return out
 	}
 	return &Project{Input: out, Exprs: columnsOf(in.Schema())[:len(input.Schema())], Fields: input.Schema()}

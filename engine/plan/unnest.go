@@ -28,7 +28,7 @@ func unnest(n Node) (Node, error) {
 			n = semiJoins(f)
 		}
 		switch n.(type) {
-		case *Filter, *Project:
+		case *Filter, *Project, *Aggregate:
 			n = merges(n)
 		}
 		switch n := n.(type) {
