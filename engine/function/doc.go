@@ -45,6 +45,10 @@
 // without a value or without a key; of rows with equal keys the first and the
 // last in the order of the rows count.
 //
+// INTERPOLATE puts its rows in the order of x and takes the straight line at v (knots.go).
+// Rows with a NULL are no points of it; those of one x are one point, their mean, and are
+// told of where they differ. A group has one v.
+//
 // ROUND and FLOOR_TO compute on the decimal number that people see, the shortest
 // one that reads back to the same float64: ROUND(2.675, 2) is 2.68 and
 // FLOOR_TO(0.3, 0.1) is 0.3. Angles are in radians.
@@ -57,7 +61,7 @@
 //
 // # Limitations
 //
-// QUANTILE and MEDIAN keep all their values until the end. Sums of finite
+// QUANTILE, MEDIAN and INTERPOLATE keep all their values until the end. Sums of finite
 // numbers that leave the range of float64 on their way are errors, even if they
 // would come back. EXTRACT knows time stamps only, and all its fields are in
 // UTC. UPPER and LOWER map letter by letter, without the rules of a language.

@@ -59,6 +59,11 @@
 //
 // # Queries in expressions
 //
+// Merges makes an Interpolate of a query that is INTERPOLATE over rows which
+// equalities tie to the row outside: they are sorted once, and every row finds its place
+// in them. Safe: what the query computes for its rows cannot fail; where OUTSIDE FAIL has
+// no value the step marks the row, and the expression fails where it is asked for.
+//
 // A Query is a plan of its own that reads the row outside by expr.Outer; it is
 // optimised with the plan that it stands in. Unnest makes semi, anti and grouped
 // left joins of those where that is plain. Safe: only where nothing in the query can

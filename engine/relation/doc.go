@@ -62,6 +62,14 @@
 // comes as zone does: batches.now(part.Zone, region). Which sites divide the space does
 // not change. Diagram handles measure cells, contacts and gaps in regions.
 //
+// SERIES, AUDIT and EPISODES are relations over rows (Definition.Over), not over sites:
+// a log has no position. BY tells its loggers apart and ON is their time; their rows are
+// sorted by logger once (log.go), the mathematics is that of package series, and the
+// loggers are computed on all cores and emitted in their order (lanes.go). A logger that
+// is far ahead of the one being emitted waits, so that memory is bounded. What a
+// relation reads of its input whatever is asked of it is told by Bound.Reads; a clause
+// that names rows of its own (EXPECTING) has them in Bound.Beside.
+//
 // A new relation is one file and one registry line.
 //
 // # Laws
@@ -95,6 +103,12 @@
 // sites is refused: such stamps were never common to the sites.
 //
 // Sites in one plane or on one line have no tetrahedra, which is noted.
+//
+// Rows of a log without a logger or a stamp are left out with a warning. Rows that
+// repeat a stamp of their logger count as one reading, their mean (of texts the last by
+// the alphabet), with a warning; an infinite reading is an error where something is
+// computed with it. Columns that come from a campaign joined to the log and have one
+// value for a logger are known in a gap, too.
 //
 // # Exact and rounded
 //
