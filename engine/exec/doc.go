@@ -85,6 +85,10 @@
 //
 // # Limitations
 //
+// Weighted aggregates with OVER tell neither n_eff nor the largest weight, and sums of
+// measures with OVER do not warn of cells that FOR EACH or a join repeats. One partition is
+// the work of one worker.
+//
 // Intermediate results are kept in memory and refused beyond Env.Memory, which
 // counts the rows, keys and groups of all sinks of a statement until its end, but
 // not the state of aggregates such as MEDIAN nor what relations compute with. A result has at most 2³¹ − 1 rows. The right side of a join without
