@@ -198,9 +198,13 @@ func (m *Interpolate) value(e expr.Expr, s *expr.Subquery) (expr.Expr, bool) {
 	}), true
 }
 
-// prunedInterpolate keeps the value wherever the step stands.
+// prunedInterpolate drops the step where nobody reads its value.
 func prunedInterpolate(n *Interpolate, need []bool) (Node, []int) {
 	width := len(n.Input.Schema())
+	if !need[width] && !need[width+1] {
+		in, to := pruned(n.Input, need[:width])
+		return in, append(append([]int(nil), to...), -1, -1)
+	}
 	left := append([]bool(nil), need[:width]...)
 	mark(left, n.Input.Schema(), n.At)
 	for _, k := range n.LeftKeys {
