@@ -36,7 +36,7 @@ type Object struct {
 	Name string // as the user wrote it
 
 	Table   *column.Table // Campaign: id, x, y, z and the attributes; Table: as read; Solid: what it took from files. Nil in a List.
-	Text    string        // Solid, View: the canonical text
+	Text    string        // Solid, View: the canonical text; Table, Campaign: that of the query that made it, if one did
 	Options CampaignOptions
 	Sources []SourceFile
 	Notes   []string // facts of the import worth repeating

@@ -33,6 +33,10 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 		table, err = s.importFile(ctx, st, t, clauses, &object)
 	} else {
 		table, err = s.collect(ctx, st, t, clauses)
+		object.Text = lang.Print(t.Query)
+		for _, l := range st.notes.Lines() {
+			object.Notes = append(object.Notes, madeWith(l))
+		}
 	}
 	if err != nil {
 		return err
@@ -62,6 +66,17 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 	}
 	return nil
 }
+
+// madeWith is how a note stays with a table that a query made: warnings under their
+// name, so that they are told of where the table's numbers are saved.
+func madeWith(l note.Line) string {
+	if l.Level == note.Warning {
+		return warningMark + l.Text
+	}
+	return l.Text
+}
+
+const warningMark = "warning: "
 
 // collect runs the query of CREATE … AS (query).
 func (s *Session) collect(ctx context.Context, st *statement, t *lang.CreateData, c *clauses) (*column.Table, error) {

@@ -53,6 +53,7 @@ type provenanceInput struct {
 	Rows    int                `json:"rows,omitempty"`
 	Created time.Time          `json:"created"`
 	Files   []provenanceFile   `json:"files,omitempty"`
+	Notes   []string           `json:"notes,omitempty"` // of its making
 }
 
 // provenanceOptions are the clauses of a campaign, those not said included.
@@ -154,7 +155,7 @@ func (s *Session) inputs(tree lang.Node) []provenanceInput {
 	list := []provenanceInput{}
 	for _, k := range keys {
 		o := found[k]
-		in := provenanceInput{Name: o.Name, Kind: o.Kind.String(), Text: o.Text, Rows: o.Rows, Created: o.Created}
+		in := provenanceInput{Name: o.Name, Kind: o.Kind.String(), Text: o.Text, Rows: o.Rows, Created: o.Created, Notes: o.Notes}
 		if o.Kind == catalog.Campaign {
 			in.Options = &provenanceOptions{
 				Within: withinOf(o), Duplicates: duplicatesOf(o), Tolerance: o.Options.Tolerance,
@@ -199,7 +200,10 @@ func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
 		}
 		found[n.Key()] = o
 		switch o.Kind {
-		case catalog.View:
+		case catalog.View, catalog.Table:
+			if o.Text == "" {
+				return // read from files
+			}
 			if q, err := lang.ParseQuery(o.Text); err == nil {
 				s.follow(q, found)
 			}
@@ -207,6 +211,9 @@ func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
 			s.followSolid(o.Text, found)
 		case catalog.Campaign:
 			s.followSolid(o.Options.Within, found)
+			if q, err := lang.ParseQuery(o.Text); o.Text != "" && err == nil {
+				s.follow(q, found)
+			}
 			for _, z := range o.Options.Zones {
 				s.followSolid(z, found)
 			}

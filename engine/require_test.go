@@ -197,6 +197,15 @@ func TestWarningsTravel(t *testing.T) {
 	if !strings.HasPrefix(string(text), "The numbers in room.csv are to be read with") || !strings.Contains(string(text), "\nwarning: SUM(c.volume) adds up 6 rows") {
 		t.Errorf("beside the table: %q", text)
 	}
+	run("CREATE TABLE sums AS (SELECT SUM(c.volume) AS v FROM CELLS OF hall AS c CROSS JOIN register); SAVE SELECT * FROM sums TO 'sums.csv' WITH PROVENANCE;")
+	for _, name := range []string{"sums.csv.warnings.txt", "sums.csv.provenance.json"} {
+		if text, _ := os.ReadFile(filepath.Join(folder, name)); !strings.Contains(string(text), "sums was made with the warning: SUM(c.volume) adds up 6 rows") {
+			t.Errorf("a table in between loses the warning: %s says %s", name, text)
+		}
+	}
+	if text, _ := os.ReadFile(filepath.Join(folder, "sums.csv.provenance.json")); !strings.Contains(string(text), `"name": "hall"`) {
+		t.Errorf("a table in between hides what it rests on: %s", text)
+	}
 	run(once)
 	if _, err := os.Stat(beside); err == nil {
 		t.Error("the warnings of the older table are still there")

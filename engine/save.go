@@ -58,6 +58,7 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	if err != nil {
 		return fileProblem(err, st.at(t.To), t.To.Value, "be written")
 	}
+	s.warnOfInputs(st, t)
 	if t.WithProvenance {
 		if err := s.saveProvenance(st, t, rows); err != nil {
 			return err

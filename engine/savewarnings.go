@@ -56,3 +56,15 @@ func removeOwn(path, head string) error {
 	}
 	return nil
 }
+
+// warnOfInputs repeats the warnings with which the tables were made that a saved
+// result reads: of steps kept by CREATE TABLE … AS (query).
+func (s *Session) warnOfInputs(st *statement, t *lang.Save) {
+	for _, in := range s.inputs(t) {
+		for _, n := range in.Notes {
+			if text, warned := strings.CutPrefix(n, warningMark); warned {
+				st.notes.Add(note.Warning, note.Import, "%s was made with the warning: %s", in.Name, text)
+			}
+		}
+	}
+}

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"strings"
 )
 
 // seed is the one number from which all random streams start.
@@ -34,6 +35,11 @@ func write(folder string) error {
 		return err
 	}
 	for _, f := range files {
+		if strings.Contains(f.name, "/") {
+			if err := os.MkdirAll(filepath.Join(folder, filepath.Dir(f.name)), 0o755); err != nil {
+				return err
+			}
+		}
 		if err := os.WriteFile(filepath.Join(folder, f.name), f.text, 0o644); err != nil {
 			return err
 		}
@@ -58,5 +64,13 @@ func generate() ([]file, error) {
 	add("walk.csv", func(b *bytes.Buffer, f *fence) { writeWalk(b, f, before) })
 	add("hall4.obj", func(b *bytes.Buffer, _ *fence) { writeMesh(b) })
 	add("racks.csv", func(b *bytes.Buffer, _ *fence) { writeRacks(b) })
+	autumn := newRaw(&f)
+	for _, l := range autumn.loggers {
+		add("export/"+l.id()+".csv", func(b *bytes.Buffer, f *fence) { autumn.writeExport(b, f, l) })
+	}
+	add("certificates.csv", autumn.writeCalibration)
+	add("clocks.csv", autumn.writeClocks)
+	add("places.csv", autumn.writePlaces)
+	add("exclusions.csv", autumn.writeExclusions)
 	return files, f.err
 }
