@@ -227,7 +227,7 @@ func (s *Session) bindEnv(st *statement) *bind.Env {
 
 func (s *Session) execEnv(st *statement) *exec.Env {
 	return &exec.Env{Memory: s.o.Memory, Env: relation.Env{
-		Diagrams: s.diagrams, Notes: st.notes, Threads: s.o.Threads, Progress: s.o.Progress,
+		Diagrams: s.diagrams, Notes: st.notes, Threads: s.o.Threads, Memory: s.o.Memory, Progress: s.o.Progress,
 	}}
 }
 

@@ -2,6 +2,7 @@ package voronoi
 
 import (
 	"context"
+	"errors"
 
 	"nearcell/voronoi/delaunay"
 )
@@ -73,13 +74,27 @@ func (d *Diagram) choose(ctx context.Context, want Measures, n int) (*dual, erro
 	if !d.needsCell(want) || !d.worthWhole(n) {
 		return nil, nil
 	}
-	return d.dual(ctx)
+	g, err := d.dual(ctx)
+	var memory *delaunay.MemoryError
+	if errors.As(err, &memory) {
+		return nil, nil // sites that lie so oddly that the estimate was too low
+	}
+	return g, err
 }
 
-// globalBytes is what the tetrahedralisation and the circumcentres take.
+// globalBytes is what the tetrahedralisation and all that is made from it take.
 func (d *Diagram) globalBytes() int64 {
 	n := d.tree.Len()
 	return delaunay.Estimate(n) + int64(n)*bytesPerVertex
+}
+
+// tallyThreads is how many goroutines may keep tallies.
+func (d *Diagram) tallyThreads() int {
+	if d.memory <= 0 {
+		return d.threads
+	}
+	n := int64(d.tree.Len())
+	return min(d.threads, 1+int(max(0, d.memory-d.globalBytes())/(n*bytesPerTally)))
 }
 
 const (
@@ -97,8 +112,10 @@ const (
 	fewCells  = 32
 
 	// bytesPerVertex: coordinates twice, numbers, and 6.8 circumcentres of 32 bytes, each
-	// in four lists.
-	bytesPerVertex = 24 + 24 + 13 + 328
+	// in four lists; and tallies, which come and go. Further goroutines take tallies of
+	// their own only where these fit, too.
+	bytesPerVertex = 24 + 24 + 8 + 12 + 217 + 112 + bytesPerTally
+	bytesPerTally  = 128 + 24
 
 	// slowFrom is the number of sites held against a cell from which a diagram is
 	// slow. Uniform, clustered, flat and regular sets have 70 to 130.

@@ -24,7 +24,11 @@ func (d *Diagram) dual(ctx context.Context) (*dual, error) {
 	for _, p := range d.tree.Points() {
 		flat = append(flat, p.X, p.Y, p.Z)
 	}
-	t, err := delaunay.BuildFlat(ctx, flat, delaunay.Options{Threads: d.threads, Progress: d.buildProgress()})
+	options := delaunay.Options{Threads: d.threads, Progress: d.buildProgress()}
+	if d.memory > 0 {
+		options.Memory = max(1, d.memory-int64(n)*bytesPerVertex)
+	}
+	t, err := delaunay.BuildFlat(ctx, flat, options)
 	if err != nil {
 		return nil, err
 	}

@@ -32,7 +32,7 @@ func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*C
 	}
 	var y *tallies
 	if g != nil && want&tallied != 0 && !d.stretched {
-		if y, err = g.tally(ctx, want, d.threads); err != nil {
+		if y, err = g.tally(ctx, want, d.tallyThreads()); err != nil {
 			return nil, err
 		}
 	}

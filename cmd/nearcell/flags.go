@@ -34,7 +34,7 @@ func (f *flags) add(set *pflag.FlagSet) {
 	set.BoolVar(&f.strict, "strict", false, "a warning fails its statement")
 	set.BoolVar(&f.keepGoing, "keep-going", false, "go on after a failing statement; the exit code still tells")
 	set.IntVar(&f.threads, "threads", 0, "use `n` threads (default all cores)")
-	set.StringVar(&f.memory, "memory", "", "memory for kept diagrams (default 2GiB) and for the results in between of one statement (default no limit), a `SIZE` such as 8GiB")
+	set.StringVar(&f.memory, "memory", "", "memory for kept diagrams (default 2GiB), and for the tetrahedra of one and the results in between of one statement (default no limit), a `SIZE` such as 8GiB")
 	set.BoolVar(&f.quiet, "quiet", false, "no confirmations and row counts; notes and warnings stay")
 	set.BoolVar(&f.plain, "plain", false, "no colour, no progress")
 }

@@ -213,6 +213,7 @@ type Env struct {
 	Diagrams *diagram.Store
 	Notes    *note.Notes
 	Threads  int
+	Memory   int64 // most bytes that a tetrahedralisation may take; 0: no limit
 	Progress func(done, total int)
 }
 

@@ -63,7 +63,7 @@ func (s *sites) nobody() error {
 
 // options are those of the diagram of a part: every diagram is made with them.
 func (s *sites) options(p *Part) voronoi.Options {
-	return voronoi.Options{Solid: p.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads,
+	return voronoi.Options{Solid: p.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads, Memory: s.env.Memory,
 		Stretch: s.b.Clauses.Stretch}
 }
 

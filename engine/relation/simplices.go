@@ -3,6 +3,7 @@ package relation
 import (
 	"context"
 	"errors"
+	"fmt"
 	"slices"
 
 	"nearcell/catalog/column"
@@ -120,6 +121,14 @@ func (r *simplexRows) Run(ctx context.Context, emit func(*column.Batch) error) e
 	return r.flush(out)
 }
 
+// sizeText is a number of bytes, rounded up.
+func sizeText(n int64) string {
+	if n < 10<<20 {
+		return fmt.Sprintf("%d KiB", (n+1<<10-1)>>10)
+	}
+	return fmt.Sprintf("%d MiB", (n+1<<20-1)>>20)
+}
+
 func (r *simplexRows) part(ctx context.Context, p *Part, out *simplexBatch) error {
 	if !r.wanted(p) {
 		return nil
@@ -131,8 +140,9 @@ func (r *simplexRows) part(ctx context.Context, p *Part, out *simplexBatch) erro
 	t, site, err := h.Tetrahedra(ctx, r.progress())
 	var memory *delaunay.MemoryError
 	if errors.As(err, &memory) {
-		return problem.New("memory", r.b.Place, "the tetrahedra of %s need %d MiB, more than the limit of %d MiB",
-			r.b.Name, memory.Need>>20, memory.Limit>>20)
+		return problem.New("memory", r.b.Place, "the tetrahedralisation of %s needs %s, more than the %s that --memory leaves it",
+			r.b.Name, sizeText(memory.Need), sizeText(memory.Limit)).
+			WithHint("give more with --memory, or take fewer sites; CELLS OF and CONTACTS OF can do without it")
 	}
 	if err != nil {
 		return r.refused(err, p)
