@@ -14,12 +14,11 @@ import (
 // depend on the coordinates alone.
 type dual struct {
 	t       *delaunay.T
-	at      []Vec    // by point; at[0] is none
+	at      []spot   // by point; at[0] is none
 	cell    []int32  // by point: the number that others know it by
 	point   []int32  // by that number
 	centres []centre // by real tetrahedron
 
-	reach []uint64 // by point: squared distance to the farthest vertex of its cell, as bits; atomic
 	flags []uint32 // by point: what befalls its cell; atomic
 
 	listing   sync.Once // of incidence
@@ -28,6 +27,12 @@ type dual struct {
 	*enclosure                 // nil: cells end nowhere
 	corners    map[int32][]Vec // by point: corners of the box in its cell, in true coordinates
 	awkward    map[int32]bool  // points whose cells are cut from the box plane by plane
+}
+
+// spot is the place of a point.
+type spot struct {
+	Vec
+	reach uint64 // squared distance to the farthest vertex of its cell, as bits; atomic
 }
 
 // enclosure is a box at which cells end.
@@ -49,8 +54,8 @@ const (
 func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, threads int, box *enclosure) (*dual, error) {
 	points := t.NumPoints() + 1
 	g := &dual{
-		t: t, at: make([]Vec, points), cell: make([]int32, points), point: make([]int32, n), enclosure: box,
-		centres: make([]centre, t.NumTets()), reach: make([]uint64, points), flags: make([]uint32, points),
+		t: t, at: make([]spot, points), cell: make([]int32, points), point: make([]int32, n), enclosure: box,
+		centres: make([]centre, t.NumTets()), flags: make([]uint32, points),
 	}
 	delaunay.AdviseHugePages(g.at)
 	delaunay.AdviseHugePages(g.centres)
@@ -59,7 +64,7 @@ func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, thr
 			if s := t.PointSite(int32(p)); s >= 0 {
 				g.cell[p] = int32(s)
 				g.point[s] = int32(p)
-				g.at[p] = place(int32(s))
+				g.at[p].Vec = place(int32(s))
 			}
 		}
 	})
@@ -72,7 +77,7 @@ func newDual(ctx context.Context, t *delaunay.T, place func(i int32) Vec, n, thr
 		v, _ := t.Record(uint32(t.NumTets() + i))
 		for _, p := range v {
 			g.flags[p] |= flagHull
-			g.reach[p] = math.Float64bits(math.Inf(1))
+			g.at[p].reach = math.Float64bits(math.Inf(1))
 		}
 	}
 	if box != nil {
@@ -112,7 +117,7 @@ func (g *dual) touch(lo, hi int) (sum uint64) {
 	for i := lo; i < hi; i++ {
 		v, _ := g.t.Record(uint32(i))
 		for _, p := range v {
-			sum += math.Float64bits(g.at[p].X) + atomic.LoadUint64(&g.reach[p])
+			sum += atomic.LoadUint64(&g.at[p].reach)
 		}
 	}
 	return sum
@@ -131,7 +136,7 @@ func (g *dual) computeCentres(lo, hi int) (touched uint64) {
 		a, c = min(a, c), max(a, c)
 		b, d = min(b, d), max(b, d)
 		b, c = min(b, c), max(b, c)
-		o := circumcentre(g.at[a], g.at[b], g.at[c], g.at[d])
+		o := circumcentre(g.at[a].Vec, g.at[b].Vec, g.at[c].Vec, g.at[d].Vec)
 		far2, out := dot(o, o), uint8(0)
 		switch {
 		case !finite(o):
@@ -142,7 +147,7 @@ func (g *dual) computeCentres(lo, hi int) (touched uint64) {
 		g.centres[i] = centre{o: o, from: a, out: out}
 		bits := math.Float64bits(far2)
 		for _, p := range [4]int32{a, b, c, d} {
-			raise(&g.reach[p], bits)
+			raise(&g.at[p].reach, bits)
 			if out != 0 && atomic.LoadUint32(&g.flags[p])&uint32(out) != uint32(out) {
 				atomic.OrUint32(&g.flags[p], uint32(out))
 			}
@@ -174,7 +179,7 @@ func (g *dual) sidesBeyond(a int32, o Vec, far2 float64, other int32) uint8 {
 	if out == 0 {
 		return 0 // the cell's own measures tell whether it is to be relied on
 	}
-	edge := sub(g.at[other], g.at[a])
+	edge := sub(g.at[other].Vec, g.at[a].Vec)
 	if far2 <= farShare2*dot(edge, edge) {
 		return out
 	}
@@ -218,7 +223,7 @@ func (e *enclosure) boxCorner(k int) Vec {
 
 // localBox is the box seen from a point.
 func (g *dual) localBox(p int32) (lo, hi Vec) {
-	at := add(g.at[p], g.origin)
+	at := add(g.at[p].Vec, g.origin)
 	return sub(g.lo, at), sub(g.hi, at)
 }
 
@@ -254,7 +259,7 @@ const almostAsNear = 1 + 1e-8
 func (g *dual) nearestPoints(x Vec) []int32 {
 	local := sub(x, g.origin)
 	best := g.point[g.t.NearestSite(local)]
-	d2 := func(p int32) float64 { r := sub(g.at[p], local); return dot(r, r) }
+	d2 := func(p int32) float64 { r := sub(g.at[p].Vec, local); return dot(r, r) }
 	limit := d2(best) * almostAsNear
 	list := []int32{best}
 	seen := map[int32]bool{best: true}

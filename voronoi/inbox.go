@@ -34,18 +34,20 @@ func CellsInBox(ctx context.Context, t *delaunay.T, lo, hi Vec, want Measures, t
 		sites[i] = int32(i)
 	}
 	out := newCells(want, sites)
-	parallel(threads, t.NumPoints()+1, func(from, to int) {
+	parallel(threads, n, func(from, to int) {
 		var w *walker
-		for p := max(1, from); p < to && ctx.Err() == nil; p++ {
-			if t.PointSite(int32(p)) < 0 {
-				continue
+		for row := from; row < to && ctx.Err() == nil; row++ {
+			if (row-from)%ahead == 0 {
+				y.touchCells(row, min(to, row+ahead))
 			}
-			row := g.cell[p]
+			p := g.point[row]
+			if p == 0 {
+				continue // in the place of another
+			}
 			out.Inside[row], out.Multiplicity[row] = true, 1
-			at := add(g.at[p], g.origin)
 			rest := want
-			if y.good(int32(p)) {
-				y.fill(int32(p), at, want, out, row)
+			if y.good(p) {
+				y.fill(p, add(g.at[p].Vec, g.origin), want, out, int32(row))
 				rest &^= tallied
 			}
 			if rest == 0 {
@@ -54,7 +56,7 @@ func CellsInBox(ctx context.Context, t *delaunay.T, lo, hi Vec, want Measures, t
 			if w == nil {
 				w = newWalker(g)
 			}
-			w.measureInBox(int32(p), rest, out)
+			w.measureInBox(p, rest, out)
 		}
 	})
 	return out, ctx.Err()
@@ -107,8 +109,8 @@ func (w *walker) cutPlanes() {
 		if q.Dist2 > float64(4*far) {
 			break
 		}
-		n := sub(g.at[q.Point], w.own)
-		if c.Bisect(n, lostBySub(g.at[q.Point], w.own, n), q.Point) == polyhedron.Cut {
+		n := sub(g.at[q.Point].Vec, w.own)
+		if c.Bisect(n, lostBySub(g.at[q.Point].Vec, w.own, n), q.Point) == polyhedron.Cut {
 			far = reach2(c)
 		}
 	}

@@ -65,7 +65,7 @@ func (w *walker) quickStar(p int32) bool {
 	if len(list) > 2*mostNeighbours-4 { // 2n - 4 tetrahedra at n neighbours
 		return false
 	}
-	own, any, far2 := g.at[p], uint8(0), 0.0
+	own, any, far2 := g.at[p].Vec, uint8(0), 0.0
 	vertices, codes := w.vertex[:len(list)], w.code[:len(list)]
 	local, links, entry := w.local, &w.links, &w.entry
 	w.met = 0
@@ -157,7 +157,7 @@ func (w *walker) collect(ids int) {
 				break
 			}
 		}
-		n := sub(w.g.at[q], w.own)
+		n := sub(w.g.at[q].Vec, w.own)
 		if d := dot(n, n); d < near2 {
 			near2 = d
 		}

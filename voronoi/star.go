@@ -109,7 +109,7 @@ func (w *walker) star(p int32) {
 func (w *walker) slowStar(p int32) {
 	g := w.g
 	w.stamp++
-	w.p, w.own = p, g.at[p]
+	w.p, w.own = p, g.at[p].Vec
 	w.faces, w.loop, w.out = w.faces[:0], w.loop[:0], w.out[:0]
 	w.open, w.any, w.far2, w.vertices = false, 0, 0, 0
 	w.seen[p], w.seen[0] = w.stamp, w.stamp // the ghost is no neighbour
@@ -129,7 +129,7 @@ func (w *walker) slowStar(p int32) {
 	w.near2 = math.Inf(1)
 	for i := range w.faces {
 		f := &w.faces[i]
-		f.n = sub(g.at[f.q], w.own)
+		f.n = sub(g.at[f.q].Vec, w.own)
 		w.near2 = min(w.near2, dot(f.n, f.n))
 	}
 }

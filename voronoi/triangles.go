@@ -68,7 +68,7 @@ const largestSize = 200
 // size is the binary place of a length that no vertex of the cell of p, cut by the box,
 // is farther away than.
 func (g *dual) size(p int32) int32 {
-	far2 := math.Float64frombits(g.reach[p])
+	far2 := math.Float64frombits(g.at[p].reach)
 	if g.enclosure != nil {
 		lo, hi := g.localBox(p)
 		far := Vec{X: max(-lo.X, hi.X), Y: max(-lo.Y, hi.Y), Z: max(-lo.Z, hi.Z)}
@@ -90,7 +90,7 @@ func (g *dual) newTallies(want Measures, threads int) *tallies {
 	parallel(threads, len(s.cells), func(lo, hi int) {
 		for p := max(1, lo); p < hi; p++ {
 			t := &s.cells[p]
-			t.at, t.size, t.near2 = g.at[p], g.size(int32(p)), math.Inf(1)
+			t.at, t.size, t.near2 = g.at[p].Vec, g.size(int32(p)), math.Inf(1)
 		}
 	})
 	return s
@@ -210,6 +210,15 @@ func (s *tallies) touch(lo, hi uint32) {
 		}
 	}
 	s.touched = sum
+}
+
+// touchCells reads the tallies of rows lo to hi-1. The result means nothing.
+func (s *tallies) touchCells(lo, hi int) (sum uint64) {
+	for _, p := range s.g.point[lo:hi] {
+		t := &s.cells[p]
+		sum += uint64(t.size) + math.Float64bits(t.far2) + s.walls[p].check + uint64(s.g.flags[p])
+	}
+	return sum
 }
 
 // facing returns the corners of face k in order, and +1 if the normal of the triangle in

@@ -273,17 +273,17 @@ type boxLine struct {
 // digits.
 func (s *tallies) walk(l *boxLine, p, last int32) {
 	g := s.g
-	x := sub(l.from, add(g.at[p], g.origin))
+	x := sub(l.from, add(g.at[p].Vec, g.origin))
 	s.boxEnd(p, l, x, -1)
 	for range len(g.at) {
 		next, first := s.nextAlong(l, p, x)
-		end := sub(l.to, add(g.at[p], g.origin))
+		end := sub(l.to, add(g.at[p].Vec, g.origin))
 		if next == 0 || first >= component(end, l.axis) {
 			break
 		}
 		setComponent(&x, l.axis, max(first, component(x, l.axis)))
 		s.boxEnd(p, l, x, +1)
-		n := sub(g.at[next], g.at[p])
+		n := sub(g.at[next].Vec, g.at[p].Vec)
 		for k, side := range l.sides {
 			// The segment on this side ends here if it runs towards the other side.
 			turn := 1.0
@@ -293,11 +293,11 @@ func (s *tallies) walk(l *boxLine, p, last int32) {
 			s.wallEnd(p, next, x, side, turn)
 		}
 		at := component(x, l.axis) - component(n, l.axis)
-		p, x = next, sub(l.from, add(g.at[next], g.origin))
+		p, x = next, sub(l.from, add(g.at[next].Vec, g.origin))
 		setComponent(&x, l.axis, at)
 		s.boxEnd(p, l, x, -1)
 	}
-	s.boxEnd(p, l, sub(l.to, add(g.at[p], g.origin)), +1)
+	s.boxEnd(p, l, sub(l.to, add(g.at[p].Vec, g.origin)), +1)
 	if p != last {
 		s.walls[p].check++
 		s.walls[last].check++
@@ -315,7 +315,7 @@ func (s *tallies) nextAlong(l *boxLine, p int32, x Vec) (next int32, first float
 			continue
 		}
 		q := g.point[other]
-		n := sub(g.at[q], g.at[p])
+		n := sub(g.at[q].Vec, g.at[p].Vec)
 		if along := component(n, l.axis); along > 0 {
 			if t := (dot(n, n)/2 - dot(n, x)) / along; t < first || t == first && q < next {
 				next, first = q, t
