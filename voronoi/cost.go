@@ -52,9 +52,10 @@ func (d *Diagram) seconds(n int) (single, whole float64) {
 //
 // One by one a cell takes 5 µs and 0.1 µs for each site held against it: of these there
 // are about a hundred on ordinary data and thousands on curved surfaces, as a probe
-// tells. All of n sites take about 2.5 µs each for the tetrahedralisation and 2 µs a
-// cell after that, so that the ways break even at about a sixth of all cells, or at a
-// few thousand of a million on surfaces.
+// tells. All of n sites take about 4 µs each for the tetrahedralisation and the sums over
+// its triangles, and a cell 1 µs after that (less for sums, more for counts), so that the
+// ways break even at about a quarter of all cells, or at a few thousand of a million on
+// surfaces.
 func (d *Diagram) worthWhole(n int) bool {
 	all := d.tree.Len()
 	if all < wholeFrom || d.facts.Dimension < 3 || d.memory > 0 && d.globalBytes() > d.memory {
@@ -103,8 +104,8 @@ const (
 	secondsPerSite   = 0.1e-6
 	secondsPerSolid  = 20e-6
 	secondsPerBuild  = 100e-6
-	secondsPerVertex = 2.5e-6
-	secondsPerStar   = 2e-6
+	secondsPerVertex = 4e-6
+	secondsPerStar   = 1e-6
 
 	// wholeFrom is the number of sites from which a tetrahedralisation is thought of;
 	// fewCells are made one by one whatever they cost.

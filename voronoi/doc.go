@@ -31,18 +31,23 @@
 //
 // Where many cells are wanted, the Delaunay tetrahedralisation of all sites is built
 // (voronoi/delaunay) and its circumcentres, the Voronoi vertices, are computed once
-// each, seen from a corner; in two words a number where the tetrahedron is flat. The
-// faces of a cell are the loops of these around the edges at its site (the dual: Okabe,
-// Boots, Sugihara & Chiu 2000). Volume, first moment and area add up from the faces.
+// each, seen from a corner; in two words a number where the tetrahedron is flat.
 //
-// That is all for a cell that lies wholly in the solid. One that leaves a box is cut by
-// it face by face, and the walls' parts follow by the divergence theorem in the plane
-// (boxed.go), so that a scanned surface, nearly all of whose cells reach the walls,
-// costs little more than a cube full of sites. Every such cell is checked: what it has
-// of the edges of the box must begin and end, its area vectors must add up to zero. A
-// cell that fails, that is unbounded, reaches 4096 times as far as its nearest site, or
-// is cut by another solid than a box, is cut plane by plane as it is one by one, by the
-// neighbours that are known then: nothing is searched for. Cells with edges or faces of
+// Volume, area, centroid and reach of all cells come from one pass over the triangles:
+// each is dual to an edge of three cells and adds its part to them (triangles.go), in
+// sums whose bits do not depend on the order of the terms (bins.go). No cell is put
+// together for that, and tetrahedra are read in the order in which they lie in memory.
+// A box cuts the edges short; where they end at a wall, and where its own edges pass
+// from cell to cell, the ends add what the walls' parts take (trianglewalls.go). So a
+// scanned surface, nearly all of whose cells reach the walls, costs what a cube full of
+// sites costs. Each segment on a wall must begin and end, which is checked for every cell.
+//
+// Counts and contacts want the faces: the loops of circumcentres around the edges at a
+// site (the dual: Okabe, Boots, Sugihara & Chiu 2000), cut by a box face by face
+// (boxed.go). A cell that fails a check, that is unbounded, reaches 4096 times as far as
+// its nearest site, or is cut by another solid than a box or in stretched distances, is
+// cut plane by plane as it is one by one, by the neighbours that are known then: nothing
+// is searched for. Cells with edges or faces of
 // length or area zero are counted on that polyhedron too, so that both ways count alike.
 //
 // # Which way
@@ -52,7 +57,7 @@
 // and the number of cells asked for. One by one a cell costs 5 µs and 0.1 µs for each
 // site held against it, of which 32 cells tell the mean beforehand: about 100 on
 // ordinary data, up to all sites on curved surfaces. All at once every site costs about
-// 2.5 µs and every cell 2 µs more. So the break-even lies at about a sixth of the sites,
+// 4 µs and every cell 1 µs more. So the break-even lies at about a quarter of the sites,
 // on surfaces at one in a hundred or less. Below 500 sites or 32 cells, below dimension 3 and
 // where [Options].Memory does not suffice cells are made one by one.
 //
@@ -121,8 +126,9 @@
 // Solids other than boxes cut cells plane by plane and, where they are not convex, by
 // their own means, whichever way was chosen.
 //
-// The tetrahedralisation with its circumcentres takes about 930 bytes a site and is kept
-// as long as the diagram.
+// The tetrahedralisation with its circumcentres takes about 940 bytes a site and is kept
+// as long as the diagram, the sums over its triangles 150 more for each of up to four
+// goroutines while a request lasts.
 //
 // Without a solid, a face of an unbounded cell that lies wholly beyond 2^20 times the
 // extent of the sites is not seen, and a bounded cell that reaches farther than 2^90

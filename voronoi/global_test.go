@@ -365,3 +365,59 @@ func TestLaw9Small(t *testing.T) {
 		near(t, "all volumes", sum.Value(), 1, 1e-11)
 	})
 }
+
+// The sums over the triangles are the same to the last bit for any number of goroutines
+// with tallies of their own, and in any order of the sites.
+func TestTalliesHaveNoOrder(t *testing.T) {
+	sites := append(random(4000, 95), clustered(2000, 96)...)
+	wants := Volume | Area | WallArea | Centroid | Farthest | NearestFace
+	for _, o := range []Options{{Solid: unitBox}, {}} {
+		o.Threads = 1
+		first := measure(t, diagram(t, sites, o), wants)
+		turned := make([]Vec, len(sites))
+		for i, s := range sites {
+			turned[len(sites)-1-i] = s
+		}
+		for _, threads := range []int{1, 2, 3, 8} {
+			o.Threads = threads
+			d := diagram(t, turned, o)
+			if g, err := d.choose(context.Background(), wants, len(sites)); err != nil || g == nil {
+				t.Fatalf("cells are made one by one, %v", err)
+			}
+			c := measure(t, d, wants)
+			for i := range sites {
+				j := len(sites) - 1 - i
+				if first.Volume[i] != c.Volume[j] || first.Area[i] != c.Area[j] || first.WallArea[i] != c.WallArea[j] ||
+					first.Centroid[i] != c.Centroid[j] || first.Farthest[i] != c.Farthest[j] || first.NearestFace[i] != c.NearestFace[j] {
+					t.Fatalf("%d threads, in a box: %v: site %d has another volume, %v, than %v, or another measure",
+						threads, o.Solid != nil, i, c.Volume[j], first.Volume[i])
+				}
+			}
+		}
+	}
+}
+
+// Nearly all cells of ordinary sets are had from the triangles, in a box and without.
+func TestTalliesServeNearlyAll(t *testing.T) {
+	for name, sites := range map[string][]Vec{"uniform": random(3000, 97), "clustered": clustered(3000, 98), "lattice": grid(12), "sheet": sheet(3000, 99)} {
+		d := diagram(t, sites, Options{Solid: unitBox})
+		g, err := d.dual(context.Background())
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := g.tally(context.Background(), Volume, 2)
+		if err != nil {
+			t.Fatal(err)
+		}
+		left := 0
+		for _, p := range g.point {
+			if !s.good(p) {
+				left++
+			}
+		}
+		t.Logf("%s: %d of %d cells are left to their faces", name, left, len(g.point))
+		if left > len(g.point)/20 {
+			t.Errorf("%s: %d of %d cells are left to their faces", name, left, len(g.point))
+		}
+	}
+}
