@@ -135,6 +135,9 @@
 // times the extent counts as unbounded. Strips of no width between unbounded cells, as
 // mirrored sites have them, are told from faces by rounding and can be counted.
 //
+// The area that is asked for with the tetrahedralisation at hand includes faces that are
+// too small to count as contacts, and its last bits are not those of one by one.
+//
 // Planes towards two sites that almost coincide almost coincide: how a contact is
 // shared out between such a pair is rounded to about 1e-16 of the cell's size times
 // the size divided by the pair's distance. Volumes are not affected.

@@ -355,7 +355,10 @@ func TestLaw9Small(t *testing.T) {
 			if e := math.Abs(a.Volume[i] - b.Volume[i]); e > 1e-11*a.Volume[i]+1e-14 {
 				r.Fatalf("volume of %d is %v one by one, else %v; sites %v", i, a.Volume[i], b.Volume[i], sites)
 			}
-			if e := math.Abs(a.Area[i] - b.Area[i]); e > 1e-10*a.Area[i]+1e-14 {
+			// How two sites that nearly coincide share a contact with a third is rounding
+			// (doc.go, Limitations).
+			shared := 1e-15 / (2 * a.NearestFace[i])
+			if e := math.Abs(a.Area[i] - b.Area[i]); e > 1e-10*a.Area[i]+1e-14+shared {
 				r.Fatalf("area of %d is %v one by one, else %v; sites %v", i, a.Area[i], b.Area[i], sites)
 			}
 			if e := math.Abs(a.WallArea[i] - b.WallArea[i]); e > 1e-10*a.Area[i]+1e-14 {
