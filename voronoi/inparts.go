@@ -52,9 +52,6 @@ func (d *Diagram) MeasureIn(ctx context.Context, want Measures, sites []int32, p
 	}
 	boxes := partBoxes(parts)
 	out := make([][]PartMeasures, len(r.sites))
-	if g != nil {
-		g.list()
-	}
 	err = d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
 		b.use(g, nil)
 		list, err := b.measureIn(r.cells[k], want, parts, boxes)
