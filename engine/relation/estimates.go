@@ -33,6 +33,7 @@ const (
 	estimateDistance
 	estimateNeighbours
 	estimateInHull
+	estimateColumns
 )
 
 func init() {
@@ -82,7 +83,11 @@ func openEstimates(b *Bound, env *Env, input *column.Table, r Request) (Rows, er
 		return nil, err
 	}
 	e := &estimateRows{sites: s, points: pointsOf(b, r.Beside[0]), from: len(b.Clauses.Each) + len(b.Beside[0].Input)}
-	for e.behind = e.from; b.Columns[e.behind].From > 0; e.behind++ {
+	e.behind = len(b.Columns) - estimateColumns
+	for _, c := range b.Columns {
+		if c.Role != NoRole {
+			e.behind--
+		}
 	}
 	return e, nil
 }
@@ -91,7 +96,7 @@ func openEstimates(b *Bound, env *Env, input *column.Table, r Request) (Rows, er
 // input of each.
 func (e *estimateRows) attributes() (columns, inputs []int) {
 	for i := e.from; i < e.behind; i++ {
-		if c := &e.b.Columns[i]; needed(e.r.Need, i) {
+		if c := &e.b.Columns[i]; c.From > 0 && needed(e.r.Need, i) {
 			columns, inputs = append(columns, i), append(inputs, c.From-1)
 		}
 	}
@@ -244,7 +249,9 @@ func (e *estimateRows) groups(ctx context.Context, p *Part, all *diagram.Handle)
 			return nil, err
 		}
 		r := e.readingsOf(p, input)
-		e.reached.missed(e.sites, input, r.rows)
+		if r.n > 0 {
+			e.reached.missed(e.sites, input, r.rows)
+		}
 		from, err := speakers.of(ctx, func(site int32) bool { return r.count[site] > 0 })
 		if err != nil {
 			return nil, err

@@ -148,7 +148,9 @@ func (e *exceedRows) part(ctx context.Context, p *Part) (*field.Above, error) {
 		return nil, err
 	}
 	read := e.readingsOf(p, e.of)
-	e.reached.missed(e.sites, e.of, read.rows)
+	if read.n > 0 {
+		e.reached.missed(e.sites, e.of, read.rows)
+	}
 	e.countNear(p)
 	from, err := e.speakers(p, h).of(ctx, func(site int32) bool { return read.count[site] > 0 })
 	if err != nil {
