@@ -23,9 +23,9 @@
 // In a solid the cells end at its walls. Sibson and Laplace are then defined everywhere
 // in it; they are the coordinates of a field that nothing leaves through the walls, and
 // flatten a linear field near them. Without a solid they reproduce linear fields, as
-// Linear does, and end at the convex hull of the sites. On the hull's faces and edges,
-// and where all sites lie in one plane or on one line, the cell is unbounded, and they
-// are the coordinates among the sites of that face or edge: the limit from within.
+// Linear does, and end at the convex hull of the sites. On the hull's faces and edges
+// the cell is unbounded, and they are the limit from within (rim.go). Where all sites lie
+// in one plane or on one line they are the coordinates in it.
 //
 // [Field.Without] leaves one site out. A site that goes gives its cell to its
 // neighbours, each part to the nearest, so that the parts of its own cell are Sibson's

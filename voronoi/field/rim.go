@@ -13,9 +13,18 @@ import (
 )
 
 // On the surface of the hull of the sites, and where the sites lie in one plane, the
-// cell of a place runs to infinity. What it takes from its neighbours is in the limit
-// what it takes within the face of the hull: coordinates of one dimension less, among
-// the sites of that face alone.
+// cell of a place runs to infinity.
+//
+// Where all sites lie in one plane, the coordinates are those of the cells in the plane.
+// On a face of the hull they are the limit from within. As a place nears the face from
+// inside, at a height e, its cell reaches to a depth of the order of 1/e beyond it, where
+// all that counts are the sites of the face. Seen from the place, with a site of the face
+// at a, the cell ends at 2 y·a + s = |a|², where y goes along the face and s is 2e times
+// the depth: a pyramid over the place's cell in the plane, the same for all small e. The
+// cells of the sites stand upright in it. So Sibson's weights are what these take of the
+// pyramid, and Laplace's are the upright projections of its faces over the distances.
+// (The latter are Sibson's in the plane. Each of them is smoother by one order than its
+// own kind in the plane.) On an edge of the hull both are the two sites' around.
 
 // side tells where a place lies against a convex polygon.
 type side int8
@@ -35,7 +44,7 @@ func (f *Field) onRim(ctx context.Context, p Vec, self int32, w *Work) (Place, [
 	case 1:
 		return f.along(except(f.everyone(), self), local, w)
 	case 2:
-		return f.within(except(f.everyone(), self), local, w)
+		return f.within(except(f.everyone(), self), local, false, w)
 	}
 	if err := f.needHull(ctx); err != nil {
 		return Between, nil, err
@@ -52,7 +61,7 @@ func (f *Field) onRim(ctx context.Context, p Vec, self int32, w *Work) (Place, [
 			continue
 		}
 		if n, _ := f.t.Neighbor(at.Tet, k); f.t.IsGhost(n) {
-			return f.within(f.faceOf(n), local, w)
+			return f.within(f.faceOf(n), local, true, w)
 		}
 	}
 	// On an edge or a corner of the hull that only other tetrahedra have a face at, or
@@ -60,7 +69,7 @@ func (f *Field) onRim(ctx context.Context, p Vec, self int32, w *Work) (Place, [
 	for _, c := range f.t.Tet(at.Tet) {
 		for _, n := range f.t.Star(int(c), nil) {
 			if f.t.IsGhost(int(n)) && f.inFacet(int(n), local) {
-				return f.within(f.faceOf(int(n)), local, w)
+				return f.within(f.faceOf(int(n)), local, true, w)
 			}
 		}
 	}
@@ -150,7 +159,7 @@ func (f *Field) rimWithout(self int32, p Vec, w *Work) (Place, []Weight, error) 
 	}
 	switch len(planes) {
 	case 1:
-		return f.within(except(f.faceOf(planes[0]), self), p, w)
+		return f.within(except(f.faceOf(planes[0]), self), p, true, w)
 	case 2: // sites of both faces lie on their common edge
 		var both []int32
 		second := f.faceOf(planes[1])
@@ -301,25 +310,30 @@ func (f *Field) ringOf(sites []int32, flat func(Vec) r2.Vec) []int32 {
 	return append(lower, half(list)...)
 }
 
-// within weighs sites in one plane at a place in it, by their cells in the plane.
-func (f *Field) within(sites []int32, p Vec, w *Work) (Place, []Weight, error) {
+// within weighs sites in one plane at a place in it: by their cells in the plane or,
+// where the plane is a face of the hull, as from within.
+func (f *Field) within(sites []int32, p Vec, ofHull bool, w *Work) (Place, []Weight, error) {
 	switch f.inPlane(sites, p) {
 	case outer:
 		return OutsideHull, nil, nil
 	case border:
 		return f.along(f.edgeWith(sites, p), p, w)
 	}
-	if !f.prism(sites, p, w) {
+	unit, ok := f.raise(sites, p, ofHull, w)
+	if !ok {
 		return OutsideHull, nil, nil
 	}
 	w.around = w.around[:0]
 	for i := range w.cell.NumFaces() {
 		label, _ := w.cell.Face(i)
-		if label >= 0 && w.cell.Counts(i) {
-			w.around = append(w.around, neighbour{label, sub(f.local(label), p), w.cell.Area(i)})
+		if label < 0 || !w.cell.Counts(i) {
+			continue
 		}
+		a := w.cell.FaceArea(i)
+		upright := sub(a, scale(dot(a, unit), unit))
+		w.around = append(w.around, neighbour{label, sub(f.local(label), p), length(upright)})
 	}
-	// The prism is in the coordinates in which distances are plain.
+	// The cell is in the coordinates in which distances are plain.
 	w.metric = plain
 	return f.weigh(p, true, w)
 }
@@ -350,16 +364,22 @@ func (f *Field) edgeWith(sites []int32, p Vec) []int32 {
 	return nil
 }
 
-// prism makes w.cell the cell of p among sites in one plane with it, raised by one
-// length on both sides of the plane: ratios of its volumes are those of areas in the
-// plane. It is false where the cell does not close.
-func (f *Field) prism(sites []int32, p Vec, w *Work) bool {
+// raise makes w.cell what stands over the cell of p among sites in one plane with it: a
+// prism, whose volumes are in the ratio of areas in the plane, or the pyramid of a place
+// on a face of the hull. It is false where the cell does not close. unit stands upright on
+// the plane.
+func (f *Field) raise(sites []int32, p Vec, pyramid bool, w *Work) (unit Vec, ok bool) {
 	a, b, c, _ := f.span(sites)
 	n := cross(sub(b, a), sub(c, a))
+	unit = scale(1/length(n), n)
 	near, far := math.Inf(1), 0.0
 	for _, s := range sites {
 		d := length(sub(f.local(s), p))
 		near, far = min(near, d), max(far, d)
+	}
+	lean := Vec{}
+	if pyramid { // s is counted so that the pyramid is about as high as it is wide
+		lean = scale(near/2, unit)
 	}
 	o := polyhedron.Open
 	for _, size := range []float64{4 * far, 0x1p20 * far} {
@@ -367,16 +387,17 @@ func (f *Field) prism(sites []int32, p Vec, w *Work) bool {
 		if size == 4*far {
 			w.cell.SetBox(Vec{X: -size, Y: -size, Z: -size}, Vec{X: size, Y: size, Z: size}, [6]int32{o, o, o, o, o, o})
 		}
-		unit := scale(1/length(n), n)
-		w.cell.Clip(unit, near, polyhedron.Wall(0))
-		w.cell.Clip(scale(-1, unit), near, polyhedron.Wall(1))
+		w.cell.Clip(scale(-1, unit), 0, polyhedron.Wall(1))
+		if !pyramid {
+			w.cell.Clip(unit, near, polyhedron.Wall(0))
+		}
 		for _, s := range sites {
 			q := sub(f.local(s), p)
-			w.cell.Clip(q, dot(q, q)/2, s)
+			w.cell.Clip(add(q, lean), dot(q, q)/2, s)
 		}
 		if !w.cell.IsOpen() {
-			return true
+			return unit, true
 		}
 	}
-	return false
+	return unit, false
 }
