@@ -185,3 +185,20 @@ func TestRepresentatives(t *testing.T) {
 		}
 	}
 }
+
+// TestEpisodesNear: readings at the limit of EPISODES are told of; 2.22 + 4.23 + 1.55
+// is 8 but for its last bit.
+func TestEpisodesNear(t *testing.T) {
+	const setting = `CREATE TABLE log AS (SELECT 'a' AS logger, TIMESTAMP '2031-04-07 00:00:00' + n * INTERVAL '15' MINUTE AS t, temp
+		FROM (VALUES (0, 7.0), (1, 8.0), (2, 2.22 + 4.23 + 1.55), (3, 9.0), (4, 7.0)) AS v (n, temp));`
+	for query, want := range map[string]string{
+		"ABOVE 8":   "2 readings of temp lie within 1e-9 of the limit 8, 1 of them equal to it",
+		"BELOW 9":   "1 reading of temp lies within 1e-9 of the limit 9, 1 of them equal to it",
+		"ABOVE 8.5": "",
+	} {
+		_, words, failed := asked(t, 1, setting, "SELECT * FROM EPISODES OF log BY logger ON t FOR temp "+query)
+		if failed || !strings.Contains(words, want) || want == "" && strings.Contains(words, "limit") {
+			t.Errorf("%s says %s, want %s", query, words, want)
+		}
+	}
+}

@@ -61,6 +61,7 @@ type episodeRows struct {
 	r               Request
 	merged, missing atomic.Int64
 	gaps            atomic.Int64
+	near, equal     atomic.Int64 // readings within 1e-9 of the limit, and those equal to it
 }
 
 func openEpisodes(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
@@ -82,6 +83,10 @@ func (e *episodeRows) Run(ctx context.Context, emit func(*column.Batch) error) e
 	if n := e.merged.Load(); n > 0 {
 		notes.Add(note.Warning, note.Sites, "%s of %s %s a stamp that its logger had already: the mean of a stamp's readings is taken (AUDIT counts them)",
 			count(int(n), "row"), e.b.Name, verb(int(n), "has", "have"))
+	}
+	if n, equal := e.near.Load(), e.equal.Load(); n > 0 {
+		notes.Add(note.Note, note.Rows, "%s of %s %s within 1e-9 of the limit %s, %d of them equal to it: an excursion is over the limit, not at it (ROUND makes computed readings decimal again)",
+			count(int(n), "reading"), name, verb(int(n), "lies", "lie"), column.FormatReal(e.b.Log.Limit), equal)
 	}
 	if n := e.gaps.Load(); n > 0 {
 		rule := ""
@@ -139,6 +144,12 @@ func (e *episodeRows) course(i int) (series.Course, error) {
 		x := reading(v, r)
 		if math.IsInf(x, 0) {
 			return series.Course{}, e.infinite(of, r)
+		}
+		if d := math.Abs(x - e.b.Log.Limit); d <= tieWithin {
+			e.near.Add(1)
+			if d == 0 {
+				e.equal.Add(1)
+			}
 		}
 		if e.b.Log.Below {
 			x = -x
