@@ -217,7 +217,7 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 	if err != nil {
 		return overSites{}, err
 	}
-	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside})
+	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside, Most: n.Most})
 	return overSites{rows, sites, wanted}, placed(err, n)
 }
 

@@ -279,6 +279,9 @@ func (e *Estimator) relation(n *Relation) (Estimate, error) {
 		}
 		f = n.Bound.Guess(e.rows(n.Input), shown, parts, n.Need, e.Threads)
 	}
+	if n.Most > 0 && !n.Bound.MeasuredIn() {
+		f = f.First(n.Most)
+	}
 	return Estimate{Rows: f.Rows, Exact: f.RowsExact, Geometry: f}, nil
 }
 

@@ -46,6 +46,7 @@ type Relation struct {
 	Beside []Node // the rows of Bound.Beside
 	Need   []bool
 	Wanted expr.Expr
+	Most   int64 // first rows of CELLS that a LIMIT takes, 0: all
 	Place  problem.Place
 }
 

@@ -107,6 +107,9 @@ func relationLine(n *Relation) string {
 	if n.Wanted != nil {
 		line += fmt.Sprintf("; only %s", n.Wanted)
 	}
+	if n.Most > 0 {
+		line += fmt.Sprintf("; first %d", n.Most)
+	}
 	return line
 }
 

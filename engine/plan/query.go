@@ -314,7 +314,7 @@ func sameStep(a, b Node) bool {
 		return ok && a.Common == b.Common
 	case *Relation:
 		b, ok := b.(*Relation)
-		return ok && sameRelation(a.Bound, b.Bound)
+		return ok && a.Most == b.Most && sameRelation(a.Bound, b.Bound)
 	}
 	return false
 }

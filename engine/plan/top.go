@@ -2,8 +2,8 @@ package plan
 
 import "math"
 
-// top tells a sort how many of its rows a LIMIT above it will take. Between
-// them only projections may stand, which give one row for each.
+// top tells a sort, or the cells of sites, how many of the rows a LIMIT above will
+// take. Between them only projections may stand, which give one row for each.
 func top(n Node) (Node, error) {
 	return rewrite(n, func(n Node) (Node, error) {
 		l, ok := n.(*Limit)
@@ -28,6 +28,13 @@ func withTop(n Node, rows int64) (Node, bool) {
 		}
 		c := *n
 		c.Top = rows
+		return &c, true
+	case *Relation:
+		if n.Bound.Def.Noun != "CELLS" || n.Most > 0 && n.Most <= rows {
+			return n, false
+		}
+		c := *n
+		c.Most = rows
 		return &c, true
 	case *Project:
 		in, ok := withTop(n.Input, rows)

@@ -112,7 +112,11 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 		c.env.Notes.Add(note.Note, note.Cells, "with MEASURED IN, %s of %s %s NULL: a part of a cell has none", strings.Join(names, " and "),
 			c.b.Title(), are(len(names)))
 	}
+	given := int64(0)
 	for i, p := range c.parts {
+		if c.r.Most > 0 && given >= c.r.Most {
+			break
+		}
 		if c.b.measuredIn() {
 			if err := c.partInRegions(ctx, p, &rows, out, flush); err != nil {
 				return err
@@ -125,6 +129,10 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 		if err != nil {
 			return err
 		}
+		if most := c.r.Most - given; c.r.Most > 0 && int64(len(ks)) > most {
+			ks = ks[:most]
+		}
+		given += int64(len(ks))
 		for len(ks) > 0 {
 			n := min(len(ks), out.room())
 			for _, k := range ks[:n] {

@@ -302,3 +302,18 @@ func (s *sites) rowsInside(g *alike, facts voronoi.Facts) float64 {
 	}
 	return float64(rows)
 }
+
+// First is the forecast of the first rows alone: as many cells, at most.
+func (f *Forecast) First(most int64) *Forecast {
+	c := *f
+	c.Rows = min(c.Rows, float64(most))
+	c.Known = int(min(int64(c.Known), most))
+	if all, left := int64(c.Cost.Cells), most-int64(c.Known); all > left {
+		c.Cost.Seconds *= float64(left) / float64(all)
+		c.Cost.Cells = int(left)
+	}
+	return &c
+}
+
+// MeasuredIn reports whether a site has a row for each of several parts.
+func (b *Bound) MeasuredIn() bool { return b.measuredIn() }

@@ -206,6 +206,9 @@ type Request struct {
 	Need   []bool
 	Wanted []uint64
 	Beside []*column.Table // the rows of Bound.Beside
+	// Most is how many first rows of CELLS are wanted, 0: all. Sites that come after
+	// them partition as ever.
+	Most int64
 }
 
 // Env is what a relation may use of the running program.

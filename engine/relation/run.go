@@ -195,6 +195,9 @@ func (s *sites) shown(p *Part, f voronoi.Facts) (ks, cells []int32) {
 		}
 		ks = append(ks, int32(k))
 	}
+	if s.r.Most > 0 && int64(len(ks)) > s.r.Most && !s.b.measuredIn() {
+		ks = ks[:s.r.Most]
+	}
 	if len(ks) == len(p.Rows) {
 		return ks, nil
 	}

@@ -295,3 +295,15 @@ EXPLAIN SELECT COUNT(*) FROM log a, log b, hall h WHERE a.logger = h.id AND h.id
      ~18            keep where: level = 'floor'
       54              read campaign hall: id, level
    36047          read table log: logger
+
+# A LIMIT over cells computes no more cells than it takes.
+ask
+EXPLAIN SELECT id, volume FROM CELLS OF placed WITHIN air LIMIT 3 OFFSET 2;
+----
+rows  step
+   3  limit 3 offset 2
+   5    columns: id, volume
+   5      cells of placed within air: id, volume; first 5
+              geometry: volume of 5 cells, one by one, TIME
+  54        compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+  54          read campaign hall: id, x, y, z
