@@ -148,7 +148,7 @@ func (c *Catalog) all() ([]Object, error) {
 // table must keep the rules of package column; it may be shared afterwards and
 // must not be changed.
 func (c *Catalog) Put(o Object, replace bool) error {
-	if o.Key == "" || o.Kind < Campaign || o.Kind > View {
+	if o.Key == "" || o.Kind < Campaign || o.Kind > Frame {
 		return fmt.Errorf("catalog: an object without a key or a kind: %q, %s", o.Key, o.Kind)
 	}
 	for _, s := range []string{o.Key, o.Name, o.Text} {
@@ -247,6 +247,7 @@ type meta struct {
 	Kind    string           `json:"kind"`
 	Name    string           `json:"name"`
 	Text    string           `json:"text,omitempty"`
+	System  string           `json:"system,omitempty"`
 	Options *CampaignOptions `json:"options,omitempty"`
 	Sources []SourceFile     `json:"sources,omitempty"`
 	Notes   []string         `json:"notes,omitempty"`
@@ -254,7 +255,7 @@ type meta struct {
 }
 
 func metaOf(o *Object) meta {
-	m := meta{Kind: o.Kind.String(), Name: o.Name, Text: o.Text, Sources: o.Sources, Notes: o.Notes, Created: o.Created}
+	m := meta{Kind: o.Kind.String(), Name: o.Name, Text: o.Text, System: o.System, Sources: o.Sources, Notes: o.Notes, Created: o.Created}
 	if o.Kind == Campaign {
 		m.Options = &o.Options
 	}
@@ -271,7 +272,7 @@ func fromRecord(rec store.Record) (*Object, error) {
 	if kind <= 0 {
 		return nil, fmt.Errorf("catalog: the record of %s has the unknown kind %q", rec.Key, m.Kind)
 	}
-	o := &Object{Kind: Kind(kind), Key: rec.Key, Name: m.Name, Text: m.Text, Sources: m.Sources, Notes: m.Notes, Created: m.Created}
+	o := &Object{Kind: Kind(kind), Key: rec.Key, Name: m.Name, Text: m.Text, System: m.System, Sources: m.Sources, Notes: m.Notes, Created: m.Created}
 	if m.Options != nil {
 		o.Options = *m.Options
 	}

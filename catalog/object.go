@@ -16,9 +16,10 @@ const (
 	Table
 	Solid
 	View
+	Frame
 )
 
-var kindNames = [...]string{"", "CAMPAIGN", "TABLE", "SOLID", "VIEW"}
+var kindNames = [...]string{"", "CAMPAIGN", "TABLE", "SOLID", "VIEW", "FRAME"}
 
 // String is the kind as the language writes it.
 func (k Kind) String() string {
@@ -37,6 +38,7 @@ type Object struct {
 
 	Table   *column.Table // Campaign: id, x, y, z and the attributes; Table: as read; Solid: what it took from files. Nil in a List.
 	Text    string        // Solid, View: the canonical text; Table, Campaign: that of the query that made it, if one did
+	System  string        // of what has coordinates: the frame that they were brought from, "GEOGRAPHIC lat lon", or "": as they came
 	Options CampaignOptions
 	Sources []SourceFile
 	Notes   []string // facts of the import worth repeating

@@ -175,6 +175,15 @@ func (s *Session) placedTable(st *statement, c *clauses, read *column.Table, ori
 		out.Schema = append(out.Schema, column.Field{Name: axis, Type: column.Real, Unit: v.Unit, Meaning: "position of the site"})
 		out.Cols = append(out.Cols, v)
 	}
+	if c.position != nil && (c.position.Geographic || !c.position.Frame.IsZero()) {
+		for i, f := range read.Schema { // what positions came from stays, but for its names
+			name := lang.Fold(f.Name)
+			used[i] = name == "x" || name == "y" || name == "z"
+		}
+	}
+	if err := s.bringToSite(st, c, out, origin); err != nil {
+		return nil, nil, err
+	}
 	if c.kind == catalog.Table {
 		return tableLayout(out, read, used), used, nil
 	}

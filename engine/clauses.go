@@ -18,27 +18,29 @@ import (
 // clauses are the reading clauses of a CREATE statement after their values
 // have been looked at.
 type clauses struct {
-	s          *Session
-	st         *statement
-	kind       catalog.Kind
-	id         *lang.IDReading
-	position   *lang.PositionReading
-	units      *lang.UnitsReading
-	within     string   // canonical text of the solid
-	zones      []string // canonical texts of the solids of WITHIN (a, b)
-	spaces     []relation.Region
-	withinAt   *lang.WithinClause
-	lengthUnit string
-	unitAt     lang.Node
-	duplicates string
-	tolerance  float64
-	stretched  [3]float64
-	file       reader.Options
-	fileClause lang.Node // one of the clauses that only a file can have
-	refusedTo  *lang.Text
-	times      *lang.TimeReading
-	unpivot    *lang.UnpivotReading
-	censored   *lang.CensoredReading
+	s           *Session
+	st          *statement
+	kind        catalog.Kind
+	id          *lang.IDReading
+	position    *lang.PositionReading
+	units       *lang.UnitsReading
+	within      string   // canonical text of the solid
+	zones       []string // canonical texts of the solids of WITHIN (a, b)
+	spaces      []relation.Region
+	withinAt    *lang.WithinClause
+	lengthUnit  string
+	unitAt      lang.Node
+	duplicates  string
+	tolerance   float64
+	stretched   [3]float64
+	system      string   // catalog.Object.System
+	placedNotes []string // how positions came about
+	file        reader.Options
+	fileClause  lang.Node // one of the clauses that only a file can have
+	refusedTo   *lang.Text
+	times       *lang.TimeReading
+	unpivot     *lang.UnpivotReading
+	censored    *lang.CensoredReading
 }
 
 // readClauses looks at every clause; what belongs to a later day is refused by name.
@@ -68,12 +70,6 @@ func (c *clauses) read(r lang.Reading) (err error) {
 	case *lang.IDReading:
 		c.id = r
 	case *lang.PositionReading:
-		if r.Geographic {
-			return problem.NotThereYet(c.st.at(r), "POSITION … GEOGRAPHIC")
-		}
-		if !r.Frame.IsZero() {
-			return problem.NotThereYet(c.st.at(r), "POSITION … IN FRAME")
-		}
 		c.position = r
 	case *lang.UnitsReading:
 		c.units = r

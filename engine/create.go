@@ -7,6 +7,7 @@ import (
 
 	"nearcell/catalog"
 	"nearcell/catalog/column"
+	"nearcell/engine/bind"
 	"nearcell/engine/exec"
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
@@ -50,7 +51,8 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 	if err != nil {
 		return err
 	}
-	object.Table = table
+	object.Table, object.System = table, clauses.system
+	object.Notes = append(object.Notes, clauses.placedNotes...)
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
@@ -132,12 +134,24 @@ func (s *Session) createSolid(st *statement, t *lang.CreateSolid) error {
 	if err := s.mayCreate(st, t.Name, catalog.Solid, t.Replace); err != nil {
 		return err
 	}
-	kept, text, err := s.solid(st, t.Solid)
+	tree, system := t.Solid, ""
+	if !t.Frame.IsZero() {
+		f, k, err := s.frameNamed(st, t.Frame)
+		if err != nil {
+			return err
+		}
+		if tree, err = bind.InFrame(s.bindEnv(st), t.Solid, &k.Similarity, f.Name); err != nil {
+			return err
+		}
+		system = f.Name
+		st.notes.Add(note.Note, note.Import, "%s is brought from the frame %s to the site's coordinates: %s", t.Name.Text, f.Name, s.frameText(k))
+	}
+	kept, text, err := s.solid(st, tree)
 	if err != nil {
 		return err
 	}
 	object := catalog.Object{Kind: catalog.Solid, Key: t.Name.Key(), Name: t.Name.Text, Text: text, Created: time.Now().UTC(),
-		Table: kept.Table, Sources: kept.Sources}
+		Table: kept.Table, Sources: kept.Sources, System: system}
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
@@ -244,6 +258,8 @@ func kindOf(k lang.ObjectKind) catalog.Kind {
 		return catalog.Solid
 	case lang.View:
 		return catalog.View
+	case lang.FrameOb:
+		return catalog.Frame
 	}
 	return 0
 }

@@ -64,6 +64,8 @@ func (s *Session) describeObject(st *statement, t *lang.Describe, o *catalog.Obj
 	switch o.Kind {
 	case catalog.Solid:
 		return s.describeSolid(st, t, o)
+	case catalog.Frame:
+		return s.describeFrame(st, t)
 	case catalog.View:
 		q := &lang.Query{Body: &lang.Select{
 			Items: []*lang.Item{{Star: true}},

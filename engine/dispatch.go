@@ -19,6 +19,8 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 		return s.createData(ctx, st, t)
 	case *lang.CreateSolid:
 		return s.createSolid(st, t)
+	case *lang.CreateFrame:
+		return s.createFrame(ctx, st, t)
 	case *lang.CreateView:
 		return s.createView(st, t)
 	case *lang.Drop:
@@ -64,14 +66,8 @@ func refuse(st *statement, tree lang.Statement) error {
 		if t.Title {
 			what = "TITLE"
 		}
-	case *lang.CreateFrame:
-		what = "CREATE FRAME"
-	case *lang.CreateSolid:
-		if !t.Frame.IsZero() {
-			what = "IN FRAME"
-		}
 	case *lang.Drop:
-		if t.Kind == lang.Diagrams || t.Kind == lang.FrameOb {
+		if t.Kind == lang.Diagrams {
 			what = "DROP " + string(t.Kind)
 		}
 	}

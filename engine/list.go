@@ -20,12 +20,13 @@ var lists = map[string]func(*Session) (*column.Table, error){
 	"TABLES":    (*Session).listTables,
 	"SOLIDS":    listTexts(catalog.Solid),
 	"VIEWS":     listTexts(catalog.View),
+	"FRAMES":    (*Session).listFrames,
 	"GEOMETRY":  (*Session).listGeometry,
 	"FUNCTIONS": (*Session).listFunctions,
 	"VALUES":    (*Session).listValues,
 }
 
-var plannedLists = []string{"FRAMES", "DIAGRAMS"}
+var plannedLists = []string{"DIAGRAMS"}
 
 func (s *Session) list(st *statement, t *lang.List) error {
 	word := strings.ToUpper(t.What.Text)

@@ -20,12 +20,12 @@ func siteReadings() []entry {
 		},
 		{
 			name: "IN FRAME", syntax: []string{"POSITION (px, py, h) IN FRAME frame"},
-			meaning: "The position is in the coordinates of a drawing.",
-			example: "CREATE CAMPAIGN again FROM 'hall.csv' POSITION (x, y, z) IN FRAME plan;",
+			meaning: "The position is in the coordinates of a drawing, which the frame brings to the site's.",
+			example: "CREATE FRAME plan MATCHING 'control.csv';\nCREATE CAMPAIGN again FROM 'hall.csv' POSITION (x, y, z) IN FRAME plan;",
 		},
 		{
 			name: "GEOGRAPHIC", syntax: []string{"POSITION (lat, lon, height) GEOGRAPHIC"},
-			meaning: "The position is in latitude and longitude.",
+			meaning: "The position is in degrees and metres on the WGS 84 ellipsoid, and becomes metres east, north and up of an origin: the middle of the extremes of latitude and longitude, to a hundredth of a degree, at height 0. A note tells it. Up is not height: far from the origin it is less, since the earth curves away.",
 			example: "CREATE CAMPAIGN again FROM 'hall.csv' POSITION (y, x, z) GEOGRAPHIC;",
 		},
 		{

@@ -63,7 +63,7 @@ func dataStatements() []entry {
 		{
 			name: "CREATE FRAME", also: []string{"FRAME", "FRAMES"},
 			syntax:  []string{"CREATE [OR REPLACE] FRAME name MATCHING 'file';"},
-			meaning: "Keeps how the coordinates of a drawing become those of the site, from pairs of points.",
+			meaning: "Keeps how the coordinates of a drawing become those of the site: scaled, turned, moved and, where it has to be, mirrored, as fits pairs of points best (least squares). The file has the columns px, py of the drawing and x, y of the site, in metres, and a name if wanted; heights then stay as they are. With pz and z it is a frame in space. DESCRIBE shows what each pair is off.",
 			example: "CREATE FRAME plan MATCHING 'control.csv';",
 		},
 		{

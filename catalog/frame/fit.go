@@ -96,10 +96,16 @@ func Fit(from, to []Point, plan bool) (*Similarity, []Point, error) {
 	}
 	s.turn(a, b)
 	residuals := make([]Point, n)
+	grain := 0.0 // what rounding makes of coordinates as large as these
+	for _, p := range to {
+		grain = max(grain, 0x1p-46*math.Abs(p[0]), 0x1p-46*math.Abs(p[1]), 0x1p-46*math.Abs(p[2]))
+	}
 	for i := range from {
 		at := s.Apply(from[i])
 		for k := range 3 {
-			residuals[i][k] = at[k] - to[i][k]
+			if d := at[k] - to[i][k]; math.Abs(d) > grain {
+				residuals[i][k] = d
+			}
 		}
 		if plan {
 			residuals[i][2] = 0

@@ -60,10 +60,7 @@ func TestFitFindsTheSimilarity(t *testing.T) {
 	})
 }
 
-// The published example of Umeyama (1991), section IV: three points in the plane whose
-// best rigid motion without mirror differs from the best with it. Here the mirror is
-// admitted, and the fit is then exact but for the scale: checked against the formula
-// tr(D)/variance by hand.
+// Three points and their mirror image: the mirror is taken where the data ask for it.
 func TestMirrorIsChosenByTheData(t *testing.T) {
 	from := []Point{{0, 0}, {1, 0}, {0, 2}}
 	to := []Point{{0, 0}, {-1, 0}, {0, 2}}

@@ -28,6 +28,7 @@ var arrows = map[string][]string{
 	"voronoi/field":            {"voronoi", "voronoi/delaunay", "voronoi/polyhedron", "voronoi/predicate", "voronoi/solid"},
 	"voronoi":                  {"voronoi/predicate", "voronoi/polyhedron", "voronoi/index", "voronoi/solid", "voronoi/delaunay"},
 	"catalog/column":           {},
+	"catalog/frame":            {},
 	"catalog/reader":           {"catalog/column", "catalog/reader/timeform"},
 	"catalog/reader/csv":       {"catalog/column", "catalog/reader", "catalog/reader/timeform"},
 	"catalog/reader/stl":       {"catalog/reader"},

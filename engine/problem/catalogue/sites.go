@@ -33,6 +33,18 @@ var ofSites = []Entry{
 		Example: "SELECT * FROM EXCEEDANCE OF hall FOR temp ABOVE 8 METHOD SIBSON UNCLIPPED;",
 	},
 	{
+		Code:    "control-points",
+		Meaning: "A frame cannot be made of these pairs of points, or a solid cannot be brought over by it.",
+		WayOut:  "Three pairs or more that are not on one line, with the columns px, py of the drawing and x, y of the site (or px, py, pz and x, y, z).",
+		Example: "CREATE FRAME plan MATCHING 'log.csv';",
+	},
+	{
+		Code:    "geographic",
+		Meaning: "A latitude or a longitude cannot be: beyond 90 or 360 degrees.",
+		WayOut:  "POSITION (latitude, longitude, height) GEOGRAPHIC takes degrees, the latitude first.",
+		Example: "CREATE TABLE places AS (VALUES (200, 10, 5)) POSITION (column1, column2, column3) GEOGRAPHIC;",
+	},
+	{
 		Code:    "no-place",
 		Meaning: "A site of a new campaign has no coordinate.",
 		WayOut:  "Mend the file, or leave the row out: REFUSED TO for a file, WHERE … IS NOT NULL for a query.",
