@@ -37,7 +37,7 @@ type Object struct {
 	Name string // as the user wrote it
 
 	Table   *column.Table // Campaign: id, x, y, z and the attributes; Table: as read; Solid: what it took from files. Nil in a List.
-	Text    string        // Solid, View: the canonical text; Table, Campaign: that of the query that made it, if one did
+	Text    string        // Solid, View: the canonical text; Table, Campaign: that of the query that made it, if one did; Frame: how it brings coordinates over
 	System  string        // of what has coordinates: the frame that they were brought from, "GEOGRAPHIC lat lon", or "": as they came
 	Options CampaignOptions
 	Sources []SourceFile
