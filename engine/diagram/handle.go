@@ -102,6 +102,16 @@ func (h *Handle) unlock() {
 	<-h.busy
 }
 
+// Hidden estimates what the given sites (nil: all) do not see of their cells, as
+// voronoi.Diagram.Hidden does. It is not kept.
+func (h *Handle) Hidden(ctx context.Context, sites []int32, progress func(done, total int)) (*voronoi.Sight, error) {
+	if err := h.lock(ctx, progress); err != nil {
+		return nil, err
+	}
+	defer h.unlock()
+	return h.d.Hidden(ctx, sites)
+}
+
 // Measure computes the wanted measures of the given sites (nil: all), as far as
 // they are not known. In the answer, entry s of each array belongs to site s of
 // the diagram; only the entries of the sites asked for are to be read, and none

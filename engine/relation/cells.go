@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/diagram"
 	"nearcell/engine/note"
 	"nearcell/voronoi"
 )
@@ -18,7 +19,6 @@ var cells = &Definition{
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Later:   []string{"UNCERTAINTY"},
 	Own:     true,
-	NotYet:  []string{"hidden"},
 	Zoned:   true,
 	Open:    openCells,
 	layout: func(b *Bound) []Column {
@@ -43,6 +43,7 @@ const (
 	cellZ
 	cellFarthest
 	cellNearestFace
+	cellHidden
 )
 
 func init() {
@@ -61,7 +62,9 @@ func init() {
 		cellZ:           measure("cz", column.Real, 1, voronoi.Centroid, "centroid of the cell, z"),
 		cellFarthest:    measure("farthest", column.Real, 1, voronoi.Farthest, "distance from the site to the farthest point of its cell"),
 		cellNearestFace: measure("nearest_face", column.Real, 1, voronoi.NearestFace, "half the distance to the nearest site elsewhere"),
+		cellHidden:      measure("hidden", column.Real, 0, 0, "share of the cell that its site cannot see for the walls of the solid, by sampling"),
 	}
+	cells.Computed[cellHidden].Costly = true
 	for _, i := range []int{cellVolume, cellArea, cellWallArea} {
 		cells.Computed[i].Extensive = true
 	}
@@ -75,6 +78,9 @@ type cellRows struct {
 	*sites
 	want voronoi.Measures
 	own  int // number of own columns, which come first
+
+	hidden []float64 // by site of the part at hand, if asked for
+	spread float64   // largest standard error of it
 }
 
 func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
@@ -95,6 +101,7 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 	defer func() { // where emit has had enough rows, too
 		c.said.partial = err != nil
 		c.tell()
+		c.tellHidden()
 	}()
 	out := newBatches(c.b, c.r.Need, c.own, emit)
 	rows := make([]int32, 0, BatchRows)
@@ -109,7 +116,7 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 		return err
 	}
 	if names := c.withoutValue(); c.b.measuredIn() && len(names) > 0 {
-		c.env.Notes.Add(note.Note, note.Cells, "with MEASURED IN, %s of %s %s NULL: a part of a cell has none", strings.Join(names, " and "),
+		c.env.Notes.Add(note.Note, note.Cells, "with MEASURED IN, %s of %s %s NULL: a part of a cell has none", enumerated(names),
 			c.b.Title(), are(len(names)))
 	}
 	given := int64(0)
@@ -151,6 +158,15 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 	return flush()
 }
 
+// enumerated names things one after the other: a, b and c.
+func enumerated(names []string) string {
+	last := len(names) - 1
+	if last < 1 {
+		return strings.Join(names, "")
+	}
+	return strings.Join(names[:last], ", ") + " and " + names[last]
+}
+
 // measured computes the cells of a part that are shown.
 func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int32, error) {
 	if !c.wanted(p) {
@@ -162,6 +178,11 @@ func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int
 	}
 	f := h.Facts()
 	ks, list := c.shown(p, f)
+	if needed(c.r.Need, c.own+cellHidden) {
+		if err := c.lookAround(ctx, h, list); err != nil {
+			return nil, nil, c.refused(err, p)
+		}
+	}
 	if len(ks) == 0 || c.want == 0 {
 		return &voronoi.Cells{}, ks, nil
 	}
@@ -171,6 +192,31 @@ func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int
 	}
 	c.count(p, m, ks)
 	return m, ks, nil
+}
+
+// lookAround estimates what the sites do not see of their cells.
+func (c *cellRows) lookAround(ctx context.Context, h *diagram.Handle, list []int32) error {
+	sight, err := h.Hidden(ctx, list, c.progress())
+	if err != nil {
+		return err
+	}
+	c.hidden = make([]float64, h.Len())
+	for i, share := range sight.Hidden {
+		site := i
+		if list != nil {
+			site = int(list[i])
+		}
+		c.hidden[site] = share
+		c.spread = max(c.spread, sight.Error[i])
+	}
+	return nil
+}
+
+// tellHidden says how well the hidden shares are known.
+func (c *cellRows) tellHidden() {
+	if c.spread > 0 {
+		c.env.Notes.Add(note.Note, note.Cells, "hidden is estimated from places drawn in each cell of %s; its standard error is at most %.2g", c.b.Name, c.spread)
+	}
 }
 
 // count takes note of cells that are not as one expects.
@@ -224,6 +270,8 @@ func (c *cellRows) fill(out *batches, p *Part, m *voronoi.Cells, ks []int32) {
 			lengths(v, out.n, p, ks, m.Farthest)
 		case cellNearestFace:
 			lengths(v, out.n, p, ks, m.NearestFace)
+		case cellHidden:
+			lengths(v, out.n, p, ks, c.hidden)
 		}
 	}
 	out.n += len(ks)

@@ -101,7 +101,7 @@ func (c *cellRows) fillRegion(out *batches, p *Part, k int, m *voronoi.PartMeasu
 // withoutValue are the computed columns of CELLS that a region has no value of.
 func (c *cellRows) withoutValue() []string {
 	var names []string
-	for _, i := range []int{cellEdges, cellVertices} {
+	for _, i := range []int{cellEdges, cellVertices, cellHidden} {
 		if needed(c.r.Need, c.own+i) {
 			names = append(names, c.b.Columns[c.own+i].Name)
 		}

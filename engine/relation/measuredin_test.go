@@ -41,7 +41,7 @@ func TestMeasuredIn(t *testing.T) {
 	if !high {
 		t.Error("no site outside the parts has a share in them")
 	}
-	if said := notes(s.env); !strings.Contains(said, "edges and vertices of CELLS OF hall are NULL") {
+	if said := notes(s.env); !strings.Contains(said, "edges, vertices and hidden of CELLS OF hall are NULL") {
 		t.Errorf("the notes are\n%s", said)
 	}
 	// Asked for one site or one column, the same numbers come.

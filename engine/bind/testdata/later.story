@@ -10,9 +10,9 @@ input:1: PLACEMENTS is not there yet
 plan
 SELECT hidden FROM CELLS OF hall
 ----
-input:1: the column 'hidden' of CELLS OF hall is not there yet
-  SELECT hidden FROM CELLS OF hall
-         ^^^^^^
+columns: hidden
+  cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
+    read campaign hall: id, x, y, z, temp, area
 
 plan
 SELECT * FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH)

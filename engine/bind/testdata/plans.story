@@ -44,7 +44,7 @@ FROM CELLS OF hall
 ----
 columns: "AVG(temp)" AS plain, "AVG(temp) WEIGHTED BY volume" AS by_space, "SHARE(temp > :limit) WEIGHTED BY volume" AS over_limit, "SUM(volume)" AS room
   aggregate all rows: AVG(temp), AVG(temp) WEIGHTED BY volume, SHARE(temp > :limit) WEIGHTED BY volume, SUM(volume)
-    cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+    cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
       read campaign hall: id, x, y, z, temp, area
 
 columns
@@ -64,7 +64,7 @@ GROUP BY t ORDER BY t
 sort: t
   columns: t, "AVG(temp) WEIGHTED BY volume" AS mean
     group by t: AVG(temp) WEIGHTED BY volume
-      cells of (query) within air for each t: id, x, y, z, t, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+      cells of (query) within air for each t: id, x, y, z, t, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
         columns: id, x, y, z, t, temp
           keep where: temp IS NOT NULL
             inner join on logger = id
@@ -94,6 +94,7 @@ cy REAL [m]
 cz REAL [m]
 farthest REAL [m]
 nearest_face REAL [m]
+note: SELECT * leaves out hidden, which cost much: name them to get them
 
 columns
 SELECT * FROM CONTACTS OF walk FOR EACH pass UNCLIPPED
@@ -112,7 +113,7 @@ plan
 SELECT id, volume FROM CELLS OF (SELECT id, x, y, z FROM hall)
 ----
 columns: id, volume
-  cells of (query): id, x, y, z, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+  cells of (query): id, x, y, z, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
     columns: id, x, y, z
       read campaign hall: id, x, y, z, temp, area
 note: CELLS OF (query) has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along
@@ -122,7 +123,7 @@ plan
 SELECT id, volume FROM CELLS OF walk
 ----
 columns: id, volume
-  cells of walk: id, x, y, z, dust, pass, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+  cells of walk: id, x, y, z, dust, pass, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
     read campaign walk: id, x, y, z, dust, pass
 
 plan
@@ -301,7 +302,7 @@ SELECT c.id, k.b FROM CELLS OF hall AS c JOIN CONTACTS OF hall AS k ON k.a = c.i
 columns: id, b
   keep where: volume > 5
     inner join on a = id
-      cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+      cells of hall within air: id, x, y, z, temp, own_area, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
         read campaign hall: id, x, y, z, temp, area
       contacts of hall within air: a, b, distance, area, mx, my, mz
         read campaign hall: id, x, y, z, temp, area

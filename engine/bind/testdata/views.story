@@ -17,7 +17,7 @@ plan
 SELECT id, volume FROM CELLS OF warm WITHIN air OMITTING ('L17') BECAUSE 'moved'
 ----
 columns: id, volume
-  cells of warm within air omitting 'L17': id, x, y, z, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face
+  cells of warm within air omitting 'L17': id, x, y, z, temp, volume, area, faces, edges, vertices, neighbours, bounded, clipped, wall_area, cx, cy, cz, farthest, nearest_face, hidden
     columns: id, x, y, z, temp
       keep where: temp > 8.0
         read campaign hall: id, x, y, z, temp, area
