@@ -24,7 +24,7 @@ var ofSites = []Entry{
 		Code:    "not-finite",
 		Meaning: "A reading is infinite, and nothing can be estimated from it.",
 		WayOut:  "Leave the site out with OF (SELECT … WHERE …), or make the reading NULL.",
-		Example: "SELECT * FROM RESIDUALS OF (SELECT id, x, y, z, CAST('Infinity' AS REAL) AS temp FROM hall) FOR temp;",
+		Example: "SELECT * FROM RESIDUALS OF\n  (SELECT id, x, y, z, CAST('Infinity' AS REAL) AS temp FROM hall) FOR temp;",
 	},
 	{
 		Code:    "no-solid",
