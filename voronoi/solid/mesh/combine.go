@@ -218,7 +218,7 @@ func (a *arrangement) cut(l, t int32) {
 		if len(rivals) > 0 {
 			q = a.centre(loop)
 		}
-		a.keep(l, loop, &q, [3]Vec{u, v, w}, axis)
+		a.keep(l, loop, &q, [3]Vec{u, v, w}, axis, len(rivals) > 0)
 	}
 }
 
@@ -439,12 +439,13 @@ func (a *arrangement) divide(loop []int32, side func(p *point) int, cross func(p
 }
 
 // keep keeps a piece of a leaf's surface if the combination is on one side of it. Of
-// pieces of several leaves in one place the first leaf's is kept.
-func (a *arrangement) keep(l int32, loop []int32, q *point, t [3]Vec, axis int) {
+// pieces of several leaves in one place the first leaf's is kept. met tells that other
+// triangles come near.
+func (a *arrangement) keep(l int32, loop []int32, q *point, t [3]Vec, axis int, met bool) {
 	p0, p1, p2 := given(t[0]), given(t[1]), given(t[2])
 	up := turn(&p0, &p1, &p2, axis)
 	for i, other := range a.leaves {
-		if int32(i) == l && !other.faced {
+		if int32(i) == l && !(other.faced && met) {
 			a.plus[i], a.minus[i] = false, true
 			continue
 		}
