@@ -28,8 +28,11 @@ func (b *binder) measuredIn(rel *relation.Bound, c *lang.MeasuredInClause) error
 	for i, s := range solids {
 		for _, part := range pieces(s) {
 			if _, ok := part.Solid.(solid.Divided); !ok {
-				return b.notYet(trees[i], fmt.Sprintf("MEASURED IN %s, a %s,", s.Name, s.Solid.Facts().Kind)).
-					WithHint("a part is a BOX, a PRISM or BOXES")
+				what := fmt.Sprintf("MEASURED IN %s, a solid of the kind '%s',", part.Name, part.Solid.Facts().Kind)
+				if part.Name != s.Name {
+					what = fmt.Sprintf("MEASURED IN the part '%s' of %s, which has several boxes,", part.Name, s.Name)
+				}
+				return b.notYet(trees[i], what).WithHint("a part is a BOX, a PRISM, or each box of BOXES with a name of its own")
 			}
 			if taken[lang.Fold(part.Name)] { // two lists of boxes have a box of one name
 				part.Name = s.Name + " " + part.Name
