@@ -25,13 +25,13 @@ func ShareAbove(v [4]float64, t float64) float64 {
 		return 0
 	case t < b:
 		x := t - a
-		return 1 - x/(b-a)*(x/(c-a))*(x/(d-a))
+		return 1 - float64(x/(b-a)*(x/(c-a))*(x/(d-a)))
 	case t >= c:
 		x := d - t
 		return x / (d - a) * (x / (d - b)) * (x / (d - c))
 	}
 	u, e := t-b, b-a
-	sum := float64(e*e) + float64(3*e*u) + float64(3*u*u) - ((c-a)+(d-b))*(u/(c-b))*(u/(d-b))*u
+	sum := float64(e*e) + float64(3*e*u) + float64(3*u*u) - float64(((c-a)+(d-b))*(u/(c-b))*(u/(d-b))*u)
 	return 1 - sum/(c-a)/(d-a)
 }
 
@@ -167,7 +167,7 @@ func (s *tetSums) inside(at [4]Vec) bool {
 	for _, p := range at {
 		far = max(far, length(sub(p, m)))
 	}
-	return s.body.Distance(m) > far*(1+1e-9) && s.body.Side(m, 0) == solid.Inside
+	return s.body.Distance(m) > float64(far*(1+1e-9)) && s.body.Side(m, 0) == solid.Inside
 }
 
 // cutTet adds the part of a tetrahedron in the solid.

@@ -115,7 +115,7 @@ func (o *octree) listBalls() {
 		b := ball{at: c, lo: math.Inf(1), hi: math.Inf(-1)}
 		// The centre errs by about 60 units in the last place times the flatness.
 		r := math.Sqrt(r2)
-		b.radius2 = r + 1e-13*flatness(t, i)*r + 1e-9*o.size
+		b.radius2 = r + float64(1e-13*flatness(t, i)*r) + float64(1e-9*o.size)
 		b.radius2 *= b.radius2
 		if math.IsNaN(b.radius2) || math.IsInf(c.X+c.Y+c.Z, 0) {
 			b.radius2, b.at = math.Inf(1), Vec{} // too flat to tell: it may reach anywhere
@@ -131,7 +131,7 @@ func (o *octree) listBalls() {
 		if inner := o.innerOf(i); dot(n, sub(inner, p)) > 0 {
 			n = scale(-1, n)
 		}
-		b := ball{at: n, d: dot(n, p) - 1e-9*o.size, half: true, lo: math.Inf(1), hi: math.Inf(-1)}
+		b := ball{at: n, d: dot(n, p) - float64(1e-9*o.size), half: true, lo: math.Inf(1), hi: math.Inf(-1)}
 		if math.IsNaN(n.X + n.Y + n.Z) {
 			b = ball{radius2: math.Inf(1), lo: math.Inf(1), hi: math.Inf(-1)}
 		}
