@@ -19,7 +19,8 @@ var exceedance = &Definition{
 	Noun:    "EXCEEDANCE",
 	RowIs:   "campaign and threshold",
 	Meaning: "how much space is above, or below, a limit",
-	Example: `SELECT threshold, share, lower, upper\nFROM EXCEEDANCE OF hall FOR temp ABOVE 8 THRESHOLDS (7, 9) METHOD NEAREST;`,
+	Example: `SELECT threshold, share, lower, upper
+FROM EXCEEDANCE OF hall FOR temp ABOVE 8 THRESHOLDS (7, 9) METHOD NEAREST;`,
 	Clauses: []string{"FOR", "ABOVE", "BELOW", "THRESHOLDS", "METHOD", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
 	Zoned:   true,
 	Open:    openExceedance,

@@ -16,7 +16,8 @@ var weights = &Definition{
 	Noun:    "WEIGHTS",
 	RowIs:   "point and neighbour",
 	Meaning: "the sites that an estimate rests on, each with its weight; those of a point add up to 1",
-	Example: `SELECT neighbour, weight\nFROM WEIGHTS OF hall AT (SELECT 5 AS x, 5 AS y, 1 AS z) ORDER BY weight DESC;`,
+	Example: `SELECT neighbour, weight
+FROM WEIGHTS OF hall AT (SELECT 5 AS x, 5 AS y, 1 AS z) ORDER BY weight DESC;`,
 	Clauses: []string{"AT", "METHOD", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
 	Zoned:   true,
 	Open:    openWeights,
