@@ -17,8 +17,11 @@ import (
 
 // savable are the file endings that SAVE writes, planned those that it will.
 var (
-	savable = map[string]present.Format{".csv": present.AsCSV, ".jsonl": present.AsJSONLines, ".json": present.AsJSON}
-	planned = map[string]bool{".parquet": true, ".xlsx": true, ".vtu": true}
+	savable = map[string]present.Format{
+		".csv": present.AsCSV, ".jsonl": present.AsJSONLines, ".json": present.AsJSON,
+		".parquet": present.AsParquet, ".xlsx": present.AsXLSX,
+	}
+	planned = map[string]bool{".vtu": true}
 )
 
 // save writes a query's rows to a file: aside first, then renamed, so that a
@@ -56,7 +59,7 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 		return w.Flush()
 	})
 	if err != nil {
-		return fileProblem(err, st.at(t.To), t.To.Value, "be written")
+		return saveProblem(err, st.at(t.To), t.To.Value)
 	}
 	s.warnOfInputs(st, t)
 	if t.WithProvenance {
@@ -73,6 +76,20 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	return nil
 }
 
+// saveProblem words what a format cannot hold; other errors are the file's or pass.
+func saveProblem(err error, at problem.Place, name string) error {
+	var repeated *present.RepeatedColumnError
+	switch {
+	case errors.As(err, &repeated):
+		return problem.New("column-twice", at, "two columns are called '%s', and '%s' tells columns apart by their names", repeated.Name, name).
+			WithHint("give one of them another name with AS").Because(err)
+	case errors.Is(err, present.ErrSheetFull):
+		return problem.New("file-kind", at, "the result does not fit into '%s': %v", name, err).
+			WithHint("a .parquet or .csv file has no such limit").Because(err)
+	}
+	return fileProblem(err, at, name, "be written")
+}
+
 func saveFormat(st *statement, t *lang.Save) (present.Format, error) {
 	ending := strings.ToLower(filepath.Ext(t.To.Value))
 	if planned[ending] {
@@ -81,15 +98,15 @@ func saveFormat(st *statement, t *lang.Save) (present.Format, error) {
 	format, ok := savable[ending]
 	if !ok {
 		return "", problem.New("file-kind", st.at(t.To), "the ending of '%s' does not say how to write it", t.To.Value).
-			WithHint("end it with .csv, .json or .jsonl")
+			WithHint("end it with .csv, .json, .jsonl, .parquet or .xlsx")
 	}
-	if format != present.AsCSV {
-		switch {
-		case t.WithUnits:
-			return "", problem.New("clause", st.at(t), "WITH UNITS belongs to .csv files")
-		case t.QuoteFormulas:
-			return "", problem.New("clause", st.at(t), "QUOTE FORMULAS belongs to .csv files")
-		}
+	switch {
+	case t.WithUnits && format != present.AsCSV && format != present.AsXLSX:
+		return "", problem.New("clause", st.at(t), "WITH UNITS belongs to .csv and .xlsx files")
+	case t.QuoteFormulas && format == present.AsXLSX:
+		return "", problem.New("clause", st.at(t), "QUOTE FORMULAS belongs to .csv files; in .xlsx files a text is never a formula")
+	case t.QuoteFormulas && format != present.AsCSV:
+		return "", problem.New("clause", st.at(t), "QUOTE FORMULAS belongs to .csv files")
 	}
 	return format, nil
 }

@@ -1,8 +1,9 @@
-// Package present writes results: tables for people, CSV and JSON for files and
-// other programs. It knows nothing of queries; it gets a schema and batches.
+// Package present writes results: tables for people, CSV, JSON, Parquet and
+// spreadsheets for files and other programs. It knows nothing of queries; it gets a schema and batches.
 //
-// Tables round to significant digits, since people read them. CSV and JSON keep
-// every bit: a number that is read back is the same number.
+// Tables round to significant digits, since people read them. CSV, JSON and
+// Parquet keep every bit: a number that is read back is the same number. A sheet of
+// a spreadsheet keeps numbers, too, but not every time: see xlsxWriter.
 //
 // # Limitations
 //

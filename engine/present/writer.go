@@ -16,9 +16,11 @@ const (
 	AsCSV       Format = "csv"
 	AsJSON      Format = "json"
 	AsJSONLines Format = "jsonl"
+	AsParquet   Format = "parquet" // for files only
+	AsXLSX      Format = "xlsx"    // for files only
 )
 
-// Formats lists the formats, for usage messages.
+// Formats lists the formats of the standard output, for usage messages.
 var Formats = []Format{AsTable, AsCSV, AsJSON, AsJSONLines}
 
 // Writer takes one result: Begin once, Batch for each run of rows (only active
@@ -31,10 +33,16 @@ type Writer interface {
 	End() (rows, unwritten int64, err error)
 }
 
+// RepeatedColumnError says that the format tells columns apart by their names, and
+// two of them have the same.
+type RepeatedColumnError struct{ Name string }
+
+func (e *RepeatedColumnError) Error() string { return "two columns are called " + e.Name }
+
 // Options are the choices of all writers.
 type Options struct {
 	Digits   int  // significant digits of a table, 0: 6
-	Units    bool // CSV: units in the heading, volume [m^3]
+	Units    bool // CSV, XLSX: units in the heading, volume [m^3]
 	Formulas bool // CSV: texts that a spreadsheet would run as formulas are quoted
 	Width    int  // table: characters of a line, 0: no limit
 	Rows     int  // table: rows that are printed at most, 0: MaxTableRows
@@ -60,6 +68,10 @@ func New(f Format, w io.Writer, o Options) (Writer, error) {
 		return &jsonWriter{w: w, array: true}, nil
 	case AsJSONLines:
 		return &jsonWriter{w: w}, nil
+	case AsParquet:
+		return &parquetWriter{w: w}, nil
+	case AsXLSX:
+		return newXLSX(w, o), nil
 	}
 	return nil, fmt.Errorf("no writer for the format %q", f)
 }
