@@ -50,7 +50,7 @@ var arrows = map[string][]string{
 		"lang", "voronoi"},
 	"engine/plan/plantest": {"catalog/column", "engine/...", "lang", "voronoi/..."},
 	"engine/exec": {"catalog/column", "engine/expr", "engine/function", "engine/note", "engine/plan",
-		"engine/problem", "engine/relation", "voronoi"},
+		"engine/problem", "engine/relation", "voronoi", "voronoi/index"},
 	"engine/bind": {"catalog/...", "engine/expr", "engine/function", "engine/note", "engine/plan", "engine/problem",
 		"engine/relation", "lang", "voronoi/..."},
 	"engine/present":      {"catalog/column"},

@@ -17,6 +17,7 @@ type commonRows struct {
 	table   *column.Table
 	err     error
 	indexes []*commonIndex
+	near    []*nearIndex
 }
 
 // commonIndex finds the rows of a common part by keys.

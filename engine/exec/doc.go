@@ -55,6 +55,14 @@
 // at the answers of one query. Of notes of a query computed for many rows only
 // warnings are told, three of them. What queries do is counted to the step around.
 //
+// # Nearest-site search
+//
+// A k-d tree gives a sort by distance what can be among its first rows. A tree costs as
+// much as some scans: of more than 4,096 rows the first search is one, and the tree is
+// built for the second. The trees of stored tables are kept from one statement to the next
+// (Places, four of them), others until the end of the run. Where a point is not finite, or
+// memory does not reach, it is a scan, too.
+//
 // # Errors and notes
 //
 // An error of a row becomes a problem at the expression's place that names the

@@ -23,6 +23,8 @@ const (
 type Env struct {
 	relation.Env       // Threads: the number of workers, 0: one a core
 	Memory       int64 // bytes that the statement's sinks may keep, 0: no limit
+	// Places are the search trees that the program keeps; nil: a run has its own.
+	Places *Places
 	// Measured counts what each step of the plan does; nil: nobody asks.
 	Measured *Measured
 

@@ -17,6 +17,7 @@ type buildSide struct {
 	keys  *keyTable // nil: a nested loop
 	// rows[start[k]:start[k+1]] are the rows with key k, in their order.
 	start, rows []int32
+	near        *nearSide // of a nested loop, nil: every pair is looked at
 }
 
 // openBuild is the right side of a join.
@@ -67,6 +68,13 @@ func (r *runner) buildSide(ctx context.Context, n *plan.Join) (*buildSide, error
 		err = side.index(ctx, r.envOf(m), at, n.LeftKeys)
 	}
 	side.table = &column.Table{Schema: schema, Cols: table.Cols[:len(schema)], N: table.N}
+	if err == nil && n.Near != nil {
+		m := r.meter(n)
+		if m != nil {
+			defer m.took(time.Now())
+		}
+		err = side.openNear(ctx, r.envOf(m), n.Near)
+	}
 	return side, err
 }
 
@@ -197,6 +205,7 @@ type joinLocal struct {
 	wide      []column.Vector // of a unique right side: the left columns as they are, the right ones gathered
 	met, stay []uint64        // of a semi or anti join: left rows with a match, rows to hand on
 	masked    column.Batch
+	near      nearLocal
 }
 
 func (s *joinStep) local(w *Worker) *joinLocal {
@@ -225,6 +234,9 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 		l.keyCols = cols
 		l.keys = room(l.keys, b.N)
 		l.reader.find(cols, b.On, b.N, l.keys)
+	}
+	if s.right.near != nil {
+		l.near.begin(s.right.near, s.leftScope, w, b)
 	}
 	if s.one() {
 		return s.runOne(ctx, w, l, b, emit)
@@ -315,11 +327,13 @@ func (s *joinStep) runKeys(ctx context.Context, w *Worker, l *joinLocal, b *colu
 // join no more than it takes to know.
 func (s *joinStep) candidates(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, i int32, emit Emit) error {
 	known := func() bool { return s.one() && column.Bit(l.met, int(i)) }
-	if s.right.keys == nil {
-		for r := int32(0); int(r) < s.right.table.N && !known(); r++ {
-			if err := s.candidate(ctx, w, l, b, i, r, emit); err != nil {
-				return err
-			}
+	if s.right.near != nil {
+		if err := s.nearCandidates(ctx, w, l, b, i, known, emit); err != nil {
+			return err
+		}
+	} else if s.right.keys == nil {
+		if err := s.allCandidates(ctx, w, l, b, i, known, emit); err != nil {
+			return err
 		}
 	} else if k := l.keys[i]; k >= 0 {
 		for _, r := range s.right.rows[s.right.start[k]:s.right.start[k+1]] {
@@ -333,6 +347,15 @@ func (s *joinStep) candidates(ctx context.Context, w *Worker, l *joinLocal, b *c
 	}
 	if s.kind == plan.Left {
 		return s.candidate(ctx, w, l, b, i, -1, emit)
+	}
+	return nil
+}
+
+func (s *joinStep) allCandidates(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, i int32, known func() bool, emit Emit) error {
+	for r := int32(0); int(r) < s.right.table.N && !known(); r++ {
+		if err := s.candidate(ctx, w, l, b, i, r, emit); err != nil {
+			return err
+		}
 	}
 	return nil
 }

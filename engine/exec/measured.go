@@ -162,7 +162,7 @@ func (r *runner) envOf(m *meter) *Env {
 		return r.env
 	}
 	e := r.env
-	return &Env{Env: e.Env, Memory: e.Memory, Measured: e.Measured, chunk: e.chunk, batch: e.batch, whole: e, holder: m, queries: e.queries}
+	return &Env{Env: e.Env, Memory: e.Memory, Places: e.Places, Measured: e.Measured, chunk: e.chunk, batch: e.batch, whole: e, holder: m, queries: e.queries}
 }
 
 // metered puts the meter of a node around what opens it: its source where it

@@ -4,6 +4,8 @@ import (
 	"cmp"
 	"context"
 	"fmt"
+	"math"
+	"math/big"
 	"slices"
 	"sort"
 
@@ -397,12 +399,14 @@ func naiveFold(c *plan.Call, values []column.Value) (column.Value, error) {
 	if len(values) == 0 {
 		return column.NullOf(c.Args[0].Type()), nil
 	}
+	if c.Fn.Name == "SUM" && values[0].Type == column.Real {
+		return column.Float(exactSum(values)), nil
+	}
 	best := values[0]
 	for _, v := range values[1:] {
 		switch c.Fn.Name {
 		case "SUM":
 			best.I += v.I
-			best.F += v.F
 		case "MIN":
 			if compareValues(v, best) < 0 {
 				best = v
@@ -416,6 +420,25 @@ func naiveFold(c *plan.Call, values []column.Value) (column.Value, error) {
 		}
 	}
 	return best, nil
+}
+
+// exactSum rounds once, at the end: added one after another, 0.1 + 0.1 + … drifts away from
+// what sums in double-double give.
+func exactSum(values []column.Value) float64 {
+	plain, sum := 0.0, new(big.Float).SetPrec(2200) // holds every sum of float64
+	for _, v := range values {
+		if plain += v.F; math.IsInf(v.F, 0) {
+			sum = nil
+		}
+		if sum != nil {
+			sum.Add(sum, new(big.Float).SetFloat64(v.F))
+		}
+	}
+	if sum == nil {
+		return plain
+	}
+	f, _ := sum.Float64()
+	return f
 }
 
 // naiveRelation asks the relation for everything and then drops what is not

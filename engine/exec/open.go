@@ -57,6 +57,8 @@ func (r *runner) openNode(ctx context.Context, n plan.Node) (*pipeline, error) {
 		return r.openNumber(ctx, n)
 	case *plan.Shared:
 		return r.openShared(n)
+	case *plan.Nearest:
+		return r.openNearest(ctx, n)
 	case *plan.Lookup:
 		return r.openLookup(ctx, n)
 	}

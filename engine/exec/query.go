@@ -266,7 +266,7 @@ func (a *answers) run(outer []column.Value) answer {
 	q := a.of
 	// what is kept on the way is given back, unlike what the run itself keeps
 	held := &meter{}
-	env := &Env{Env: q.env.Env, Memory: q.env.Memory, chunk: q.env.chunk, batch: q.env.batch, whole: q.env, holder: held, queries: q}
+	env := &Env{Env: q.env.Env, Memory: q.env.Memory, Places: q.env.Places, chunk: q.env.chunk, batch: q.env.batch, whole: q.env, holder: held, queries: q}
 	defer func() { q.env.release(held.kept.Load()) }()
 	env.Progress = nil
 	if len(outer) == 0 {

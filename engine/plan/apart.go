@@ -31,6 +31,10 @@ func (a *apart) node(n Node) Node {
 		n = &c
 	case *Shared:
 		n = &Shared{Common: a.common(s.Common), Fields: s.Fields}
+	case *Nearest:
+		c := *s
+		c.Common = a.common(s.Common)
+		n = &c
 	case *Lookup:
 		c := *s
 		c.Common = a.common(s.Common)
@@ -86,6 +90,8 @@ func CommonOf(n Node) *Common {
 	case *Shared:
 		return n.Common
 	case *Lookup:
+		return n.Common
+	case *Nearest:
 		return n.Common
 	}
 	return nil

@@ -49,6 +49,10 @@ func (e *Estimator) columnValues(n Node, at int) values {
 		}
 	case *Shared:
 		return e.columnValues(n.Common.Plan, at)
+	case *Nearest:
+		v := e.columnValues(n.Common.Plan, at)
+		v.exact = false
+		return e.capped(v, n)
 	case *Lookup:
 		v := e.columnValues(n.Common.Plan, at)
 		v.exact = false

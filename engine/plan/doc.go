@@ -71,6 +71,14 @@
 // parts of what does not read the row outside, and finds by hash the rows that equal
 // its values. The rest is computed once for each combination of the values outside.
 //
+// Nearest gives ORDER BY DISTANCE(point of the row, place) LIMIT k, and MIN(DISTANCE(…)), only
+// the rows that can be among the first ones, by a k-d tree: of stored tables, and in queries
+// that depend on the row outside of whatever does not read it. Near joins looks up by one
+// which right rows DISTANCE(left point, right point) <= bound lets match, where the bound
+// reads the left side alone. Safe: the sort, the aggregate and the condition stay, and see
+// in the same order whatever can matter to them; distances by rounding equal are never told
+// apart. A condition between search and sort must not be able to fail.
+//
 // A Common part (a name of WITH used twice, a side of FULL JOIN) is optimised once
 // and computed once; Shared and Lookup are its uses. Conditions and columns stop at
 // it. Inline takes those away that are used once.
@@ -96,6 +104,9 @@
 // an upper bound, since nobody knows which partitions of FOR EACH are alike.
 //
 // # Limitations
+//
+// A join whose least distance is that of the right side's rows (DISTANCE(a, b) = (SELECT MIN
+// … of b)) is a nested loop: the other order of the two is the fast one.
 //
 // Lineage ends at common parts: what leaves out cells there is not noted. Of a join the right side is the one kept in memory. Conditions
 // do not move through groups to their keys. A measure counts as lost or repeated

@@ -126,6 +126,12 @@ func (e *Estimator) node(n Node) (Estimate, error) {
 	case *Shared:
 		in := e.known[n.Common.Plan]
 		return Estimate{Rows: in.Rows, Exact: in.Exact}, nil
+	case *Nearest:
+		rows := e.rows(n.Common.Plan)
+		if n.Keep != nil {
+			rows *= e.share(n.Keep, n.Common.Plan)
+		}
+		return Estimate{Rows: min(rows, float64(n.Most))}, nil
 	case *Lookup:
 		rows := e.rows(n.Common.Plan)
 		for _, k := range n.Keys {

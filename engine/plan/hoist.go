@@ -49,6 +49,17 @@ func hoisted(n Node, limited bool) Node {
 	if f, ok := n.(*Filter); ok && !ReadsOuter(f.Input) && !(limited && exprsFail(f.Input)) {
 		return lookup(f)
 	}
+	known := func(base Node) bool { return !ReadsOuter(base) && !(limited && exprsFail(base)) }
+	switch x := n.(type) {
+	case *Sort:
+		if near, ok := nearestFirst(x, known); ok {
+			return near
+		}
+	case *Aggregate:
+		if near, ok := nearestLeast(x, known); ok {
+			return near
+		}
+	}
 	if l, ok := n.(*Limit); ok {
 		limited = limited || l.Count >= 0
 	}

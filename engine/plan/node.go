@@ -100,12 +100,13 @@ const (
 
 // Join matches rows: where there are key pairs by hash, else by a nested loop.
 // LeftKeys refer to the columns of Left, RightKeys to those of Right, Rest to
-// both. NULL keys match nothing.
+// both. NULL keys match nothing. Near bounds the pairs of a nested loop.
 type Join struct {
 	Kind                JoinKind
 	Left, Right         Node
 	LeftKeys, RightKeys []expr.Expr
 	Rest                expr.Expr
+	Near                *Near // of a nested loop, nil: every pair is looked at
 }
 
 // SortKey is one key of ORDER BY. NULLs sort last unless said.

@@ -27,7 +27,9 @@ func init() { // inside calls Optimise
 		{"join keys", joinKeys},
 		{"top", top},
 		{"prune", prune},
+		{"nearest", nearest},
 		{"hoist", hoist},
+		{"near joins", nearJoins},
 	}
 }
 
@@ -61,6 +63,11 @@ func (o *optimiser) inside(n Node) (Node, error) {
 		case *Shared:
 			c, err := o.common(s.Common)
 			return &Shared{Common: c, Fields: s.Fields}, err
+		case *Nearest:
+			c, err := o.common(s.Common)
+			l := *s
+			l.Common = c
+			return &l, err
 		case *Lookup:
 			c, err := o.common(s.Common)
 			l := *s

@@ -67,6 +67,8 @@ func Line(n Node) string {
 		return matchedLine(n)
 	case *Shared:
 		return "rows of " + n.Common.Name
+	case *Nearest:
+		return nearestLine(n)
 	case *Lookup:
 		return fmt.Sprintf("rows of %s found by hash: %s = %s", n.Common.Name, exprs(n.Keys), exprs(n.Values))
 	}
@@ -213,7 +215,11 @@ func joinLine(n *Join) string {
 		}
 		line += fmt.Sprintf("%s = %s", n.LeftKeys[i], n.RightKeys[i])
 	}
+	if n.Near != nil {
+		line += fmt.Sprintf(", pairs by nearest-site search: %s within %s of %s", n.Near.Right, n.Near.Within, n.Near.Left)
+	}
 	switch {
+	case n.Rest == nil && n.Near != nil:
 	case n.Rest != nil && len(n.LeftKeys) > 0:
 		line += "; on " + n.Rest.String()
 	case n.Rest != nil:

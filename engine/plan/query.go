@@ -148,9 +148,9 @@ func everywhere(n Node, visit func(Node), seen map[*Common]bool) {
 			}
 		})
 	}
-	if s, ok := n.(*Shared); ok && !seen[s.Common] {
-		seen[s.Common] = true
-		everywhere(s.Common.Plan, visit, seen)
+	if c := CommonOf(n); c != nil && !seen[c] {
+		seen[c] = true
+		everywhere(c.Plan, visit, seen)
 	}
 	for _, in := range n.Inputs() {
 		everywhere(in, visit, seen)
@@ -165,7 +165,7 @@ func exprsOf(n Node) []expr.Expr {
 		return e
 	}
 	switch n.(type) {
-	case *Values, *Relation, *Filter, *Project, *Aggregate, *Join, *Interpolate, *Sort, *Window, *Lookup:
+	case *Values, *Relation, *Filter, *Project, *Aggregate, *Join, *Interpolate, *Sort, *Window, *Lookup, *Nearest:
 		mapExprs(n, add)
 	}
 	return list
@@ -290,7 +290,7 @@ func sameStep(a, b Node) bool {
 		return ok && len(a.Keys) == len(b.Keys) && sameCalls(a.Calls, b.Calls)
 	case *Join:
 		b, ok := b.(*Join)
-		return ok && a.Kind == b.Kind && len(a.LeftKeys) == len(b.LeftKeys)
+		return ok && a.Kind == b.Kind && len(a.LeftKeys) == len(b.LeftKeys) && (a.Near == nil) == (b.Near == nil)
 	case *Interpolate:
 		b, ok := b.(*Interpolate)
 		return ok && a.Outside == b.Outside && len(a.LeftKeys) == len(b.LeftKeys)

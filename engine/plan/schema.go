@@ -236,6 +236,9 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 	case *Join:
 		c := *n
 		c.LeftKeys, c.RightKeys, c.Rest = mapList(n.LeftKeys, f), mapList(n.RightKeys, f), mapMaybe(n.Rest, f)
+		if n.Near != nil {
+			c.Near = &Near{f(n.Near.Left), f(n.Near.Right), f(n.Near.Within)}
+		}
 		return &c
 	case *Interpolate:
 		c := *n
@@ -248,6 +251,10 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 		return &c
 	case *Window:
 		return n.mapped(f)
+	case *Nearest:
+		c := *n
+		c.Point, c.At, c.Keep = f(n.Point), f(n.At), mapMaybe(n.Keep, f)
+		return &c
 	case *Lookup:
 		c := *n
 		c.Keys, c.Values = mapList(n.Keys, f), mapList(n.Values, f)
