@@ -2,20 +2,21 @@ package voronoi
 
 import (
 	"context"
-	"errors"
 
 	"nearcell/voronoi/polyhedron"
 	"nearcell/voronoi/solid"
 )
 
-// Polyhedra of cells, for files and pictures. Measures need none of this: see Measure.
+// NoPiecesError says that a solid knows no convex parts of itself, or that there is no
+// solid, so that cells may have no end.
+type NoPiecesError struct{ Kind string } // of the solid; "": none
 
-var (
-	// ErrOpenCells: without a solid some cells run to infinity, and no polyhedron is one.
-	ErrOpenCells = errors.New("voronoi: cells that run to infinity are no polyhedra")
-	// ErrNoConvexParts: the solid is neither convex nor known as convex parts.
-	ErrNoConvexParts = errors.New("voronoi: the solid is not known as convex parts")
-)
+func (e *NoPiecesError) Error() string {
+	if e.Kind == "" {
+		return "voronoi: without a solid, cells may have no end"
+	}
+	return "voronoi: a " + e.Kind + " knows no convex parts of itself"
+}
 
 // Piece is a convex polyhedron: a cell, or what of it lies in a convex part of the solid.
 type Piece struct {
@@ -26,81 +27,70 @@ type Piece struct {
 
 // PieceFace is a face of a Piece.
 type PieceFace struct {
-	Loop  []int32 // its corners, counter-clockwise as seen from outside
 	Kind  FaceKind
-	Walls [][]Vec // ToSeam: the convex parts of it that are a wall all the same
-	With  int32   // ToSite: the site on its other side, of several at a place the first; else -1
+	Other int32   // ContactFace: the site on its other side, of several at a place the first; else -1
+	Loop  []int32 // its corners, counter-clockwise as seen from outside
+	Walls [][]Vec // SeamFace: the convex parts of it that are a wall all the same
 }
 
 // FaceKind is what a face of a Piece is.
 type FaceKind uint8
 
 const (
-	ToSite FaceKind = iota // part of a contact
-	ToWall                 // part of a wall of the solid
-	ToSeam                 // where pieces of one cell meet, but for its Walls: not a face of the cell
+	ContactFace FaceKind = iota // part of a contact
+	WallFace                    // part of a wall of the solid
+	SeamFace                    // where pieces of one cell meet, but for its Walls: not a face of the cell
 )
 
-// Pieces calls yield once for each of the given sites, in their order (nil: all sites in
-// theirs), with the pieces of its cell: one where the solid is convex, else one for each
-// convex part of the solid that the cell reaches into with a volume. Their volumes add up to
-// that of the cell. The pieces are the callee's to keep; sites outside the solid have
-// none, sites at one place have the same. Corners are rounded, as all constructed points are:
-// neighbours' corners agree within 1e-12 of a cell's reach or so, not to the bit.
+// Pieces gives the cells of the given sites (nil: all) as convex polyhedra: one where the
+// solid is convex, else one for each convex part of the solid that the cell reaches into
+// with a volume. Entry i of the answer belongs to the site i of those asked for; sites
+// outside the solid have none, sites at one place have the same. The volumes of the pieces
+// of a cell add up to that of the cell. Corners are rounded, as all constructed points
+// are: neighbours' corners agree within 1e-12 of a cell's reach or so, not to the bit. It
+// holds some 3 kB for each cell of three dimensions.
 //
-// It fails with ErrOpenCells without a solid, with ErrNoConvexParts in a solid that is not
-// solid.Divided, such as a mesh. An error of yield ends the calls and is returned.
-func (d *Diagram) Pieces(ctx context.Context, sites []int32, yield func(site int32, pieces []Piece) error) error {
+// It fails with *NoPiecesError without a solid and in a solid that is not solid.Divided,
+// such as a mesh; with *NoSuchSiteError, and with ctx's error.
+func (d *Diagram) Pieces(ctx context.Context, sites []int32) ([][]Piece, error) {
 	parts, err := d.convexParts()
 	if err != nil {
-		return err
+		return nil, err
 	}
-	if sites == nil {
-		sites = make([]int32, len(d.cell))
-		for i := range sites {
-			sites[i] = int32(i)
-		}
+	r, err := d.request(sites)
+	if err != nil {
+		return nil, err
 	}
-	const block = 4096 // cells whose pieces are held at a time
-	for len(sites) > 0 {
-		n := min(block, len(sites))
-		r, err := d.request(sites[:n])
-		if err != nil {
-			return err
-		}
-		made := make([][]Piece, n)
-		err = d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
-			b.use(nil, nil)
-			pieces := b.pieces(r.cells[k], parts)
-			for _, row := range r.rows[r.start[k]:r.start[k+1]] {
-				made[row] = pieces
-			}
-			return nil
-		})
-		if err != nil {
-			return err
-		}
-		for row, pieces := range made {
-			if err := yield(sites[row], pieces); err != nil {
-				return err
-			}
-		}
-		sites = sites[n:]
+	g, err := d.choose(ctx, Faces, len(r.cells))
+	if err != nil {
+		return nil, err
 	}
-	return nil
+	if g != nil {
+		g.list()
+	}
+	out := make([][]Piece, len(r.sites))
+	err = d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
+		b.use(g, nil)
+		pieces := b.pieces(r.cells[k], parts)
+		for _, row := range r.rows[r.start[k]:r.start[k+1]] {
+			out[row] = pieces
+		}
+		return nil
+	})
+	return out, err
 }
 
 // convexParts are the parts of a solid that is not convex; nil for one that is.
 func (d *Diagram) convexParts() (solid.Divided, error) {
 	if d.solid == nil {
-		return nil, ErrOpenCells
+		return nil, &NoPiecesError{}
 	}
 	if d.convex {
 		return nil, nil
 	}
 	parts, ok := d.solid.(solid.Divided)
 	if !ok {
-		return nil, ErrNoConvexParts
+		return nil, &NoPiecesError{d.solid.Facts().Kind}
 	}
 	return parts, nil
 }
@@ -147,12 +137,12 @@ func (b *builder) piece(c *polyhedron.Cell, at Vec) Piece {
 	}
 	for i := range c.NumFaces() {
 		label, loop := c.Face(i)
-		f := PieceFace{Loop: append([]int32(nil), loop...), Kind: ToSeam, With: -1} // a side of a convex part, until seams has looked
+		f := PieceFace{Kind: SeamFace, Other: -1, Loop: append([]int32(nil), loop...)} // a side of a convex part, until seams has looked
 		switch _, wall := polyhedron.WallNumber(label); {
 		case label >= 0 && label != partLabel:
-			f.Kind, f.With = ToSite, b.d.site[label]
+			f.Kind, f.Other = ContactFace, b.d.site[label]
 		case wall && b.d.convex:
-			f.Kind = ToWall
+			f.Kind = WallFace
 		}
 		p.Faces = append(p.Faces, f)
 	}

@@ -37,8 +37,13 @@ func piecesAreTheCell(t *testing.T, d *Diagram, body solid.Solid) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	row, total := 0, 0.0
-	err = d.Pieces(context.Background(), nil, func(site int32, pieces []Piece) error {
+	all, err := d.Pieces(context.Background(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	total := 0.0
+	for row, pieces := range all {
+		site := int32(row)
 		volume, walls := 0.0, 0.0
 		seen := map[int32]float64{}
 		for i := range pieces {
@@ -48,11 +53,11 @@ func piecesAreTheCell(t *testing.T, d *Diagram, body solid.Solid) {
 			for _, f := range p.Faces {
 				a := length(areaVector(p.corners(&f)))
 				switch f.Kind {
-				case ToSite:
-					seen[f.With] += a
-				case ToWall:
+				case ContactFace:
+					seen[f.Other] += a
+				case WallFace:
 					walls += a
-				case ToSeam:
+				case SeamFace:
 					for _, w := range f.Walls {
 						walls += length(areaVector(w))
 					}
@@ -73,11 +78,6 @@ func piecesAreTheCell(t *testing.T, d *Diagram, body solid.Solid) {
 			}
 		}
 		total += volume
-		row++
-		return nil
-	})
-	if err != nil {
-		t.Fatal(err)
 	}
 	near(t, "all pieces", total, body.Volume(), 1e-9*body.Volume())
 }
@@ -101,9 +101,9 @@ func byFaces(t *testing.T, p *Piece) (volume float64) {
 }
 
 func TestPiecesAreRefused(t *testing.T) {
-	none := func(int32, []Piece) error { return nil }
 	d := diagram(t, random(9, 1), Options{})
-	if err := d.Pieces(context.Background(), nil, none); !errors.Is(err, ErrOpenCells) {
+	var none *NoPiecesError
+	if _, err := d.Pieces(context.Background(), nil); !errors.As(err, &none) || none.Kind != "" {
 		t.Errorf("without a solid: %v", err)
 	}
 }

@@ -12,7 +12,7 @@ func seams(pieces []Piece, tol float64) {
 	for i := range pieces {
 		for k := range pieces[i].Faces {
 			f := &pieces[i].Faces[k]
-			if f.Kind != ToSeam {
+			if f.Kind != SeamFace {
 				continue
 			}
 			outline := pieces[i].corners(f)
@@ -24,7 +24,7 @@ func seams(pieces []Piece, tol float64) {
 				}
 				for m := range pieces[j].Faces {
 					g := &pieces[j].Faces[m]
-					if g.Kind == ToSite {
+					if g.Kind == ContactFace {
 						continue
 					}
 					other := pieces[j].corners(g)
@@ -39,7 +39,7 @@ func seams(pieces []Piece, tol float64) {
 			}
 			switch {
 			case !met:
-				f.Kind = ToWall
+				f.Kind = WallFace
 			default:
 				f.Walls = walls
 			}
