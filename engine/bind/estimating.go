@@ -107,6 +107,11 @@ func (b *binder) estimatingClause(rel *relation.Bound, c lang.Clause) (ok bool, 
 		return true, nil
 	case *lang.AtPointsClause:
 		return true, nil // bound with its rows
+	case *lang.WeightsClause:
+		rel.Clauses.Weights, err = b.word(&c.Word, "a way to weigh cells that touch", "AREA", "CONTACT", "CONDUCTANCE")
+		return true, err
+	case *lang.AgainstClause:
+		return true, nil // likewise
 	case *lang.AtPlaneClause:
 		return true, problem.New("clauses", b.at(c), "AT %s = … is a plane; %s needs points", c.Axis.Text, rel.Def.Noun).
 			WithHint("AT (GRID OF solid STEP 1), AT a table with x, y, z, or AT (SELECT …)")
@@ -184,6 +189,9 @@ func (b *binder) estimatingInput(rel *relation.Bound, r *lang.Relation) ([]plan.
 	}
 	if takes["METHOD"] && rel.Clauses.MethodText == "" {
 		rel.Clauses.MethodText = "SIBSON"
+	}
+	if takes["WEIGHTS"] && rel.Clauses.Weights == "" {
+		rel.Clauses.Weights = "CONDUCTANCE"
 	}
 	if takes["FOR"] && len(rel.Clauses.For) == 0 {
 		return nil, problem.New("clauses", b.at(r), "%s needs the reading: FOR", rel.Def.Noun).WithHint("%s OF %s FOR temp …", rel.Def.Noun, rel.Name)

@@ -48,6 +48,13 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 	if err != nil {
 		return bound{}, err
 	}
+	if def.Pairs {
+		other, err := b.against(rel, r, campaign)
+		if err != nil {
+			return bound{}, err
+		}
+		beside = append(beside, other)
+	}
 	return b.relationNode(rel, r, in, beside...)
 }
 
@@ -291,7 +298,8 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 	if within != nil && unclipped != nil {
 		return problem.New("clauses", b.at(unclipped), "WITHIN and UNCLIPPED say the opposite of each other")
 	}
-	if within == nil && unclipped == nil && measured == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") && rel.Def.Noun != "REPRESENTATIVES" {
+	if within == nil && unclipped == nil && measured == nil && !campaign && slices.Contains(rel.Def.Clauses, "WITHIN") &&
+		rel.Def.Noun != "REPRESENTATIVES" && !rel.Def.Pairs {
 		b.say(note.Note, note.Sites, "%s has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along", rel.Title())
 	}
 	return nil

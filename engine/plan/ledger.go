@@ -47,5 +47,5 @@ func (o Origin) volume() bool {
 	}
 	b := o.Relation.Bound
 	c := b.Columns[o.Column]
-	return b.Def.Own && c.Power == 3 && c.Name == "volume" && b.Closed()
+	return (b.Def.Own || b.Def.Pairs) && c.Power == 3 && c.Name == "volume" && b.Closed()
 }

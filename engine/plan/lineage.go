@@ -127,7 +127,7 @@ func Removals(n *Aggregate) []Removal {
 			used = append(used, reads(c.Args[0], input)...)
 		}
 		for _, o := range used {
-			if o.extensive() && o.Relation.Bound.Def.Own && !seen[o.Relation] {
+			if o.extensive() && (o.Relation.Bound.Def.Own || o.Relation.Bound.Def.Pairs) && !seen[o.Relation] {
 				seen[o.Relation] = true
 				found = append(found, removalsAbove(n.Input, o.Relation)...)
 			}
@@ -299,6 +299,10 @@ func identity(r *Relation, input []Origin) []int {
 	for i, c := range b.Columns {
 		if c.Role != relation.NoRole {
 			if c.Role == relation.PartRole { // a cell has a row in each part
+				want = append(want, i)
+			}
+		} else if b.Def.Pairs {
+			if c.Name == "a" || c.Name == "b" {
 				want = append(want, i)
 			}
 		} else if b.Def.Own {

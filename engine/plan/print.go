@@ -136,6 +136,9 @@ func clauses(b *relation.Bound) string {
 	if c.MethodText != "" {
 		text += " by " + c.MethodText
 	}
+	if c.Weights != "" {
+		text += " weights " + c.Weights
+	}
 	for i, each := range c.Each {
 		if i == 0 {
 			text += " for each "

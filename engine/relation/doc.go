@@ -70,6 +70,14 @@
 // relation reads of its input whatever is asked of it is told by Bound.Reads; a clause
 // that names rows of its own (EXPECTING) has them in Bound.Beside.
 //
+// OVERLAY has a second campaign (Bound.Other), whose rows are those of Beside[0] and make
+// parts of their own. Each part of the first is laid over those of the second with its
+// value of FOR EACH, in whatever zones: what two solids do not share is in no row. Its rows
+// come by a, then by b; where several rows share a place, each pair has its share.
+//
+// AUTOCORRELATION and CLUSTERS are about those sites that have a reading and touch another;
+// the mathematics is that of package spatial.
+//
 // A new relation is one file and one registry line.
 //
 // # Laws

@@ -8,19 +8,16 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, estimates, weights, residuals, exceedance, grid, transect,
+var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, estimates, weights, residuals, exceedance, overlays, autocorrelation, clusters, grid, transect,
 	seriesOf, audit, episodes, extremes, representatives}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
 var planned = map[string]string{
-	"PLACEMENTS":      "proposed further site",
-	"REDUNDANCY":      "site, least missed first",
-	"SPACING":         "campaign",
-	"SECTION":         "cell cut by the plane",
-	"OVERLAY":         "pair of cells that share space",
-	"AUTOCORRELATION": "campaign",
-	"CLUSTERS":        "site",
+	"PLACEMENTS": "proposed further site",
+	"REDUNDANCY": "site, least missed first",
+	"SPACING":    "campaign",
+	"SECTION":    "cell cut by the plane",
 }
 
 // All are the relations that there are.

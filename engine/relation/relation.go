@@ -71,6 +71,7 @@ type Definition struct {
 	Later    []string // clauses of the language that it will take and does not take yet
 	Own      bool     // its rows carry the sites' own columns
 	Zoned    bool     // it takes zones: every diagram it asks for is that of a Part (see zones.go)
+	Pairs    bool     // a row is a pair of cells, told apart by the columns a and b, and their volumes add up to the space
 	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
 	NotYet   []string // columns of the language that are not there yet
 	Open     func(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
@@ -101,6 +102,8 @@ type Clauses struct {
 	On  []int // the one named by ON, or none
 	For []int // those named by FOR
 
+	Weights string // of cells that touch: AREA, CONTACT or CONDUCTANCE
+
 	Estimating
 }
 
@@ -112,6 +115,7 @@ type Bound struct {
 	ID      int // column of the input that identifies a site, -1 with OverRows
 	X, Y, Z int
 	Beside  []Beside // what clauses such as EXPECTING name
+	Other   *Bound   // the sites of AGAINST, whose rows are those of Beside[0]
 	Clauses Clauses
 	Log     LogClauses // of relations over a log
 	Choice  ChoiceClauses

@@ -45,6 +45,12 @@ var ofSites = []Entry{
 		Example: "CREATE TABLE places AS (VALUES (200, 10, 5)) POSITION (column1, column2, column3) GEOGRAPHIC;",
 	},
 	{
+		Code:    "systems",
+		Meaning: "Two campaigns are to share space and their coordinates have nothing to do with each other, such as local metres about two different middles.",
+		WayOut:  "Import both together, in one file, so that they have one middle, or bring both into one FRAME.",
+		Example: "CREATE CAMPAIGN far AS (VALUES ('A', 47.1, 8.2, 400), ('B', 47.2, 8.2, 400))\n  ID column1 POSITION (column2, column3, column4) GEOGRAPHIC;\nSELECT * FROM OVERLAY OF hall AGAINST far;",
+	},
+	{
 		Code:    "no-place",
 		Meaning: "A site of a new campaign has no coordinate.",
 		WayOut:  "Mend the file, or leave the row out: REFUSED TO for a file, WHERE … IS NOT NULL for a query.",
