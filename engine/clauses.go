@@ -36,7 +36,8 @@ type clauses struct {
 	system      string   // catalog.Object.System
 	placedNotes []string // how positions came about
 	file        reader.Options
-	fileClause  lang.Node // one of the clauses that only a file can have
+	fileClause  lang.Node   // one of the clauses that only a file can have
+	fileClauses []lang.Node // all of them
 	refusedTo   *lang.Text
 	times       *lang.TimeReading
 	unpivot     *lang.UnpivotReading
@@ -123,7 +124,7 @@ func (c *clauses) belongs(r lang.Reading) error {
 
 // readFile reads the clauses that say how a file is written.
 func (c *clauses) readFile(r lang.Reading) (err error) {
-	c.fileClause = r
+	c.fileClause, c.fileClauses = r, append(c.fileClauses, r)
 	switch r := r.(type) {
 	case *lang.DelimiterReading:
 		c.file.Delimiter, err = c.oneCharacter(r.Text, "DELIMITER")
@@ -141,7 +142,9 @@ func (c *clauses) readFile(r lang.Reading) (err error) {
 	case *lang.HeadingReading:
 		c.file.Heading, err = c.wholeNumber(r.Line, "HEADING AT LINE", 1, math.MaxInt32)
 	case *lang.SheetReading:
-		err = problem.NotThereYet(c.st.at(r), "SHEET")
+		if c.file.Sheet = r.Text.Value; c.file.Sheet == "" {
+			err = problem.New("clause", c.st.at(r.Text), "SHEET is the name of a sheet, or its number such as '2'")
+		}
 	case *lang.EncodingReading:
 		err = c.readEncoding(r)
 	case *lang.TimeReading:

@@ -5,13 +5,16 @@ import (
 	"context"
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"nearcell/catalog"
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
 	"nearcell/catalog/reader/csv"
+	"nearcell/catalog/reader/packed"
 	"nearcell/catalog/reader/timeform"
+	"nearcell/catalog/reader/xlsx"
 	"nearcell/engine/note"
 	"nearcell/engine/present"
 	"nearcell/engine/problem"
@@ -28,11 +31,18 @@ func (s *Session) describeFile(ctx context.Context, st *statement, t *lang.Descr
 	if err != nil {
 		return err
 	}
-	if _, err := readerFor(st.at(t.File), t.File.Value); err != nil {
+	form, err := formatOf(st.at(t.File), t.File.Value)
+	if err != nil {
 		return err
 	}
-	g := &fileGuess{file: t.File.Value, source: source, layout: csv.Sniff(source.Data)}
-	if err := g.read(ctx); err != nil {
+	if source, err = unpacked(st, t.File, source); err != nil {
+		return err
+	}
+	g := &fileGuess{file: t.File.Value, source: source, form: form}
+	if err = g.sniff(ctx); err == nil {
+		err = g.read(ctx)
+	}
+	if err != nil {
 		return importProblem(err, st.at(t.File), t.File.Value)
 	}
 	g.shape()
@@ -82,6 +92,7 @@ func firstLine(s string) string {
 
 // freeName makes a name out of that of the file, one that the catalog has not yet.
 func (s *Session) freeName(file string) string {
+	file, _ = packed.Ending(file)
 	base := file[strings.LastIndexAny(file, `/\`)+1:]
 	if i := strings.LastIndexByte(base, '.'); i > 0 {
 		base = base[:i]
@@ -144,6 +155,7 @@ func (s *Session) showGuess(st *statement, t *column.Table, text string) error {
 type fileGuess struct {
 	file   string
 	source *reader.Source
+	form   *format
 	layout csv.Layout
 	o      reader.Options
 	result *reader.Result
@@ -168,14 +180,10 @@ func (g *fileGuess) read(ctx context.Context) error {
 	for round := 0; ; round++ {
 		o := g.o
 		g.refused, g.faults = 0, nil
-		o.Refused = func(_ int, _ []byte, f reader.Fault) error {
-			g.refused++
-			if len(g.faults) < 1000 {
-				g.faults = append(g.faults, f)
-			}
-			return nil
+		if slices.Contains(g.form.clauses, "REFUSED") {
+			o.Refused = g.refuse
 		}
-		result, err := csv.Reader{}.Read(ctx, g.source, o)
+		result, err := g.form.read.Read(ctx, g.source, o)
 		if err != nil {
 			return err
 		}
@@ -184,6 +192,37 @@ func (g *fileGuess) read(ctx context.Context) error {
 			return nil
 		}
 	}
+}
+
+// refuse takes a line at fault.
+func (g *fileGuess) refuse(_ int, _ []byte, f reader.Fault) error {
+	g.refused++
+	if len(g.faults) < 1000 {
+		g.faults = append(g.faults, f)
+	}
+	return nil
+}
+
+// sniff guesses the layout of what is no table by itself.
+func (g *fileGuess) sniff(ctx context.Context) error {
+	switch g.form {
+	case delimited:
+		g.layout = csv.Sniff(g.source.Data)
+	case asBook:
+		text, rowOf, err := xlsx.Text(ctx, g.source, reader.Options{})
+		if err != nil {
+			return err
+		}
+		g.layout = csv.Sniff(text)
+		g.layout.Heading = rowOf(g.layout.Heading)
+		for i, text := range g.layout.Preamble { // as the cells say it
+			g.layout.Preamble[i] = strings.Trim(strings.ReplaceAll(strings.TrimRight(text, ","), `""`, `"`), `"`)
+		}
+		g.layout.Delimiter, g.layout.Unclear, g.layout.DecimalMark = ',', false, '.'
+	default:
+		g.layout = csv.Layout{Delimiter: ',', DecimalMark: '.', First: true}
+	}
+	return nil
 }
 
 // learn takes clauses from what a reading met; false where nothing is new.
@@ -198,7 +237,7 @@ func (g *fileGuess) learn() bool {
 	for _, f := range g.faults {
 		text := strings.TrimSpace(f.Text)
 		switch f.Kind {
-		case reader.NotANumber, reader.NotFinite, reader.NotATimestamp, reader.NotThisTime, reader.NotABoolean:
+		case reader.NotANumber, reader.NotFinite, reader.NotATimestamp, reader.NotThisTime, reader.NotABoolean, reader.OtherKind:
 			if csv.MissingWord(text) || !strings.ContainsAny(text, "0123456789") && len(text) <= 16 && text != "" {
 				miss(text)
 			}
@@ -236,7 +275,11 @@ func (g *fileGuess) misses(text string) bool {
 func (g *fileGuess) findings() []string {
 	t, l := g.result.Table, &g.layout
 	delimiters := map[rune]string{',': "commas", ';': "semicolons", '\t': "tabs", '|': "bars"}
-	list := []string{fmt.Sprintf("%s, %s and %s, divided by %s", g.file, plural(t.N, "row"), plural(len(t.Cols), "column"), delimiters[l.Delimiter])}
+	divided := ", divided by " + delimiters[l.Delimiter]
+	if g.form != delimited {
+		divided = ""
+	}
+	list := []string{fmt.Sprintf("%s, %s and %s%s", g.file, plural(t.N, "row"), plural(len(t.Cols), "column"), divided)}
 	add := func(format string, args ...any) { list = append(list, fmt.Sprintf(format, args...)) }
 	if l.Encoding != "" {
 		add("its bytes are no UTF-8; they are read as %s: look at letters such as ü and °", l.Encoding)

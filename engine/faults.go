@@ -51,7 +51,7 @@ func importProblem(err error, at problem.Place, file string) error {
 	}
 	first := faults.List[0]
 	count := len(faults.List) + faults.More
-	if first.Line == 0 && count == 1 {
+	if first.Line == 0 && first.Record == 0 && count == 1 {
 		p := problem.New("import", at, "'%s' was not imported: %s", first.File, faultText(first)).Because(err)
 		p.Hint = faultHint(first)
 		return p
@@ -91,7 +91,7 @@ func allFieldCounts(list []reader.Fault) bool {
 func faultHint(f reader.Fault) string {
 	switch f.Kind {
 	case reader.NotANumber, reader.NotATimestamp, reader.NotABoolean, reader.NotFinite, reader.OutOfRange, reader.NotThisTime:
-		if f.Text == "" {
+		if f.Text == "" || f.Source == "" && f.Cell == "" { // a binary file, or points: nothing can be set aside
 			return ""
 		}
 		missing := fmt.Sprintf("MISSING %s reads such a value as missing, REFUSED TO 'refused.csv' sets such lines aside", quoted(f.Text))
@@ -139,7 +139,7 @@ func faultHint(f reader.Fault) string {
 			return "try ENCODING 'windows-1252'"
 		}
 	}
-	return ""
+	return formatHint(f)
 }
 
 // isCode tells a code such as 5A among numbers from a number with a slip in it.
@@ -201,6 +201,12 @@ func byteOffset(line string, n int) int {
 }
 
 func faultPlaceShort(f reader.Fault) string {
+	switch {
+	case f.Cell != "":
+		return f.Cell + ": "
+	case f.Record > 0:
+		return fmt.Sprintf("row %d: ", f.Record)
+	}
 	if f.Line == 0 {
 		return " "
 	}
@@ -211,6 +217,12 @@ func faultPlaceShort(f reader.Fault) string {
 }
 
 func faultPlace(f reader.Fault) string {
+	switch {
+	case f.Cell != "":
+		return f.Cell + ": "
+	case f.Record > 0:
+		return fmt.Sprintf("row %d: ", f.Record)
+	}
 	if f.Column == 0 {
 		return fmt.Sprintf("line %d: ", f.Line)
 	}
@@ -284,7 +296,7 @@ func filesFaultText(f reader.Fault, in string) string {
 	case reader.NotInEncoding:
 		return fmt.Sprintf("bytes that are no %s text", f.Detail)
 	}
-	return f.Kind.String()
+	return formatFaultText(f, in)
 }
 
 func textOrNone(unit string) string {

@@ -8,6 +8,7 @@ import (
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
 	"nearcell/catalog/reader/csv"
+	"nearcell/catalog/reader/packed"
 	"nearcell/lang"
 )
 
@@ -209,6 +210,9 @@ func (g *fileGuess) statement() string {
 			add("COORDINATES IN %s", g.length)
 		}
 	}
+	if g.form == asBook && len(g.result.Facts.Sheets) > 0 {
+		add("SHEET %s", lang.QuoteText(g.result.Facts.Sheet))
+	}
 	if !g.layout.First {
 		add("HEADING AT LINE %d", g.layout.Heading)
 	}
@@ -223,11 +227,15 @@ func (g *fileGuess) statement() string {
 	}
 	lines = append(lines, g.listClauses()...)
 	if g.refused > 0 {
-		stem := g.file
+		stem, _ := packed.Ending(g.file)
 		if i := strings.LastIndexByte(stem, '.'); i > strings.LastIndexAny(stem, `/\`)+1 {
 			stem = stem[:i]
 		}
-		add("REFUSED TO %s", lang.QuoteText(stem+"-refused.csv"))
+		ending := "-refused.csv"
+		if g.form == asJSON {
+			ending = "-refused.jsonl"
+		}
+		add("REFUSED TO %s", lang.QuoteText(stem+ending))
 	}
 	return strings.Join(lines, "\n  ") + ";"
 }

@@ -37,11 +37,14 @@ func (s *Session) createFrame(ctx context.Context, st *statement, t *lang.Create
 	if err != nil {
 		return err
 	}
-	read, err := readerFor(st.at(t.File), t.File.Value)
+	form, err := formatOf(st.at(t.File), t.File.Value)
 	if err != nil {
 		return err
 	}
-	result, err := read.ReadFiles(ctx, []*reader.Source{source}, reader.Options{})
+	if source, err = unpacked(st, t.File, source); err != nil {
+		return err
+	}
+	result, err := form.read.ReadFiles(ctx, []*reader.Source{source}, reader.Options{})
 	if err != nil {
 		return problem.New("control-points", st.at(t.File), "the pairs of points in '%s' cannot be read: %v", t.File.Value, err)
 	}

@@ -13,27 +13,19 @@ import (
 	"nearcell/catalog"
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
-	"nearcell/catalog/reader/csv"
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
 	"nearcell/lang"
 )
 
-// readerFor is the reader of a file by its ending; files without a known one
-// are read as CSV, since loggers write .txt and .dat.
-func readerFor(at problem.Place, name string) (reader.Reader, error) {
-	switch ending := strings.ToLower(filepath.Ext(name)); ending {
-	case ".xlsx", ".xls", ".parquet", ".las", ".laz", ".ply", ".jsonl", ".json", ".gz", ".zst":
-		return nil, problem.NotThereYet(at, "reading "+ending+" files")
-	}
-	return csv.Reader{}, nil
-}
-
 // importFile reads the file or the files of a CREATE statement and says what it met.
 func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateData, c *clauses,
 	object *catalog.Object) (*column.Table, error) {
-	sources, read, err := openSources(st, t)
+	sources, form, err := openSources(st, t)
 	if err != nil {
+		return nil, err
+	}
+	if err := form.suits(c); err != nil {
 		return nil, err
 	}
 	named := t.File
@@ -41,6 +33,10 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 		named = t.Files
 	}
 	o := c.file
+	o.Threads = s.o.Threads
+	if s.o.Progress != nil {
+		o.Progress = func(done, total int64) { s.o.Progress(int(done), int(total)) }
+	}
 	if c.id != nil {
 		o.TextColumns = []string{c.id.Name.Text}
 	} else if object.Kind == catalog.Campaign {
@@ -54,7 +50,7 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 		o.Refused = refused.take
 	}
 	o.Censored = c.censoredFields()
-	result, err := read.ReadFiles(ctx, sources, o)
+	result, err := form.read.ReadFiles(ctx, sources, o)
 	if err != nil {
 		return nil, c.importProblem(err, st.at(named), named.Value)
 	}
@@ -91,32 +87,40 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 }
 
 // openSources reads the bytes of what a CREATE statement names, in name order.
-func openSources(st *statement, t *lang.CreateData) ([]*reader.Source, reader.Reader, error) {
-	if t.File != nil {
-		source, err := openSource(st, t.File)
-		if err != nil {
+func openSources(st *statement, t *lang.CreateData) ([]*reader.Source, *format, error) {
+	named, names := t.File, []string(nil)
+	if named != nil {
+		names = []string{named.Value}
+	} else {
+		named = t.Files
+		var err error
+		if names, err = matching(st, t.Files); err != nil {
 			return nil, nil, err
 		}
-		read, err := readerFor(st.at(t.File), t.File.Value)
-		return []*reader.Source{source}, read, err
-	}
-	names, err := matching(st, t.Files)
-	if err != nil {
-		return nil, nil, err
 	}
 	var sources []*reader.Source
-	var read reader.Reader
+	var form *format
 	for _, name := range names {
-		source, err := openSource(st, &lang.Text{At: t.Files.At, Value: name})
+		at := &lang.Text{At: named.At, Value: name}
+		source, err := openSource(st, at)
 		if err != nil {
 			return nil, nil, err
 		}
-		if read, err = readerFor(st.at(t.Files), name); err != nil {
+		next, err := formatOf(st.at(named), name)
+		if err != nil {
+			return nil, nil, err
+		}
+		if form != nil && next != form {
+			return nil, nil, problem.New("import", st.at(named), "'%s' is %s and '%s' is %s: files that are read as one have one format", names[0], form.name, name, next.name).
+				WithHint("let the pattern name one kind of files")
+		}
+		form = next
+		if source, err = unpacked(st, at, source); err != nil {
 			return nil, nil, err
 		}
 		sources = append(sources, source)
 	}
-	return sources, read, nil
+	return sources, form, nil
 }
 
 // withSourceFile adds the column that tells which file a row was read from.
@@ -235,8 +239,10 @@ func (r *refusals) take(line int, raw []byte, f reader.Fault) error {
 func (r *refusals) save(st *statement, result *reader.Result) error {
 	var buffer bytes.Buffer
 	first := &result.Files[0]
-	buffer.WriteString(first.Heading)
-	r.tag(&buffer, first, "source_file")
+	if first.Heading != "" { // objects of JSON have none, and name their file nowhere
+		buffer.WriteString(first.Heading)
+		r.tag(&buffer, first, "source_file")
+	}
 	facts := map[string]*reader.FileFacts{}
 	for i := range result.Files {
 		facts[result.Files[i].Name] = &result.Files[i]
@@ -270,7 +276,7 @@ func (r *refusals) save(st *statement, result *reader.Result) error {
 
 // tag ends a line, with the name of its file where there are several.
 func (r *refusals) tag(b *bytes.Buffer, f *reader.FileFacts, name string) {
-	if r.many {
+	if r.many && f.Heading != "" {
 		b.WriteRune(f.Delimiter)
 		if strings.ContainsRune(name, f.Delimiter) || strings.ContainsAny(name, "\"\r\n") {
 			name = `"` + strings.ReplaceAll(name, `"`, `""`) + `"`

@@ -17,6 +17,9 @@ func importNotes(r *reader.Result, origin string) []string {
 	add := func(format string, args ...any) {
 		notes = append(notes, origin+": "+fmt.Sprintf(format, args...))
 	}
+	for _, text := range formatNotes(f) {
+		add("%s", text)
+	}
 	for _, c := range f.StayedText {
 		add("column '%s' is TEXT, since %s", c.Column, stayedText(&c, many))
 	}

@@ -38,13 +38,31 @@ const (
 	ColumnAdded                // the column Text is not in the file Detail
 	UnitsDiffer                // the column FieldName has the unit Text here and Detail in the first file
 	NotInEncoding              // bytes that the encoding Detail does not have
+
+	NotTheFormat  // the bytes are no file of the format Detail
+	CutShort      // the file ends within Text: Got of Expected bytes, where these are known
+	Damaged       // Text, a part of the file, cannot be read; Detail is the technical reason
+	TooLarge      // Text would take more than Expected
+	NotSupported  // Text is a part of the format Detail that is not read
+	NothingToRead // no column of the file can be read; Detail is the type of the first
+	BeyondInteger // Text is a whole number beyond 64 bits
+	NoSheet       // there is no sheet Text; Detail lists those there are
+	NoRows        // the sheet Text has no cell with a value
+	NotJSON       // Text stands where Want should: Detail
+	KeyRepeated   // the key Text stands twice in one object
+	NotObject     // the record is no object
+	OtherKind     // Text is of another kind than most values of the column, of the kind Detail
+	NestedList    // a list within the object, key FieldName
+	TypesDiffer   // the column FieldName has the type Text here and Detail in the files before
 )
 
 var kindNames = [...]string{"no fault", "wrong number of fields", "stray quotation mark", "quotation mark not closed",
 	"not a number", "not a time stamp", "not a truth value", "not a finite number", "number out of range",
 	"not UTF-8", "UTF-16", "empty file", "no heading", "heading repeated", "heading empty", "NUL byte",
 	"not of the pattern", "no such time", "skipped time", "repeated time", "not in the preamble", "repeated in the preamble",
-	"column taken", "column missing", "column added", "units differ", "not of the encoding"}
+	"column taken", "column missing", "column added", "units differ", "not of the encoding",
+	"not of the format", "cut short", "damaged", "too large", "not supported", "nothing to read", "beyond 64 bits", "no sheet", "no rows",
+	"not JSON", "key repeated", "no object", "of another kind", "a list", "types differ"}
 
 // String names the kind for tests and logs.
 func (k FaultKind) String() string {
@@ -68,6 +86,9 @@ type Fault struct {
 	Expected  int
 	Source    string // the line of the file that Line counts
 	Detail    string // as the kind says
+
+	Cell   string // of a sheet: Data!B7
+	Record int64  // of a binary file, from 1; 0: the file as a whole
 }
 
 // Faults is the error that files at fault give.

@@ -28,6 +28,22 @@ type Source struct {
 	Name    string // as the user wrote it; faults carry it
 	Data    []byte
 	ModTime time.Time // zero where there is none
+	Stored  *Stored   // where Data was unpacked: the file as it lies on the disk
+}
+
+// Stored is what is known of a file that was unpacked to be read.
+type Stored struct {
+	SHA256 string
+	Bytes  int64
+	Form   string // "gzip", "zstd"
+}
+
+// Size is how many bytes the file has on the disk.
+func (s *Source) Size() int64 {
+	if s.Stored != nil {
+		return s.Stored.Bytes
+	}
+	return int64(len(s.Data))
 }
 
 // Open reads a file. name is what faults will call it, path where it is.
@@ -44,7 +60,11 @@ func Open(name, path string) (*Source, error) {
 }
 
 // SHA256 is the checksum of the bytes in hexadecimal.
+// Of a packed file they are those on the disk.
 func (s *Source) SHA256() string {
+	if s.Stored != nil {
+		return s.Stored.SHA256
+	}
 	sum := sha256.Sum256(s.Data)
 	return hex.EncodeToString(sum[:])
 }
@@ -69,6 +89,9 @@ type Options struct {
 	// An error from it stops the import. Faults of the file as a whole (no
 	// heading, …) are not handed over.
 	Refused func(line int, raw []byte, f Fault) error
+
+	Sheet   string // of a workbook, its name or its number from 1; "": the first that is not hidden
+	Threads int    // 0: all cores
 
 	MaxFaults int                     // how many faults are listed; 0: 10. The others are counted.
 	Progress  func(done, total int64) // bytes, may be nil
@@ -144,7 +167,37 @@ type Facts struct {
 	UnknownUnits      []string        // columns of Options.Units that the file has not
 	UnknownText       []string        // columns of Options.TextColumns that the file has not
 	UnitConflicts     []UnitsConflict // the heading says one unit, Options.Units another
+
+	Columns []ColumnNote // of formats that have more to tell of their columns
+	Format  string       // "LAS 1.4, point format 6"; "" where the name of the file tells
+	Sheet   string       // the one that was read
+	Sheets  []string     // the others that are not hidden, where Options.Sheet names none
+	Hidden  int          // how many are hidden
+	Unread  int          // PLY: faces passed over; LAS: points that the file has behind those it counts
 }
+
+// ColumnNote is what became of a column, or of some of its values.
+type ColumnNote struct {
+	Column string
+	Kind   NoteKind
+	Count  int    // of values
+	Detail string // as the kind says
+}
+
+// NoteKind says what a ColumnNote tells.
+type NoteKind uint8
+
+const (
+	NotRead       NoteKind = iota + 1 // the column is left out; Detail is its type
+	Inexact                           // decimals that a REAL holds rounded; Detail is the first
+	NaNMissing                        // NaN was read as NULL
+	TimesRounded                      // time stamps were rounded to microseconds; Detail is the unit
+	KeyMissing                        // objects without this key: NULL
+	ErrorCells                        // cells with an error, such as #N/A, read as NULL; Detail is the first place and the error
+	FormulaCells                      // formulas without a value, read as NULL; Detail is the first place
+	MergedCells                       // cells covered by a merged one: NULL; Detail is the first range
+	NoDataMissing                     // values that the file itself declares to be none: NULL
+)
 
 // StayedText tells why a column that looks like numbers is TEXT.
 type StayedText struct {

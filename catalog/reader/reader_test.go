@@ -16,13 +16,13 @@ func TestFaultsError(t *testing.T) {
 // Every kind has a name of its own.
 func TestFaultKinds(t *testing.T) {
 	seen := map[string]FaultKind{}
-	for k := NoFault; k <= NotInEncoding; k++ {
+	for k := NoFault; k <= TypesDiffer; k++ {
 		if other, ok := seen[k.String()]; ok || k.String() == "?" {
 			t.Errorf("%d and %d are called %s", other, k, k)
 		}
 		seen[k.String()] = k
 	}
-	if (NotInEncoding + 1).String() != "?" {
+	if (TypesDiffer + 1).String() != "?" {
 		t.Error("a kind is missing in this test")
 	}
 }

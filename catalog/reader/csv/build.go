@@ -62,7 +62,7 @@ func (im *importer) buildFile(f *file, b *builder) error {
 		if err := im.tick(n, s.pos); err != nil {
 			return err
 		}
-		if s.rec.blank() {
+		if f.skips(s) {
 			continue
 		}
 		ok, err := im.convert(s, f, n, b.cells)

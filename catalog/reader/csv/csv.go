@@ -25,19 +25,35 @@ func (Reader) ReadFiles(ctx context.Context, sources []*reader.Source, o reader.
 	if err := checkOptions(&o); err != nil {
 		return nil, err
 	}
+	im := newImporter(ctx, o)
+	for _, src := range sources {
+		im.add(&file{src: src})
+	}
+	return im.read()
+}
+
+func newImporter(ctx context.Context, o reader.Options) *importer {
 	im := &importer{ctx: ctx, o: o, mark: byte(o.DecimalMark), missing: map[string]bool{}}
 	im.faults.max = o.MaxFaults
 	for _, m := range o.Missing {
 		im.missing[string(trim([]byte(m)))] = true
 	}
-	for _, src := range sources {
-		im.total += 2 * int64(len(src.Data))
-	}
-	for i, src := range sources {
-		f := &file{src: src, facts: reader.FileFacts{Name: src.Name, Bytes: int64(len(src.Data))}}
+	return im
+}
+
+// add puts a file on the list of those to be read.
+func (im *importer) add(f *file) {
+	f.facts = reader.FileFacts{Name: f.src.Name, Bytes: f.src.Size()}
+	im.waiting = append(im.waiting, f)
+	im.total += 2 * int64(len(f.bytes()))
+}
+
+// read reads the files that were added.
+func (im *importer) read() (*reader.Result, error) {
+	for i, f := range im.waiting {
 		im.enter(f)
 		if i == 0 {
-			im.faults.File = src.Name
+			im.faults.File = f.src.Name
 		}
 		if err := im.begin(f); err != nil {
 			return nil, err
@@ -90,6 +106,7 @@ type importer struct {
 	faults  collector
 	facts   reader.Facts
 
+	waiting     []*file // to be begun
 	files       []*file
 	total, done int64 // bytes of both passes, and of the files passed
 
@@ -139,6 +156,7 @@ func (im *importer) infer() error {
 		im.done += int64(len(f.data))
 	}
 	for i := range im.columns {
+		im.columns[i].fixed = im.fixed(i)
 		t, stayed := im.columns[i].decide()
 		im.types = append(im.types, t)
 		if stayed != nil {
@@ -159,7 +177,7 @@ func (im *importer) inferFile(f *file) error {
 		if err := im.tick(k, s.pos); err != nil {
 			return err
 		}
-		if s.rec.blank() {
+		if f.skips(s) {
 			im.facts.Blank++
 			continue
 		}

@@ -12,6 +12,7 @@ import (
 // file is one of the files of an import.
 type file struct {
 	src   *reader.Source
+	given *Records // where the records are made of another format
 	facts reader.FileFacts
 	data  []byte // in UTF-8, without the byte order mark
 	clean bool   // all of it is UTF-8, without NUL bytes
@@ -39,14 +40,50 @@ func (f *file) records() *scanner {
 	return newScanner(f.data, f.facts.Delimiter, f.body, f.bodyLine)
 }
 
+// bytes are those to be read.
+func (f *file) bytes() []byte {
+	if f.given != nil {
+		return f.given.Text
+	}
+	return f.src.Data
+}
+
+// heading is the line that the heading stands in, 0 where it is to be found.
+func (f *file) heading(o *reader.Options) int {
+	if f.given != nil {
+		return f.given.Heading
+	}
+	return o.Heading
+}
+
+// skips reports whether the record that was just read is a blank line.
+func (f *file) skips(s *scanner) bool {
+	return s.rec.blank() && (f.given == nil || !f.given.Whole)
+}
+
+// fixed is the type of a column by the word of a file that has one, else Null.
+func (im *importer) fixed(i int) column.Type {
+	for _, f := range im.files {
+		if f.given == nil || f.given.Types == nil {
+			continue
+		}
+		for k, c := range f.column {
+			if c == i && k < len(f.given.Types) && f.given.Types[k] != column.Null {
+				return f.given.Types[k]
+			}
+		}
+	}
+	return column.Null
+}
+
 // begin finds and reads the heading of a file.
 func (im *importer) begin(f *file) error {
 	if !im.decode(f) {
 		return im.faults.err()
 	}
-	pos, line, ok := findHeading(f.data, im.o.Heading)
+	pos, line, ok := findHeading(f.data, f.heading(&im.o))
 	if !ok {
-		im.faults.add(reader.Fault{Kind: reader.NoHeading, Line: max(im.o.Heading, 1), Got: line})
+		im.faults.add(reader.Fault{Kind: reader.NoHeading, Line: max(f.heading(&im.o), 1), Got: line})
 		return im.faults.err()
 	}
 	if f.facts.Delimiter = im.o.Delimiter; f.facts.Delimiter == 0 {
@@ -72,14 +109,16 @@ func (im *importer) begin(f *file) error {
 	if err := im.faults.err(); err != nil {
 		return err
 	}
-	im.readUnits(f)
+	if f.given == nil || f.given.Types == nil {
+		im.readUnits(f)
+	}
 	im.mergeUnits(f, s)
 	return im.faults.err()
 }
 
 // decode makes UTF-8 of the file; false where it is at fault.
 func (im *importer) decode(f *file) bool {
-	data, bad := reader.Decode(f.src.Data, im.o.Encoding)
+	data, bad := reader.Decode(f.bytes(), im.o.Encoding)
 	if bad != nil {
 		im.faults.add(*bad)
 		return false
@@ -115,7 +154,7 @@ func looksUTF16(b []byte) bool {
 func (f *file) lookAtTrailing() {
 	s := f.records()
 	for s.next() {
-		if s.rec.blank() {
+		if f.skips(s) {
 			continue
 		}
 		n := len(f.head.names) + f.head.extra

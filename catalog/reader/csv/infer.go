@@ -15,6 +15,7 @@ type tally struct {
 	text      bool               // one of Options.TextColumns
 	censored  bool               // one of Options.Censored
 	constant  bool               // of the preamble: one value a file, never at fault
+	fixed     column.Type        // by the word of the file; Null: to be found
 	time      *reader.TimeColumn // of Options.Times, and its index there
 	timeIndex int
 	present   int // values that are not missing
@@ -102,6 +103,10 @@ func (t *tally) decide() (column.Type, *reader.StayedText) {
 		return column.Timestamp, nil
 	case t.censored:
 		return column.Text, nil
+	case t.text && t.fixed == column.Text:
+		return column.Text, nil
+	case t.fixed != column.Null && !t.text:
+		return t.fixed, nil
 	case t.text && t.plain == t.present && t.present > 0:
 		return column.Integer, nil
 	case t.text:

@@ -79,7 +79,7 @@ func (im *importer) localTimes(f *file, i int) (local []int64, line int, err err
 			return nil, 0, im.ctx.Err()
 		}
 		local = append(local, timeform.Absent)
-		if s.rec.blank() {
+		if f.skips(s) {
 			continue
 		}
 		if _, bad := im.recordFault(s, f); bad {

@@ -1,4 +1,4 @@
-// Package ply reads triangles and polygons from PLY files: text, and binary with either
+// Package ply reads triangles, polygons and points from PLY files: text, and binary with either
 // order of bytes.
 //
 // Read are the elements vertex, by x, y and z, and face, by vertex_indices or
@@ -11,7 +11,8 @@
 //
 // # Limitations
 //
-// Strips of triangles are refused. Points without faces are no mesh.
+// Strips of triangles are refused. Points without faces are no mesh; Reader reads them as
+// rows, with NaN as NULL. Lists of a vertex are passed over and told.
 package ply
 
 import (
