@@ -17,7 +17,11 @@ import (
 
 // prepare binds a query and improves its plan.
 func (s *Session) prepare(st *statement, q *lang.Query) (plan.Node, error) {
-	node, err := bind.Query(s.bindEnv(st), q)
+	return prepareIn(s.bindEnv(st), q)
+}
+
+func prepareIn(env *bind.Env, q *lang.Query) (plan.Node, error) {
+	node, err := bind.Query(env, q)
 	if err != nil {
 		return nil, err
 	}

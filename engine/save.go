@@ -10,19 +10,22 @@ import (
 	"strings"
 
 	"nearcell/engine/exec"
+	"nearcell/engine/plan"
 	"nearcell/engine/present"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
-// savable are the file endings that SAVE writes, planned those that it will.
-var (
-	savable = map[string]present.Format{
-		".csv": present.AsCSV, ".jsonl": present.AsJSONLines, ".json": present.AsJSON,
-		".parquet": present.AsParquet, ".xlsx": present.AsXLSX,
-	}
-	planned = map[string]bool{".vtu": true}
-)
+// savable are the file endings that SAVE writes.
+var savable = map[string]present.Format{
+	".csv": present.AsCSV, ".jsonl": present.AsJSONLines, ".json": present.AsJSON,
+	".parquet": present.AsParquet, ".xlsx": present.AsXLSX,
+	cellsEnding: "",
+}
+
+// cellsEnding is that of files of cells as polyhedra, which are not written row by row.
+const cellsEnding = ".vtu"
 
 // save writes a query's rows to a file: aside first, then renamed, so that a
 // failing query or a full disk never leaves half a file under the name.
@@ -31,7 +34,7 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	if err != nil {
 		return err
 	}
-	node, err := s.prepare(st, t.Query)
+	node, shapes, err := s.prepareSave(st, t)
 	if err != nil || s.checkOnly {
 		return err
 	}
@@ -43,6 +46,12 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	var rows int64
 	err = WriteAside(path, func(f *os.File) error {
 		w := bufio.NewWriterSize(f, 1<<16)
+		if shapes != nil {
+			if rows, err = s.writeCells(ctx, st, node, shapes, w); err != nil {
+				return err
+			}
+			return w.Flush()
+		}
 		out, err := present.New(format, w, present.Options{Units: t.WithUnits, Formulas: t.QuoteFormulas})
 		if err != nil {
 			return err
@@ -76,8 +85,20 @@ func (s *Session) save(ctx context.Context, st *statement, t *lang.Save) error {
 	return nil
 }
 
+// prepareSave prepares the query; shapes is set for a file of polyhedra.
+func (s *Session) prepareSave(st *statement, t *lang.Save) (plan.Node, *relation.Shapes, error) {
+	if strings.ToLower(filepath.Ext(t.To.Value)) == cellsEnding {
+		return s.prepareCells(st, t.Query)
+	}
+	node, err := s.prepare(st, t.Query)
+	return node, nil, err
+}
+
 // saveProblem words what a format cannot hold; other errors are the file's or pass.
 func saveProblem(err error, at problem.Place, name string) error {
+	if p := cellsProblem(err, at, name); p != nil {
+		return p
+	}
 	var repeated *present.RepeatedColumnError
 	switch {
 	case errors.As(err, &repeated):
@@ -92,13 +113,10 @@ func saveProblem(err error, at problem.Place, name string) error {
 
 func saveFormat(st *statement, t *lang.Save) (present.Format, error) {
 	ending := strings.ToLower(filepath.Ext(t.To.Value))
-	if planned[ending] {
-		return "", problem.NotThereYet(st.at(t.To), "SAVE to "+ending)
-	}
 	format, ok := savable[ending]
 	if !ok {
 		return "", problem.New("file-kind", st.at(t.To), "the ending of '%s' does not say how to write it", t.To.Value).
-			WithHint("end it with .csv, .json, .jsonl, .parquet or .xlsx")
+			WithHint("end it with .csv, .json, .jsonl, .parquet or .xlsx, or with .vtu for cells")
 	}
 	switch {
 	case t.WithUnits && format != present.AsCSV && format != present.AsXLSX:

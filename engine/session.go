@@ -47,7 +47,7 @@ type Session struct {
 	params    map[string]column.Value // under lang.Fold(name)
 	fixed     map[string]bool         // set from outside (--let): LET does not change them
 	diagrams  *diagram.Store
-	places    exec.Places // search trees of stored tables
+	places    *exec.Places // search trees of stored tables
 	digits    int
 	rowLimit  int      // of tables on a screen, 0: what the screen says
 	results   int      // printed so far
@@ -77,6 +77,7 @@ func New(c *catalog.Catalog, o Options) *Session {
 		params:   map[string]column.Value{},
 		fixed:    map[string]bool{},
 		diagrams: diagram.NewStore(memory),
+		places:   &exec.Places{},
 		digits:   present.DefaultDigits,
 	}
 }
@@ -227,7 +228,7 @@ func (s *Session) bindEnv(st *statement) *bind.Env {
 }
 
 func (s *Session) execEnv(st *statement) *exec.Env {
-	return &exec.Env{Memory: s.o.Memory, Places: &s.places, Env: relation.Env{
+	return &exec.Env{Memory: s.o.Memory, Places: s.places, Env: relation.Env{
 		Diagrams: s.diagrams, Notes: st.notes, Threads: s.o.Threads, Memory: s.o.Memory, Progress: s.o.Progress,
 	}}
 }

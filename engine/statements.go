@@ -85,7 +85,7 @@ func dataStatements() []entry {
 			syntax:  []string{"SAVE query TO 'file' [OVERWRITE] [WITH UNITS] [WITH PROVENANCE] [QUOTE FORMULAS];"},
 			meaning: "Writes the rows of a query to a file, by its ending: " + strings.Join(savedEndings(), ", ") + ". Numbers read back to the same bits. The file gets its name when it is whole, and one that is there is replaced only with OVERWRITE.",
 			more: []string{
-				"WITH UNITS writes the units into the heading: volume [m^3]; a .parquet file has them in its metadata under the key units. In an .xlsx file time stamps are dates to the millisecond, and infinities and whole numbers beyond 2^53, which a sheet cannot hold, are texts. QUOTE FORMULAS puts an apostrophe before texts that a spreadsheet would compute. WITH PROVENANCE writes a second file beside it that says where the numbers come from.",
+				"WITH UNITS writes the units into the heading: volume [m^3]; a .parquet file has them in its metadata under the key units. In an .xlsx file time stamps are dates to the millisecond, and infinities and whole numbers beyond 2^53, which a sheet cannot hold, are texts. A .vtu file has the cells of a CELLS as polyhedra with the columns as their attributes, for viewers of grids; pieces of one cell in a room that is not convex share the number in its array row. QUOTE FORMULAS puts an apostrophe before texts that a spreadsheet would compute. WITH PROVENANCE writes a second file beside it that says where the numbers come from.",
 			},
 			example: "SAVE SELECT id, volume, cx, cy, cz FROM CELLS OF hall TO 'cells.csv' WITH UNITS;",
 			forms: []form{

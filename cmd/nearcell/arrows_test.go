@@ -61,6 +61,7 @@ var arrows = map[string][]string{
 	"engine/bind": {"catalog/...", "engine/expr", "engine/function", "engine/note", "engine/plan", "engine/problem",
 		"engine/relation", "lang", "voronoi/..."},
 	"engine/present":      {"catalog/column"},
+	"engine/vtu":          {"catalog/column", "voronoi"},
 	"engine":              {"catalog/...", "engine/...", "lang", "voronoi/..."},
 	"cmd/nearcell":        {"catalog/...", "cmd/nearcell/prompt", "engine/..."},
 	"cmd/nearcell/prompt": {"catalog/...", "engine/...", "lang"},

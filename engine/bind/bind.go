@@ -7,6 +7,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 	"nearcell/voronoi/solid"
 )
@@ -24,6 +25,9 @@ type Env struct {
 	// VerdictWarnings what was to be said with them; nil: none.
 	Verdicts        func() *column.Table
 	VerdictWarnings func() []string
+	// Shapes takes the polyhedra of cells for files of them: relations of cells then
+	// have relation.ShapeColumn; nil: none have.
+	Shapes *relation.Shapes
 }
 
 // Query binds a query to a plan. The plan is the query as written: no rule has

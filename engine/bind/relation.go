@@ -28,7 +28,7 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 	if err != nil {
 		return bound{}, err
 	}
-	rel := &relation.Bound{Def: def, Name: b.operandName(r.Operand), Input: fields(in.scope), Place: b.at(r.Operand)}
+	rel := &relation.Bound{Def: def, Name: b.operandName(r.Operand), Input: fields(in.scope), Place: b.at(r.Operand), Shapes: b.env.Shapes}
 	if def.Over == relation.OverRows {
 		rel.ID, rel.X, rel.Y, rel.Z = -1, -1, -1, -1
 		return b.overRows(rel, r, in)

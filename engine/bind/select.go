@@ -8,6 +8,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
@@ -321,7 +322,7 @@ func (c *selection) star(it *lang.Item) error {
 	var costly []string
 	for i, col := range c.from.columns {
 		switch {
-		case source >= 0 && col.source != source, source < 0 && col.merged, col.Name == "":
+		case source >= 0 && col.source != source, source < 0 && col.merged, col.Name == "", col.Name == relation.ShapeColumn:
 			continue
 		case col.costly:
 			costly = append(costly, col.Name)

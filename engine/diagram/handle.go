@@ -112,6 +112,16 @@ func (h *Handle) Hidden(ctx context.Context, sites []int32, progress func(done, 
 	return h.d.Hidden(ctx, sites)
 }
 
+// PiecesOf gives the cells of the given sites (nil: all) as convex polyhedra, as
+// voronoi.Diagram.Pieces does. They are not kept.
+func (h *Handle) PiecesOf(ctx context.Context, sites []int32, progress func(done, total int)) ([][]voronoi.Piece, error) {
+	if err := h.lock(ctx, progress); err != nil {
+		return nil, err
+	}
+	defer h.unlock()
+	return h.d.Pieces(ctx, sites)
+}
+
 // Measure computes the wanted measures of the given sites (nil: all), as far as
 // they are not known. In the answer, entry s of each array belongs to site s of
 // the diagram; only the entries of the sites asked for are to be read, and none

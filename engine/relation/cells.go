@@ -23,7 +23,7 @@ var cells = &Definition{
 	Open:    openCells,
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
-		return append(b.ownColumns(computed), computed...)
+		return append(append(b.ownColumns(computed), computed...), b.shapeColumn()...)
 	},
 }
 
@@ -81,6 +81,8 @@ type cellRows struct {
 
 	hidden []float64 // by site of the part at hand, if asked for
 	spread float64   // largest standard error of it
+
+	pieces [][]voronoi.Piece // by site of the part at hand, if asked for
 }
 
 func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
@@ -183,6 +185,11 @@ func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int
 			return nil, nil, c.refused(err, p)
 		}
 	}
+	if c.shaped() {
+		if err := c.shape(ctx, h, list); err != nil {
+			return nil, nil, c.refused(err, p)
+		}
+	}
 	if len(ks) == 0 || c.want == 0 {
 		return &voronoi.Cells{}, ks, nil
 	}
@@ -273,6 +280,9 @@ func (c *cellRows) fill(out *batches, p *Part, m *voronoi.Cells, ks []int32) {
 		case cellHidden:
 			lengths(v, out.n, p, ks, c.hidden)
 		}
+	}
+	if c.shaped() {
+		c.fillShapes(&out.columns[c.own+len(c.b.Def.Computed)], out.n, p, ks)
 	}
 	out.n += len(ks)
 }

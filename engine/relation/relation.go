@@ -123,6 +123,8 @@ type Bound struct {
 	Place   problem.Place
 	// EachPlace is the place of the FOR EACH clause.
 	EachPlace problem.Place
+	// Shapes takes the cells' polyhedra; nil: they are not wanted.
+	Shapes *Shapes
 }
 
 // Schema is the fields of the bound columns.

@@ -92,6 +92,7 @@ func (s *sites) refused(err error, p *Part) error {
 	var noVolume *voronoi.NoVolumeError
 	var stretch *voronoi.StretchError
 	var rigid *solid.StretchError
+	var noPieces *voronoi.NoPiecesError
 	name := func(site int) string { return idText(s.order.id, int(p.Rows[p.firstRow(int32(site))])) }
 	switch {
 	case errors.Is(err, context.Canceled), errors.Is(err, context.DeadlineExceeded):
@@ -107,6 +108,12 @@ func (s *sites) refused(err error, p *Part) error {
 			column.FormatReal(stretch.Factor.X), column.FormatReal(stretch.Factor.Y), column.FormatReal(stretch.Factor.Z))
 	case errors.As(err, &rigid):
 		return problem.New("stretched", s.b.Place, "%s is a %s, in which stretched distances have no %s yet", s.b.Clauses.SolidName, rigid.Kind, s.b.Def.Noun)
+	case errors.As(err, &noPieces) && noPieces.Kind == "":
+		return problem.New("no-pieces", s.b.Place, "without a solid cells of %s run to infinity, and cannot be given as polyhedra", s.b.Name).
+			WithHint("WITHIN a solid closes them; ENVELOPE OF %s MARGIN 1 is one", s.b.Name)
+	case errors.As(err, &noPieces):
+		return problem.New("no-pieces", s.b.Place, "%s is a %s, which is not known as convex parts, so that its cells can be measured but not given as polyhedra",
+			s.b.Clauses.SolidName, noPieces.Kind).WithHint("a BOX is, and a PRISM with its HOLEs")
 	case errors.As(err, &noVolume):
 		return problem.New("no-volume", s.b.Place, "%s has no volume", s.b.Clauses.SolidName)
 	}

@@ -156,6 +156,18 @@ FOR EACH t WITHIN air;`,
 		Example: "CREATE CAMPAIGN again FROM 'hall.csv' WITHIN BOXES 'racks.csv';",
 	},
 	{
+		Code:    "no-pieces",
+		Meaning: "Cells were wanted as polyhedra, for a file of them, and there are none: without a solid some run to infinity; in a mesh, and in what MINUS and PLUS make, they can be measured but are not known as convex pieces.",
+		WayOut:  "WITHIN a solid closes the cells; a BOX and a PRISM with its HOLEs have convex pieces.",
+		Example: "SAVE SELECT id FROM CELLS OF (SELECT * FROM hall) UNCLIPPED TO 'cells.vtu';",
+	},
+	{
+		Code:    "not-cells",
+		Meaning: "A file of cells as polyhedra needs rows that are cells: those of one CELLS, as they are, without joins, groups and MEASURED IN.",
+		WayOut:  "SELECT … FROM CELLS OF … [WHERE …] [ORDER BY …] [LIMIT …].",
+		Example: "SAVE SELECT COUNT(*) AS n FROM CELLS OF hall TO 'cells.vtu';",
+	},
+	{
 		Code:    "no-volume",
 		Meaning: "A solid has no volume.",
 		WayOut:  "ENVELOPE OF campaign MARGIN 1 widens a box around sites that all lie at one height.",
