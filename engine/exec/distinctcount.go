@@ -1,6 +1,7 @@
 package exec
 
 import (
+	"math/bits"
 	"sync"
 	"time"
 
@@ -12,8 +13,16 @@ import (
 // chunks. How often a pair comes and when does not matter to a count, so that the
 // workers put the pairs of their chunks there side by side, after their parts are
 // merged and it is known which group is which.
+//
+// Values with a code are one bit of a word for each group and 64 codes; the others, and
+// those of groups with high numbers, are pairs in a hash table.
 type pairSet struct {
-	env    *Env
+	env   *Env
+	codes valueCodes
+	dense struct {
+		sync.Mutex
+		blocks [mostCodes / 64][]uint64 // by code/64, then by group
+	}
 	shards [pairShards]pairShard // by the upper bits of the hash
 	texts  struct {
 		sync.Mutex
@@ -25,6 +34,7 @@ const (
 	pairShardBits = 6
 	pairShards    = 1 << pairShardBits
 	recentPairs   = 1 << 10
+	denseGroups   = 1 << 14
 )
 
 type pairShard struct {
@@ -33,11 +43,15 @@ type pairShard struct {
 	n     int
 }
 
-// pair is a value of a group. In a pairSet group is one more, 0: free.
+// pair is a value of a group. In a pairSet group is one more, 0: free; below 0 it is
+// that of a code.
 type pair struct {
 	word  uint64
 	group int32
 }
+
+// codedPair is a value with a code of a group.
+type codedPair struct{ code, group int32 }
 
 // hash mixes both, so that each group has places of its own.
 func (p pair) hash() uint64 { return mix(p.word ^ mix(uint64(uint32(p.group))+1)) }
@@ -60,6 +74,7 @@ func newPairSet(env *Env) *pairSet {
 // pairPart is the pairs of one chunk, most of them once.
 type pairPart struct {
 	set   *pairSet
+	coded []codedPair
 	pairs []pair
 	codes codeMap
 	kept  int64
@@ -70,6 +85,7 @@ type pairScratch struct {
 	of     *pairPart
 	recent [recentPairs]pair // group one more, 0: none
 	idx    []int32
+	codes  localCodes
 }
 
 // add takes the active rows that have a value.
@@ -77,11 +93,11 @@ func (p *pairPart) add(w *Worker, v *column.Vector, on []uint64, n int, groups [
 	if v.Type == column.Null {
 		return nil
 	}
-	s := localOf(w, p.set, func() *pairScratch { return &pairScratch{} })
+	s := localOf(w, p.set, func() *pairScratch { return &pairScratch{codes: localCodes{of: &p.set.codes}} })
 	if s.of != p {
 		s.of, s.recent = p, [recentPairs]pair{}
 	}
-	before := len(p.pairs)
+	before := 16*len(p.pairs) + 8*len(p.coded)
 	s.idx = activeRows(s.idx, on, n)
 	if v.Type == column.Text {
 		p.translate(v, s.idx)
@@ -101,13 +117,17 @@ func (p *pairPart) add(w *Worker, v *column.Vector, on []uint64, n int, groups [
 			continue
 		}
 		last = x
+		if code := s.codes.code(x.word); code >= 0 {
+			p.coded = append(p.coded, codedPair{code, x.group - 1})
+			continue
+		}
 		r := &s.recent[(x.word^uint64(x.group)<<7)*0x9e3779b97f4a7c15>>54]
 		if *r != x {
 			*r = x
 			p.pairs = append(p.pairs, x)
 		}
 	}
-	bytes := int64(16 * (len(p.pairs) - before))
+	bytes := int64(16*len(p.pairs) + 8*len(p.coded) - before)
 	p.kept += bytes
 	return p.set.env.keep(bytes)
 }
@@ -138,11 +158,12 @@ func (p *pairPart) settle(to []int32, chunk int) error {
 	if m := p.set.env.holder; m != nil {
 		defer m.took(time.Now())
 	}
+	grown := p.settleCoded(to)
 	var start [pairShards + 1]int32
 	hashes := make([]uint64, len(p.pairs))
 	for k := range p.pairs {
 		x := &p.pairs[k]
-		if to != nil {
+		if to != nil && x.group > 0 {
 			x.group = to[x.group-1] + 1
 		}
 		hashes[k] = x.hash()
@@ -158,7 +179,6 @@ func (p *pairPart) settle(to []int32, chunk int) error {
 		order[next[s]] = int32(k)
 		next[s]++
 	}
-	grown := int64(0)
 	for i := range pairShards {
 		s := (i + 7*chunk) % pairShards
 		if of := order[start[s]:start[s+1]]; len(of) > 0 {
@@ -168,6 +188,34 @@ func (p *pairPart) settle(to []int32, chunk int) error {
 	p.pairs = nil
 	p.set.env.release(p.kept)
 	return p.set.env.keep(grown)
+}
+
+// settleCoded sets the bits of pairs that have codes, and gives the bytes by which the
+// set grew. Groups beyond what bits are kept for become pairs.
+func (p *pairPart) settleCoded(to []int32) int64 {
+	d := &p.set.dense
+	d.Lock()
+	defer d.Unlock()
+	grown := int64(0)
+	for _, x := range p.coded {
+		if to != nil {
+			x.group = to[x.group]
+		}
+		if x.group >= denseGroups {
+			p.pairs = append(p.pairs, pair{uint64(x.code), -x.group - 1})
+			continue
+		}
+		block := d.blocks[x.code>>6]
+		if int(x.group) >= len(block) {
+			more := make([]uint64, min(denseGroups, max(64, 2*len(block), int(x.group)+1)))
+			copy(more, block)
+			grown += 8 * int64(len(more)-len(block))
+			d.blocks[x.code>>6], block = more, more
+		}
+		block[x.group] |= 1 << (uint(x.code) & 63)
+	}
+	p.coded = nil
+	return grown
 }
 
 // putAll adds pairs and gives the bytes by which the shard grew.
@@ -218,10 +266,19 @@ func (s *pairShard) grow() {
 // counts is the number of different values of each group.
 func (s *pairSet) counts(groups int) column.Vector {
 	v := column.New(column.Integer, nil, groups)
+	for _, block := range s.dense.blocks {
+		for g, word := range block {
+			if word != 0 {
+				v.I[g] += int64(bits.OnesCount64(word))
+			}
+		}
+	}
 	for k := range s.shards {
 		for _, x := range s.shards[k].slots {
-			if x.group != 0 {
+			if x.group > 0 {
 				v.I[x.group-1]++
+			} else if x.group < 0 {
+				v.I[-x.group-1]++
 			}
 		}
 	}

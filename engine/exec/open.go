@@ -98,11 +98,51 @@ func (r *runner) openSink(ctx context.Context, n plan.Node) (*pipeline, error) {
 	if err != nil {
 		return nil, err
 	}
-	src, err := p.into(ctx, NewWorker(r.env), m.around(sink))
+	src, done, err := ofTable(ctx, p, sink, m)
+	if !done && err == nil {
+		src, err = p.into(ctx, NewWorker(r.env), m.around(sink))
+	}
 	if err != nil {
 		return nil, err
 	}
 	return sourceOnly(src), nil
+}
+
+// ofTable gives a sink that would copy all rows of a table as they lie the table
+// itself; false where it is none or something is to be computed for them.
+func ofTable(ctx context.Context, p *pipeline, sink Sink, m *meter) (Source, bool, error) {
+	if len(p.steps) > 0 {
+		return nil, false, nil
+	}
+	var take func(*column.Table) error
+	switch s := sink.(type) {
+	case *windowSink:
+		if len(s.keyed) == len(s.schema) {
+			take = func(t *column.Table) error {
+				s.parts = []*column.Table{t}
+				return nil
+			}
+		}
+	case *sortSink:
+		if len(s.keyed) == len(s.schema) && s.node.Top == 0 {
+			take = func(t *column.Table) error {
+				s.parts, s.rows = []*column.Table{t}, t.N
+				return s.env.keep(int64(t.N) * rowBytes(s.schema)) // in their order they are a copy
+			}
+		}
+	}
+	if take == nil {
+		return nil, false, nil
+	}
+	t := asTable(p.source)
+	if t == nil {
+		return nil, false, nil
+	}
+	if err := take(t); err != nil {
+		return nil, true, err
+	}
+	src, err := m.around(sink).Finish(ctx)
+	return src, true, err
 }
 
 func sourceOnly(s Source) *pipeline { return &pipeline{source: s, schema: s.Schema()} }
