@@ -15,6 +15,7 @@ import (
 	"nearcell/catalog/reader"
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
@@ -70,6 +71,10 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 		})
 	}
 	table := result.Table
+	if need := column.SizeOf(table); s.o.Memory > 0 && need > s.o.Memory {
+		return nil, problem.New("memory", st.at(named), "%s as a table takes %s, more than the %s of --memory", named.Value, relation.SizeText(need), relation.SizeText(s.o.Memory)).
+			WithHint("give more with --memory, or import a part of the file")
+	}
 	if t.Files != nil {
 		if table, err = withSourceFile(table, result.Files, st.at(t.Files)); err != nil {
 			return nil, err

@@ -9,7 +9,12 @@ import (
 	"nearcell/engine/problem"
 )
 
-func (e *Env) tooMuch() string { return fmt.Sprintf(" more than %d MiB", e.Memory>>20) }
+func (e *Env) tooMuch() string {
+	if e.Memory < 1<<20 {
+		return fmt.Sprintf(" more than %d KiB", e.Memory>>10)
+	}
+	return fmt.Sprintf(" more than %d MiB", e.Memory>>20)
+}
 
 // inBetween is what a limit of memory is said of until it is known better.
 const inBetween = "the intermediate results"
@@ -41,7 +46,7 @@ func blame(err error, n plan.Node) error {
 	case *plan.Matched:
 		what = "the rows to be compared"
 	case *plan.Relation:
-		what = "the rows that " + n.Bound.Title() + " works on"
+		what = "the rows that " + n.Bound.Title() + " works on, and what it holds of them,"
 	default:
 		return err
 	}

@@ -98,7 +98,8 @@
 // the work of one worker.
 //
 // Intermediate results are kept in memory and refused beyond Env.Memory, which
-// counts the rows, keys and groups of all sinks of a statement until its end, but
-// not the state of aggregates such as MEDIAN nor what relations compute with. A result has at most 2³¹ − 1 rows. The right side of a join without
+// counts the rows, keys and groups of all sinks of a statement until its end, and of
+// relations an estimate of what they hold of each row of their input (Bound.Holds), but
+// not the state of aggregates such as MEDIAN. A result has at most 2³¹ − 1 rows. The right side of a join without
 // equalities is walked for every left row.
 package exec

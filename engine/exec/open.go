@@ -255,6 +255,9 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 			need[i] = true
 		}
 	}
+	if err := r.envOf(r.meter(n)).keep(n.Bound.Holds(sites.N, need)); err != nil {
+		return overSites{}, err
+	}
 	wanted, err := r.wanted(ctx, n, sites)
 	if err != nil {
 		return overSites{}, err

@@ -2,6 +2,7 @@ package expr
 
 import (
 	"math"
+	"strings"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/problem"
@@ -261,6 +262,9 @@ func (e *Arith) Eval(w *Work, b *column.Batch, on []uint64) (column.Vector, erro
 
 func (e *Arith) rowFault(code string, l, r *column.Vector, row int) error {
 	left, right := number(l, row), number(r, row)
+	if e.Op == lang.Power && strings.HasPrefix(left, "-") {
+		left = "(" + left + ")" // without them it is the negative of a power
+	}
 	if code == CodeNoValue {
 		return rowError(row, code, e.at, "%s %s %s has no value", left, string(e.Op), right)
 	}

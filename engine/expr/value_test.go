@@ -146,7 +146,7 @@ func TestRowErrors(t *testing.T) {
 		{"CAST('Infinity' AS REAL) - CAST('Infinity' AS REAL)", CodeNoValue, "Infinity - Infinity has no value"},
 		{"CAST('Infinity' AS REAL) / 0", CodeNoValue, "Infinity / 0 has no value"},
 		{"0 ^ -1", CodeNoValue, "0 ^ -1 has no value"},
-		{"(-8) ^ 0.5", CodeNoValue, "-8 ^ 0.5 has no value"},
+		{"(-8) ^ 0.5", CodeNoValue, "(-8) ^ 0.5 has no value"},
 		{"TIMESTAMP '9999-12-31 23:59:59' + INTERVAL '1' HOUR", CodeOverflow, "beyond the years 1 to 9999"},
 		{"INTERVAL '1' HOUR / 0", CodeNoValue, "01:00:00 / 0 has no value"},
 		{"CAST('8,5' AS REAL)", CodeCast, "'8,5' is no number"},
@@ -166,7 +166,7 @@ func TestRowErrors(t *testing.T) {
 		{"ASIN(2)", CodeNoValue, "ASIN(2) has no value"},
 		{"MOD(5, 0)", CodeNoValue, "MOD(5, 0) has no value"},
 		{"FLOOR_TO(5, 0)", CodeNoValue, "FLOOR_TO(5, 0) has no value"},
-		{"POWER(-8, 0.5)", CodeNoValue, "-8 ^ 0.5 has no finite value"},
+		{"POWER(-8, 0.5)", CodeNoValue, "(-8) ^ 0.5 has no finite value"},
 		{"SUBSTRING('abc' FROM 1 FOR -1)", CodeNoValue, "SUBSTRING cannot take -1 characters"},
 	}
 	for _, c := range cases {

@@ -470,3 +470,30 @@ func TestFirstLast(t *testing.T) {
 		t.Errorf("LAST by a text is %s", v.Value(0))
 	}
 }
+
+// Weighted CORR: a row of weight k is k rows. The plain values are those of Anscombe's
+// first set (Anscombe 1973, Graphs in Statistical Analysis, The American Statistician 27,
+// 17-21: r = 0.816, here with the digits that its data give). The weighted median of
+// Cormen, Leiserson, Rivest and Stein (Introduction to Algorithms, problem "weighted
+// median"), whose values are their own weights, is 0.2. Both from memory.
+func TestWeightedCorrelationAndMedian(t *testing.T) {
+	x := []float64{10, 8, 13, 9, 11, 14, 6, 4, 12, 7, 5}
+	y := []float64{8.04, 6.95, 7.58, 8.81, 8.33, 9.96, 7.24, 4.26, 10.84, 4.82, 5.68}
+	near(t, "CORR", aggregate(t, "CORR", nil, nil, reals(x...), reals(y...)), 0.81642051634484, 1e-12)
+	var weights, manyX, manyY []float64
+	for i := range x {
+		k := 1 + i%4
+		weights = append(weights, float64(k))
+		for range k {
+			manyX, manyY = append(manyX, x[i]), append(manyY, y[i])
+		}
+	}
+	w := reals(weights...)
+	want := aggregate(t, "CORR", nil, nil, reals(manyX...), reals(manyY...))
+	near(t, "CORR by weight", aggregate(t, "CORR", &w, nil, reals(x...), reals(y...)), want.F, 1e-12)
+	if math.Abs(want.F-0.81642051634484) < 1e-3 {
+		t.Errorf("the weights do not matter: %g", want.F)
+	}
+	own := reals(.1, .35, .05, .1, .15, .05, .2)
+	near(t, "MEDIAN by its own values", aggregate(t, "MEDIAN", &own, nil, own), .2, 0)
+}

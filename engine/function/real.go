@@ -113,7 +113,11 @@ func evalPower(_ *Arena, args []column.Vector, on []uint64, n int, out *column.V
 		came := math.IsInf(x[i], 0) || math.IsInf(y[i], 0)
 		return r != r || math.IsInf(r, 0) && !came
 	})
-	return noValue(row, "%s ^ %s has no finite value", &args[0], &args[1])
+	format := "%s ^ %s has no finite value"
+	if row >= 0 && x[row] < 0 {
+		format = "(%s) ^ %s has no finite value" // without them it is the negative of a power
+	}
+	return noValue(row, format, &args[0], &args[1])
 }
 
 func evalAtan2(_ *Arena, args []column.Vector, on []uint64, n int, out *column.Vector) error {

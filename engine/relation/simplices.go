@@ -121,8 +121,8 @@ func (r *simplexRows) Run(ctx context.Context, emit func(*column.Batch) error) e
 	return r.flush(out)
 }
 
-// sizeText is a number of bytes, rounded up.
-func sizeText(n int64) string {
+// SizeText is a number of bytes, rounded up.
+func SizeText(n int64) string {
 	if n < 10<<20 {
 		return fmt.Sprintf("%d KiB", (n+1<<10-1)>>10)
 	}
@@ -141,7 +141,7 @@ func (r *simplexRows) part(ctx context.Context, p *Part, out *simplexBatch) erro
 	var memory *delaunay.MemoryError
 	if errors.As(err, &memory) {
 		return problem.New("memory", r.b.Place, "the tetrahedralisation of %s needs %s, more than the %s that --memory leaves it",
-			r.b.Name, sizeText(memory.Need), sizeText(memory.Limit)).
+			r.b.Name, SizeText(memory.Need), SizeText(memory.Limit)).
 			WithHint("give more with --memory, or take fewer sites; CELLS OF and CONTACTS OF can do without it")
 	}
 	if err != nil {

@@ -12,7 +12,7 @@ var ofTheProgram = []Entry{
 	},
 	{
 		Code:    "memory",
-		Meaning: "The intermediate results of a query, or the tetrahedralisation of its sites, would take more memory than it may have.",
+		Meaning: "The intermediate results of a query, what a relation holds of its rows, the tetrahedralisation of its sites or the table that a file becomes would take more memory than it may have.",
 		WayOut:  "Ask for fewer columns or rows, or give more with --memory.",
 		Unshown: "it takes more rows than a small script makes",
 	},
