@@ -32,7 +32,7 @@ EXPLAIN MEASURED SELECT SUM(volume) FROM CELLS OF (SELECT * FROM placed ORDER BY
 estimated  rows  seconds     MB  step
         1     1   ?.????         columns: "SUM(volume)"
         1     1   ?.????  ?.???    aggregate all rows: SUM(volume)
-       54    54   ?.????             cells of (query) within air: volume
+       54    54   ?.????  ?.???      cells of (query) within air: volume
                                          geometry: volume of 54 cells, all known already
        54    54   ?.????  ?.???        sort: z
        54    54   ?.????                 columns: id, x, y, z
