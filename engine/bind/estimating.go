@@ -201,12 +201,15 @@ func (b *binder) estimatingInput(rel *relation.Bound, r *lang.Relation) ([]plan.
 			return nil, err
 		}
 	}
-	if !takes["AT"] {
+	if takes["AMONG"] {
+		return b.among(rel, r)
+	}
+	if !takes["AT"] || takes["THROUGH"] {
 		return nil, nil
 	}
 	for _, c := range r.Clauses {
 		if c, ok := c.(*lang.AtPointsClause); ok {
-			node, err := b.points(rel, c.Operand)
+			node, err := b.points(rel, c.Operand, "AT")
 			return []plan.Node{node}, err
 		}
 	}
@@ -231,13 +234,13 @@ func (b *binder) limits(rel *relation.Bound, r *lang.Relation) error {
 	return nil
 }
 
-// points binds the rows of AT and finds their coordinates.
-func (b *binder) points(rel *relation.Bound, o lang.Operand) (plan.Node, error) {
+// points binds the rows of AT or AMONG and finds their coordinates.
+func (b *binder) points(rel *relation.Bound, o lang.Operand, clause string) (plan.Node, error) {
 	in, err := b.operand(o)
 	if err != nil {
 		return nil, err
 	}
-	beside := relation.Beside{Name: b.operandName(o), Input: fields(in.scope), Clause: "AT"}
+	beside := relation.Beside{Name: b.operandName(o), Input: fields(in.scope), Clause: clause}
 	var missing []string
 	for i, name := range [3]string{"x", "y", "z"} {
 		hits := named(beside.Input, name)
@@ -264,7 +267,7 @@ func (b *binder) points(rel *relation.Bound, o lang.Operand) (plan.Node, error) 
 		for _, f := range beside.Input {
 			gives = append(gives, f.Name)
 		}
-		return nil, problem.New("no-position", b.at(o), "AT needs points with the columns x, y, z: %s has no %s, it gives %s", beside.Name,
+		return nil, problem.New("no-position", b.at(o), "%s needs points with the columns x, y, z: %s has no %s, it gives %s", clause, beside.Name,
 			strings.Join(missing, ", "), shortList(gives)).WithHint("name them with SELECT … AS x, … AS y, … AS z")
 	}
 	rel.Beside = append(rel.Beside, beside)

@@ -274,7 +274,10 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 		default:
 			var known bool
 			if rel.Def.Noun != "REPRESENTATIVES" {
-				known, err = b.estimatingClause(rel, c)
+				known, err = b.coveringClause(rel, c)
+				if !known && err == nil {
+					known, err = b.estimatingClause(rel, c)
+				}
 			}
 			if !known {
 				err = b.representativeClause(rel, c)
@@ -283,6 +286,9 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 		if err != nil {
 			return err
 		}
+	}
+	if err := b.coveringWhole(rel, r); err != nil {
+		return err
 	}
 	if err := b.representativesWhole(rel, r); err != nil {
 		return err

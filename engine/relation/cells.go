@@ -16,7 +16,7 @@ var cells = &Definition{
 	Noun:    "CELLS",
 	RowIs:   "site",
 	Meaning: "the space nearer to a site than to any other",
-	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
+	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED", "DISTANCES", "ACROSS"},
 	Later:   []string{"UNCERTAINTY"},
 	Own:     true,
 	Zoned:   true,
@@ -83,6 +83,7 @@ type cellRows struct {
 	spread float64   // largest standard error of it
 
 	pieces [][]voronoi.Piece // by site of the part at hand, if asked for
+	far    far               // what lies beyond DISTANCES
 }
 
 func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
@@ -104,6 +105,7 @@ func (c *cellRows) Run(ctx context.Context, emit func(*column.Batch) error) (err
 		c.said.partial = err != nil
 		c.tell()
 		c.tellHidden()
+		c.far.tell(c.sites, err)
 	}()
 	out := newBatches(c.b, c.r.Need, c.own, emit)
 	rows := make([]int32, 0, BatchRows)
@@ -176,6 +178,9 @@ func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int
 	}
 	h, err := c.open(ctx, p)
 	if err != nil {
+		return nil, nil, err
+	}
+	if err := c.lookBeyond(ctx, h, p); err != nil {
 		return nil, nil, err
 	}
 	f := h.Facts()

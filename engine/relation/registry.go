@@ -8,17 +8,12 @@ import (
 )
 
 // definitions is the registry, in the order in which DESCRIBE and HELP list it.
-var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, estimates, weights, residuals, exceedance, overlays, autocorrelation, clusters, grid, transect,
+var definitions = []*Definition{cells, contacts, tetrahedra, triangles, vertices, hull, gaps, placements, redundancy, spacing, sectionOf, estimates, weights, residuals, exceedance, overlays, autocorrelation, clusters, grid, transect,
 	seriesOf, audit, episodes, extremes, representatives}
 
 // planned are the relations of the language that have no rows yet, each with
 // what a row of it is.
-var planned = map[string]string{
-	"PLACEMENTS": "proposed further site",
-	"REDUNDANCY": "site, least missed first",
-	"SPACING":    "campaign",
-	"SECTION":    "cell cut by the plane",
-}
+var planned = map[string]string{}
 
 // All are the relations that there are.
 func All() []*Definition { return definitions }

@@ -105,6 +105,7 @@ type Clauses struct {
 	Weights string // of cells that touch: AREA, CONTACT or CONDUCTANCE
 
 	Estimating
+	Covering
 }
 
 // Bound is a relation in a query after binding: what its rows look like.

@@ -36,7 +36,16 @@ type ball struct {
 	leaves index.Leaves
 	reach2 float64
 	meets  func(*index.Box, float64) bool // bound once
-	in     []int32                        // numbers in the tree
+	in     []int32                        // numbers in the tree, from -1 downwards in more
+	more   []Vec                          // sites that were added
+}
+
+// point is a site that list has found.
+func (b *ball) point(i int32) Vec {
+	if i < 0 {
+		return b.more[-1-i]
+	}
+	return b.tree.Point(i)
 }
 
 // list makes b.in the sites within reach of a place, and a few beyond.
@@ -45,6 +54,11 @@ func (b *ball) list(at Vec, reach float64) {
 		b.meets = func(_ *index.Box, dist2 float64) bool { return dist2 <= b.reach2 }
 	}
 	b.in, b.reach2 = b.in[:0], float64(reach*reach)*(1+0x1p-49)
+	for i, p := range b.more {
+		if d := sub(p, at); dot(d, d) <= b.reach2 {
+			b.in = append(b.in, -1-int32(i))
+		}
+	}
 	points := b.tree.Points()
 	for b.leaves.Start(b.tree, at); ; {
 		from, to, ok := b.leaves.Next(b.meets)
@@ -73,9 +87,18 @@ type nearPart struct {
 
 // cellOf looks at the corners of the pieces of cell i: a gap is one of them.
 func (k *seeker) cellOf(i int32) error {
-	p := k.sites[k.of[i]]
+	return k.cellAt(k.sites[k.of[i]])
+}
+
+// cellAt does that for the cell of any place, among the sites and those that were added.
+func (k *seeker) cellAt(p Vec) error {
 	if err := k.d.Insert(p, &k.cell); err != nil {
 		return err
+	}
+	for i, q := range k.ball.more {
+		if q != p && !k.cell.Empty() {
+			k.cell.Bisect(sub(q, p), Vec{}, int32(len(k.sites)+i))
+		}
 	}
 	if k.cell.Empty() {
 		return nil
@@ -193,7 +216,7 @@ func (k *seeker) gather(v, p Vec, r float64) bool {
 	k.ball.list(add(p, v), float64(r*(1+2*coarsest))+k.grain)
 	for _, i := range k.ball.in {
 		// The difference of two sites loses nothing that they had.
-		away := sub(v, sub(k.tree.Point(i), p))
+		away := sub(v, sub(k.ball.point(i), p))
 		far := length(away)
 		k.near = append(k.near, nearSite{away, far})
 		k.least = min(k.least, far)
@@ -283,15 +306,23 @@ func (k *seeker) gap(at Vec, r float64) Gap {
 	k.ball.list(g.At, float64(r*(1+8*coarsest))+8*k.grain)
 	g.Radius = math.Inf(1)
 	for _, i := range k.ball.in {
-		g.Radius = min(g.Radius, length(sub(k.tree.Point(i), g.At)))
+		g.Radius = min(g.Radius, length(sub(k.ball.point(i), g.At)))
 	}
 	g.Site = math.MaxInt32
 	for _, i := range k.ball.in {
-		if length(sub(k.tree.Point(i), g.At)) <= float64(g.Radius*(1+equal))+k.grain {
-			g.Site = min(g.Site, k.of[i])
+		if length(sub(k.ball.point(i), g.At)) <= float64(g.Radius*(1+equal))+k.grain {
+			g.Site = min(g.Site, k.number(i))
 		}
 	}
 	return g
+}
+
+// number is a site that the ball has found; added ones come behind all others.
+func (k *seeker) number(i int32) int32 {
+	if i < 0 {
+		return int32(len(k.sites)) - 1 - i
+	}
+	return k.of[i]
 }
 
 // equal is the difference of distance, relative to it, within which sites are equally
