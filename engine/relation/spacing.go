@@ -15,7 +15,7 @@ import (
 var spacing = &Definition{
 	Noun:    "SPACING",
 	RowIs:   "campaign",
-	Meaning: "how densely and how evenly the sites lie in their space",
+	Meaning: "how densely and how evenly the sites lie in their space; with DISTANCES also how much of it lies farther from every site (beyond_1, beyond_2 …)",
 	Example: `SELECT covering_radius, mesh_ratio, beyond_1 FROM SPACING OF hall DISTANCES (5);`,
 	Clauses: []string{"DISTANCES", "ACROSS", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
 	Zoned:   true,

@@ -5,6 +5,7 @@ import (
 	"math"
 	"math/rand/v2"
 	"reflect"
+	"strconv"
 	"testing"
 
 	"nearcell/voronoi/solid"
@@ -144,17 +145,21 @@ func TestPlacesWithoutASolid(t *testing.T) {
 	}
 }
 
-// Fifty further sites among ten thousand in an L-shaped room. Gaps are found once; the
-// figure of a place is what is left.
+// One and fifty further sites among ten thousand in an L-shaped room. Gaps are found once; what
+// fifty take longer is the figure of a place.
 func BenchmarkPlaces(b *testing.B) {
 	r := rand.New(rand.NewPCG(7, 3))
 	m := newRoom(b, r, false)
 	sites := m.places(r, 10_000)
 	d := diagramOf(b, sites, m.solid)
-	for b.Loop() {
-		if _, err := Places(context.Background(), d, sites, 50, PlaceOptions{}); err != nil {
-			b.Fatal(err)
-		}
+	for _, n := range []int{1, 50} {
+		b.Run(strconv.Itoa(n), func(b *testing.B) {
+			for b.Loop() {
+				if _, err := Places(context.Background(), d, sites, n, PlaceOptions{}); err != nil {
+					b.Fatal(err)
+				}
+			}
+			b.ReportMetric(float64(b.Elapsed().Microseconds())/float64(b.N)/10_000, "µs/site")
+		})
 	}
-	b.ReportMetric(float64(b.Elapsed().Microseconds())/float64(b.N)/10_000, "µs/site")
 }

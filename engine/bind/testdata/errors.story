@@ -143,14 +143,14 @@ input:1: WITHIN and UNCLIPPED say the opposite of each other
 plan
 SELECT * FROM CELLS OF hall METHOD SIBSON
 ----
-input:1: CELLS takes no METHOD (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEASURED IN, STRETCHED)
+input:1: CELLS takes no METHOD (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEASURED IN, STRETCHED, DISTANCES, ACROSS)
   SELECT * FROM CELLS OF hall METHOD SIBSON
                               ^^^^^^^^^^^^^
 
 plan
 SELECT * FROM CELLS OF hall AT z = 1.1
 ----
-input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEASURED IN, STRETCHED)
+input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEASURED IN, STRETCHED, DISTANCES, ACROSS)
   SELECT * FROM CELLS OF hall AT z = 1.1
                               ^^^^^^^^^^
 

@@ -1,13 +1,6 @@
 # What the language has and the engine lacks is refused by its name.
 
 plan
-SELECT * FROM PLACEMENTS OF hall
-----
-input:1: PLACEMENTS is not there yet
-  SELECT * FROM PLACEMENTS OF hall
-                ^^^^^^^^^^
-
-plan
 SELECT hidden FROM CELLS OF hall
 ----
 columns: hidden
