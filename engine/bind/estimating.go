@@ -107,6 +107,8 @@ func (b *binder) estimatingClause(rel *relation.Bound, c lang.Clause) (ok bool, 
 		return true, nil
 	case *lang.AtPointsClause:
 		return true, nil // bound with its rows
+	case *lang.UncertaintyClause:
+		return true, b.uncertain(rel, c)
 	case *lang.WeightsClause:
 		rel.Clauses.Weights, err = b.word(&c.Word, "a way to weigh cells that touch", "AREA", "CONTACT", "CONDUCTANCE")
 		return true, err

@@ -322,6 +322,7 @@ func (s *aggregateSink) say() {
 		return
 	}
 	s.weightNotes()
+	s.instrumentNotes()
 	s.ledgerNotes()
 	for _, m := range plan.SmoothedExtremes(s.node) {
 		s.env.Notes.Add(note.Note, note.Rows, "%s is that of %s METHOD %s, not of the readings: extremes are taken from the raw rows, or from METHOD MAX and MIN",

@@ -38,7 +38,7 @@ var clauses = []Clause{
 		"Distances are measured in a stretched space: with (1, 1, 5) a metre up counts as five. All results are in true units.",
 		"SELECT id, volume FROM CELLS OF hall STRETCHED (1, 1, 5);"},
 	{"UNCERTAINTY", "UNCERTAINTY column | UNCERTAINTY (column value EACH, value COMMON)",
-		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share. EXTREMES takes the column of each row's standard uncertainty, too.",
+		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share. It says nothing of how well they stand for the space between them. EXTREMES takes the column of each row's standard uncertainty, too.",
 		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON);"},
 	{"METHOD", "METHOD SIBSON | LAPLACE | LINEAR | NEAREST | IDW(power) | HOLD | MEAN | MAX | MIN",
 		"How values between the sites are estimated. SIBSON (the rule) weighs each site by what the cell of the place would take from it, LAPLACE by the areas of that cell's faces over the distances, " +

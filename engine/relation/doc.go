@@ -125,6 +125,6 @@
 //
 // # Limitations
 //
-// UNCERTAINTY is not there yet. Parts that are not solid.Divided, such as meshes, are
+// UNCERTAINTY by a column is not there yet. Parts that are not solid.Divided, such as meshes, are
 // refused. Contacts in parts are not remembered by the diagram. The whole input is held in memory.
 package relation

@@ -102,10 +102,19 @@ type Clauses struct {
 	On  []int // the one named by ON, or none
 	For []int // those named by FOR
 
+	Uncertain []Uncertain // of readings, by UNCERTAINTY
+
 	Weights string // of cells that touch: AREA, CONTACT or CONDUCTANCE
 
 	Estimating
 	Covering
+}
+
+// Uncertain is the standard uncertainty of the instruments behind a column of the input:
+// that of each of them by itself, and that which all of them share.
+type Uncertain struct {
+	Column       int
+	Each, Common float64
 }
 
 // Bound is a relation in a query after binding: what its rows look like.
@@ -175,6 +184,12 @@ func (b *Bound) Pruned(to []int) *Bound {
 		*list = slices.Clone(*list)
 		for i, at := range *list {
 			(*list)[i] = to[at]
+		}
+	}
+	c.Clauses.Uncertain = nil
+	for _, u := range b.Clauses.Uncertain {
+		if to[u.Column] >= 0 {
+			c.Clauses.Uncertain = append(c.Clauses.Uncertain, Uncertain{to[u.Column], u.Each, u.Common})
 		}
 	}
 	c.Log.Carried = nil
