@@ -148,7 +148,7 @@ func (b *Builder) AppendVector(v *Vector, on []uint64) {
 	if b.v.Type == Text && v.Type == Text && len(b.v.Dict.Texts) == 0 && len(v.Dict.Texts) > 0 {
 		b.v.Dict, b.borrowed, b.codes = v.Dict, true, nil
 	}
-	if on == nil && v.N > 0 && b.v.Type == v.Type && b.v.N&63 == 0 && b.v.Type != Text {
+	if on == nil && v.N > 0 && b.v.Type == v.Type && b.v.Type != Text {
 		b.appendWhole(v)
 		return
 	}
@@ -159,7 +159,7 @@ func (b *Builder) AppendVector(v *Vector, on []uint64) {
 	}
 }
 
-// appendWhole adds a whole vector where the bitmaps meet at a word's border.
+// appendWhole adds a whole vector of the builder's type.
 func (b *Builder) appendWhole(v *Vector) {
 	if v.Type == Null {
 		b.v.N += v.N
@@ -168,17 +168,33 @@ func (b *Builder) appendWhole(v *Vector) {
 	b.v.I = append(b.v.I, v.I...)
 	b.v.F = append(b.v.F, v.F...)
 	if v.Type == Boolean {
-		b.v.Bits = append(b.v.Bits, v.Bits[:Words(v.N)]...)
-		clearTail(b.v.Bits, b.v.N+v.N)
+		b.v.Bits = appendBits(b.v.Bits, b.v.N, v.Bits, v.N)
 	}
 	if v.Valid == nil {
-		b.v.Valid = append(b.v.Valid, AllOn(v.N)...)
+		b.v.Valid = appendBits(b.v.Valid, b.v.N, AllOn(v.N), v.N)
 	} else {
-		b.v.Valid = append(b.v.Valid, v.Valid[:Words(v.N)]...)
+		b.v.Valid = appendBits(b.v.Valid, b.v.N, v.Valid, v.N)
 		b.nulls = b.nulls || v.NullCount() > 0
 	}
 	b.v.N += v.N
-	clearTail(b.v.Valid, b.v.N)
+}
+
+// appendBits adds the first m bits of src behind the first n of dst, beyond which dst
+// has none. src may have more, those of a longer vector.
+func appendBits(dst []uint64, n int, src []uint64, m int) []uint64 {
+	words := Words(n + m)
+	shift := uint(n) & 63
+	for _, w := range src[:Words(m)] {
+		if shift == 0 {
+			dst = append(dst, w)
+			continue
+		}
+		dst[len(dst)-1] |= w << shift
+		dst = append(dst, w>>(64-shift))
+	}
+	dst = dst[:words]
+	clearTail(dst, n+m)
+	return dst
 }
 
 // clearTail clears the bits of b's last word beyond bit n. A slice of a longer

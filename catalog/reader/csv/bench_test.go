@@ -85,3 +85,17 @@ func wide(n int) []byte {
 	}
 	return b.Bytes()
 }
+
+// BenchmarkReadLog is a numeric log as loggers write it: a time and six numbers a row.
+func BenchmarkReadLog(b *testing.B) {
+	r := rand.New(rand.NewPCG(3, 4))
+	var w bytes.Buffer
+	w.WriteString("t,temp,rh,co2,dust,x,y\n")
+	for i := range 300_000 {
+		fmt.Fprintf(&w, "2031-04-%02d %02d:%02d:%02d,%.2f,%.1f,%d,%.4f,%.3f,%.3f\n", i/86400%28+1, i/3600%24, i/60%60, i%60,
+			2+6*r.Float64(), 100*r.Float64(), 400+r.IntN(900), r.Float64(), 30*r.Float64(), 18*r.Float64())
+	}
+	for _, threads := range []int{1, 2} {
+		b.Run(fmt.Sprintf("threads=%d", threads), func(b *testing.B) { benchmarkRead(b, w.Bytes(), reader.Options{Threads: threads}) })
+	}
+}

@@ -33,8 +33,15 @@ type builder struct {
 // build is the second pass: it makes the columns and finds the faults.
 func (im *importer) build() (*column.Table, error) {
 	b := &builder{naive: make([]bool, len(im.columns)), cells: make([]cell, len(im.columns))}
+	rows := 0
+	for _, f := range im.files {
+		for _, c := range f.chunks {
+			rows += c.records
+		}
+	}
 	for i := range im.columns {
 		b.columns = append(b.columns, column.NewBuilder(im.types[i], im.columns[i].unit))
+		b.columns[i].Grow(rows)
 	}
 	for _, f := range im.files {
 		im.enter(f)
@@ -57,28 +64,23 @@ func (im *importer) buildFile(f *file, b *builder) error {
 		at := im.fileColumns() + i
 		im.value(at, &field{text: p.text}, &b.cells[at], f, 0)
 	}
-	s := f.records()
-	for n := 0; s.next(); n++ {
-		if err := im.tick(n, s.pos); err != nil {
-			return err
+	return inOrder(im.ctx, im.threads(), len(f.chunks), func(i int) *built { return im.makeChunk(f, f.chunks[i], b.cells) }, func(i int, x *built) error {
+		for _, r := range x.refused {
+			f.facts.Refused++
+			if err := im.o.Refused(r.line, r.raw, r.x); err != nil {
+				return err
+			}
 		}
-		if f.skips(s) {
-			continue
+		im.faults.merge(&x.faults)
+		if len(im.faults.List) == 0 {
+			f.facts.Rows += x.rows
+			for k := range x.columns {
+				b.columns[k].AppendVector(&x.columns[k], nil)
+				b.naive[k] = b.naive[k] || x.naive[k]
+			}
 		}
-		ok, err := im.convert(s, f, n, b.cells)
-		if err != nil {
-			return err
-		}
-		if !ok || len(im.faults.List) > 0 {
-			continue
-		}
-		f.facts.Rows++
-		for i := range b.cells {
-			appendCell(b.columns[i], im.types[i], &b.cells[i])
-			b.naive[i] = b.naive[i] || b.cells[i].naive
-		}
-	}
-	return nil
+		return im.progress(f.chunks[i].to)
+	})
 }
 
 // convert turns record n of a file into cells. ok is false where it is at fault;
@@ -125,7 +127,6 @@ func (im *importer) refuse(s *scanner, f *file, x reader.Fault) error {
 		im.faults.add(x) // the caller has made sure that there is room
 		return nil
 	}
-	f.facts.Refused++
 	x.File = f.src.Name
 	return im.o.Refused(s.rec.line, s.data[s.rec.start:s.rec.end], x)
 }
@@ -206,6 +207,12 @@ func (im *importer) formed(t *tally, b []byte, c *cell, in *file, n int) reader.
 }
 
 func (im *importer) number(t column.Type, b []byte, c *cell) reader.FaultKind {
+	if t == column.Real {
+		if f, ok := quickReal(b, im.mark); ok {
+			c.f = f
+			return reader.NoFault
+		}
+	}
 	switch lookAtNumber(b, im.mark).class {
 	case isWord:
 		if notFinite(b) {

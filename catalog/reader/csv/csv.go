@@ -130,11 +130,8 @@ func (im *importer) recordFault(s *scanner, f *file) (reader.Fault, bool) {
 	return x, bad
 }
 
-// tick is called for every record: every so often it looks whether to go on.
-func (im *importer) tick(n, done int) error {
-	if n&1023 != 0 {
-		return nil
-	}
+// progress tells that a file has been passed up to a byte, and looks whether to go on.
+func (im *importer) progress(done int) error {
 	if im.o.Progress != nil {
 		im.o.Progress(im.done+int64(done), im.total)
 	}
@@ -170,40 +167,37 @@ func (im *importer) infer() error {
 }
 
 func (im *importer) inferFile(f *file) error {
-	s := f.records()
-	n := len(f.head.names)
-	extraUsed, undivided, records := false, 0, 0
-	for k := 0; s.next(); k++ {
-		if err := im.tick(k, s.pos); err != nil {
-			return err
+	extraUsed, undivided, records, number := false, 0, 0, 0
+	f.chunks = f.cut()
+	at, line, last := f.body, f.bodyLine, f.body
+	err := inOrder(im.ctx, im.threads(), len(f.chunks), func(i int) *surveyed { return im.survey(f, f.chunks[i]) }, func(i int, x *surveyed) error {
+		c := &f.chunks[i]
+		switch {
+		case at >= c.to: // a quoted field before it spans all of it
+			c.from, c.line, c.first, c.to = at, line, number, at
+			return im.progress(c.to)
+		case at != c.from: // it began within a quoted field
+			c.from = at
+			x = im.survey(f, *c)
 		}
-		if f.skips(s) {
-			im.facts.Blank++
-			continue
+		c.line, c.first, c.records = line, number, x.records
+		for k := range im.columns {
+			im.columns[k].merge(&x.columns[k], line-1)
 		}
-		if _, bad := im.recordFault(s, f); bad {
-			continue
-		}
-		if records++; n == 1 && bytes.ContainsAny(s.rec.fields[0].text, ",;\t|") && !s.rec.fields[0].quoted {
-			undivided++
-		}
-		for i := range s.rec.fields {
-			x := &s.rec.fields[i]
-			b := trim(x.text)
-			switch {
-			case i >= n:
-				extraUsed = extraUsed || len(b) > 0
-			case !im.isNull(b):
-				im.columns[f.column[i]].add(b, im.mark, x.line, f.src.Name)
-			}
-		}
+		im.facts.Blank += x.blank
+		records, undivided, extraUsed = records+x.records, undivided+x.undivided, extraUsed || x.extraUsed
+		number += x.n
+		at, line, last = x.end, line+x.line-1, x.lastEnd
+		return im.progress(x.end)
+	})
+	if err != nil {
+		return err
 	}
 	f.facts.Undivided = im.o.Delimiter == 0 && 2*undivided > records
-	lines := s.line
-	if s.lineStart == len(f.data) {
-		lines-- // the last line break begins no line
+	if last == len(f.data) {
+		line-- // the last line break begins no line
 	}
-	im.facts.Lines += lines
+	im.facts.Lines += line
 	for i, b := range f.preamble {
 		if !im.isNull(b.text) {
 			im.columns[im.fileColumns()+i].add(b.text, im.mark, b.line, f.src.Name)

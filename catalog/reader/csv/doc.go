@@ -13,6 +13,12 @@
 // from all of its values, the second makes the columns and lists what does not
 // fit, so that a fault on the first line and one on the last are treated alike.
 //
+// Both passes cut the file into chunks that are read side by side. A chunk is taken to
+// begin a record behind a line break; the chunk before it tells in the end whether it does,
+// and where it began within a quoted field it is read again from where its first record
+// begins. Chunks are put together in their order and are of one length for any number of
+// threads: nothing that comes of a file depends on how many there are.
+//
 // # Types
 //
 // A column is INTEGER where every present value is a 64-bit integer, REAL where

@@ -23,6 +23,7 @@ type file struct {
 	body     int   // where the records begin
 	bodyLine int
 	preamble []constant
+	chunks   []chunk // of the records
 
 	// For each of Options.Times: the instants of records whose local time a
 	// clock change repeats, where the order of the records decides.

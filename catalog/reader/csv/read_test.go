@@ -49,6 +49,9 @@ func TestReadingStops(t *testing.T) {
 
 func TestProgress(t *testing.T) {
 	data := readings(5000)
+	usual := chunkBytes
+	defer func() { chunkBytes = usual }()
+	chunkBytes = 32 << 10
 	var seen []int64
 	_, err := Reader{}.Read(context.Background(), &reader.Source{Data: data}, reader.Options{Progress: func(done, total int64) {
 		if total != 2*int64(len(data)) || done > total || len(seen) > 0 && done < seen[len(seen)-1] {

@@ -72,7 +72,7 @@ func point(format byte, x, y, z int32, extra int) []byte {
 		le.PutUint16(p[18:], 501)
 	} else {
 		p[14], p[15], p[16], p[17] = 9|12<<4, 1<<3|2<<4|1<<7, 200, 77 // return 9 of 12, overlap, channel 2, edge
-		le.PutUint16(p[18:], uint16(0x10000-2500))                     // -15°
+		le.PutUint16(p[18:], uint16(0x10000-2500))                    // -15°
 		le.PutUint16(p[20:], 501)
 		rest = 22
 	}

@@ -65,6 +65,18 @@ func (g *Guess) Add(b []byte) {
 	}
 }
 
+// Merge adds the values that another Guess has seen.
+func (g *Guess) Merge(other *Guess) {
+	switch {
+	case other.seen == 0:
+	case g.seen == 0:
+		*g = Guess{seen: other.seen, left: slices.Clone(other.left)}
+	default:
+		g.seen += other.seen
+		g.left = slices.DeleteFunc(g.left, func(i int) bool { return !slices.Contains(other.left, i) })
+	}
+}
+
 // Possible reports whether a pattern fits all values so far.
 func (g *Guess) Possible() bool { return g.seen == 0 || len(g.left) > 0 }
 
