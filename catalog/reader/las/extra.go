@@ -67,7 +67,7 @@ func (h *header) describedBytes(data []byte) ([]field, []reader.ColumnNote, *rea
 		if options&16 != 0 {
 			x.offset, x.scaled = math.Float64frombits(binary.LittleEndian.Uint64(body[136:])), true
 		}
-		if !finite(x.scale) || !finite(x.offset) || x.scale == 0 {
+		if !plausible(x.scale, x.offset) {
 			return nil, nil, &reader.Fault{Kind: reader.Damaged, Text: "header", Detail: "scale or offset", FieldName: name}
 		}
 		f := field{name: name, kind: column.Integer, at: at, extra: x, read: readExtra}

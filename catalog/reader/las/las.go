@@ -103,7 +103,7 @@ func readHeader(data []byte) (*header, *reader.Fault) {
 	for i := range 3 {
 		h.scale[i] = math.Float64frombits(le.Uint64(data[131+8*i:]))
 		h.offset[i] = math.Float64frombits(le.Uint64(data[155+8*i:]))
-		if x := h.scale[i]; !(math.Abs(x) > 0) || math.IsInf(x, 0) || math.IsNaN(h.offset[i]) || math.IsInf(h.offset[i], 0) {
+		if !plausible(h.scale[i], h.offset[i]) {
 			return nil, &reader.Fault{Kind: reader.Damaged, Text: "header", Detail: "scale or offset"}
 		}
 	}
@@ -112,6 +112,14 @@ func readHeader(data []byte) (*header, *reader.Fault) {
 		return nil, &reader.Fault{Kind: reader.CutShort, Text: "points", Got: int(fit), Expected: int(min(h.count, math.MaxInt64))}
 	}
 	return h, nil
+}
+
+// plausible bounds scale and offset to what lengths can be: a flipped bit may give 300
+// digits, which would be worked out for every point.
+func plausible(scale, offset float64) bool {
+	const most = 1e30
+	small := math.Abs(offset) < 1/most && offset != 0
+	return math.Abs(scale) > 1/most && math.Abs(scale) < most && math.Abs(offset) < most && !small
 }
 
 // readFile reads one file.

@@ -304,3 +304,24 @@ func FuzzRead(f *testing.F) {
 		}
 	})
 }
+
+// A flipped bit is a fault or gives a table that holds together.
+func TestFlipped(t *testing.T) {
+	whole := sample()
+	for i := range whole {
+		for _, bit := range []byte{1, 0x80} {
+			data := bytes.Clone(whole)
+			data[i] ^= bit
+			r, err := read(data)
+			var faults *reader.Faults
+			if err != nil && !errors.As(err, &faults) {
+				t.Fatalf("byte %d: %v", i, err)
+			}
+			if err == nil {
+				if err := r.Table.Validate(); err != nil {
+					t.Fatalf("byte %d: %v", i, err)
+				}
+			}
+		}
+	}
+}
