@@ -3,7 +3,9 @@ package catalog
 import (
 	"context"
 	"encoding/json"
+	"errors"
 	"fmt"
+	"path/filepath"
 	"slices"
 	"sort"
 	"strings"
@@ -18,6 +20,10 @@ import (
 // goroutines; changes wait for each other.
 type Catalog struct {
 	dir *store.Dir // nil: in memory
+
+	derivedOnce sync.Once
+	derived     *store.Dir // what was computed of the objects; see Derived
+	derivedErr  error
 
 	mu      sync.RWMutex
 	objects map[string]*entry // in memory, all; in a folder, those read so far
@@ -49,7 +55,27 @@ func (c *Catalog) Close() error {
 	if c.dir == nil {
 		return nil
 	}
-	return c.dir.Close()
+	err := c.dir.Close()
+	if c.derived != nil {
+		err = errors.Join(err, c.derived.Close())
+	}
+	return err
+}
+
+// derivedName is the folder in the catalog's of what was computed of its objects.
+const derivedName = "diagrams"
+
+// Derived is a folder for what is computed of the objects and can be computed again, nil
+// of a catalog in memory. Its files are apart from those of the objects, so that nothing
+// that befalls them touches these. It is open until Close.
+func (c *Catalog) Derived() (*store.Dir, error) {
+	if c.dir == nil {
+		return nil, nil
+	}
+	c.derivedOnce.Do(func() {
+		c.derived, c.derivedErr = store.Open(filepath.Join(c.dir.Path(), derivedName))
+	})
+	return c.derived, c.derivedErr
 }
 
 // Get is the object with the key, with its table; *ErrNoSuch where there is

@@ -24,6 +24,9 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 	case *lang.CreateView:
 		return s.createView(st, t)
 	case *lang.Drop:
+		if t.Kind == lang.Diagrams {
+			return s.dropDiagrams(ctx)
+		}
 		return s.drop(st, t)
 	case *lang.Let:
 		return s.let(ctx, st, t)
@@ -43,7 +46,7 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 	case *lang.Run:
 		return s.runFile(ctx, st, t)
 	case *lang.Set:
-		return s.set(st, t)
+		return s.set(ctx, st, t)
 	case *lang.Help:
 		return s.help(st, t)
 	case *lang.Quit:
@@ -65,10 +68,6 @@ func refuse(st *statement, tree lang.Statement) error {
 		what = "TEXT"
 		if t.Title {
 			what = "TITLE"
-		}
-	case *lang.Drop:
-		if t.Kind == lang.Diagrams {
-			what = "DROP " + string(t.Kind)
 		}
 	}
 	if what == "" {

@@ -205,7 +205,7 @@ func TestTopics(t *testing.T) {
 			t.Errorf("HELP %s says too little: %s", n, out.String())
 		}
 	}
-	for _, word := range append(ListTopics(), plannedLists...) {
+	for _, word := range ListTopics() {
 		if listMeanings[word] == "" {
 			t.Errorf("nothing is known of LIST %s", word)
 		}

@@ -289,10 +289,6 @@ func (s *Session) settingTopics() []topic {
 				p.say(k.meaning + " It is now " + k.value(s) + ".")
 			}})
 	}
-	for _, name := range plannedSettings {
-		list = append(list, topic{name: name, also: []string{"SET " + name}, kind: "a setting", summary: "A setting of the language.",
-			there: func() bool { return false }, write: func(*page) {}})
-	}
 	return list
 }
 

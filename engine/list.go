@@ -22,19 +22,15 @@ var lists = map[string]func(*Session) (*column.Table, error){
 	"VIEWS":     listTexts(catalog.View),
 	"FRAMES":    (*Session).listFrames,
 	"GEOMETRY":  (*Session).listGeometry,
+	"DIAGRAMS":  (*Session).listDiagrams,
 	"FUNCTIONS": (*Session).listFunctions,
 	"VALUES":    (*Session).listValues,
 }
-
-var plannedLists = []string{"DIAGRAMS"}
 
 func (s *Session) list(st *statement, t *lang.List) error {
 	word := strings.ToUpper(t.What.Text)
 	table, ok := lists[word]
 	if !ok {
-		if slices.Contains(plannedLists, word) {
-			return problem.NotThereYet(st.at(t), "LIST "+word)
-		}
 		names := slices.Sorted(maps.Keys(lists))
 		p := problem.New("list", st.at(t.What), "LIST does not know '%s'", t.What.Text)
 		if near := lang.Nearest(word, names); near != "" {

@@ -37,19 +37,10 @@ var listMeanings = map[string]string{
 // listTopicNames are the lists as they are typed.
 func listTopicNames() []string {
 	var names []string
-	for _, word := range append(ListTopics(), plannedLists...) {
+	for _, word := range ListTopics() {
 		names = append(names, "LIST "+word)
 	}
 	return names
-}
-
-// plannedListForms are the lists that are not there yet.
-func plannedListForms() []form {
-	var list []form
-	for _, word := range plannedLists {
-		list = append(list, form{"LIST " + word, "LIST " + word + ";"})
-	}
-	return list
 }
 
 // listLines are the words behind LIST, each with what it shows.

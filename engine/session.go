@@ -56,6 +56,7 @@ type Session struct {
 	checkOnly bool
 	solids    *bind.SolidCache
 	verdicts  []verdict // of REQUIRE, in their order
+	untold    []error   // of kept diagrams, for the next statement
 }
 
 // defaultDiagramMemory is what the diagrams of a session may hold on to.
@@ -70,7 +71,7 @@ func New(c *catalog.Catalog, o Options) *Session {
 	if memory == 0 {
 		memory = defaultDiagramMemory
 	}
-	return &Session{
+	s := &Session{
 		o:        o,
 		catalog:  c,
 		solids:   &bind.SolidCache{},
@@ -80,6 +81,8 @@ func New(c *catalog.Catalog, o Options) *Session {
 		places:   &exec.Places{},
 		digits:   present.DefaultDigits,
 	}
+	s.keepDiagrams()
+	return s
 }
 
 // ErrFailed says that a statement failed and that its error has been printed.
@@ -191,6 +194,7 @@ func (s *Session) runStatement(ctx context.Context, source *problem.Source, fold
 	if err != nil && ctx.Err() != nil {
 		return ctx.Err()
 	}
+	s.tellOfKeeping(st)
 	warned := s.printNotes(st.notes)
 	if err != nil && !errors.Is(err, errQuit) && !errors.Is(err, ErrFailed) {
 		return wordStore(problem.At(err, st.at(tree)))

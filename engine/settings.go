@@ -1,6 +1,7 @@
 package engine
 
 import (
+	"context"
 	"strconv"
 	"strings"
 
@@ -11,7 +12,7 @@ import (
 )
 
 // setting is a registry line of what SET changes: a whole number from 1 to most,
-// kept where field says.
+// kept where field says; without one it is CACHE, a size that the catalog keeps.
 type setting struct {
 	name    string
 	meaning string
@@ -26,10 +27,8 @@ var settings = []setting{
 		present.MaxDigits, "", func(s *Session) *int { return &s.digits }},
 	{"ROWS", "Rows of a table that are printed at most; SAVE keeps all of them.",
 		present.MaxTableRows, "as many as the screen has room for", func(s *Session) *int { return &s.rowLimit }},
+	{name: cacheSetting, meaning: "What kept diagrams may take in the catalog, for every later session; those used least recently go first. With 0 none is kept."},
 }
-
-// plannedSettings are settings of the language that are not there yet.
-var plannedSettings = []string{"CACHE"}
 
 func settingNames() []string {
 	names := make([]string, len(settings))
@@ -41,6 +40,9 @@ func settingNames() []string {
 
 // syntax is how the setting is written.
 func (k setting) syntax() string {
+	if k.field == nil {
+		return "SET " + k.name + " 'size';  -- such as '2GiB'; 0 keeps none"
+	}
 	return "SET " + k.name + " n;  -- a whole number from 1 to " + strconv.FormatInt(k.most, 10)
 }
 
@@ -54,6 +56,9 @@ func settingSyntax() []string {
 
 // value is what holds now.
 func (k setting) value(s *Session) string {
+	if k.field == nil {
+		return s.cacheText()
+	}
 	if n := *k.field(s); n > 0 {
 		return strconv.Itoa(n)
 	}
@@ -61,16 +66,14 @@ func (k setting) value(s *Session) string {
 }
 
 // set is SET name value.
-func (s *Session) set(st *statement, t *lang.Set) error {
+func (s *Session) set(ctx context.Context, st *statement, t *lang.Set) error {
 	word := strings.ToUpper(t.Name.Text)
 	for _, k := range settings {
+		if k.name == word && k.field == nil {
+			return s.setCache(ctx, st, t)
+		}
 		if k.name == word {
 			return s.setCount(st, t, k)
-		}
-	}
-	for _, p := range plannedSettings {
-		if p == word {
-			return problem.NotThereYet(st.at(t), "SET "+word)
 		}
 	}
 	p := problem.New("setting", st.at(t.Name), "there is no setting '%s'", t.Name.Text)

@@ -71,7 +71,10 @@ func dataStatements() []entry {
 			syntax:  []string{"DROP CAMPAIGN | TABLE | SOLID | VIEW | FRAME name;", "DROP DIAGRAMS;"},
 			meaning: "Removes a thing from the catalog. The file from which it was made stays.",
 			example: "DROP TABLE log;",
-			forms:   []form{{"DROP FRAME", "DROP FRAME plan;"}, {"DROP DIAGRAMS", "DROP DIAGRAMS;"}},
+			more: []string{
+				"DROP DIAGRAMS removes what is kept of computed diagrams; they are computed again when they are asked for.",
+			},
+			forms: []form{{"DROP FRAME", "DROP FRAME plan;"}, {"DROP DIAGRAMS", "DROP DIAGRAMS;"}},
 		},
 		{
 			name: "LET", also: []string{"VALUE", "PARAMETER"},
@@ -143,7 +146,6 @@ func sessionStatements() []entry {
 			meaning: "Lists what there is, in the catalog and in the language. These are the words.",
 			more:    listLines(),
 			example: "LIST GEOMETRY;",
-			forms:   plannedListForms(),
 			see:     []string{"DESCRIBE"},
 		},
 		{
@@ -170,8 +172,9 @@ func sessionStatements() []entry {
 		{
 			name: "SET", also: []string{"SETTING"},
 			syntax:  settingSyntax(),
-			meaning: "Changes a setting of the session.",
+			meaning: "Changes a setting of the session, but for CACHE, which is the catalog's.",
 			example: "SET DIGITS 8;",
+			forms:   []form{{"SET CACHE", "SET CACHE '2GiB';"}},
 			see:     []string{"SETTINGS", "LIST SETTINGS"},
 		},
 		{

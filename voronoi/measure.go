@@ -19,27 +19,26 @@ func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*C
 	if err != nil {
 		return nil, err
 	}
-	out := newCells(want, r.sites)
-	for row, s := range r.sites {
-		if c := d.cell[s]; c >= 0 {
-			out.Inside[row] = true
-			out.Multiplicity[row] = d.count[c]
-		}
-	}
+	out := d.blank(want, r)
 	g, err := d.choose(ctx, want, len(r.cells))
 	if err != nil {
 		return nil, err
 	}
+	return out, d.fill(ctx, g, r, want, out)
+}
+
+// fill measures the cells of a request, with g or one by one.
+func (d *Diagram) fill(ctx context.Context, g *dual, r *request, want Measures, out *Cells) (err error) {
 	var y *tallies
 	if g != nil && want&tallied != 0 && !d.stretched {
 		if y, err = g.tally(ctx, want, d.tallyThreads()); err != nil {
-			return nil, err
+			return err
 		}
 	}
 	if g != nil && (want&^tallied != 0 || d.stretched) {
 		g.list()
 	}
-	err = d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
+	return d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
 		b.use(g, y)
 		rows := r.rows[r.start[k]:r.start[k+1]]
 		if err := b.measure(r.cells[k], want, out, rows[0]); err != nil {
@@ -50,10 +49,18 @@ func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*C
 		}
 		return nil
 	})
-	if err != nil {
-		return nil, err
+}
+
+// blank is the answer to a request before anything of it is measured.
+func (d *Diagram) blank(want Measures, r *request) *Cells {
+	out := newCells(want, r.sites)
+	for row, s := range r.sites {
+		if c := d.cell[s]; c >= 0 {
+			out.Inside[row] = true
+			out.Multiplicity[row] = d.count[c]
+		}
 	}
-	return out, nil
+	return out
 }
 
 func newCells(want Measures, sites []int32) *Cells {

@@ -12,6 +12,7 @@ import (
 	"path/filepath"
 	"slices"
 	"strings"
+	"time"
 
 	"github.com/cespare/xxhash/v2"
 
@@ -62,6 +63,30 @@ func (d *Dir) Change(ctx context.Context, f func(tx *Tx) error) error {
 	return d.sweep(tx.m)
 }
 
+// Renew empties a folder whose manifest is damaged, for callers who can make again all
+// that it held. One that is good, or that a newer program has written, stays as it is.
+func (d *Dir) Renew(ctx context.Context) error {
+	d.change.Lock()
+	defer d.change.Unlock()
+	unlock, err := d.lock(ctx)
+	if err != nil {
+		return err
+	}
+	defer unlock()
+	d.mu.Lock()
+	err = d.refresh()
+	d.mu.Unlock()
+	var damaged *DamagedError
+	if !errors.As(err, &damaged) {
+		return err
+	}
+	tx := &Tx{dir: d, m: &manifest{Generation: uint64(time.Now().UnixNano())}} // names of files are not used again
+	if err := tx.commit(); err != nil {
+		return errors.Join(err, tx.undo())
+	}
+	return d.sweep(tx.m)
+}
+
 // at tells a test that a step is done.
 func (d *Dir) at(step string) {
 	if d.step != nil {
@@ -77,19 +102,40 @@ func (tx *Tx) Find(key string) (Record, bool) {
 	return Record{}, false
 }
 
+// Records is what this change sees, sorted by key but for what it has put.
+func (tx *Tx) Records() []Record { return slices.Clone(tx.m.Objects) }
+
 // Put adds a record, or replaces the one of its key. t may be nil. What meta
 // turns into as JSON is kept with it.
 func (tx *Tx) Put(key string, meta any, t *column.Table) error {
+	var f *File
+	if t != nil {
+		err := t.Validate()
+		if err != nil {
+			return err
+		}
+		if f, err = tx.write(key, t.N, func(w io.Writer) error { return Encode(w, t) }); err != nil {
+			return err
+		}
+	}
+	return tx.put(key, meta, f)
+}
+
+// PutArrays is Put of a record with arrays in the place of a table.
+func (tx *Tx) PutArrays(key string, meta any, arrays Arrays) error {
+	f, err := tx.write(key, 1, func(w io.Writer) error { return EncodeArrays(w, arrays) })
+	if err != nil {
+		return err
+	}
+	return tx.put(key, meta, f)
+}
+
+func (tx *Tx) put(key string, meta any, f *File) error {
 	raw, err := json.Marshal(meta)
 	if err != nil {
 		return err
 	}
-	rec := Record{Key: key, Meta: raw}
-	if t != nil {
-		if rec.File, err = tx.write(key, t); err != nil {
-			return err
-		}
-	}
+	rec := Record{Key: key, File: f, Meta: raw}
 	tx.Delete(key)
 	tx.m.Objects = append(tx.m.Objects, rec)
 	tx.changed = true
@@ -104,19 +150,16 @@ func (tx *Tx) Delete(key string) {
 	}
 }
 
-// write puts a table into a file of its own.
-func (tx *Tx) write(key string, t *column.Table) (*File, error) {
-	if err := t.Validate(); err != nil {
-		return nil, err
-	}
+// write puts what encode writes into a file of its own.
+func (tx *Tx) write(key string, rows int, encode func(io.Writer) error) (*File, error) {
 	d := tx.dir
 	name := fmt.Sprintf("%s-%06d-%d%s", plainName(key), tx.m.Generation, len(tx.written), tableSuffix)
-	f := &File{Name: name, Rows: t.N}
+	f := &File{Name: name, Rows: rows}
 	tx.written = append(tx.written, name)
 	sum := xxhash.New()
 	err := writeAside(d.tablePath(name), func(w io.Writer) error {
 		n := &counter{}
-		if err := Encode(io.MultiWriter(w, sum, n), t); err != nil {
+		if err := encode(io.MultiWriter(w, sum, n)); err != nil {
 			return err
 		}
 		f.Size = n.n

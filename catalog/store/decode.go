@@ -144,7 +144,7 @@ func texts(a arrow.ArrayData, t arrow.DataType) (*column.Dict, error) {
 }
 
 type fixed interface {
-	~int64 | ~float64 | ~uint32 | ~uint64
+	~int64 | ~float64 | ~uint32 | ~uint64 | ~int32 | ~uint8
 }
 
 // view reads n values in the machine's byte order, without a copy where the

@@ -44,8 +44,9 @@ type Dir struct {
 
 // mapped is an open file.
 type mapped struct {
-	table *column.Table
-	unmap func() error
+	table  *column.Table // one of the two
+	arrays Arrays
+	unmap  func() error
 }
 
 // Open is the folder at path. One that does not exist is empty, and is made by
@@ -132,14 +133,40 @@ func (d *Dir) Find(key string) (rec Record, ok bool, err error) {
 
 // FindTable is the record of a key and its table, nil if it has none.
 func (d *Dir) FindTable(key string) (rec Record, t *column.Table, ok bool, err error) {
+	rec, m, ok, err := d.find(key, func(m *mapped, data []byte) (err error) {
+		m.table, err = Decode(data)
+		return err
+	})
+	if m != nil {
+		t = m.table
+	}
+	return rec, t, ok, err
+}
+
+// FindArrays is the record of a key and its arrays, nil if it has none.
+func (d *Dir) FindArrays(key string) (rec Record, a Arrays, ok bool, err error) {
+	rec, m, ok, err := d.find(key, func(m *mapped, data []byte) (err error) {
+		m.arrays, err = DecodeArrays(data)
+		return err
+	})
+	if m != nil {
+		a = m.arrays
+	}
+	return rec, a, ok, err
+}
+
+// decoder makes of a file's bytes what the file holds.
+type decoder func(m *mapped, data []byte) error
+
+func (d *Dir) find(key string, decode decoder) (rec Record, m *mapped, ok bool, err error) {
 	for last := ""; ; {
 		rec, ok, err = d.Find(key)
 		if err != nil || !ok || rec.File == nil {
 			return rec, nil, ok, err
 		}
-		t, err = d.load(rec.File)
+		m, err = d.load(rec.File, decode)
 		if err == nil || !errors.Is(err, fs.ErrNotExist) {
-			return rec, t, true, err
+			return rec, m, true, err
 		}
 		// Another program may have replaced it between the two looks.
 		if rec.File.Name == last {
@@ -149,42 +176,62 @@ func (d *Dir) FindTable(key string) (rec Record, t *column.Table, ok bool, err e
 	}
 }
 
-// load maps a file, checks it and makes a table of it, once.
-func (d *Dir) load(f *File) (*column.Table, error) {
+// load maps a file, checks it and takes it over, once.
+func (d *Dir) load(f *File, decode decoder) (*mapped, error) {
 	d.mu.Lock()
 	defer d.mu.Unlock()
 	if d.closed {
 		return nil, errClosed
 	}
 	if m := d.files[f.Name]; m != nil {
-		return m.table, nil
+		return m, nil
 	}
 	path := d.tablePath(f.Name)
 	data, unmap, err := mapFile(path)
 	if err != nil {
 		return nil, err
 	}
-	t, err := check(path, f, data)
-	if err != nil {
+	m := &mapped{unmap: unmap}
+	if err := check(path, f, data, func() error { return decode(m, data) }); err != nil {
 		return nil, errors.Join(err, unmap())
 	}
-	d.files[f.Name] = &mapped{table: t, unmap: unmap}
-	return t, nil
+	d.files[f.Name] = m
+	return m, nil
 }
 
 // check compares a file with what the manifest says of it, and reads it.
-func check(path string, f *File, data []byte) (*column.Table, error) {
+func check(path string, f *File, data []byte, decode func() error) error {
 	if int64(len(data)) != f.Size {
-		return nil, &DamagedError{Path: path, Reason: fmt.Sprintf("%d bytes, expected %d", len(data), f.Size)}
+		return &DamagedError{Path: path, Reason: fmt.Sprintf("%d bytes, expected %d", len(data), f.Size)}
 	}
 	if sum := hashText(xxhash.Sum64(data)); sum != f.XXH64 {
-		return nil, &DamagedError{Path: path, Reason: fmt.Sprintf("checksum %s, expected %s", sum, f.XXH64)}
+		return &DamagedError{Path: path, Reason: fmt.Sprintf("checksum %s, expected %s", sum, f.XXH64)}
 	}
-	t, err := Decode(data)
+	if err := decode(); err != nil {
+		return &DamagedError{Path: path, Reason: err.Error()}
+	}
+	return nil
+}
+
+// Touch marks the file of a record as used now, and Used tells when that was. A folder
+// that may not be written keeps what it says.
+func (d *Dir) Touch(rec Record) {
+	if rec.File != nil {
+		now := time.Now()
+		_ = os.Chtimes(d.tablePath(rec.File.Name), now, now)
+	}
+}
+
+// Used is when the file of a record was written or last touched; zero without one.
+func (d *Dir) Used(rec Record) time.Time {
+	if rec.File == nil {
+		return time.Time{}
+	}
+	info, err := os.Stat(d.tablePath(rec.File.Name))
 	if err != nil {
-		return nil, &DamagedError{Path: path, Reason: err.Error()}
+		return time.Time{}
 	}
-	return t, nil
+	return info.ModTime()
 }
 
 // Close lets the files go. Tables must not be used afterwards.

@@ -49,7 +49,7 @@ var arrows = map[string][]string{
 	"engine/problem/catalogue": {},
 	"engine/function":          {"catalog/column"},
 	"engine/expr":              {"catalog/column", "engine/function", "engine/problem", "lang"},
-	"engine/diagram":           {"voronoi/..."},
+	"engine/diagram":           {"catalog/store", "voronoi/..."},
 	"engine/relation":          {"catalog/column", "engine/diagram", "engine/note", "engine/problem", "engine/series", "engine/spatial", "lang", "voronoi/..."},
 	"engine/series":            {},
 	"engine/spatial":           {},

@@ -1,8 +1,6 @@
 package main
 
 import (
-	"math"
-	"strconv"
 	"strings"
 
 	"github.com/spf13/pflag"
@@ -72,26 +70,11 @@ func (f *flags) letAll(s *engine.Session) error {
 	return nil
 }
 
-var sizes = []struct {
-	suffix string
-	factor float64
-}{
-	{"KiB", 1 << 10}, {"MiB", 1 << 20}, {"GiB", 1 << 30}, {"TiB", 1 << 40},
-	{"KB", 1e3}, {"MB", 1e6}, {"GB", 1e9}, {"TB", 1e12}, {"B", 1},
-}
-
 // bytesOf reads a size such as 8GiB or 500MB.
 func bytesOf(text string) (int64, error) {
-	number, factor := text, 1.0
-	for _, s := range sizes {
-		if rest, ok := strings.CutSuffix(text, s.suffix); ok {
-			number, factor = rest, s.factor
-			break
-		}
-	}
-	x, err := strconv.ParseFloat(strings.TrimSpace(number), 64)
-	if err != nil || !(x > 0) || x*factor > math.MaxInt64/2 {
+	n, ok := engine.ParseSize(text)
+	if !ok || n == 0 {
 		return 0, usage("--memory takes a size such as 8GiB, not '%s'", text)
 	}
-	return int64(x * factor), nil
+	return n, nil
 }

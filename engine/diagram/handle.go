@@ -3,7 +3,6 @@ package diagram
 import (
 	"container/list"
 	"context"
-	"slices"
 	"sync/atomic"
 
 	"nearcell/voronoi"
@@ -24,9 +23,11 @@ type Handle struct {
 
 	progress atomic.Pointer[func(done, total int)]
 
-	busy     chan struct{} // held by who computes; guards what follows
-	known    []voronoi.Measures
-	cells    voronoi.Cells
+	of, within string // what it is made for; under store.mu
+
+	busy     chan struct{}       // held by who computes; guards what follows
+	measured [2]cellSet          // one by one, and with the tetrahedralisation
+	remake   bool                // its file was damaged and is to be written again
 	contacts [][]voronoi.Contact // nil: not computed
 	kept     int64               // bytes of a tetrahedralisation
 	gaps     *[]coverage.Gap     // nil: not looked for
@@ -110,151 +111,6 @@ func (h *Handle) Hidden(ctx context.Context, sites []int32, progress func(done, 
 	}
 	defer h.unlock()
 	return h.d.Hidden(ctx, sites)
-}
-
-// PiecesOf gives the cells of the given sites (nil: all) as convex polyhedra, as
-// voronoi.Diagram.Pieces does. They are not kept.
-func (h *Handle) PiecesOf(ctx context.Context, sites []int32, progress func(done, total int)) ([][]voronoi.Piece, error) {
-	if err := h.lock(ctx, progress); err != nil {
-		return nil, err
-	}
-	defer h.unlock()
-	return h.d.Pieces(ctx, sites)
-}
-
-// Measure computes the wanted measures of the given sites (nil: all), as far as
-// they are not known. In the answer, entry s of each array belongs to site s of
-// the diagram; only the entries of the sites asked for are to be read, and none
-// is to be changed. Cells.Sites is nil.
-func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int32,
-	progress func(done, total int)) (*voronoi.Cells, error) {
-	if err := h.lock(ctx, progress); err != nil {
-		return nil, err
-	}
-	defer h.unlock()
-	missing, all := h.missing(want, sites)
-	if len(missing) > 0 || all {
-		if all {
-			missing = nil
-		}
-		got, err := h.d.Measure(ctx, want, missing)
-		if err != nil {
-			return nil, err
-		}
-		h.store.count(len(got.Sites), 0)
-		h.store.grow(h, h.merge(want, got)+h.keptMore())
-	}
-	view := h.cells
-	return &view, nil
-}
-
-// missing lists the sites asked for of which a wanted measure is unknown; all
-// tells that these are all sites of the diagram.
-func (h *Handle) missing(want voronoi.Measures, sites []int32) (list []int32, all bool) {
-	n := h.d.Len()
-	if h.known == nil {
-		if sites == nil {
-			return nil, true
-		}
-		return distinctSites(sites, n), false
-	}
-	if sites == nil {
-		for s := range int32(n) {
-			if want&^h.known[s] != 0 {
-				list = append(list, s)
-			}
-		}
-		return list, len(list) == n
-	}
-	for _, s := range sites {
-		if want&^h.known[s] != 0 {
-			list = append(list, s)
-		}
-	}
-	return distinctSites(list, n), false
-}
-
-// distinctSites is the sites in ascending order, each once.
-func distinctSites(sites []int32, n int) []int32 {
-	if len(sites) == 0 {
-		return nil
-	}
-	list := slices.Clone(sites)
-	slices.Sort(list)
-	return slices.Compact(list)
-}
-
-// merge takes measures over and returns the bytes of new arrays.
-func (h *Handle) merge(want voronoi.Measures, got *voronoi.Cells) int64 {
-	n := h.d.Len()
-	var bytes int64
-	if h.known == nil {
-		h.known = make([]voronoi.Measures, n)
-		bytes += 4 * int64(n)
-	}
-	c, into := &h.cells, target{got.Sites, h.known}
-	const any = ^voronoi.Measures(0) // present whatever was asked for
-	bytes += put(into, any, &c.Inside, got.Inside, 1)
-	bytes += put(into, any, &c.Multiplicity, got.Multiplicity, 4)
-	bytes += put(into, voronoi.Volume, &c.Volume, got.Volume, 8)
-	bytes += put(into, voronoi.Area, &c.Area, got.Area, 8)
-	bytes += put(into, voronoi.WallArea, &c.WallArea, got.WallArea, 8)
-	bytes += put(into, voronoi.Faces, &c.Faces, got.Faces, 4)
-	bytes += put(into, voronoi.Faces, &c.Edges, got.Edges, 4)
-	bytes += put(into, voronoi.Faces, &c.Vertices, got.Vertices, 4)
-	bytes += put(into, voronoi.Faces, &c.Shaped, got.Shaped, 1)
-	bytes += put(into, voronoi.Neighbours, &c.Neighbours, got.Neighbours, 4)
-	bytes += put(into, voronoi.Bounded, &c.Bounded, got.Bounded, 1)
-	bytes += put(into, voronoi.Clipped, &c.Clipped, got.Clipped, 1)
-	bytes += put(into, voronoi.Centroid, &c.Centroid, got.Centroid, 24)
-	bytes += put(into, voronoi.Centroid, &c.HasCentroid, got.HasCentroid, 1)
-	bytes += put(into, voronoi.Farthest, &c.Farthest, got.Farthest, 8)
-	bytes += put(into, voronoi.NearestFace, &c.NearestFace, got.NearestFace, 8)
-	for _, s := range got.Sites {
-		h.known[s] |= want
-	}
-	return bytes
-}
-
-// target is where measures go: the sites that were measured, and what was known
-// of every site before.
-type target struct {
-	sites []int32
-	known []voronoi.Measures
-}
-
-// put writes the values of the measured sites into an array over all sites. An
-// entry that was known is not written again: somebody may be reading it, and a
-// cell measured twice gives the same bits.
-func put[T any](t target, measure voronoi.Measures, array *[]T, values []T, size int64) int64 {
-	if values == nil {
-		return 0
-	}
-	n := len(t.known)
-	if *array == nil && len(t.sites) == n && sorted(t.sites) {
-		*array = values
-		return int64(n) * size
-	}
-	var bytes int64
-	if *array == nil {
-		*array = make([]T, n)
-		bytes = int64(n) * size
-	}
-	for i, s := range t.sites {
-		if t.known[s]&measure == 0 {
-			(*array)[s] = values[i]
-		}
-	}
-	return bytes
-}
-
-func sorted(sites []int32) bool {
-	for i, s := range sites {
-		if s != int32(i) {
-			return false
-		}
-	}
-	return true
 }
 
 // Contacts calls yield for each of the given sites in their order (nil: all). The
@@ -350,4 +206,14 @@ func (h *Handle) lists(ctx context.Context, sites []int32, progress func(done, t
 	}
 	h.store.grow(h, bytes+h.keptMore())
 	return h.contacts, nil
+}
+
+// PiecesOf gives the cells of the given sites (nil: all) as convex polyhedra, as
+// voronoi.Diagram.Pieces does. They are not kept.
+func (h *Handle) PiecesOf(ctx context.Context, sites []int32, progress func(done, total int)) ([][]voronoi.Piece, error) {
+	if err := h.lock(ctx, progress); err != nil {
+		return nil, err
+	}
+	defer h.unlock()
+	return h.d.Pieces(ctx, sites)
 }

@@ -5,7 +5,18 @@ import "nearcell/voronoi"
 // Known counts the sites whose wanted measures are there already. While others
 // compute it does not wait for them and says none.
 func (h *Handle) Known(want voronoi.Measures, sites []int32) int {
-	return h.counted(sites, func(site int32) bool { return h.known != nil && want&^h.known[site] == 0 })
+	var set *cellSet
+	return h.counted(sites, func(site int32) bool {
+		if set == nil { // under the lock
+			var err error
+			if set, err = h.set(want, sites); err != nil {
+				set = &cellSet{}
+			} else {
+				h.recall(set, want)
+			}
+		}
+		return set.known != nil && want&^set.known[site] == 0
+	})
 }
 
 // KnownContacts counts the sites whose contacts are there already, in the way

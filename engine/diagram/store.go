@@ -58,6 +58,9 @@ type Store struct {
 	entries map[Key]*Handle
 	recent  *list.List // of *Handle, most recently used first
 	stats   Stats
+
+	keeper   *Keeper // nil: nothing is kept
+	troubles []error // of keeping, since Troubles was last called
 }
 
 // Stats count what a store did.
@@ -69,6 +72,7 @@ type Stats struct {
 	Cells    int64 // cells computed for measures
 	Contacts int64 // cells computed for contacts
 	Dropped  int   // diagrams let go for want of memory
+	Recalled int   // diagrams among those made that were kept by an earlier run
 }
 
 // NewStore is an empty store that holds about so many bytes; 0: no limit.
@@ -133,6 +137,10 @@ func (s *Store) build(h *Handle, sites []voronoi.Vec, o voronoi.Options) {
 		h.finish(d, err)
 		s.settle(h)
 	}()
+	if d = s.recalled(h, len(sites), o); d != nil {
+		err = nil
+		return
+	}
 	d, err = voronoi.New(sites, o)
 }
 

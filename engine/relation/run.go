@@ -73,6 +73,7 @@ func (s *sites) open(ctx context.Context, p *Part) (*diagram.Handle, error) {
 	if err != nil {
 		return nil, s.refused(err, p)
 	}
+	h.Name(s.b.Name, s.b.Clauses.SolidName)
 	f := h.Facts()
 	if f.Inside == 0 {
 		return nil, s.allOutside(p, f)

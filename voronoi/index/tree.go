@@ -32,11 +32,7 @@ func New(points []Vec) *Tree {
 	for i := range t.original {
 		t.original[i] = int32(i)
 	}
-	for n > leafSize {
-		n = (n + 1) / 2
-		t.depth++
-	}
-	t.boxes = make([]Box, 2<<t.depth-1)
+	t.boxes = make([]Box, 2<<t.setDepth(n)-1)
 	if len(points) > 0 {
 		t.build(0, 0, 0, len(points))
 	}
