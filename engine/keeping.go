@@ -64,7 +64,7 @@ func (s *Session) keeper() *diagram.Keeper { return s.diagrams.Keeper() }
 // cacheText is the limit of kept diagrams.
 func (s *Session) cacheText() string {
 	if s.keeper() == nil {
-		return "0: without a catalog none is kept"
+		return "none without a catalog"
 	}
 	n, err := s.keeper().Limit()
 	if err != nil {

@@ -27,7 +27,7 @@ var settings = []setting{
 		present.MaxDigits, "", func(s *Session) *int { return &s.digits }},
 	{"ROWS", "Rows of a table that are printed at most; SAVE keeps all of them.",
 		present.MaxTableRows, "as many as the screen has room for", func(s *Session) *int { return &s.rowLimit }},
-	{name: cacheSetting, meaning: "What kept diagrams may take in the catalog, for every later session; those used least recently go first. With 0 none is kept."},
+	{name: cacheSetting, meaning: "Bytes that kept diagrams take in the catalog at most, from now on; those used least recently go first."},
 }
 
 func settingNames() []string {

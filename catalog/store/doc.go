@@ -7,7 +7,8 @@
 //
 //	manifest.json   what is there: a list of records, each with a key, the
 //	                caller's description, and the file of its table if it has one
-//	columns/*.arrow the tables, one file each, in the Arrow IPC file format
+//	columns/*.arrow the tables, one file each, in the Arrow IPC file format; or arrays
+//	                of several lengths, as lists in one row
 //	lock            held while the manifest is changed
 //
 // Files are never changed. A change writes new files aside, flushes them, gives
@@ -36,7 +37,8 @@
 // The manifest holds the length and the 64-bit xxHash of each file and a hash of
 // itself. Files are checked when they are first opened. A damaged or missing file
 // is an error that names it, and is never used; the other tables stay readable,
-// and a record whose file is damaged can still be replaced or deleted.
+// and a record whose file is damaged can still be replaced or deleted. A folder whose
+// manifest is damaged can be renewed by callers who can make again what it held.
 //
 // # Limitations
 //

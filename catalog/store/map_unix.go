@@ -27,7 +27,7 @@ func mapFile(path string) (data []byte, unmap func() error, err error) {
 	if int64(int(size)) != size {
 		return nil, nil, fmt.Errorf("store: %s is too large to be mapped", path)
 	}
-	data, err = unix.Mmap(int(f.Fd()), 0, int(size), unix.PROT_READ, unix.MAP_SHARED)
+	data, err = unix.Mmap(int(f.Fd()), 0, int(size), unix.PROT_READ, unix.MAP_SHARED|populate)
 	if err != nil {
 		return nil, nil, &os.PathError{Op: "mmap", Path: path, Err: err}
 	}

@@ -94,6 +94,60 @@ func TestReadOnlyFolder(t *testing.T) {
 	}
 }
 
+// TestReadOnlyDiagrams answers from diagrams in a catalog that nobody may write, and
+// keeps none there, without a word; what a later version has written is told and left.
+func TestReadOnlyDiagrams(t *testing.T) {
+	disk := smallDisk(t, "16m")
+	catalog, sites := filepath.Join(disk, "catalog"), filepath.Join(t.TempDir(), "sites.csv")
+	scatter(t, sites)
+	const volumes, areas = "SELECT SUM(volume) AS v FROM CELLS OF hall;", "SELECT SUM(area) AS a FROM CELLS OF hall;"
+	code, first, e := call("--catalog", catalog, "--as", "csv", "ask", "CREATE CAMPAIGN hall FROM '"+sites+"' WITHIN BOX (0, 0, 0) TO (30, 18, 7);"+volumes)
+	if code != exitFine {
+		t.Fatal(e)
+	}
+	list := func() string {
+		_, out, _ := call("--catalog", catalog, "--as", "csv", "ask", "LIST DIAGRAMS;")
+		return out
+	}
+	if !strings.Contains(list(), `,hall,"BOX (0, 0, 0) TO (30, 18, 7)",20000,volume,`) {
+		t.Error(list())
+	}
+	if err := unix.Mount("", disk, "", unix.MS_REMOUNT|unix.MS_RDONLY, ""); err != nil {
+		t.Skipf("no disk can be made read-only here: %v", err)
+	}
+	code, again, e := call("--catalog", catalog, "--as", "csv", "ask", volumes)
+	if code != exitFine || again != first || strings.Contains(e, "kept") {
+		t.Errorf("exit code %d, %s for %s, %s", code, again, first, e)
+	}
+	if code, _, e := call("--catalog", catalog, "--as", "csv", "ask", areas); code != exitFine || strings.Contains(e, "kept") || strings.Contains(list(), "area") {
+		t.Errorf("exit code %d, %s, %s", code, e, list())
+	}
+	for _, statement := range []string{"DROP DIAGRAMS;", "SET CACHE '1GiB';"} {
+		if code, _, e := call("--catalog", catalog, "ask", statement); code != exitFailed || !strings.Contains(e, "read-only") {
+			t.Errorf("%s exit code %d, %s", statement, code, e)
+		}
+	}
+	if err := unix.Mount("", disk, "", unix.MS_REMOUNT, ""); err != nil {
+		t.Fatal(err)
+	}
+	manifest := filepath.Join(catalog, "diagrams", "manifest.json")
+	text, err := os.ReadFile(manifest)
+	if err != nil {
+		t.Fatal(err)
+	}
+	newer := bytes.Replace(text, []byte(`"version": 1`), []byte(`"version": 9`), 1)
+	if err := os.WriteFile(manifest, newer, 0o666); err != nil {
+		t.Fatal(err)
+	}
+	code, again, e = call("--catalog", catalog, "--as", "csv", "ask", volumes)
+	if code != exitFine || again != first || !strings.Contains(e, "later version") {
+		t.Errorf("exit code %d, %s for %s, %s", code, again, first, e)
+	}
+	if left, err := os.ReadFile(manifest); err != nil || !bytes.Equal(left, newer) {
+		t.Errorf("a later version's list was changed: %v", err)
+	}
+}
+
 // TestFullOutput has a result that the standard output does not take.
 func TestFullOutput(t *testing.T) {
 	full, err := os.OpenFile("/dev/full", os.O_WRONLY, 0)

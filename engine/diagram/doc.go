@@ -10,6 +10,22 @@
 // so that 672 instants with the same loggers cost one partition. It remembers contacts
 // and gaps likewise.
 //
+// Measures are made in two ways, and how many cells are asked for decides which. The
+// last bits of the two may differ; so the measures of each way are remembered apart,
+// and an answer has the same bits whatever was asked before.
+//
+// # From run to run
+//
+// A Keeper keeps diagrams of KeptFrom sites and more in a folder (package
+// catalog/store): what voronoi.New computes, and each measure of all cells once it has
+// been asked for of all cells. Below that size computing takes no longer than reading.
+// A later run with the same key maps these instead of computing them, and gives the
+// same bits. Keeping never fails a request: its errors are Troubles. A damaged file is
+// not used, and is written again with the next measures of all cells; so is what
+// another version of this package or another kind of machine has written. Files beyond
+// the limit go, those used least recently first; a file's time of change says when it
+// was used.
+//
 // Everything here is numbers: the store knows no identifiers, no columns and
 // writes no notes.
 //
@@ -33,5 +49,6 @@
 //
 // # Limitations
 //
-// Nothing is kept when the program ends.
+// Tetrahedralisations, contacts, gaps and what was measured in regions are not kept when
+// the program ends. Measures of some cells are not, either: only those of all.
 package diagram

@@ -27,7 +27,7 @@ type Handle struct {
 
 	busy     chan struct{}       // held by who computes; guards what follows
 	measured [2]cellSet          // one by one, and with the tetrahedralisation
-	remake   bool                // its file was damaged and is to be written again
+	indexed  bool                // what voronoi.New made of it is kept
 	contacts [][]voronoi.Contact // nil: not computed
 	kept     int64               // bytes of a tetrahedralisation
 	gaps     *[]coverage.Gap     // nil: not looked for

@@ -63,6 +63,8 @@ func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int
 		if all || sites == nil {
 			h.retain(ctx, set, want)
 		}
+	} else if !h.indexed && set.kept != 0 {
+		h.retain(ctx, set, 0)
 	}
 	view := set.cells
 	return &view, nil

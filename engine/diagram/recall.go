@@ -47,10 +47,10 @@ func (s *Store) recalled(h *Handle, sites int, o voronoi.Options) *voronoi.Diagr
 	}
 	d, err := s.keeper.diagram(h.key, sites, o)
 	if err != nil {
-		h.remake = true // nobody else has the handle yet
 		s.trouble(err)
 	}
 	if d != nil {
+		h.indexed = true // nobody else has the handle yet
 		s.mu.Lock()
 		s.stats.Recalled++
 		s.mu.Unlock()
@@ -95,9 +95,7 @@ func (h *Handle) recall(c *cellSet, want voronoi.Measures) {
 	}
 	c.kept |= found
 	bytes := c.begin(n)
-	if c.cells.Inside == nil {
-		c.cells.Inside, c.cells.Multiplicity = h.d.Presence()
-	}
+	c.cells.Inside, c.cells.Multiplicity = h.d.Presence() // of those, too, of which nothing was known
 	for s := range c.known {
 		c.known[s] |= found
 	}
@@ -118,11 +116,11 @@ func (c *cellSet) knows(m voronoi.Measures) bool {
 // is not kept yet.
 func (h *Handle) retain(ctx context.Context, c *cellSet, want voronoi.Measures) {
 	more := want &^ c.kept
-	if !h.store.keeps(h.d.Len()) || c.strays || more == 0 {
+	if !h.store.keeps(h.d.Len()) || c.strays || more == 0 && h.indexed {
 		return
 	}
 	var parts []part
-	if _, ok, err := h.store.keeper.dir.Find(partKey(h.key, indexPart)); err != nil || !ok || h.remake {
+	if !h.indexed {
 		parts = append(parts, part{indexPart, storedArrays(h.d.Store())})
 	}
 	for _, p := range measureParts {
@@ -130,12 +128,11 @@ func (h *Handle) retain(ctx context.Context, c *cellSet, want voronoi.Measures) 
 			parts = append(parts, part{wayNames[c.whole] + p.name, measureArrays(p.measure, &c.cells)})
 		}
 	}
-	c.kept |= want // or tried: not at every statement again
+	c.kept |= want   // or tried: not at every statement again
+	h.indexed = true // or tried
 	if err := h.store.keeper.keep(ctx, h, parts); err != nil {
 		h.store.trouble(&KeepError{err})
-		return
 	}
-	h.remake = false
 }
 
 // KeepError says why a diagram was not kept.
