@@ -72,8 +72,7 @@ func guides() []guide {
 			text: []string{
 				"What CREATE makes is kept in a folder, .nearcell in the working folder unless --catalog says otherwise; --no-catalog keeps nothing. Columns are Arrow IPC files, which other tools read too. A file is read when it is imported, and not again: CREATE OR REPLACE takes a changed file in.",
 				"Diagrams of 20,000 sites and more are kept there, too, with each measure that was asked for of all cells, and a later session answers from them with the same digits. LIST DIAGRAMS shows them, SET CACHE '4GiB' says how much they may take, those used least recently go first, and DROP DIAGRAMS removes them: nothing is lost by it but time.",
-			},
-			see: []string{"LIST DIAGRAMS", "SET CACHE"}},
+			}},
 		{name: "EXIT CODES", also: []string{"EXIT CODE"},
 			summary: "What the program returns to the one who called it.",
 			text:    []string{"0: all went well. 1: a statement failed. 2: the call was wrong. 3: all statements ran, and a requirement failed (REQUIRE). 130: interrupted. With --keep-going the rest of a script runs after a failure, and the code still tells of it."}},

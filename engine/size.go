@@ -35,6 +35,9 @@ func ParseSize(text string) (int64, bool) {
 // sizeText is a number of bytes for reading, in the largest unit that leaves it exact or
 // else to three digits.
 func sizeText(n int64) string {
+	if n == 0 {
+		return "0"
+	}
 	unit, factor := "B", int64(1)
 	for _, s := range sizes[:4] {
 		if n >= int64(s.factor) {
