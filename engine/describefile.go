@@ -142,6 +142,9 @@ func (s *Session) showGuess(st *statement, t *column.Table, text string) error {
 	if err != nil {
 		return err
 	}
+	if s.report != nil {
+		return s.showText(text)
+	}
 	if s.o.Format != present.AsTable { // for programs: one more result
 		table := newRows(column.Field{Name: "statement", Type: column.Text})
 		table.add(column.String(text))

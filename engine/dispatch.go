@@ -49,6 +49,8 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 		return s.set(ctx, st, t)
 	case *lang.Help:
 		return s.help(st, t)
+	case *lang.Remark:
+		return s.remark(st, t)
 	case *lang.Quit:
 		return errQuit
 	}
@@ -63,11 +65,6 @@ func refuse(st *statement, tree lang.Statement) error {
 		what = "DRAW"
 		if t.Show {
 			what = "SHOW"
-		}
-	case *lang.Remark:
-		what = "TEXT"
-		if t.Title {
-			what = "TITLE"
 		}
 	}
 	if what == "" {

@@ -13,7 +13,6 @@ import (
 	"nearcell/engine/exec"
 	"nearcell/engine/note"
 	"nearcell/engine/plan"
-	"nearcell/engine/present"
 	"nearcell/engine/relation"
 	"nearcell/lang"
 )
@@ -40,14 +39,12 @@ func (s *Session) explain(ctx context.Context, st *statement, t *lang.Explain) e
 		}
 	}
 	e.add(node, 0, false)
-	if s.o.Format != present.AsTable {
+	if !s.plain() {
 		return s.showTable(st, e.table())
 	}
-	out := &lateSeparator{w: s.o.Out, pending: s.results > 0}
-	if _, err := out.Write([]byte(e.text(s.tableOptions().Width))); err != nil {
+	if err := s.showText(e.text(s.tableOptions().Width)); err != nil {
 		return err
 	}
-	s.results++
 	s.say("%s, %s", plural(e.count(), "step"), st.seconds())
 	return nil
 }

@@ -29,6 +29,13 @@ func guides() []guide {
 				"Tables print the units in a line of their own; a CSV file has them in its heading only if SAVE says WITH UNITS.",
 			},
 			example: "SELECT SUM(volume * HOURS(INTERVAL '15' MINUTE)) AS room_hours FROM CELLS OF hall;"},
+		{name: "REPORT", also: []string{"HTML", "REPORTS"},
+			summary: "One file with everything that a script prints.",
+			text: []string{
+				"nearcell run --as html FILE > report.html (or --to report.html) writes one page: the title, the verdicts of REQUIRE, then tables and texts in the order of the script with the notes of each, last what all of it rests on: the inputs with their checksums, the program's version, the script. A statement that fails stands in it with its message.",
+				"The page needs nothing but itself, follows the reader's choice of light or dark, and prints on A4 and Letter. Its numbers are those of printed tables (SET DIGITS). A table shows 200 rows unless SET ROWS says another number, and how many there were. The same script over the same inputs makes the same file, byte for byte.",
+			},
+			example: "TITLE 'Hall 4, summer mapping';"},
 		{name: "NULL", also: []string{"MISSING VALUES", "NAN", "UNKNOWN"},
 			summary: "Missing values, and why a calculation without a value is an error.",
 			text: []string{

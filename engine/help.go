@@ -1,13 +1,11 @@
 package engine
 
 import (
-	"io"
 	"slices"
 	"strings"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/function"
-	"nearcell/engine/present"
 	"nearcell/engine/problem"
 	"nearcell/engine/problem/catalogue"
 	"nearcell/lang"
@@ -22,7 +20,7 @@ type Switch struct {
 // help is HELP with the words of a topic.
 func (s *Session) help(st *statement, t *lang.Help) error {
 	p := &page{}
-	if s.o.Format == present.AsTable {
+	if s.plain() {
 		p.width = s.helpWidth()
 	}
 	title := "HELP"
@@ -58,15 +56,12 @@ func (s *Session) helpWidth() int {
 
 // showPage prints a page as text; formats for programs get a row with topic and text.
 func (s *Session) showPage(st *statement, title string, p *page) error {
-	if s.o.Format != present.AsTable {
+	if !s.plain() {
 		r := newRows(text("topic"), text("text"))
 		r.add(column.String(title), column.String(strings.TrimSpace(p.text())))
 		return s.showTable(st, r.table())
 	}
-	out := &lateSeparator{w: s.o.Out, pending: s.results > 0}
-	s.results++
-	_, err := io.WriteString(out, p.text())
-	return err
+	return s.showText(p.text())
 }
 
 // topicKey is a topic's name for comparison: dashes count as blanks.

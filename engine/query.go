@@ -59,8 +59,7 @@ func (s *Session) showTable(st *statement, t *column.Table) error {
 // show prints one result: an empty line between it and the one before, the
 // rows, and below them how many there were.
 func (s *Session) show(st *statement, fill func(present.Writer) error) error {
-	out := &lateSeparator{w: s.o.Out, pending: s.results > 0}
-	w, err := present.New(s.o.Format, out, s.tableOptions())
+	w, err := s.writer(st)
 	if err != nil {
 		return err
 	}

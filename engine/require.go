@@ -63,6 +63,7 @@ func (s *Session) require(ctx context.Context, st *statement, t *lang.Require) e
 		st.notes.Add(note.Warning, note.Output, "'%s' is not decided: %s", v.label, v.reason)
 	}
 	s.verdicts = append(s.verdicts, v)
+	s.report.decided(&v)
 	text := v.result + ": " + v.label
 	if v.result == fail {
 		text += " (" + v.reason + ")"

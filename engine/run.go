@@ -42,7 +42,9 @@ func (s *Session) RunFile(ctx context.Context, name string) error {
 		if errors.As(err, &pathError) {
 			err = pathError.Err
 		}
-		fmt.Fprintf(s.o.Err, "the script '%s' cannot be read: %v\n", name, err)
+		text := fmt.Sprintf("the script '%s' cannot be read: %v", name, err)
+		fmt.Fprintln(s.o.Err, text)
+		s.report.failed(text, true)
 		return ErrFailed
 	}
 	whole, err := filepath.Abs(name)
@@ -65,6 +67,7 @@ func (s *Session) Check(ctx context.Context, names []string) error {
 	checked := *s
 	checked.catalog = overlay
 	checked.checkOnly = true
+	checked.report = nil
 	checked.params = map[string]column.Value{}
 	for n, v := range s.params {
 		checked.params[n] = v

@@ -3,12 +3,20 @@ package engine
 import (
 	"nearcell/engine/note"
 	"nearcell/engine/present"
+	"nearcell/engine/report"
 )
 
 // tableOptions are the choices for results that are printed; on a screen its
 // size limits them.
 func (s *Session) tableOptions() present.Options {
 	o := present.Options{Digits: s.digits}
+	if s.report != nil {
+		o.Rows = report.DefaultRows
+		if s.rowLimit > 0 {
+			o.Rows = s.rowLimit
+		}
+		return o
+	}
 	if s.o.Screen == nil {
 		return o
 	}
@@ -23,7 +31,7 @@ func (s *Session) tableOptions() present.Options {
 func (s *Session) noteLeftOut(st *statement, w present.Writer, rows, unwritten int64) {
 	if unwritten > 0 {
 		see := "--as csv writes all"
-		if printed := rows - unwritten; s.o.Screen != nil && printed < present.MaxTableRows {
+		if printed := rows - unwritten; (s.o.Screen != nil || s.report != nil) && printed < present.MaxTableRows {
 			see = "SET ROWS 1000 prints more"
 			if rows <= present.MaxTableRows {
 				see = "SET ROWS " + s.number(float64(rows)) + " prints all"

@@ -55,8 +55,9 @@ type Session struct {
 	last      error    // that was printed, for HELP ERROR
 	checkOnly bool
 	solids    *bind.SolidCache
-	verdicts  []verdict // of REQUIRE, in their order
-	untold    []error   // of kept diagrams, for the next statement
+	verdicts  []verdict  // of REQUIRE, in their order
+	untold    []error    // of kept diagrams, for the next statement
+	report    *reporting // nil unless results are written as one report
 }
 
 // defaultDiagramMemory is what the diagrams of a session may hold on to.
@@ -71,7 +72,12 @@ func New(c *catalog.Catalog, o Options) *Session {
 	if memory == 0 {
 		memory = defaultDiagramMemory
 	}
+	var made *reporting
+	if o.Format == present.AsHTML {
+		made = newReporting()
+	}
 	s := &Session{
+		report:   made,
 		o:        o,
 		catalog:  c,
 		solids:   &bind.SolidCache{},
@@ -95,6 +101,7 @@ var errQuit = errors.New("quit")
 type statement struct {
 	source *problem.Source
 	folder string // relative paths start here
+	tree   lang.Statement
 	notes  *note.Notes
 	start  time.Time
 }
@@ -122,6 +129,7 @@ type parsed struct {
 
 func (s *Session) runText(ctx context.Context, name, text, folder string) error {
 	source := &problem.Source{Name: name, Text: text}
+	s.report.addScript(source)
 	statements, faulty := parseAll(source)
 	if faulty && !s.o.KeepGoing {
 		for _, p := range statements {
@@ -132,7 +140,9 @@ func (s *Session) runText(ctx context.Context, name, text, folder string) error 
 		}
 	}
 	failed := false
+	defer s.report.follow(len(statements))()
 	for _, p := range statements {
+		s.report.next()
 		err := p.err
 		if err == nil {
 			err = s.runStatement(ctx, source, folder, p.tree)
@@ -189,13 +199,15 @@ func syntaxProblem(err error, source *problem.Source) error {
 
 // runStatement runs one statement and prints what it has to say.
 func (s *Session) runStatement(ctx context.Context, source *problem.Source, folder string, tree lang.Statement) error {
-	st := &statement{source: source, folder: folder, notes: &note.Notes{}, start: time.Now()}
+	st := &statement{source: source, folder: folder, tree: tree, notes: &note.Notes{}, start: time.Now()}
 	err := s.dispatch(ctx, st, tree)
 	if err != nil && ctx.Err() != nil {
 		return ctx.Err()
 	}
 	s.tellOfKeeping(st)
 	warned := s.printNotes(st.notes)
+	s.report.remarks(st.notes)
+	s.addInputs(tree)
 	if err != nil && !errors.Is(err, errQuit) && !errors.Is(err, ErrFailed) {
 		return wordStore(problem.At(err, st.at(tree)))
 	}
@@ -222,7 +234,9 @@ func (s *Session) say(format string, args ...any) {
 
 func (s *Session) complain(err error) {
 	s.last = err
-	fmt.Fprintln(s.o.Err, strings.TrimRight(problem.Render(err), "\n"))
+	text := strings.TrimRight(problem.Render(err), "\n")
+	fmt.Fprintln(s.o.Err, text)
+	s.report.failed(text, s.o.KeepGoing)
 }
 
 // bindEnv is what the names of a statement may mean.

@@ -180,13 +180,15 @@ func sessionStatements() []entry {
 		{
 			name:    "TITLE",
 			syntax:  []string{"TITLE 'text';"},
-			meaning: "Gives the report its title.",
+			meaning: "Gives the report its title; a second TITLE begins a chapter. Between tables it is printed as a heading; formats for programs leave it out.",
+			see:     []string{"REPORT", "TEXT"},
 			example: "TITLE 'Hall 4, summer mapping';",
 		},
 		{
 			name:    "TEXT",
 			syntax:  []string{"TEXT 'text';"},
-			meaning: "Writes a paragraph into the report.",
+			meaning: "Writes a paragraph into the report, or between the tables; an empty line in the text begins a new paragraph. Formats for programs leave it out.",
+			see:     []string{"REPORT", "TITLE"},
 			example: "TEXT 'The door to the dock stood open at noon.';",
 		},
 		{

@@ -62,6 +62,7 @@ var arrows = map[string][]string{
 		"engine/relation", "lang", "voronoi/..."},
 	"engine/present":      {"catalog/column"},
 	"engine/vtu":          {"catalog/column", "voronoi"},
+	"engine/report":       {"catalog/column", "engine/present"},
 	"engine":              {"catalog/...", "engine/...", "lang", "voronoi/..."},
 	"cmd/nearcell":        {"catalog/...", "cmd/nearcell/prompt", "engine/..."},
 	"cmd/nearcell/prompt": {"catalog/...", "engine/...", "lang"},

@@ -57,9 +57,10 @@ func (a *app) ask() error {
 		if err := a.flags.letAll(s); err != nil {
 			return err
 		}
-		return prompt.Run(prompt.Options{
+		err := prompt.Run(prompt.Options{
 			Terminal: t, Session: s, Version: version, Catalog: folder, Folder: ".", Quiet: a.flags.quiet,
 		})
+		return reported(s, err)
 	})
 	switch {
 	case err == nil && unmet > 0:

@@ -171,6 +171,7 @@ func (a *app) one(text string) error {
 }
 
 func (a *app) check(files []string) error {
+	a.flags.as, a.flags.to = "", "" // nothing is computed, so nothing is written
 	return a.inSession(func(ctx context.Context, s *engine.Session) error {
 		return s.Check(ctx, files)
 	})
@@ -205,9 +206,18 @@ func (a *app) inSession(f func(context.Context, *engine.Session) error) error {
 		}
 		defer t.Working()()
 		defer func() { unmet = s.FailedRequirements() }()
-		return f(ctx, s)
+		return reported(s, f(ctx, s))
 	})
 	return a.outcome(ctx, err, unmet)
+}
+
+// reported writes the report of a session that makes one, also where a statement
+// failed: the report says so.
+func reported(s *engine.Session, err error) error {
+	if err != nil && !errors.Is(err, engine.ErrFailed) {
+		return err
+	}
+	return errors.Join(err, s.WriteReport())
 }
 
 // outcome maps an error and the number of requirements that failed to the exit
@@ -244,7 +254,8 @@ func (a *app) openCatalog() (*catalog.Catalog, error) {
 }
 
 // withOutput gives f the standard output, or the file of --to: that file gets
-// its name only when f went well (or was told to keep going).
+// its name only when f went well (or was told to keep going, or makes a report,
+// which says what failed).
 func (a *app) withOutput(f func(io.Writer) error) error {
 	if a.flags.to == "" {
 		return f(a.out)
@@ -252,7 +263,7 @@ func (a *app) withOutput(f func(io.Writer) error) error {
 	var failure error
 	err := engine.WriteAside(a.flags.to, func(file *os.File) error {
 		failure = f(file)
-		if errors.Is(failure, engine.ErrFailed) && a.flags.keepGoing {
+		if errors.Is(failure, engine.ErrFailed) && (a.flags.keepGoing || a.makesReport()) {
 			return nil
 		}
 		return failure
@@ -280,9 +291,6 @@ func formatFor(as, to string) (present.Format, error) {
 			}
 		}
 	}
-	if as == "html" {
-		return "", usage("--as html is not there yet")
-	}
 	var names []string
 	for _, f := range present.Formats {
 		if as == string(f) {
@@ -291,4 +299,10 @@ func formatFor(as, to string) (present.Format, error) {
 		names = append(names, string(f))
 	}
 	return "", usage("--as takes %s, not '%s'", strings.Join(names, ", "), as)
+}
+
+// makesReport tells whether results are written as one report.
+func (a *app) makesReport() bool {
+	format, err := formatFor(a.flags.as, a.flags.to)
+	return err == nil && format == present.AsHTML
 }

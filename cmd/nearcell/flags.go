@@ -26,7 +26,7 @@ type flags struct {
 func (f *flags) add(set *pflag.FlagSet) {
 	set.StringVar(&f.catalog, "catalog", ".nearcell", "the folder `DIR` holds the catalog")
 	set.BoolVar(&f.noCatalog, "no-catalog", false, "keep nothing")
-	set.StringVar(&f.as, "as", "", "how results are written, as `FORMAT` table, csv, json or jsonl (default table, or by the ending of --to)")
+	set.StringVar(&f.as, "as", "", "how results are written, as `FORMAT` table, csv, json, jsonl or html, one report of everything (default table, or by the ending of --to)")
 	set.StringVar(&f.to, "to", "", "write results to `FILE`")
 	set.StringArrayVar(&f.let, "let", nil, "sets a value, `name=value`, that statements read as :name; wins over LET")
 	set.BoolVar(&f.strict, "strict", false, "a warning fails its statement")

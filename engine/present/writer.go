@@ -18,10 +18,13 @@ const (
 	AsJSONLines Format = "jsonl"
 	AsParquet   Format = "parquet" // for files only
 	AsXLSX      Format = "xlsx"    // for files only
+	// AsHTML is a report of all results, which package report makes: New has no
+	// writer for it.
+	AsHTML Format = "html"
 )
 
 // Formats lists the formats of the standard output, for usage messages.
-var Formats = []Format{AsTable, AsCSV, AsJSON, AsJSONLines}
+var Formats = []Format{AsTable, AsCSV, AsJSON, AsJSONLines, AsHTML}
 
 // Writer takes one result: Begin once, Batch for each run of rows (only active
 // rows count), End once.
