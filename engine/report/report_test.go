@@ -123,7 +123,7 @@ func TestOrder(t *testing.T) {
 	page := string(written(t, r, Provenance{Program: "nearcell test", Scripts: []Script{{"a.ncell", "00", "SELECT 1;"}}}))
 	at := -1
 	for _, text := range []string{"<h1>the title", "This report is not whole", "Verdicts", "2 passed, 1 failed, 1 not decided", "9 is too much",
-		"first text", "the 3 statements after it", "Provenance", "nearcell test", "SELECT 1;"} {
+		"first text", "the 3 statements after it", ">Provenance<", "Made by nearcell test", "SELECT 1;"} {
 		found := strings.Index(strings.ToLower(page), strings.ToLower(text))
 		if found <= at {
 			t.Errorf("%q stands at %d, after what comes before it at %d", text, found, at)
