@@ -56,6 +56,7 @@ type builder struct {
 	slabOut  solid.Measures
 
 	full    polyhedron.Cell // the whole cell, where it is measured in parts
+	region  solid.Solid     // the part without convex pieces that it is measured in
 	planes  []solid.Plane   // scratch of eachPiece
 	touched []int32         // scratch of measureIn
 	inParts []share         // scratch of sharesIn

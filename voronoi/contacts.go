@@ -214,11 +214,11 @@ func (b *builder) shares(cell int32) ([]share, error) {
 	return b.sharesOf(at, b.build(&b.cell, p, at, cell))
 }
 
-// sharesOf lists the contacts of b.cell.
+// sharesOf lists the contacts of b.cell, as far as they lie in b.space.
 func (b *builder) sharesOf(at Vec, bounded bool) ([]share, error) {
-	d := b.d
 	b.list = b.list[:0]
-	if d.solid == nil || d.convex {
+	space := b.space()
+	if space == nil {
 		for i := range b.cell.NumFaces() {
 			if label, _ := b.cell.Face(i); label >= 0 && label != partLabel && b.cell.Counts(i) {
 				b.list = append(b.list, b.wholeFace(i, label, at, bounded))
@@ -227,7 +227,7 @@ func (b *builder) sharesOf(at Vec, bounded bool) ([]share, error) {
 		return b.list, nil
 	}
 	m := &b.measures
-	if err := d.solid.Measure(&b.cell, at, solid.WantContacts, &b.work, m); err != nil {
+	if err := space.Measure(&b.cell, at, solid.WantContacts, &b.work, m); err != nil {
 		return nil, err
 	}
 	if m.Empty {
@@ -278,7 +278,9 @@ var slabLabel = polyhedron.Wall(1 << 30)
 // cancel that first order. What is left is about 1e-8 of the cell's size.
 //
 // A face can lie partly in a wall, with the solid on one side only. A contact needs
-// it on both: the slabs stand on the side where they have the contact's area.
+// it on both: the slabs stand on the side where they have the contact's area. A region has
+// contacts at its end on the side of the cell alone: there, what walls have of the face is
+// taken out.
 func (b *builder) clippedMiddle(i int, at Vec, area float64, whole Vec) (Vec, error) {
 	inner, innerArea, err := b.slabMiddle(i, at, false)
 	if err != nil {
@@ -288,13 +290,27 @@ func (b *builder) clippedMiddle(i int, at Vec, area float64, whole Vec) (Vec, er
 	if err != nil {
 		return Vec{}, err
 	}
-	switch {
-	case innerArea <= 0 || outerArea <= 0:
-		return whole, nil // thinner than rounding: the face is a sliver
-	case math.Abs(innerArea-area) <= math.Abs(outerArea-area):
-		return add(at, inner), nil
+	if r, ok := b.region.(faceWalls); ok {
+		if walls, moment := r.FaceWalls(&b.cell, at, i, &b.work); walls > 1e-9*innerArea {
+			rest := innerArea - walls
+			if rest > 0 && math.Abs(rest-area) < math.Abs(outerArea-area) && math.Abs(rest-area) < math.Abs(innerArea-area) {
+				middle := func(x, m float64) float64 { return (float64(x*innerArea) - m) / rest }
+				return add(at, Vec{X: middle(inner.X, moment.X), Y: middle(inner.Y, moment.Y), Z: middle(inner.Z, moment.Z)}), nil
+			}
+		}
 	}
-	return add(at, outer), nil
+	if math.Abs(innerArea-area) > math.Abs(outerArea-area) {
+		inner, innerArea = outer, outerArea
+	}
+	if innerArea <= 0 {
+		return whole, nil // thinner than rounding: the face is a sliver
+	}
+	return add(at, inner), nil
+}
+
+// faceWalls is a region that knows what walls have of a face of a cell.
+type faceWalls interface {
+	FaceWalls(c *polyhedron.Cell, site Vec, face int, w *solid.Work) (area float64, moment Vec)
 }
 
 // slabMiddle is the centroid and the area of what the solid leaves of face i, seen
@@ -316,7 +332,7 @@ func (b *builder) slabMiddle(i int, at Vec, beyond bool) (middle Vec, area float
 			place = add(at, Vec{X: float64(t * unit.X), Y: float64(t * unit.Y), Z: float64(t * unit.Z)})
 		}
 		m := &b.slabOut
-		if err := b.d.solid.Measure(&b.slab, place, solid.WantCentroid, &b.work, m); err != nil {
+		if err := b.space().Measure(&b.slab, place, solid.WantCentroid, &b.work, m); err != nil {
 			return Vec{}, 0, err
 		}
 		if !(m.Volume > 0) {

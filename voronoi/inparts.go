@@ -10,7 +10,8 @@ import (
 
 // Cells can be measured in parts of the solid: all sites divide the solid, and of each
 // cell counts what lies in a part. The finished cell is cut by the convex pieces of the
-// part, and each of these is measured as a cell is. The planes of a part are no walls:
+// part, and each of these is measured as a cell is; or, of a part without convex pieces,
+// the cell is measured in what part and solid share (mesh.Region). The ends of a part are no walls:
 // the surface of a cell inside a part is that of the cell, contacts and walls of the
 // solid, as far as it lies in the part, so that all measures of parts that are apart add
 // up to those of their union.
@@ -34,10 +35,11 @@ type PartMeasures struct {
 
 // MeasureIn measures what of the cells of the given sites (nil: all) lies in parts of the
 // solid. Entry i of the answer belongs to the site i of those asked for: the parts that
-// its cell reaches into with a volume, ascending. Parts may reach out of the solid and
-// overlap one another. All measures but the counts of edges and vertices can be had. The
+// its cell reaches into with a volume, ascending. Parts may overlap one another. Those that
+// are solid.Divided may reach out of the solid; of any other, what is given is the region
+// of the solid that it is (mesh.NewRegion). A part may be nil, and is nowhere then. All measures but the counts of edges and vertices can be had. The
 // rest is as in Measure.
-func (d *Diagram) MeasureIn(ctx context.Context, want Measures, sites []int32, parts []solid.Divided) ([][]PartMeasures, error) {
+func (d *Diagram) MeasureIn(ctx context.Context, want Measures, sites []int32, parts []solid.Solid) ([][]PartMeasures, error) {
 	r, err := d.request(sites)
 	if err != nil {
 		return nil, err
@@ -66,9 +68,12 @@ func (d *Diagram) MeasureIn(ctx context.Context, want Measures, sites []int32, p
 // box is what holds a part.
 type box struct{ lo, hi Vec }
 
-func partBoxes(parts []solid.Divided) []box {
+func partBoxes(parts []solid.Solid) []box {
 	boxes := make([]box, len(parts))
 	for i, p := range parts {
+		if p == nil {
+			continue // an empty box
+		}
 		boxes[i].lo, boxes[i].hi = p.Bounds()
 	}
 	return boxes
@@ -96,8 +101,19 @@ func (b *builder) buildWhole(cell int32) {
 // the others for walls of theirs, and of one that no diagram has.
 const partLabel int32 = math.MaxInt32
 
-// eachPiece calls do for what of b.full lies in each convex piece of a part: b.cell.
-func (b *builder) eachPiece(part solid.Divided, at Vec, do func() error) error {
+// eachPiece calls do for what of b.full lies in each convex piece of a part: b.cell, to be
+// measured in b.space. A part without convex pieces is that space.
+func (b *builder) eachPiece(of solid.Solid, at Vec, do func() error) error {
+	part, divided := of.(solid.Divided)
+	if !divided {
+		b.region = of
+		defer func() { b.region = nil }()
+		b.aboutRegion(of, at)
+		if b.cell.Empty() {
+			return nil
+		}
+		return do()
+	}
 	lo, hi := b.full.Bounds()
 	tol := flatShare * b.full.Farthest()
 	for i := range part.NumParts() {
@@ -122,6 +138,33 @@ func (b *builder) eachPiece(part solid.Divided, at Vec, do func() error) error {
 	return nil
 }
 
+// space is what cells in work are measured in; nil where they are cut by it already.
+func (b *builder) space() solid.Solid {
+	if b.region != nil {
+		return b.region
+	}
+	if b.d.convex {
+		return nil
+	}
+	return b.d.solid
+}
+
+// aboutRegion makes b.cell what b.full has of a box around a region, clear of its surface.
+func (b *builder) aboutRegion(region solid.Solid, at Vec) {
+	lo, hi := region.Bounds()
+	margin := 0.0625 * length(sub(hi, lo))
+	lo, hi = sub(lo, at), sub(hi, at)
+	b.cell.CopyFrom(&b.full)
+	for _, p := range [6]solid.Plane{
+		{N: Vec{X: 1}, D: hi.X + margin}, {N: Vec{X: -1}, D: margin - lo.X}, {N: Vec{Y: 1}, D: hi.Y + margin},
+		{N: Vec{Y: -1}, D: margin - lo.Y}, {N: Vec{Z: 1}, D: hi.Z + margin}, {N: Vec{Z: -1}, D: margin - lo.Z},
+	} {
+		if b.cell.Clip(p.N, p.D, slabLabel); b.cell.Empty() {
+			return
+		}
+	}
+}
+
 // flatShare of a cell's reach is how far a corner may stand out of a plane by rounding. A
 // face that lies in the plane of a part stays a face of the cell.
 const flatShare = 4e-13
@@ -144,7 +187,7 @@ func (b *builder) clipFlat(p solid.Plane, tol float64) {
 }
 
 // measureIn measures one cell in the parts that it reaches into.
-func (b *builder) measureIn(cell int32, want Measures, parts []solid.Divided, boxes []box) ([]PartMeasures, error) {
+func (b *builder) measureIn(cell int32, want Measures, parts []solid.Solid, boxes []box) ([]PartMeasures, error) {
 	b.buildWhole(cell)
 	if b.full.Empty() {
 		return nil, nil
@@ -153,7 +196,7 @@ func (b *builder) measureIn(cell int32, want Measures, parts []solid.Divided, bo
 	lo, hi := b.full.Bounds()
 	var list []PartMeasures
 	for i, part := range parts {
-		if !boxes[i].meets(at, lo, hi) {
+		if part == nil || !boxes[i].meets(at, lo, hi) {
 			continue
 		}
 		m := PartMeasures{Part: int32(i)}
@@ -213,7 +256,8 @@ func (b *builder) addPiece(at Vec, want Measures, m *PartMeasures, s *partSums) 
 		s.y.Add(v.Y)
 		s.z.Add(v.Z)
 	}
-	if b.d.solid == nil || b.d.convex {
+	space := b.space()
+	if space == nil {
 		volume, moment := c.VolumeAndFirst()
 		first(moment, max(0, volume))
 		m.Farthest = max(m.Farthest, c.Farthest())
@@ -231,7 +275,7 @@ func (b *builder) addPiece(at Vec, want Measures, m *PartMeasures, s *partSums) 
 		return nil
 	}
 	x := &b.measures
-	if err := b.d.solid.Measure(c, at, solidWant(want|Centroid), &b.work, x); err != nil {
+	if err := space.Measure(c, at, solidWant(want|Centroid), &b.work, x); err != nil {
 		return err
 	}
 	if x.Empty {
@@ -260,7 +304,7 @@ func (b *builder) sharesIn(cell int32) ([]share, error) {
 	b.inParts = b.inParts[:0]
 	lo, hi := b.full.Bounds()
 	for i, part := range b.parts.list {
-		if b.full.Empty() || !b.parts.boxes[i].meets(at, lo, hi) {
+		if part == nil || b.full.Empty() || !b.parts.boxes[i].meets(at, lo, hi) {
 			continue
 		}
 		from := len(b.inParts)
@@ -297,7 +341,7 @@ func addShare(list []share, from int, s share) []share {
 
 // within is the parts that contacts are measured in.
 type within struct {
-	list  []solid.Divided
+	list  []solid.Solid
 	boxes []box
 }
 
@@ -305,6 +349,6 @@ type within struct {
 // is the number of the part. Contacts of one site come by the number of the other, then by
 // part. A contact in the plane of a part counts to the part on the side of the site that
 // it is read from, and to it for both sites.
-func (d *Diagram) ContactsIn(ctx context.Context, sites []int32, parts []solid.Divided, yield func(site int32, contacts []Contact) error) error {
+func (d *Diagram) ContactsIn(ctx context.Context, sites []int32, parts []solid.Solid, yield func(site int32, contacts []Contact) error) error {
 	return d.contacts(ctx, sites, &within{parts, partBoxes(parts)}, yield)
 }

@@ -7,9 +7,10 @@ import (
 	"testing"
 
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
 
-func boxOf(t testing.TB, lo, hi Vec) solid.Divided {
+func boxOf(t testing.TB, lo, hi Vec) solid.Solid {
 	t.Helper()
 	b, err := solid.NewBox(lo, hi)
 	if err != nil {
@@ -69,7 +70,7 @@ func TestPartsAddUp(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	parts := []solid.Divided{low, rest, boxOf(t, Vec{X: -2, Y: -2, Z: 2.5}, Vec{X: 15, Y: 30, Z: 9}), boxOf(t, Vec{X: 15, Y: -2, Z: 2.5}, Vec{X: 40, Y: 30, Z: 9})}
+	parts := []solid.Solid{low, rest, boxOf(t, Vec{X: -2, Y: -2, Z: 2.5}, Vec{X: 15, Y: 30, Z: 9}), boxOf(t, Vec{X: 15, Y: -2, Z: 2.5}, Vec{X: 40, Y: 30, Z: 9})}
 	for _, body := range []solid.Solid{hall, boxOf(t, Vec{}, Vec{X: 30, Y: 18, Z: 7.5})} {
 		for name, sites := range siteSets(body) {
 			for _, k := range []Vec{{}, {X: 1, Y: 1, Z: 2}} {
@@ -83,7 +84,7 @@ func TestPartsAddUp(t *testing.T) {
 	}
 }
 
-func partsAddUp(t *testing.T, d *Diagram, sites []Vec, parts []solid.Divided) {
+func partsAddUp(t *testing.T, d *Diagram, sites []Vec, parts []solid.Solid) {
 	whole, err := d.Measure(context.Background(), All, nil)
 	if err != nil {
 		t.Fatal(err)
@@ -165,7 +166,7 @@ func TestPartAlone(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		in, err := d.MeasureIn(context.Background(), Volume|Farthest, nil, []solid.Divided{rack})
+		in, err := d.MeasureIn(context.Background(), Volume|Farthest, nil, []solid.Solid{rack})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -195,6 +196,108 @@ func TestPartAlone(t *testing.T) {
 		closeTo(t, "volume of the rack inside", total, want, 1e-11*want)
 		if with == 0 || with == len(sites) {
 			t.Errorf("%d of %d cells reach into the rack", with, len(sites))
+		}
+	}
+}
+
+// The same holds of parts that have no convex pieces: meshes and what is left of one solid
+// without another, in a convex room, an L-shaped one and one that is a mesh itself, with
+// walls of parts that continue walls of the room, and with faces of cells in them.
+func TestMeshPartsAddUp(t *testing.T) {
+	hall := lShape(t)
+	box := boxOf(t, Vec{}, Vec{X: 30, Y: 18, Z: 7.5})
+	racks, err := mesh.Combine(mesh.Plus, boxOf(t, Vec{X: 3, Y: 3, Z: 0}, Vec{X: 6, Y: 12, Z: 5}), boxOf(t, Vec{X: 10.5, Y: 0, Z: 0}, Vec{X: 12, Y: 15, Z: 2.5}))
+	if err != nil {
+		t.Fatal(err)
+	}
+	pillar := boxOf(t, Vec{X: 12, Y: 6, Z: -1}, Vec{X: 13, Y: 7, Z: 9})
+	less := func(a, b solid.Solid) solid.Solid {
+		m, err := mesh.Combine(mesh.Minus, a, b)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return m
+	}
+	low := boxOf(t, Vec{X: -1, Y: -1, Z: -1}, Vec{X: 40, Y: 40, Z: 2.5})
+	for bodyName, body := range map[string]solid.Solid{"box": box, "prism": hall, "mesh": less(hall, pillar)} {
+		var parts []solid.Solid
+		for _, p := range []solid.Solid{racks, less(low, racks), less(less(box, low), racks)} {
+			r, err := mesh.NewRegion(body, p)
+			if err != nil {
+				t.Fatal(err)
+			}
+			parts = append(parts, r)
+		}
+		if m := less(hall, pillar).(*mesh.Mesh); bodyName == "mesh" {
+			sum := 0.0
+			for _, p := range parts {
+				sum += p.Volume()
+			}
+			closeTo(t, "volume", sum, m.Volume(), 1e-12*sum)
+		}
+		for name, sites := range siteSets(hall) {
+			for _, k := range []Vec{{}, {X: 1, Y: 1, Z: 2}} {
+				if name == "many" && (k != Vec{} || testing.Short()) {
+					continue
+				}
+				d, err := New(sites, Options{Solid: body, Stretch: k, Threads: 2})
+				if err != nil {
+					t.Fatal(err)
+				}
+				t.Run(bodyName+" "+name, func(t *testing.T) { partsAddUp(t, d, sites, parts) })
+			}
+		}
+	}
+}
+
+// What is measured in a mesh is what is measured in the box or the prism that it is, in
+// rooms of all kinds and without any.
+func TestMeshPartIsPart(t *testing.T) {
+	hall := lShape(t)
+	rack := boxOf(t, Vec{X: 12, Y: 7.5, Z: -1}, Vec{X: 26, Y: 25, Z: 3})
+	for name, body := range map[string]solid.Solid{"box": boxOf(t, Vec{}, Vec{X: 30, Y: 18, Z: 7.5}), "prism": hall, "none": nil} {
+		region, err := mesh.NewRegion(body, rack)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for kind, sites := range siteSets(hall) {
+			if kind == "many" {
+				continue
+			}
+			t.Run(name+" "+kind, func(t *testing.T) {
+				d, err := New(sites, Options{Solid: body})
+				if err != nil {
+					t.Fatal(err)
+				}
+				got, err := d.MeasureIn(context.Background(), All, nil, []solid.Solid{nil, region})
+				if err != nil {
+					t.Fatal(err)
+				}
+				want, err := d.MeasureIn(context.Background(), All, nil, []solid.Solid{nil, rack})
+				if err != nil {
+					t.Fatal(err)
+				}
+				rows := 0
+				for i := range want {
+					if len(got[i]) != len(want[i]) {
+						t.Fatalf("cell %d: %+v, the box has %+v", i, got[i], want[i])
+					}
+					for k, w := range want[i] {
+						g := got[i][k]
+						rows++
+						closeTo(t, "volume", g.Volume, w.Volume, 1e-11*(1+w.Volume))
+						closeTo(t, "area", g.Area, w.Area, 1e-7*(1+w.Area))
+						closeTo(t, "walls", g.WallArea, w.WallArea, 1e-7*(1+w.Area))
+						closeTo(t, "farthest", g.Farthest, w.Farthest, 1e-7)
+						if g.Neighbours != w.Neighbours || g.Faces != w.Faces || g.Part != 1 {
+							t.Errorf("cell %d: %+v, the box has %+v", i, g, w)
+						}
+					}
+				}
+				if rows < 5 {
+					t.Errorf("%d rows", rows)
+				}
+			})
 		}
 	}
 }

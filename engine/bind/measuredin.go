@@ -27,13 +27,6 @@ func (b *binder) measuredIn(rel *relation.Bound, c *lang.MeasuredInClause) error
 	taken := map[string]bool{}
 	for i, s := range solids {
 		for _, part := range pieces(s) {
-			if _, ok := part.Solid.(solid.Divided); !ok {
-				what := fmt.Sprintf("MEASURED IN %s, a solid of the kind '%s',", part.Name, part.Solid.Facts().Kind)
-				if part.Name != s.Name {
-					what = fmt.Sprintf("MEASURED IN the part '%s' of %s, which has several boxes,", part.Name, s.Name)
-				}
-				return b.notYet(trees[i], what).WithHint("a part is a BOX, a PRISM, or each box of BOXES with a name of its own")
-			}
 			if taken[lang.Fold(part.Name)] { // two lists of boxes have a box of one name
 				part.Name = s.Name + " " + part.Name
 			}
@@ -45,6 +38,9 @@ func (b *binder) measuredIn(rel *relation.Bound, c *lang.MeasuredInClause) error
 		}
 	}
 	rel.Clauses.Measured = list
+	if err := b.sharedParts(rel, list); err != nil {
+		return problem.At(err, b.at(c))
+	}
 	if err := b.sayOverlaps(list); err != nil {
 		return problem.At(err, b.at(c))
 	}
@@ -73,11 +69,11 @@ func (b *binder) sayOverlaps(list []relation.Region) error {
 	more, total := 0, 0.0
 	for i, p := range list {
 		for _, q := range list[:i] {
-			volume, known, err := solid.CommonVolume(p.Solid, q.Solid)
+			volume, err := b.shared(p.Solid, q.Solid)
 			if err != nil {
 				return err
 			}
-			if !known || volume <= sharedVolume*min(p.Solid.Volume(), q.Solid.Volume()) {
+			if volume <= sharedVolume*min(p.Solid.Volume(), q.Solid.Volume()) {
 				continue
 			}
 			total += volume
@@ -113,7 +109,7 @@ func (b *binder) sayOutside(rel *relation.Bound, list []relation.Region) error {
 	for _, p := range list {
 		inside := 0.0
 		for _, s := range spaces {
-			volume, _, err := solid.CommonVolume(p.Solid, s.Solid) // parts are divided: it can be told
+			volume, err := b.shared(s.Solid, p.Solid)
 			if err != nil {
 				return err
 			}

@@ -12,7 +12,6 @@ import (
 	"nearcell/engine/relation"
 	"nearcell/lang"
 	"nearcell/voronoi"
-	"nearcell/voronoi/solid"
 )
 
 // within takes WITHIN over: one solid, or zones.
@@ -150,11 +149,11 @@ const sharedVolume = 1e-9
 func (b *binder) apart(list []relation.Region, solids []lang.Solid) error {
 	for i, z := range list {
 		for k, other := range list[:i] {
-			volume, known, err := solid.CommonVolume(z.Solid, other.Solid)
+			volume, err := b.shared(z.Solid, other.Solid)
 			if err != nil {
 				return problem.At(err, b.at(solids[i]))
 			}
-			if !known || volume <= sharedVolume*min(z.Solid.Volume(), other.Solid.Volume()) {
+			if volume <= sharedVolume*min(z.Solid.Volume(), other.Solid.Volume()) {
 				continue
 			}
 			p := problem.New("overlap", b.at(solids[i]), "the zones %s and %s overlap: %s m³ lie in both and would count twice",

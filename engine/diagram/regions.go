@@ -11,13 +11,16 @@ import (
 
 // Regions are parts of the solid in which cells are measured. What was measured in them
 // is kept with the diagram, as what was measured of whole cells is.
-type Regions []solid.Divided
+type Regions []solid.Solid
 
 // key identifies regions by their content, in their order.
 func (r Regions) key() Key {
 	h := sha256.New()
 	for _, s := range r {
-		k := s.Key()
+		var k [16]byte // nowhere
+		if s != nil {
+			k = s.Key()
+		}
 		h.Write(k[:])
 	}
 	var key Key
@@ -110,7 +113,7 @@ func (h *Handle) ContactsIn(ctx context.Context, sites []int32, regions Regions,
 
 // GapsIn are the places of one region that are farther from every site than all around
 // them in it, computed once. sites are those of the diagram.
-func (h *Handle) GapsIn(ctx context.Context, sites []voronoi.Vec, region solid.Divided, threads int, progress func(done, total int)) ([]coverage.Gap, error) {
+func (h *Handle) GapsIn(ctx context.Context, sites []voronoi.Vec, region solid.Solid, threads int, progress func(done, total int)) ([]coverage.Gap, error) {
 	if err := h.lock(ctx, nil); err != nil {
 		return nil, err
 	}

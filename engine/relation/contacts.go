@@ -135,7 +135,7 @@ func (c *contactRows) part(ctx context.Context, p *Part, out *pairs) error {
 	if p.Share == nil {
 		// One row a site, in the order of the sites: rows come as contacts do.
 		at := 0
-		err = c.contactsIn(h)(ctx, list, c.progress(), func(site int32, contacts []voronoi.Contact) error {
+		err = c.contactsIn(p, h)(ctx, list, c.progress(), func(site int32, contacts []voronoi.Contact) error {
 			for at < len(ks) && p.Site[ks[at]] < site {
 				at++
 			}
@@ -145,7 +145,7 @@ func (c *contactRows) part(ctx context.Context, p *Part, out *pairs) error {
 			return c.row(p, of, ks[at], contacts, out)
 		})
 	} else {
-		err = c.sharedPart(ctx, c.contactsIn(h), p, of, ks, list, out)
+		err = c.sharedPart(ctx, c.contactsIn(p, h), p, of, ks, list, out)
 	}
 	if err != nil {
 		return c.refused(err, p)

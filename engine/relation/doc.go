@@ -58,7 +58,7 @@
 // # Measured in parts
 //
 // With MEASURED IN (measuredin.go) a row counts in one of the regions Clauses.Measured,
-// which binding has found to be solid.Divided, and says so in the column part, which
+// which is solid.Divided or what the solid shares with a mesh (Clauses.Shared), and says so in the column part, which
 // comes as zone does: batches.now(part.Zone, region). Which sites divide the space does
 // not change. Diagram handles measure cells, contacts and gaps in regions.
 //
@@ -125,6 +125,6 @@
 //
 // # Limitations
 //
-// UNCERTAINTY by a column is not there yet. Parts that are not solid.Divided, such as meshes, are
-// refused. Contacts in parts are not remembered by the diagram. The whole input is held in memory.
+// UNCERTAINTY by a column is not there yet. Contacts in parts are not remembered by the
+// diagram. The whole input is held in memory.
 package relation

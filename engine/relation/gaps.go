@@ -20,6 +20,7 @@ var gaps = &Definition{
 	Meaning: "where nobody measured: each farther from every site than all around it",
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Zoned:   true,
+	Places:  true,
 	Open:    openGaps,
 	layout:  layoutGaps,
 }

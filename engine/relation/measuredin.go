@@ -17,11 +17,14 @@ import (
 // measuredIn tells whether rows count in regions.
 func (b *Bound) measuredIn() bool { return len(b.Clauses.Measured) > 0 }
 
-// bodies are the solids of the regions: binding has seen to it that they are divided.
-func (b *Bound) bodies() []solid.Divided {
-	list := make([]solid.Divided, len(b.Clauses.Measured))
+// bodies are what the regions share with the space of a part; nil where that is nothing.
+func (b *Bound) bodies(p *Part) []solid.Solid {
+	if b.Clauses.Shared != nil {
+		return b.Clauses.Shared[max(0, p.Zone)]
+	}
+	list := make([]solid.Solid, len(b.Clauses.Measured))
 	for i, r := range b.Clauses.Measured {
-		list[i] = r.Solid.(solid.Divided)
+		list[i] = r.Solid
 	}
 	return list
 }
@@ -39,7 +42,7 @@ func (c *cellRows) partInRegions(ctx context.Context, p *Part, rows *[]int32, ou
 	if len(ks) == 0 {
 		return nil
 	}
-	measured, err := h.MeasureIn(ctx, c.want, list, diagram.Regions(c.b.bodies()), c.progress())
+	measured, err := h.MeasureIn(ctx, c.want, list, c.b.bodies(p), c.progress())
 	if err != nil {
 		return c.refused(err, p)
 	}
@@ -111,12 +114,12 @@ func (c *cellRows) withoutValue() []string {
 
 // contactsIn gives the contacts of a part's cells: whole, or as far as they lie in
 // regions.
-func (c *contactRows) contactsIn(h *diagram.Handle) contactsFunc {
+func (c *contactRows) contactsIn(p *Part, h *diagram.Handle) contactsFunc {
 	if !c.b.measuredIn() {
 		return h.Contacts
 	}
 	return func(ctx context.Context, sites []int32, progress func(done, total int), yield func(site int32, contacts []voronoi.Contact) error) error {
-		return h.ContactsIn(ctx, sites, diagram.Regions(c.b.bodies()), progress, yield)
+		return h.ContactsIn(ctx, sites, c.b.bodies(p), progress, yield)
 	}
 }
 
@@ -129,7 +132,10 @@ func (g *gapRows) gapsIn(ctx context.Context, h *diagram.Handle, p *Part, put fu
 		}
 		return put(noPart, found)
 	}
-	for i, body := range g.b.bodies() {
+	for i, body := range g.b.bodies(p) {
+		if body == nil {
+			continue
+		}
 		found, err := h.GapsIn(ctx, p.Sites, body, g.env.Threads, g.progress())
 		if err != nil {
 			return err

@@ -72,6 +72,7 @@ type Definition struct {
 	Own      bool     // its rows carry the sites' own columns
 	Zoned    bool     // it takes zones: every diagram it asks for is that of a Part (see zones.go)
 	Pairs    bool     // a row is a pair of cells, told apart by the columns a and b, and their volumes add up to the space
+	Places   bool     // it looks for places in the solid: regions of a solid without convex pieces are arranged
 	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
 	NotYet   []string // columns of the language that are not there yet
 	Open     func(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
@@ -85,12 +86,16 @@ type Definition struct {
 
 // Clauses are the bound clauses of one relation in a query.
 type Clauses struct {
-	Solid      solid.Solid // nil: unclipped, or there are zones
-	SolidName  string      // as the user wrote it, for notes
-	Stretch    voronoi.Vec // factors of the distances; zero: plain
-	Measured   []Region    // measures count in each of these (solid.Divided), none: in the whole
-	Zones      []Region    // each is divided among its own sites alone; none: one space for all
-	Each       []int       // columns of the input named by FOR EACH
+	Solid     solid.Solid // nil: unclipped, or there are zones
+	SolidName string      // as the user wrote it, for notes
+	Stretch   voronoi.Vec // factors of the distances; zero: plain
+	Measured  []Region    // measures count in each of these, none: in the whole
+	// Shared is what each of Measured shares with the solid, or with each of the zones: a
+	// part that is solid.Divided itself, the mesh.Region of any other, nil for nothing.
+	// It is nil where all are Divided.
+	Shared     [][]solid.Solid
+	Zones      []Region // each is divided among its own sites alone; none: one space for all
+	Each       []int    // columns of the input named by FOR EACH
 	Omitting   []string
 	Because    string
 	OmitPlaces []problem.Place // one for each of Omitting

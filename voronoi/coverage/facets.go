@@ -40,6 +40,24 @@ func (k *seeker) facetCell(p Vec) {
 	}
 }
 
+// cutAround cuts the cell of p by a box around the part, clear of its surface, so that the
+// cell is not so large that facets of the part are nothing beside it. It tells whether
+// anything is left.
+func (k *seeker) cutAround(p Vec) bool {
+	lo, hi := k.faceted.Bounds()
+	margin := 0.0625 * length(sub(hi, lo))
+	lo, hi = sub(lo, p), sub(hi, p)
+	for _, w := range [6]solid.Plane{
+		{N: Vec{X: 1}, D: hi.X + margin}, {N: Vec{X: -1}, D: margin - lo.X}, {N: Vec{Y: 1}, D: hi.Y + margin},
+		{N: Vec{Y: -1}, D: margin - lo.Y}, {N: Vec{Z: 1}, D: hi.Z + margin}, {N: Vec{Z: -1}, D: margin - lo.Z},
+	} {
+		if k.cell.Clip(w.N, w.D, polyhedron.Wall(0)) == polyhedron.Empty {
+			return false
+		}
+	}
+	return true
+}
+
 // leadsAway tells that the way from v to w leads clearly farther away from the origin.
 func leadsAway(v, w Vec) bool {
 	e := sub(w, v)

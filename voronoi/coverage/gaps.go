@@ -55,8 +55,10 @@ type Options struct {
 	// a time. It may be nil.
 	Progress func(done, total int)
 	// Within has the gaps looked for in this part of the solid alone: places of it that
-	// are farther from every site than all around them in it. Nil: the whole solid.
-	Within solid.Divided
+	// are farther from every site than all around them in it. Nil: the whole solid. It is
+	// a solid.Divided, as the diagram's own solid is then, or a solid.Faceted that lies in
+	// that wholly, such as a mesh.Region.
+	Within solid.Solid
 }
 
 var (
@@ -105,6 +107,7 @@ type search struct {
 	d       *voronoi.Diagram
 	solid   solid.Divided // nil: none
 	faceted solid.Faceted // or this one, known by its surface
+	partial bool          // which is a part of the solid, or of all space
 	convex  bool          // the diagram's cells are cut by the solid already
 	corners []Vec         // of the solid
 
@@ -124,6 +127,10 @@ func newSearch(d *voronoi.Diagram, sites []Vec, o Options) (*search, error) {
 	s := &search{d: d, sites: sites}
 	switch body := d.Solid(); {
 	case o.Within != nil:
+		if part, ok := o.Within.(solid.Faceted); ok {
+			s.faceted, s.partial, s.corners = part, true, part.Corners()
+			break
+		}
 		part, err := within(body, o.Within)
 		if err != nil {
 			return nil, err

@@ -10,6 +10,7 @@ import (
 
 	"nearcell/voronoi"
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
 
 // A gap on a re-entrant edge: the four nearest sites leave only ways up that lead into
@@ -191,6 +192,64 @@ func TestAgainstFarthest(t *testing.T) {
 		}
 		if far := slices.Max(cells.Farthest); math.Abs(far-g[0].Radius) > 1e-13*far {
 			t.Errorf("room %d: the farthest point is at %v, the largest gap at %v", seed, far, g[0].Radius)
+		}
+	}
+}
+
+// A part that is a mesh has the gaps of the box that it is, in a prism, in a mesh and
+// without a solid, stretched or not.
+func TestGapsWithinMesh(t *testing.T) {
+	room, err := solid.NewPrism([]solid.Vec2{{}, {X: 10}, {X: 10, Y: 4}, {X: 6, Y: 4}, {X: 6, Y: 8}, {Y: 8}}, nil, 0, 4)
+	if err != nil {
+		t.Fatal(err)
+	}
+	pillar, _ := solid.NewBox(Vec{X: 2, Y: 2, Z: -1}, Vec{X: 3, Y: 3, Z: 5})
+	rough, err := mesh.Combine(mesh.Minus, room, pillar)
+	if err != nil {
+		t.Fatal(err)
+	}
+	whole, err := mesh.Combine(mesh.Plus, room, room)
+	if err != nil {
+		t.Fatal(err)
+	}
+	part, _ := solid.NewBox(Vec{X: 4, Y: 1, Z: 0.5}, Vec{X: 9, Y: 9, Z: 2})
+	r := rand.New(rand.NewPCG(8, 8))
+	var sites []Vec
+	for len(sites) < 25 {
+		if p := (Vec{X: 10 * r.Float64(), Y: 8 * r.Float64(), Z: 4 * r.Float64()}); rough.Side(p, 0) == solid.Inside {
+			sites = append(sites, p)
+		}
+	}
+	for _, stretch := range []Vec{{}, {X: 1, Y: 1, Z: 3}} {
+		for name, of := range map[string][2]solid.Solid{"prism": {room, room}, "mesh": {whole, room}, "none": {nil, nil}} {
+			d, err := voronoi.New(sites, voronoi.Options{Solid: of[0], Stretch: stretch})
+			if err != nil {
+				t.Fatal(err)
+			}
+			plain, err := voronoi.New(sites, voronoi.Options{Solid: of[1], Stretch: stretch})
+			if err != nil {
+				t.Fatal(err)
+			}
+			region, err := mesh.NewRegion(of[0], part)
+			if err != nil {
+				t.Fatal(err)
+			}
+			got, err := Gaps(context.Background(), d, sites, Options{Within: region})
+			if err != nil {
+				t.Fatal(err)
+			}
+			want, err := Gaps(context.Background(), plain, sites, Options{Within: part})
+			if err != nil {
+				t.Fatal(err)
+			}
+			if len(got) != len(want) || len(got) < 5 {
+				t.Fatalf("%s, stretched by %v: gaps in the mesh %v, in the box %v", name, stretch, got, want)
+			}
+			for i := range got {
+				if math.Abs(got[i].Radius-want[i].Radius) > 1e-9 || got[i].Site != want[i].Site || got[i].Place != want[i].Place {
+					t.Errorf("%s: %+v, in the box %+v", name, got[i], want[i])
+				}
+			}
 		}
 	}
 }

@@ -104,6 +104,9 @@ func (k *seeker) cellAt(p Vec) error {
 		return nil
 	}
 	if k.faceted != nil {
+		if k.partial && !k.cutAround(p) {
+			return nil
+		}
 		k.facetCell(p)
 		return nil
 	}

@@ -43,7 +43,7 @@ func stretchedGaps(ctx context.Context, d *voronoi.Diagram, sites []Vec, o Optio
 		if err != nil {
 			return nil, err
 		}
-		inner.Within = part.(solid.Divided)
+		inner.Within = part
 	}
 	options.Threads = o.Threads
 	if len(moved) == 0 {

@@ -3,7 +3,11 @@ package coverage
 import "nearcell/voronoi/solid"
 
 // within is the part of a solid (nil: all of space) that lies in another.
-func within(body solid.Solid, part solid.Divided) (solid.Divided, error) {
+func within(body, of solid.Solid) (solid.Divided, error) {
+	part, ok := of.(solid.Divided)
+	if !ok {
+		return nil, &UndividedError{of.Facts().Kind}
+	}
 	if body == nil {
 		return part, nil
 	}

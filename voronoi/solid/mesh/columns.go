@@ -163,8 +163,8 @@ func (w *work) measureContacts() {
 			continue
 		}
 		move := shift * w.m.near
-		inner := w.faceIn(i, -move) - f.within
-		outer := w.faceIn(i, move) - f.beyond
+		inner := w.faceNextTo(i, -move) - f.within
+		outer := w.faceNextTo(i, move) - f.beyond + f.seam
 		in := (inner + outer) / 2
 		if math.Abs(inner-outer) > 1e-6*area {
 			in = min(inner, outer)
@@ -183,6 +183,13 @@ func (w *work) faceMiddle(i int) Vec {
 		m = add(m, w.c.Vertex(int(j)))
 	}
 	return scale(1/float64(len(loop)), m)
+}
+
+// faceNextTo is the area of face i inside the solid on one side of it: moved by two steps,
+// so that strips along walls, as wide as the step, cancel. A face that meets the solid in
+// a re-entrant edge alone has nothing in it.
+func (w *work) faceNextTo(i int, move float64) float64 {
+	return max(0, 2*w.faceIn(i, move)-w.faceIn(i, 2*move))
 }
 
 // faceIn is the area of face i, moved along its normal, inside the solid.

@@ -90,7 +90,7 @@ func Join(ops []Op, s ...solid.Solid) (*Mesh, error) {
 			all.of = &expression{leaf: -1, op: ops[i-1], a: all.of, b: e}
 		}
 	}
-	m, err := combine(all.leaves, all.of, "combination", 0)
+	m, err := combine(all.leaves, all.of, nil, "combination", 0)
 	if err != nil {
 		return nil, err
 	}
@@ -145,7 +145,9 @@ type arrangement struct {
 	points []point
 	given  map[Vec]int32
 	made   map[string]int32
-	pieces [][]int32 // loops of points
+	pieces [][]int32   // loops of points
+	body   *expression // nil, or what bounds a region and is no seam of it
+	seam   []bool      // of each piece, where there is a region
 
 	plus, minus []bool
 }
@@ -156,9 +158,11 @@ type rival struct {
 	t int32
 }
 
-func combine(leaves []*leaf, of *expression, kind string, precision float64) (*Mesh, error) {
+// combine makes the mesh of a combination. With a body, pieces that do not bound that are
+// seams.
+func combine(leaves []*leaf, of, body *expression, kind string, precision float64) (*Mesh, error) {
 	a := &arrangement{
-		leaves: leaves, of: of, given: map[Vec]int32{}, made: map[string]int32{},
+		leaves: leaves, of: of, body: body, given: map[Vec]int32{}, made: map[string]int32{},
 		plus: make([]bool, len(leaves)), minus: make([]bool, len(leaves)),
 	}
 	a.tree = newTree(len(leaves), func(i int32) (lo, hi Vec) { return leaves[i].lo, leaves[i].hi })
@@ -466,6 +470,11 @@ func (a *arrangement) keep(l int32, loop []int32, q *point, t [3]Vec, axis int, 
 		turned := slices.Clone(loop)
 		slices.Reverse(turned)
 		a.pieces = append(a.pieces, turned)
+	default:
+		return
+	}
+	if a.body != nil {
+		a.seam = append(a.seam, a.body.holds(a.plus) == a.body.holds(a.minus))
 	}
 }
 

@@ -28,7 +28,7 @@
 //
 // Areas live on null sets, where "almost everywhere" does not help: regular layouts put
 // faces of cells exactly into walls and under edges of triangles. So a face near the
-// surface is measured twice, moved a little to either side; the walls in its plane, which
+// surface is measured on either side, moved by two small steps; the walls in its plane, which
 // have the solid on one side only, are taken from either; what is left is the contact. A
 // wall in the plane of a face belongs to the cell that has the solid, which is found out by
 // moving the wall inwards; steps of two sizes make the error of the first order cancel.
@@ -46,6 +46,9 @@
 // coincide and edges pass through corners. At last corners are rounded, once, and corners
 // in the middle of another piece's side join it, so that the result is closed. A
 // combination remembers what it was made of; combining it again begins there.
+//
+// [NewRegion] makes what a part shares with a solid in the same way, and knows of each piece
+// of the surface whether the solid ends there or the part alone: the latter is no wall.
 //
 // Faces that coincide but for rounding, as after a rotation, leave films of the solid or of
 // nothing between them, 1e-16 thick. They are found, and are no walls.
@@ -72,7 +75,7 @@
 //
 // # Limitations
 //
-// Walls in one plane that do not hang together are several. Features thinner than four
+// Walls in one plane that do not hang together are several. Features thinner than eight
 // times the distance above have their volume, but their walls and contacts are not to be
 // relied on. Which way triangles around an edge with more than two of them belong together
 // is told by angles in float64. A stretched combination is stretched after its corners were

@@ -38,6 +38,7 @@ type face struct {
 	near   bool    // the surface comes near it
 	beyond float64 // area of walls in its plane that have the solid beyond the face
 	within float64 // and that have it on the cell's side
+	seam   float64 // of seams in its plane, with the region on the cell's side
 }
 
 // touch is a triangle that meets the cell.
@@ -189,7 +190,7 @@ func (w *work) mark(i int32) int32 {
 			s := dot(f.n, w.poly.Corner(j)) - f.d
 			lo, hi = min(lo, s), max(hi, s)
 		}
-		if hi < -(shift+relaxed)*near {
+		if hi < -(2*shift+relaxed)*near {
 			continue
 		}
 		f.near = true
@@ -269,10 +270,13 @@ func (w *work) measureWalls() {
 		}
 		w.poly.Set(a, b, c)
 		f := &w.faces[h.flush]
-		if in := w.clipped(h.flush); dot(f.n, m.n[h.t]) > 0 {
-			f.within += in
-		} else {
+		switch in := w.clipped(h.flush); {
+		case dot(f.n, m.n[h.t]) < 0:
 			f.beyond += in
+		case m.isSeam(h.t):
+			f.seam += in
+		default:
+			f.within += in
 		}
 	}
 }
@@ -282,6 +286,9 @@ func (w *work) sumWalls() {
 	var total sum
 	for k := range w.touches {
 		h := &w.touches[k]
+		if w.m.isSeam(h.t) {
+			continue
+		}
 		total.add(h.area)
 		wall := w.m.wall[h.t]
 		i := slices.IndexFunc(w.rooms, func(r wallRoom) bool { return r.wall == wall })

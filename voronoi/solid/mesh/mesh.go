@@ -48,6 +48,7 @@ type Mesh struct {
 	size   []float64
 	wall   []int32 // wall of each triangle, -1 without area
 	plane  []plane // of each wall
+	seam   []bool  // triangles that bound a region and no wall of the solid; nil: none
 	corner []Vec   // where three walls meet, by x, y, z
 
 	volume, area  float64
@@ -116,10 +117,10 @@ func New(corners []Vec, triangles [][3]int32, o Options) (*Mesh, *Report, error)
 	}
 	if faced {
 		b.report.Touching = true
-		m, err := combine([]*leaf{{surface: newSurface(b.v, b.t), faced: true}}, only(0), kind, o.Precision)
+		m, err := combine([]*leaf{{surface: newSurface(b.v, b.t), faced: true}}, only(0), nil, kind, o.Precision)
 		return m, &b.report, err
 	}
-	m := finish(b.v, b.t, list, kind, o.Precision)
+	m := finish(b.v, b.t, nil, list, kind, o.Precision)
 	m.pieces, m.voids = b.report.Shells, b.report.Voids
 	return m, &b.report, nil
 }
@@ -230,9 +231,9 @@ func (b *builder) weld(within float64) []int32 {
 	return to
 }
 
-// finish makes the mesh of a closed surface.
-func finish(v []Vec, t [][3]int32, list []use, kind string, precision float64) *Mesh {
-	m := &Mesh{surface: newSurface(v, t), kind: kind, precision: precision}
+// finish makes the mesh of a closed surface; seam may be nil.
+func finish(v []Vec, t [][3]int32, seam []bool, list []use, kind string, precision float64) *Mesh {
+	m := &Mesh{surface: newSurface(v, t), kind: kind, precision: precision, seam: seam}
 	m.n, m.size = make([]Vec, len(t)), make([]float64, len(t))
 	var area, volume sum
 	middle := add(scale(0.5, m.lo), scale(0.5, m.hi))
@@ -323,7 +324,7 @@ func (m *Mesh) Stretched(k Vec) (solid.Solid, error) {
 	for i, p := range m.v {
 		v[i] = Vec{X: p.X * k.X, Y: p.Y * k.Y, Z: p.Z * k.Z}
 	}
-	out := finish(v, m.t, uses(m.t), m.kind, m.precision)
+	out := finish(v, m.t, m.seam, uses(m.t), m.kind, m.precision)
 	out.pieces, out.voids = m.pieces, m.voids
 	return out, nil
 }

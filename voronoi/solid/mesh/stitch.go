@@ -132,6 +132,7 @@ func (a *arrangement) mesh(kind string, precision float64) (*Mesh, error) {
 	byPlace := map[Vec]int32{}
 	var v []Vec
 	var t [][3]int32
+	var seam []bool
 	of := func(i int32) int32 {
 		if number[i] < 0 {
 			p := add(a.points[i].f, Vec{})
@@ -145,19 +146,22 @@ func (a *arrangement) mesh(kind string, precision float64) (*Mesh, error) {
 		}
 		return number[i]
 	}
-	for _, loop := range a.pieces {
+	for i, loop := range a.pieces {
 		first := a.apex(loop)
 		for k := 1; k+1 < len(loop); k++ {
 			c := [3]int32{of(loop[first]), of(loop[(first+k)%len(loop)]), of(loop[(first+k+1)%len(loop)])}
 			if c[0] != c[1] && c[1] != c[2] && c[2] != c[0] {
 				t = append(t, c)
+				if a.body != nil {
+					seam = append(seam, a.seam[i])
+				}
 			}
 		}
 	}
 	if len(t) == 0 {
 		return nil, &Error{Fault: NothingLeft}
 	}
-	return closed(v, t, kind, precision)
+	return closed(v, t, seam, kind, precision)
 }
 
 // apex is the corner of a loop from which a fan has the largest smallest triangle.
@@ -181,7 +185,7 @@ func (a *arrangement) apex(loop []int32) int {
 
 // closed makes the mesh of a closed surface that bounds a solid, and counts its pieces
 // and voids. Components as thin as rounding are left out.
-func closed(v []Vec, t [][3]int32, kind string, precision float64) (*Mesh, error) {
+func closed(v []Vec, t [][3]int32, seam []bool, kind string, precision float64) (*Mesh, error) {
 	list := uses(t)
 	if err := balance(v, list); err != nil {
 		return nil, &Error{Fault: NotClosed, At: err.(*Error).Edges[0][0]}
@@ -201,7 +205,7 @@ func closed(v []Vec, t [][3]int32, kind string, precision float64) (*Mesh, error
 	}
 	thin := nearFactor * length(sub(hi, lo))
 	shells, voids := 0, 0
-	kept := t[:0:0]
+	kept, keptSeam := t[:0:0], seam[:0:0]
 	for k := range n {
 		volume := volumes[k].value()
 		switch {
@@ -215,13 +219,16 @@ func closed(v []Vec, t [][3]int32, kind string, precision float64) (*Mesh, error
 		for i := range t {
 			if int(of[i]) == k {
 				kept = append(kept, t[i])
+				if seam != nil {
+					keptSeam = append(keptSeam, seam[i])
+				}
 			}
 		}
 	}
 	if shells == 0 {
 		return nil, &Error{Fault: NothingLeft}
 	}
-	m := finish(v, kept, uses(kept), kind, precision)
+	m := finish(v, kept, keptSeam, uses(kept), kind, precision)
 	m.pieces, m.voids = shells, voids
 	m.skipFilms()
 	return m, nil
@@ -243,7 +250,7 @@ func Restore(corners []Vec, triangles [][3]int32, precision float64) (*Mesh, err
 		p := sub(b.v[t[0]], b.v[0])
 		volumes[of[i]].add(dot(p, cross(sub(b.v[t[1]], b.v[0]), sub(b.v[t[2]], b.v[0]))) / 6)
 	}
-	m := finish(b.v, b.t, list, "mesh", precision)
+	m := finish(b.v, b.t, nil, list, "mesh", precision)
 	for k := range volumes {
 		if volumes[k].value() > 0 {
 			m.pieces++

@@ -31,7 +31,7 @@ func Terrain(points []Vec, height float64) (*Mesh, *Ground, error) {
 	if len(b.t) == 0 {
 		return nil, nil, &Error{Fault: NoVolume}
 	}
-	m, err := closed(b.v, b.t, "terrain", 0)
+	m, err := closed(b.v, b.t, nil, "terrain", 0)
 	return m, g, err
 }
 

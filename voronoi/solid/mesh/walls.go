@@ -51,7 +51,7 @@ func (m *Mesh) findWalls(list []use) {
 			i := stack[len(stack)-1]
 			stack = stack[:len(stack)-1]
 			for _, j := range neighbours[i] {
-				if m.wall[j] < 0 && m.size[j] > 0 && dot(m.n[j], p.n) > 0.9 && m.isIn(j, p, flat) {
+				if m.wall[j] < 0 && m.size[j] > 0 && m.isSeam(j) == m.isSeam(seed) && dot(m.n[j], p.n) > 0.9 && m.isIn(j, p, flat) {
 					m.wall[j] = w
 					stack = append(stack, j)
 				}
