@@ -134,3 +134,19 @@ func TestDuplicatesForEach(t *testing.T) {
 		a.is("SELECT day, id, volume, temp FROM CELLS OF (SELECT * FROM hall) WITHIN BOX (0,0,0) TO (10,4,3) FOR EACH day;", split)
 	}
 }
+
+// DUPLICATES MEAN of what has no plain mean: 80 dB and 90 dB are 10 lg(0.5 (10^8 + 10^9)) =
+// 87.403627 dB, 350° and 20° are 5°, pH 4 and pH 6 have the mean acid -lg(0.5 (1e-4 + 1e-6))
+// = 5.29671 - 1 = 4.296709 (by hand). Opposite directions have no mean.
+func TestMeanOfLogarithms(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "noise.csv")
+	text := "id,x,y,z,level [dB],wind [°],acid [pH],temp [°C]\nA,2,2,1.5,80,350,4,10\nB,2,2,1.5,90,20,6,20\nC,6,2,1.5,70,90,7,8\nD,8,2,1.5,-5000,90,7,8\nE,8,2,1.5,,270,,8\n"
+	if err := os.WriteFile(path, []byte(text), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	a := newAsker(t, 2)
+	a.text("CREATE CAMPAIGN hall FROM '" + path + "' WITHIN BOX (0,0,0) TO (10,4,3) DUPLICATES MEAN;")
+	a.is("SELECT id, ROUND(level, 6), ROUND(wind, 9), ROUND(acid, 6), temp FROM CELLS OF hall ORDER BY id;",
+		"A 87.403627 5 4.296709 15; C 70 90 7 8; D -5000  7 8")
+	a.says("its numbers are their means (of level by energy, wind by vectors, acid by the acid)")
+}

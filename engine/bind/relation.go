@@ -7,6 +7,7 @@ import (
 
 	"nearcell/catalog"
 	"nearcell/catalog/column"
+	"nearcell/engine/function"
 	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/problem"
@@ -226,6 +227,9 @@ func (b *binder) inherit(rel *relation.Bound, o *catalog.Object) error {
 	}
 	rel.Clauses.Tolerance = opt.Tolerance
 	rel.Clauses.Duplicates = opt.Duplicates
+	if opt.Duplicates == relation.Mean {
+		rel.Clauses.Means = means(rel.Input)
+	}
 	rel.Clauses.Stretch = voronoi.Vec{X: opt.Stretched[0], Y: opt.Stretched[1], Z: opt.Stretched[2]}
 	if len(opt.Zones) > 0 {
 		return b.inheritZones(rel, o)
@@ -309,6 +313,22 @@ func (b *binder) clauses(rel *relation.Bound, r *lang.Relation, campaign bool) e
 		b.say(note.Note, note.Sites, "%s has no WITHIN, so its cells end nowhere: only a campaign named after OF brings its solid along", rel.Title())
 	}
 	return nil
+}
+
+// means are how the columns of the sites make means: by their units.
+func means(s column.Schema) []relation.MeanKind {
+	list := make([]relation.MeanKind, len(s))
+	for i, f := range s {
+		switch function.NoPlainMean(f.Unit) {
+		case function.NoMeanLevel:
+			list[i] = relation.LevelMean
+		case function.NoMeanDirection:
+			list[i] = relation.DirectionMean
+		case function.NoMeanAcid:
+			list[i] = relation.AcidMean
+		}
+	}
+	return list
 }
 
 // takes refuses a clause that the relation does not take, or not yet.

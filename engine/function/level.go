@@ -167,6 +167,13 @@ func plainMean(u *column.Unit) error {
 	return nil
 }
 
+// What NoPlainMean says: the aggregate that is the mean, or words where there is none.
+const (
+	NoMeanLevel     = "LEVEL_AVG"
+	NoMeanDirection = "DIRECTION_AVG"
+	NoMeanAcid      = "a mean of the acid"
+)
+
 // NoPlainMean names the aggregate that is the mean of values in a unit, "" where
 // the plain mean is one.
 func NoPlainMean(u *column.Unit) string {
@@ -174,11 +181,11 @@ func NoPlainMean(u *column.Unit) string {
 	case u == nil:
 		return ""
 	case isLevel(u):
-		return "LEVEL_AVG"
+		return NoMeanLevel
 	case isDirection(u):
-		return "DIRECTION_AVG"
+		return NoMeanDirection
 	case isAcidity(u):
-		return "a mean of the acid"
+		return NoMeanAcid
 	}
 	return ""
 }

@@ -48,11 +48,26 @@ func duplicates(b *Bound, env *Env, input *column.Table, o *order, parts []*Part
 	case First:
 		what = "only the first identifier of each place is kept"
 	case Mean:
-		what = "each place is one site under its first identifier, its numbers are their means"
+		what = "each place is one site under its first identifier, its numbers are their means" + b.otherMeans()
 	}
 	env.Notes.Add(note.Note, note.Sites, "%s of %s share a place with another (%s): %s (DUPLICATES %s)",
 		count(len(names), "site"), b.Name, someOf(names), what, b.policy())
 	return nil
+}
+
+// otherMeans says which columns have means that are not plain ones.
+func (b *Bound) otherMeans() string {
+	words := map[MeanKind]string{LevelMean: "by energy", DirectionMean: "by vectors", AcidMean: "by the acid"}
+	var list []string
+	for i, kind := range b.Clauses.Means {
+		if kind != PlainMean && b.averaged(i) {
+			list = append(list, b.Input[i].Name+" "+words[kind])
+		}
+	}
+	if len(list) == 0 {
+		return ""
+	}
+	return " (of " + strings.Join(list, ", ") + ")"
 }
 
 func (b *Bound) policy() string {

@@ -101,6 +101,7 @@ type Clauses struct {
 	OmitPlaces []problem.Place // one for each of Omitting
 	Tolerance  float64
 	Duplicates string       // SPLIT, MEAN, FIRST, FAIL; "" is SPLIT
+	Means      []MeanKind   // with MEAN: of each column of the input; nil: plain means
 	Unit       *column.Unit // of length, nil: not known
 
 	By  []int // columns of the input named by BY
