@@ -48,7 +48,8 @@ type provenanceRequirement struct {
 type provenanceInput struct {
 	Name    string             `json:"name"`
 	Kind    string             `json:"kind"`
-	Text    string             `json:"text,omitempty"` // a solid's or a view's
+	Text    string             `json:"text,omitempty"`   // a solid's or a view's
+	System  string             `json:"system,omitempty"` // the frame, or the origin, that its coordinates were brought from
 	Options *provenanceOptions `json:"options,omitempty"`
 	Rows    int                `json:"rows,omitempty"`
 	Created time.Time          `json:"created"`
@@ -155,7 +156,7 @@ func (s *Session) inputs(tree lang.Node) []provenanceInput {
 	list := []provenanceInput{}
 	for _, k := range keys {
 		o := found[k]
-		in := provenanceInput{Name: o.Name, Kind: o.Kind.String(), Text: o.Text, Rows: o.Rows, Created: o.Created, Notes: o.Notes}
+		in := provenanceInput{Name: o.Name, Kind: o.Kind.String(), Text: o.Text, System: o.System, Rows: o.Rows, Created: o.Created, Notes: o.Notes}
 		if o.Kind == catalog.Campaign {
 			in.Options = &provenanceOptions{
 				Within: withinOf(o), Duplicates: duplicatesOf(o), Tolerance: o.Options.Tolerance,

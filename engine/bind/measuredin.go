@@ -27,6 +27,10 @@ func (b *binder) measuredIn(rel *relation.Bound, c *lang.MeasuredInClause) error
 	taken := map[string]bool{}
 	for i, s := range solids {
 		for _, part := range pieces(s) {
+			if _, ok := part.Solid.(solid.Divided); !ok && rel.Def.Pairs {
+				return b.notYet(trees[i], rel.Def.Noun+" MEASURED IN "+part.Name+", which has no convex pieces,").
+					WithHint("a part of %s is a BOX, a PRISM, or each box of BOXES with a name of its own", rel.Def.Noun)
+			}
 			if taken[lang.Fold(part.Name)] { // two lists of boxes have a box of one name
 				part.Name = s.Name + " " + part.Name
 			}

@@ -4,8 +4,10 @@ import (
 	"fmt"
 	"strings"
 
+	"nearcell/catalog/column"
 	"nearcell/engine/expr"
 	"nearcell/engine/relation"
+	"nearcell/voronoi"
 )
 
 // Format writes a plan as an indented tree, one node a line, the source last.
@@ -122,6 +124,15 @@ func clauses(b *relation.Bound) string {
 	if c.Solid != nil && b.Def.Over != relation.OverNothing {
 		text += " within " + shortened(c.SolidName)
 	}
+	if len(c.Zones) > 0 && b.Def.Over != relation.OverNothing {
+		text += " within (" + regionNames(c.Zones) + ")"
+	}
+	if voronoi.IsStretch(c.Stretch) {
+		text += fmt.Sprintf(" stretched (%s, %s, %s)", column.FormatReal(c.Stretch.X), column.FormatReal(c.Stretch.Y), column.FormatReal(c.Stretch.Z))
+	}
+	if len(c.Measured) > 0 {
+		text += " measured in (" + regionNames(c.Measured) + ")"
+	}
 	for i, of := range c.For {
 		if i == 0 {
 			text += " for "
@@ -151,6 +162,20 @@ func clauses(b *relation.Bound) string {
 		text += " omitting " + shortened("'"+strings.Join(c.Omitting, "', '")+"'")
 	}
 	return text
+}
+
+// regionNames names zones or parts, the first few of many.
+func regionNames(list []relation.Region) string {
+	const most = 5
+	var names []string
+	for i, r := range list {
+		if i == most && len(list) > most+1 {
+			names = append(names, fmt.Sprintf("%d more", len(list)-most))
+			break
+		}
+		names = append(names, shortened(r.Name))
+	}
+	return strings.Join(names, ", ")
 }
 
 // shortened leaves the end of a long text out: solids may be written in place.

@@ -126,5 +126,5 @@
 // # Limitations
 //
 // UNCERTAINTY by a column is not there yet. Contacts in parts are not remembered by the
-// diagram. The whole input is held in memory.
+// diagram, and OVERLAY counts in parts that are solid.Divided only. The whole input is held in memory.
 package relation

@@ -29,6 +29,16 @@ func (b *Bound) bodies(p *Part) []solid.Solid {
 	return list
 }
 
+// dividedParts are the regions by their convex pieces, for relations of which binding has
+// seen to it that all have them.
+func (b *Bound) dividedParts() []solid.Divided {
+	list := make([]solid.Divided, len(b.Clauses.Measured))
+	for i, r := range b.Clauses.Measured {
+		list[i] = r.Solid.(solid.Divided)
+	}
+	return list
+}
+
 // partInRegions emits the rows of a part of CELLS: by site, then by region.
 func (c *cellRows) partInRegions(ctx context.Context, p *Part, rows *[]int32, out *batches, flush func() error) error {
 	if !c.wanted(p) {

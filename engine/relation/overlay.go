@@ -265,7 +265,7 @@ func (x *overlayRows) lay(ctx context.Context, p, q *Part, asked []int32, shared
 	}
 	var o overlay.Options
 	if x.b.measuredIn() {
-		o.Parts = x.b.bodies()
+		o.Parts = x.b.dividedParts()
 	}
 	lists, err := h.Overlay(ctx, g, asked, o, x.progress())
 	if err != nil {
