@@ -9,9 +9,6 @@ import (
 
 // dispatch runs a statement by its kind; each kind has a file of its own.
 func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Statement) error {
-	if refusal := refuse(st, tree); refusal != nil {
-		return refusal
-	}
 	switch t := tree.(type) {
 	case *lang.QueryStatement:
 		return s.query(ctx, st, t)
@@ -43,6 +40,8 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 		return s.require(ctx, st, t)
 	case *lang.Explain:
 		return s.explain(ctx, st, t)
+	case *lang.Draw:
+		return s.drawing(ctx, st, t)
 	case *lang.Run:
 		return s.runFile(ctx, st, t)
 	case *lang.Set:
@@ -55,20 +54,4 @@ func (s *Session) dispatch(ctx context.Context, st *statement, tree lang.Stateme
 		return errQuit
 	}
 	return problem.NotThereYet(st.at(tree), "this statement")
-}
-
-// refuse names what the language has and the engine has not; nil for the rest.
-func refuse(st *statement, tree lang.Statement) error {
-	what := ""
-	switch t := tree.(type) {
-	case *lang.Draw:
-		what = "DRAW"
-		if t.Show {
-			what = "SHOW"
-		}
-	}
-	if what == "" {
-		return nil
-	}
-	return problem.NotThereYet(st.at(tree), what)
 }

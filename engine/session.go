@@ -30,6 +30,7 @@ type Options struct {
 	Memory    int64          // bytes for kept diagrams, and for one statement's intermediate results; 0: a default, no limit
 	Strict    bool           // a warning fails its statement
 	KeepGoing bool           // go on after a failing statement
+	PlainText bool           // ASCII alone in maps: the terminal may have no UTF-8
 	Quiet     bool           // no confirmations, no row counts; notes stay
 	Progress  func(done, total int)
 	// CommandLine are the commands and options of the program, for HELP.

@@ -119,20 +119,34 @@ func dataStatements() []entry {
 		{
 			name: "DRAW", also: []string{"SHADED BY", "LIMITS", "SHOWING", "ALONG", "COURSE", "HISTOGRAM", "PROFILE"},
 			syntax: []string{
-				"DRAW SECTION OF campaign AT z = height SHADED BY column [LIMITS (low, high)] TO 'file.svg';",
+				"DRAW SECTION OF campaign AT z = height | THROUGH (x, y, z) NORMAL (nx, ny, nz) {clause}",
+				"  SHADED BY column [LIMITS (low, high)] TO 'file' [OVERWRITE];",
 				"DRAW CELLS OF campaign SHADED BY column TO 'file.html';",
-				"DRAW COURSE OF (query) ALONG t SHOWING a, b [LIMITS (low, high)] TO 'file.svg';",
-				"DRAW HISTOGRAM OF (query) SHOWING x [WEIGHTED BY w] TO 'file.svg';",
-				"DRAW PROFILE OF campaign FOR column ALONG z TO 'file.svg';",
+				"DRAW COURSE OF (query) ALONG t SHOWING a, b [LIMITS (low, high)] TO 'file' [OVERWRITE];",
+				"DRAW HISTOGRAM OF (query) SHOWING x [WEIGHTED BY w] [LIMITS (low, high)] TO 'file' [OVERWRITE];",
+				"DRAW PROFILE OF campaign FOR column ALONG z [LIMITS (low, high)] TO 'file' [OVERWRITE];",
 			},
-			meaning: "Draws a picture into a file.",
-			example: "DRAW SECTION OF hall AT z = 1.1 SHADED BY temp TO 'floor.svg';",
+			meaning: "Draws a picture into a file: .svg, or .png with 200 dots an inch, as wide as the text of an A4 sheet. Numbers in it are those of the tables.",
+			more: []string{
+				"SECTION cuts the cells by a plane and shades each by the value of its site; METHOD SIBSON and others shade by the estimate. Walls, sites near the plane, a scale of length and the shares of the area over and under the limits are in the picture. FOR EACH makes a panel for each value, up to 12.",
+				"COURSE draws lines over time, open where a value or a row is missing, with two axes where units differ. HISTOGRAM shows how values are distributed, PROFILE values by height with the mean of each layer, weighted by volume.",
+				"LIMITS (8) is an upper limit, LIMITS (2, 8) a lower and an upper one. What is beyond a limit, or has no value, is hatched as well as coloured. The picture says where its colours were published.",
+			},
+			example: "DRAW SECTION OF hall AT z = 1.1 SHADED BY temp LIMITS (2, 8) TO 'floor.svg';",
+			forms: []form{
+				{"DRAW COURSE", "DRAW COURSE OF (SELECT t, AVG(temp) AS mean FROM log GROUP BY t)\n  ALONG t SHOWING mean LIMITS (2, 8) TO 'week.svg';"},
+				{"DRAW HISTOGRAM", "DRAW HISTOGRAM OF (SELECT temp, volume FROM CELLS OF hall)\n  SHOWING temp WEIGHTED BY volume TO 'spread.svg';"},
+				{"DRAW PROFILE", "DRAW PROFILE OF hall FOR temp ALONG z TO 'profile.svg';"},
+				{"DRAW CELLS", "DRAW CELLS OF hall SHADED BY temp TO 'hall.html';"},
+			},
+			see: []string{"SHOW", "SECTION", "METHOD"},
 		},
 		{
 			name:    "SHOW",
-			syntax:  []string{"SHOW SECTION OF campaign AT z = height SHADED BY column;"},
-			meaning: "Draws the same map as DRAW in the terminal.",
-			example: "SHOW SECTION OF hall AT z = 1.1 SHADED BY temp;",
+			syntax:  []string{"SHOW SECTION OF campaign AT z = height {clause} SHADED BY column [LIMITS (low, high)];"},
+			meaning: "Draws the same map as DRAW SECTION in the terminal, with characters, as wide as the terminal: darker is higher, ^ is over the limit, v under it. Where the terminal has no UTF-8, in plain ASCII.",
+			example: "SHOW SECTION OF hall AT z = 1.1 SHADED BY temp LIMITS (2, 8);",
+			see:     []string{"DRAW"},
 		},
 	}
 }

@@ -140,14 +140,15 @@ type Quit struct{ At }
 // zero, Limits and Showing empty, Weight and To nil when not given.
 type Draw struct {
 	At
-	Show     bool
-	Relation *Relation
-	Shaded   Name
-	Limits   []Expr
-	Along    Name
-	Showing  []Name
-	Weight   Expr
-	To       *Text
+	Show      bool
+	Relation  *Relation
+	Shaded    Name
+	Limits    []Expr
+	Along     Name
+	Showing   []Name
+	Weight    Expr
+	To        *Text
+	Overwrite bool // of To
 }
 
 // Remark is TITLE 'text', or TEXT 'text' when Title is false: words for the report.

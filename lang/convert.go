@@ -139,7 +139,7 @@ func (g *helpGrammar) tree(at At) (Statement, *Error) {
 func (g *quitGrammar) tree(at At) (Statement, *Error) { return &Quit{At: at}, nil }
 
 func (g *drawGrammar) tree(at At) (Statement, *Error) {
-	s := &Draw{At: at, Show: strings.EqualFold(g.Verb, "SHOW"), Relation: g.Relation.Relation, To: fileOf(g.To)}
+	s := &Draw{At: at, Show: strings.EqualFold(g.Verb, "SHOW"), Relation: g.Relation.Relation, To: fileOf(g.To), Overwrite: g.Overwrite}
 	for i := range g.Options {
 		o := &g.Options[i]
 		second := false

@@ -135,8 +135,10 @@ func (g *gen) statement() Statement {
 	case 17:
 		return &Quit{}
 	case 18:
-		return &Draw{Show: g.coin(), Relation: g.relation(), Shaded: maybe(g, g.name), Limits: maybe(g, g.values), Along: maybe(g, g.name),
+		d := &Draw{Show: g.coin(), Relation: g.relation(), Shaded: maybe(g, g.name), Limits: maybe(g, g.values), Along: maybe(g, g.name),
 			Showing: maybe(g, g.names), Weight: maybe(g, g.weight), To: maybe(g, g.text)}
+		d.Overwrite = d.To != nil && g.coin()
+		return d
 	}
 	return &Remark{Title: g.coin(), Text: g.text()}
 }

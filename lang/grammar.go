@@ -106,10 +106,11 @@ type quitGrammar struct {
 }
 
 type drawGrammar struct {
-	Verb     string       `parser:"@( DRAW | SHOW )"`
-	Relation relationPart `parser:"@@"`
-	Options  []drawOption `parser:"@@*"`
-	To       *filePart    `parser:"( TO @@ )?"`
+	Verb      string       `parser:"@( DRAW | SHOW )"`
+	Relation  relationPart `parser:"@@"`
+	Options   []drawOption `parser:"@@*"`
+	To        *filePart    `parser:"( TO @@"`
+	Overwrite bool         `parser:"@OVERWRITE? )?"`
 }
 
 type drawOption struct {

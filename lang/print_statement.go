@@ -181,6 +181,9 @@ func (w *printer) draw(s *Draw) {
 	if s.To != nil {
 		w.put(" TO ")
 		w.text(s.To)
+		if s.Overwrite {
+			w.put(" OVERWRITE")
+		}
 	}
 }
 

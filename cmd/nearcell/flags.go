@@ -1,6 +1,7 @@
 package main
 
 import (
+	"os"
 	"strings"
 
 	"github.com/spf13/pflag"
@@ -39,7 +40,7 @@ func (f *flags) add(set *pflag.FlagSet) {
 
 // options are the engine's, after the values have been looked at.
 func (f *flags) options() (engine.Options, error) {
-	o := engine.Options{Program: "nearcell " + version, Strict: f.strict, KeepGoing: f.keepGoing, Quiet: f.quiet, Threads: f.threads}
+	o := engine.Options{Program: "nearcell " + version, Strict: f.strict, KeepGoing: f.keepGoing, Quiet: f.quiet, Threads: f.threads, PlainText: !hasUTF8(os.Getenv)}
 	if f.threads < 0 {
 		return o, usage("--threads takes a number of 1 or more")
 	}
@@ -77,4 +78,15 @@ func bytesOf(text string) (int64, error) {
 		return 0, usage("--memory takes a size such as 8GiB, not '%s'", text)
 	}
 	return n, nil
+}
+
+// hasUTF8 tells by the first of the locale's variables that is set whether the terminal
+// writes UTF-8.
+func hasUTF8(variable func(string) string) bool {
+	for _, name := range []string{"LC_ALL", "LC_CTYPE", "LANG"} {
+		if v := strings.ToUpper(variable(name)); v != "" {
+			return strings.Contains(v, "UTF-8") || strings.Contains(v, "UTF8")
+		}
+	}
+	return false
 }

@@ -16,14 +16,14 @@ var ofFiles = []Entry{
 	},
 	{
 		Code:    "file-exists",
-		Meaning: "SAVE would write over a file.",
+		Meaning: "SAVE or DRAW would write over a file.",
 		WayOut:  "OVERWRITE replaces it.",
 		Example: "SAVE SELECT id FROM hall TO 'hall.csv';",
 	},
 	{
 		Code:    "file-kind",
 		Meaning: "The ending of the file does not say how it is to be written.",
-		WayOut:  "HELP SAVE lists the endings.",
+		WayOut:  "HELP SAVE and HELP DRAW list the endings.",
 		Example: "SAVE SELECT id FROM hall TO 'sites.doc';",
 	},
 	{

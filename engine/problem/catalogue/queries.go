@@ -3,6 +3,30 @@ package catalogue
 // ofQueries are the slips in the build of a query.
 var ofQueries = []Entry{
 	{
+		Code:    "no-picture",
+		Meaning: "There is no picture of that, or the terminal has none.",
+		WayOut:  "DRAW makes pictures of SECTION, COURSE, HISTOGRAM and PROFILE; SHOW draws SECTION in the terminal.",
+		Example: "DRAW HULL OF hall TO 'hull.svg';",
+	},
+	{
+		Code:    "no-rows",
+		Meaning: "The query of a picture gives no row with a value: there is nothing to draw.",
+		WayOut:  "Run the query alone to see why it is empty.",
+		Example: "DRAW HISTOGRAM OF (SELECT temp FROM hall WHERE temp > 99) SHOWING temp TO 'none.svg';",
+	},
+	{
+		Code:    "limits",
+		Meaning: "LIMITS of a picture has more than two values, or a lower one that is not below the upper one.",
+		WayOut:  "LIMITS (8) is an upper limit, LIMITS (2, 8) a lower and an upper one.",
+		Example: "DRAW SECTION OF hall AT z = 1.1 SHADED BY temp LIMITS (8, 2) TO 'floor.svg';",
+	},
+	{
+		Code:    "plane",
+		Meaning: "The plane of a section misses the solid, or is none: its normal has no length, its axis is not x, y or z.",
+		WayOut:  "The message says between which coordinates the solid lies.",
+		Example: "DRAW SECTION OF hall AT z = 9 SHADED BY temp TO 'floor.svg';",
+	},
+	{
 		Code:    "syntax",
 		Meaning: "The text is no statement of the language. Nothing of a script runs before all of it can be read.",
 		WayOut:  "The mark stands where reading stopped; HELP and the first word of the statement show how it is written.",
