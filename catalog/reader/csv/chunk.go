@@ -83,10 +83,16 @@ func inOrder[T any](ctx context.Context, threads, n int, work func(i int) T, tak
 	defer close(stop)
 	for range min(threads, n) {
 		all.Go(func() {
-			for i := range begin {
+			for {
+				// The place comes before the number: else the one that is waited for
+				// could be without a place while later results fill them all.
 				select {
 				case room <- struct{}{}:
 				case <-stop:
+					return
+				}
+				i, more := <-begin
+				if !more {
 					return
 				}
 				results[i] <- work(i)

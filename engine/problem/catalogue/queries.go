@@ -144,6 +144,6 @@ var ofQueries = []Entry{
 		Code:    "not-yet",
 		Meaning: "The language has this, and this version of the program does not. It is refused by name, never passed over.",
 		WayOut:  "HELP marks what is not there yet; where there is another way, the message names it.",
-		Example: "DROP DIAGRAMS;",
+		Example: "DRAW CELLS OF hall SHADED BY temp TO 'hall.html';",
 	},
 }

@@ -46,7 +46,7 @@ EXPLAIN MEASURED SELECT SUM(volume) FROM CELLS OF placed WITHIN air STRETCHED (1
 estimated  rows  seconds     MB  step
         1     1   ?.????         columns: "SUM(volume)"
         1     1   ?.????  ?.???    aggregate all rows: SUM(volume)
-       54    54   ?.????  ?.???      cells of placed within air: volume
+       54    54   ?.????  ?.???      cells of placed within air stretched (1, 1, 2): volume
                                          geometry: volume of 54 cells, one by one, TIME; 54 computed
        54    54   ?.????               compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
        54    54   ?.????                 read campaign hall: id, x, y, z
