@@ -28,8 +28,8 @@ type format struct {
 // write .txt and .dat.
 var (
 	delimited = &format{"delimited text", csv.Reader{}, []string{"DELIMITER", "DECIMAL", "MISSING", "REFUSED", "HEADING", "ENCODING", "TIME", "PREAMBLE", "CENSORED", "UNPIVOT"}}
-	asBook = &format{"a workbook", xlsx.Reader{}, []string{"DECIMAL", "MISSING", "REFUSED", "HEADING", "SHEET", "TIME", "PREAMBLE", "CENSORED", "UNPIVOT"}}
-	asJSON = &format{"JSON", jsonl.Reader{}, []string{"MISSING", "REFUSED", "TIME", "CENSORED", "UNPIVOT"}}
+	asBook    = &format{"a workbook", xlsx.Reader{}, []string{"DECIMAL", "MISSING", "REFUSED", "HEADING", "SHEET", "TIME", "PREAMBLE", "CENSORED", "UNPIVOT"}}
+	asJSON    = &format{"JSON", jsonl.Reader{}, []string{"MISSING", "REFUSED", "TIME", "CENSORED", "UNPIVOT"}}
 
 	typed     = []string{"UNPIVOT"}
 	asParquet = &format{"Parquet", parquet.Reader{}, typed}
