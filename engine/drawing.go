@@ -45,7 +45,15 @@ func (s *Session) drawing(ctx context.Context, st *statement, t *lang.Draw) erro
 	if err != nil || p == nil {
 		return err
 	}
-	if t.Show {
+	if s.report != nil { // the picture stands in the report, too
+		if err := s.report.Picture(p.Scene().SVG(), lang.Print(t)); err != nil {
+			return err
+		}
+	}
+	switch {
+	case t.Show && s.report != nil:
+		return nil
+	case t.Show:
 		return s.showSection(p.(*draw.Section))
 	}
 	data, err := write(p.Scene())
