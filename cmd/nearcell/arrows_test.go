@@ -63,6 +63,7 @@ var arrows = map[string][]string{
 	"engine/present":      {"catalog/column"},
 	"engine/vtu":          {"catalog/column", "voronoi"},
 	"engine/report":       {"catalog/column", "engine/present"},
+	"engine/browser":      {},
 	"engine/draw":         {},
 	"engine":              {"catalog/...", "engine/...", "lang", "voronoi/..."},
 	"cmd/nearcell":        {"catalog/...", "cmd/nearcell/prompt", "engine/..."},
