@@ -25,6 +25,9 @@ const placeNumber = "picture_place"
 func (s *Session) estimateSection(ctx context.Context, m *sectionMap, groups []group) error {
 	tiles := m.tiles()
 	m.out.Estimate = strings.ToUpper(m.method.Name.Text)
+	if len(tiles) == 0 { // the plane meets none of the parts that count
+		return nil
+	}
 	relationOf := *m.plain
 	relationOf.Noun.Text = "ESTIMATES"
 	points, err := lang.ParseQuery(m.places(tiles))
@@ -50,7 +53,7 @@ func (s *Session) estimateSection(ctx context.Context, m *sectionMap, groups []g
 		}
 		m.fillTiles(p, rows, groups[i].heading)
 		for _, t := range p.Tiles {
-			p.Parts = append(p.Parts, draw.Part{Value: t.Value, Missing: t.Missing, Area: t.Area})
+			p.Parts = append(p.Parts, draw.Part{Value: t.Value, Missing: t.Missing, Area: t.Area, In: t.In})
 		}
 	}
 	m.out.Notes = append(m.out.Notes, fmt.Sprintf("Estimated at the middles of %d tiles.", len(tiles)))
@@ -74,7 +77,15 @@ func (m *sectionMap) fillTiles(p *draw.Panel, rows *column.Table, heading string
 
 // tiles divide the walls of the first panel, which are those of all, into squares.
 func (m *sectionMap) tiles() []draw.Tile {
-	walls := m.out.Panels[0].Walls
+	walls, part := m.out.Panels[0].Walls, []int(nil)
+	if m.parts != nil {
+		walls = nil
+		for k, list := range m.out.Panels[0].Within {
+			for _, w := range list {
+				walls, part = append(walls, w), append(part, k)
+			}
+		}
+	}
 	lo, hi := draw.Bounds(walls)
 	edge := math.Max(hi.X-lo.X, hi.Y-lo.Y) / tilesAcross
 	var list []draw.Tile
@@ -82,17 +93,30 @@ func (m *sectionMap) tiles() []draw.Tile {
 		for i := 0; lo.X+float64(float64(i)*edge) < hi.X; i++ {
 			from := draw.Point{X: lo.X + float64(float64(i)*edge), Y: lo.Y + float64(float64(j)*edge)}
 			to := draw.Point{X: lo.X + float64(float64(i+1)*edge), Y: lo.Y + float64(float64(j+1)*edge)}
-			var t draw.Tile
-			for _, w := range walls {
-				if piece := w.Within(from, to); len(piece) > 0 && piece.Area() > 1e-9*edge*edge {
-					t.Pieces = append(t.Pieces, piece)
-					t.Area += piece.Area()
-				}
-			}
-			if len(t.Pieces) > 0 {
-				list = append(list, t)
-			}
+			list = append(list, tilesIn(walls, part, from, to, 1e-9*edge*edge)...)
 		}
+	}
+	return list
+}
+
+// tilesIn is what a square has of polygons: one tile, or one for each part that counts.
+func tilesIn(walls []draw.Polygon, part []int, from, to draw.Point, least float64) []draw.Tile {
+	var list []draw.Tile
+	for k, w := range walls {
+		piece := w.Within(from, to)
+		if len(piece) == 0 || piece.Area() <= least {
+			continue
+		}
+		in := 0
+		if part != nil {
+			in = part[k]
+		}
+		if n := len(list); n == 0 || list[n-1].In != in {
+			list = append(list, draw.Tile{In: in})
+		}
+		t := &list[len(list)-1]
+		t.Pieces = append(t.Pieces, piece)
+		t.Area += piece.Area()
 	}
 	return list
 }

@@ -2,7 +2,6 @@ package engine
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -26,17 +25,19 @@ const mostPanels = 12
 
 // sectionMap is a map on its way: what is asked for, the sites, and where to cut.
 type sectionMap struct {
-	st     *statement
-	t      *lang.Draw
-	plain  *lang.Relation // what SECTION is made of, as CELLS
-	method *lang.MethodClause
-	each   []lang.Name
-	plane  drawnPlane
-	limits []float64
+	st       *statement
+	t        *lang.Draw
+	plain    *lang.Relation // what SECTION is made of, as CELLS
+	method   *lang.MethodClause
+	measured *lang.MeasuredInClause
+	each     []lang.Name
+	plane    drawnPlane
+	limits   []float64
 
 	bound *relation.Bound
 	rows  *column.Table // id, x, y, z, value, each …, zone
 	zoned bool
+	parts []relation.Region // of MEASURED IN
 	out   *draw.Section
 }
 
@@ -101,8 +102,7 @@ func (s *Session) readSection(m *sectionMap) (err error) {
 		case *lang.MethodClause:
 			m.method = c
 		case *lang.MeasuredInClause:
-			return problem.New("no-clause", m.st.at(c), "a picture of SECTION takes no MEASURED IN").
-				WithHint("draw the whole section; SELECT part, SUM(area) FROM SECTION OF … has the parts")
+			m.measured = c
 		case *lang.ForEachClause:
 			m.each = c.Names
 			m.plain.Clauses = append(m.plain.Clauses, c)
@@ -198,6 +198,11 @@ func (s *Session) bindSection(m *sectionMap) (plan.Node, error) {
 		return nil, problem.New("no-solid", m.st.at(m.t.Relation), "a picture of a section needs a solid: the cells of %s have no end", m.bound.Name).
 			WithHint("WITHIN solid, in DRAW or in CREATE CAMPAIGN")
 	}
+	if m.measured != nil {
+		if err := s.bindParts(m, names); err != nil {
+			return nil, err
+		}
+	}
 	if m.zoned = len(m.bound.Clauses.Zones) > 0; m.zoned {
 		if node, err = s.prepare(m.st, selecting(m.t, source, append(names, lang.Name{Text: "zone"})...)); err != nil {
 			return nil, err
@@ -274,6 +279,9 @@ func (s *Session) cutSection(ctx context.Context, m *sectionMap) error {
 		m.out.Where = draw.WithUnit(m.plane.where, length)
 	}
 	m.out.Near = m.near()
+	for _, r := range m.parts {
+		m.out.Measured = append(m.out.Measured, r.Name)
+	}
 	groups := m.groups()
 	if kept := spread(groups, mostPanels); len(kept) < len(groups) {
 		s.noted(m.st, &m.out.Notes, "%d of the %d values of %s are drawn, evenly spread from the first to the last", len(kept), len(groups), m.each[0].Text)
@@ -369,8 +377,13 @@ func (s *Session) cutPanel(ctx context.Context, m *sectionMap, g group) error {
 
 // cutRegion cuts the partition of a solid among its sites.
 func (s *Session) cutRegion(ctx context.Context, m *sectionMap, p *draw.Panel, region relation.Region, rows []int) error {
+	if m.parts != nil {
+		if err := m.outlineParts(ctx, p, region); err != nil {
+			return err
+		}
+	}
 	if len(rows) == 0 {
-		return nil // a zone without sites is told where it is bound
+		return m.emptyZone(ctx, p, region)
 	}
 	sites := make([]voronoi.Vec, len(rows))
 	for k, i := range rows {
@@ -381,14 +394,11 @@ func (s *Session) cutRegion(ctx context.Context, m *sectionMap, p *draw.Panel, r
 	if err != nil {
 		return err
 	}
-	cut, err := section.Cut(ctx, d, m.plane.Plane, nil, section.Options{Threads: s.o.Threads, Outlines: true})
-	var bare *section.NoSurfaceError
-	if errors.As(err, &bare) {
-		return problem.New("no-value", m.plane.at, "the solid %s gives no surface that a plane could cut", region.Name)
-	}
+	cut, err := section.Cut(ctx, d, m.plane.Plane, nil, section.Options{Threads: s.o.Threads, Outlines: true, Within: m.partSolids()})
 	if err != nil {
-		return err
+		return m.cutProblem(err, region)
 	}
+	s.planeNotes(m, cut, region)
 	for _, w := range cut.Space {
 		p.Walls = append(p.Walls, m.flatten(w))
 	}
@@ -414,17 +424,21 @@ func (m *sectionMap) cells(p *draw.Panel, cut *section.Section, rows []int, site
 		at := sites[piece.Site]
 		group := together[r3.Vec{X: at.X + 0, Y: at.Y + 0, Z: at.Z + 0}]
 		c := draw.Cell{Area: piece.Area, Missing: true}
+		part := max(0, int(piece.Part))
+		if piece.Part >= 0 {
+			c.In = m.parts[part].Name
+		}
 		var ids []string
 		sum, n := 0.0, 0
 		for _, i := range group {
 			ids = append(ids, m.rows.Cols[0].Value(i).String())
-			part := draw.Part{Area: piece.Area / float64(len(group)), Missing: value.IsNull(i)}
-			if !part.Missing {
-				part.Value = number(value, i)
-				sum += part.Value
+			share := draw.Part{Area: piece.Area / float64(len(group)), Missing: value.IsNull(i), In: part}
+			if !share.Missing {
+				share.Value = number(value, i)
+				sum += share.Value
 				n++
 			}
-			p.Parts = append(p.Parts, part)
+			p.Parts = append(p.Parts, share)
 		}
 		slices.Sort(ids)
 		c.ID = strings.Join(ids, ", ")

@@ -3,6 +3,7 @@ package draw
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 )
 
@@ -18,6 +19,7 @@ const (
 	charUnder     = 'v'
 	charMissing   = '?'
 	charUnreached = '~'
+	charOutside   = ','
 	charSite      = 'o'
 )
 
@@ -55,6 +57,11 @@ func (x *Section) Characters(columns int, plain bool) string {
 		}
 		b.WriteString("\n")
 		write(x.Words(p))
+		if len(x.Panels) == 1 {
+			for _, line := range x.PartWords(p) {
+				write("  " + line)
+			}
+		}
 	}
 	for _, line := range x.keys(ramp, classes) {
 		write(line)
@@ -133,6 +140,10 @@ func (x *Section) rows(p *Panel, columns int, ramp []string, classes []float64) 
 func (x *Section) character(p *Panel, at Point, ramp []string, classes []float64) string {
 	value, missing, in := p.at(at)
 	switch {
+	case !in && holds(p.Empty, at):
+		return string(charUnreached)
+	case !in && len(x.Measured) > 0 && holds(p.Walls, at):
+		return string(charOutside)
 	case !in:
 		return " "
 	case missing && x.Estimate != "":
@@ -166,6 +177,11 @@ func (p *Panel) at(q Point) (value float64, missing, in bool) {
 	return 0, false, false
 }
 
+// holds tells whether a place lies in one of some polygons.
+func holds(list []Polygon, q Point) bool {
+	return slices.ContainsFunc(list, func(p Polygon) bool { return p.Holds(q) })
+}
+
 // keys explain the characters that are used.
 func (x *Section) keys(ramp []string, classes []float64) []string {
 	n := len(classes) - 1
@@ -182,18 +198,24 @@ func (x *Section) keys(ramp []string, classes []float64) []string {
 	if len(x.Limits) == 2 {
 		parts = append(parts, fmt.Sprintf("%c under %s", charUnder, WithUnit(Number(x.Limits[0]), x.Unit)))
 	}
-	sites, missing := 0, false
+	sites, missing, empty := 0, false, false
 	for i := range x.Panels {
 		sites += len(x.Panels[i].Sites)
-		for _, part := range x.Panels[i].Parts {
-			missing = missing || part.Missing
-		}
+		empty = empty || len(x.Panels[i].Empty) > 0
+		missing = missing || slices.ContainsFunc(x.Panels[i].Cells, func(c Cell) bool { return c.Missing && x.Estimate == "" }) ||
+			slices.ContainsFunc(x.Panels[i].Tiles, func(t Tile) bool { return t.Missing })
 	}
 	switch {
 	case missing && x.Estimate != "":
 		parts = append(parts, fmt.Sprintf("%c out of the method's reach", charUnreached))
 	case missing:
 		parts = append(parts, fmt.Sprintf("%c no value at the site", charMissing))
+	}
+	if empty {
+		parts = append(parts, fmt.Sprintf("%c no site in the zone", charUnreached))
+	}
+	if len(x.Measured) > 0 {
+		parts = append(parts, fmt.Sprintf("%c outside the parts: does not count", charOutside))
 	}
 	if sites > 0 {
 		parts = append(parts, fmt.Sprintf("%c site within %s of the plane", charSite, WithUnit(Number(x.Near), x.Length)))

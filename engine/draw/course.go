@@ -80,12 +80,16 @@ func (c *Course) Scene() *Scene {
 	if len(units) > 1 {
 		q := p
 		second, _ := c.values(units[1])
-		q.y0, q.y1 = widened(first2(rangeOf(second)))
+		q.y0, q.y1 = roundEnds(rangeOf(second))
 		s.beside(q, numberTicks(q.y0, q.y1, 7), c.axis(units[1]), true)
 		planes = append(planes, q)
 	}
 	s.below(p, marks, named(c.Along, unit))
-	s.limitLines(p, c.Limits, units[0])
+	whose := ""
+	if len(units) > 1 {
+		whose = " (left axis)"
+	}
+	s.limitLines(p, c.Limits, units[0], whose)
 	for i := range c.Lines {
 		plane := planes[0]
 		if c.Lines[i].Unit != units[0] {
@@ -100,6 +104,17 @@ func (c *Course) Scene() *Scene {
 	y = s.words("words", margin, p.bottom+64, s.Width-2*margin, textSize, words...)
 	y = s.words("note", margin, y+2, s.Width-2*margin, smallSize, c.Notes...)
 	return s.finish(y + 2)
+}
+
+// roundEnds widens a range to ticks, with a step more at the top. The second axis has such
+// ends, so that its lines do not seem to touch the limits of the first one where both
+// fill their field; values that are not negative begin at no less than 0.
+func roundEnds(lo, hi float64) (float64, float64) {
+	if lo >= hi {
+		lo, hi = widened(lo, hi, 0)
+	}
+	by := step(hi-lo, 7)
+	return by * math.Floor(lo/by+1e-9), by * (math.Ceil(hi/by-1e-9) + 1)
 }
 
 func first2(lo, hi float64) (float64, float64, float64) { return lo, hi, 0.06 }

@@ -3,6 +3,7 @@ package draw
 import (
 	"encoding/xml"
 	"math"
+	"strconv"
 	"strings"
 	"testing"
 	"time"
@@ -255,7 +256,7 @@ func TestCharacters(t *testing.T) {
 	p := Panel{Walls: []Polygon{{{{0, 0}, {8, 0}, {8, 4}, {0, 4}}}},
 		Cells: []Cell{quarter(0, 1, false), quarter(2, 5, false), quarter(4, 9, false), quarter(6, 0, true)}}
 	for _, c := range p.Cells {
-		p.Parts = append(p.Parts, Part{c.Value, c.Missing, c.Area})
+		p.Parts = append(p.Parts, Part{Value: c.Value, Missing: c.Missing, Area: c.Area})
 	}
 	s.Panels = []Panel{p}
 	for _, columns := range []int{20, 41, 81} {
@@ -294,5 +295,41 @@ func TestCourseGaps(t *testing.T) {
 	}
 	if lines != 2 || dots != 2 { // 0-1 and 6-7; 3 and 9 stand alone
 		t.Errorf("%d stretches and %d single values, want 2 and 2", lines, dots)
+	}
+}
+
+// TestCourseAxes: where units differ each line is drawn to the axis of its unit, the second
+// one at the right, and the limits say which axis is theirs.
+func TestCourseAxes(t *testing.T) {
+	c := &Course{Title: "c", Along: "t", Limits: []float64{2, 8}, Lines: []Line{
+		{Name: "mean", Unit: "°C", At: []float64{0, 1, 2}, Value: []float64{4, 6, 5}, Missing: make([]bool, 3)},
+		{Name: "over", At: []float64{0, 1, 2}, Value: []float64{0, 0.187, 0.1}, Missing: make([]bool, 3)}}}
+	s := c.Scene()
+	axes := map[Anchor][]Shape{}
+	var lines []Shape
+	limits := 0
+	for _, x := range s.Shapes {
+		switch {
+		case x.Class == "number" && x.Anchor != Middle:
+			axes[x.Anchor] = append(axes[x.Anchor], x)
+		case x.Class == "line":
+			lines = append(lines, x)
+		case x.Class == "limit-text" && strings.HasSuffix(x.Text, "(left axis)"):
+			limits++
+		}
+	}
+	if len(lines) != 2 || len(axes[End]) < 3 || len(axes[Start]) < 3 || limits != 2 {
+		t.Fatalf("%d lines, %d and %d numbers at the axes, %d limits", len(lines), len(axes[End]), len(axes[Start]), limits)
+	}
+	for k, anchor := range []Anchor{End, Start} {
+		first, last := axes[anchor][0], axes[anchor][len(axes[anchor])-1]
+		v0, _ := strconv.ParseFloat(first.Text, 64)
+		v1, _ := strconv.ParseFloat(last.Text, 64)
+		for i, p := range lines[k].Paths[0] {
+			read := v0 + (p.Y-first.At.Y+3.5)/(last.At.Y-first.At.Y)*(v1-v0)
+			if want := c.Lines[k].Value[i]; math.Abs(read-want) > 1e-6 {
+				t.Errorf("%s reads as %v at its axis, want %v", c.Lines[k].Name, read, want)
+			}
+		}
 	}
 }

@@ -1,6 +1,9 @@
 package draw
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // plot is the field of a chart between its axes.
 type plot struct {
@@ -53,7 +56,11 @@ func (s *Scene) below(p plot, ticks []tick, title string) {
 			s.text("number", Point{at, p.bottom + 27}, smallSize, anchor, t.below)
 		}
 	}
-	s.text("axis", Point{(p.left + p.right) / 2, p.bottom + 42}, textSize, Middle, title)
+	y := p.bottom + 34
+	if slices.ContainsFunc(ticks, func(t tick) bool { return t.below != "" }) {
+		y += 9
+	}
+	s.text("axis", Point{(p.left + p.right) / 2, y}, textSize, Middle, title)
 }
 
 // beside draws an axis at the left, with lines through the field, or at the right.
@@ -81,12 +88,13 @@ func (s *Scene) beside(p plot, ticks []tick, title string, right bool) {
 		Text: fitted(title, p.bottom-p.top, textSize, false), Fill: ink})
 }
 
-// limitLines draws limits across the field, each with its word.
-func (s *Scene) limitLines(p plot, limits []float64, unit string) {
+// limitLines draws limits across the field, each with its word, and whose they are where
+// there are two axes.
+func (s *Scene) limitLines(p plot, limits []float64, unit, whose string) {
 	for _, l := range limits {
 		y := p.y(l)
 		s.add(Shape{Class: "limit", Paths: [][]Point{{{p.left, y}, {p.right, y}}}, Stroke: ink, Line: 1.6, Dash: []float64{9, 4}, Data: []Attribute{{"value", exact(l)}}})
-		s.add(Shape{Class: "limit-text", At: Point{p.right - 4, y - 4}, Size: smallSize, Anchor: End, Text: "limit " + WithUnit(Number(l), unit), Fill: ink, Halo: true})
+		s.add(Shape{Class: "limit-text", At: Point{p.right - 4, y - 4}, Size: smallSize, Anchor: End, Text: "limit " + WithUnit(Number(l), unit) + whose, Fill: ink, Halo: true})
 	}
 }
 

@@ -101,6 +101,7 @@ func (h *Histogram) Scene() *Scene {
 	}
 	p := plot{left: margin + 58, right: s.Width - margin - 12, top: y + 14, bottom: y + 290,
 		x0: math.Min(bins[0].From, minOf(h.Limits)), x1: math.Max(bins[len(bins)-1].To, maxOf(h.Limits)), y0: 0, y1: most * 1.05}
+	p.x0, p.x1 = widened(p.x0, p.x1, 0.02) // so that a limit at an end is not the axis
 	title := "share of the values"
 	if h.Weight != "" {
 		title = "share of " + h.Weight
@@ -120,11 +121,7 @@ func (h *Histogram) Scene() *Scene {
 			marks[Falling] = append(marks[Falling], Polygon{ring})
 		}
 	}
-	for k := Rising; k <= Falling; k++ {
-		if lines := hatched(k, marks[k]); len(lines) > 0 {
-			s.add(Shape{Class: hatchNames[k], Paths: lines, Stroke: ink, Line: 0.7})
-		}
-	}
+	s.hatchings(marks)
 	s.below(p, numberTicks(p.x0, p.x1, 12), named(h.Value, h.Unit))
 	s.limitUprights(p, h.Limits, h.Unit)
 	y = s.words("words", margin, p.bottom+64, s.Width-2*margin, textSize, h.Words())

@@ -18,6 +18,7 @@ type Section struct {
 	Limits   []float64 // one (an upper one) or two
 	Estimate string    // how the shades are estimated: "Sibson"; "": each cell has its site's value
 	Near     float64   // how far from the plane sites are marked
+	Measured []string  // parts of the solid that alone count; none: all of it counts
 	Panels   []Panel
 	Notes    []string // further lines below
 }
@@ -28,6 +29,9 @@ type Panel struct {
 	Cells   []Cell
 	Tiles   []Tile // of an estimate, drawn in place of the cells' shades
 	Walls   []Polygon
+	Within  [][]Polygon // the outlines of Section.Measured
+	Overlap bool        // some of them overlap
+	Empty   []Polygon   // space of a zone without a site
 	Sites   []Site
 	Parts   []Part // whose areas add up to the section
 }
@@ -38,6 +42,7 @@ type Polygon [][]Point
 // Cell is the cut through a cell.
 type Cell struct {
 	ID      string
+	In      string // the part that it is measured in
 	Value   float64
 	Missing bool
 	Area    float64
@@ -46,6 +51,7 @@ type Cell struct {
 
 // Tile is a piece of an estimate.
 type Tile struct {
+	In      int // which of Section.Measured it lies in
 	Value   float64
 	Missing bool // out of reach
 	Area    float64
@@ -63,6 +69,7 @@ type Part struct {
 	Value   float64
 	Missing bool
 	Area    float64
+	In      int // which of Section.Measured it lies in
 }
 
 // Shares are the parts of an area beyond limits, and without a value.
@@ -216,6 +223,9 @@ func (x *Section) Scene() *Scene {
 			text = p.Heading + ": " + text
 		}
 		y = s.words("words", margin, y, s.Width-2*margin, textSize, text)
+		if len(x.Panels) == 1 {
+			y = s.words("part-words", margin+8, y, s.Width-2*margin-8, textSize, x.PartWords(p)...)
+		}
 	}
 	y = s.words("note", margin, y+2, s.Width-2*margin, smallSize, append(x.Notes, scale.Source+".")...)
 	return s.finish(y + 2)
@@ -242,7 +252,14 @@ func (x *Section) description() string {
 
 // Words say how much of a panel is beyond the limits.
 func (x *Section) Words(p *Panel) string {
-	sh := SharesOf(p.Parts, x.Limits)
+	if len(x.Measured) > 0 {
+		return x.measuredWords(p)
+	}
+	return x.sharesInWords("Section of", SharesOf(p.Parts, x.Limits))
+}
+
+// sharesInWords is a sentence about the shares of an area.
+func (x *Section) sharesInWords(what string, sh Shares) string {
 	area := WithUnit(Number(sh.Area), square(x.Length))
 	about := ""
 	if x.Estimate != "" {
@@ -252,9 +269,13 @@ func (x *Section) Words(p *Panel) string {
 		if sh.Area == 0 {
 			return "0 %"
 		}
-		return about + Number(math.Round(part/sh.Area*1e4)/100) + " % (" + WithUnit(Number(part), square(x.Length)) + ")"
+		percent := Number(math.Round(part/sh.Area*1e4) / 100)
+		if percent == "0" && part > 0 {
+			percent = "less than 0.01"
+		}
+		return about + percent + " % (" + WithUnit(Number(part), square(x.Length)) + ")"
 	}
-	text := "Section of " + area
+	text := what + " " + area
 	switch len(x.Limits) {
 	case 1:
 		text += ": " + share(sh.Over) + " over " + WithUnit(Number(x.Limits[0]), x.Unit)
@@ -282,6 +303,7 @@ func exact(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }
 func (x *Section) panel(s *Scene, p *Panel, v view, scale *Scale, hi Point) {
 	x.axes(s, v, hi)
 	marks := map[Hatch][]Polygon{}
+	x.grounds(s, p, v, marks)
 	for i := range p.Cells {
 		c := &p.Cells[i]
 		shape := Shape{Class: "cell", Closed: true, Tip: x.tip(c), Data: []Attribute{{"id", c.ID}, {"area", exact(c.Area)}}}
@@ -299,19 +321,49 @@ func (x *Section) panel(s *Scene, p *Panel, v view, scale *Scale, hi Point) {
 			shape.Fill = scale.Colour(c.Value)
 			shape.Data = append(shape.Data, Attribute{"value", exact(c.Value)})
 		}
+		if c.In != "" {
+			shape.Data = append(shape.Data, Attribute{"part", c.In})
+		}
 		s.add(shape)
 		if h := x.hatch(c.Value, c.Missing); h != NoHatch {
 			marks[h] = append(marks[h], pieces...)
 		}
 	}
 	x.tiles(s, p, v, scale, marks)
-	for h := Rising; h <= Upright; h++ {
-		if lines := hatched(h, marks[h]); len(lines) > 0 {
-			s.add(Shape{Class: hatchNames[h], Paths: lines, Stroke: ink, Line: 0.7})
-		}
-	}
+	s.hatchings(marks)
 	x.borders(s, p, v)
 	x.sites(s, p, v)
+}
+
+// grounds fills what lies under the cells where they leave some of the solid free: its
+// parts that do not count, and zones without a site.
+func (x *Section) grounds(s *Scene, p *Panel, v view, marks map[Hatch][]Polygon) {
+	fill := func(class string, colour Colour, list []Polygon) {
+		ground := Shape{Class: class, Closed: true, Fill: colour}
+		for _, w := range list {
+			ground.Paths = append(ground.Paths, v.polygon(w)...)
+		}
+		s.add(ground)
+	}
+	if len(x.Measured) > 0 {
+		fill("not-measured", bare, p.Walls)
+	}
+	if len(p.Empty) > 0 {
+		fill("empty", bare, p.Empty)
+		for _, w := range p.Empty {
+			marks[Upright] = append(marks[Upright], v.polygon(w))
+		}
+	}
+}
+
+// hatchings draws the marks of areas. Each line has a light rim, to be seen on dark ground too.
+func (s *Scene) hatchings(marks map[Hatch][]Polygon) {
+	for h := Rising; h <= Upright; h++ {
+		if lines := hatched(h, marks[h]); len(lines) > 0 {
+			s.add(Shape{Class: hatchNames[h] + "-rim", Paths: lines, Stroke: paper, Line: 1.9})
+			s.add(Shape{Class: hatchNames[h], Paths: lines, Stroke: ink, Line: 0.8})
+		}
+	}
 }
 
 var hatchNames = [...]string{Rising: "over", Falling: "under", Level: "missing", Upright: "unreached"}
@@ -335,7 +387,11 @@ func (x *Section) tip(c *Cell) string {
 	if !c.Missing {
 		value = WithUnit(Number(c.Value), x.Unit)
 	}
-	return fmt.Sprintf("%s: %s, %s", c.ID, value, WithUnit(Number(c.Area), square(x.Length)))
+	id := c.ID
+	if c.In != "" {
+		id += " in " + c.In
+	}
+	return fmt.Sprintf("%s: %s, %s", id, value, WithUnit(Number(c.Area), square(x.Length)))
 }
 
 // tiles draws an estimate: tiles of one colour in a shape, so that the file stays small.
@@ -390,9 +446,15 @@ func (x *Section) borders(s *Scene, p *Panel, v view) {
 		}
 		s.add(Shape{Class: "border", Paths: thin, Stroke: colour, Line: 0.6})
 	}
-	var walls [][]Point
-	for _, w := range p.Walls {
-		walls = append(walls, v.polygon(w)...)
+	outlines := func(class string, width float64, list []Polygon) {
+		shape := Shape{Class: class, Closed: true, Stroke: ink, Line: width}
+		for _, w := range list {
+			shape.Paths = append(shape.Paths, v.polygon(w)...)
+		}
+		s.add(shape)
 	}
-	s.add(Shape{Class: "wall", Closed: true, Paths: walls, Stroke: ink, Line: 2.4})
+	outlines("wall", 2.4, p.Walls)
+	for _, list := range p.Within {
+		outlines("part", 1.6, list)
+	}
 }

@@ -60,6 +60,9 @@ func (x *Section) sites(s *Scene, p *Panel, v view) {
 	for i := range p.Sites {
 		site := &p.Sites[i]
 		at := v.place(site.At)
+		if !x.holds(site.At) {
+			continue
+		}
 		s.add(Shape{Class: "site", Closed: true, Fill: ink, Stroke: paper, Line: 1, Paths: [][]Point{disc(at, r)},
 			Data: []Attribute{{"id", site.ID}}, Tip: site.ID})
 		label, anchor, box, ok := room(site.ID, at, r, page, taken)
@@ -70,6 +73,7 @@ func (x *Section) sites(s *Scene, p *Panel, v view) {
 		taken = append(taken, box)
 		s.add(Shape{Class: "name", At: label, Anchor: anchor, Size: smallSize, Text: site.ID, Fill: ink, Halo: true})
 	}
+	x.partNames(s, p, v, page, taken)
 	if left > 0 {
 		verb := "names have"
 		if left == 1 {
@@ -106,6 +110,36 @@ func room(text string, at Point, r float64, page frame, taken []frame) (Point, A
 	return Point{}, 0, frame{}, false
 }
 
+// holds tells whether a place lies in the frame of the maps. In a plane that is not
+// level, sites near it can lie beside what it cuts.
+func (x *Section) holds(p Point) bool {
+	lo, hi := x.bounds()
+	return p.X >= lo.X && p.X <= hi.X && p.Y >= lo.Y && p.Y <= hi.Y
+}
+
+// partNames names the parts that count, each at its upper left where there is room:
+// inside it, above or below it.
+func (x *Section) partNames(s *Scene, p *Panel, v view, page frame, taken []frame) {
+	for k, list := range p.Within {
+		if len(list) == 0 {
+			continue
+		}
+		lo, hi := Bounds(list)
+		a, b := v.place(Point{lo.X, hi.Y}), v.place(Point{hi.X, lo.Y})
+		name := fitted(x.Measured[k], b.X-a.X+24, smallSize, true)
+		w := width(name, smallSize, true)
+		for _, at := range [...]Point{{a.X + 4, a.Y + smallSize + 1}, {a.X, a.Y - 4}, {a.X, b.Y + smallSize + 2}, {b.X - w, a.Y - 4}} {
+			box := frame{Point{at.X - 1, at.Y - smallSize*0.78}, Point{at.X + w + 1, at.Y + smallSize*0.22}}
+			if box.lo.X < page.lo.X || box.hi.X > page.hi.X || box.lo.Y < page.lo.Y || box.hi.Y > page.hi.Y || slices.ContainsFunc(taken, box.meets) {
+				continue
+			}
+			taken = append(taken, box)
+			s.add(Shape{Class: "part-name", At: at, Size: smallSize, Bold: true, Text: name, Fill: ink, Halo: true})
+			break
+		}
+	}
+}
+
 // disc is a round mark, as a polygon: one way to draw for all formats.
 func disc(at Point, r float64) []Point {
 	const corners = 12
@@ -121,7 +155,7 @@ func disc(at Point, r float64) []Point {
 func (x *Section) legend(s *Scene, y float64, scale *Scale) float64 {
 	left, wide, high := float64(margin+axisLeft), 360.0, 14.0
 	top := y + 30
-	s.text("legend", Point{left, y + 6}, textSize, Start, named(x.Value, x.Unit))
+	s.text("legend", Point{left, y + 6}, textSize, Start, fitted(named(x.Value, x.Unit)+x.method(), s.Width-margin-left, textSize, false))
 	const steps = 60
 	for i := range steps {
 		from, to := left+wide*float64(i)/steps, left+wide*float64(i+1)/steps
@@ -138,6 +172,14 @@ func (x *Section) legend(s *Scene, y float64, scale *Scale) float64 {
 	}
 	x.limitMarks(s, left, wide, top, high, scale)
 	return x.swatches(s, left+wide+26, y+2, top+high+30)
+}
+
+// swatch explains one mark, and gives where the next one stands.
+func (s *Scene) swatch(left, y float64, h Hatch, text string) float64 {
+	box := []Point{{left, y}, {left + 24, y}, {left + 24, y + 14}, {left, y + 14}}
+	s.add(Shape{Class: "swatch", Closed: true, Fill: bare, Stroke: softer, Line: 0.6, Paths: [][]Point{box}})
+	s.add(Shape{Class: "swatch-lines", Paths: hatched(h, []Polygon{{box}}), Stroke: ink, Line: 0.8})
+	return s.words("legend", left+32, y+11, s.Width-margin-left-32, textSize, text) - 8
 }
 
 // limitMarks draws a line and a word over the scale for each limit.
@@ -160,10 +202,13 @@ func (x *Section) limitMarks(s *Scene, left, wide, top, high float64, scale *Sca
 // swatches explain the marks beside the scale, and give where the legend ends.
 func (x *Section) swatches(s *Scene, left, y, end float64) float64 {
 	used := map[Hatch]bool{}
-	sites := false
+	sites, empty := false, false
 	for i := range x.Panels {
 		p := &x.Panels[i]
-		sites = sites || len(p.Sites) > 0
+		for k := range p.Sites {
+			sites = sites || x.holds(p.Sites[k].At)
+		}
+		empty = empty || len(p.Empty) > 0
 		if x.Estimate == "" {
 			for _, c := range p.Cells {
 				used[x.hatch(c.Value, c.Missing)] = true
@@ -174,15 +219,19 @@ func (x *Section) swatches(s *Scene, left, y, end float64) float64 {
 		}
 	}
 	texts := [...]string{Rising: "over the limit", Falling: "under the limit", Level: "no value at the site", Upright: "out of the method's reach"}
+	switch {
+	case empty && used[Upright]:
+		texts[Upright] += ", or no site in the zone"
+	case empty:
+		used[Upright], texts[Upright] = true, "no site in the zone"
+	}
 	for h := Rising; h <= Upright; h++ {
-		if !used[h] {
-			continue
+		if used[h] {
+			y = s.swatch(left, y, h, texts[h])
 		}
-		box := []Point{{left, y}, {left + 24, y}, {left + 24, y + 14}, {left, y + 14}}
-		s.add(Shape{Class: "swatch", Closed: true, Fill: bare, Stroke: softer, Line: 0.6, Paths: [][]Point{box}})
-		s.add(Shape{Class: "swatch-lines", Paths: hatched(h, []Polygon{{box}}), Stroke: ink, Line: 0.7})
-		s.text("legend", Point{left + 32, y + 11}, textSize, Start, texts[h])
-		y += 19
+	}
+	if len(x.Measured) > 0 {
+		y = s.swatch(left, y, NoHatch, "outside the parts: does not count")
 	}
 	text := "site within " + WithUnit(Number(x.Near), x.Length) + " of the plane"
 	if !sites {
