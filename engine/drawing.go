@@ -45,18 +45,19 @@ func (s *Session) drawing(ctx context.Context, st *statement, t *lang.Draw) erro
 	if err != nil || p == nil {
 		return err
 	}
+	if t.Show && s.report == nil {
+		return s.showSection(p.(*draw.Section))
+	}
+	scene := p.Scene()
 	if s.report != nil { // the picture stands in the report, too
-		if err := s.report.Picture(p.Scene().SVG(), lang.Print(t)); err != nil {
+		if err := s.report.Picture(scene.SVG(), scene.Title+". "+scene.Description, st.place(), st.text()); err != nil {
 			return err
 		}
 	}
-	switch {
-	case t.Show && s.report != nil:
+	if t.Show {
 		return nil
-	case t.Show:
-		return s.showSection(p.(*draw.Section))
 	}
-	data, err := write(p.Scene())
+	data, err := write(scene)
 	if err != nil {
 		return err
 	}

@@ -125,10 +125,11 @@ func (h *Histogram) Scene() *Scene {
 	s.below(p, numberTicks(p.x0, p.x1, 12), named(h.Value, h.Unit))
 	s.limitUprights(p, h.Limits, h.Unit)
 	y = s.words("words", margin, p.bottom+64, s.Width-2*margin, textSize, h.Words())
+	notes := slices.Clone(h.Notes)
 	if len(h.Limits) > 0 {
-		h.Notes = append(h.Notes, "Bars beyond a limit are hatched; what equals the upper limit is not over it.")
+		notes = append(notes, "Bars beyond a limit are hatched; what equals the upper limit is not over it.")
 	}
-	y = s.words("note", margin, y+2, s.Width-2*margin, smallSize, h.Notes...)
+	y = s.words("note", margin, y+2, s.Width-2*margin, smallSize, notes...)
 	return s.finish(y + 2)
 }
 

@@ -164,17 +164,17 @@ func firstLine(text string) string {
 	return first
 }
 
-// Picture is a drawing in SVG with the words that tell what it shows, for those who do
-// not see it too.
-func (r *Report) Picture(svg []byte, caption string) error {
-	inline, err := r.inline(svg, caption)
+// Picture is a drawing in SVG. words tell what it shows, for those who do not see it too;
+// place and statement say where it comes from.
+func (r *Report) Picture(svg []byte, words, place, statement string) error {
+	inline, err := r.inline(svg, words)
 	if err != nil {
 		return err
 	}
 	r.add("picture", struct {
-		SVG     template.HTML
-		Caption string
-	}{template.HTML(inline), caption})
+		SVG              template.HTML
+		Place, Statement string
+	}{template.HTML(inline), place, lines(statement)})
 	return nil
 }
 

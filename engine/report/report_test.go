@@ -122,7 +122,7 @@ func TestOrder(t *testing.T) {
 	r.Failed("what went wrong", 3)
 	page := string(written(t, r, Provenance{Program: "nearcell test", Scripts: []Script{{"a.ncell", "00", "SELECT 1;"}}}))
 	at := -1
-	for _, text := range []string{"<h1>the title", "This report is not whole", "Verdicts", "2 passed, 1 failed, 1 not decided", "9 is too much",
+	for _, text := range []string{"<h1>the title", "This report is not whole", ">Verdicts<", "2 passed, 1 failed, 1 not decided", "9 is too much",
 		"first text", "the 3 statements after it", ">Provenance<", "Made by nearcell test", "SELECT 1;"} {
 		found := strings.Index(strings.ToLower(page), strings.ToLower(text))
 		if found <= at {
@@ -158,7 +158,7 @@ func TestPicturesAreStill(t *testing.T) {
 	r := New()
 	good := `<?xml version="1.0"?><svg xmlns="http://www.w3.org/2000/svg"><defs><pattern id="a"/></defs><rect fill="url(#a)"/><use href="#a"/></svg>`
 	for range 2 {
-		if err := r.Picture([]byte(good), "a <map>"); err != nil {
+		if err := r.Picture([]byte(good), "a <map>", "hall.ncell, line 7", "DRAW <something>"); err != nil {
 			t.Fatal(err)
 		}
 	}
@@ -176,7 +176,7 @@ func TestPicturesAreStill(t *testing.T) {
 	}
 	for _, bad := range []string{`<script/>`, `<rect onload="x()"/>`, `<image href="http://x/y.png"/>`, `<rect fill="url(http://x)"/>`,
 		`<foreignObject/>`, `<style>@import "x"</style>`} {
-		if err := r.Picture([]byte(`<svg xmlns="http://www.w3.org/2000/svg">`+bad+`</svg>`), ""); err == nil {
+		if err := r.Picture([]byte(`<svg xmlns="http://www.w3.org/2000/svg">`+bad+`</svg>`), "", "", ""); err == nil {
 			t.Errorf("%s was let in", bad)
 		}
 	}
@@ -195,5 +195,35 @@ func BenchmarkThousandTables(b *testing.B) {
 			b.Fatal(err)
 		}
 		b.SetBytes(int64(out.Len()))
+	}
+}
+
+// TestShortColumns: texts that fit a line of paper beside the others are not broken, a long
+// one is; more than fit are broken, all but the shortest.
+func TestShortColumns(t *testing.T) {
+	for _, c := range []struct {
+		columns []string
+		want    string
+	}{
+		{[]string{"PASS", strings.Repeat("long ", 60), "r.ncell"}, "s-s"},
+		{[]string{strings.Repeat("a", 40), strings.Repeat("b", 40)}, "ss"},
+		{[]string{strings.Repeat("a", 70), strings.Repeat("b", 70)}, "--"},
+		{[]string{strings.Repeat("a", 60), "b", strings.Repeat("c", 60)}, "-s-"},
+	} {
+		w := &tableWriter{report: New()}
+		line := make([]cell, len(c.columns))
+		for k, text := range c.columns {
+			w.data.Columns = append(w.data.Columns, columnHead{Name: "c"})
+			line[k].Text = text
+		}
+		w.data.Rows = [][]cell{line}
+		w.keepShort()
+		got := ""
+		for _, one := range w.data.Rows[0] {
+			got += map[bool]string{true: "s", false: "-"}[one.Short]
+		}
+		if got != c.want {
+			t.Errorf("%d columns: %s, want %s", len(c.columns), got, c.want)
+		}
 	}
 }

@@ -2,6 +2,8 @@ package report
 
 import (
 	"fmt"
+	"slices"
+	"unicode/utf8"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/present"
@@ -41,13 +43,14 @@ type table struct {
 
 type columnHead struct {
 	Name, Unit, Meaning string
-	Number              bool
+	Number, Short       bool
 }
 
 type cell struct {
 	Text   string
 	Number bool
 	Null   bool
+	Short  bool
 }
 
 func (t *tableWriter) Begin(s column.Schema) error {
@@ -85,8 +88,52 @@ func (t *tableWriter) End() (rows, unwritten int64, err error) {
 	if unwritten > 0 {
 		t.data.Count = fmt.Sprintf("the first %d of %s", len(t.data.Rows), counted(t.rows))
 	}
+	t.keepShort()
 	t.report.add("table", t.data)
 	return t.rows, unwritten, t.report.err
+}
+
+// Characters of a line on paper: of the usual tables and of wide ones, which are set smaller.
+const (
+	lineOfPaper = 92
+	lineOfWide  = 124
+)
+
+// keepShort says which columns of text are not to be broken into lines: the shortest ones,
+// as long as all of a row finds room on paper. Without it a long text in one column would
+// break names in another letter by letter.
+func (t *tableWriter) keepShort() {
+	room := lineOfPaper
+	if t.data.Wide {
+		room = lineOfWide
+	}
+	widths := make([]int, len(t.data.Columns))
+	order := make([]int, 0, len(widths))
+	for c := range widths {
+		widths[c] = max(utf8.RuneCountInString(t.data.Columns[c].Name), utf8.RuneCountInString(t.data.Columns[c].Unit))
+		for _, line := range t.data.Rows {
+			widths[c] = max(widths[c], utf8.RuneCountInString(line[c].Text))
+		}
+		if t.data.Columns[c].Number {
+			room -= widths[c] + 2 // numbers are never broken
+			continue
+		}
+		order = append(order, c)
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return widths[a] - widths[b] })
+	for i, c := range order {
+		rest := 0 // what those after it need, broken into lines
+		for _, d := range order[i+1:] {
+			rest += min(widths[d], 30)
+		}
+		if room -= widths[c] + 2; room < rest {
+			return
+		}
+		t.data.Columns[c].Short = true
+		for r := range t.data.Rows {
+			t.data.Rows[r][c].Short = true
+		}
+	}
 }
 
 func counted(n int64) string {
