@@ -141,8 +141,12 @@ func TestExtremesProbability(t *testing.T) {
 // √(4/9/2) = 0.471405. a and b together meet it too, and err by 0 and 1/3: 0.235702.
 // In the room of 4 m the cells are 4, 6 and 6 m³: the mean is 5.125, 6.125 | 5.125,
 // 6.5, from which c is off by -1/8, -1/8 | -1/8, 1/2: √((1/64 + 1/4)/2) = 0.364434.
+// In two zones of 2 m each a and b have 4 m³ and c 8: the mean is 5, 6 | 5, 6.5, from which
+// c is off by 0, 0 | 0, 1/2: √(1/4/2) = 0.353553; a by -1, -1 | -1, -3/2: √(13/8) = 1.27475,
+// and a and b together by 0, 0 | 0, -1/2.
 func TestRepresentatives(t *testing.T) {
 	const setting = `CREATE SOLID room AS BOX (0, 0, 0) TO (4, 2, 2);
+		CREATE SOLID west AS BOX (0, 0, 0) TO (2, 2, 2); CREATE SOLID east AS BOX (2, 0, 0) TO (4, 2, 2); CREATE SOLID shed AS BOX (9, 0, 0) TO (10, 1, 1);
 		CREATE TABLE log AS (SELECT * FROM (VALUES ('a', 1, 4.0), ('a', 2, 5.0), ('a', 3, 4.0), ('a', 4, 5.0), ('b', 1, 6.0), ('b', 2, 7.0), ('b', 3, 6.0), ('b', 4, 7.0),
 		  ('c', 1, 5.0), ('c', 2, 6.0), ('c', 3, 5.0), ('c', 4, 7.0)) AS v (logger, n, temp)) UNITS (temp '°C');
 		CREATE CAMPAIGN hall AS (SELECT * FROM (VALUES ('a', 0.5, 1.0, 1.0), ('b', 1.5, 1.0, 1.0), ('c', 3.5, 1.0, 1.0), ('d', 3.5, 1.0, 0.2)) AS v (id, x, y, z)) WITHIN room;
@@ -152,6 +156,10 @@ func TestRepresentatives(t *testing.T) {
 		{"readings FOR EACH t FOR temp NUMBER 1 BY MEAN", "1 c 0.471405", "chosen on the first 2 values of t, where the error of the 1 is 0 °C, and judged on the other 2; all weigh alike"},
 		{"readings FOR EACH t FOR temp NUMBER 2 BY MEAN", "1 a 1.17851; 2 b 0.235702", ""},
 		{"readings FOR EACH t FOR temp NUMBER 1 BY MEAN WITHIN room", "1 c 0.364434", "the error of the 1 is 0.125 °C"},
+		{"readings FOR EACH t FOR temp NUMBER 1 BY MEAN WITHIN (west, east)", "1 c 0.353553 east", "the error of the 1 is 0 °C, and judged on the other 2; the mean of all is weighted"},
+		{"readings FOR EACH t FOR temp NUMBER 2 BY MEAN WITHIN (west, east)", "1 a 1.27475 west; 2 b 0.353553 west", ""},
+		{"readings FOR EACH t FOR temp NUMBER 2 KEEP ('c') BY HIGHEST WITHIN (east, west, shed)", "1 c 0.707107 east; 2 b 0 west", "the zone shed has no site of readings"},
+		{"(SELECT id, CASE WHEN id = 'c' AND t > 2 THEN 1.9 ELSE x END AS x, y, z, t, temp FROM readings) FOR EACH t FOR temp NUMBER 1 KEEP ('c') BY HIGHEST WITHIN (west, east)", "1 c 0.707107 ", "the zone east has no site in 2 of 4 partitions"},
 		{"readings FOR EACH t FOR temp NUMBER 1 BY HIGHEST", "1 b 0", "the highest of the few"},
 		{"readings FOR EACH t FOR temp NUMBER 1 BY COURSE", "1 a 0.235702", ""},
 		{"readings FOR EACH t FOR temp NUMBER 2 KEEP ('c') BY MEAN", "1 c 0.471405; 2 a 0.424918", ""},
@@ -177,7 +185,7 @@ func TestRepresentatives(t *testing.T) {
 		"readings FOR EACH t FOR temp NUMBER 1 KEEP ('e') BY MEAN":         "there is no site 'e' in readings to keep",
 		"readings FOR EACH t FOR temp NUMBER 1 KEEP ('a', 'b') BY MEAN":    "KEEP names 2 sites, and NUMBER is 1",
 		"readings FOR EACH t FOR temp NUMBER 2 KEEP ('a', 'a') BY MEAN":    "KEEP names 'a' twice",
-		"readings FOR EACH t FOR temp NUMBER 1 BY MEAN WITHIN (room, air)": "",
+		"readings FOR EACH t FOR temp NUMBER 1 BY MEAN WITHIN (room, air)": "there is no solid 'air'",
 		"log FOR EACH n FOR temp NUMBER 1 BY MEAN":                         "needs the columns id, x, y, z",
 	} {
 		if _, words, failed := asked(t, 1, setting, "SELECT * FROM REPRESENTATIVES OF "+query); !failed || !strings.Contains(words, want) {

@@ -148,7 +148,7 @@ func relationColumns(d *relation.Definition) *column.Table {
 // describeRelationOf is DESCRIBE CELLS OF hall: all columns, the sites' own too.
 func (s *Session) describeRelationOf(st *statement, t *lang.Describe) error {
 	if d, ok := relation.Lookup(t.Name.Text); ok && d.Over == relation.OverRows {
-		return s.showTable(st, relationColumns(d)) // of what else they have, clauses decide
+		return s.describeOverRows(st, t, d)
 	}
 	q := &lang.Query{Body: &lang.Select{
 		Items: []*lang.Item{{Star: true}},
@@ -162,6 +162,33 @@ func (s *Session) describeRelationOf(st *statement, t *lang.Describe) error {
 		return s.showTable(st, schemaTable(r.Bound.Schema(), nil))
 	}
 	return s.showTable(st, schemaTable(node.Schema(), nil))
+}
+
+// describeOverRows is DESCRIBE SERIES OF log: the columns of the log, as they are without
+// further clauses, or a word of those that only clauses bring.
+func (s *Session) describeOverRows(st *statement, t *lang.Describe, d *relation.Definition) error {
+	var source lang.Source
+	switch o := t.Operand.(type) {
+	case *lang.Name:
+		source = &lang.NameSource{Name: *o}
+	case *lang.Relation:
+		source = &lang.RelationSource{Relation: o}
+	case *lang.Query:
+		source = &lang.QuerySource{Query: o}
+	}
+	node, err := bind.Query(s.bindEnv(st), &lang.Query{Body: &lang.Select{Items: []*lang.Item{{Star: true}}, From: []lang.Source{source}}})
+	if err != nil {
+		return err
+	}
+	if !d.Own {
+		if slices.Contains(d.Clauses, "BY") {
+			st.notes.Add(note.Note, note.Output, "before these stand the columns that BY names, such as the logger")
+		}
+		return s.showTable(st, relationColumns(d))
+	}
+	b := &relation.Bound{Def: d, Input: node.Schema(), Log: relation.LogClauses{Method: "LINEAR"}}
+	b.Layout()
+	return s.showTable(st, schemaTable(b.Schema(), nil))
 }
 
 func findRelation(n plan.Node) *plan.Relation {

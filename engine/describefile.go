@@ -262,6 +262,56 @@ func (g *fileGuess) learn() bool {
 			learned = true
 		}
 	}
+	return g.learnBounds(miss) || learned
+}
+
+// learnBounds finds columns of measured values of which some are bounds, such as <0.1,
+// and words for missing ones among them.
+func (g *fileGuess) learnBounds(miss func(string)) bool {
+	if !slices.Contains(g.form.clauses, "CENSORED") {
+		return false
+	}
+	mark := byte('.')
+	if g.o.DecimalMark != 0 {
+		mark = byte(g.o.DecimalMark)
+	}
+	learned := false
+next:
+	for i, f := range g.result.Table.Schema {
+		taken := slices.ContainsFunc(g.result.Table.Schema, func(o column.Field) bool {
+			return strings.EqualFold(o.Name, f.Name+"_low") || strings.EqualFold(o.Name, f.Name+"_high")
+		})
+		if f.Type != column.Text || taken || slices.Contains(g.o.Censored, f.Name) {
+			continue
+		}
+		bound, words := "", []string(nil)
+		v := &g.result.Table.Cols[i]
+		for row := range v.N {
+			if v.IsNull(row) {
+				continue
+			}
+			text := strings.TrimSpace(v.Text(row))
+			b, ok := reader.ParseCensored(text, mark)
+			switch {
+			case ok && b.Low != b.High && bound == "":
+				bound = text
+			case !ok && csv.MissingWord(text):
+				words = append(words, text)
+			case !ok:
+				continue next
+			}
+		}
+		if bound == "" {
+			continue
+		}
+		for _, w := range words {
+			miss(w)
+		}
+		g.o.Censored = append(g.o.Censored, f.Name)
+		g.others = append(g.others, fmt.Sprintf("%s in %s says between what bounds the value lies: CENSORED reads them as %s and %s",
+			quoted(bound), f.Name, lang.QuoteName(f.Name+"_low"), lang.QuoteName(f.Name+"_high")))
+		learned = true
+	}
 	return learned
 }
 

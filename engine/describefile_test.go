@@ -157,6 +157,25 @@ func TestDescribedExports(t *testing.T) {
 func TestOfferedStatements(t *testing.T) {
 	for _, c := range []struct{ name, text, statement, notes string }{
 		{
+			"dust", "place,dust [mg/m3],grade\nA,<0.1,<A\nB,0.3,B\nC,n/a,C\nD,> 5,A\n",
+			`CREATE TABLE dust FROM 'dust.csv'
+  MISSING ('n/a')
+  CENSORED (dust);`, "'<0.1' in dust says between what bounds the value lies: CENSORED reads them as dust_low and dust_high",
+		},
+		{
+			"assay", "hole;au;au_low\nA;<0,1;1\nB;0,3;2\n",
+			`CREATE TABLE assay FROM 'assay.csv'
+  DELIMITER ';'
+  DECIMAL MARK ',';`, "",
+		},
+		{
+			"lead", "hole;pb\nA;≤0,1\nB;0,3\n",
+			`CREATE TABLE lead FROM 'lead.csv'
+  DELIMITER ';'
+  DECIMAL MARK ','
+  CENSORED (pb);`, "pb_low and pb_high",
+		},
+		{
 			"sites", "logger;X (m);Y (m);Depth (m);Temp (°C)\nA1;1,5;2,25;3;4,5\nA2;2,5;2,5;3;n/a\nA3;2,5;3,5;3;4,1\nA4;3;3;3;4,2\n",
 			"CREATE CAMPAIGN sites FROM 'sites.csv'\n  ID logger\n  POSITION (\"X (m)\", \"Y (m)\", -\"Depth (m)\")\n  DELIMITER ';'\n  DECIMAL MARK ','\n" +
 				"  MISSING ('n/a')\n  UNITS (\"X (m)\" 'm', \"Y (m)\" 'm', \"Depth (m)\" 'm', \"Temp (°C)\" '°C');",

@@ -259,6 +259,7 @@ func (g *fileGuess) listClauses() []string {
 	list("TIME", len(g.o.Times), func(i int) string {
 		return lang.QuoteName(g.o.Times[i].Column) + " " + lang.QuoteText(g.o.Times[i].Form.String())
 	})
+	list("CENSORED", len(g.o.Censored), func(i int) string { return lang.QuoteName(g.o.Censored[i]) })
 	list("UNITS", len(g.units), func(i int) string {
 		return lang.QuoteName(g.units[i].Column) + " " + lang.QuoteText(g.units[i].Unit.String())
 	})

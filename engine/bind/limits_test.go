@@ -94,3 +94,26 @@ func TestCancelled(t *testing.T) {
 		}
 	}
 }
+
+// What a log's relations hold for one logger while they work on it is counted, too, and
+// given up when it is done: 200,000 readings of one logger take 3.2 MB in their order and
+// at least 4.8 MB (stamp, value and step of each) while they are looked at. As readings of
+// 100 loggers they need little more than their order.
+func TestMemoryOfALog(t *testing.T) {
+	c := tablesToJoin(t, rand.New(rand.NewPCG(12, 3)), []int{200_000, 100}, 100)
+	const log = "(SELECT %s AS logger, TIMESTAMP '2031-04-07 00:00:00' + n * INTERVAL '1' SECOND AS t, 1.0 * n AS temp FROM t0)"
+	for _, query := range []string{
+		"SELECT COUNT(*), SUM(temp) FROM SERIES OF LOG BY logger ON t EVERY INTERVAL '1' HOUR",
+		"SELECT SUM(frozen) FROM AUDIT OF LOG BY logger ON t",
+		"SELECT COUNT(*) FROM EPISODES OF LOG BY logger ON t FOR temp ABOVE 8",
+	} {
+		for one, logger := range map[bool]string{true: "1", false: "n % 100"} {
+			text := strings.ReplaceAll(query, "LOG", strings.ReplaceAll(log, "%s", logger))
+			err := ask(t, c, context.Background(), text, 12<<20)
+			var p *problem.Problem
+			if refused := errors.As(err, &p) && p.Code == "memory"; refused != one || !refused && err != nil {
+				t.Errorf("%s: %v", text, err)
+			}
+		}
+	}
+}

@@ -293,12 +293,14 @@ func (b *binder) word(n *lang.Name, what string, words ...string) (string, error
 	return "", p.WithHint("it is one of %s", strings.Join(words, ", "))
 }
 
-// carried finds the columns that come from a campaign while the stamps come from
-// elsewhere: where a logger hangs is known whatever it measured.
+// carried finds the columns that come from a campaign or a register while the stamps come
+// from elsewhere: where a logger hangs is known whatever it measured.
 func (b *binder) carried(rel *relation.Bound, in plan.Node) {
 	times := plan.ScanOf(in, rel.Clauses.On[0])
-	for i := range rel.Input {
-		if s := plan.ScanOf(in, i); s != nil && s != times && s.Kind == "campaign" && !slices.Contains(rel.Clauses.By, i) {
+	for i, register := range plan.Registers(in, rel.Clauses.On[0]) {
+		s := plan.ScanOf(in, i)
+		register = register || s != nil && s != times && s.Kind == "campaign"
+		if register && !slices.Contains(rel.Clauses.By, i) && i != rel.Clauses.On[0] {
 			rel.Log.Carried = append(rel.Log.Carried, i)
 		}
 	}

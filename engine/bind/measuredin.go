@@ -105,6 +105,7 @@ func (b *binder) sayOutside(rel *relation.Bound, list []relation.Region) error {
 	if rel.Clauses.Solid != nil {
 		spaces = []relation.Region{{Name: rel.Clauses.SolidName, Solid: rel.Clauses.Solid}}
 	}
+	rel.Clauses.Inside = make([]float64, len(spaces))
 	if len(spaces) == 0 {
 		return nil
 	}
@@ -112,12 +113,13 @@ func (b *binder) sayOutside(rel *relation.Bound, list []relation.Region) error {
 	out, of := 0.0, 0.0
 	for _, p := range list {
 		inside := 0.0
-		for _, s := range spaces {
+		for k, s := range spaces {
 			volume, err := b.shared(s.Solid, p.Solid)
 			if err != nil {
 				return err
 			}
 			inside += volume
+			rel.Clauses.Inside[k] += volume
 		}
 		whole := p.Solid.Volume()
 		switch {

@@ -181,8 +181,10 @@ func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups
 		return err
 	}
 	on := b.On
+	var cond column.Vector
 	if c.call.Filter != nil {
-		cond, err := s.eval(w, c.call.Filter, b, b.On)
+		var err error
+		cond, err = s.eval(w, c.call.Filter, b, b.On)
 		if err != nil {
 			return err
 		}
@@ -226,7 +228,7 @@ func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups
 		return s.fault(w, err, at, b)
 	}
 	c.cells.add(b, on, groups)
-	c.ledger.add(b, on, args)
+	c.ledger.add(b, on, &cond, args)
 	if weight != nil && len(s.node.Keys) == 0 && s.id >= 0 {
 		c.largest.look(weight, args, on, b.N, &b.Cols[s.id])
 	}

@@ -219,6 +219,9 @@ func (r *runner) openRelation(ctx context.Context, n *plan.Relation) (*pipeline,
 	if shown != nil {
 		shown.countParts(n, o.sites, o.wanted)
 	}
+	if err := r.divided(ctx, n, o); err != nil {
+		return nil, err
+	}
 	if m := r.meter(n); m != nil {
 		o.rows = &meteredRows{o.rows, r.env, m}
 	}
@@ -262,7 +265,9 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 	if err != nil {
 		return overSites{}, err
 	}
-	rows, err := n.Bound.Def.Open(n.Bound, &r.env.Env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside, Most: n.Most})
+	env := r.env.Env
+	env.Keep = r.envOf(r.meter(n)).keep
+	rows, err := n.Bound.Def.Open(n.Bound, &env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside, Most: n.Most})
 	return overSites{rows, sites, wanted}, placed(err, n)
 }
 
@@ -273,25 +278,35 @@ func (r *runner) wanted(ctx context.Context, n *plan.Relation, sites *column.Tab
 	}
 	w := NewWorker(r.env)
 	s := scopeOf(sites.Schema)
-	wanted := make([]uint64, column.Words(sites.N))
+	return trueOf(ctx, w, s, n.Wanted, sites, func(b *column.Batch, on []uint64) error {
+		return r.removals[n].count(s, w, b, column.Count(on))
+	})
+}
+
+// trueOf are the rows of a table for which a condition is TRUE; each, where it is not nil,
+// is told of those of every batch.
+func trueOf(ctx context.Context, w *Worker, s scope, cond expr.Expr, t *column.Table, each func(b *column.Batch, on []uint64) error) ([]uint64, error) {
+	rows := make([]uint64, column.Words(t.N))
 	var on []uint64
-	for lo := 0; lo < sites.N; lo += BatchRows {
+	for lo := 0; lo < t.N; lo += BatchRows {
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		b := sites.Batch(lo, min(lo+BatchRows, sites.N))
+		b := t.Batch(lo, min(lo+BatchRows, t.N))
 		w.begin(int64(lo))
-		cond, err := s.eval(w, n.Wanted, &b, nil)
+		v, err := s.eval(w, cond, &b, nil)
 		if err != nil {
 			return nil, err
 		}
-		on = trueRows(on, &cond, nil, b.N)
-		if err := r.removals[n].count(s, w, &b, column.Count(on)); err != nil {
-			return nil, err
+		on = trueRows(on, &v, nil, b.N)
+		if each != nil {
+			if err := each(&b, on); err != nil {
+				return nil, err
+			}
 		}
-		copy(wanted[lo>>6:], on)
+		copy(rows[lo>>6:], on)
 	}
-	return wanted, nil
+	return rows, nil
 }
 
 // rowSource streams the rows of a relation.

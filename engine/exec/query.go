@@ -10,6 +10,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/engine/plan"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 )
 
 // queries are the queries inside the expressions of one run, with the answers
@@ -23,6 +24,8 @@ type queries struct {
 	answers map[*plan.Query]*answers
 	commons map[*plan.Common]*commonRows
 	fresh   map[*plan.Common]bool // those made for one row outside
+
+	divisions map[*plan.Relation]relation.Division // of the relations opened so far
 }
 
 // start begins a run.

@@ -1,11 +1,12 @@
 package plan
 
-// Weighing is a call of an aggregate that weighs its rows by the volume of cells:
-// Column is where the volume stands in the aggregate's input.
+// Weighing is a call of an aggregate that weighs its rows by the volume of cells, or adds
+// volumes up: Column is where the volume stands in the aggregate's input.
 type Weighing struct {
 	Call     int
 	Relation *Relation
 	Column   int
+	Sum      bool // it adds up
 	// Plain: the rows are those of the relation, less some; else a join or a group
 	// stands between, which may repeat or lose cells.
 	Plain bool
@@ -18,7 +19,12 @@ func Weighings(n *Aggregate) []Weighing {
 	var found []Weighing
 	for i := range n.Calls {
 		var of *Weighing
-		for _, o := range reads(n.Calls[i].Weight, input) {
+		c := &n.Calls[i]
+		measured, sum := c.Weight, c.Weight == nil && isSum(c) && !c.Distinct
+		if sum {
+			measured = c.Args[0]
+		}
+		for _, o := range reads(measured, input) {
 			if !o.volume() {
 				continue
 			}
@@ -26,9 +32,9 @@ func Weighings(n *Aggregate) []Weighing {
 				of = nil // two spaces in one weight
 				break
 			}
-			for c, at := range input {
-				if at == o {
-					of = &Weighing{i, o.Relation, c, cellsOf(n.Input) == o.Relation}
+			for at, from := range input {
+				if from == o {
+					of = &Weighing{i, o.Relation, at, sum, cellsOf(n.Input) == o.Relation}
 				}
 			}
 		}

@@ -195,9 +195,31 @@ func siteOrigins(r *Relation) []Origin {
 	return origins
 }
 
+// WholePartitions is the part of the condition on the sites of a relation that leaves out
+// whole partitions only; nil: none.
+func WholePartitions(r *Relation) expr.Expr {
+	if r.Wanted == nil {
+		return nil
+	}
+	parted := wholePartitions(expr.Conjuncts(r.Wanted), siteOrigins(r))
+	if parted == nil {
+		return nil
+	}
+	return expr.AndAll(parted)
+}
+
 func appendRemoval(found []Removal, step Node, r *Relation, cond expr.Expr, input []Origin) []Removal {
-	var parted []expr.Expr
 	conds := expr.Conjuncts(cond)
+	parted := wholePartitions(conds, input)
+	if len(parted) == len(conds) {
+		return found
+	}
+	return append(found, Removal{step, r, expr.AndAll(parted)})
+}
+
+// wholePartitions are the conditions that speak of the columns of FOR EACH alone.
+func wholePartitions(conds []expr.Expr, input []Origin) []expr.Expr {
+	var parted []expr.Expr
 next:
 	for _, c := range conds {
 		used := reads(c, input)
@@ -211,10 +233,7 @@ next:
 		}
 		parted = append(parted, c)
 	}
-	if len(parted) == len(conds) {
-		return found
-	}
-	return append(found, Removal{step, r, expr.AndAll(parted)})
+	return parted
 }
 
 // CellSum is a SUM of measures that would count a cell twice where two rows of

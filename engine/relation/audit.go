@@ -211,6 +211,12 @@ func (a *auditRows) Run(ctx context.Context, emit func(*column.Batch) error) err
 			return err
 		}
 		if l := a.rowsOf[i]; l.logger >= 0 {
+			const perRow = 4 * 8 // stamps, steps, and a course of readings
+			done, err := a.env.hold(perRow * int64(len(a.of(l.logger))))
+			if err != nil {
+				return err
+			}
+			defer done()
 			found[i], outside[i] = a.look(l.logger)
 		} else {
 			found[i].Audit = series.AuditOf(nil, a.asked())

@@ -103,6 +103,12 @@ func (e *episodeRows) logger(ctx context.Context, i int, put func(*column.Batch)
 	if err := ctx.Err(); err != nil || !e.wanted(i, e.r) {
 		return err
 	}
+	const perRow = 3 * 8 // stamp, value, step
+	done, err := e.env.hold(perRow * int64(len(e.of(i))))
+	if err != nil {
+		return err
+	}
+	defer done()
 	course, err := e.course(i)
 	if err != nil {
 		return err

@@ -17,6 +17,7 @@ type findings struct {
 	shared  map[int32][]int32 // rows on a wall of several zones: these zones, the row's own first
 	vacant  []int             // by zone, partitions without a site in it
 	groups  int               // partitions of FOR EACH
+	lost    [][]int32         // those whose sites lie outside every zone
 
 	rows      int // shown
 	unbounded int // of them, without an end

@@ -23,8 +23,8 @@ type LogClauses struct {
 	Limit      float64
 	Until      float64
 	HasUntil   bool
-	// Carried are the columns of the input that come from a campaign and not, as the
-	// stamps do, from a log: they are known of a logger whatever it measured.
+	// Carried are the columns of the input that come from a campaign or a register and not,
+	// as the stamps do, from a log: they are known of a logger whatever it measured.
 	Carried []int
 	// Readings are the columns that an AUDIT looks at.
 	Readings []int
@@ -39,7 +39,7 @@ const usualGaps = 2
 type loggers struct {
 	b     *Bound
 	input *column.Table
-	keys  [][]uint64 // of the BY columns
+	keys  [][]uint64 // of the BY columns, while they are sorted
 	rows  []int32
 	first []int // of each logger, in rows; one more at the end
 }
@@ -61,6 +61,7 @@ func newLoggers(b *Bound, env *Env, input *column.Table) *loggers {
 		}
 	}
 	l.first = append(l.first, len(l.rows))
+	l.keys = nil
 	return l
 }
 

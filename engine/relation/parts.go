@@ -22,6 +22,7 @@ type Part struct {
 	Share []float64   // of each row, 1 / the number of rows of its site; nil: all 1
 	Sites []r3.Vec    // distinct places, in the order of their first row
 	Zone  int32       // of Clauses.Zones, -1 where there are none
+	Group int32       // equal for parts with one value of FOR EACH
 	Solid solid.Solid // that closes the diagram, nil: none
 }
 

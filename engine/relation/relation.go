@@ -93,7 +93,9 @@ type Clauses struct {
 	// Shared is what each of Measured shares with the solid, or with each of the zones: a
 	// part that is solid.Divided itself, the mesh.Region of any other, nil for nothing.
 	// It is nil where all are Divided.
-	Shared     [][]solid.Solid
+	Shared [][]solid.Solid
+	// Inside is how much of all of Measured together lies in the solid, or in each of the zones.
+	Inside     []float64
 	Zones      []Region // each is divided among its own sites alone; none: one space for all
 	Each       []int    // columns of the input named by FOR EACH
 	Omitting   []string
@@ -246,6 +248,20 @@ type Env struct {
 	Threads  int
 	Memory   int64 // most bytes that a tetrahedralisation may take; 0: no limit
 	Progress func(done, total int)
+	// Keep counts bytes that rows hold on to while they run against the limit of the
+	// statement, negative ones that they give up; nil: nobody counts.
+	Keep func(bytes int64) error
+}
+
+// hold counts bytes until the function that it gives is called.
+func (e *Env) hold(bytes int64) (done func(), err error) {
+	if e.Keep == nil {
+		return func() {}, nil
+	}
+	if err := e.Keep(bytes); err != nil {
+		return nil, err
+	}
+	return func() { _ = e.Keep(-bytes) }, nil
 }
 
 // Rows are the rows of one relation.

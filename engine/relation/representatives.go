@@ -22,7 +22,8 @@ import (
 // on those would be judged on what it was chosen by.
 //
 // All is the mean of all sites at an instant, each weighted by the volume of its cell
-// where a solid closes them, else alike; the few are weighted alike, as they will be
+// where a solid closes them, else alike; of zones together it is the mean of them all,
+// each weighted by the space of its zone. The few are weighted alike, as they will be
 // read. The error is the root of its mean square over the instants,
 //
 //	MEAN     of (mean of the few) - (mean of all)
@@ -33,6 +34,7 @@ var representatives = &Definition{
 	Noun:    "REPRESENTATIVES",
 	RowIs:   "chosen site",
 	Meaning: "which few sites stand for all: chosen on the first half of the time, judged on the second",
+	Zoned:   true,
 	Clauses: []string{"WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "FOR", "NUMBER", "KEEP", "BY"},
 	Open:    openRepresentatives,
 	layout: func(b *Bound) []Column {
@@ -65,6 +67,7 @@ const fewestReadings = 0.95
 type representativeRows struct {
 	*sites
 	id     []int32     // a row of each site, in the order of identifiers
+	zone   []int32     // of each site; -1: it hung in several
 	value  [][]float64 // by instant, then site; NaN: none
 	all    []float64   // what the few are to be, by instant; NaN: nothing is known
 	halves int         // number of instants of the first half
@@ -109,23 +112,56 @@ func (c *representativeRows) gather(ctx context.Context) error {
 		rows = append(rows, p.Rows...)
 	}
 	c.id = c.order.distinct(rows)
+	c.zone = make([]int32, len(c.id))
+	for k := range c.zone {
+		c.zone[k] = unseenZone
+	}
+	for lo := 0; lo < len(c.parts); { // one instant: a part, or one for each zone
+		hi := lo + 1
+		for hi < len(c.parts) && c.parts[hi].Group == c.parts[lo].Group {
+			hi++
+		}
+		if err := c.instant(ctx, lo, hi); err != nil {
+			return err
+		}
+		lo = hi
+	}
+	c.halves = (len(c.value) + 1) / 2
+	c.tell()
+	return nil
+}
+
+// unseenZone is that of a site before its first row.
+const unseenZone = -2
+
+// instant takes the readings of parts lo to hi-1, which are those of one instant.
+func (c *representativeRows) instant(ctx context.Context, lo, hi int) error {
 	v := &c.input.Cols[c.b.Clauses.For[0]]
-	for i, p := range c.parts {
+	at := make([]float64, len(c.id))
+	for k := range at {
+		at[k] = math.NaN()
+	}
+	var sum, weight float64
+	highest := math.Inf(-1)
+	for i, p := range c.parts[lo:hi] {
 		weights, err := c.weights(ctx, p)
 		if err != nil {
 			return err
 		}
-		at := make([]float64, len(c.id))
-		for k := range at {
-			at[k] = math.NaN()
-		}
-		var sum, weight float64
-		highest, site := math.Inf(-1), 0
+		site := 0
 		for k, row := range p.Rows {
 			for !c.order.sameID(c.id[site], row) {
 				site++ // both in the order of identifiers
 			}
-			if v.IsNull(int(row)) || weights != nil && weights[k] == 0 {
+			if weights != nil && weights[k] == 0 {
+				continue
+			}
+			if c.zone[site] == unseenZone {
+				c.zone[site] = p.Zone
+			} else if c.zone[site] != p.Zone {
+				c.zone[site] = -1
+			}
+			if v.IsNull(int(row)) {
 				continue
 			}
 			x := reading(v, row)
@@ -140,19 +176,17 @@ func (c *representativeRows) gather(ctx context.Context) error {
 			}
 			sum, weight, highest = sum+float64(w*x), weight+w, max(highest, x)
 		}
-		all := math.NaN()
-		switch {
-		case weight == 0:
-		case c.b.Choice.Aim == "HIGHEST":
-			all = highest
-		default:
-			all = sum / weight
-		}
-		c.value, c.all = append(c.value, at), append(c.all, all)
-		c.partDone(i)
+		c.partDone(lo + i)
 	}
-	c.halves = (len(c.value) + 1) / 2
-	c.tell()
+	all := math.NaN()
+	switch {
+	case weight == 0:
+	case c.b.Choice.Aim == "HIGHEST":
+		all = highest
+	default:
+		all = sum / weight
+	}
+	c.value, c.all = append(c.value, at), append(c.all, all)
 	return nil
 }
 
@@ -372,6 +406,13 @@ func (c *representativeRows) put(chosen []int, emit func(*column.Batch) error) e
 			w[representativeError].AppendNull()
 		} else {
 			w[representativeError].AppendFloat(e)
+		}
+		if z := representativeError + 1; z < len(w) { // the column zone
+			if at := c.zone[k]; at >= 0 {
+				w[z].Append(column.String(c.b.Clauses.Zones[at].Name))
+			} else {
+				w[z].AppendNull()
+			}
 		}
 	}
 	c.say(chosen)

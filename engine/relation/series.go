@@ -137,7 +137,7 @@ func (s *seriesRows) tell() {
 	}
 	for i := range s.held {
 		if s.held[i].Load() {
-			notes.Add(note.Note, note.Rows, "%s of %s comes from a campaign and changes within a logger all the same: its last value is held", s.b.Input[i].Name, s.b.Name)
+			notes.Add(note.Note, note.Rows, "%s of %s comes from what was joined to the log and changes within a logger: its last value is held (joined to the rows of SERIES it is that of each instant)", s.b.Input[i].Name, s.b.Name)
 		}
 	}
 }
@@ -147,6 +147,11 @@ func (s *seriesRows) logger(ctx context.Context, i int, put func(*column.Batch) 
 	if !s.wanted(i, s.r) {
 		return nil
 	}
+	done, err := s.env.hold(s.bytes(len(s.of(i))))
+	if err != nil {
+		return err
+	}
+	defer done()
 	w, err := s.newCourses(i)
 	if err != nil {
 		return err
@@ -170,10 +175,11 @@ func (s *seriesRows) logger(ctx context.Context, i int, put func(*column.Batch) 
 // courses is one logger's readings, column by column as they are needed.
 type courses struct {
 	*seriesRows
-	rows    []int32 // of the input, by time
-	stamps  []int64
-	gap     int64 // longest that is filled
-	columns []courseColumn
+	rows     []int32 // of the input, by time
+	stamps   []int64
+	repeated int   // of them, stood before
+	gap      int64 // longest that is filled
+	columns  []courseColumn
 }
 
 // courseColumn is one column of the input for one logger: a constant, a course, or
@@ -193,10 +199,10 @@ func (s *seriesRows) newCourses(i int) (*courses, error) {
 	for k, r := range w.rows {
 		w.stamps[k] = t[r]
 	}
-	once := slices.Compact(slices.Clone(w.stamps))
-	s.merged.Add(int64(len(w.stamps) - len(once)))
+	w.repeated = repeats(w.stamps)
+	s.merged.Add(int64(w.repeated))
 	if w.gap = s.b.Log.LongestGap; w.gap == 0 {
-		w.gap = usualGaps * series.UsualStep(once)
+		w.gap = usualGaps * series.UsualStep(w.stamps)
 	}
 	for c := range s.b.Input {
 		if !needed(s.r.Need, c) || c == s.b.Clauses.On[0] || slices.Contains(s.b.Clauses.By, c) {
@@ -207,6 +213,45 @@ func (s *seriesRows) newCourses(i int) (*courses, error) {
 		}
 	}
 	return w, nil
+}
+
+// repeats counts the stamps that are that before them.
+func repeats(stamps []int64) int {
+	n := 0
+	for i := 1; i < len(stamps); i++ {
+		if stamps[i] == stamps[i-1] {
+			n++
+		}
+	}
+	return n
+}
+
+// merge makes a course of readings; where no stamp stands twice their stamps are shared.
+func (w *courses) merge(stamps []int64, values []float64) series.Course {
+	if w.repeated == 0 {
+		return series.Course{T: stamps, V: values}
+	}
+	c, _ := series.Merge(slices.Clone(stamps), values)
+	return c
+}
+
+// bytes is what the readings of n rows of a logger take while it is worked on, and the
+// slabs of it that wait for their turn.
+func (s *seriesRows) bytes(n int) int64 {
+	const stamp, value, row = 8, 8, 4
+	perRow, perSlot := int64(stamp), int64(0)
+	if s.b.Log.LongestGap == 0 {
+		perRow += stamp // the steps between them
+	}
+	for c := range s.b.Input {
+		if !needed(s.r.Need, c) {
+			continue
+		}
+		perRow += value + row
+		perSlot += value
+	}
+	slots := min(int64(s.grid.N()), slabRows*(ahead+1))
+	return int64(n)*perRow + slots*(perSlot+value)
 }
 
 // between reports whether values of a column are computed between readings.
@@ -242,8 +287,8 @@ func (w *courses) prepare(c int) error {
 		if err != nil {
 			return err
 		}
-		x.course, _ = series.Merge(slices.Clone(x.stamps), values)
-	case (w.b.Log.Method == "MAX" || w.b.Log.Method == "MIN") && (v.Type == column.Real || v.Type.Counted()):
+		x.course = w.merge(x.stamps, values)
+	case (w.b.Log.Method == "MAX" || w.b.Log.Method == "MIN") && !slices.Contains(w.b.Log.Carried, c) && (v.Type == column.Real || v.Type.Counted()):
 		sign := 1.0
 		if w.b.Log.Method == "MIN" {
 			sign = -1
@@ -426,7 +471,7 @@ func (w *courses) readBetween(i, lo, hi int, v *column.Vector) error {
 					return w.infinite(i, r)
 				}
 			}
-			course, _ := series.Merge(slices.Clone(x.stamps), values)
+			course := w.merge(x.stamps, values)
 			out := make([]float64, n)
 			clear(known)
 			w.compute(course, lo, hi, out, known)

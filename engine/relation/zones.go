@@ -73,14 +73,15 @@ func zoned(b *Bound, input *column.Table, together [][]int32, said *findings) ([
 	said.groups = len(together)
 	var parts []*Part
 	if len(b.Clauses.Zones) == 0 {
-		for _, rows := range together {
-			parts = append(parts, &Part{Rows: rows, Zone: -1, Solid: b.Clauses.Solid})
+		for i, rows := range together {
+			parts = append(parts, &Part{Rows: rows, Zone: -1, Group: int32(i), Solid: b.Clauses.Solid})
 		}
 		return parts, nil
 	}
 	said.vacant = make([]int, len(b.Clauses.Zones))
 	seen := map[r3.Vec]zonesAt{}
-	for _, rows := range together {
+	for i, rows := range together {
+		before := len(parts)
 		of := make([][]int32, len(b.Clauses.Zones))
 		for _, row := range rows {
 			at := position(b, input, row)
@@ -103,7 +104,10 @@ func zoned(b *Bound, input *column.Table, together [][]int32, said *findings) ([
 				said.vacant[zone]++
 				continue
 			}
-			parts = append(parts, &Part{Rows: rows, Zone: int32(zone), Solid: b.Clauses.Zones[zone].Solid})
+			parts = append(parts, &Part{Rows: rows, Zone: int32(zone), Group: int32(i), Solid: b.Clauses.Zones[zone].Solid})
+		}
+		if len(parts) == before {
+			said.lost = append(said.lost, rows)
 		}
 	}
 	return parts, nil

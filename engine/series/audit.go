@@ -2,15 +2,18 @@ package series
 
 import "slices"
 
-// UsualStep is the median of the steps between successive stamps, which ascend
-// strictly (of an even number the smaller of the two in the middle); 0 without two.
+// UsualStep is the median of the steps between successive stamps, which ascend (of an
+// even number the smaller of the two in the middle); those that repeat make no step. It is
+// 0 without two.
 func UsualStep(stamps []int64) int64 {
-	if len(stamps) < 2 {
-		return 0
+	steps := make([]int64, 0, max(0, len(stamps)-1))
+	for i := 1; i < len(stamps); i++ {
+		if d := stamps[i] - stamps[i-1]; d != 0 {
+			steps = append(steps, d)
+		}
 	}
-	steps := make([]int64, len(stamps)-1)
-	for i := range steps {
-		steps[i] = stamps[i+1] - stamps[i]
+	if len(steps) == 0 {
+		return 0
 	}
 	return nth(steps, (len(steps)-1)/2)
 }

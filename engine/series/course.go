@@ -1,5 +1,7 @@
 package series
 
+import "slices"
+
 // Course is the readings of one logger for one quantity: T ascends strictly, V are
 // finite.
 type Course struct {
@@ -39,20 +41,12 @@ func mean(v []float64) float64 {
 	if lo == hi {
 		return lo
 	}
-	insertionSort(v) // a sum depends on the order
+	slices.Sort(v) // a sum depends on the order
 	sum := 0.0
 	for _, x := range v {
 		sum += x - lo
 	}
 	return clamp(lo+sum/float64(len(v)), lo, hi)
-}
-
-func insertionSort(v []float64) {
-	for i := 1; i < len(v); i++ {
-		for k := i; k > 0 && v[k] < v[k-1]; k-- {
-			v[k], v[k-1] = v[k-1], v[k]
-		}
-	}
 }
 
 func clamp(x, lo, hi float64) float64 { return max(lo, min(x, hi)) }
