@@ -174,17 +174,14 @@ func (l *ledger) text(w *cellWatch, q *queries) (text, warning string) {
 	if missing < negligible*total {
 		missing = 0
 	}
-	verb := "answered for"
 	switch {
 	case l.of.Sum && silent == 0 && unsure == 0 && missing == 0:
 		return "", "" // the answer itself says it
-	case l.of.Sum:
-		verb = "added up"
 	case silent == 0 && filtered == 0 && unsure == 0 && missing == 0:
 		return of + " all is answered for", ""
 	}
 	items := []string{
-		fmt.Sprintf("%s (%s %%) %s", write(answered), percent(100*answered/total), verb),
+		fmt.Sprintf("%s (%s %%) answered for", write(answered), percent(100*answered/total)),
 		write(silent) + " NULL, so that nobody spoke for it",
 	}
 	if filtered > 0 || unsure > 0 {
