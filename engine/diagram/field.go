@@ -8,13 +8,16 @@ import (
 )
 
 // Field gives the weights of the sites of the diagram at places. tolerance is that of
-// the diagram.
-func (h *Handle) Field(ctx context.Context, tolerance float64, o field.Options, progress func(done, total int)) (*field.Field, error) {
+// the diagram; places is how many the field will be asked about.
+func (h *Handle) Field(ctx context.Context, tolerance float64, o field.Options, places int, progress func(done, total int)) (*field.Field, error) {
 	if err := h.lock(ctx, progress); err != nil {
 		return nil, err
 	}
 	defer h.unlock()
 	f, err := field.New(ctx, h.d, tolerance, o)
+	if err == nil {
+		err = f.Prepare(ctx, places)
+	}
 	h.store.grow(h, h.keptMore())
 	return f, err
 }

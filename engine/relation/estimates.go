@@ -193,13 +193,13 @@ func (e *estimateRows) part(ctx context.Context, p *Part, of chosen, n int, emit
 	if err != nil {
 		return err
 	}
-	groups, err := e.groups(ctx, p, h)
+	groups, err := e.groups(ctx, p, h, n)
 	if err != nil {
 		return err
 	}
 	var around *field.Field
 	if e.wants(estimateNeighbours) || e.wants(estimateInHull) {
-		if around, err = e.fieldOf(ctx, p, h, field.Options{}); err != nil {
+		if around, err = e.fieldOf(ctx, p, h, field.Options{}, n); err != nil {
 			return err
 		}
 	}
@@ -239,8 +239,8 @@ func (e *estimateRows) without(p *Part, of chosen, emit func(*column.Batch) erro
 
 // groups are the needed attributes by the sites that have a value of them: each group
 // has one set of weights.
-func (e *estimateRows) groups(ctx context.Context, p *Part, all *diagram.Handle) ([][]asked, error) {
-	speakers := e.speakers(p, all)
+func (e *estimateRows) groups(ctx context.Context, p *Part, all *diagram.Handle, places int) ([][]asked, error) {
+	speakers := e.speakers(p, all, places)
 	columns, inputs := e.attributes()
 	var groups [][]asked
 	at := map[*speaking]int{}

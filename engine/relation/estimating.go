@@ -131,14 +131,15 @@ func (s *speaking) number(site int32) int32 {
 
 // speakers gives each pattern of missing values its diagram, once.
 type speakers struct {
-	s    *sites
-	p    *Part
-	all  *diagram.Handle
-	kept map[string]*speaking
+	s      *sites
+	p      *Part
+	all    *diagram.Handle
+	kept   map[string]*speaking
+	places int // that each will be asked about
 }
 
-func (s *sites) speakers(p *Part, all *diagram.Handle) *speakers {
-	return &speakers{s, p, all, map[string]*speaking{}}
+func (s *sites) speakers(p *Part, all *diagram.Handle, places int) *speakers {
+	return &speakers{s, p, all, map[string]*speaking{}, places}
 }
 
 // of is the diagram of the sites for which has is true.
@@ -188,14 +189,14 @@ func (x *speakers) open(ctx context.Context, to *speaking, list []int32) error {
 		}
 		to.handle, to.sites = h, list
 	}
-	f, err := x.s.fieldOf(ctx, x.p, to.handle, x.s.b.Clauses.Method)
+	f, err := x.s.fieldOf(ctx, x.p, to.handle, x.s.b.Clauses.Method, x.places)
 	to.field = f
 	return err
 }
 
-// fieldOf is the field over a diagram of a part.
-func (s *sites) fieldOf(ctx context.Context, p *Part, h *diagram.Handle, o field.Options) (*field.Field, error) {
-	f, err := h.Field(ctx, s.b.Clauses.Tolerance, o, s.progress())
+// fieldOf is the field over a diagram of a part, for so many places.
+func (s *sites) fieldOf(ctx context.Context, p *Part, h *diagram.Handle, o field.Options, places int) (*field.Field, error) {
+	f, err := h.Field(ctx, s.b.Clauses.Tolerance, o, places, s.progress())
 	if err != nil {
 		return nil, s.tooLarge(err, p)
 	}

@@ -153,7 +153,7 @@ func (e *exceedRows) part(ctx context.Context, p *Part) (*field.Above, error) {
 		e.reached.missed(e.sites, e.of, read.rows)
 	}
 	e.countNear(p)
-	from, err := e.speakers(p, h).of(ctx, func(site int32) bool { return read.count[site] > 0 })
+	from, err := e.speakers(p, h, 1<<13).of(ctx, func(site int32) bool { return read.count[site] > 0 })
 	if err != nil {
 		return nil, err
 	}

@@ -161,7 +161,7 @@ func (r *residualRows) part(ctx context.Context, p *Part) (*left, []int32, error
 	if read.n > 0 {
 		r.reached.missed(r.sites, r.of, read.rows)
 	}
-	from, err := r.speakers(p, h).of(ctx, func(site int32) bool { return read.count[site] > 0 })
+	from, err := r.speakers(p, h, len(p.Rows)).of(ctx, func(site int32) bool { return read.count[site] > 0 })
 	if err != nil {
 		return nil, nil, err
 	}

@@ -124,7 +124,7 @@ func (w *weightRows) part(ctx context.Context, p *Part, of chosen, n int, out *w
 	if err != nil {
 		return err
 	}
-	f, err := w.fieldOf(ctx, p, h, w.b.Clauses.Method)
+	f, err := w.fieldOf(ctx, p, h, w.b.Clauses.Method, n)
 	if err != nil {
 		return err
 	}

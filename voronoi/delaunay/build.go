@@ -77,7 +77,7 @@ type builder struct {
 func (b *builder) run() error {
 	m, n := b.m, len(b.m.sites)/3
 	m.setLimits()
-	m.tets = make([]tet, int(float64(n)*tetsPerSite)+blockSize*(b.threads+1))
+	m.tets = make([]tet, int(float64(n)*tetsPerSite)+m.block()*(b.threads+1))
 	AdviseHugePages(m.tets)
 	stop := b.faultPages()
 	m.order, b.ends = insertionOrder(m.frame, m.sites, b.threads)
@@ -219,10 +219,10 @@ func (w *worker) insert(p int32) bool {
 func (b *builder) makeRoom(n int) error {
 	m := b.m
 	room := len(m.tets) - int(m.used)
-	if room >= n*6+blockSize*(b.threads+1) {
+	if room >= n*6+m.block()*(b.threads+1) {
 		return nil
 	}
-	by := max(len(m.tets)/8, n*6) + blockSize*(b.threads+1)
+	by := max(len(m.tets)/8, n*6) + m.block()*(b.threads+1)
 	if limit := b.options.Memory; limit > 0 {
 		fixed := Estimate(len(m.order)) - int64(float64(len(m.order))*(tetsPerSite*tetBytes+sortBytes))
 		if need := fixed + tetBytes*int64(2*len(m.tets)+by); need > limit {

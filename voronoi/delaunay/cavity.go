@@ -249,8 +249,20 @@ func (w *worker) fresh() uint32 {
 	return id
 }
 
-// blockSize is how many records a worker takes at a time.
-const blockSize = 1024
+// How many records a worker takes at a time; of few sites, whose tetrahedra are built by
+// the thousand, a small block.
+const (
+	usualBlock = 1024
+	smallBlock = 64
+	fewSites   = 256
+)
+
+func (m *mesh) block() int {
+	if len(m.sites) < 3*fewSites {
+		return smallBlock
+	}
+	return usualBlock
+}
 
 // reserve makes sure that fresh can be called n times; it reports false when the mesh
 // has no more records.
@@ -259,12 +271,13 @@ func (w *worker) reserve(n int) bool {
 		for ; w.next < w.end; w.next++ {
 			w.free = append(w.free, w.next)
 		}
-		end := atomic.AddInt64(&w.m.used, blockSize)
+		block := int64(w.m.block())
+		end := atomic.AddInt64(&w.m.used, block)
 		if end > int64(len(w.m.tets)) {
-			atomic.AddInt64(&w.m.used, -blockSize)
+			atomic.AddInt64(&w.m.used, -block)
 			return false
 		}
-		w.next, w.end = uint32(end-blockSize), uint32(end)
+		w.next, w.end = uint32(end-block), uint32(end)
 	}
 	return true
 }

@@ -135,8 +135,8 @@ func (t *T) editor() *worker {
 func (t *T) room(w *worker, n int) {
 	for !w.reserve(n) {
 		t.tets = t.tets[:cap(t.tets)]
-		if len(t.tets)-int(t.used) < blockSize {
-			t.grow(len(t.tets)/8 + 2*blockSize)
+		if len(t.tets)-int(t.used) < t.block() {
+			t.grow(len(t.tets)/8 + 2*t.block())
 		}
 	}
 }

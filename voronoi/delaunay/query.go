@@ -245,6 +245,18 @@ func (t *T) Locate(p r3.Vec) Location {
 	return t.walk(p, t.startNear(p))
 }
 
+// LocateFrom is Locate for a place whose nearest site, or one near to it, is known: the
+// way from there is short.
+func (t *T) LocateFrom(p r3.Vec, site int32) Location {
+	if t.dimension < 3 || !finite(p) {
+		return Location{Tet: -1}
+	}
+	if i := t.VertexTet(int(site)); i >= 0 {
+		return t.walk(p, uint32(i))
+	}
+	return t.walk(p, t.startNear(p))
+}
+
 func (t *T) walk(p r3.Vec, cur uint32) Location {
 	came := uint32(noTet)
 	for {

@@ -79,6 +79,8 @@ type Field struct {
 	o      Options
 	body   solid.Solid
 	convex bool // the solid is convex, or there is none
+	planes []solid.Plane
+	ready  bool // the tetrahedralisation may be used by natural
 	tol    float64
 	facts  voronoi.Facts
 	metric Vec // squares of the factors by which distances are stretched
@@ -102,7 +104,8 @@ func New(ctx context.Context, d *voronoi.Diagram, tolerance float64, o Options) 
 	k := d.Stretch()
 	f.metric = Vec{X: float64(k.X * k.X), Y: float64(k.Y * k.Y), Z: float64(k.Z * k.Z)}
 	if f.body != nil {
-		f.convex = f.body.Planes() != nil
+		f.planes = f.body.Planes()
+		f.convex = f.planes != nil
 	}
 	if o.Method == Linear && f.facts.Dimension == 3 {
 		if err := f.needHull(ctx); err != nil {
@@ -115,7 +118,9 @@ func New(ctx context.Context, d *voronoi.Diagram, tolerance float64, o Options) 
 // Work is the scratch of one goroutine. The zero value is ready.
 type Work struct {
 	cell, piece polyhedron.Cell
-	metric      Vec // that of the cell at hand
+	zone        zone
+	tied        bool // zone tells which neighbours touch
+	metric      Vec  // that of the cell at hand
 	measures    solid.Measures
 	solid       solid.Work
 	near        []voronoi.Near
@@ -124,6 +129,7 @@ type Work struct {
 	weights     []Weight
 	flat        []int32
 	ring        []int32
+	spots       []Vec
 	list        []float64
 }
 
@@ -137,7 +143,8 @@ func (f *Field) At(ctx context.Context, p Vec, w *Work) (Place, []Weight, error)
 	if f.body != nil && f.body.Side(p, f.tol) == solid.Outside {
 		return OutsideSolid, nil, nil
 	}
-	if s, d := f.d.Nearest(p); f.o.Method == Nearest || d == 0 && f.d.Place(s) == positive(p) {
+	s, d := f.d.Nearest(p)
+	if f.o.Method == Nearest || d == 0 && f.d.Place(s) == positive(p) {
 		w.weights = append(w.weights, Weight{s, 1})
 		if f.o.Method == Nearest && d > 0 {
 			return Between, w.weights, nil
@@ -146,9 +153,12 @@ func (f *Field) At(ctx context.Context, p Vec, w *Work) (Place, []Weight, error)
 	}
 	switch f.o.Method {
 	case Linear:
-		return f.linear(p, w)
+		return f.linear(p, s, w)
 	case Distance:
 		return f.distance(p, -1, w)
+	}
+	if place, ok := f.byZone(p, s, w); ok {
+		return place, w.finish(), nil
 	}
 	return f.natural(ctx, p, -1, w)
 }
@@ -175,6 +185,10 @@ func (f *Field) Without(ctx context.Context, site int32, w *Work) (Place, []Weig
 		return f.distance(p, site, w)
 	case Linear:
 		return f.linearWithout(ctx, p, site, w)
+	}
+	w.tied = false
+	if place, ok, err := f.withoutByZone(ctx, p, site, w); ok || err != nil {
+		return place, w.finish(), err
 	}
 	return f.natural(ctx, p, site, w)
 }

@@ -25,7 +25,8 @@ func box(t testing.TB, lo, hi Vec) solid.Solid {
 	return b
 }
 
-// fieldOf is a field over sites, in a solid or without (nil).
+// fieldOf is a field over sites, in a solid or without (nil), with all that makes it
+// quick.
 func fieldOf(t testing.TB, sites []Vec, body solid.Solid, o Options) *Field {
 	t.Helper()
 	d, err := voronoi.New(sites, voronoi.Options{Solid: body})
@@ -34,6 +35,9 @@ func fieldOf(t testing.TB, sites []Vec, body solid.Solid, o Options) *Field {
 	}
 	f, err := New(context.Background(), d, 0, o)
 	if err != nil {
+		t.Fatal(err)
+	}
+	if err := f.Prepare(context.Background(), 1<<20); err != nil {
 		t.Fatal(err)
 	}
 	return f

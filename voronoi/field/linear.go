@@ -34,13 +34,13 @@ func (f *Field) needHull(ctx context.Context) error {
 }
 
 // linear weighs the corners of the Delaunay tetrahedron that p lies in by its
-// barycentric coordinates.
-func (f *Field) linear(p Vec, w *Work) (Place, []Weight, error) {
+// barycentric coordinates. near is the site nearest to p.
+func (f *Field) linear(p Vec, near int32, w *Work) (Place, []Weight, error) {
 	if f.facts.Dimension < 3 {
 		return Flat, nil, nil
 	}
 	local := f.d.Local(p)
-	at := f.t.Locate(local)
+	at := f.t.LocateFrom(local, f.own[near])
 	if at.Tet < 0 || f.t.IsGhost(at.Tet) {
 		return OutsideHull, nil, nil
 	}
@@ -134,7 +134,8 @@ func (f *Field) InHull(ctx context.Context, p Vec) (bool, error) {
 		if err := f.needHull(ctx); err != nil {
 			return false, err
 		}
-		at := f.t.Locate(local)
+		near, _ := f.d.Nearest(p)
+		at := f.t.LocateFrom(local, f.own[near])
 		return at.Tet >= 0 && !f.t.IsGhost(at.Tet), nil
 	}
 	all := f.everyone()

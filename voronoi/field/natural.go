@@ -6,6 +6,7 @@ import (
 	"math"
 	"slices"
 
+	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/polyhedron"
 	"nearcell/voronoi/solid"
 )
@@ -15,6 +16,30 @@ type neighbour struct {
 	site int32
 	at   Vec     // seen from the place
 	area float64 // of the face, in the solid
+	rank int32   // in the zone; -1: not known
+}
+
+// byZone finds the coordinates by the tetrahedra that p would change, which is far
+// quicker; ok is false where these do not tell, or where the cell leaves the solid. They
+// may still tell which neighbours touch: then w.tied is set.
+func (f *Field) byZone(p Vec, near int32, w *Work) (place Place, ok bool) {
+	w.tied = false
+	if !f.ready {
+		return Between, false
+	}
+	z := &w.zone
+	switch z.find(f.t, f.d.Local(p), f.own[near]) {
+	case zoneNone:
+		return Between, false
+	case zoneWhole:
+		if z.inSolid(f, p) && z.parts() {
+			z.weigh(f.o.Method, f.site, w)
+			return Between, true
+		}
+	}
+	z.link()
+	w.tied = true
+	return Between, false
 }
 
 // natural finds natural neighbour coordinates (Sibson 1980, 1981; Belikov et al. 1997):
@@ -94,7 +119,11 @@ func (f *Field) meet(p Vec, whole bool, w *Work) error {
 			w.around[k].area += area
 			continue
 		}
-		w.around = append(w.around, neighbour{label, f.offset(label, p), area})
+		rank := int32(-1)
+		if w.tied {
+			rank = w.zone.rankOf(f.own[label])
+		}
+		w.around = append(w.around, neighbour{label, f.offset(label, p), area, rank})
 	}
 	return nil
 }
@@ -151,7 +180,7 @@ func (w *Work) cutPart(j int) polyhedron.Result {
 	for k := range w.around {
 		n := sub(w.around[k].at, own)
 		w.list = append(w.list, dot(times(w.metric, n), n))
-		if k != j {
+		if k != j && (!w.tied || w.zone.linked(w.around[j].rank, w.around[k].rank)) {
 			w.order = append(w.order, int32(k))
 		}
 	}
@@ -173,10 +202,75 @@ func (w *Work) cutPart(j int) polyhedron.Result {
 	return polyhedron.Cut
 }
 
+// withoutByZone is byZone at the place of a site that is taken away. Its neighbours close
+// the hole that it leaves, so that their own tetrahedralisation has the zone of its place.
+func (f *Field) withoutByZone(ctx context.Context, p Vec, site int32, w *Work) (place Place, ok bool, err error) {
+	if !f.ready || f.o.Method != Sibson {
+		return Between, false, nil
+	}
+	w.ring = f.t.Neighbours(int(f.own[site]), w.ring[:0])
+	if len(w.ring) < 5 || w.ring[0] == delaunay.Ghost || len(w.ring) > crowdedRing {
+		return Between, false, nil
+	}
+	w.spots = w.spots[:0]
+	at := f.local(site)
+	near, least := int32(0), math.Inf(1)
+	for i, s := range w.ring {
+		q := f.t.Site(int(s))
+		w.spots = append(w.spots, q)
+		e := sub(q, at)
+		if d := dot(e, e); d < least {
+			near, least = int32(i), d
+		}
+	}
+	small, err := delaunay.Build(ctx, w.spots, delaunay.Options{Threads: 1})
+	if err != nil {
+		return Between, false, err
+	}
+	z := &w.zone
+	if small.Dimension() < 3 || z.find(small, at, near) != zoneWhole || !z.inSolid(f, p) || !z.parts() {
+		return Between, false, nil
+	}
+	z.weigh(Sibson, func(i int32) int32 { return f.site(w.ring[i]) }, w)
+	return Between, true, nil
+}
+
+// crowdedRing is the number of neighbours from which those of one site are no small set.
+const crowdedRing = 1000
+
+// facesByZone counts the faces of the cell of p as byZone finds it.
+func (f *Field) facesByZone(p Vec, w *Work) (n int, ok bool) {
+	if !f.ready {
+		return 0, false
+	}
+	s, d := f.d.Nearest(p)
+	if d == 0 {
+		return 0, false
+	}
+	z := &w.zone
+	if z.find(f.t, f.d.Local(p), f.own[s]) != zoneWhole || !z.inSolid(f, p) || !z.parts() {
+		return 0, false
+	}
+	surface := 0.0
+	for _, a := range z.face {
+		surface += a
+	}
+	for _, a := range z.face {
+		if a > crumbShare*surface {
+			n++
+		}
+	}
+	return n, true
+}
+
 // Neighbours is how many sites the cell of p would touch, -1 where p has no cell.
 func (f *Field) Neighbours(p Vec, w *Work) (int, error) {
+	w.tied = false
 	if f.body != nil && f.body.Side(p, f.tol) == solid.Outside {
 		return -1, nil
+	}
+	if n, ok := f.facesByZone(p, w); ok {
+		return n, nil
 	}
 	if err := f.d.Insert(p, &w.cell); err != nil {
 		return -1, err

@@ -331,9 +331,10 @@ func (f *Field) within(sites []int32, p Vec, ofHull bool, w *Work) (Place, []Wei
 		}
 		a := w.cell.FaceArea(i)
 		upright := sub(a, scale(dot(a, unit), unit))
-		w.around = append(w.around, neighbour{label, sub(f.local(label), p), length(upright)})
+		w.around = append(w.around, neighbour{label, sub(f.local(label), p), length(upright), -1})
 	}
 	// The cell is in the coordinates in which distances are plain.
+	w.tied = false
 	w.metric = plain
 	return f.weigh(p, true, w)
 }

@@ -2,7 +2,9 @@ package field
 
 import (
 	"context"
+	"math"
 	"runtime"
+	"slices"
 	"sync"
 	"sync/atomic"
 )
@@ -25,13 +27,54 @@ type Run struct {
 // in any order, once each: what it writes must belong to place i alone. The error is
 // that of the earliest place that failed, or of ctx.
 func (f *Field) EachAt(ctx context.Context, places []Vec, r Run, do func(i int, at Place, weights []Weight) error) error {
+	if err := f.Prepare(ctx, len(places)); err != nil {
+		return err
+	}
+	order := alongCurve(places)
 	return each(ctx, len(places), r, func(w *Work, i int) error {
+		if order != nil {
+			i = int(uint32(order[i]))
+		}
 		at, weights, err := f.At(ctx, places[i], w)
 		if err != nil {
 			return err
 		}
 		return do(i, at, weights)
 	})
+}
+
+// alongCurve orders places, in the lower halves of the words, so that near ones follow
+// each other (Morton 1966): what the one needs of the diagram is then at hand for the
+// next. nil: as they are.
+func alongCurve(places []Vec) []uint64 {
+	if len(places) < 1024 || len(places) > math.MaxUint32 {
+		return nil
+	}
+	lo, hi := places[0], places[0]
+	for _, p := range places {
+		lo = Vec{X: min(lo.X, p.X), Y: min(lo.Y, p.Y), Z: min(lo.Z, p.Z)}
+		hi = Vec{X: max(hi.X, p.X), Y: max(hi.Y, p.Y), Z: max(hi.Z, p.Z)}
+	}
+	size := max(hi.X-lo.X, hi.Y-lo.Y, hi.Z-lo.Z)
+	if !(size > 0) || math.IsInf(size, 0) {
+		return nil
+	}
+	order := make([]uint64, len(places))
+	for i, p := range places {
+		e := sub(p, lo)
+		order[i] = (thirds(e.X/size)|thirds(e.Y/size)<<1|thirds(e.Z/size)<<2)<<32 | uint64(i)
+	}
+	slices.Sort(order)
+	return order
+}
+
+// thirds spreads ten bits of a number of [0, 1] to every third bit.
+func thirds(x float64) uint64 {
+	n := uint64(min(1023, max(0, 1024*x)))
+	n = (n | n<<16) & 0x30000ff
+	n = (n | n<<8) & 0x300f00f
+	n = (n | n<<4) & 0x30c30c3
+	return (n | n<<2) & 0x9249249
 }
 
 // EachWithout is EachAt for the weights of the others at the places of sites.
@@ -48,6 +91,9 @@ func (f *Field) EachWithout(ctx context.Context, sites []int32, r Run, do func(i
 // EachCell calls do with the number of neighbours of the cell that each place would
 // get, -1 where it has none, as EachAt does.
 func (f *Field) EachCell(ctx context.Context, places []Vec, r Run, do func(i, neighbours int) error) error {
+	if err := f.Prepare(ctx, len(places)); err != nil {
+		return err
+	}
 	return each(ctx, len(places), r, func(w *Work, i int) error {
 		n, err := f.Neighbours(places[i], w)
 		if err != nil {
