@@ -32,6 +32,7 @@ func pictureForms() map[string]pictureForm {
 		"COURSE":    {[]string{"ALONG", "SHOWING", "LIMITS"}, []string{"ALONG", "SHOWING"}, (*Session).coursePicture},
 		"HISTOGRAM": {[]string{"SHOWING", "WEIGHTED BY", "LIMITS"}, []string{"SHOWING"}, (*Session).histogramPicture},
 		"PROFILE":   {[]string{"ALONG", "LIMITS"}, []string{"ALONG"}, (*Session).profilePicture},
+		"CELLS":     {[]string{"SHADED BY", "LIMITS", "SEEN FROM"}, []string{"SHADED BY"}, (*Session).spacePicture},
 	}
 }
 
@@ -57,7 +58,7 @@ func (s *Session) drawing(ctx context.Context, st *statement, t *lang.Draw) erro
 	if t.Show {
 		return nil
 	}
-	data, err := write(scene)
+	data, err := write(p, scene)
 	if err != nil {
 		return err
 	}
@@ -81,11 +82,9 @@ func (s *Session) pictureOf(ctx context.Context, st *statement, t *lang.Draw) (p
 	case t.Show && noun != "SECTION":
 		return nil, problem.New("no-picture", st.at(&t.Relation.Noun), "the terminal has no picture of %s", noun).
 			WithHint("SHOW SECTION OF campaign AT z = height SHADED BY column; others are files: DRAW … TO 'file.svg'")
-	case noun == "CELLS":
-		return nil, problem.NotThereYet(st.at(t), "DRAW CELLS")
 	case !ok:
 		return nil, problem.New("no-picture", st.at(&t.Relation.Noun), "there is no picture of %s", noun).
-			WithHint("there are pictures of SECTION, COURSE, HISTOGRAM and PROFILE (HELP DRAW)")
+			WithHint("there are pictures of SECTION, CELLS, COURSE, HISTOGRAM and PROFILE (HELP DRAW)")
 	}
 	if err := form.fits(st, t, noun); err != nil {
 		return nil, err
@@ -96,8 +95,8 @@ func (s *Session) pictureOf(ctx context.Context, st *statement, t *lang.Draw) (p
 // fits refuses clauses that a picture does not take, and misses those that it needs.
 func (f *pictureForm) fits(st *statement, t *lang.Draw, noun string) error {
 	given := map[string]bool{"SHADED BY": !t.Shaded.IsZero(), "LIMITS": len(t.Limits) > 0, "ALONG": !t.Along.IsZero(),
-		"SHOWING": len(t.Showing) > 0, "WEIGHTED BY": t.Weight != nil}
-	for _, clause := range []string{"SHADED BY", "LIMITS", "ALONG", "SHOWING", "WEIGHTED BY"} {
+		"SHOWING": len(t.Showing) > 0, "WEIGHTED BY": t.Weight != nil, "SEEN FROM": len(t.Seen) > 0}
+	for _, clause := range []string{"SHADED BY", "LIMITS", "ALONG", "SHOWING", "WEIGHTED BY", "SEEN FROM"} {
 		switch {
 		case given[clause] && !slices.Contains(f.takes, clause):
 			return problem.New("no-clause", st.at(t), "a picture of %s takes no %s", noun, clause).
@@ -110,7 +109,7 @@ func (f *pictureForm) fits(st *statement, t *lang.Draw, noun string) error {
 }
 
 // pictureFile finds the way to write the file before anything is computed; nil for SHOW.
-func (s *Session) pictureFile(st *statement, t *lang.Draw) (func(*draw.Scene) ([]byte, error), error) {
+func (s *Session) pictureFile(st *statement, t *lang.Draw) (func(picture, *draw.Scene) ([]byte, error), error) {
 	switch {
 	case t.Show && t.To != nil:
 		return nil, problem.New("clauses", st.at(t.To), "SHOW draws in the terminal and writes no file").WithHint("DRAW … TO '%s'", t.To.Value)
@@ -119,14 +118,17 @@ func (s *Session) pictureFile(st *statement, t *lang.Draw) (func(*draw.Scene) ([
 	case t.To == nil:
 		return nil, problem.New("needs-clause", st.at(t), "DRAW needs a file").WithHint("DRAW … TO 'picture.svg'; SHOW SECTION draws in the terminal")
 	}
-	var write func(*draw.Scene) ([]byte, error)
+	var write func(picture, *draw.Scene) ([]byte, error)
 	switch ending := strings.ToLower(filepath.Ext(t.To.Value)); {
 	case ending == ".svg":
-		write = func(p *draw.Scene) ([]byte, error) { return p.SVG(), nil }
+		write = func(_ picture, scene *draw.Scene) ([]byte, error) { return scene.SVG(), nil }
 	case ending == ".png":
-		write = (*draw.Scene).PNG
+		write = func(_ picture, scene *draw.Scene) ([]byte, error) { return scene.PNG() }
 	case ending == ".html" && strings.EqualFold(t.Relation.Noun.Text, "CELLS"):
-		return nil, problem.NotThereYet(st.at(t), "DRAW CELLS")
+		write = s.spacePage
+	case ending == ".html":
+		return nil, problem.New("file-kind", st.at(t.To), "only CELLS are drawn as a page, '%s' cannot be one", t.To.Value).
+			WithHint("end it with .svg or .png; nearcell run --as html puts all pictures into a report")
 	default:
 		return nil, problem.New("file-kind", st.at(t.To), "the ending of '%s' does not say how to draw it", t.To.Value).
 			WithHint("end it with .svg or .png")

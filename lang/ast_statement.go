@@ -137,7 +137,7 @@ type Help struct {
 type Quit struct{ At }
 
 // Draw is DRAW (a file or the page) or, with Show, SHOW (the terminal). Shaded and Along are
-// zero, Limits and Showing empty, Weight and To nil when not given.
+// zero, Limits, Showing and Seen empty, Weight and To nil when not given.
 type Draw struct {
 	At
 	Show      bool
@@ -147,6 +147,7 @@ type Draw struct {
 	Along     Name
 	Showing   []Name
 	Weight    Expr
+	Seen      []Expr // x, y, z of SEEN FROM
 	To        *Text
 	Overwrite bool // of To
 }

@@ -155,6 +155,11 @@ func (g *drawGrammar) tree(at At) (Statement, *Error) {
 			for _, v := range o.Limits {
 				s.Limits = append(s.Limits, v.Expr)
 			}
+		case len(o.Seen) > 0:
+			second = len(s.Seen) > 0
+			for _, v := range o.Seen {
+				s.Seen = append(s.Seen, v.Expr)
+			}
 		default:
 			second = len(s.Showing) > 0
 			for _, n := range o.Showing {

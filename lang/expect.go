@@ -22,8 +22,8 @@ var expected = map[lexer.TokenType]map[lexer.TokenType]string{
 	kRequire:  {tokEOF: "a closing ) and " + statementEnd},
 	kDescribe: {tokEOF: "OF or " + statementEnd},
 	kHelp:     {tokEOF: "a word or " + statementEnd},
-	kDraw: {kShaded: "BY and the name of a column", kWeighted: "BY and a weight", kLimits: "( and the limits",
-		tokEOF: "a clause, SHADED BY, LIMITS, ALONG, SHOWING, WEIGHTED BY, TO or " + statementEnd},
+	kDraw: {kShaded: "BY and the name of a column", kWeighted: "BY and a weight", kLimits: "( and the limits", kSeen: "FROM and a direction",
+		tokEOF: "a clause, SHADED BY, LIMITS, ALONG, SHOWING, WEIGHTED BY, SEEN FROM, TO or " + statementEnd},
 }
 
 // expectation says what a statement could have gone on with at token i where participle

@@ -137,6 +137,9 @@ func (g *gen) statement() Statement {
 	case 18:
 		d := &Draw{Show: g.coin(), Relation: g.relation(), Shaded: maybe(g, g.name), Limits: maybe(g, g.values), Along: maybe(g, g.name),
 			Showing: maybe(g, g.names), Weight: maybe(g, g.weight), To: maybe(g, g.text)}
+		if g.coin() {
+			d.Seen = some(g, 3, 3, g.value)
+		}
 		d.Overwrite = d.To != nil && g.coin()
 		return d
 	}

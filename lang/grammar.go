@@ -120,6 +120,7 @@ type drawOption struct {
 	Along   *namePart   `parser:"| ALONG @@"`
 	Showing []namePart  `parser:"| SHOWING @@ ( Comma @@ )*"`
 	Weight  *weightPart `parser:"| WEIGHTED BY @@"`
+	Seen    []valuePart `parser:"| SEEN FROM Left @@ Comma @@ Comma @@ Right"`
 }
 
 type remarkGrammar struct {

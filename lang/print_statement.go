@@ -178,6 +178,10 @@ func (w *printer) draw(s *Draw) {
 		w.put(" WEIGHTED BY ")
 		w.weight(s.Weight)
 	}
+	if len(s.Seen) > 0 {
+		w.put(" SEEN FROM ")
+		w.values(s.Seen)
+	}
 	if s.To != nil {
 		w.put(" TO ")
 		w.text(s.To)

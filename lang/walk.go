@@ -116,6 +116,7 @@ func (w walker) statement(s Statement) {
 		w.name(&s.Along)
 		w.names(s.Showing)
 		child(w, s.Weight)
+		w.exprs(s.Seen...)
 		child(w, s.To)
 	default:
 		w.shortStatement(s)

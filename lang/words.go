@@ -125,6 +125,7 @@ const (
 	kLimits
 	kAlong
 	kShowing
+	kSeen
 	kId
 	kPosition
 	kGeographic
@@ -304,6 +305,7 @@ var wordText = [...]string{
 	kLimits:      "LIMITS",
 	kAlong:       "ALONG",
 	kShowing:     "SHOWING",
+	kSeen:        "SEEN",
 	kId:          "ID",
 	kPosition:    "POSITION",
 	kGeographic:  "GEOGRAPHIC",

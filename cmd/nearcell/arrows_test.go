@@ -62,6 +62,7 @@ var arrows = map[string][]string{
 		"engine/relation", "lang", "voronoi/..."},
 	"engine/present":      {"catalog/column"},
 	"engine/vtu":          {"catalog/column", "voronoi"},
+	"engine/view":         {"engine/draw"},
 	"engine/report":       {"catalog/column", "engine/present"},
 	"engine/browser":      {},
 	"engine/draw":         {},

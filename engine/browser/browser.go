@@ -157,6 +157,9 @@ func (p *Page) event(m message) {
 			fault = "request: " + e.Request.URL
 		}
 	case "Log.entryAdded":
+		if strings.Contains(e.Entry.Text, "GL Driver Message (OpenGL, Performance") {
+			break // taking a picture waits for the graphics: that is ours, not the page's
+		}
 		if e.Entry.Level == "error" || e.Entry.Level == "warning" {
 			fault = e.Entry.Level + ": " + e.Entry.Text
 		}

@@ -154,8 +154,13 @@ func disc(at Point, r float64) []Point {
 // legend draws the scale with its limits, and a swatch for each mark that is used.
 func (x *Section) legend(s *Scene, y float64, scale *Scale) float64 {
 	left, wide, high := float64(margin+axisLeft), 360.0, 14.0
-	top := y + 30
-	s.text("legend", Point{left, y + 6}, textSize, Start, fitted(named(x.Value, x.Unit)+x.method(), s.Width-margin-left, textSize, false))
+	end := x.strip(s, named(x.Value, x.Unit)+x.method(), left, y, wide, y+30, high, scale)
+	return x.swatches(s, left+wide+26, y+2, end)
+}
+
+// strip draws the scale itself, and gives where it ends.
+func (x *Section) strip(s *Scene, title string, left, y, wide, top, high float64, scale *Scale) float64 {
+	s.text("legend", Point{left, y + 6}, textSize, Start, fitted(title, s.Width-margin-left, textSize, false))
 	const steps = 60
 	for i := range steps {
 		from, to := left+wide*float64(i)/steps, left+wide*float64(i+1)/steps
@@ -171,7 +176,7 @@ func (x *Section) legend(s *Scene, y float64, scale *Scale) float64 {
 		s.text("number", Point{at, top + high + 15}, smallSize, Middle, tickText(t, by))
 	}
 	x.limitMarks(s, left, wide, top, high, scale)
-	return x.swatches(s, left+wide+26, y+2, top+high+30)
+	return top + high + 30
 }
 
 // swatch explains one mark, and gives where the next one stands.

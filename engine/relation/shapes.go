@@ -14,13 +14,24 @@ import (
 const ShapeColumn = "polyhedra of the cell \x00"
 
 // Shapes are the cells of the rows that CELLS has given, as polyhedra.
-type Shapes struct{ cells [][]voronoi.Piece }
+type Shapes struct {
+	cells  [][]voronoi.Piece
+	places []ShapePlace
+}
+
+// ShapePlace is the place of a cell's site: in one zone (-1: there are none) the number
+// that voronoi.PieceFace.Other has for it.
+type ShapePlace struct{ Zone, Site int32 }
 
 // At are the convex pieces of the cell with this value of ShapeColumn.
 func (s *Shapes) At(i int64) []voronoi.Piece { return s.cells[i] }
 
-func (s *Shapes) add(pieces []voronoi.Piece) int64 {
-	s.cells = append(s.cells, pieces)
+// Place is the place of the site of the cell with this value of ShapeColumn. Without FOR
+// EACH, rows with one place share a cell.
+func (s *Shapes) Place(i int64) ShapePlace { return s.places[i] }
+
+func (s *Shapes) add(pieces []voronoi.Piece, at ShapePlace) int64 {
+	s.cells, s.places = append(s.cells, pieces), append(s.places, at)
 	return int64(len(s.cells)) - 1
 }
 
@@ -57,6 +68,6 @@ func (c *cellRows) shape(ctx context.Context, h *diagram.Handle, list []int32) e
 // fillShapes writes the column for the rows ks of a part.
 func (c *cellRows) fillShapes(v *column.Vector, at int, p *Part, ks []int32) {
 	for j, k := range ks {
-		v.I[at+j] = c.b.Shapes.add(c.pieces[p.Site[k]])
+		v.I[at+j] = c.b.Shapes.add(c.pieces[p.Site[k]], ShapePlace{p.Zone, p.Site[k]})
 	}
 }

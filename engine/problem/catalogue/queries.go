@@ -5,7 +5,7 @@ var ofQueries = []Entry{
 	{
 		Code:    "no-picture",
 		Meaning: "There is no picture of that, or the terminal has none.",
-		WayOut:  "DRAW makes pictures of SECTION, COURSE, HISTOGRAM and PROFILE; SHOW draws SECTION in the terminal.",
+		WayOut:  "DRAW makes pictures of SECTION, CELLS, COURSE, HISTOGRAM and PROFILE; SHOW draws SECTION in the terminal.",
 		Example: "DRAW HULL OF hall TO 'hull.svg';",
 	},
 	{
@@ -13,6 +13,18 @@ var ofQueries = []Entry{
 		Meaning: "The query of a picture gives no row with a value: there is nothing to draw.",
 		WayOut:  "Run the query alone to see why it is empty.",
 		Example: "DRAW HISTOGRAM OF (SELECT temp FROM hall WHERE temp > 99) SHOWING temp TO 'none.svg';",
+	},
+	{
+		Code:    "direction",
+		Meaning: "SEEN FROM gives a direction of length zero.",
+		WayOut:  "SEEN FROM (x, y, z) points from the cells to whoever looks: (0, 0, 1) is from above, (-1, -2, 1.5) from the front left and above.",
+		Example: "DRAW CELLS OF hall SHADED BY temp SEEN FROM (0, 0, 0) TO 'hall.svg';",
+	},
+	{
+		Code:    "too-many-cells",
+		Meaning: "A picture of cells would have more than 100 000 of them, which no browser turns smoothly.",
+		WayOut:  "Draw a part: CELLS OF (SELECT … WHERE …), or WITHIN a smaller solid. SAVE … TO 'cells.vtu' takes them all.",
+		Unshown: "it takes more than 100 000 sites",
 	},
 	{
 		Code:    "limits",
@@ -144,6 +156,6 @@ var ofQueries = []Entry{
 		Code:    "not-yet",
 		Meaning: "The language has this, and this version of the program does not. It is refused by name, never passed over.",
 		WayOut:  "HELP marks what is not there yet; where there is another way, the message names it.",
-		Example: "DRAW CELLS OF hall SHADED BY temp TO 'hall.html';",
+		Example: "SELECT * FROM CELLS OF hall STRETCHED (1, 1, 5) DISTANCES (1, 2);",
 	},
 }
