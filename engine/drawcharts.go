@@ -90,7 +90,7 @@ func (s *Session) coursePicture(ctx context.Context, st *statement, t *lang.Draw
 		}
 		c.Lines = append(c.Lines, l)
 	}
-	if len(limits) > 0 && len(t.Showing) > 1 {
+	if len(limits) > 0 && slices.ContainsFunc(c.Lines, func(l draw.Line) bool { return l.Unit != c.Lines[0].Unit }) {
 		s.noted(st, &c.Notes, "LIMITS are those of %s, and of the others in its unit", rows.Schema[1].Name)
 	}
 	return c, nil

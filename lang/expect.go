@@ -49,6 +49,27 @@ func expectation(toks []lexer.Token, i int) (what string, words []string) {
 	return what, strings.FieldsFunc(what, func(r rune) bool { return r < 'A' || r > 'Z' })
 }
 
+// drawOptionBefore names the first option of DRAW or SHOW before the token at hand.
+func (p *parser) drawOptionBefore() string {
+	if first := p.toks[0].Type; first != kDraw && first != kShow {
+		return ""
+	}
+	depth := 0
+	for _, t := range p.toks[:p.i] {
+		switch t.Type {
+		case tokLeft:
+			depth++
+		case tokRight:
+			depth--
+		case kShaded, kLimits, kAlong, kShowing, kWeighted:
+			if depth == 0 {
+				return wordText[t.Type]
+			}
+		}
+	}
+	return ""
+}
+
 // createExpectation goes by the kind of thing that is made.
 func createExpectation(toks []lexer.Token, i int) string {
 	kind := 1

@@ -221,6 +221,9 @@ func ourFault(toks []lexer.Token, err error) *Error {
 	if p.is(tokRight) && what == statementEnd {
 		fault.Message = "this ) closes no ("
 	}
+	if before := p.drawOptionBefore(); before != "" && isClauseWord(p.kind()) {
+		fault.Message = p.clauseWords() + " is a clause of the relation and stands directly behind it, before " + before
+	}
 	if fault.Hint == "" {
 		fault.Hint = nearHint(p.tok(), words)
 	}

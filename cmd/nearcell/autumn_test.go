@@ -52,6 +52,13 @@ func TestAutumn(t *testing.T) {
 		if strings.Contains(words.String(), "warning:") {
 			t.Errorf("there is a warning: %s", words.String())
 		}
+		for _, name := range []string{"floor", "door", "height", "week", "air"} {
+			picture, err := os.ReadFile(filepath.Join(folder, "autumn-"+name+".svg"))
+			if err != nil {
+				t.Error(err)
+			}
+			out.Write(picture)
+		}
 		if first == "" {
 			first = out.String()
 		} else if first != out.String() {

@@ -360,7 +360,7 @@ func (x *Section) grounds(s *Scene, p *Panel, v view, marks map[Hatch][]Polygon)
 func (s *Scene) hatchings(marks map[Hatch][]Polygon) {
 	for h := Rising; h <= Upright; h++ {
 		if lines := hatched(h, marks[h]); len(lines) > 0 {
-			s.add(Shape{Class: hatchNames[h] + "-rim", Paths: lines, Stroke: paper, Line: 1.9})
+			s.add(Shape{Class: hatchNames[h] + "-rim", Paths: lines, Stroke: paper, Line: 1.6})
 			s.add(Shape{Class: hatchNames[h], Paths: lines, Stroke: ink, Line: 0.8})
 		}
 	}
