@@ -6,6 +6,7 @@ import (
 	"slices"
 	"sync"
 
+	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/index"
 	"nearcell/voronoi/polyhedron"
 	"nearcell/voronoi/solid"
@@ -46,6 +47,8 @@ type Diagram struct {
 	memory   int64
 	building sync.Mutex
 	whole    *dual // guarded by building; nil: not built
+	fresh    bool  // it was built, not recalled
+	recall   func(sites []float64, threads int) *delaunay.T
 
 	probe   sync.Once
 	offered float64 // set by probe: sites held against a cell, on average

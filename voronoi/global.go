@@ -19,16 +19,7 @@ func (d *Diagram) dual(ctx context.Context) (*dual, error) {
 	if d.whole != nil {
 		return d.whole, nil
 	}
-	n := d.tree.Len()
-	flat := make([]float64, 0, 3*n)
-	for _, p := range d.tree.Points() {
-		flat = append(flat, p.X, p.Y, p.Z)
-	}
-	options := delaunay.Options{Threads: d.threads, Progress: d.buildProgress()}
-	if d.memory > 0 {
-		options.Memory = max(1, d.memory-int64(n)*bytesPerVertex)
-	}
-	t, err := delaunay.BuildFlat(ctx, flat, options)
+	t, err := d.tetrahedra(ctx)
 	if err != nil {
 		return nil, err
 	}
@@ -36,12 +27,29 @@ func (d *Diagram) dual(ctx context.Context) (*dual, error) {
 	if d.isBox && !d.stretched {
 		box = &enclosure{d.lo, d.hi, d.origin, d.labels}
 	}
-	g, err := newDual(ctx, t, d.tree.Point, n, d.threads, box)
+	g, err := newDual(ctx, t, d.tree.Point, d.tree.Len(), d.threads, box)
 	if err != nil {
 		return nil, err
 	}
 	d.whole = g
 	return g, nil
+}
+
+// tetrahedra recalls the tetrahedralisation, or builds it.
+func (d *Diagram) tetrahedra(ctx context.Context) (*delaunay.T, error) {
+	n, sites := d.tree.Len(), flat(d.tree.Points())
+	if d.recall != nil {
+		if t := d.recall(sites, d.threads); t != nil {
+			d.fresh = false
+			return t, nil
+		}
+	}
+	options := delaunay.Options{Threads: d.threads, Progress: d.buildProgress()}
+	if d.memory > 0 {
+		options.Memory = max(1, d.memory-int64(n)*bytesPerVertex)
+	}
+	d.fresh = true
+	return delaunay.BuildFlat(ctx, sites, options)
 }
 
 // buildProgress tells of the build as cells that are not done yet.

@@ -6,6 +6,7 @@ import (
 	"runtime"
 	"unsafe"
 
+	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/index"
 )
 
@@ -35,6 +36,9 @@ type Stored struct {
 }
 
 const storedFacts = 18
+
+// Distinct is how many places its sites inside have.
+func (s *Stored) Distinct() int { return len(s.Site) }
 
 // Store is the diagram as arrays. They are shared with it and not to be changed.
 func (d *Diagram) Store() *Stored {
@@ -93,6 +97,23 @@ func Restore(s *Stored, o Options) (*Diagram, error) {
 		d.places, d.plainOf = vectors(s.Places), s.PlainOf
 	}
 	return d, nil
+}
+
+// Recall names who may know the tetrahedralisation from an earlier run: recall is asked
+// before it would be built, and makes it of what StoreTetrahedra gave of a diagram of the
+// same key, with delaunay.Restore; nil: it is to be built. Recall is to be called before
+// the diagram is used.
+func (d *Diagram) Recall(recall func(sites []float64, threads int) *delaunay.T) { d.recall = recall }
+
+// StoreTetrahedra is the tetrahedralisation as arrays, which are shared with it; nil
+// where none was built, or where it was recalled.
+func (d *Diagram) StoreTetrahedra() *delaunay.Stored {
+	d.building.Lock()
+	defer d.building.Unlock()
+	if d.whole == nil || !d.fresh {
+		return nil
+	}
+	return d.whole.t.Store()
 }
 
 // fits tells whether the arrays have lengths and numbers that go together.

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"strings"
 	"unsafe"
 
 	"github.com/apache/arrow-go/v18/arrow"
@@ -127,18 +128,15 @@ func texts(a arrow.ArrayData, t arrow.DataType) (*column.Dict, error) {
 	d := &column.Dict{Texts: make([]string, a.Len())}
 	total := 0
 	for i := range d.Texts {
-		total += len(at(i))
+		d.Texts[i] = at(i) // a view, for now
+		total += len(d.Texts[i])
 	}
 	// one allocation for all texts; each is a piece of it
-	all := make([]byte, 0, total)
-	for i := range d.Texts {
-		all = append(all, at(i)...)
-	}
-	whole := string(all)
-	for i, from := 0, 0; i < len(d.Texts); i++ {
-		n := len(at(i))
-		d.Texts[i] = whole[from : from+n]
-		from += n
+	var all strings.Builder
+	all.Grow(total)
+	for i, text := range d.Texts {
+		all.WriteString(text)
+		d.Texts[i] = all.String()[all.Len()-len(text):]
 	}
 	return d, nil
 }

@@ -3,4 +3,7 @@ package main
 
 import "os"
 
-func main() { os.Exit(execute(os.Args[1:], os.Stdin, os.Stdout, os.Stderr)) }
+func main() {
+	collectLater()
+	os.Exit(execute(os.Args[1:], os.Stdin, os.Stdout, os.Stderr))
+}

@@ -18,7 +18,7 @@ func (h *Handle) Field(ctx context.Context, tolerance float64, o field.Options, 
 	if err == nil {
 		err = f.Prepare(ctx, places)
 	}
-	h.store.grow(h, h.keptMore())
+	h.grown(ctx)
 	return f, err
 }
 

@@ -110,6 +110,7 @@ func (h *Handle) Hidden(ctx context.Context, sites []int32, progress func(done, 
 		return nil, err
 	}
 	defer h.unlock()
+	defer h.grown(ctx)
 	return h.d.Hidden(ctx, sites)
 }
 
@@ -124,6 +125,7 @@ func (h *Handle) Contacts(ctx context.Context, sites []int32, progress func(done
 			h.progress.Store(&progress)
 			defer h.progress.Store(nil)
 		}
+		defer h.book(ctx)
 		return h.d.Contacts(ctx, sites, yield)
 	}
 	lists, err := h.lists(ctx, sites, progress)
@@ -204,7 +206,8 @@ func (h *Handle) lists(ctx context.Context, sites []int32, progress func(done, t
 			return nil, err
 		}
 	}
-	h.store.grow(h, bytes+h.keptMore())
+	h.store.grow(h, bytes)
+	h.grown(ctx)
 	return h.contacts, nil
 }
 
@@ -215,5 +218,6 @@ func (h *Handle) PiecesOf(ctx context.Context, sites []int32, progress func(done
 		return nil, err
 	}
 	defer h.unlock()
+	defer h.grown(ctx)
 	return h.d.Pieces(ctx, sites)
 }

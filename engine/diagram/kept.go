@@ -257,6 +257,9 @@ func (k *Keeper) keep(ctx context.Context, h *Handle, parts []part) error {
 		if rec, ok := tx.Find(settingsKey); ok {
 			limit = limitOf(rec)
 		}
+		if err := k.makeRoom(tx, h.key, parts, bytes, limit); err != nil {
+			return err
+		}
 		for _, p := range parts {
 			if err := tx.PutArrays(partKey(h.key, p.name), meta, p.arrays); err != nil {
 				return err
@@ -265,6 +268,30 @@ func (k *Keeper) keep(ctx context.Context, h *Handle, parts []part) error {
 		k.shrink(tx, limit, hex.EncodeToString(h.key[:]))
 		return nil
 	})
+}
+
+// makeRoom sees to it that a diagram with its new parts stays within the limit. Its
+// tetrahedralisation is the largest part and goes first: measures save more.
+func (k *Keeper) makeRoom(tx *store.Tx, key Key, parts []part, bytes, limit int64) error {
+	sum := bytes
+	for _, rec := range tx.Records() {
+		if rec.File != nil && strings.HasPrefix(rec.Key, hex.EncodeToString(key[:])+".") &&
+			!slices.ContainsFunc(parts, func(p part) bool { return partKey(key, p.name) == rec.Key }) {
+			sum += rec.File.Size
+		}
+	}
+	if sum <= limit {
+		return nil
+	}
+	rec, ok := tx.Find(partKey(key, tetrahedraPart))
+	if !ok || rec.File == nil || slices.ContainsFunc(parts, func(p part) bool { return p.name == tetrahedraPart }) {
+		return &tooLargeError{sum, limit}
+	}
+	tx.Delete(rec.Key)
+	if sum -= rec.File.Size; sum > limit {
+		return &tooLargeError{sum, limit}
+	}
+	return nil
 }
 
 // mayNotWrite tells of an error that the folder may be read and not written.
@@ -294,6 +321,13 @@ func stored(a store.Arrays) *voronoi.Stored {
 		Groups: i32("groups"), Places: f64("places"), Plain: f64("plain"),
 		PlainOrder: i32("plain_order"), PlainOf: i32("plain_of"),
 	}
+}
+
+// distinct tells whether a kept diagram has so many sites, each inside and alone at its
+// place. Errors are told by whoever uses it.
+func (k *Keeper) distinct(key Key, sites int) bool {
+	arrays, err := k.find(key, indexPart)
+	return err == nil && arrays != nil && stored(arrays).Distinct() == sites
 }
 
 // diagram is the kept diagram of a key; nil where there is none.

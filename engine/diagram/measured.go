@@ -59,10 +59,11 @@ func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int
 		}
 		set.strays = set.strays || went != set.whole
 		h.store.count(len(got.Sites), 0)
-		h.store.grow(h, set.merge(want, got, h.d.Len())+h.keptMore())
+		h.store.grow(h, set.merge(want, got, h.d.Len()))
 		if all || sites == nil {
 			h.retain(ctx, set, want)
 		}
+		h.grown(ctx)
 	} else if !h.indexed && set.kept != 0 {
 		h.retain(ctx, set, 0)
 	}

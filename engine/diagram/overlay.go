@@ -15,16 +15,16 @@ func (h *Handle) Overlay(ctx context.Context, other *Handle, sites []int32, o ov
 		defer h.progress.Store(nil)
 	}
 	found, err := overlay.Pieces(ctx, h.d, other.d, sites, o)
-	h.book()
+	h.book(ctx)
 	if other != h {
-		other.book()
+		other.book(ctx)
 	}
 	return found, err
 }
 
 // book counts what the diagram keeps by now.
-func (h *Handle) book() {
+func (h *Handle) book(ctx context.Context) {
 	h.busy <- struct{}{}
 	defer h.unlock()
-	h.store.grow(h, h.keptMore())
+	h.grown(ctx)
 }

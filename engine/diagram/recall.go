@@ -58,6 +58,16 @@ func (s *Store) recalled(h *Handle, sites int, o voronoi.Options) *voronoi.Diagr
 	return d
 }
 
+// KnownDistinct tells whether an earlier run has kept a diagram of exactly these sites
+// and found each inside and at a place of its own. It is a quick look before repeated
+// places are searched for: false says nothing, and below KeptFrom sites it always is.
+func (s *Store) KnownDistinct(sites []voronoi.Vec, o voronoi.Options) bool {
+	if !s.keeps(len(sites)) {
+		return false
+	}
+	return s.keeper.distinct(KeyOf(sites, o), len(sites))
+}
+
 // Name says what the diagram is made for: a campaign, and the solid that closes it.
 func (h *Handle) Name(of, within string) {
 	h.store.mu.Lock()

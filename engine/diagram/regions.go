@@ -79,7 +79,8 @@ func (h *Handle) MeasureIn(ctx context.Context, want voronoi.Measures, sites []i
 	}
 	r.in = in
 	h.store.count(len(missing), 0)
-	h.store.grow(h, bytes+h.keptMore())
+	h.store.grow(h, bytes)
+	h.grown(ctx)
 	return in, nil
 }
 
@@ -108,6 +109,7 @@ func (h *Handle) ContactsIn(ctx context.Context, sites []int32, regions Regions,
 		h.progress.Store(&progress)
 		defer h.progress.Store(nil)
 	}
+	defer h.book(ctx)
 	return h.d.ContactsIn(ctx, sites, regions, yield)
 }
 

@@ -65,14 +65,15 @@ type Store struct {
 
 // Stats count what a store did.
 type Stats struct {
-	Diagrams int   // held now
-	Bytes    int64 // held now, estimated
-	Built    int   // diagrams made
-	Found    int   // asked for and there already
-	Cells    int64 // cells computed for measures
-	Contacts int64 // cells computed for contacts
-	Dropped  int   // diagrams let go for want of memory
-	Recalled int   // diagrams among those made that were kept by an earlier run
+	Diagrams   int   // held now
+	Bytes      int64 // held now, estimated
+	Built      int   // diagrams made
+	Found      int   // asked for and there already
+	Cells      int64 // cells computed for measures
+	Contacts   int64 // cells computed for contacts
+	Dropped    int   // diagrams let go for want of memory
+	Recalled   int   // diagrams among those made that were kept by an earlier run
+	Tetrahedra int   // tetrahedralisations that were kept by an earlier run
 }
 
 // NewStore is an empty store that holds about so many bytes; 0: no limit.
@@ -137,11 +138,16 @@ func (s *Store) build(h *Handle, sites []voronoi.Vec, o voronoi.Options) {
 		h.finish(d, err)
 		s.settle(h)
 	}()
-	if d = s.recalled(h, len(sites), o); d != nil {
-		err = nil
-		return
+	d = s.recalled(h, len(sites), o)
+	if d == nil {
+		d, err = voronoi.New(sites, o)
 	}
-	d, err = voronoi.New(sites, o)
+	if d != nil {
+		err = nil
+		if s.keeps(len(sites)) {
+			d.Recall(h.recallTetrahedra)
+		}
+	}
 }
 
 // enter finds the entry of a key or makes it; then the caller builds.

@@ -72,6 +72,9 @@ func realKey(x float64) uint64 {
 // ranks gives each code the position of its text in code point order (which for
 // UTF-8 is the order of the bytes); equal texts have equal ranks.
 func ranks(d *column.Dict) []uint32 {
+	if rank := ascending(d.Texts); rank != nil {
+		return rank
+	}
 	type entry struct {
 		prefix uint64 // the first eight bytes decide most comparisons
 		code   uint32
@@ -95,6 +98,21 @@ func ranks(d *column.Dict) []uint32 {
 		} else {
 			rank[e.code] = uint32(i)
 		}
+	}
+	return rank
+}
+
+// ascending gives texts that stand in their order already, as identifiers mostly do,
+// their numbers; nil where they do not.
+func ascending(texts []string) []uint32 {
+	for i := 1; i < len(texts); i++ {
+		if texts[i-1] >= texts[i] {
+			return nil
+		}
+	}
+	rank := make([]uint32, len(texts))
+	for i := range rank {
+		rank[i] = uint32(i)
 	}
 	return rank
 }

@@ -2,7 +2,9 @@ package relation
 
 import (
 	"math"
+	"runtime"
 	"slices"
+	"sync"
 
 	"gonum.org/v1/gonum/spatial/r3"
 
@@ -62,7 +64,7 @@ func arrange(b *Bound, env *Env, input *column.Table, order *order, said *findin
 		return nil, err
 	}
 	for _, p := range parts {
-		place(b, input, p)
+		place(b, env, input, p)
 	}
 	return parts, duplicates(b, env, input, order, parts)
 }
@@ -76,6 +78,29 @@ func position(b *Bound, input *column.Table, row int32) r3.Vec {
 	}
 }
 
+// placesOf are the positions of rows.
+func placesOf(b *Bound, env *Env, input *column.Table, rows []int32) []r3.Vec {
+	at := make([]r3.Vec, len(rows))
+	threads := env.Threads
+	if threads <= 0 {
+		threads = runtime.GOMAXPROCS(0)
+	}
+	if len(rows) < 1<<14 {
+		threads = 1
+	}
+	var all sync.WaitGroup
+	for i := range threads {
+		lo, hi := i*len(rows)/threads, (i+1)*len(rows)/threads
+		all.Go(func() {
+			for k := lo; k < hi; k++ {
+				at[k] = position(b, input, rows[k])
+			}
+		})
+	}
+	all.Wait()
+	return at
+}
+
 func coordinate(v *column.Vector, row int32) float64 {
 	if v.Type == column.Integer {
 		return float64(v.I[row])
@@ -84,18 +109,30 @@ func coordinate(v *column.Vector, row int32) float64 {
 }
 
 // place finds the distinct places of a part's rows.
-func place(b *Bound, input *column.Table, p *Part) {
+func place(b *Bound, env *Env, input *column.Table, p *Part) {
 	p.Site = make([]int32, len(p.Rows))
-	p.Sites = make([]r3.Vec, 0, len(p.Rows))
-	seen := newPlaces(len(p.Rows))
-	for k, row := range p.Rows {
-		at := position(b, input, row)
-		site, isNew := seen.index(at, p.Sites)
-		if isNew {
-			p.Sites = append(p.Sites, at)
+	at := placesOf(b, env, input, p.Rows)
+	if p.Sites = at; env.Diagrams.KnownDistinct(at, optionsOf(b, env, p)) {
+		for k := range p.Site {
+			p.Site[k] = int32(k)
 		}
-		p.Site[k] = site
+		return
 	}
+	p.Sites = at[:0] // a place is not behind its first row
+	seen := newPlaces(len(p.Rows))
+	var near [64]r3.Vec
+	for from := 0; from < len(at); from += len(near) {
+		n := copy(near[:], at[from:])
+		seen.touch(near[:n])
+		for k := range n {
+			site, isNew := seen.index(near[k], p.Sites)
+			if isNew {
+				p.Sites = append(p.Sites, near[k])
+			}
+			p.Site[from+k] = site
+		}
+	}
+	p.Sites = slices.Clip(p.Sites)
 	if len(p.Sites) == len(p.Rows) {
 		return
 	}
@@ -114,6 +151,7 @@ type places struct {
 	slots []int32 // site + 1
 	mask  uint64
 	n     int32
+	sum   int32 // of what touch has read; it means nothing
 }
 
 func newPlaces(n int) *places {
@@ -127,10 +165,7 @@ func newPlaces(n int) *places {
 // index is the number of the place, and whether it is new (then the caller
 // appends it to sites).
 func (t *places) index(at r3.Vec, sites []r3.Vec) (int32, bool) {
-	h := math.Float64bits(at.X)
-	h = mix(h) ^ math.Float64bits(at.Y)
-	h = mix(h) ^ math.Float64bits(at.Z)
-	for i := mix(h) & t.mask; ; i = (i + 1) & t.mask {
+	for i := hashOf(at) & t.mask; ; i = (i + 1) & t.mask {
 		switch s := t.slots[i]; {
 		case s == 0:
 			t.n++
@@ -140,6 +175,21 @@ func (t *places) index(at r3.Vec, sites []r3.Vec) (int32, bool) {
 			return s - 1, false
 		}
 	}
+}
+
+// touch reads the slots that some places will look at, so that the memory answers all of
+// them at once and not one after the other.
+func (t *places) touch(near []r3.Vec) {
+	for _, at := range near {
+		t.sum += t.slots[hashOf(at)&t.mask]
+	}
+}
+
+func hashOf(at r3.Vec) uint64 {
+	h := math.Float64bits(at.X)
+	h = mix(h) ^ math.Float64bits(at.Y)
+	h = mix(h) ^ math.Float64bits(at.Z)
+	return mix(h)
 }
 
 // mix spreads the bits of a word (the finaliser of a multiplicative hash).

@@ -62,9 +62,11 @@ func (s *sites) nobody() error {
 }
 
 // options are those of the diagram of a part: every diagram is made with them.
-func (s *sites) options(p *Part) voronoi.Options {
-	return voronoi.Options{Solid: p.Solid, Tolerance: s.b.Clauses.Tolerance, Threads: s.env.Threads, Memory: s.env.Memory,
-		Stretch: s.b.Clauses.Stretch}
+func (s *sites) options(p *Part) voronoi.Options { return optionsOf(s.b, s.env, p) }
+
+func optionsOf(b *Bound, env *Env, p *Part) voronoi.Options {
+	return voronoi.Options{Solid: p.Solid, Tolerance: b.Clauses.Tolerance, Threads: env.Threads, Memory: env.Memory,
+		Stretch: b.Clauses.Stretch}
 }
 
 // open gets the diagram of a part and takes note of what its facts say.

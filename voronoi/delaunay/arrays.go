@@ -56,6 +56,7 @@ func (t *T) Arrays() *Arrays {
 // Renumber gives the tetrahedra the numbers and corners the order that they have in
 // Arrays, which depend on the sites alone. It takes as much memory again for a while.
 func (t *T) Renumber() {
+	t.own()
 	list, number := t.canonicalOrder()
 	tets := make([]tet, len(list))
 	for i, old := range list {

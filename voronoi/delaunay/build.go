@@ -17,6 +17,7 @@ type T struct {
 	real      int     // tets[:real] are real,
 	ghosts    int     // the rest ghosts
 	ownSites  bool    // sites is no longer the caller's slice
+	borrowed  bool    // the arrays are those of a Stored and not to be written to
 	edit      *worker // of Insert and Remove
 }
 

@@ -22,6 +22,7 @@ func (t *T) Insert(p r3.Vec) (site int, err error) {
 	if site >= mostSites {
 		return -1, ErrTooMany
 	}
+	t.own()
 	if !t.ownSites { // the caller's slice may have room behind its end
 		t.sites, t.ownSites = t.sites[:3*site:3*site], true
 	}
@@ -202,6 +203,7 @@ func (t *T) Remove(site int) error {
 	if site < 0 || site >= len(t.place) || t.place[site] == 0 {
 		return fmt.Errorf("delaunay: there is no site %d to remove", site)
 	}
+	t.own()
 	p := t.place[site]
 	if t.removeRepeat(site, p) {
 		return nil

@@ -1,6 +1,9 @@
 package index
 
-import "errors"
+import (
+	"errors"
+	"sync"
+)
 
 // Restore is the tree that New made of some points, of its Points and the Original of
 // each, which it keeps and which must not be changed. It costs one pass over them. What
@@ -42,8 +45,15 @@ func (t *Tree) box(node, depth, from, to int) {
 		return
 	}
 	mid := from + (to-from+1)/2
-	t.box(2*node+1, depth+1, from, mid)
-	t.box(2*node+2, depth+1, mid, to)
+	if to-from >= 1<<17 {
+		var left sync.WaitGroup
+		left.Go(func() { t.box(2*node+1, depth+1, from, mid) })
+		t.box(2*node+2, depth+1, mid, to)
+		left.Wait()
+	} else {
+		t.box(2*node+1, depth+1, from, mid)
+		t.box(2*node+2, depth+1, mid, to)
+	}
 	a, b := &t.boxes[2*node+1], &t.boxes[2*node+2]
 	t.boxes[node] = Box{
 		Lo:     Vec{X: min(a.Lo.X, b.Lo.X), Y: min(a.Lo.Y, b.Lo.Y), Z: min(a.Lo.Z, b.Lo.Z)},
