@@ -11,6 +11,7 @@ import (
 	"nearcell/catalog/reader"
 	"nearcell/catalog/reader/timeform"
 	"nearcell/engine/problem"
+	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
@@ -38,6 +39,13 @@ func (c *clauses) importProblem(err error, at problem.Place, file string) error 
 // importProblem words the faults of files: what is wrong at which line and
 // column, the line itself with the place marked, and the way out.
 func importProblem(err error, at problem.Place, file string) error {
+	var memory *reader.MemoryError
+	if errors.As(err, &memory) {
+		return tooLarge(at, file, memory.Need, memory.Limit).Because(err)
+	}
+	if errors.Is(err, reader.ErrChanged) {
+		return changedMeanwhile(at, file).Because(err)
+	}
 	var faults *reader.Faults
 	if !errors.As(err, &faults) || len(faults.List) == 0 {
 		return err
@@ -69,11 +77,23 @@ func importProblem(err error, at problem.Place, file string) error {
 		}
 	}
 	p.Detail = strings.TrimRight(detail.String(), "\n")
-	if count >= 3 && allFieldCounts(faults.List) {
+	if (count >= 3 || first.Expected == 1) && allFieldCounts(faults.List) {
 		p.Hint = fmt.Sprintf("if the heading stands in another line, HEADING AT LINE says in which: DESCRIBE FILE %s guesses it; else REFUSED TO 'refused.csv' sets such lines aside",
 			lang.QuoteText(first.File))
 	}
 	return p
+}
+
+// tooLarge is the refusal of a file that makes a larger table than memory may hold.
+func tooLarge(at problem.Place, file string, need, limit int64) *problem.Problem {
+	return problem.New("memory", at, "%s as a table takes %s, more than the %s of --memory", file, relation.SizeText(need), relation.SizeText(limit)).
+		WithHint("give more with --memory, or import a part of the file")
+}
+
+// changedMeanwhile is the refusal of a file that was not one thing while it was read.
+func changedMeanwhile(at problem.Place, file string) *problem.Problem {
+	return problem.New("file-changed", at, "'%s' was not imported: it was changed while it was read", file).
+		WithHint("import it when nobody writes to it any more, or import a copy")
 }
 
 // allFieldCounts reports whether lines have other numbers of fields than the
@@ -167,8 +187,9 @@ func faultLine(f reader.Fault) string {
 	if f.Source == "" || f.Column == 0 {
 		return head + "\n"
 	}
-	line := printable(f.Source)
-	start := byteOffset(line, f.Column-1)
+	line, at := window(f.Source, f.Column-1)
+	line = printable(line)
+	start := byteOffset(line, at)
 	end := start + len(printable(f.Text))
 	if end > len(line) || f.Kind == reader.FieldCount {
 		end = len(line)
@@ -176,6 +197,23 @@ func faultLine(f reader.Fault) string {
 	marked := lang.Caret("", line, lang.Span{Start: start, End: end}, "")
 	_, below, _ := strings.Cut(marked, "\n")
 	return head + "\n" + strings.TrimRight(below, "\n") + "\n"
+}
+
+// window cuts a long line of a file to what stands around its character number n (from
+// 0), and says which character that is then.
+func window(line string, n int) (part string, at int) {
+	const before, most = 60, 200
+	if utf8.RuneCountInString(line) <= most {
+		return line, n
+	}
+	at = n
+	if n > before {
+		line, at = "…"+line[byteOffset(line, n-before):], before+1
+	}
+	if end := byteOffset(line, most); end < len(line) {
+		line = line[:end] + "…"
+	}
+	return line, at
 }
 
 // printable writes a line of a file with as many characters and nothing that a

@@ -111,7 +111,7 @@ func partName(text string) string {
 	switch text {
 	case "":
 		return "a part of it"
-	case "header", "footer", "points", "rows", "archive":
+	case "header", "footer", "points", "rows", "archive", "heading":
 		return "its " + text
 	case "packed data", "records before the points", "records behind the points":
 		return "its " + text

@@ -13,9 +13,9 @@ import (
 	"nearcell/catalog"
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
+	"nearcell/catalog/reader/packed"
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
-	"nearcell/engine/relation"
 	"nearcell/lang"
 )
 
@@ -34,7 +34,7 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 		named = t.Files
 	}
 	o := c.file
-	o.Threads = s.o.Threads
+	o.Threads, o.Memory = s.o.Threads, s.o.Memory
 	if s.o.Progress != nil {
 		o.Progress = func(done, total int64) { s.o.Progress(int(done), int(total)) }
 	}
@@ -52,6 +52,11 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 	}
 	o.Censored = c.censoredFields()
 	result, err := form.read.ReadFiles(ctx, sources, o)
+	for _, source := range sources {
+		if changed := source.Close(); changed != nil && (err == nil || errors.Is(err, reader.ErrChanged)) {
+			return nil, changedMeanwhile(st.at(named), source.Name)
+		}
+	}
 	if err != nil {
 		return nil, c.importProblem(err, st.at(named), named.Value)
 	}
@@ -72,8 +77,7 @@ func (s *Session) importFile(ctx context.Context, st *statement, t *lang.CreateD
 	}
 	table := result.Table
 	if need := column.SizeOf(table); s.o.Memory > 0 && need > s.o.Memory {
-		return nil, problem.New("memory", st.at(named), "%s as a table takes %s, more than the %s of --memory", named.Value, relation.SizeText(need), relation.SizeText(s.o.Memory)).
-			WithHint("give more with --memory, or import a part of the file")
+		return nil, tooLarge(st.at(named), named.Value, need, s.o.Memory)
 	}
 	if t.Files != nil {
 		if table, err = withSourceFile(table, result.Files, st.at(t.Files)); err != nil {
@@ -107,13 +111,17 @@ func openSources(st *statement, t *lang.CreateData) ([]*reader.Source, *format, 
 	var form *format
 	for _, name := range names {
 		at := &lang.Text{At: named.At, Value: name}
-		source, err := openSource(st, at)
+		next, wrong := formatOf(st.at(named), name)
+		open := reader.Open
+		if _, isPacked := packed.Ending(name); next == delimited && !isPacked {
+			open = reader.Map
+		}
+		source, err := openSourceBy(st, at, open)
 		if err != nil {
 			return nil, nil, err
 		}
-		next, err := formatOf(st.at(named), name)
-		if err != nil {
-			return nil, nil, err
+		if wrong != nil {
+			return nil, nil, wrong
 		}
 		if form != nil && next != form {
 			return nil, nil, problem.New("import", st.at(named), "'%s' is %s and '%s' is %s: files that are read as one have one format", names[0], form.name, name, next.name).
@@ -154,6 +162,10 @@ func withSourceFile(table *column.Table, files []reader.FileFacts, at problem.Pl
 
 // openSource reads the bytes of a file that a statement names.
 func openSource(st *statement, file *lang.Text) (*reader.Source, error) {
+	return openSourceBy(st, file, reader.Open)
+}
+
+func openSourceBy(st *statement, file *lang.Text, open func(name, path string) (*reader.Source, error)) (*reader.Source, error) {
 	path := st.path(file.Value)
 	info, err := os.Stat(path)
 	if errors.Is(err, fs.ErrNotExist) {
@@ -170,7 +182,7 @@ func openSource(st *statement, file *lang.Text) (*reader.Source, error) {
 		return nil, problem.New("no-file", st.at(file), "'%s' is a folder", file.Value).
 			WithHint("FROM FILES '%s/*.csv' reads the files in it", strings.TrimRight(file.Value, "/"))
 	}
-	source, err := reader.Open(file.Value, path)
+	source, err := open(file.Value, path)
 	if err != nil {
 		return nil, fileProblem(err, st.at(file), file.Value, "be read")
 	}

@@ -75,6 +75,11 @@ func stayedText(c *reader.StayedText, many bool) string {
 		return "codes such as " + place + " would lose their zeros as numbers"
 	case reader.TooLong:
 		return place + " has more digits than a number keeps"
+	case reader.Thousands:
+		if strings.Count(c.FirstText, ",")+strings.Count(c.FirstText, ".") == 1 && !strings.ContainsAny(c.FirstText, " '\u00a0\u202f\u2009\u2019") {
+			return place + " may be a number with a mark between thousands or with another decimal mark, and neither is guessed: write the file without marks between thousands"
+		}
+		return place + " is a number with marks between thousands, which are not read: write the file without them"
 	case reader.OtherMark:
 		if strings.Contains(c.FirstText, ",") {
 			return place + " is a number with a decimal comma: DECIMAL MARK ',' reads it"

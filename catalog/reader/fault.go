@@ -146,6 +146,16 @@ func (e *OptionError) Error() string {
 	return fmt.Sprintf("reader: the option %s cannot be %q", e.Option, e.Rune)
 }
 
+// MemoryError says that a table takes more than Options.Memory.
+type MemoryError struct {
+	Need, Limit int64 // Need: at least
+	Rows        int
+}
+
+func (e *MemoryError) Error() string {
+	return fmt.Sprintf("reader: %d rows take at least %d bytes, more than %d", e.Rows, e.Need, e.Limit)
+}
+
 // ColumnError says that an option names a column that the file has not.
 type ColumnError struct {
 	Column string

@@ -4,8 +4,6 @@ import (
 	"context"
 	"crypto/sha256"
 	"encoding/hex"
-	"os"
-	"time"
 
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader/timeform"
@@ -23,14 +21,6 @@ type Reader interface {
 	ReadFiles(ctx context.Context, sources []*Source, o Options) (*Result, error)
 }
 
-// Source is a file in memory.
-type Source struct {
-	Name    string // as the user wrote it; faults carry it
-	Data    []byte
-	ModTime time.Time // zero where there is none
-	Stored  *Stored   // where Data was unpacked: the file as it lies on the disk
-}
-
 // Stored is what is known of a file that was unpacked to be read.
 type Stored struct {
 	SHA256 string
@@ -44,19 +34,6 @@ func (s *Source) Size() int64 {
 		return s.Stored.Bytes
 	}
 	return int64(len(s.Data))
-}
-
-// Open reads a file. name is what faults will call it, path where it is.
-func Open(name, path string) (*Source, error) {
-	info, err := os.Stat(path)
-	if err != nil {
-		return nil, err
-	}
-	data, err := os.ReadFile(path)
-	if err != nil {
-		return nil, err
-	}
-	return &Source{Name: name, Data: data, ModTime: info.ModTime()}, nil
 }
 
 // SHA256 is the checksum of the bytes in hexadecimal.
@@ -92,6 +69,7 @@ type Options struct {
 
 	Sheet   string // of a workbook, its name or its number from 1; "": the first that is not hidden
 	Threads int    // 0: all cores
+	Memory  int64  // bytes that the table may take, 0: no limit; beyond it a *MemoryError
 
 	MaxFaults int                     // how many faults are listed; 0: 10. The others are counted.
 	Progress  func(done, total int64) // bytes, may be nil
@@ -234,6 +212,7 @@ const (
 	TooLong                         // whole numbers beyond 64 bits, whose digits a REAL would not keep
 	OtherMark                       // more than half would be numbers with the other decimal mark
 	LooksLikeTime                   // more than half are times by one pattern
+	Thousands                       // more than half would be numbers without the marks between thousands
 )
 
 // UnitsConflict is a column whose heading and whose option disagree.

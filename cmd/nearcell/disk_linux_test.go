@@ -109,7 +109,7 @@ func TestReadOnlyDiagrams(t *testing.T) {
 		_, out, _ := call("--catalog", catalog, "--as", "csv", "ask", "LIST DIAGRAMS;")
 		return out
 	}
-	if !strings.Contains(list(), `,hall,"BOX (0, 0, 0) TO (30, 18, 7)",20000,volume,`) {
+	if !strings.Contains(list(), `,hall,"BOX (0, 0, 0) TO (30, 18, 7)",20000,"tetrahedra, volume",`) {
 		t.Error(list())
 	}
 	if err := unix.Mount("", disk, "", unix.MS_REMOUNT|unix.MS_RDONLY, ""); err != nil {

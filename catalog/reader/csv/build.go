@@ -39,6 +39,9 @@ func (im *importer) build() (*column.Table, error) {
 			rows += c.records
 		}
 	}
+	if need := im.least(rows); im.o.Memory > 0 && need > im.o.Memory {
+		return nil, &reader.MemoryError{Need: need, Limit: im.o.Memory, Rows: rows}
+	}
 	for i := range im.columns {
 		b.columns = append(b.columns, column.NewBuilder(im.types[i], im.columns[i].unit))
 		b.columns[i].Grow(rows)
@@ -57,6 +60,23 @@ func (im *importer) build() (*column.Table, error) {
 		im.o.Progress(im.total, im.total)
 	}
 	return im.finish(b), nil
+}
+
+// least is what so many rows take at least: texts are counted as if there were few.
+func (im *importer) least(rows int) int64 {
+	var bits int64
+	for _, t := range im.types {
+		bits++ // present or not
+		switch t {
+		case column.Text:
+			bits += 32
+		case column.Boolean:
+			bits++
+		default:
+			bits += 64
+		}
+	}
+	return int64(rows) * bits / 8
 }
 
 func (im *importer) buildFile(f *file, b *builder) error {
@@ -79,7 +99,7 @@ func (im *importer) buildFile(f *file, b *builder) error {
 				b.naive[k] = b.naive[k] || x.naive[k]
 			}
 		}
-		return im.progress(f.chunks[i].to)
+		return im.progress(f, f.chunks[i].to)
 	})
 }
 

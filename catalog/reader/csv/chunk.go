@@ -58,7 +58,8 @@ func (im *importer) threads() int {
 }
 
 // inOrder does work for 0 to n-1 on several threads and takes what comes of each in
-// order. No more than twice as many as there are threads wait to be taken.
+// order. No more than twice as many as there are threads wait to be taken. Memory that
+// cannot be looked at is an error, wherever that happens.
 func inOrder[T any](ctx context.Context, threads, n int, work func(i int) T, take func(i int, x T) error) error {
 	if threads == 1 || n == 1 {
 		for i := range n {
@@ -71,9 +72,13 @@ func inOrder[T any](ctx context.Context, threads, n int, work func(i int) T, tak
 		}
 		return ctx.Err()
 	}
-	results := make([]chan T, n)
+	type outcome struct {
+		x   T
+		err error
+	}
+	results := make([]chan outcome, n)
 	for i := range results {
-		results[i] = make(chan T, 1)
+		results[i] = make(chan outcome, 1)
 	}
 	begin := make(chan int, n)
 	room := make(chan struct{}, 2*threads)
@@ -95,7 +100,12 @@ func inOrder[T any](ctx context.Context, threads, n int, work func(i int) T, tak
 				if !more {
 					return
 				}
-				results[i] <- work(i)
+				var x outcome
+				x.err = reader.Guard(func() error {
+					x.x = work(i)
+					return nil
+				})
+				results[i] <- x
 			}
 		})
 	}
@@ -107,7 +117,10 @@ func inOrder[T any](ctx context.Context, threads, n int, work func(i int) T, tak
 		select {
 		case x := <-results[i]:
 			<-room
-			if err := take(i, x); err != nil {
+			if x.err != nil {
+				return x.err
+			}
+			if err := take(i, x.x); err != nil {
 				return err
 			}
 		case <-ctx.Done():
@@ -175,12 +188,14 @@ func (t *tally) merge(later *tally, base int) {
 	t.zeros += later.zeros
 	t.plain += later.plain
 	t.other += later.other
+	t.grouped += later.grouped
 	t.guess.Merge(&later.guess)
 	t.guessed += later.guessed
 	t.firstText.merge(later.firstText, base)
 	t.firstLong.merge(later.firstLong, base)
 	t.firstZeros.merge(later.firstZeros, base)
 	t.firstOther.merge(later.firstOther, base)
+	t.firstGrouped.merge(later.firstGrouped, base)
 	t.firstGuess.merge(later.firstGuess, base)
 }
 

@@ -29,7 +29,19 @@ func (Reader) ReadFiles(ctx context.Context, sources []*reader.Source, o reader.
 	for _, src := range sources {
 		im.add(&file{src: src})
 	}
-	return im.read()
+	return im.guarded()
+}
+
+// guarded is read for files that may be mapped.
+func (im *importer) guarded() (r *reader.Result, err error) {
+	fault := reader.Guard(func() error {
+		r, err = im.read()
+		return nil
+	})
+	if fault != nil {
+		return nil, fault
+	}
+	return r, err
 }
 
 func newImporter(ctx context.Context, o reader.Options) *importer {
@@ -131,7 +143,10 @@ func (im *importer) recordFault(s *scanner, f *file) (reader.Fault, bool) {
 }
 
 // progress tells that a file has been passed up to a byte, and looks whether to go on.
-func (im *importer) progress(done int) error {
+func (im *importer) progress(f *file, done int) error {
+	if f.given == nil {
+		f.src.Passed(done)
+	}
 	if im.o.Progress != nil {
 		im.o.Progress(im.done+int64(done), im.total)
 	}
@@ -175,7 +190,7 @@ func (im *importer) inferFile(f *file) error {
 		switch {
 		case at >= c.to: // a quoted field before it spans all of it
 			c.from, c.line, c.first, c.to = at, line, number, at
-			return im.progress(c.to)
+			return im.progress(f, c.to)
 		case at != c.from: // it began within a quoted field
 			c.from = at
 			x = im.survey(f, *c)
@@ -188,7 +203,7 @@ func (im *importer) inferFile(f *file) error {
 		records, undivided, extraUsed = records+x.records, undivided+x.undivided, extraUsed || x.extraUsed
 		number += x.n
 		at, line, last = x.end, line+x.line-1, x.lastEnd
-		return im.progress(x.end)
+		return im.progress(f, x.end)
 	})
 	if err != nil {
 		return err

@@ -95,7 +95,9 @@
 //
 // # Limitations
 //
-// UTF-8, or what reader.Decode turns into it. No comments. A date and a time of day
+// UTF-8, or what reader.Decode turns into it; what begins with the byte order mark of
+// UTF-16 is that. A first line such as sep=; tells the delimiter. Numbers with marks between
+// thousands stay TEXT, and Facts.StayedText tells. No comments. A date and a time of day
 // in two columns stay two columns. Intervals and points are not recognised and stay
 // TEXT. An infinity in a numeric column is a fault even where it was written
 // by this program.

@@ -76,13 +76,19 @@ func (s *scanner) recordFault(clean bool, least, most int) (reader.Fault, bool) 
 			}
 		}
 	}
-	got := len(r.fields)
+	got := len(r.fields) + r.beyond
+	if most = min(most, mostFields); got > most && least == 0 {
+		x := fault(s, &r.fields[most-1], most-1, reader.TooLarge)
+		x.Text, x.Expected = "heading", most
+		return x, true
+	}
 	if got >= least && got <= most {
 		return reader.Fault{}, false
 	}
 	var x reader.Fault
 	if got > most {
-		x = fault(s, &r.fields[most], most, reader.FieldCount)
+		last := min(most, mostFields-1)
+		x = fault(s, &r.fields[last], last, reader.FieldCount)
 	} else {
 		last := &r.fields[got-1] // a quoted one may end on a later line: s.line is behind it
 		line, start := last.line, last.lineStart

@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"math"
 	"strings"
+	"unicode/utf8"
 
 	"nearcell/catalog/column"
 	"nearcell/catalog/reader"
@@ -83,11 +84,22 @@ func (im *importer) begin(f *file) error {
 		return im.faults.err()
 	}
 	pos, line, ok := findHeading(f.data, f.heading(&im.o))
+	said := rune(0)
+	if ok && f.given == nil && im.o.Heading == 0 {
+		var behind int
+		if said, behind = saidDelimiter(f.data[pos:]); said != 0 {
+			next, more, found := findHeading(f.data[pos+behind:], 0)
+			pos, line, ok = pos+behind+next, line+more, found
+		}
+	}
 	if !ok {
 		im.faults.add(reader.Fault{Kind: reader.NoHeading, Line: max(f.heading(&im.o), 1), Got: line})
 		return im.faults.err()
 	}
 	if f.facts.Delimiter = im.o.Delimiter; f.facts.Delimiter == 0 {
+		f.facts.Delimiter = said
+	}
+	if f.facts.Delimiter == 0 {
 		f.facts.Delimiter = detect(f.data, pos, line, im.o.DecimalMark)
 	}
 	s := newScanner(f.data, f.facts.Delimiter, pos, line)
@@ -117,15 +129,37 @@ func (im *importer) begin(f *file) error {
 	return im.faults.err()
 }
 
+// saidDelimiter reads a first line such as sep=; by which spreadsheets tell each other
+// the delimiter; behind is where the next line begins. 0: there is no such line.
+func saidDelimiter(b []byte) (delimiter rune, behind int) {
+	end := lineEnd(b, 0)
+	line := trim(b[:end])
+	if len(line) < 5 || !bytes.EqualFold(line[:4], []byte("sep=")) {
+		return 0, 0
+	}
+	d, size := utf8.DecodeRune(line[4:])
+	if len(line) != 4+size || d == utf8.RuneError || d == '"' {
+		return 0, 0
+	}
+	return d, end + breakLen(b[end:])
+}
+
 // decode makes UTF-8 of the file; false where it is at fault.
 func (im *importer) decode(f *file) bool {
-	data, bad := reader.Decode(f.bytes(), im.o.Encoding)
+	encoding := im.o.Encoding
+	if raw := f.bytes(); encoding == "" && f.given == nil && (bytes.HasPrefix(raw, []byte{0xFF, 0xFE}) || bytes.HasPrefix(raw, []byte{0xFE, 0xFF})) {
+		encoding = reader.UTF16Text // no UTF-8 text begins so
+	}
+	data, bad := reader.Decode(f.bytes(), encoding)
 	if bad != nil {
 		im.faults.add(*bad)
 		return false
 	}
 	if bytes.HasPrefix(data, []byte("\xEF\xBB\xBF")) {
 		data, im.facts.BOM = data[3:], true
+	}
+	if f.given == nil {
+		data = bytes.TrimSuffix(data, []byte{0x1A}) // the end of a text file, on the systems of old
 	}
 	f.data = data
 	switch {

@@ -23,10 +23,11 @@ type tally struct {
 	zeros     int
 	plain     int
 	other     int            // texts that the other decimal mark would make numbers
+	grouped   int            // texts that are numbers with marks between thousands
 	guess     timeform.Guess // of texts with digits
 	guessed   int
 
-	firstText, firstLong, firstZeros, firstOther, firstGuess sample // of values that are no number, …
+	firstText, firstLong, firstZeros, firstOther, firstGrouped, firstGuess sample // of values that are no number, …
 }
 
 // sample is a value worth showing.
@@ -56,6 +57,10 @@ func (t *tally) add(b []byte, mark byte, line int, file string) {
 		if l.class == isWord && lookAtNumber(b, otherMark(mark)).class == isReal {
 			t.other++
 			t.firstOther.keep(line, b, file)
+		}
+		if l.class == isWord && (isGrouped(b, mark) || isGrouped(b, otherMark(mark))) {
+			t.grouped++
+			t.firstGrouped.keep(line, b, file)
 		}
 		if l.class == isWord && t.guess.Possible() && bytes.ContainsAny(b, "0123456789") {
 			t.guess.Add(b)
@@ -125,6 +130,8 @@ func (t *tally) decide() (column.Type, *reader.StayedText) {
 		stayed := t.stayed(reader.LooksLikeTime, t.firstGuess)
 		stayed.Pattern, stayed.Other = t.guess.Pattern()
 		return column.Text, stayed
+	case t.grouped > 0 && t.grouped >= t.other && 2*(t.numbers()+t.grouped) > t.present:
+		return column.Text, t.stayed(reader.Thousands, t.firstGrouped)
 	case t.other > 0 && 2*(t.numbers()+t.other) > t.present:
 		return column.Text, t.stayed(reader.OtherMark, t.firstOther)
 	case 2*t.numbers() > t.present:

@@ -104,6 +104,36 @@ func lookAtInteger(b []byte, first, n int) look {
 	return l
 }
 
+// isGrouped tells a number with marks between thousands: 1,234 or 12 345.5 or 1'234.
+func isGrouped(b []byte, mark byte) bool {
+	if b[0] == '-' || b[0] == '+' {
+		b = b[1:]
+	}
+	n := digitsAt(b, 0)
+	if n < 1 || n > 3 {
+		return false
+	}
+	b = b[n:]
+	for _, between := range []string{string(otherMark(mark)), " ", "'", "\u00a0", "\u202f", "\u2009", "\u2019"} {
+		rest, groups := b, 0
+		for {
+			behind, ok := bytes.CutPrefix(rest, []byte(between))
+			if !ok || digitsAt(behind, 0) != 3 {
+				break
+			}
+			rest, groups = behind[3:], groups+1
+		}
+		if groups == 0 {
+			continue
+		}
+		if len(rest) > 0 && rest[0] == mark {
+			rest = rest[1+digitsAt(rest, 1):]
+		}
+		return len(rest) == 0
+	}
+	return false
+}
+
 func digitsAt(b []byte, i int) int {
 	n := 0
 	for i+n < len(b) && b[i+n] >= '0' && b[i+n] <= '9' {

@@ -31,5 +31,5 @@ func ReadRecords(ctx context.Context, list []Records, o reader.Options) (*reader
 	for i := range list {
 		im.add(&file{src: list[i].Source, given: &list[i]})
 	}
-	return im.read()
+	return im.guarded()
 }

@@ -25,8 +25,13 @@ type record struct {
 	lineStart  int
 	start, end int // its bytes without the line break at the end
 	fields     []field
+	beyond     int  // fields behind mostFields, which are only counted
 	fault      mark // where its quotation marks go wrong, if they do
 }
+
+// mostFields is how many fields of a record are kept: a file must not make the program
+// take a multiple of its size.
+const mostFields = 1 << 18
 
 // field is one field of a record.
 type field struct {
@@ -124,7 +129,13 @@ func (s *scanner) quoted() bool {
 	}
 }
 
-func (s *scanner) add(f field) { s.rec.fields = append(s.rec.fields, f) }
+func (s *scanner) add(f field) {
+	if len(s.rec.fields) == mostFields {
+		s.rec.beyond++
+		return
+	}
+	s.rec.fields = append(s.rec.fields, f)
+}
 
 // atEnd reports whether the record ends at byte i.
 func (s *scanner) atEnd(i int) bool {

@@ -149,6 +149,45 @@ func TestTypes(t *testing.T) {
 	}
 }
 
+// Every encoding of values gives the same table.
+func TestEncodings(t *testing.T) {
+	type coded struct {
+		Plain  int64   `parquet:"plain,plain"`
+		Dict   int64   `parquet:"dict,dict"`
+		Delta  int64   `parquet:"delta,delta"`
+		Delta4 int32   `parquet:"delta4,delta"`
+		Split  float64 `parquet:"split,split"`
+		Text   string  `parquet:"text,plain"`
+		Words  string  `parquet:"words,dict,optional"`
+		Long   string  `parquet:"long,delta"`
+		Real   float64 `parquet:"real,dict"`
+	}
+	rows := make([]coded, 5000)
+	var want strings.Builder
+	lines := make([]strings.Builder, 9)
+	for i := range rows {
+		n := int64(i)*7919 - 9000
+		rows[i] = coded{n, n % 5, n * n, int32(n), float64(n) / 8, fmt.Sprint("x", n), fmt.Sprint("w", n%3), fmt.Sprint("prefix ", n/10), float64(n % 4)}
+		for k, v := range []any{n, n % 5, n * n, n, float64(n) / 8, fmt.Sprintf("%q", rows[i].Text), fmt.Sprintf("%q", rows[i].Words), fmt.Sprintf("%q", rows[i].Long), float64(n % 4)} {
+			fmt.Fprint(&lines[k], " ", v)
+		}
+	}
+	for k, head := range []string{"plain INTEGER", "dict INTEGER", "delta INTEGER", "delta4 INTEGER", "split REAL", "text TEXT", "words TEXT", "long TEXT", "real REAL"} {
+		fmt.Fprintf(&want, "%s:%s\n", head, lines[k].String())
+	}
+	for _, version := range []int{1, 2} {
+		for _, page := range []int{512, 1 << 20} {
+			r, err := read(written(t, rows, parquet.DataPageVersion(version), parquet.PageBufferSize(page)))
+			if err != nil {
+				t.Fatalf("pages of version %d of %d bytes: %v", version, page, err)
+			}
+			if got := shown(r.Table); got != want.String() {
+				t.Errorf("pages of version %d of %d bytes give another table", version, page)
+			}
+		}
+	}
+}
+
 func TestFaults(t *testing.T) {
 	type u struct{ N uint64 }
 	type f struct{ X float64 }

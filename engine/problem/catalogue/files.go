@@ -15,6 +15,12 @@ var ofFiles = []Entry{
 		Example: "SAVE SELECT id FROM hall TO 'hall.csv/sites.csv';",
 	},
 	{
+		Code:    "file-changed",
+		Meaning: "Another program changed a file while it was imported, so that what was read may be half of the old content and half of the new. Nothing was imported.",
+		WayOut:  "Import it when nobody writes to it any more, or import a copy.",
+		Unshown: "it takes another program that writes at the same time",
+	},
+	{
 		Code:    "file-exists",
 		Meaning: "SAVE or DRAW would write over a file.",
 		WayOut:  "OVERWRITE replaces it.",
