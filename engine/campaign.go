@@ -165,14 +165,14 @@ func (s *Session) placedTable(st *statement, c *clauses, read *column.Table, ori
 		exprs = [3]lang.Expr{c.position.X, c.position.Y, c.position.Z}
 	}
 	for k, axis := range [3]string{"x", "y", "z"} {
-		v, from, err := s.coordinate(st, exprs[k], axis, read, origin)
+		v, from, system, err := s.coordinate(st, exprs[k], axis, read, origin)
 		if err != nil {
 			return nil, nil, err
 		}
 		if from >= 0 {
 			used[from] = true
 		}
-		out.Schema = append(out.Schema, column.Field{Name: axis, Type: column.Real, Unit: v.Unit, Meaning: "position of the site"})
+		out.Schema = append(out.Schema, column.Field{Name: axis, Type: column.Real, Unit: v.Unit, Meaning: "position of the site", System: system})
 		out.Cols = append(out.Cols, v)
 	}
 	if c.position != nil && (c.position.Geographic || !c.position.Frame.IsZero()) {
@@ -205,34 +205,35 @@ func tableLayout(axes, read *column.Table, used []bool) *column.Table {
 	return t
 }
 
-// coordinate computes one axis as REAL and tells which column it is, or -1.
-func (s *Session) coordinate(st *statement, e lang.Expr, axis string, read *column.Table, origin string) (column.Vector, int, error) {
+// coordinate computes one axis as REAL and tells which column it is, or -1, and what it
+// counts from.
+func (s *Session) coordinate(st *statement, e lang.Expr, axis string, read *column.Table, origin string) (column.Vector, int, *column.System, error) {
 	if e == nil {
 		at := problem.Place{}
 		i, err := findColumn(read.Schema, lang.Name{Text: axis}, at, origin)
 		if err != nil {
-			return column.Vector{}, 0, problem.New("no-position", at, "%s has no column '%s'", origin, axis).
+			return column.Vector{}, 0, nil, problem.New("no-position", at, "%s has no column '%s'", origin, axis).
 				WithHint("POSITION (…, …, …) names the three coordinates; there is %s", listed(columnNames(read.Schema), 12))
 		}
 		v, err := realColumn(&read.Cols[i], read.Schema[i].Name, at, origin)
-		return v, i, err
+		return v, i, read.Schema[i].System, err
 	}
 	bound, err := bind.OverSchema(s.bindEnv(st), e, read.Schema, origin)
 	if err != nil {
-		return column.Vector{}, 0, err
+		return column.Vector{}, 0, nil, err
 	}
 	if i, plain := expr.AsColumn(bound); plain {
 		v, err := realColumn(&read.Cols[i], read.Schema[i].Name, st.at(e), origin)
-		return v, i, err
+		return v, i, read.Schema[i].System, err
 	}
 	var work expr.Work
 	batch := read.Batch(0, read.N)
 	v, err := bound.Eval(&work, &batch, nil)
 	if err != nil {
-		return column.Vector{}, 0, problem.At(err, st.at(e))
+		return column.Vector{}, 0, nil, problem.At(err, st.at(e))
 	}
 	v, err = realColumn(&v, axis, st.at(e), origin)
-	return ownCopy(v), -1, err
+	return ownCopy(v), -1, bind.SystemOf(bound), err
 }
 
 func columnNames(schema column.Schema) []string {

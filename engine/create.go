@@ -3,6 +3,7 @@ package engine
 import (
 	"context"
 	"errors"
+	"slices"
 	"time"
 
 	"nearcell/catalog"
@@ -51,7 +52,10 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 	if err != nil {
 		return err
 	}
-	object.Table, object.System = table, clauses.system
+	object.Table, object.System = withoutSystem(table, clauses.system)
+	if err := clauses.inSystem(&object); err != nil {
+		return err
+	}
 	object.Notes = append(object.Notes, clauses.placedNotes...)
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
@@ -65,6 +69,34 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 			origin = plural(len(object.Sources), "file") + " " + origin
 		}
 		s.say("%s: %s from %s, %s", t.Name.Text, plural(table.N, thing), origin, st.seconds())
+	}
+	return nil
+}
+
+// withoutSystem is a table as the catalog keeps it, and what its places count from: what
+// the clauses say, else what those of the query did.
+func withoutSystem(table *column.Table, said string) (*column.Table, string) {
+	t := *table
+	t.Schema = slices.Clone(table.Schema)
+	for i := range t.Schema {
+		f := &t.Schema[i]
+		if said == "" && lang.Fold(f.Name) == "x" && f.System != nil {
+			said = f.System.Text
+		}
+		f.System = nil
+	}
+	return &t, said
+}
+
+// inSystem sees that the sites of a campaign and its solids count from one place.
+func (c *clauses) inSystem(o *catalog.Object) error {
+	if c.withinAt == nil {
+		return nil
+	}
+	for _, s := range c.withinAt.Solids {
+		if err := bind.InSystem(c.s.bindEnv(c.st), &column.System{Of: o.Name, Text: o.System}, s); err != nil {
+			return err
+		}
 	}
 	return nil
 }
@@ -143,12 +175,21 @@ func (s *Session) createSolid(st *statement, t *lang.CreateSolid) error {
 		if tree, err = bind.InFrame(s.bindEnv(st), t.Solid, &k.Similarity, f.Name); err != nil {
 			return err
 		}
-		system = f.Name
+		system = catalog.FrameSystem(f.Name, f.Text)
 		st.notes.Add(note.Note, note.Import, "%s is brought from the frame %s to the site's coordinates: %s", t.Name.Text, f.Name, s.frameText(k))
 	}
 	kept, text, err := s.solid(st, tree)
 	if err != nil {
 		return err
+	}
+	if system == "" {
+		own, err := bind.SolidSystem(s.bindEnv(st), t.Solid)
+		if err != nil {
+			return err
+		}
+		if own != nil {
+			system = own.Text
+		}
 	}
 	object := catalog.Object{Kind: catalog.Solid, Key: t.Name.Key(), Name: t.Name.Text, Text: text, Created: time.Now().UTC(),
 		Table: kept.Table, Sources: kept.Sources, System: system}

@@ -24,9 +24,9 @@ func siteReadings() []entry {
 			example: "CREATE FRAME plan MATCHING 'control.csv';\nCREATE CAMPAIGN again FROM 'hall.csv' POSITION (x, y, z) IN FRAME plan;",
 		},
 		{
-			name: "GEOGRAPHIC", syntax: []string{"POSITION (lat, lon, height) GEOGRAPHIC"},
-			meaning: "The position is in degrees and metres on the WGS 84 ellipsoid, and becomes metres east, north and up of an origin: the middle of the extremes of latitude and longitude, to a hundredth of a degree, at height 0. A note tells it. Up is not height: far from the origin it is less, since the earth curves away.",
-			example: "CREATE CAMPAIGN again FROM 'hall.csv' POSITION (y, x, z) GEOGRAPHIC;",
+			name: "GEOGRAPHIC", syntax: []string{"POSITION (lat, lon, height) GEOGRAPHIC [ORIGIN (lat, lon)]"}, also: []string{"ORIGIN"},
+			meaning: "The position is in degrees and metres on the WGS 84 ellipsoid, and becomes metres east, north and up of an origin: the middle of the extremes of latitude and longitude, to a hundredth of a degree, at height 0, or what ORIGIN says. A note tells it. Surveys with different origins are never compared: give them one ORIGIN. Rows far from the others whose latitude and longitude are exchanged, or both 0, are refused. Up is not height: far from the origin it is less, since the earth curves away.",
+			example: "CREATE CAMPAIGN again FROM 'hall.csv' POSITION (y / 1000, x / 1000, z) GEOGRAPHIC ORIGIN (0, 0);",
 		},
 		{
 			name: "COORDINATES IN", also: []string{"COORDINATES"}, syntax: []string{"COORDINATES IN m"},

@@ -14,11 +14,14 @@ type IDReading struct {
 	Name Name
 }
 
-// PositionReading is POSITION (x, y, z) [GEOGRAPHIC | IN FRAME name].
+// PositionReading is POSITION (x, y, z) [GEOGRAPHIC [ORIGIN (latitude, longitude)] | IN
+// FRAME name].
 type PositionReading struct {
 	At
 	X, Y, Z    Expr
 	Geographic bool
+	Latitude   Expr // of ORIGIN; nil without it
+	Longitude  Expr
 	Frame      Name
 }
 

@@ -233,6 +233,9 @@ func (g *gen) position() Reading {
 	switch g.int(3) {
 	case 0:
 		p.Geographic = true
+		if g.int(2) == 0 {
+			p.Latitude, p.Longitude = g.expr(), g.expr()
+		}
 	case 1:
 		p.Frame = g.name()
 	}

@@ -82,6 +82,13 @@ func (p *parser) position() Reading {
 	switch {
 	case p.take(kGeographic):
 		r.Geographic = true
+		if p.take(kOrigin) {
+			opened := p.open("( and latitude and longitude of the origin")
+			r.Latitude = p.expr()
+			p.need(tokComma, "a comma and the longitude")
+			r.Longitude = p.expr()
+			p.close(opened, "")
+		}
 	case p.take(kIn):
 		p.needWord(kFrame)
 		r.Frame = p.name("the name of a frame")

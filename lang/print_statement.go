@@ -205,6 +205,11 @@ func (w *printer) reading(r Reading) {
 		w.put(")")
 		if r.Geographic {
 			w.put(" GEOGRAPHIC")
+			if r.Latitude != nil {
+				w.put(" ORIGIN (")
+				w.exprs([]Expr{r.Latitude, r.Longitude})
+				w.put(")")
+			}
 		}
 		w.optional(" IN FRAME ", r.Frame)
 	case *UnitsReading:

@@ -371,6 +371,9 @@ func (w walker) reading(r Reading) {
 		w.name(&r.Name)
 	case *PositionReading:
 		w.exprs(r.X, r.Y, r.Z)
+		if r.Latitude != nil {
+			w.exprs(r.Latitude, r.Longitude)
+		}
 		w.name(&r.Frame)
 	case *UnitsReading:
 		nodes(w, r.Units)

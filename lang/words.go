@@ -129,6 +129,7 @@ const (
 	kId
 	kPosition
 	kGeographic
+	kOrigin
 	kCoordinates
 	kDuplicates
 	kSplit
@@ -309,6 +310,7 @@ var wordText = [...]string{
 	kId:          "ID",
 	kPosition:    "POSITION",
 	kGeographic:  "GEOGRAPHIC",
+	kOrigin:      "ORIGIN",
 	kCoordinates: "COORDINATES",
 	kDuplicates:  "DUPLICATES",
 	kSplit:       "SPLIT",

@@ -36,8 +36,19 @@ func (t Type) Counted() bool { return t == Integer || t == Timestamp || t == Int
 type Field struct {
 	Name    string
 	Type    Type
-	Unit    *Unit  // nil: no unit known
-	Meaning string // one line for DESCRIBE, may be empty
+	Unit    *Unit   // nil: no unit known
+	Meaning string  // one line for DESCRIBE, may be empty
+	System  *System // of coordinates: what they count from; nil for anything else
+}
+
+// System is what coordinates count from. It travels with a query and is not kept with a
+// table: the catalog keeps one for each object.
+type System struct {
+	Of   string // the campaign, table or solid that has them, for messages
+	Text string // as the catalog keeps it; "" for coordinates as they came
+	// Loose: as they came in a table or a solid, so that they may have been meant to
+	// count from anywhere.
+	Loose bool
 }
 
 // Schema is the ordered list of a table's columns.

@@ -21,7 +21,9 @@
 // Fewer than three pairs, or points on one line, leave open whether the drawing is
 // mirrored: they are refused, as are points in one plane that is not level, points that
 // all but coincide, and numbers that are not finite. A latitude beyond 90 or a longitude
-// beyond 180 degrees (360 where the survey counts eastwards only) is refused.
+// beyond 180 degrees (360 where the survey counts eastwards only) is refused; so is a place
+// more than 100 km from the middle of the others with latitude and longitude exchanged or
+// both 0, and any more than 1000 km away.
 //
 // # Exact and rounded
 //

@@ -169,14 +169,28 @@ func TestOrigin(t *testing.T) {
 	if o, err := OriginOf([]float64{-16.8, -16.8}, []float64{179.96, -179.98}); err != nil || o.Longitude != 179.99 {
 		t.Error(o, err)
 	}
-	var e *GeographicError
-	if _, err := OriginOf([]float64{53, 139.7}, []float64{10, 35.7}); !errors.As(err, &e) || e.Row != 1 || !e.Latitude || !e.Swapped {
-		t.Error(err)
+	for _, c := range []struct {
+		lat, lon []float64
+		row      int
+		fault    GeographicFault
+	}{
+		{[]float64{53, 139.7}, []float64{10, 35.7}, 1, Swapped},
+		{[]float64{53, math.NaN()}, []float64{10, 5}, 1, Latitude},
+		{[]float64{53, 200}, []float64{10, 5}, 1, Latitude},
+		{[]float64{53}, []float64{400}, 0, Longitude},
+		{[]float64{53.1, 53.2, 10.1, 53.3}, []float64{10, 10.1, 53.2, 10.2}, 2, RowSwapped},
+		{[]float64{0, 53.2, 53.1, 53.3}, []float64{0, 10.1, 10.2, 10.2}, 0, NoFix},
+		{[]float64{53, 53.2, 53.1, 5.3}, []float64{10, 10.1, 10.2, 10.2}, 3, TooFar},
+	} {
+		var e *GeographicError
+		if _, err := OriginOf(c.lat, c.lon); !errors.As(err, &e) || e.Row != c.row || e.Fault != c.fault {
+			t.Errorf("%v %v: %v", c.lat, c.lon, err)
+		}
 	}
-	if _, err := OriginOf([]float64{53, math.NaN()}, []float64{10, 5}); !errors.As(err, &e) {
-		t.Error(err)
-	}
-	if _, err := OriginOf([]float64{53}, []float64{400}); !errors.As(err, &e) || e.Latitude {
-		t.Error(err)
+	// Far, but of one survey: said elsewhere, and no fault. So is one on the equator.
+	for _, lat := range [][]float64{{53, 55}, {0, 0.1, 0.2}} {
+		if _, err := OriginOf(lat, []float64{0, 0.1, 0}[:len(lat)]); err != nil {
+			t.Error(err)
+		}
 	}
 }

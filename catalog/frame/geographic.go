@@ -3,6 +3,7 @@ package frame
 import (
 	"fmt"
 	"math"
+	"slices"
 )
 
 // The WGS 84 ellipsoid.
@@ -15,20 +16,71 @@ const (
 // Origin is where local metres count from: latitude and longitude in degrees, height 0.
 type Origin struct{ Latitude, Longitude float64 }
 
-// GeographicError is a latitude or longitude that cannot be.
+// GeographicFault is what is wrong with a place.
+type GeographicFault uint8
+
+const (
+	Latitude   GeographicFault = iota // a latitude that cannot be
+	Longitude                         // a longitude that cannot be
+	Swapped                           // a latitude that cannot be, and would do as the longitude
+	RowSwapped                        // far from the others, and among them if swapped
+	NoFix                             // at 0, 0, far from the others
+	TooFar                            // farther from the others than local metres mean anything
+)
+
+// GeographicError is a latitude or longitude that cannot be, or a place that cannot be of
+// one survey with the others.
 type GeographicError struct {
-	Row      int
-	Latitude bool // the latitude is at fault, else the longitude
-	Value    float64
-	Swapped  bool // it would do as the other one
+	Row   int
+	Fault GeographicFault
+	Value float64 // the latitude or longitude, or the distance in metres
 }
 
 func (e *GeographicError) Error() string {
-	what := "longitude"
-	if e.Latitude {
-		what = "latitude"
+	return fmt.Sprintf("frame: row %d: geographic fault %d, %g", e.Row, e.Fault, e.Value)
+}
+
+// What lies so far from the middle place of a survey, in metres, is looked at: exchanged
+// coordinates and places without a fix are told by it.
+const (
+	doubtful = 100e3
+	absurd   = 1000e3
+)
+
+// astray finds the first place that cannot be of one survey with the others: far from the
+// place of middle latitude and longitude, and plainly wrong.
+func astray(latitudes, longitudes []float64) error {
+	middle := Origin{median(latitudes, 0), 0}
+	first := longitudes[0]
+	middle.Longitude = first + median(longitudes, first)
+	away := func(lat, lon float64) float64 {
+		p, q := earth(lat, lon, 0), earth(middle.Latitude, middle.Longitude, 0)
+		return math.Sqrt(float64((p[0]-q[0])*(p[0]-q[0])) + float64((p[1]-q[1])*(p[1]-q[1])) + float64((p[2]-q[2])*(p[2]-q[2])))
 	}
-	return fmt.Sprintf("frame: row %d has the %s %g", e.Row, what, e.Value)
+	for i, lat := range latitudes {
+		lon := longitudes[i]
+		d := away(lat, lon)
+		switch {
+		case d <= doubtful:
+		case lat == 0 && lon == 0:
+			return &GeographicError{i, NoFix, d}
+		case math.Abs(lon) <= 90 && away(lon, lat) <= doubtful:
+			return &GeographicError{i, RowSwapped, d}
+		case d > absurd:
+			return &GeographicError{i, TooFar, d}
+		}
+	}
+	return nil
+}
+
+// median is the middle value, counted in degrees around from.
+func median(values []float64, from float64) float64 {
+	list := make([]float64, len(values))
+	for i, x := range values {
+		list[i] = wrap(x - from)
+	}
+	slices.Sort(list)
+	return list[len(list)/2]
 }
 
 // originStep is what origins are rounded to, in degrees: surveys of one place then mostly
@@ -42,15 +94,20 @@ func OriginOf(latitudes, longitudes []float64) (Origin, error) {
 	lon := [2]float64{math.Inf(1), math.Inf(-1)}
 	for i := range latitudes {
 		switch a, o := latitudes[i], longitudes[i]; {
+		case !(math.Abs(a) <= 90) && math.Abs(a) <= 180 && math.Abs(o) <= 90:
+			return Origin{}, &GeographicError{i, Swapped, a}
 		case !(math.Abs(a) <= 90):
-			return Origin{}, &GeographicError{i, true, a, math.Abs(a) <= 180 && math.Abs(o) <= 90}
+			return Origin{}, &GeographicError{i, Latitude, a}
 		case !(math.Abs(o) <= 360):
-			return Origin{}, &GeographicError{i, false, o, false}
+			return Origin{}, &GeographicError{i, Longitude, o}
 		default:
 			d := wrap(o - longitudes[0]) // near the date line, too
 			lat = [2]float64{min(lat[0], a), max(lat[1], a)}
 			lon = [2]float64{min(lon[0], d), max(lon[1], d)}
 		}
+	}
+	if err := astray(latitudes, longitudes); err != nil {
+		return Origin{}, err
 	}
 	round := func(x float64) float64 { return math.Round(x/originStep) / math.Round(1/originStep) }
 	return Origin{round((lat[0] + lat[1]) / 2), wrap(round(longitudes[0] + (lon[0]+lon[1])/2))}, nil

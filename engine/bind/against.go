@@ -12,9 +12,8 @@ import (
 )
 
 // against binds the sites of AGAINST: a campaign brings its solid, tolerance and policy
-// along as that of OF does, and WITHIN and STRETCHED hold for both. of is the campaign
-// named after OF, nil where that is a query.
-func (b *binder) against(rel *relation.Bound, r *lang.Relation, of *catalog.Object) (plan.Node, error) {
+// along as that of OF does, and WITHIN and STRETCHED hold for both.
+func (b *binder) against(rel *relation.Bound, r *lang.Relation) (plan.Node, error) {
 	var clause *lang.AgainstClause
 	within, stretched := false, false
 	for _, c := range r.Clauses {
@@ -50,10 +49,8 @@ func (b *binder) against(rel *relation.Bound, r *lang.Relation, of *catalog.Obje
 	if stretched {
 		other.Clauses.Stretch = rel.Clauses.Stretch
 	}
-	if of != nil && campaign != nil {
-		if err := b.oneSystem(of, campaign, other); err != nil {
-			return nil, err
-		}
+	if err := b.againstSystem(rel, other, side, campaign); err != nil {
+		return nil, err
 	}
 	if err := b.oneSpace(rel, other); err != nil {
 		return nil, err
@@ -64,6 +61,15 @@ func (b *binder) against(rel *relation.Bound, r *lang.Relation, of *catalog.Obje
 	rel.Other = other
 	rel.Beside = append(rel.Beside, relation.Beside{Name: other.Name, Input: other.Input, Clause: "AGAINST"})
 	return in.node, nil
+}
+
+// againstSystem sees that both sides, and the solids that each brings, count from one
+// place.
+func (b *binder) againstSystem(rel, other *relation.Bound, side *lang.Relation, campaign *catalog.Object) error {
+	if err := b.solidsInSystem(other, side, campaign); err != nil {
+		return err
+	}
+	return b.oneSystem(rel.Input[rel.X].System, other.Input[other.X].System, other.Place)
 }
 
 // oneSpace sees that both sides end somewhere: one without a solid ends where the other
@@ -97,19 +103,6 @@ func envelopeName(name string) string {
 		return "campaign"
 	}
 	return name
-}
-
-// oneSystem refuses coordinates that have nothing to do with each other.
-func (b *binder) oneSystem(of, against *catalog.Object, other *relation.Bound) error {
-	same, taken := catalog.SameSystem(of, against)
-	if !same {
-		return problem.New("systems", other.Place, "the coordinates of %s and those of %s are of two systems: they cannot share space", of.Name, against.Name).
-			WithHint("import both together, in one file, or bring both into one FRAME")
-	}
-	if taken != "" {
-		b.say(note.Note, note.Sites, "%s", taken)
-	}
-	return nil
 }
 
 // sameEach finds the columns of FOR EACH on the other side. Where it has none of them, it

@@ -153,7 +153,7 @@ func (x *exprs) aggregate(c *lang.Call, fn *function.Aggregate) (expr.Expr, erro
 	if err != nil {
 		return nil, err
 	}
-	return x.group.call(x, call, column.Field{Name: call.Text, Type: result.Type, Unit: result.Unit}), nil
+	return x.group.call(x, call, column.Field{Name: call.Text, Type: result.Type, Unit: result.Unit, System: systemOfCall(&call, result.Type)}), nil
 }
 
 // aggregateParts binds the arguments of an aggregate and what follows it.

@@ -66,7 +66,10 @@ func (b *binder) gridSolid(rel *relation.Bound, r *lang.Relation) error {
 	s := &lang.SolidName{At: name.At, Name: *name}
 	var err error
 	rel.Name, rel.Place, rel.Clauses.SolidName = name.Text, b.at(name), name.Text
-	rel.Clauses.Solid, err = b.solid(s)
+	if rel.Clauses.Solid, err = b.solid(s); err != nil {
+		return err
+	}
+	rel.System, err = b.solidSystem(s)
 	return err
 }
 
@@ -261,6 +264,11 @@ func (b *binder) points(rel *relation.Bound, o lang.Operand, clause string) (pla
 		}
 		if f.Unit != nil && rel.Clauses.Unit != nil && !column.SameUnit(f.Unit, rel.Clauses.Unit) {
 			return nil, problem.New("units", b.at(o), "%s of %s is in %s, and the sites of %s are in %s", f.Name, beside.Name, f.Unit, rel.Name, rel.Clauses.Unit)
+		}
+		if rel.X >= 0 {
+			if err := b.oneSystem(rel.Input[rel.X].System, f.System, b.at(o)); err != nil {
+				return nil, err
+			}
 		}
 		rel.Clauses.At[i] = hits[0]
 	}

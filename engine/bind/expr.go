@@ -98,7 +98,7 @@ func (x *exprs) made(n lang.Node, args ...expr.Expr) func(expr.Expr, error) (exp
 		if err != nil {
 			return nil, x.faulty(err, x.at(n), args)
 		}
-		return e, nil
+		return e, x.oneSystemIn(n, e)
 	}
 }
 

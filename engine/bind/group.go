@@ -89,7 +89,7 @@ func sameShape(a, b lang.Expr) bool {
 
 func (g *grouping) keyField(x *exprs, i int) column.Field {
 	k := g.keys[i]
-	f := column.Field{Name: x.text(g.written[i]), Type: k.Type(), Unit: k.Unit()}
+	f := column.Field{Name: x.text(g.written[i]), Type: k.Type(), Unit: k.Unit(), System: SystemOf(k)}
 	if c, ok := expr.AsColumn(k); ok {
 		f.Name, f.Meaning = x.scope.columns[c].Name, x.scope.columns[c].Meaning
 	}

@@ -110,6 +110,9 @@ func (b *binder) using(j *lang.JoinSource, left, right, both *scope) (expr.Expr,
 		}
 		le := expr.NewColumn(l, left.columns[l].Field, b.at(name))
 		re := expr.NewColumn(r, both.columns[r].Field, b.at(name))
+		if err := b.oneSystem(left.columns[l].System, both.columns[r].System, b.at(name)); err != nil {
+			return nil, err
+		}
 		cond, err := expr.NewCompare(lang.Equals, le, re, b.at(name))
 		if err != nil {
 			return nil, b.faulty(err, b.at(name), []expr.Expr{le, re})

@@ -45,12 +45,15 @@ func (b *binder) relation(r *lang.Relation) (bound, error) {
 	if err := b.clauses(rel, r, campaign != nil); err != nil {
 		return bound{}, err
 	}
+	if err := b.solidsInSystem(rel, r, campaign); err != nil {
+		return bound{}, err
+	}
 	beside, err := b.estimatingInput(rel, r)
 	if err != nil {
 		return bound{}, err
 	}
 	if def.Pairs {
-		other, err := b.against(rel, r, campaign)
+		other, err := b.against(rel, r)
 		if err != nil {
 			return bound{}, err
 		}
@@ -65,6 +68,7 @@ func (b *binder) relationNode(rel *relation.Bound, r *lang.Relation, in bound, b
 	node := &plan.Relation{Bound: rel, Input: in.node, Beside: beside, Place: b.at(r)}
 	s := newScope("", rel.Title(), rel.Schema())
 	s.sources[0].notYet = rel.Def.NotYet
+	b.markPlaces(rel, s)
 	for i, c := range rel.Columns {
 		s.columns[i].costly = c.Costly
 	}

@@ -288,7 +288,7 @@ func (c *selection) bindItems() error {
 // heading names an output column: by its alias, by the name of the column that
 // it is, else by the text as written.
 func (c *selection) heading(it *lang.Item, e expr.Expr) column.Field {
-	f := column.Field{Type: e.Type(), Unit: e.Unit()}
+	f := column.Field{Type: e.Type(), Unit: e.Unit(), System: SystemOf(e)}
 	if col, ok := it.Expr.(*lang.Column); ok {
 		if hits, err := c.from.find(c.binder, col.Qualifier, col.Name); err == nil && len(hits) == 1 {
 			f.Name, f.Meaning = c.from.columns[hits[0]].Name, c.from.columns[hits[0]].Meaning

@@ -76,6 +76,12 @@ func (b *binder) unionFields(s *lang.SetOp, left, right column.Schema) (column.S
 	for i, l := range left {
 		r := right[i]
 		fields[i] = l
+		if err := b.oneSystem(l.System, r.System, b.at(n)); err != nil {
+			return nil, err
+		}
+		if l.System == nil {
+			fields[i].System = r.System
+		}
 		switch {
 		case l.Type == r.Type || r.Type == column.Null:
 		case l.Type == column.Null:

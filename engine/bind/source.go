@@ -116,7 +116,9 @@ func (b *binder) named(n *lang.Name) (bound, error) {
 	}
 	switch o.Kind {
 	case catalog.Campaign, catalog.Table:
-		return bound{scan(o), newScope(o.Name, o.Name, o.Table.Schema)}, nil
+		s := scan(o)
+		s.Fields = placed(o)
+		return bound{s, newScope(o.Name, o.Name, s.Fields)}, nil
 	case catalog.View:
 		return b.view(n, o)
 	case catalog.Solid:

@@ -130,7 +130,7 @@ func bothScopes(p *problem.Problem, outer error, x *exprs) error {
 
 // ref is the value of an expression over the rows outside, for the query.
 func (o *outside) ref(c *lang.Column, e expr.Expr) expr.Expr {
-	f := column.Field{Name: c.Name.Text, Type: e.Type(), Unit: e.Unit()}
+	f := column.Field{Name: c.Name.Text, Type: e.Type(), Unit: e.Unit(), System: SystemOf(e)}
 	at := o.x.at(c)
 	for i, r := range o.refs {
 		if expr.Equal(r, e) {

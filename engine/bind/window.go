@@ -58,7 +58,7 @@ func (x *exprs) over(c *lang.Call) (expr.Expr, error) {
 	if err := x.frame(c, &call, w.OrderBy); err != nil {
 		return nil, err
 	}
-	return x.windows.add(w, call, column.Field{Name: call.Text, Type: result.Type, Unit: result.Unit}), nil
+	return x.windows.add(w, call, column.Field{Name: call.Text, Type: result.Type, Unit: result.Unit, System: systemOfCall(&call.Call, result.Type)}), nil
 }
 
 // windowAllowed refuses windows where rows are not yet what they are computed over.

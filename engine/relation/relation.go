@@ -139,6 +139,7 @@ type Bound struct {
 	Choice  ChoiceClauses
 	Columns []Column
 	Place   problem.Place
+	System  *column.System // what places of GRID count from: its solid's; nil elsewhere
 	// EachPlace is the place of the FOR EACH clause.
 	EachPlace problem.Place
 	// Shapes takes the cells' polyhedra; nil: they are not wanted.

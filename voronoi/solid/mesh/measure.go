@@ -252,8 +252,12 @@ func (w *work) measureWalls() {
 		h := &w.touches[k]
 		a, b, c := w.local(h.t)
 		w.poly.Set(a, b, c)
+		way, n := 1.0, m.n[h.t]
+		if m.folded != nil && m.folded[h.t] {
+			way, n = -1, scale(-1, n)
+		}
 		if h.flush < 0 {
-			h.area = w.clipped(-1)
+			h.area = way * w.clipped(-1)
 			w.present = w.present || h.area > tiny
 			continue
 		}
@@ -261,17 +265,17 @@ func (w *work) measureWalls() {
 		var moved [2]float64
 		for step := range moved {
 			w.poly.Set(a, b, c)
-			w.poly.Move(scale(-float64(step+1)*shift*m.near, m.n[h.t]))
+			w.poly.Move(scale(-float64(step+1)*shift*m.near, n))
 			moved[step] = w.clipped(-1)
 		}
 		if moved[0] > 0 {
-			h.area = max(0, 2*moved[0]-moved[1])
+			h.area = way * max(0, 2*moved[0]-moved[1])
 			w.present = w.present || h.area > tiny
 		}
 		w.poly.Set(a, b, c)
 		f := &w.faces[h.flush]
-		switch in := w.clipped(h.flush); {
-		case dot(f.n, m.n[h.t]) < 0:
+		switch in := way * w.clipped(h.flush); {
+		case dot(f.n, n) < 0:
 			f.beyond += in
 		case m.isSeam(h.t):
 			f.seam += in

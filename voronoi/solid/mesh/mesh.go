@@ -57,6 +57,7 @@ type Mesh struct {
 	key           [16]byte
 	precision     float64
 	made          *assembly // nil: not combined
+	folded        []bool    // of a triangle: it looks the wrong way, in a fold as thin as rounding; nil: none
 	films         float64   // area of what was no wall for being as thin as rounding
 }
 
@@ -326,5 +327,8 @@ func (m *Mesh) Stretched(k Vec) (solid.Solid, error) {
 	}
 	out := finish(v, m.t, m.seam, uses(m.t), m.kind, m.precision)
 	out.pieces, out.voids = m.pieces, m.voids
+	if m.films > 0 {
+		out.skipFilms()
+	}
 	return out, nil
 }

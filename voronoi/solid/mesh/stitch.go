@@ -3,6 +3,8 @@ package mesh
 import (
 	"cmp"
 	"slices"
+
+	"nearcell/voronoi/solid"
 )
 
 // stitch puts every corner that lies in the middle of a side of a loop into that loop, so
@@ -147,16 +149,15 @@ func (a *arrangement) mesh(kind string, precision float64) (*Mesh, error) {
 		return number[i]
 	}
 	for i, loop := range a.pieces {
-		first := a.apex(loop)
-		for k := 1; k+1 < len(loop); k++ {
-			c := [3]int32{of(loop[first]), of(loop[(first+k)%len(loop)]), of(loop[(first+k+1)%len(loop)])}
+		a.ears(loop, func(p, q, r int32) {
+			c := [3]int32{of(p), of(q), of(r)}
 			if c[0] != c[1] && c[1] != c[2] && c[2] != c[0] {
 				t = append(t, c)
 				if a.body != nil {
 					seam = append(seam, a.seam[i])
 				}
 			}
-		}
+		})
 	}
 	if len(t) == 0 {
 		return nil, &Error{Fault: NothingLeft}
@@ -164,23 +165,48 @@ func (a *arrangement) mesh(kind string, precision float64) (*Mesh, error) {
 	return closed(v, t, seam, kind, precision)
 }
 
-// apex is the corner of a loop from which a fan has the largest smallest triangle.
-func (a *arrangement) apex(loop []int32) int {
-	best, most := 0, -1.0
-	if len(loop) == 3 {
+// ears cuts a convex loop, which may have corners in the middle of its sides, into
+// triangles, the fattest first. None of them is flat as long as the loop is not: around an
+// edge that pieces meet in, a flat triangle would not tell on which side its piece lies.
+func (a *arrangement) ears(loop []int32, cut func(p, q, r int32)) {
+	rest := append([]int32(nil), loop...)
+	for len(rest) > 3 {
+		best, most := 0, -1.0
+		n := len(rest)
+		for i := range rest {
+			if fat := a.fatness(rest[(i+n-1)%n], rest[i], rest[(i+1)%n]); fat > most && (fat <= flatness || !a.flat(rest, i)) {
+				best, most = i, fat
+			}
+		}
+		cut(rest[(best+n-1)%n], rest[best], rest[(best+1)%n])
+		rest = append(rest[:best], rest[best+1:]...)
+	}
+	cut(rest[0], rest[1], rest[2])
+}
+
+// flatness is the fatness up to which a triangle may be flat but for rounding.
+const flatness = 1e-12
+
+// fatness is twice the area of a triangle divided by the square of its longest side.
+func (a *arrangement) fatness(i, j, k int32) float64 {
+	p, q, r := a.points[i].f, a.points[j].f, a.points[k].f
+	longest := max(length(sub(q, p)), length(sub(r, q)), length(sub(p, r)))
+	if longest == 0 {
 		return 0
 	}
-	for i := range loop {
-		smallest := inf
-		for k := 1; k+1 < len(loop); k++ {
-			p, q, r := a.points[loop[i]].f, a.points[loop[(i+k)%len(loop)]].f, a.points[loop[(i+k+1)%len(loop)]].f
-			smallest = min(smallest, length(cross(sub(q, p), sub(r, p))))
-		}
-		if smallest > most {
-			best, most = i, smallest
+	return length(cross(sub(q, p), sub(r, p))) / (longest * longest)
+}
+
+// flat tells whether a loop without one of its corners has no area.
+func (a *arrangement) flat(loop []int32, without int) bool {
+	n := len(loop)
+	first := loop[(without+1)%n]
+	for k := 2; k+1 < n; k++ {
+		if a.fatness(first, loop[(without+k)%n], loop[(without+k+1)%n]) > flatness {
+			return false
 		}
 	}
-	return best
+	return true
 }
 
 // closed makes the mesh of a closed surface that bounds a solid, and counts its pieces
@@ -263,7 +289,8 @@ func Restore(corners []Vec, triangles [][3]int32, precision float64) (*Mesh, err
 
 // skipFilms finds triangles on both sides of a film of the solid, or of a gap in it, that
 // is thinner than faces can be told apart: what walls leave that coincide but for
-// rounding. They are no walls.
+// rounding. They are no walls. Where the surface lies in folds, three times in one place,
+// the triangle in the middle looks the wrong way: its area is taken off the other two.
 func (m *Mesh) skipFilms() {
 	gone := 0.0
 	for i := range m.t {
@@ -273,9 +300,17 @@ func (m *Mesh) skipFilms() {
 		a, b, c := m.corners(int32(i))
 		middle := scale(1.0/3, add(a, add(b, c)))
 		step := scale(shift*m.near, m.n[i])
-		if in, out := m.side(sub(middle, step)), m.side(add(middle, step)); in == out {
+		in, out := m.side(sub(middle, step)), m.side(add(middle, step))
+		switch {
+		case in == out:
 			m.wall[i] = -1
 			gone += m.size[i]
+		case in == solid.Outside && out == solid.Inside:
+			if m.folded == nil {
+				m.folded = make([]bool, len(m.t))
+			}
+			m.folded[i] = true
+			gone += 2 * m.size[i]
 		}
 	}
 	m.films = gone
