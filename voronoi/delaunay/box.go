@@ -1,6 +1,9 @@
 package delaunay
 
-import "math"
+import (
+	"math"
+	"sync"
+)
 
 // Lattices are full of sites on one sphere, and on rectilinear ones such sites are the
 // corners of a box with axis-parallel edges, exactly so whatever the rounding of the
@@ -8,51 +11,58 @@ import "math"
 // a number, x before y before z, it orders corners as coordinates would, and the sign
 // of an orientation of corners is that of the bits taken as coordinates.
 
-// oneBox returns the corners as bits if the points are corners of one box.
-func oneBox(a, b, c, d, o *point) (codes [5]uint8, ok bool) {
-	var x, y, z uint8
-	if x, ok = twoValues(a.x, b.x, c.x, d.x, o.x); !ok {
-		return codes, false
+// oneBox asks whether o and the four others are corners of one box and, when they are,
+// whether o is inside their sphere by the tie of inSphere. A table knows the answer.
+func (m *mesh) oneBox(a, b, c, d, o *point) (in, ok bool) {
+	x, ok := twoValues(a.x, b.x, c.x, d.x, o.x)
+	if !ok {
+		return false, false
 	}
-	if y, ok = twoValues(a.y, b.y, c.y, d.y, o.y); !ok {
-		return codes, false
+	y, ok := twoValues(a.y, b.y, c.y, d.y, o.y)
+	if !ok {
+		return false, false
 	}
-	if z, ok = twoValues(a.z, b.z, c.z, d.z, o.z); !ok {
-		return codes, false
+	z, ok := twoValues(a.z, b.z, c.z, d.z, o.z)
+	if !ok {
+		return false, false
 	}
-	for i := range codes {
-		codes[i] = (x>>i&1)<<2 | (y>>i&1)<<1 | z>>i&1
-	}
-	return codes, true
+	key := x | y<<5 | z<<10
+	return m.boxTies[key>>6&511]>>(key&63)&1 != 0, true
 }
 
-// twoValues sets bit i when value i is the larger of the two that occur; ok is false
-// when there are more. Zeros are positive here, so that equal values have equal bits.
-func twoValues(a, b, c, d, o float64) (larger uint8, ok bool) {
-	ua, ub, uc, ud, uo := math.Float64bits(a), math.Float64bits(b), math.Float64bits(c), math.Float64bits(d), math.Float64bits(o)
-	like := bit(ua == uo) | bit(ub == uo)<<1 | bit(uc == uo)<<2 | bit(ud == uo)<<3
-	other := ua
-	if ub != uo {
-		other = ub
-	}
-	if uc != uo {
-		other = uc
-	}
-	if ud != uo {
-		other = ud
-	}
-	unlike := bit(ua == other) | bit(ub == other)<<1 | bit(uc == other)<<2 | bit(ud == other)<<3
-	if like|unlike != 15 {
-		return 0, false
-	}
-	if math.Float64frombits(other) > o {
-		return uint8(unlike), true
-	}
-	if other == uo {
-		return 0, true
-	}
-	return uint8(like | 16), true
+// twoValues sets bit 0 to 3 for those of the four that differ from o, and bit 4 when they
+// are smaller; ok is false when they differ among each other too. Zeros are positive
+// here, so that equal values have equal bits. There is no branch, for it would be a guess.
+func twoValues(a, b, c, d, o float64) (key uint32, ok bool) {
+	uo := math.Float64bits(o)
+	ua, ub, uc, ud := math.Float64bits(a)^uo, math.Float64bits(b)^uo, math.Float64bits(c)^uo, math.Float64bits(d)^uo
+	all := ua | ub | uc | ud
+	na, nb, nc, nd := bit(ua != 0), bit(ub != 0), bit(uc != 0), bit(ud != 0)
+	bad := (na & bit(ua != all)) | (nb & bit(ub != all)) | (nc & bit(uc != all)) | (nd & bit(ud != all))
+	return na | nb<<1 | nc<<2 | nd<<3 | bit(math.Float64frombits(uo^all) < o)<<4, bad == 0
 }
+
+// makeBoxTies is boxTie for every key of oneBox, one bit each.
+var makeBoxTies = sync.OnceValue(func() *[512]uint64 {
+	ties := new([512]uint64)
+	for key := range uint32(1 << 15) {
+		var codes [5]uint8
+		for i := range codes {
+			for _, axis := range [3]uint32{key, key >> 5, key >> 10} {
+				// The fifth corner has bit 4 itself, the others where they are like it.
+				larger := axis >> 4 & 1
+				if i < 4 {
+					larger ^= axis >> i & 1
+				}
+				codes[i] = codes[i]<<1 | uint8(larger)
+			}
+		}
+		if boxTie(codes) {
+			ties[key>>6] |= 1 << (key & 63)
+		}
+	}
+	return ties
+})
 
 // boxOrient is the sign of det(b-a, c-a, d-a) for corners of a box.
 var boxOrient = makeBoxOrient()

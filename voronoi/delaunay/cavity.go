@@ -109,6 +109,14 @@ func (w *worker) inConflict(t uint32, p int32) bool {
 func (w *worker) slowConflict(t uint32, p int32) bool {
 	m := w.m
 	q := &m.tets[t]
+	if q.lo == q.hi {
+		pts := m.pts
+		a, b, c, d, o := &pts[q.v[0]&ownMask], &pts[q.v[1]], &pts[q.v[2]], &pts[q.v[3]], &pts[p]
+		if in, ok := m.oneBox(a, b, c, d, o); ok {
+			return in
+		}
+		return nearSphereTie(a, b, c, d, o)
+	}
 	if q.lo != loGhost {
 		return m.inSphere(q.v[0]&ownMask, q.v[1], q.v[2], q.v[3], p)
 	}
@@ -144,7 +152,7 @@ func (w *worker) fill(p int32) {
 	w.prepareLocals(edge)
 	tets, pts := m.tets, m.pts
 	queue, rim, locals, facets := w.queue, w.rim[:edge], w.locals, w.facets[:edge]
-	table, stride := w.table, w.stride
+	table, stride, exact := w.table, w.stride, m.exact
 	px, py, pz := pts[p].x, pts[p].y, pts[p].z
 	known := uint32(1) // locals[0] is the ghost
 	hint := uint32(noTet)
@@ -205,6 +213,9 @@ func (w *worker) fill(p int32) {
 			t.lo, t.hi = float32(r2*(1-plainMargin)), float32(r2*(1+plainMargin))
 		} else {
 			t.lo, t.hi = carefulBounds(det, p2, r2)
+		}
+		if exact && m.isExact(det, a.q+b.q+c.q, r2) {
+			t.lo, t.hi = float32(r2), float32(r2)
 		}
 	}
 	pts[p].tet = queue[0] >> 2

@@ -81,9 +81,15 @@ func (t *T) admit(p r3.Vec) bool {
 		}
 		f.box.lo[k], f.box.hi[k] = min(f.box.lo[k], one.box.lo[k]), max(f.box.hi[k], one.box.hi[k])
 	}
-	if one.bits > f.bits {
-		f.bits = one.bits
-		t.setLimits()
+	finer, exact := one.bits > f.bits, t.exact
+	f.bits = max(f.bits, one.bits)
+	t.setLimits()
+	if finer && exact { // for sites that are multiples of the unit that was
+		for i := range t.tets[:t.real] {
+			if q := &t.tets[i]; q.lo == q.hi {
+				t.setSphere(q)
+			}
+		}
 	}
 	return true
 }
@@ -121,7 +127,11 @@ func (m *mesh) setSphere(t *tet) {
 	oy := (a.q*ay + b.q*by + c.q*cy) * inv
 	oz := (a.q*az + b.q*bz + c.q*cz) * inv
 	t.c = [3]float64{o.x + ox, o.y + oy, o.z + oz}
-	t.lo, t.hi = carefulBounds(det, a.q*b.q*c.q, ox*ox+oy*oy+oz*oz)
+	r2 := ox*ox + oy*oy + oz*oz
+	t.lo, t.hi = carefulBounds(det, a.q*b.q*c.q, r2)
+	if m.exact && m.isExact(det, a.q+b.q+c.q, r2) {
+		t.lo, t.hi = float32(r2), float32(r2)
+	}
 }
 
 func (t *T) editor() *worker {

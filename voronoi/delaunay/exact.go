@@ -26,7 +26,8 @@ import (
 // 1e-322. A fused operation only rounds less.
 //
 // Before it, five corners of one box with axis-parallel edges are recognised as
-// cospherical (box.go).
+// cospherical (box.go); and where coordinates have few bits the stored sphere of near
+// corners is exact, so that a point between its bounds is on it (isExact).
 //
 // Stage 2, when coordinates are multiples of a unit, all of them (whole) or those of
 // the points asked about (commonUnit): in units the determinant and every number on
@@ -46,11 +47,13 @@ const (
 )
 
 func (m *mesh) setLimits() {
-	m.whole = m.frame.bits <= maxBits
+	m.boxTies = makeBoxTies()
+	m.whole = m.frame.bits <= maxBits-headroom || (m.frame.bits <= maxBits && m.frame.box.within(0x1p-2))
 	m.fine = m.frame.bits > coarseBits && !m.frame.rounded
 	if m.whole {
 		m.limits = limitsOf[m.frame.bits]
 	}
+	m.exact = m.frame.bits <= coarseBits
 }
 
 // limits are what the stages for multiples of 2^-k compare M and N with.
@@ -59,6 +62,7 @@ type limits struct {
 	inExact, inWrap64, inWrap128 float64
 	orientExact, orientWrap64    float64
 	near                         float64 // squared length below which nearKey is right
+	exactSquares, exactNumber    float64 // see isExact
 }
 
 // coarseBits is how many bits coordinates may have for the float determinants of near
@@ -84,13 +88,15 @@ func makeLimits() (l [mostUnit + 1]limits) {
 			// 2 √(orientFactor·N) < 2^62 units: N < 2^(124-2+99-6k)
 			orientWrap64: math.Ldexp(1, 220-6*k),
 			near:         math.Ldexp(1, 32-2*k),
+			exactSquares: math.Ldexp(1, 16-2*k),
+			exactNumber:  math.Ldexp(1, 50-8*k),
 		}
 	}
 	return l
 }
 
 // commonUnit returns the limits for the largest power of two that the points'
-// coordinates are multiples of; ok is false when they are more than 2^maxBits of it
+// coordinates are multiples of; ok is false when they are more than 2^60 of it
 // from zero, or it is too small.
 func commonUnit(points ...*point) (l *limits, ok bool) {
 	low, high := 2000, -2000
@@ -106,7 +112,7 @@ func commonUnit(points ...*point) (l *limits, ok bool) {
 		}
 	}
 	k := max(-low, 0)
-	if k > mostUnit || high+k > maxBits {
+	if k > mostUnit || high+k > maxBits-headroom {
 		return nil, false
 	}
 	return &limitsOf[k], true
@@ -212,8 +218,8 @@ func (m *mesh) inSphere(v0, v1, v2, v3, e int32) bool {
 	pts := m.pts
 	a, b, c, d, o := &pts[v0], &pts[v1], &pts[v2], &pts[v3], &pts[e]
 	if m.fine {
-		if codes, ok := oneBox(a, b, c, d, o); ok {
-			return boxTie(codes)
+		if in, ok := m.oneBox(a, b, c, d, o); ok {
+			return in
 		}
 	}
 	ax, ay, az := a.x-o.x, a.y-o.y, a.z-o.z
@@ -280,6 +286,44 @@ func nearTie(a, b, c, d int64) bool {
 			c = 0
 		default:
 			d = 0
+		}
+	}
+}
+
+// nearSphereTie is tie for a point o on a sphere that isExact, whose corners are so near
+// that one float64 holds the three differences of a corner one behind the other.
+func nearSphereTie(a, b, c, d, o *point) bool {
+	ax, ay, az := a.x-o.x, a.y-o.y, a.z-o.z
+	bx, by, bz := b.x-o.x, b.y-o.y, b.z-o.z
+	cx, cy, cz := c.x-o.x, c.y-o.y, c.z-o.z
+	dx, dy, dz := d.x-o.x, d.y-o.y, d.z-o.z
+	const width = 1 << 17
+	ka, kb := (ax*width+ay)*width+az, (bx*width+by)*width+bz
+	kc, kd := (cx*width+cy)*width+cz, (dx*width+dy)*width+dz
+	for {
+		switch top := max(ka, kb, kc, kd); {
+		case top <= 0:
+			return false
+		case top == ka:
+			if s := bz*(cx*dy-cy*dx) - cz*(bx*dy-by*dx) + dz*(bx*cy-by*cx); s != 0 {
+				return s > 0
+			}
+			ka = 0
+		case top == kb:
+			if s := az*(cx*dy-cy*dx) - cz*(ax*dy-ay*dx) + dz*(ax*cy-ay*cx); s != 0 {
+				return s < 0
+			}
+			kb = 0
+		case top == kc:
+			if s := az*(bx*dy-by*dx) - bz*(ax*dy-ay*dx) + dz*(ax*by-ay*bx); s != 0 {
+				return s > 0
+			}
+			kc = 0
+		default:
+			if s := az*(bx*cy-by*cx) - bz*(ax*cy-ay*cx) + cz*(ax*by-ay*bx); s != 0 {
+				return s < 0
+			}
+			kd = 0
 		}
 	}
 }

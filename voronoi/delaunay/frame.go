@@ -18,11 +18,14 @@ type frame struct {
 	rounded       bool
 	// Internal coordinates are multiples of 2^-bits; bits > maxBits: they are not.
 	bits int
+	// The sites lie as on a lattice.
+	lattice bool
 }
 
-// maxBits is the most that in-sphere in five words allows: differences need one bit
-// more, minors twice that and one, and so on up to 5*61+7 bits.
-const maxBits = 60
+// maxBits is the most that in-sphere in five words allows for coordinates within
+// 2^-headroom of zero: they are below 2^60 units, differences below 2^61, minors need
+// twice that and one bit, and so on up to 5*61+7 bits.
+const maxBits = 60 + headroom
 
 // headroom is how many binary places are left free, so that sites can be inserted
 // around the others without another frame.
@@ -41,6 +44,12 @@ func (b *bounds) add(x, y, z float64) {
 	b.lo[2], b.hi[2] = min(b.lo[2], z), max(b.hi[2], z)
 }
 
+// within reports whether nothing in the bounds is farther than limit from zero along an
+// axis.
+func (b *bounds) within(limit float64) bool {
+	return min(b.lo[0], b.lo[1], b.lo[2]) >= -limit && max(b.hi[0], b.hi[1], b.hi[2]) <= limit
+}
+
 func (b *bounds) extent() float64 {
 	return max(b.hi[0]-b.lo[0], b.hi[1]-b.lo[1], b.hi[2]-b.lo[2])
 }
@@ -48,7 +57,7 @@ func (b *bounds) extent() float64 {
 // grid covers the bounds; it fails when they are a point or too small to divide.
 func (b *bounds) grid() (grid, bool) {
 	factor := (1 << hilbertBits) / b.extent()
-	return grid{b.lo[0], b.lo[1], b.lo[2], factor}, factor < 1e290
+	return grid{x: b.lo[0], y: b.lo[1], z: b.lo[2], factor: factor}, factor < 1e290
 }
 
 func (f *frame) cells() grid {
@@ -56,6 +65,7 @@ func (f *frame) cells() grid {
 	if !(g.factor < 1e290) {
 		g.factor = 0
 	}
+	g.lattice = f.lattice
 	return g
 }
 
@@ -177,7 +187,7 @@ func (f *frame) surveyPart(sites []float64) surveyed {
 			s.rounded = true
 		}
 		s.box.add(sx, sy, sz)
-		const unit = 1 << maxBits
+		const unit = 1 << maxBits // a site beyond the box can be up to 2^63 units away
 		a, b, c := sx*unit, sy*unit, sz*unit
 		ia, ib, ic := int64(a), int64(b), int64(c)
 		if float64(ia) != a || float64(ib) != b || float64(ic) != c {

@@ -10,7 +10,8 @@ type tet struct {
 	v [4]int32
 	n [4]uint32 // over the face opposite v[k]: 4*tetrahedron + its face
 	// c is the circumcentre; a point nearer than √lo lies inside the sphere, one
-	// farther than √hi outside, and what is between is for the exact stage to say.
+	// farther than √hi outside, and what is between is for the exact stage to say. When
+	// they are equal the sphere is exact, and so is the point between on it.
 	c      [3]float64
 	lo, hi float32
 }
@@ -51,9 +52,11 @@ type mesh struct {
 	tets  []tet
 	used  int64 // records of tets in use, on a free list or in a worker's block
 
-	whole  bool // coordinates are multiples of 2^-bits for bits <= maxBits
-	fine   bool // coordinates have many bits, but are not rounded
-	limits limits
+	whole   bool // coordinates are multiples of 2^-bits for bits <= maxBits
+	fine    bool // coordinates have many bits, but are not rounded
+	exact   bool // coordinates have so few bits that spheres of near sites are stored exactly
+	limits  limits
+	boxTies *[512]uint64 // see oneBox
 }
 
 // worker inserts points; every goroutine has its own.

@@ -9,7 +9,8 @@ import (
 
 // The order of insertion (Amenta, Choi and Rote 2003): the sites are dealt at random
 // into rounds, each roundRatio times as large as the one before it, and the sites of
-// one round are sorted along a Hilbert curve. The deal depends on the site's index
+// one round are sorted along a Hilbert curve, those of lattices along the Z-order curve
+// (zCode). The deal depends on the site's index
 // alone; since the result does not depend on the order of insertion, neither does it
 // depend on the deal.
 
@@ -19,14 +20,14 @@ const (
 )
 
 // ranked is a site with its place in the order, in one word: its round, its cell along
-// the Hilbert curve and its index, which takes as many bits as it needs. Small words
+// the curve and its index, which takes as many bits as it needs. Small words
 // are half of what a sort costs; cells that hold many sites are divided again.
 type ranked uint64
 
 // packing says where the parts of a ranked are.
 type packing struct {
 	index uint // bits of the index
-	drop  uint // bits of the Hilbert code that are dropped
+	drop  uint // bits of the curve's code that are dropped
 	round uint // where the round begins
 }
 
@@ -76,6 +77,7 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 	n := len(sites) / 3
 	rounds := roundsFor(n)
 	pack := packingFor(n)
+	f.lattice = latticeLike(sites)
 	list, spare := make([]ranked, n), make([]ranked, n)
 	AdviseHugePages(list)
 	AdviseHugePages(spare)
@@ -113,14 +115,38 @@ func insertionOrder(f *frame, sites []float64, threads int) (order []uint32, end
 // grid places points in the cells of a cube.
 type grid struct {
 	x, y, z, factor float64
+	lattice         bool // number cells along the Z-order curve
 }
 
 func (g *grid) code(x, y, z float64) uint64 {
 	const top = 1<<hilbertBits - 1
-	return hilbertCode(
-		min(uint32((x-g.x)*g.factor), top),
-		min(uint32((y-g.y)*g.factor), top),
-		min(uint32((z-g.z)*g.factor), top))
+	i, j, k := min(uint32((x-g.x)*g.factor), top), min(uint32((y-g.y)*g.factor), top), min(uint32((z-g.z)*g.factor), top)
+	if g.lattice {
+		return zCode(i, j, k)
+	}
+	return hilbertCode(i, j, k)
+}
+
+// latticeLike reports whether a sample of the sites takes few values along each axis,
+// as the sites of a rectilinear lattice do.
+func latticeLike(sites []float64) bool {
+	const most = 1024
+	n := len(sites) / 3
+	if n < 64 {
+		return false
+	}
+	count := min(n, most)
+	values := make([]float64, count)
+	for axis := range 3 {
+		for i := range values {
+			values[i] = sites[3*(int(mix(uint64(i)+1)%uint64(n)))+axis]
+		}
+		slices.Sort(values)
+		if 2*len(slices.Compact(values)) > count {
+			return false
+		}
+	}
+	return true
 }
 
 const radixBits = 11
@@ -180,6 +206,7 @@ func (p packing) refineCell(f *frame, sites []float64, cell []ranked) {
 	if !ok {
 		return // all in one place
 	}
+	g.lattice = f.lattice
 	for i, r := range cell {
 		s := p.site(r)
 		x, y, z := f.internal(sites, s)

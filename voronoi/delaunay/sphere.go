@@ -31,6 +31,19 @@ const (
 // smallestSphere is the squared radius from which the plain bounds hold: 16ε/R < 2^-25.
 const smallestSphere = (16 * epsilon * (1 << 25)) * (16 * epsilon * (1 << 25))
 
+// isExact reports whether the centre and the squared radius r2 of a sphere are exact, for
+// coordinates that are whole multiples of a unit of at least 2^-coarseBits. In units: the
+// squared chords to three corners, with sum squares, are below 2^16, so that coordinates
+// of corners are below 2^8, minors below 2^17, det and the numerators N of the centre
+// integers below 2^36. When det is a power of two the centre N/(2 det) is exact, and the
+// sum of N² is when (2 R det)² is below 2^50. Places have at most 24 bits before and 28
+// behind the point then, which is as exact, and the squared distance of another site
+// either is or is larger than any such r2. What is left to ask is whether float32 holds r2.
+func (m *mesh) isExact(det, squares, r2 float64) bool {
+	return squares < m.limits.exactSquares && math.Float64bits(det)<<12 == 0 &&
+		4*r2*det*det < m.limits.exactNumber && float64(float32(r2)) == r2
+}
+
 // carefulBounds returns the bounds of a sphere outside the plain range. det is 2D's
 // half, p2 the square of P, r2 the squared radius.
 func carefulBounds(det, p2, r2 float64) (lo, hi float32) {

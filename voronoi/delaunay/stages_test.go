@@ -188,12 +188,17 @@ func checkWhole(t *rapid.T, m *mesh, v [4]int32, e int32, want int) {
 			t.Fatalf("two words: %d, want %d", got, want)
 		}
 	}
-	if codes, ok := oneBox(&m.pts[v[0]], &m.pts[v[1]], &m.pts[v[2]], &m.pts[v[3]], &o); ok && want != 0 {
-		t.Fatalf("corners %v of a box with sign %d", codes, want)
+	if in, ok := m.oneBox(&m.pts[v[0]], &m.pts[v[1]], &m.pts[v[2]], &m.pts[v[3]], &o); ok {
+		if want != 0 {
+			t.Fatalf("corners %v and %d of a box with sign %d", v, e, want)
+		}
+		if tie := m.tie(v, e); in != tie {
+			t.Fatalf("corners %v and %d of a box: by table %v, by the points %v", v, e, in, tie)
+		}
 	}
 }
 
-// checkSphere asks the stored sphere.
+// checkSphere asks the stored sphere; an exact one knows what lies on it.
 func checkSphere(t *rapid.T, m *mesh, v [4]int32, e int32, in bool) {
 	q := tet{v: v}
 	m.setSphere(&q)
@@ -202,5 +207,10 @@ func checkSphere(t *rapid.T, m *mesh, v [4]int32, e int32, in bool) {
 	d := x*x + y*y + z*z
 	if d < float64(q.lo) && !in || d > float64(q.hi) && in {
 		t.Fatalf("stored sphere of %v: distance² %v, bounds %v %v, inside %v", v, d, q.lo, q.hi, in)
+	}
+	if q.lo == q.hi && d == float64(q.lo) {
+		if got := nearSphereTie(&m.pts[v[0]], &m.pts[v[1]], &m.pts[v[2]], &m.pts[v[3]], &o); got != in {
+			t.Fatalf("%d on the exact sphere of %v: inside %v, want %v", e, v, got, in)
+		}
 	}
 }

@@ -27,8 +27,11 @@
 //     the absolute values of its terms, sharper for flat and stretched sets;
 //  3. expansions (Shewchuk 1997): exact sums of float64 values, in fixed arrays
 //     that are used again, without allocation;
-//  4. math/big, where a product could underflow or overflow or an expansion would
-//     outgrow its array.
+//  4. where a product could underflow or overflow or an expansion would outgrow its
+//     array: the same determinant of orient3d and in-sphere in numbers whose exponents
+//     have no limits, against the sum of its terms' magnitudes; coordinates of very
+//     different magnitudes, whose determinants are mostly one large product, end here;
+//  5. math/big.
 //
 // # Laws
 //

@@ -70,6 +70,9 @@ func inSphereSlow(a, b, c, d, e r3.Vec) int {
 			return s
 		}
 	}
+	if s, ok := inSphereWide(a, b, c, d, e); ok {
+		return s
+	}
 	return inSphereBig(a, b, c, d, e)
 }
 

@@ -58,6 +58,9 @@ func orient3DSlow(a, b, c, d r3.Vec) int {
 			return s
 		}
 	}
+	if s, ok := orient3DWide(a, b, c, d); ok {
+		return s
+	}
 	return orient3DBig(a, b, c, d)
 }
 

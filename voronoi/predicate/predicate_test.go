@@ -334,3 +334,36 @@ func ExampleOrient2D() {
 	fmt.Println(Orient2D(r2.Vec{X: x, Y: x}, r2.Vec{X: y, Y: y}, r2.Vec{X: x + y, Y: 0.3}))
 	// Output: -1
 }
+
+// TestWideStageIsSure: coordinates of all magnitudes are decided without math/big nearly
+// always, and never wrongly (the families with mixed exponents ask that of the whole).
+func TestWideStageIsSure(t *testing.T) {
+	r := rand.New(rand.NewPCG(5, 6))
+	asked, sure := 0, 0
+	for range 2000 {
+		p := mixed(r)
+		asked += 2
+		if s, ok := orient3DWide(p[0], p[1], p[2], p[3]); ok {
+			sure++
+			if want := exactOrient3D(p[0], p[1], p[2], p[3]); s != want {
+				t.Fatalf("orientation of %v: %d, want %d", p, s, want)
+			}
+		}
+		if s, ok := inSphereWide(p[0], p[1], p[2], p[3], p[4]); ok {
+			sure++
+			if want := exactInSphere(p[0], p[1], p[2], p[3], p[4]); s != want {
+				t.Fatalf("in-sphere of %v: %d, want %d", p, s, want)
+			}
+		}
+	}
+	if 10*sure < 9*asked {
+		t.Errorf("%d of %d decisions are sure", sure, asked)
+	}
+	inf := r3.Vec{X: math.Inf(1), Y: 1, Z: 1}
+	if _, ok := orient3DWide(inf, o, ex, ey); ok {
+		t.Error("an infinite coordinate has a sign")
+	}
+	if _, ok := inSphereWide(o, ex, ey, ez, r3.Vec{X: math.NaN()}); ok {
+		t.Error("NaN has a sign")
+	}
+}
