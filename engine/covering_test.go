@@ -125,28 +125,66 @@ func TestSpacing(t *testing.T) {
 	a.says("lies farther than 5 m across and 2 m up from every site")
 }
 
+// Parts and stretched distances in relations that say how the sites lie. Two parts of a cube
+// with a site in its middle are halves: all by symmetry, and what lies outside a ball is
+// halved too. By distances that count a metre up as two nothing else belongs to anyone.
+func TestCoveringClauses(t *testing.T) {
+	a := newAsker(t, 2)
+	a.text("CREATE SOLID cube AS BOX (0,0,0) TO (1,1,1); CREATE SOLID low AS BOX (0,0,0) TO (1,1,0.5); CREATE SOLID high AS BOX (0,0,0.5) TO (1,1,1); " +
+		"CREATE TABLE one AS (SELECT 'A' AS id, 0.5 AS x, 0.5 AS y, 0.5 AS z, 4.0 AS temp);")
+	a.is("SELECT part, ROUND(covering_radius, 12), mean_square_distance, n_eff FROM SPACING OF one WITHIN cube MEASURED IN (low, high);",
+		"low 0.866025403784 0.25 1; high 0.866025403784 0.25 1")
+	near(t, "outside a ball", a.number("SELECT SUM(beyond_1) FROM SPACING OF one WITHIN cube DISTANCES (0.5) MEASURED IN (low, high);"), 2-math.Pi/3, 1e-12)
+	a.is("SELECT ROUND(covering_radius, 12), mean_square_distance FROM SPACING OF one WITHIN cube STRETCHED (1,1,2);", "0.866025403784 0.25")
+	a.says("1 m up counts as 2 m")
+	a.text("SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF one WITHIN cube MEASURED IN (low) DISTANCES (0.5);")
+	a.says("of 0.5 m³ of low, 0.2382 (47.6 %) lies farther than 0.5 m from every site")
+	a.is("SELECT part, rank, x, y, z, ROUND(radius, 9) FROM PLACEMENTS OF one WITHIN cube NUMBER 1 MEASURED IN (low, high);",
+		"low 1 0 0 0 0.866025404; high 1 0 0 1 0.866025404")
+	a.says("each part has proposals of its own")
+	a.text("CREATE CAMPAIGN hall FROM 'twenty.csv' WITHIN BOX (0,0,0) TO (10,8,4); CREATE SOLID left AS BOX (0,0,0) TO (4,8,4); CREATE SOLID right AS BOX (4,0,0) TO (10,8,4);")
+	// What is above a limit in two parts is what is above it in the whole; so is the change of a mean.
+	for _, m := range []string{"NEAREST", "LINEAR"} {
+		near(t, m, a.number("SELECT SUM(volume) FROM EXCEEDANCE OF hall FOR temp ABOVE 20 METHOD "+m+" MEASURED IN (left, right);"),
+			a.number("SELECT volume FROM EXCEEDANCE OF hall FOR temp ABOVE 20 METHOD "+m+";"), 1e-9)
+		near(t, m+" unreached", a.number("SELECT SUM(unreached) FROM EXCEEDANCE OF hall FOR temp ABOVE 20 METHOD "+m+" MEASURED IN (left, right);"),
+			a.number("SELECT unreached FROM EXCEEDANCE OF hall FOR temp ABOVE 20 METHOD "+m+";"), 1e-9)
+	}
+	if n := a.number("SELECT COUNT(*) FROM EXCEEDANCE OF hall FOR temp ABOVE 20 METHOD SIBSON MEASURED IN (left, right) WHERE lower <= volume AND volume <= upper;"); n != 2 {
+		t.Errorf("%v parts by SIBSON within their bounds", n)
+	}
+	near(t, "mean changes", a.number("SELECT SUM(mean_change * CASE WHEN part = 'left' THEN 0.4 ELSE 0.6 END) FROM REDUNDANCY OF hall FOR temp MEASURED IN (left, right) WHERE id = 7;"),
+		a.number("SELECT mean_change FROM REDUNDANCY OF hall FOR temp WHERE id = 7;"), 1e-9)
+	// An evenly stretched space is the same space.
+	for _, q := range []string{"SELECT SUM(radius + radius_after) FROM PLACEMENTS OF hall NUMBER 4%s;", "SELECT SUM(mean_change) + SUM(radius_after) FROM REDUNDANCY OF hall FOR temp%s;",
+		"SELECT mesh_ratio + n_eff + beyond_1 FROM SPACING OF hall DISTANCES (2)%s;"} {
+		near(t, q, a.number(strings.Replace(q, "%s", " STRETCHED (3,3,3)", 1)), a.number(strings.Replace(q, "%s", "", 1)), 1e-9)
+	}
+}
+
 // What a user gets wrong is said with the way out.
 func TestCoveringMistakes(t *testing.T) {
 	a := newAsker(t, 2)
 	a.text("CREATE CAMPAIGN hall FROM 'twenty.csv' WITHIN BOX (0,0,0) TO (10,8,4);")
 	for query, want := range map[string]string{
-		"SELECT * FROM SECTION OF hall;":                                         "SECTION needs the plane",
-		"SELECT * FROM SECTION OF hall AT q = 1;":                                "a plane stands across x, y or z",
-		"SELECT * FROM SECTION OF hall AT hall;":                                 "SECTION is cut by a plane",
-		"SELECT * FROM SECTION OF hall AT z = 1 THROUGH (0,0,0) NORMAL (0,0,1);": "a SECTION has one plane",
-		"SELECT * FROM SECTION OF hall THROUGH (0,0,0) NORMAL (0,0,0);":          "has no direction",
-		"SELECT * FROM PLACEMENTS OF hall;":                                      "PLACEMENTS needs NUMBER",
-		"SELECT * FROM PLACEMENTS OF hall NUMBER 0;":                             "NUMBER is a whole number of 1 or more",
-		"SELECT * FROM PLACEMENTS OF hall NUMBER 2 CLEARANCE -1;":                "CLEARANCE is a length of 0 or more",
-		"SELECT * FROM PLACEMENTS OF hall UNCLIPPED NUMBER 2 CLEARANCE 1;":       "CLEARANCE needs a solid",
-		"SELECT * FROM PLACEMENTS OF hall NUMBER 2 AMONG (SELECT x FROM hall);":  "AMONG needs points with the columns x, y, z",
-		"SELECT * FROM REDUNDANCY OF hall;":                                      "REDUNDANCY needs the reading",
-		"SELECT * FROM REDUNDANCY OF hall UNCLIPPED FOR temp;":                   "REDUNDANCY needs a solid",
-		"SELECT * FROM SPACING OF hall DISTANCES (0);":                           "is a length of more than 0",
-		"SELECT * FROM SPACING OF hall DISTANCES (2, 2);":                        "DISTANCES names 2 twice",
-		"SELECT beyond_2 FROM SPACING OF hall DISTANCES (2);":                    "there is no column 'beyond_2'",
-		"SELECT id FROM CELLS OF hall ACROSS 5 UP 2;":                            "CELLS needs DISTANCES",
-		"SELECT * FROM SPACING OF hall STRETCHED (1,1,2);":                       "SPACING takes no STRETCHED",
+		"SELECT * FROM SECTION OF hall;":                                             "SECTION needs the plane",
+		"SELECT * FROM SECTION OF hall AT q = 1;":                                    "a plane stands across x, y or z",
+		"SELECT * FROM SECTION OF hall AT hall;":                                     "SECTION is cut by a plane",
+		"SELECT * FROM SECTION OF hall AT z = 1 THROUGH (0,0,0) NORMAL (0,0,1);":     "a SECTION has one plane",
+		"SELECT * FROM SECTION OF hall THROUGH (0,0,0) NORMAL (0,0,0);":              "has no direction",
+		"SELECT * FROM PLACEMENTS OF hall;":                                          "PLACEMENTS needs NUMBER",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 0;":                                 "NUMBER is a whole number of 1 or more",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 2 CLEARANCE -1;":                    "CLEARANCE is a length of 0 or more",
+		"SELECT * FROM PLACEMENTS OF hall UNCLIPPED NUMBER 2 CLEARANCE 1;":           "CLEARANCE needs a solid",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 2 AMONG (SELECT x FROM hall);":      "AMONG needs points with the columns x, y, z",
+		"SELECT * FROM REDUNDANCY OF hall;":                                          "REDUNDANCY needs the reading",
+		"SELECT * FROM REDUNDANCY OF hall UNCLIPPED FOR temp;":                       "REDUNDANCY needs a solid",
+		"SELECT * FROM SPACING OF hall DISTANCES (0);":                               "is a length of more than 0",
+		"SELECT * FROM SPACING OF hall DISTANCES (2, 2);":                            "DISTANCES names 2 twice",
+		"SELECT beyond_2 FROM SPACING OF hall DISTANCES (2);":                        "there is no column 'beyond_2'",
+		"SELECT id FROM CELLS OF hall ACROSS 5 UP 2;":                                "CELLS needs DISTANCES",
+		"SELECT * FROM SPACING OF hall STRETCHED (1,1,2) ACROSS 2 UP 1;":             "are two ways to say",
+		"SELECT * FROM PLACEMENTS OF hall NUMBER 2 STRETCHED (1,1,2) CLEARANCE 0.2;": "no place can be found that keeps a CLEARANCE",
 	} {
 		a.notes.Reset()
 		err := a.session.Run(context.Background(), "mistake", query, reference)

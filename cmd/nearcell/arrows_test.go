@@ -26,7 +26,7 @@ var arrows = map[string][]string{
 	"voronoi/delaunay":         {"voronoi/predicate"},
 	"voronoi/coverage":         {"voronoi", "voronoi/index", "voronoi/polyhedron", "voronoi/solid"},
 	"voronoi/overlay":          {"voronoi", "voronoi/polyhedron", "voronoi/solid"},
-	"voronoi/field":            {"voronoi", "voronoi/delaunay", "voronoi/polyhedron", "voronoi/predicate", "voronoi/solid"},
+	"voronoi/field":            {"voronoi", "voronoi/delaunay", "voronoi/polyhedron", "voronoi/predicate", "voronoi/solid", "voronoi/solid/mesh"},
 	"voronoi/section":          {"voronoi", "voronoi/polyhedron", "voronoi/solid"},
 	"voronoi":                  {"voronoi/predicate", "voronoi/polyhedron", "voronoi/index", "voronoi/solid", "voronoi/delaunay"},
 	"catalog/column":           {},

@@ -144,12 +144,17 @@ func (b *binder) coveringWhole(rel *relation.Bound, r *lang.Relation) error {
 			}
 			c.Distances = []float64{c.Across}
 		}
-		if rel.Def.Noun == "CELLS" && len(c.Distances) > 0 && (voronoi.IsStretch(c.Stretch) || slices.ContainsFunc(r.Clauses, isMeasured)) {
-			return b.notYet(r, "DISTANCES of CELLS with STRETCHED or MEASURED IN").WithHint("SPACING OF %s DISTANCES … tells it of the whole", rel.Name)
+		if c.Across > 0 && c.Up != c.Across && voronoi.IsStretch(c.Stretch) {
+			return problem.New("clauses", b.at(r), "ACROSS … UP … and STRETCHED are two ways to say that a metre up is not a metre across").
+				WithHint("STRETCHED with DISTANCES alone tells true distances to the site that is nearest by stretched ones")
 		}
 	case "PLACEMENTS":
 		if rel.Choice.Number == 0 {
 			return b.needsClause(rel, r, "NUMBER, how many", "NUMBER 5")
+		}
+		if c.Clearance > 0 && !slices.ContainsFunc(r.Clauses, isAmong) && voronoi.IsStretch(c.Stretch) {
+			return problem.New("clauses", b.at(r), "by stretched distances no place can be found that keeps a CLEARANCE").
+				WithHint("AMONG (GRID OF a solid STEP 0.5) gives places to choose from, and CLEARANCE then drops those too near to a wall")
 		}
 	}
 	return nil
@@ -167,7 +172,7 @@ func (b *binder) among(rel *relation.Bound, r *lang.Relation) ([]plan.Node, erro
 	return nil, nil
 }
 
-func isMeasured(c lang.Clause) bool {
-	_, is := c.(*lang.MeasuredInClause)
+func isAmong(c lang.Clause) bool {
+	_, is := c.(*lang.AmongClause)
 	return is
 }

@@ -12,7 +12,7 @@ import (
 // sharedParts makes what each part of MEASURED IN shares with each space that sites divide.
 // A part with convex pieces cuts cells itself; of any other, or where a relation looks for
 // places in a solid without such pieces, what part and space share is arranged exactly,
-// once for all cells and partitions.
+// once for all cells and partitions; so it is where a relation asks for it (Definition.Regions).
 func (b *binder) sharedParts(rel *relation.Bound, list []relation.Region) error {
 	spaces := []solid.Solid{rel.Clauses.Solid}
 	if zones := rel.Clauses.Zones; len(zones) > 0 {
@@ -26,6 +26,7 @@ func (b *binder) sharedParts(rel *relation.Bound, list []relation.Region) error 
 		shared := make([]solid.Solid, len(list))
 		for i, p := range list {
 			_, divided := p.Solid.(solid.Divided)
+			divided = divided && !rel.Def.Regions
 			if _, ok := space.(solid.Divided); space != nil && !ok && rel.Def.Places {
 				divided = false
 			}

@@ -35,6 +35,9 @@ func (s *sites) solidKnown(err error, p *Part) error {
 	case errors.As(err, &undivided), errors.As(err, &bare):
 		return problem.New("failed", s.b.Place, "%s cannot be told in %s: it knows neither parts nor a surface", s.b.Def.Noun, s.b.Clauses.SolidName).
 			WithHint("a BOX, a PRISM or a MESH does")
+	case errors.Is(err, coverage.ErrStretched):
+		return problem.New("stretched", s.b.Place, "%s by stretched distances takes no ellipsoids and keeps no clearance", s.b.Def.Noun).
+			WithHint("DISTANCES without ACROSS; AMONG for places that are clear of the walls")
 	case errors.As(err, &rigid):
 		return problem.New("stretched", s.b.Place, "ACROSS … UP … stretches %s, which is a %s and cannot be stretched yet", s.b.Clauses.SolidName, rigid.Kind).
 			WithHint("DISTANCES without ACROSS")
@@ -62,22 +65,24 @@ type far struct {
 // asked for: it is told beside the weighted answer.
 func (c *cellRows) lookBeyond(ctx context.Context, h *diagram.Handle, p *Part) error {
 	k := &c.b.Clauses
-	if len(k.Distances) == 0 || c.want&voronoi.Volume == 0 || p.Solid == nil {
+	if len(k.Distances) == 0 || c.want&voronoi.Volume == 0 || p.Solid == nil && !c.b.measuredIn() {
 		return nil
 	}
-	found, err := h.Spacing(ctx, k.Distances, k.Across, k.Up, coverage.Options{Threads: c.env.Threads, Progress: c.progress()})
-	if err != nil {
-		return c.solidKnown(err, p)
-	}
+	c.far.parts++
 	if c.far.beyond == nil {
 		c.far.beyond = make([]float64, len(k.Distances))
 	}
-	c.far.parts++
-	c.far.volume += found.Volume
-	for i, x := range found.Beyond {
-		c.far.beyond[i] += x
-	}
-	return nil
+	return c.b.eachRegion(p, func(_ int32, within solid.Solid) error {
+		found, err := h.Spacing(ctx, k.Distances, k.Across, k.Up, coverage.Options{Threads: c.env.Threads, Progress: c.progress(), Within: within})
+		if err != nil {
+			return c.solidKnown(err, p)
+		}
+		c.far.volume += found.Volume
+		for i, x := range found.Beyond {
+			c.far.beyond[i] += x
+		}
+		return nil
+	})
 }
 
 // tell says for each of DISTANCES how much of the space is farther from every site.
@@ -96,7 +101,7 @@ func (f *far) tell(s *sites, err error) {
 	if unit != "" {
 		unit = " " + unit
 	}
-	of := c.SolidName
+	_, of := s.b.Space()
 	if f.parts > 1 {
 		of = count(f.parts, "partition") + " of " + of
 	}

@@ -8,9 +8,9 @@ import (
 
 	"nearcell/catalog/column"
 	"nearcell/engine/note"
-	"nearcell/engine/problem"
 	"nearcell/voronoi"
 	"nearcell/voronoi/field"
+	"nearcell/voronoi/solid"
 )
 
 // exceedance is EXCEEDANCE OF c FOR a ABOVE v: one row for each partition and threshold,
@@ -21,8 +21,9 @@ var exceedance = &Definition{
 	Meaning: "how much space is above, or below, a limit",
 	Example: `SELECT threshold, share, lower, upper
 FROM EXCEEDANCE OF hall FOR temp ABOVE 8 THRESHOLDS (7, 9) METHOD NEAREST;`,
-	Clauses: []string{"FOR", "ABOVE", "BELOW", "THRESHOLDS", "METHOD", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "STRETCHED"},
+	Clauses: []string{"FOR", "ABOVE", "BELOW", "THRESHOLDS", "METHOD", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Zoned:   true,
+	Regions: true,
 	Open:    openExceedance,
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
@@ -51,7 +52,7 @@ func init() {
 		exceedThreshold: measure("threshold", column.Real, 0, 0, "the limit"),
 		exceedVolume:    measure("volume", column.Real, 3, voronoi.Volume, "space in which the reading is above the limit (BELOW: below it); with SIBSON as sampled"),
 		exceedShare:     measure("share", column.Real, 0, voronoi.Volume, "volume over the space that the method reaches"),
-		exceedUnreached: measure("unreached", column.Real, 3, voronoi.Volume, "space that the method does not reach: with LINEAR, the part of the solid outside the hull of the sites"),
+		exceedUnreached: measure("unreached", column.Real, 3, voronoi.Volume, "space that the method does not reach: with LINEAR, and with SIBSON without a solid, what lies outside the hull of the sites"),
 		exceedLower:     measure("lower", column.Real, 3, voronoi.Volume, "the volume is at least this"),
 		exceedUpper:     measure("upper", column.Real, 3, voronoi.Volume, "the volume is at most this"),
 	}
@@ -72,10 +73,6 @@ type exceedRows struct {
 }
 
 func openExceedance(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
-	if b.Clauses.Method.Method == field.Sibson && !b.Closed() {
-		return nil, problem.New("no-solid", b.Place, "EXCEEDANCE by METHOD SIBSON needs a solid: the space around %s has no end", b.Name).
-			WithHint("WITHIN a solid, METHOD LINEAR for the hull of the sites, or METHOD NEAREST")
-	}
 	s, err := newSites(b, env, input, r)
 	if err != nil {
 		return nil, err
@@ -120,27 +117,33 @@ func (e *exceedRows) Run(ctx context.Context, emit func(*column.Batch) error) er
 		if !e.wanted(p) {
 			continue
 		}
-		above, err := e.part(ctx, p)
-		if err != nil {
-			return err
-		}
-		out.now(p.Zone, noPart)
-		for k, t := range e.b.Clauses.Limits {
-			first = append(first, p.Rows[0])
-			e.put(out, above, k, t)
-			if out.room() == 0 {
-				if err := flush(); err != nil {
-					return err
+		err := e.b.eachRegion(p, func(region int32, within solid.Solid) error {
+			above, err := e.part(ctx, p, region, within)
+			if err != nil {
+				return err
+			}
+			out.now(p.Zone, region)
+			for k, t := range e.b.Clauses.Limits {
+				first = append(first, p.Rows[0])
+				e.put(out, above, k, t)
+				if out.room() == 0 {
+					if err := flush(); err != nil {
+						return err
+					}
 				}
 			}
+			return nil
+		})
+		if err != nil {
+			return err
 		}
 		e.partDone(i)
 	}
 	return flush()
 }
 
-// part finds the space of one part; nil where no site has a reading.
-func (e *exceedRows) part(ctx context.Context, p *Part) (*field.Above, error) {
+// part finds the space of one part, or of one region of it; nil where no site has a reading.
+func (e *exceedRows) part(ctx context.Context, p *Part, region int32, within solid.Solid) (*field.Above, error) {
 	h, err := e.open(ctx, p)
 	if err != nil {
 		return nil, err
@@ -176,12 +179,13 @@ func (e *exceedRows) part(ctx context.Context, p *Part) (*field.Above, error) {
 	var above *field.Above
 	switch e.b.Clauses.Method.Method {
 	case field.Linear:
-		above, err = from.field.LinearAbove(ctx, value, limits, run)
+		above, err = from.field.LinearAbove(ctx, within, value, limits, run)
 		e.flat = e.flat || from.handle.Facts().Dimension < 3
 	case field.Sibson:
-		above, err = from.field.SibsonAbove(ctx, value, limits, run)
+		above, err = from.field.SibsonAbove(ctx, within, value, limits, run)
+		e.flat = e.flat || !e.b.Closed() && from.handle.Facts().Dimension < 3
 	default:
-		above, err = e.nearest(ctx, p, from, read, limits, sign)
+		above, err = e.nearest(ctx, p, region, within, from, read, limits, sign)
 	}
 	if err != nil {
 		return nil, e.refused(err, p)
@@ -191,10 +195,19 @@ func (e *exceedRows) part(ctx context.Context, p *Part) (*field.Above, error) {
 
 // nearest adds up the cells whose reading is above: exact. Rows that share a place share
 // its cell.
-func (e *exceedRows) nearest(ctx context.Context, p *Part, from *speaking, read *readings, limits []float64, sign float64) (*field.Above, error) {
-	cells, err := from.handle.Measure(ctx, voronoi.Volume, nil, e.progress())
-	if err != nil {
-		return nil, err
+func (e *exceedRows) nearest(ctx context.Context, p *Part, region int32, within solid.Solid, from *speaking, read *readings, limits []float64, sign float64) (*field.Above, error) {
+	var volumes []float64
+	if within != nil {
+		var err error
+		if volumes, _, err = e.inRegion(ctx, from.handle, p, region); err != nil {
+			return nil, err
+		}
+	} else {
+		cells, err := from.handle.Measure(ctx, voronoi.Volume, nil, e.progress())
+		if err != nil {
+			return nil, err
+		}
+		volumes = cells.Volume
 	}
 	v := &e.input.Cols[e.of]
 	sums := make([]voronoi.Sum, len(limits))
@@ -204,7 +217,7 @@ func (e *exceedRows) nearest(ctx context.Context, p *Part, from *speaking, read 
 		if v.IsNull(int(row)) {
 			continue
 		}
-		volume := cells.Volume[from.number(site)] / float64(read.count[site])
+		volume := volumes[from.number(site)] / float64(read.count[site])
 		space.Add(volume)
 		for i, t := range limits {
 			if sign*numberAt(v, int(row)) > t {
@@ -213,7 +226,9 @@ func (e *exceedRows) nearest(ctx context.Context, p *Part, from *speaking, read 
 		}
 	}
 	a := &field.Above{Volume: make([]float64, len(limits)), Doubt: make([]float64, len(limits)), Space: space.Value()}
-	if p.Solid != nil {
+	if within != nil {
+		a.Space = within.Volume()
+	} else if p.Solid != nil {
 		a.Space = p.Solid.Volume()
 	}
 	a.Reached = a.Space
@@ -304,22 +319,35 @@ func (e *exceedRows) tell() {
 	}
 	switch e.b.Clauses.Method.Method {
 	case field.Linear:
-		if !e.b.Closed() {
+		if !e.b.Closed() && !e.b.measuredIn() {
 			add(note.Cells, "METHOD LINEAR without a solid: the space is the convex hull of the sites of %s", e.b.Name)
 		} else if e.left[1] > 0 && !math.IsInf(e.left[0], 0) {
 			of := percent(e.left[1])
 			if e.left[0] < e.left[1] {
 				of = percent(e.left[0]) + " to " + of
 			}
-			add(note.Cells, "METHOD LINEAR ends at the hull of the sites: %s of %s is outside it and unreached; share is that of the rest, upper counts all of it as %s",
-				of, e.b.Clauses.SolidName, word)
+			e.tellUnreached(of, word)
 		}
 	case field.Sibson:
+		if !e.b.Closed() {
+			if !e.b.measuredIn() {
+				add(note.Cells, "METHOD SIBSON without a solid: the space is the convex hull of the sites of %s", e.b.Name)
+			} else if e.left[1] > 0 {
+				e.tellUnreached(percent(e.left[1]), word)
+			}
+		}
 		if e.undecided > 0 {
-			add(note.Cells, "METHOD SIBSON has no closed form: lower and upper are certain (at most %s of the space between them), volume is sampled, with a standard error of up to %s of the space",
-				percent(e.undecided), percent(e.doubt))
+			add(note.Cells, "METHOD SIBSON has no closed form: volume is sampled, with a standard error of up to %s of the space. lower and upper are certain, with up to %s of the space between them: "+
+				"they count a place as soon as all, or any, of the sites that its estimate rests on read %s the limit", percent(e.doubt), percent(e.undecided), word)
 		}
 	}
+}
+
+// tellUnreached says how much of the space lies outside the hull of the sites.
+func (e *exceedRows) tellUnreached(share, word string) {
+	_, space := e.b.Space()
+	e.env.Notes.Add(note.Note, note.Cells, "METHOD %s ends at the hull of the sites of %s: %s of %s is outside it and unreached; share is that of the rest, upper counts all of it as %s",
+		strings.ToUpper(e.b.Clauses.Method.Method.String()), e.b.Name, share, space, word)
 }
 
 // percent writes a share for notes.

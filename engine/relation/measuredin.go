@@ -29,6 +29,23 @@ func (b *Bound) bodies(p *Part) []solid.Solid {
 	return list
 }
 
+// eachRegion calls do for the regions that a part reaches into, each a solid of its own;
+// without MEASURED IN once, with noPart and nil.
+func (b *Bound) eachRegion(p *Part, do func(region int32, within solid.Solid) error) error {
+	if !b.measuredIn() {
+		return do(noPart, nil)
+	}
+	for i, body := range b.bodies(p) {
+		if body == nil {
+			continue
+		}
+		if err := do(int32(i), body); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
 // dividedParts are the regions by their convex pieces, for relations of which binding has
 // seen to it that all have them.
 func (b *Bound) dividedParts() []solid.Divided {
@@ -55,6 +72,9 @@ func (c *cellRows) partInRegions(ctx context.Context, p *Part, rows *[]int32, ou
 	measured, err := h.MeasureIn(ctx, c.want, list, c.b.bodies(p), c.progress())
 	if err != nil {
 		return c.refused(err, p)
+	}
+	if err := c.lookBeyond(ctx, h, p); err != nil {
+		return err
 	}
 	c.said.rows += len(ks)
 	for _, k := range ks {

@@ -7,6 +7,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/voronoi"
 	"nearcell/voronoi/coverage"
+	"nearcell/voronoi/solid"
 )
 
 // placements is PLACEMENTS OF c NUMBER k: one row for each proposed further site.
@@ -15,8 +16,10 @@ var placements = &Definition{
 	RowIs:   "proposed further site, best first",
 	Meaning: "where further sites would fill the largest gaps, each chosen with those before it in place",
 	Example: `SELECT rank, x, y, z, radius, radius_after FROM PLACEMENTS OF hall NUMBER 5 CLEARANCE 0.3;`,
-	Clauses: []string{"NUMBER", "CLEARANCE", "AMONG", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
+	Clauses: []string{"NUMBER", "CLEARANCE", "AMONG", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Zoned:   true,
+	Regions: true,
+	Places:  true,
 	Open:    openPlacements,
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
@@ -41,8 +44,8 @@ func init() {
 		placementX:      measure("x", column.Real, 1, 0, "where it would stand, x"),
 		placementY:      measure("y", column.Real, 1, 0, "where it would stand, y"),
 		placementZ:      measure("z", column.Real, 1, 0, "where it would stand, z"),
-		placementRadius: measure("radius", column.Real, 1, 0, "distance from there to the nearest site, those placed before among them: the gap that it fills"),
-		placementAfter:  measure("radius_after", column.Real, 1, 0, "covering radius with it: the largest distance of any place to the nearest site; without a solid, of places among the sites"),
+		placementRadius: measure("radius", column.Real, 1, 0, "distance from there to the nearest site, those placed before among them: the gap that it fills; STRETCHED: the true one to the truly nearest"),
+		placementAfter:  measure("radius_after", column.Real, 1, 0, "covering radius with it: the largest distance of any place to the nearest site; without a solid, of places among the sites, NULL where none is left"),
 	}
 }
 
@@ -55,7 +58,7 @@ type placementRows struct {
 }
 
 func openPlacements(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
-	if b.Clauses.Clearance > 0 {
+	if b.Clauses.Clearance > 0 && !b.measuredIn() {
 		if err := b.needsSolid("CLEARANCE"); err != nil {
 			return nil, err
 		}
@@ -97,15 +100,7 @@ func (x *placementRows) Run(ctx context.Context, emit func(*column.Batch) error)
 		first = first[:0]
 		return err
 	}
-	for i, p := range x.parts {
-		if !x.wanted(p) {
-			continue
-		}
-		placed, err := x.part(ctx, p)
-		if err != nil {
-			return err
-		}
-		out.now(p.Zone, noPart)
+	put := func(p *Part, placed []coverage.Placement) error {
 		for rank, at := range placed {
 			first = append(first, p.Rows[0])
 			columns := out.columns[x.each:]
@@ -113,6 +108,12 @@ func (x *placementRows) Run(ctx context.Context, emit func(*column.Batch) error)
 				columns[placementRank].I[out.n] = int64(rank + 1)
 			}
 			for c, value := range map[int]float64{placementX: at.At.X, placementY: at.At.Y, placementZ: at.At.Z, placementRadius: at.Radius, placementAfter: at.After} {
+				if c == placementAfter && value == 0 { // no place is left that is a gap
+					if columns[c].Type != column.Null {
+						columns[c].SetNull(out.n)
+					}
+					continue
+				}
 				number(&columns[c], out.n, value)
 			}
 			out.n++
@@ -122,25 +123,48 @@ func (x *placementRows) Run(ctx context.Context, emit func(*column.Batch) error)
 				}
 			}
 		}
+		return nil
+	}
+	for i, p := range x.parts {
+		if !x.wanted(p) {
+			continue
+		}
+		err := x.b.eachRegion(p, func(region int32, within solid.Solid) error {
+			placed, err := x.part(ctx, p, within)
+			if err != nil {
+				return err
+			}
+			out.now(p.Zone, region)
+			return put(p, placed)
+		})
+		if err != nil {
+			return err
+		}
 		x.partDone(i)
 	}
 	return flush()
 }
 
-// part proposes sites of one part.
-func (x *placementRows) part(ctx context.Context, p *Part) ([]coverage.Placement, error) {
+// part proposes sites of one part, or in one region of it.
+func (x *placementRows) part(ctx context.Context, p *Part, within solid.Solid) ([]coverage.Placement, error) {
 	h, err := x.open(ctx, p)
 	if err != nil {
 		return nil, err
 	}
-	o := coverage.PlaceOptions{Options: coverage.Options{Threads: x.env.Threads, Progress: x.progress()}, Clearance: x.b.Clauses.Clearance}
+	o := coverage.PlaceOptions{Options: coverage.Options{Threads: x.env.Threads, Progress: x.progress(), Within: within}, Clearance: x.b.Clauses.Clearance}
 	if x.points != nil {
 		o.Among = []voronoi.Vec{}
 		refused := 0
+		allowed := func(at voronoi.Vec) bool {
+			if within != nil {
+				return coverage.Allowed(within, at, o.Clearance)
+			}
+			return h.Allowed(at, o.Clearance)
+		}
 		for row, at := range x.points.at {
 			switch {
 			case !x.points.has(int32(row)):
-			case !h.Allowed(at, o.Clearance):
+			case !allowed(at):
 				refused++
 			default:
 				o.Among = append(o.Among, at)
@@ -167,6 +191,10 @@ func (x *placementRows) tell() {
 	}
 	if x.refusedPlaces > 0 && len(c.Zones) == 0 {
 		why := "outside " + c.SolidName
+		if x.b.measuredIn() {
+			_, name := x.b.Space()
+			why = "outside " + name
+		}
 		if c.Clearance > 0 {
 			why += ", or nearer to its walls than " + x.length(c.Clearance)
 		}
@@ -175,8 +203,11 @@ func (x *placementRows) tell() {
 	if x.fewest >= 0 {
 		add(note.Rows, "only %s could be proposed: no place is left but those of sites", count(x.fewest, "place"))
 	}
-	if len(x.parts) > 0 && !x.b.Closed() {
+	if len(x.parts) > 0 && !x.b.Closed() && !x.b.measuredIn() {
 		add(note.Cells, "without a solid, only places among the sites of %s can be told; WITHIN a solid gives those at its walls too", x.b.Name)
+	}
+	if x.b.measuredIn() && len(x.parts) > 0 {
+		add(note.Cells, "with MEASURED IN each part has proposals of its own, and radius_after is of that part")
 	}
 	if c.Clearance > 0 && x.points == nil {
 		add(note.Cells, "with CLEARANCE, no other place is farther from the sites by more than %s; radius_after counts all of the space, up to the walls",

@@ -7,9 +7,11 @@ import (
 	"slices"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/diagram"
 	"nearcell/engine/note"
 	"nearcell/voronoi"
 	"nearcell/voronoi/coverage"
+	"nearcell/voronoi/solid"
 )
 
 // redundancy is REDUNDANCY OF c FOR a: one row for each site, the one that is least missed
@@ -19,9 +21,10 @@ var redundancy = &Definition{
 	RowIs:   "site, least missed first",
 	Meaning: "which site can go: how the mean by volume changes, and how large the largest gap is without it",
 	Example: `SELECT rank, id, mean_change, radius_after FROM REDUNDANCY OF hall FOR temp ORDER BY rank LIMIT 5;`,
-	Clauses: []string{"FOR", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
+	Clauses: []string{"FOR", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Own:     true,
 	Zoned:   true,
+	Regions: true,
 	Open:    openRedundancy,
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
@@ -55,8 +58,10 @@ type redundancyRows struct {
 }
 
 func openRedundancy(b *Bound, env *Env, input *column.Table, r Request) (Rows, error) {
-	if err := b.needsSolid("REDUNDANCY"); err != nil {
-		return nil, err
+	if !b.measuredIn() {
+		if err := b.needsSolid("REDUNDANCY"); err != nil {
+			return nil, err
+		}
 	}
 	s, err := newSites(b, env, input, r)
 	if err != nil {
@@ -92,35 +97,41 @@ func (r *redundancyRows) Run(ctx context.Context, emit func(*column.Batch) error
 		if !r.wanted(p) {
 			continue
 		}
-		out.now(p.Zone, noPart)
-		missed, err := r.part(ctx, p)
+		err := r.b.eachRegion(p, func(region int32, within solid.Solid) error {
+			out.now(p.Zone, region)
+			missed, err := r.part(ctx, p, region, within)
+			if err != nil {
+				return err
+			}
+			for rank, m := range missed {
+				row := p.Rows[m.k]
+				if r.r.Wanted != nil && !column.Bit(r.r.Wanted, int(row)) {
+					continue
+				}
+				rows = append(rows, row)
+				columns := out.columns[r.own:]
+				if columns[redundancyRank].Type != column.Null {
+					columns[redundancyRank].I[out.n] = int64(rank + 1)
+				}
+				number(&columns[redundancyRadius], out.n, m.radius)
+				if math.IsNaN(m.change) {
+					if columns[redundancyChange].Type != column.Null {
+						columns[redundancyChange].SetNull(out.n)
+					}
+				} else {
+					number(&columns[redundancyChange], out.n, m.change)
+				}
+				out.n++
+				if out.room() == 0 {
+					if err := flush(); err != nil {
+						return err
+					}
+				}
+			}
+			return nil
+		})
 		if err != nil {
 			return err
-		}
-		for rank, m := range missed {
-			row := p.Rows[m.k]
-			if r.r.Wanted != nil && !column.Bit(r.r.Wanted, int(row)) {
-				continue
-			}
-			rows = append(rows, row)
-			columns := out.columns[r.own:]
-			if columns[redundancyRank].Type != column.Null {
-				columns[redundancyRank].I[out.n] = int64(rank + 1)
-			}
-			number(&columns[redundancyRadius], out.n, m.radius)
-			if math.IsNaN(m.change) {
-				if columns[redundancyChange].Type != column.Null {
-					columns[redundancyChange].SetNull(out.n)
-				}
-			} else {
-				number(&columns[redundancyChange], out.n, m.change)
-			}
-			out.n++
-			if out.room() == 0 {
-				if err := flush(); err != nil {
-					return err
-				}
-			}
 		}
 		r.partDone(i)
 	}
@@ -133,8 +144,8 @@ type missed struct {
 	change, radius float64 // NaN: not told
 }
 
-// part finds what changes without each row of a part, least first.
-func (r *redundancyRows) part(ctx context.Context, p *Part) ([]missed, error) {
+// part finds what changes without each row of a part, in the whole or in a region, least first.
+func (r *redundancyRows) part(ctx context.Context, p *Part, region int32, within solid.Solid) ([]missed, error) {
 	h, err := r.open(ctx, p)
 	if err != nil {
 		return nil, err
@@ -142,7 +153,7 @@ func (r *redundancyRows) part(ctx context.Context, p *Part) ([]missed, error) {
 	if err := r.notInfinite(p, r.of); err != nil {
 		return nil, err
 	}
-	o := coverage.Options{Threads: r.env.Threads, Progress: r.progress()}
+	o := coverage.Options{Threads: r.env.Threads, Progress: r.progress(), Within: within}
 	all, err := h.Redundancy(ctx, o)
 	if err != nil {
 		return nil, r.solidKnown(err, p)
@@ -169,7 +180,6 @@ func (r *redundancyRows) part(ctx context.Context, p *Part) ([]missed, error) {
 	whole := 0.0
 	for _, l := range all {
 		radius[l.Site] = l.Radius
-		r.lone = r.lone || math.IsInf(l.Radius, 1)
 	}
 	rowsAt := make([]int32, len(p.Sites))
 	for _, site := range p.Site {
@@ -177,12 +187,12 @@ func (r *redundancyRows) part(ctx context.Context, p *Part) ([]missed, error) {
 	}
 	for _, n := range rowsAt {
 		if n > 1 && whole == 0 {
-			m, err := h.Measure(ctx, voronoi.Farthest, nil, nil)
+			far, err := r.farthest(ctx, h, p, region, within)
 			if err != nil {
 				return nil, r.refused(err, p)
 			}
 			for _, l := range all {
-				whole = max(whole, m.Farthest[l.Site])
+				whole = max(whole, far[l.Site])
 			}
 		}
 	}
@@ -195,6 +205,7 @@ func (r *redundancyRows) part(ctx context.Context, p *Part) ([]missed, error) {
 		if rowsAt[site] > 1 {
 			m.radius = whole // the others stay in its place
 		}
+		r.lone = r.lone || math.IsInf(m.radius, 1)
 		switch n := float64(read.count[site]); {
 		case v.IsNull(row):
 			m.change = 0
@@ -211,6 +222,20 @@ func (r *redundancyRows) part(ctx context.Context, p *Part) ([]missed, error) {
 		return cmp.Or(cmp.Compare(amount(a.change), amount(b.change)), cmp.Compare(a.radius, b.radius))
 	})
 	return found, nil
+}
+
+// farthest are the distances from the sites to the farthest points of their cells, or of what
+// of these lies in a region.
+func (r *redundancyRows) farthest(ctx context.Context, h *diagram.Handle, p *Part, region int32, within solid.Solid) ([]float64, error) {
+	if within != nil {
+		_, far, err := r.inRegion(ctx, h, p, region)
+		return far, err
+	}
+	m, err := h.Measure(ctx, voronoi.Farthest, nil, nil)
+	if err != nil {
+		return nil, err
+	}
+	return m.Farthest, nil
 }
 
 // amount is how much a mean changes; what is not told is missed most.
@@ -241,12 +266,20 @@ func (r *redundancyRows) changes(ctx context.Context, p *Part, all []coverage.Lo
 		}
 		number = func(i int32) int32 { return list[i] }
 	}
-	space := p.Solid.Volume()
+	var space float64
+	if o.Within != nil {
+		space = o.Within.Volume()
+	} else {
+		space = p.Solid.Volume()
+	}
 	for _, l := range losses {
 		site := number(l.Site)
 		share[site] = l.Volume / space
 		if len(l.Takers) == 0 {
-			continue // nobody is left
+			if len(losses) > 1 {
+				change[site] = 0 // its cell does not reach into the region
+			}
+			continue // or nobody is left
 		}
 		var sum voronoi.Sum
 		for _, t := range l.Takers {

@@ -72,6 +72,7 @@ type Definition struct {
 	Own      bool     // its rows carry the sites' own columns
 	Zoned    bool     // it takes zones: every diagram it asks for is that of a Part (see zones.go)
 	Pairs    bool     // a row is a pair of cells, told apart by the columns a and b, and their volumes add up to the space
+	Regions  bool     // it asks for what a region of MEASURED IN shares with the space as a solid of its own
 	Places   bool     // it looks for places in the solid: regions of a solid without convex pieces are arranged
 	Computed []Column // the columns beside the sites' own; TEXT stands for the identifier's type
 	NotYet   []string // columns of the language that are not there yet

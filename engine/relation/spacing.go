@@ -6,9 +6,11 @@ import (
 	"strconv"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/diagram"
 	"nearcell/engine/note"
 	"nearcell/voronoi"
 	"nearcell/voronoi/coverage"
+	"nearcell/voronoi/solid"
 )
 
 // spacing is SPACING OF c: one row for each partition, with how evenly the sites lie.
@@ -17,8 +19,9 @@ var spacing = &Definition{
 	RowIs:   "campaign",
 	Meaning: "how densely and how evenly the sites lie in their space; with DISTANCES also how much of it lies farther from every site (beyond_1, beyond_2 …)",
 	Example: `SELECT covering_radius, mesh_ratio, beyond_1 FROM SPACING OF hall DISTANCES (5);`,
-	Clauses: []string{"DISTANCES", "ACROSS", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING"},
+	Clauses: []string{"DISTANCES", "ACROSS", "WITHIN", "UNCLIPPED", "FOR EACH", "OMITTING", "MEASURED IN", "STRETCHED"},
 	Zoned:   true,
+	Regions: true,
 	Open:    openSpacing,
 	layout: func(b *Bound) []Column {
 		computed := b.computed()
@@ -47,7 +50,7 @@ const (
 
 func init() {
 	spacing.Computed = []Column{
-		spacingRadius:     measure("covering_radius", column.Real, 1, voronoi.Farthest, "largest distance of any place of the space to the nearest site"),
+		spacingRadius:     measure("covering_radius", column.Real, 1, voronoi.Farthest, "largest distance of any place of the space to the nearest site; STRETCHED: the true one to the site nearest by stretched distances, here and below"),
 		spacingSeparation: measure("separation", column.Real, 1, voronoi.NearestFace, "half the least distance between two sites; NULL for one site"),
 		spacingRatio:      measure("mesh_ratio", column.Real, 0, voronoi.Farthest|voronoi.NearestFace, "covering_radius over separation: near 1 is even, large is crowded here and empty there"),
 		spacingSquare:     measure("mean_square_distance", column.Real, 2, 0, "mean over the space of the squared distance to the nearest site"),
@@ -117,24 +120,28 @@ func (s *spacingRows) Run(ctx context.Context, emit func(*column.Batch) error) (
 		if !s.wanted(p) {
 			continue
 		}
-		out.now(p.Zone, noPart)
-		if err := s.part(ctx, p, out); err != nil {
-			return err
-		}
-		first = append(first, p.Rows[0])
-		out.n++
-		if out.room() == 0 {
-			if err := flush(); err != nil {
+		err := s.b.eachRegion(p, func(region int32, within solid.Solid) error {
+			out.now(p.Zone, region)
+			if err := s.part(ctx, p, region, within, out); err != nil {
 				return err
 			}
+			first = append(first, p.Rows[0])
+			out.n++
+			if out.room() == 0 {
+				return flush()
+			}
+			return nil
+		})
+		if err != nil {
+			return err
 		}
 		s.partDone(i)
 	}
 	return flush()
 }
 
-// part writes the row of one partition.
-func (s *spacingRows) part(ctx context.Context, p *Part, out *batches) error {
+// part writes the row of one partition, or of one region of it.
+func (s *spacingRows) part(ctx context.Context, p *Part, region int32, within solid.Solid, out *batches) error {
 	h, err := s.open(ctx, p)
 	if err != nil {
 		return err
@@ -142,6 +149,12 @@ func (s *spacingRows) part(ctx context.Context, p *Part, out *batches) error {
 	m, err := h.Measure(ctx, voronoi.Farthest|voronoi.NearestFace|voronoi.Volume, nil, s.progress())
 	if err != nil {
 		return s.refused(err, p)
+	}
+	volumes, farthest := m.Volume, m.Farthest
+	if within != nil {
+		if volumes, farthest, err = s.inRegion(ctx, h, p, region); err != nil {
+			return s.refused(err, p)
+		}
 	}
 	columns := out.columns[s.each:]
 	put := func(i int, x float64) { // NaN is NULL
@@ -160,8 +173,8 @@ func (s *spacingRows) part(ctx context.Context, p *Part, out *batches) error {
 		if !m.Inside[site] {
 			continue
 		}
-		radius, separation = max(radius, m.Farthest[site]), min(separation, m.NearestFace[site])
-		v := m.Volume[site] * p.share(k)
+		radius, separation = max(radius, farthest[site]), min(separation, m.NearestFace[site])
+		v := volumes[site] * p.share(k)
 		volume.Add(v)
 		squares.Add(float64(v * v))
 		largest = max(largest, v)
@@ -172,7 +185,7 @@ func (s *spacingRows) part(ctx context.Context, p *Part, out *batches) error {
 	put(spacingRadius, radius)
 	put(spacingSeparation, separation)
 	put(spacingRatio, radius/separation)
-	if p.Solid == nil {
+	if p.Solid == nil && within == nil {
 		s.endless = true
 		for i := spacingSquare; i < spacingBeyond+len(s.b.Clauses.Distances); i++ {
 			put(i, math.NaN())
@@ -182,11 +195,28 @@ func (s *spacingRows) part(ctx context.Context, p *Part, out *batches) error {
 	total := volume.Value()
 	put(spacingEffective, total*total/squares.Value())
 	put(spacingLargest, largest/total)
-	return s.spread(ctx, p, put)
+	return s.spread(ctx, p, within, put)
+}
+
+// inRegion are the volumes of the cells in a region and how far they reach in it.
+func (s *sites) inRegion(ctx context.Context, h *diagram.Handle, p *Part, region int32) (volumes, farthest []float64, err error) {
+	in, err := h.MeasureIn(ctx, voronoi.Volume|voronoi.Farthest, nil, s.b.bodies(p), s.progress())
+	if err != nil {
+		return nil, nil, err
+	}
+	volumes, farthest = make([]float64, len(in)), make([]float64, len(in))
+	for site, list := range in {
+		for i := range list {
+			if list[i].Part == region {
+				volumes[site], farthest[site] = list[i].Volume, list[i].Farthest
+			}
+		}
+	}
+	return volumes, farthest, nil
 }
 
 // spread writes what has to be integrated over the space.
-func (s *spacingRows) spread(ctx context.Context, p *Part, put func(i int, x float64)) error {
+func (s *spacingRows) spread(ctx context.Context, p *Part, within solid.Solid, put func(i int, x float64)) error {
 	any := s.wants(spacingSquare)
 	for i := range s.b.Clauses.Distances {
 		any = any || s.wants(spacingBeyond+i)
@@ -199,7 +229,7 @@ func (s *spacingRows) spread(ctx context.Context, p *Part, put func(i int, x flo
 		return err
 	}
 	c := &s.b.Clauses
-	found, err := h.Spacing(ctx, c.Distances, c.Across, c.Up, coverage.Options{Threads: s.env.Threads, Progress: s.progress()})
+	found, err := h.Spacing(ctx, c.Distances, c.Across, c.Up, coverage.Options{Threads: s.env.Threads, Progress: s.progress(), Within: within})
 	if err != nil {
 		return s.solidKnown(err, p)
 	}

@@ -43,8 +43,8 @@ func (h cubes) Less(i, j int) bool {
 
 // clearOf chooses places that keep clear of the walls. The cubes stay from one place to the next:
 // what they may hold only falls.
-func (p *placer) clearOf(clearance float64) func() (Placement, bool) {
-	body := p.d.Solid()
+func (p *placer) clearOf(o PlaceOptions) func() (Placement, bool) {
+	clearance, body := o.Clearance, p.bodyOf(o)
 	if body == nil {
 		return p.largestGap
 	}

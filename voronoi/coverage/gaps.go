@@ -64,6 +64,8 @@ type Options struct {
 var (
 	// ErrSites: the sites are not those of the diagram.
 	ErrSites = errors.New("coverage: the sites are not those of the diagram")
+	// ErrStretched: what is asked for needs plain distances.
+	ErrStretched = errors.New("coverage: distances are stretched")
 )
 
 // UndividedError is a solid that knows neither convex parts of itself nor its surface.

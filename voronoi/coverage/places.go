@@ -16,6 +16,7 @@ type Placement struct {
 	At     Vec
 	Radius float64 // distance from At to the nearest site, those placed before among them
 	After  float64 // covering radius with it; without a solid the radius of the largest gap left
+	Left   Vec     // where that gap is; without meaning where After is 0
 	Index  int32   // in PlaceOptions.Among; -1 without
 }
 
@@ -37,8 +38,13 @@ type PlaceOptions struct {
 // sites and walls change no faster than the place), within ClearanceWithin of the greatest radius, and set where
 // walls and sites meet in a corner to rounding.
 //
-// Radii never increase (with Clearance, by no more than ClearanceWithin). Equal ones are told apart by x, y, z. It needs plain distances. The error is as of [Gaps].
+// Radii never increase (with Clearance, by no more than ClearanceWithin). Equal ones are told apart by x, y, z. With
+// Options.Within all this is of that part, and the walls are those of the part. With stretched
+// distances Clearance without Among is ErrStretched. The error is as of [Gaps].
 func Places(ctx context.Context, d *voronoi.Diagram, sites []Vec, n int, o PlaceOptions) ([]Placement, error) {
+	if voronoi.IsStretch(d.Stretch()) {
+		return stretchedPlaces(ctx, d, sites, n, o)
+	}
 	found, err := Gaps(ctx, d, sites, o.Options)
 	if err != nil {
 		return nil, err
@@ -53,7 +59,7 @@ func Places(ctx context.Context, d *voronoi.Diagram, sites []Vec, n int, o Place
 	case o.Among != nil:
 		p.choose = p.amongOf(o)
 	case o.Clearance > 0:
-		p.choose = p.clearOf(o.Clearance)
+		p.choose = p.clearOf(o)
 	default:
 		p.choose = p.largestGap
 	}
@@ -70,7 +76,7 @@ func Places(ctx context.Context, d *voronoi.Diagram, sites []Vec, n int, o Place
 			return nil, err
 		}
 		if g := p.top(); g != nil {
-			next.After = g.Radius
+			next.After, next.Left = g.Radius, g.At
 		}
 		placed = append(placed, next)
 		if o.Progress != nil {
@@ -158,7 +164,7 @@ func (p *placer) largestGap() (Placement, bool) {
 
 // amongOf chooses from a list.
 func (p *placer) amongOf(o PlaceOptions) func() (Placement, bool) {
-	body := p.d.Solid()
+	body := p.bodyOf(o)
 	type place struct {
 		index int32
 		far   float64
@@ -188,6 +194,14 @@ func (p *placer) amongOf(o PlaceOptions) func() (Placement, bool) {
 		}
 		return Placement{At: o.Among[list[best].index], Radius: list[best].far, Index: list[best].index}, true
 	}
+}
+
+// bodyOf is the space in which sites may stand; nil: anywhere.
+func (p *placer) bodyOf(o PlaceOptions) solid.Solid {
+	if o.Within != nil {
+		return o.Within
+	}
+	return p.d.Solid()
 }
 
 // Allowed tells whether a site may stand at a place: in the solid, and that far from its walls.

@@ -32,25 +32,29 @@ type Loss struct {
 
 // Redundancy tells for each site what becomes of its cell if it goes: the cells of the others keep what
 // they have, and its own is divided among its neighbours (no diagram is built again).
-// It needs a solid and plain distances. The error is ErrNoSolid, one of the solid, or that
+// With Options.Within all is of that part. With stretched distances sites are nearest by these, and
+// radii are true. It needs a solid or a part. The error is ErrNoSolid, one of the solid, or that
 // of ctx.
 func Redundancy(ctx context.Context, d *voronoi.Diagram, o Options) ([]Loss, error) {
 	body := d.Solid()
+	if o.Within != nil {
+		body = o.Within
+	}
 	if body == nil {
 		return nil, ErrNoSolid
 	}
 	sites := distinct(d)
-	cells, err := d.Measure(ctx, voronoi.Farthest, nil)
+	farthest, err := reaches(ctx, d, o)
 	if err != nil {
 		return nil, err
 	}
 	// The largest of the others is the largest, or the second for the largest itself.
 	first, second := int32(-1), 0.0
 	for _, i := range sites {
-		switch r := cells.Farthest[i]; {
-		case first < 0 || r > cells.Farthest[first]:
+		switch r := farthest[i]; {
+		case first < 0 || r > farthest[first]:
 			if first >= 0 {
-				second = cells.Farthest[first]
+				second = farthest[first]
 			}
 			first = i
 		case r > second:
@@ -58,7 +62,10 @@ func Redundancy(ctx context.Context, d *voronoi.Diagram, o Options) ([]Loss, err
 		}
 	}
 	losses := make([]Loss, len(sites))
-	err = forCells(ctx, len(sites), o, func() *divider { return &divider{d: d, body: body, convex: body.Planes() != nil} }, func(w *divider, i int) error {
+	k := d.Stretch()
+	metric := times(k, k)
+	convex := o.Within == nil && body.Planes() != nil
+	err = forCells(ctx, len(sites), o, func() *divider { return &divider{d: d, body: body, convex: convex, metric: metric} }, func(w *divider, i int) error {
 		l := &losses[i]
 		l.Site = sites[i]
 		if len(sites) == 1 {
@@ -66,7 +73,7 @@ func Redundancy(ctx context.Context, d *voronoi.Diagram, o Options) ([]Loss, err
 			return nil
 		}
 		if l.Radius = second; sites[i] != first {
-			l.Radius = cells.Farthest[first]
+			l.Radius = farthest[first]
 		}
 		return w.divide(l)
 	})
@@ -76,11 +83,35 @@ func Redundancy(ctx context.Context, d *voronoi.Diagram, o Options) ([]Loss, err
 	return losses, nil
 }
 
+// reaches are the distances from the sites to the farthest points of what counts of their
+// cells.
+func reaches(ctx context.Context, d *voronoi.Diagram, o Options) ([]float64, error) {
+	if o.Within == nil {
+		cells, err := d.Measure(ctx, voronoi.Farthest, nil)
+		if err != nil {
+			return nil, err
+		}
+		return cells.Farthest, nil
+	}
+	in, err := d.MeasureIn(ctx, voronoi.Farthest|voronoi.Volume, nil, []solid.Solid{o.Within})
+	if err != nil {
+		return nil, err
+	}
+	far := make([]float64, d.Len())
+	for s, list := range in {
+		if len(list) > 0 {
+			far[s] = list[0].Farthest
+		}
+	}
+	return far, nil
+}
+
 // divider shares cells out. It is the scratch of one goroutine.
 type divider struct {
 	d           *voronoi.Diagram
 	body        solid.Solid
-	convex      bool
+	convex      bool // the cells are cut by the body already
+	metric      Vec
 	cell, piece polyhedron.Cell
 	near        []int32
 	work        solid.Work
@@ -99,6 +130,9 @@ func (w *divider) divide(l *Loss) error {
 		}
 	}
 	slices.Sort(w.near)
+	if lo, hi := w.body.Bounds(); !w.convex && !boxed(&w.cell, sub(lo, p), sub(hi, p)) {
+		return nil
+	}
 	var sum voronoi.Sum
 	for _, j := range w.near {
 		volume, far, err := w.share(p, j)
@@ -133,7 +167,12 @@ func (w *divider) share(p Vec, j int32) (volume, far float64, err error) {
 		if k == j {
 			continue
 		}
-		if c.Bisect(sub(w.d.Place(k), q), Vec{}, k) == polyhedron.Empty {
+		by := sub(w.d.Place(k), q)
+		if w.metric == (Vec{X: 1, Y: 1, Z: 1}) {
+			if c.Bisect(by, Vec{}, k) == polyhedron.Empty {
+				return 0, 0, nil
+			}
+		} else if n := times(w.metric, by); c.Clip(n, dot(n, by)/2, k) == polyhedron.Empty {
 			return 0, 0, nil
 		}
 	}

@@ -22,21 +22,28 @@ type Spread struct {
 // ellipsoids that reach r across and r·up/across up counts as beyond it. 0: balls.
 // MeanSquare is of true distances all the same.
 //
-// The shares of balls in cells are exact but for rounding. It needs a solid, and plain distances. The error is
-// ErrNoSolid, an *[UndividedError], a *solid.StretchError, or that of ctx.
+// With Options.Within it is the part that counts. With stretched distances a place belongs to
+// the site that is nearest by these, and its distance from that is the true one; ellipsoids need
+// plain distances.
+//
+// The shares of balls in cells are exact but for rounding. It needs a solid or a part. The error is
+// ErrNoSolid, ErrStretched, an *[UndividedError], a *solid.StretchError, or that of ctx.
 func Spacing(ctx context.Context, d *voronoi.Diagram, distances []float64, across, up float64, o Options) (*Spread, error) {
-	if d.Solid() == nil {
+	if d.Solid() == nil && o.Within == nil {
 		return nil, ErrNoSolid
 	}
 	s, err := spread(ctx, d, distances, o)
 	if err != nil || !(across > 0) || across == up || len(distances) == 0 {
 		return s, err
 	}
-	moved, err := lifted(d, across/up, o)
+	if voronoi.IsStretch(d.Stretch()) {
+		return nil, ErrStretched
+	}
+	moved, inner, err := lifted(d, across/up, o)
 	if err != nil {
 		return nil, err
 	}
-	in, err := spread(ctx, moved, distances, o)
+	in, err := spread(ctx, moved, distances, inner)
 	if err != nil {
 		return nil, err
 	}
@@ -47,23 +54,15 @@ func Spacing(ctx context.Context, d *voronoi.Diagram, distances []float64, acros
 	return s, nil
 }
 
-// lifted is the diagram of the sites in the solid, with heights multiplied.
-func lifted(d *voronoi.Diagram, factor float64, o Options) (*voronoi.Diagram, error) {
-	k := Vec{X: 1, Y: 1, Z: factor}
-	body, err := solid.Stretch(d.Solid(), k)
-	if err != nil {
-		return nil, err
-	}
+// lifted is the diagram of the sites in the solid, with heights multiplied; and the options
+// for it.
+func lifted(d *voronoi.Diagram, factor float64, o Options) (*voronoi.Diagram, Options, error) {
 	var sites []Vec
 	for _, i := range distinct(d) {
-		sites = append(sites, times(d.Place(i), k))
+		sites = append(sites, d.Place(i))
 	}
-	lo, hi := body.Bounds()
-	tolerance := 4 * (largest(lo) + largest(hi)) // which sites take part is decided already
-	for _, p := range sites {
-		tolerance = max(tolerance, 4*largest(p))
-	}
-	return voronoi.New(sites, voronoi.Options{Solid: body, Tolerance: tolerance, Threads: o.Threads})
+	in, _, inner, err := moved(d, sites, Vec{X: 1, Y: 1, Z: factor}, o)
+	return in, inner, err
 }
 
 // distinct lists the sites that have a cell of their own, ascending.
@@ -89,9 +88,21 @@ func distinct(d *voronoi.Diagram) []int32 {
 
 // spread adds up the cells, in the order of their sites.
 func spread(ctx context.Context, d *voronoi.Diagram, distances []float64, o Options) (*Spread, error) {
-	if _, err := newCarver(d.Solid()); err != nil {
+	body := d.Solid()
+	if o.Within != nil {
+		body = o.Within
+		if _, ok := body.(solid.Faceted); !ok && d.Solid() != nil {
+			common, err := within(d.Solid(), body)
+			if err != nil {
+				return nil, err
+			}
+			body = common
+		}
+	}
+	if _, err := newCarver(body); err != nil {
 		return nil, err
 	}
+	lo, hi := body.Bounds()
 	sites := distinct(d)
 	width := 2 + len(distances)
 	found := make([]float64, width*len(sites))
@@ -100,12 +111,15 @@ func spread(ctx context.Context, d *voronoi.Diagram, distances []float64, o Opti
 		carve *carver
 	}
 	err := forCells(ctx, len(sites), o, func() *scratch {
-		c, _ := newCarver(d.Solid())
+		c, _ := newCarver(body)
 		return &scratch{carve: c}
 	}, func(w *scratch, i int) error {
 		p := d.Place(sites[i])
 		if err := d.Insert(p, &w.cell); err != nil || w.cell.Empty() {
 			return err
+		}
+		if o.Within != nil && !boxed(&w.cell, sub(lo, p), sub(hi, p)) {
+			return nil
 		}
 		sums := make([]voronoi.Sum, width)
 		far := w.cell.Farthest()
@@ -132,7 +146,9 @@ func spread(ctx context.Context, d *voronoi.Diagram, distances []float64, o Opti
 		sums[i%width].Add(found[i])
 	}
 	s := &Spread{Volume: sums[0].Value(), Beyond: make([]float64, len(distances))}
-	s.MeanSquare = sums[1].Value() / s.Volume
+	if s.Volume > 0 {
+		s.MeanSquare = sums[1].Value() / s.Volume
+	}
 	for k := range distances {
 		x := sums[2+k].Value()
 		if x < 1e-13*s.Volume { // what rounding leaves of nothing
@@ -141,4 +157,13 @@ func spread(ctx context.Context, d *voronoi.Diagram, distances []float64, o Opti
 		s.Beyond[k] = math.Min(x, s.Volume)
 	}
 	return s, nil
+}
+
+// boxed cuts a cell by a box and tells whether anything is left: parts are small, and open
+// cells are not.
+func boxed(c *polyhedron.Cell, lo, hi Vec) bool {
+	w := polyhedron.Wall(0)
+	return c.Clip(Vec{X: 1}, hi.X, w) != polyhedron.Empty && c.Clip(Vec{X: -1}, -lo.X, w) != polyhedron.Empty &&
+		c.Clip(Vec{Y: 1}, hi.Y, w) != polyhedron.Empty && c.Clip(Vec{Y: -1}, -lo.Y, w) != polyhedron.Empty &&
+		c.Clip(Vec{Z: 1}, hi.Z, w) != polyhedron.Empty && c.Clip(Vec{Z: -1}, -lo.Z, w) != polyhedron.Empty
 }

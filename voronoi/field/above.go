@@ -48,8 +48,9 @@ type Above struct {
 // LinearAbove is Above for a field that is linear in each Delaunay tetrahedron, for a
 // field of the method Linear. Where the solid has parts outside the hull of the sites,
 // nothing is known there: it is in Space, not in Reached, and in Upper. Without a solid
-// the space is the hull. Of sites in one plane nothing is reached.
-func (f *Field) LinearAbove(ctx context.Context, value func(site int32) float64, thresholds []float64, r Run) (*Above, error) {
+// the space is the hull. Of sites in one plane nothing is reached. within is the part of the
+// solid that is asked about, a solid of its own; nil: the whole.
+func (f *Field) LinearAbove(ctx context.Context, within solid.Solid, value func(site int32) float64, thresholds []float64, r Run) (*Above, error) {
 	if f.facts.Dimension == 3 {
 		if err := f.needHull(ctx); err != nil {
 			return nil, err
@@ -59,7 +60,7 @@ func (f *Field) LinearAbove(ctx context.Context, value func(site int32) float64,
 	if f.t != nil {
 		n = f.t.NumTets()
 	}
-	s := &tetSums{Field: f, value: value, thresholds: thresholds}
+	s := &tetSums{Field: f, extent: f.extentOf(within), value: value, thresholds: thresholds}
 	s.setUnit()
 	total := make([]fixed, 1+len(thresholds))
 	var guard sync.Mutex
@@ -89,9 +90,23 @@ func (f *Field) LinearAbove(ctx context.Context, value func(site int32) float64,
 	return s.result(total), nil
 }
 
+// extent is the space that is asked about.
+type extent struct {
+	body   solid.Solid // nil: the hull of the sites
+	convex bool
+}
+
+func (f *Field) extentOf(within solid.Solid) extent {
+	if within == nil {
+		return extent{f.body, f.convex}
+	}
+	return extent{within, within.Planes() != nil}
+}
+
 // tetSums adds up tetrahedra.
 type tetSums struct {
 	*Field
+	extent
 	value      func(int32) float64
 	thresholds []float64
 	unit       float64 // a power of two above all sums
@@ -106,11 +121,11 @@ func (s *tetSums) setUnit() {
 	if !(s.unit > 0) || math.IsInf(s.unit, 0) {
 		s.unit = 1
 	}
-	s.all = s.body == nil
-	if s.body != nil && s.convex {
+	s.all = s.extent.body == nil
+	if s.extent.body != nil && s.extent.convex {
 		s.all = true
 		for _, i := range s.everyone() {
-			s.all = s.all && s.body.Side(s.d.Place(i), 0) != solid.Outside
+			s.all = s.all && s.extent.body.Side(s.d.Place(i), 0) != solid.Outside
 		}
 	}
 }
@@ -120,8 +135,8 @@ func (s *tetSums) result(total []fixed) *Above {
 	a := &Above{Volume: make([]float64, n), Lower: make([]float64, n), Upper: make([]float64, n), Doubt: make([]float64, n)}
 	a.Reached = total[0].value() * s.unit
 	a.Space = a.Reached
-	if s.body != nil {
-		a.Space = s.body.Volume()
+	if s.extent.body != nil {
+		a.Space = s.extent.body.Volume()
 		a.Reached = min(a.Reached, a.Space)
 		if a.Space-a.Reached < 1e-12*a.Space {
 			a.Reached = a.Space
@@ -167,7 +182,7 @@ func (s *tetSums) inside(at [4]Vec) bool {
 	for _, p := range at {
 		far = max(far, length(sub(p, m)))
 	}
-	return s.body.Distance(m) > float64(far*(1+1e-9)) && s.body.Side(m, 0) == solid.Inside
+	return s.extent.body.Distance(m) > float64(far*(1+1e-9)) && s.extent.body.Side(m, 0) == solid.Inside
 }
 
 // cutTet adds the part of a tetrahedron in the solid.
@@ -175,7 +190,7 @@ func (s *tetSums) cutTet(at [4]Vec, z [4]float64, volume float64, w *Work, sums 
 	if !shape(at, &w.cell) {
 		return nil // flat to within rounding
 	}
-	in, err := s.volumeOf(&w.cell, at[0], w)
+	in, err := s.extent.volumeOf(&w.cell, at[0], w)
 	if err != nil {
 		return err
 	}
@@ -197,7 +212,7 @@ func (s *tetSums) cutTet(at [4]Vec, z [4]float64, volume float64, w *Work, sums 
 			if w.piece.Clip(scale(-1, g), z[0]-t, polyhedron.Wall(0)) == polyhedron.Empty {
 				continue
 			}
-			above, err := s.volumeOf(&w.piece, at[0], w)
+			above, err := s.extent.volumeOf(&w.piece, at[0], w)
 			if err != nil {
 				return err
 			}
@@ -235,8 +250,8 @@ func shape(at [4]Vec, c *polyhedron.Cell) bool {
 	return true
 }
 
-// volumeOf is the volume of a cell local to p in the solid; the cell is cut.
-func (f *Field) volumeOf(c *polyhedron.Cell, p Vec, w *Work) (float64, error) {
+// volumeOf is the volume of a cell local to p in the space; the cell is cut.
+func (f *extent) volumeOf(c *polyhedron.Cell, p Vec, w *Work) (float64, error) {
 	if f.convex {
 		lo, hi := f.body.Bounds()
 		if !clipBox(c, sub(lo, p), sub(hi, p)) {

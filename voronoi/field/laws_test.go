@@ -190,7 +190,7 @@ func TestLinearAboveAgainstThePolytope(t *testing.T) {
 	for i := range 401 {
 		thresholds = append(thresholds, -0.3+2*float64(i)/400)
 	}
-	a, err := f.LinearAbove(context.Background(), func(s int32) float64 { return slope(sites[s]) }, thresholds, Run{})
+	a, err := f.LinearAbove(context.Background(), nil, func(s int32) float64 { return slope(sites[s]) }, thresholds, Run{})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -217,14 +217,14 @@ func TestLinearAboveAgainstThePolytope(t *testing.T) {
 	// Part of the room is outside the hull; what is inside and reached fits together.
 	some := in(room, random(80, 9))
 	g := fieldOf(t, some, room, Options{Method: Linear})
-	b, err := g.LinearAbove(context.Background(), func(s int32) float64 { return slope(some[s]) }, []float64{-9, 0.4, 9}, Run{Threads: 2})
+	b, err := g.LinearAbove(context.Background(), nil, func(s int32) float64 { return slope(some[s]) }, []float64{-9, 0.4, 9}, Run{Threads: 2})
 	if err != nil {
 		t.Fatal(err)
 	}
 	if b.Volume[0] != b.Reached || b.Volume[2] != 0 || !(b.Reached < b.Space) || !(b.Volume[1] > 0 && b.Volume[1] < b.Reached) {
 		t.Errorf("%+v", b)
 	}
-	once, err := g.LinearAbove(context.Background(), func(s int32) float64 { return slope(some[s]) }, []float64{-9, 0.4, 9}, Run{Threads: 1})
+	once, err := g.LinearAbove(context.Background(), nil, func(s int32) float64 { return slope(some[s]) }, []float64{-9, 0.4, 9}, Run{Threads: 1})
 	if err != nil || !slices.Equal(once.Volume, b.Volume) || once.Reached != b.Reached {
 		t.Errorf("one thread gives %+v, two %+v (%v)", once, b, err)
 	}
@@ -279,7 +279,7 @@ func TestBoundsHold(t *testing.T) {
 	value := func(s int32) float64 { return sites[s].X }
 	f := fieldOf(t, sites, room, Options{})
 	limits := []float64{-1, 0.3, 0.55, 2}
-	a, err := f.SibsonAbove(context.Background(), value, limits, Run{})
+	a, err := f.SibsonAbove(context.Background(), nil, value, limits, Run{})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -356,7 +356,44 @@ func TestPlaces(t *testing.T) {
 	if _, err := New(context.Background(), one.d, 0, Options{Method: Distance}); err != ErrPower {
 		t.Errorf("no power: %v", err)
 	}
-	if _, err := fieldOf(t, cubeCorners, nil, Options{}).SibsonAbove(context.Background(), nil, nil, Run{}); err != ErrOpen {
-		t.Errorf("no solid: %v", err)
+}
+
+// Without a solid the space of SibsonAbove is the hull; in parts the bounds hold too. The
+// corners of a cube have Sibson coordinates that are trilinear weights (their values are x
+// here, so that the field is x): above 0.4 lies 0.6 of the cube.
+func TestAboveInParts(t *testing.T) {
+	value := func(s int32) float64 { return cubeCorners[s].X }
+	ctx := context.Background()
+	for _, c := range []struct {
+		name                   string
+		within                 solid.Solid
+		space, reached, volume float64
+	}{
+		{"hull", nil, 1, 1, 0.6},
+		{"a part in it", box(t, v(0.2, 0.25, 0.25), v(0.8, 0.75, 0.75)), 0.15, 0.15, 0.1},
+		{"a part that reaches out", box(t, v(0.5, 0, 0), v(2, 1, 1)), 1.5, 0.5, 0.5},
+		{"a part outside", box(t, v(3, 0, 0), v(4, 1, 1)), 1, 0, 0},
+	} {
+		for _, m := range []Method{Sibson, Linear} {
+			f := fieldOf(t, cubeCorners, nil, Options{Method: m})
+			ask := f.SibsonAbove
+			if m == Linear {
+				ask = f.LinearAbove
+			}
+			a, err := ask(ctx, c.within, value, []float64{0.4}, Run{})
+			if err != nil {
+				t.Fatal(err)
+			}
+			if math.Abs(a.Space-c.space) > 1e-9 || math.Abs(a.Reached-c.reached) > 1e-9 {
+				t.Errorf("%s, %v: space %v, reached %v", c.name, m, a.Space, a.Reached)
+			}
+			if !(a.Lower[0] <= c.volume+1e-9 && a.Volume[0] >= a.Lower[0] && a.Upper[0] >= c.volume+c.space-c.reached-1e-9) || math.Abs(a.Volume[0]-c.volume) > 5*a.Doubt[0]+1e-9 {
+				t.Errorf("%s, %v: %v (%v to %v, ±%v), want %v", c.name, m, a.Volume[0], a.Lower[0], a.Upper[0], a.Doubt[0], c.volume)
+			}
+		}
+	}
+	flat, err := fieldOf(t, []Vec{v(0, 0, 0), v(1, 0, 0), v(0, 1, 0), v(1, 1, 0)}, nil, Options{}).SibsonAbove(ctx, nil, value, []float64{0.4}, Run{})
+	if err != nil || flat.Space != 0 || flat.Reached != 0 {
+		t.Errorf("sites in one plane: %v, %v", flat, err)
 	}
 }

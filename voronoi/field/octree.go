@@ -10,10 +10,8 @@ import (
 	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/polyhedron"
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
-
-// ErrOpen: bounds of a natural neighbour field need a solid.
-var ErrOpen = errors.New("field: the space has no end")
 
 // How far the space is divided.
 const (
@@ -32,35 +30,109 @@ const (
 // corners are above the threshold the box is, where none is it is not, and else it is
 // divided again. What is still undecided in the end lies between Lower and Upper, and
 // samples of the field in it give Volume.
-func (f *Field) SibsonAbove(ctx context.Context, value func(site int32) float64, thresholds []float64, r Run) (*Above, error) {
+//
+// within is as for LinearAbove. Without a solid the space is the convex hull of the sites;
+// of a part that reaches out of it, what lies outside is in Space, not in Reached, and in Upper.
+// Of sites in one plane nothing is reached then.
+func (f *Field) SibsonAbove(ctx context.Context, within solid.Solid, value func(site int32) float64, thresholds []float64, r Run) (*Above, error) {
+	e := f.extentOf(within)
+	unreached := 0.0
 	if f.body == nil {
-		return nil, ErrOpen
+		if f.facts.Dimension < 3 {
+			space := 0.0
+			if within != nil {
+				space = within.Volume()
+			}
+			return f.allUnreached(space, len(thresholds)), nil
+		}
+		if err := f.needHull(ctx); err != nil {
+			return nil, err
+		}
+		hull, err := f.hullBody(within)
+		if err != nil {
+			return nil, err
+		}
+		if within != nil {
+			unreached = within.Volume()
+		}
+		if hull == nil { // the part lies outside the hull
+			return f.allUnreached(within.Volume(), len(thresholds)), nil
+		}
+		e = extent{hull, false}
+		unreached = max(0, unreached-hull.Volume())
 	}
 	n := len(thresholds)
 	a := &Above{Volume: make([]float64, n), Lower: make([]float64, n), Upper: make([]float64, n), Doubt: make([]float64, n)}
-	a.Space = f.body.Volume()
-	a.Reached = a.Space
+	a.Reached = e.body.Volume()
+	a.Space = a.Reached + unreached
 	if f.facts.Dimension == 3 {
 		if err := f.needHull(ctx); err != nil {
 			return nil, err
 		}
 	}
-	o := &octree{Field: f, value: value, run: r}
+	o := &octree{Field: f, extent: e, value: value, run: r}
 	o.listBalls()
 	for i, t := range thresholds {
 		if err := o.divide(ctx, t); err != nil {
 			return nil, err
 		}
-		a.Lower[i] = min(o.above.Value(), a.Space)
-		a.Upper[i] = min(a.Lower[i]+o.undecided(), a.Space)
+		a.Lower[i] = min(o.above.Value(), a.Reached)
+		a.Upper[i] = min(a.Lower[i]+o.undecided(), a.Reached)
 		estimate, doubt, err := o.sample(ctx, t)
 		if err != nil {
 			return nil, err
 		}
 		a.Volume[i] = min(max(a.Lower[i]+estimate, a.Lower[i]), a.Upper[i])
+		a.Upper[i] += unreached
 		a.Doubt[i] = doubt
 	}
 	return a, nil
+}
+
+// allUnreached is what is known of a space of which nothing is.
+func (f *Field) allUnreached(volume float64, n int) *Above {
+	a := &Above{Volume: make([]float64, n), Lower: make([]float64, n), Upper: make([]float64, n), Doubt: make([]float64, n), Space: volume}
+	for i := range a.Upper {
+		a.Upper[i] = volume
+	}
+	return a
+}
+
+// hullBody is the convex hull of the sites as a solid, or what of it lies in a part (nil:
+// all); nil where that is nothing.
+func (f *Field) hullBody(within solid.Solid) (solid.Solid, error) {
+	number := map[int32]int32{}
+	var v []Vec
+	var t [][3]int32
+	for _, c := range f.t.Hull() {
+		var q [3]int32
+		for i, s := range c {
+			n, ok := number[s]
+			if !ok {
+				n = int32(len(v))
+				number[s] = n
+				v = append(v, f.d.Place(f.site(s)))
+			}
+			q[i] = n
+		}
+		t = append(t, q)
+	}
+	hull, _, err := mesh.New(v, t, mesh.Options{Kind: "hull"})
+	if err != nil {
+		return nil, err
+	}
+	if within == nil {
+		return hull, nil
+	}
+	region, err := mesh.NewRegion(within, hull)
+	var fault *mesh.Error
+	if errors.As(err, &fault) && fault.Fault == mesh.NothingLeft {
+		return nil, nil
+	}
+	if err != nil {
+		return nil, err
+	}
+	return region, nil
 }
 
 // ball is a tetrahedron's sphere with the least and the greatest value of its corners;
@@ -75,6 +147,7 @@ type ball struct {
 
 type octree struct {
 	*Field
+	extent
 	value func(int32) float64
 	run   Run
 	balls []ball
@@ -103,7 +176,7 @@ func (o *octree) listBalls() {
 		z := o.value(s)
 		o.least, o.most = min(o.least, z), max(o.most, z)
 	}
-	lo, hi := o.body.Bounds()
+	lo, hi := o.extent.body.Bounds()
 	o.size = length(sub(o.d.Local(hi), o.d.Local(lo)))
 	o.every = o.facts.Dimension < 3
 	if o.every {
@@ -181,15 +254,15 @@ func (b *ball) meets(lo, hi Vec) bool {
 
 // divide decides boxes against a threshold until little is left undecided.
 func (o *octree) divide(ctx context.Context, t float64) error {
-	lo, hi := o.body.Bounds()
+	lo, hi := o.extent.body.Bounds()
 	o.above = voronoi.Sum{}
 	o.boxes = nil
 	all := make([]int32, len(o.balls))
 	for i := range all {
 		all[i] = int32(i)
 	}
-	whole := o.body.Volume()
-	start := cube{lo: lo, hi: hi, volume: whole, cut: o.body.Facts().Kind != "box", meets: all}
+	whole := o.extent.body.Volume()
+	start := cube{lo: lo, hi: hi, volume: whole, cut: o.extent.body.Facts().Kind != "box", meets: all}
 	o.place(start, t)
 	limit := mostBoxes + boxesASite*o.facts.Distinct
 	for range mostLevels {
@@ -280,21 +353,21 @@ func (o *octree) measure(c *cube, cut bool, w *Work) error {
 		return nil
 	}
 	m := add(c.lo, scale(0.5, e))
-	if o.body.Distance(m) > length(e)/2*(1+1e-9) {
-		if o.body.Side(m, 0) != solid.Inside {
+	if o.extent.body.Distance(m) > length(e)/2*(1+1e-9) {
+		if o.extent.body.Side(m, 0) != solid.Inside {
 			c.volume = 0
 		}
 		return nil
 	}
 	c.cut = true
 	w.piece.SetBox(sub(c.lo, m), sub(c.hi, m), [6]int32{})
-	v, err := o.volumeOf(&w.piece, m, w)
+	v, err := o.extent.volumeOf(&w.piece, m, w)
 	c.volume = v
 	return err
 }
 
-// sample estimates how much of the undecided space is above t: the field is asked in
-// the middle of boxes spread evenly over it. The doubt is the standard error that this
+// sample estimates how much of the undecided space is above t: the field is asked at
+// a place by chance in each of some boxes spread evenly over it. The doubt is the standard error that this
 // number of independent samples would have.
 func (o *octree) sample(ctx context.Context, t float64) (volume, doubt float64, err error) {
 	n := len(o.boxes)
@@ -309,7 +382,7 @@ func (o *octree) sample(ctx context.Context, t float64) (volume, doubt float64, 
 	above := make([]float64, (n+step-1)/step) // 1, 0, -1: not known
 	err = each(ctx, len(above), o.run, func(w *Work, i int) error {
 		var err error
-		above[i], err = o.ask(ctx, &o.boxes[i*step], t, w)
+		above[i], err = o.ask(ctx, i*step, t, w)
 		return err
 	})
 	if err != nil {
@@ -331,33 +404,47 @@ func spread(all, weight, over, squares float64) (volume, doubt float64, err erro
 	if !(weight > 0) {
 		return all / 2, all / 2, nil
 	}
-	p := over / weight
-	return float64(p * all), all * math.Sqrt(float64(p*(1-p))*squares) / weight, nil
+	// The error is that of a share with one sample more on either side (Agresti and Coull
+	// 1998): of samples that all agree it is not nothing.
+	n := weight * weight / squares
+	q := (over/weight*n + 1) / (n + 2)
+	return float64(over / weight * all), all * math.Sqrt(float64(q*(1-q))/(n+2)), nil
 }
 
-// ask tells whether the field is above t in the middle of a box, or where a wall cuts it
-// at the centroid of what is in the solid: 1 or 0; -1 where it cannot be asked.
-func (o *octree) ask(ctx context.Context, c *cube, t float64, w *Work) (float64, error) {
-	m := add(c.lo, scale(0.5, sub(c.hi, c.lo)))
-	if c.cut {
+// ask tells whether the field is above t at a place of a box, by chance; or where a wall cuts
+// it and chance does not find the solid, at the centroid of what is in it: 1 or 0; -1 where
+// it cannot be asked. (Middles of boxes would all lie on the same side of a level that runs
+// along them.)
+func (o *octree) ask(ctx context.Context, i int, t float64, w *Work) (float64, error) {
+	c := &o.boxes[i]
+	chance := dice(i)
+	m := chance.in(c.lo, c.hi)
+	for range 8 {
+		if !c.cut || o.extent.body.Side(m, 0) == solid.Inside {
+			break
+		}
+		m = chance.in(c.lo, c.hi)
+	}
+	if c.cut && o.extent.body.Side(m, 0) != solid.Inside {
+		m = add(c.lo, scale(0.5, sub(c.hi, c.lo)))
 		w.piece.SetBox(sub(c.lo, m), sub(c.hi, m), [6]int32{})
-		lo, hi := o.body.Bounds()
+		lo, hi := o.extent.body.Bounds()
 		if !clipBox(&w.piece, sub(lo, m), sub(hi, m)) {
 			return -1, nil
 		}
-		if o.convex {
-			if o.body.ClipConvex(&w.piece, m) == polyhedron.Empty {
+		if o.extent.convex {
+			if o.extent.body.ClipConvex(&w.piece, m) == polyhedron.Empty {
 				return -1, nil
 			}
 			v, first := w.piece.VolumeAndFirst()
 			m = add(m, scale(1/v, first))
 		} else {
-			if err := o.body.Measure(&w.piece, m, solid.WantCentroid, &w.solid, &w.measures); err != nil {
+			if err := o.extent.body.Measure(&w.piece, m, solid.WantCentroid, &w.solid, &w.measures); err != nil {
 				return 0, err
 			}
 			m = add(m, scale(1/w.measures.Volume, w.measures.First))
 		}
-		if o.body.Side(m, o.tol) == solid.Outside {
+		if o.extent.body.Side(m, o.tol) == solid.Outside {
 			return -1, nil
 		}
 	}
@@ -371,15 +458,34 @@ func (o *octree) ask(ctx context.Context, c *cube, t float64, w *Work) (float64,
 	return 0, nil
 }
 
-// sampleWhole samples the whole solid on a grid: no part of it is decided.
+// dice are numbers by chance, the same for the same seed (SplitMix64: Steele, Lea and Flood
+// 2014).
+type dice uint64
+
+func (d *dice) next() float64 {
+	*d += 0x9e3779b97f4a7c15
+	z := uint64(*d)
+	z = (z ^ z>>30) * 0xbf58476d1ce4e5b9
+	z = (z ^ z>>27) * 0x94d049bb133111eb
+	return float64((z^z>>31)>>11) * 0x1p-53
+}
+
+func (d *dice) in(lo, hi Vec) Vec {
+	return Vec{X: lo.X + float64(d.next()*(hi.X-lo.X)), Y: lo.Y + float64(d.next()*(hi.Y-lo.Y)), Z: lo.Z + float64(d.next()*(hi.Z-lo.Z))}
+}
+
+// sampleWhole samples the whole solid, by chance in each cube of a grid: no part of it is
+// decided.
 func (o *octree) sampleWhole(ctx context.Context, t float64) (volume, doubt float64, err error) {
 	c := o.boxes[0]
 	const k = 20
 	e := scale(1.0/k, sub(c.hi, c.lo))
 	var inside, over atomic.Int64
 	err = each(ctx, k*k*k, o.run, func(w *Work, i int) error {
-		p := Vec{X: c.lo.X + float64((float64(i%k)+0.5)*e.X), Y: c.lo.Y + float64((float64(i/k%k)+0.5)*e.Y), Z: c.lo.Z + float64((float64(i/k/k)+0.5)*e.Z)}
-		if o.body.Side(p, 0) == solid.Outside {
+		lo := Vec{X: c.lo.X + float64(float64(i%k)*e.X), Y: c.lo.Y + float64(float64(i/k%k)*e.Y), Z: c.lo.Z + float64(float64(i/k/k)*e.Z)}
+		chance := dice(i)
+		p := chance.in(lo, add(lo, e))
+		if o.extent.body.Side(p, 0) == solid.Outside {
 			return nil
 		}
 		at, weights, err := o.At(ctx, p, w)
