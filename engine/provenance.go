@@ -157,6 +157,12 @@ func (s *Session) inputs(tree lang.Node) []provenanceInput {
 	for _, k := range keys {
 		o := found[k]
 		in := provenanceInput{Name: o.Name, Kind: o.Kind.String(), Text: o.Text, System: o.System, Rows: o.Rows, Created: o.Created, Notes: o.Notes}
+		if o.Kind == catalog.Frame {
+			var k keptFrame
+			if err := json.Unmarshal([]byte(o.Text), &k); err == nil {
+				in.Text = s.frameText(&k)
+			}
+		}
 		if o.Kind == catalog.Campaign {
 			in.Options = &provenanceOptions{
 				Within: withinOf(o), Duplicates: duplicatesOf(o), Tolerance: o.Options.Tolerance,
@@ -200,6 +206,9 @@ func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
 			return
 		}
 		found[n.Key()] = o
+		if frame, err := s.catalog.Get(lang.Name{Text: o.System}.Key()); o.System != "" && err == nil && frame.Kind == catalog.Frame {
+			found[frame.Key] = frame
+		}
 		switch o.Kind {
 		case catalog.View, catalog.Table:
 			if o.Text == "" {

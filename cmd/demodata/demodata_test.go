@@ -18,8 +18,8 @@ func TestCommittedFiles(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if len(files) != 29 {
-		t.Fatalf("%d files, want 29", len(files))
+	if len(files) != 30 {
+		t.Fatalf("%d files, want 30", len(files))
 	}
 	for _, f := range files {
 		committed, err := os.ReadFile(filepath.Join("..", "..", "testdata", "demo", f.name))

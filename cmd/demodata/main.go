@@ -70,6 +70,7 @@ func generate() ([]file, error) {
 	}
 	add("certificates.csv", autumn.writeCalibration)
 	add("clocks.csv", autumn.writeClocks)
+	add("control.csv", writeControl)
 	add("places.csv", autumn.writePlaces)
 	add("exclusions.csv", autumn.writeExclusions)
 	return files, f.err

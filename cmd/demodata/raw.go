@@ -137,14 +137,35 @@ func (r *raw) writeClocks(b *bytes.Buffer, _ *fence) {
 	}
 }
 
-// writePlaces writes the register of places: where a logger hung, since when and
-// until when.
-func (r *raw) writePlaces(b *bytes.Buffer, _ *fence) {
-	b.WriteString("logger,since,until,x,y,z,place\n")
+// The drawing on which places are taken down is in millimetres from a corner of its
+// sheet, with the north of the hall to the right and its east upwards: turned and
+// mirrored. Heights are in metres.
+const (
+	drawnRight = 12500 // of the south-west corner of the floor
+	drawnUp    = 3400
+)
+
+// drawn is where a place of the hall, in whole centimetres, stands on the drawing.
+func drawn(f *fence, x, y float64) string {
+	return fmt.Sprintf("%d,%d", drawnRight+10*f.steps(y, 100), drawnUp+10*f.steps(x, 100))
+}
+
+// writeControl writes the corners of the hall by which the drawing is matched with it.
+func writeControl(b *bytes.Buffer, f *fence) {
+	b.WriteString("name,px,py,x,y\n")
+	for i, c := range []point{{0, 0, 0}, {30, 0, 0}, {30, 12, 0}, {18, 18, 0}, {0, 18, 0}} {
+		fmt.Fprintf(b, "C%d,%s,%s,%s\n", i+1, drawn(f, c.x, c.y), metres(c.x), metres(c.y))
+	}
+}
+
+// writePlaces writes the register of places: where a logger hung on the drawing and at
+// what height, since when and until when.
+func (r *raw) writePlaces(b *bytes.Buffer, f *fence) {
+	b.WriteString("logger,since,until,px,py,h [m],place\n")
 	from, to := rawStart.Add(-2*time.Hour), rawStart.Add((rawDays+1)*24*time.Hour)
 	row := func(l *rawLogger, at *logger, since, until time.Time) {
-		fmt.Fprintf(b, "%s,%s,%s,%s,%s,%s,%s\n", l.id(), since.Format(time.RFC3339), until.Format(time.RFC3339),
-			metres(at.at.x), metres(at.at.y), metres(at.at.z), at.place)
+		fmt.Fprintf(b, "%s,%s,%s,%s,%s,%s\n", l.id(), since.Format(time.RFC3339), until.Format(time.RFC3339),
+			drawn(f, at.at.x, at.at.y), metres(at.at.z), at.place)
 	}
 	for _, l := range r.loggers {
 		other := 0
