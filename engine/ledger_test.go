@@ -96,11 +96,19 @@ func TestLedger(t *testing.T) {
 // could go wrong on the way.
 func TestNearLimit(t *testing.T) {
 	for query, want := range map[string]string{
-		"SELECT SHARE(temp > 8) FROM week":                            "note: SHARE(temp > 8): 2 values of temp lie within 1e-9 of the limit 8 and 1 of them differ from it",
-		"SELECT SHARE(8 < temp) FROM week WHERE t = 1":                "note: SHARE(8 < temp): 1 value of temp is equal to the limit 8",
-		"SELECT COUNT(*) FILTER (WHERE temp >= 7.9) FROM week":        "1 value of temp is equal to the limit 7.9: whether it counts",
-		"SELECT t, SHARE(temp BETWEEN 2 AND 8) FROM week GROUP BY t":  "2 values of temp lie within",
-		"SELECT SHARE(ROUND(temp, 2) > 8.5) FROM week":                "",
+		"SELECT SHARE(temp > 8) FROM week":                           "note: SHARE(temp > 8): 2 values of temp lie within 1e-9 of the limit 8 and 1 of them differ from it",
+		"SELECT SHARE(8 < temp) FROM week WHERE t = 1":               "note: SHARE(8 < temp): 1 value of temp is equal to the limit 8",
+		"SELECT COUNT(*) FILTER (WHERE temp >= 7.9) FROM week":       "1 value of temp is equal to the limit 7.9: whether it counts",
+		"SELECT t, SHARE(temp BETWEEN 2 AND 8) FROM week GROUP BY t": "2 values of temp lie within",
+		"SELECT SHARE(ROUND(temp, 2) > 8.5) FROM week":               "",
+		// computed readings: 8.0 and 2.22 + 4.23 + 1.55 are 8 when rounded
+		"SELECT SHARE(ROUND(temp, 2) > 8) FROM week":                  "SHARE(ROUND(temp, 2) > 8): 2 values of ROUND(temp, 2) are equal to the limit 8: whether they count",
+		"SELECT SHARE(temp * 2 > 16) FROM week WHERE logger = 'c'":    "2 values of temp * 2 lie within 1e-9 of the limit 16",
+		"SELECT SHARE(temp > 8 AND logger = 'a') FROM week":           "",
+		"SELECT SHARE(logger = 'c' AND t = 1 AND temp > 8) FROM week": "1 value of temp is equal to the limit 8",
+		"SELECT SHARE(temp > lim) FROM week, (SELECT 8 AS lim) l":     "2 values of temp lie within 1e-9 of the limit lim",
+		"SELECT SHARE(NOT (temp * 2 <= 16)) FROM week":                "2 values of temp * 2 lie within",
+		"SELECT SHARE(temp < 0 OR LN(temp) > LN(8)) FROM week":        "",
 		"SELECT SHARE(temp > 8.5) FROM week":                          "",
 		"SELECT SHARE(t > 1) FROM week":                               "", // whole numbers are what they are
 		"SELECT SHARE(temp = 8) FROM week":                            "",

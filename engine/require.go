@@ -3,6 +3,8 @@ package engine
 import (
 	"context"
 	"fmt"
+	"math"
+	"strconv"
 	"strings"
 
 	"nearcell/catalog/column"
@@ -120,12 +122,29 @@ func (s *Session) requireCondition(ctx context.Context, st *statement, t *lang.R
 	case value.I == 0:
 		v.result, v.reason = fail, "the condition is FALSE"
 		if isComparison {
+			s.nearComparison(st, v, compared, table)
 			v.reason = fmt.Sprintf("%s %s %s is FALSE", s.valueText(&table.Cols[1]), compared.Op, s.valueText(&table.Cols[2]))
 		}
 		return nil
 	}
+	if isComparison {
+		s.nearComparison(st, v, compared, table)
+	}
 	v.result = pass
 	return s.examine(ctx, st, v, looks)
+}
+
+// nearComparison notes a value that its limit can hardly tell apart.
+func (s *Session) nearComparison(st *statement, v *verdict, t *lang.Binary, table *column.Table) {
+	value, limit := &table.Cols[1], &table.Cols[2]
+	if t.Op == lang.Equals || t.Op == lang.NotEquals || value.Type != column.Real && limit.Type != column.Real {
+		return
+	}
+	var n expr.NearRows
+	n.Look(value, limit, nil, 1, 0)
+	if text := function.NearText("'"+v.label+"'", st.source.Text[t.Left.Span().Start:t.Left.Span().End], s.valueText(limit), n.Near, n.Equal); text != "" {
+		st.notes.Add(note.Note, note.Rows, "%s", text)
+	}
 }
 
 var comparisons = map[lang.Op]bool{lang.Equals: true, lang.NotEquals: true, lang.Less: true, lang.LessOrEqual: true,
@@ -137,6 +156,10 @@ func (s *Session) valueText(c *column.Vector) string {
 	text := value.String()
 	if value.Type == column.Real && !value.Null {
 		text = s.number(value.F)
+		// what looks like a number that it is not must not look so beside a verdict
+		if f, err := strconv.ParseFloat(text, 64); err == nil && f != value.F && math.Abs(f-value.F) <= function.NearLimit {
+			text = column.FormatReal(value.F)
+		}
 	}
 	if u := c.Unit.String(); u != "" {
 		text += " " + u
@@ -277,7 +300,9 @@ func (s *Session) look(ctx context.Context, st *statement, x plan.Examined) (loo
 		add(x.Cond)
 	}
 	for _, l := range limits {
-		add(l.X)
+		if err := addNear(add, l); err != nil {
+			return c, err
+		}
 	}
 	node, err := plan.Optimise(plan.Apart(p))
 	if err != nil {
@@ -288,12 +313,34 @@ func (s *Session) look(ctx context.Context, st *statement, x plan.Examined) (loo
 	err = exec.Run(ctx, env, node, func(b *column.Batch) error {
 		c.rows += int64(b.N)
 		c.unknown += int64(b.Cols[0].NullCount())
-		for i := range limits {
-			c.near[i].Look(&b.Cols[i+1], nil, b.N, limits[i].At)
+		for i, l := range limits {
+			against := &b.Cols[2*i+2]
+			if l.Against == nil {
+				against = nil
+			}
+			c.near[i].Look(&b.Cols[2*i+1], against, nil, b.N, l.At)
 		}
 		return nil
 	})
 	return c, err
+}
+
+// addNear adds what a limit compares, and with what, where the comparison is come to.
+func addNear(add func(expr.Expr), l expr.Limit) error {
+	against := l.Against
+	if against == nil {
+		against = expr.NewConst(column.Float(l.At), problem.Place{})
+	}
+	for _, e := range []expr.Expr{l.X, against} {
+		if l.When != nil {
+			var err error
+			if e, err = expr.NewCase(nil, []expr.When{{Cond: l.When, Result: e}}, nil, problem.Place{}); err != nil {
+				return err
+			}
+		}
+		add(e)
+	}
+	return nil
 }
 
 // lookAt looks at what queries put their conditions to, and notes the readings
@@ -308,7 +355,7 @@ func (s *Session) lookAt(ctx context.Context, st *statement, v *verdict, queries
 			}
 			all = append(all, c)
 			for i, l := range expr.Limits(x.Cond) {
-				if text := function.NearText("'"+v.label+"'", l.X.String(), l.At, c.near[i].Near, c.near[i].Equal); text != "" {
+				if text := function.NearText("'"+v.label+"'", l.X.String(), l.Text(), c.near[i].Near, c.near[i].Equal); text != "" {
 					st.notes.Add(note.Note, note.Rows, "%s", text)
 				}
 			}

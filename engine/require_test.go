@@ -49,7 +49,8 @@ func TestRequire(t *testing.T) {
 		{"1 > 2", fail, "1 > 2 is FALSE"},
 		{"NULL", notDecided, "missing"},
 		{"(SELECT MAX(temp) FROM log) <= 9", pass, ""},
-		{"(SELECT MAX(temp) FROM log) <= 8", fail, "8 °C <= 8 is FALSE"}, // the last bit
+		{"(SELECT MAX(temp) FROM log) <= 8", fail, "8.000000000000002 °C <= 8 is FALSE"}, // the last bit is shown
+		{"(SELECT MAX(temp) + 1/3 FROM log) <= 8", fail, "8.33333 °C <= 8 is FALSE"},
 		{"(SELECT MAX(temp) FROM nothing) <= 8", notDecided, "missing"},
 		{"(SELECT COUNT(*) FROM nothing) = 0", notDecided, "no row of nothing"},
 		{"(SELECT COUNT(*) FROM nothing) >= 50", fail, "0 >= 50"}, // sure: there are none
@@ -110,13 +111,23 @@ func TestRequire(t *testing.T) {
 // their last bits apart from those that are equal to it.
 func TestRequireNear(t *testing.T) {
 	for require, want := range map[string]string{
-		"NONE (SELECT * FROM log WHERE temp > 8)":                            "note: 'A': 2 values of temp lie within 1e-9 of the limit 8 and 1 of them differ from it",
-		"NONE (SELECT * FROM log WHERE logger = 'L1' AND 8 < temp)":          "note: 'A': 2 values of temp lie within 1e-9 of the limit 8",
-		"NONE (SELECT * FROM log WHERE temp NOT BETWEEN 2 AND 7.5)":          "note: 'A': 1 value of temp is equal to the limit 7.5: whether it counts",
-		"NONE (SELECT logger FROM log GROUP BY logger HAVING MAX(temp) > 8)": "note: 'A': 2 values of \"MAX(temp)\" lie within",
-		"(SELECT COUNT(*) FROM log WHERE temp > 8) < 3":                      "2 values of temp lie within 1e-9 of the limit 8",
-		"NONE (SELECT * FROM log WHERE temp > 8.1)":                          "",
-		"NONE (SELECT * FROM log WHERE ROUND(temp, 2) > 8)":                  "2 values of ROUND(temp, 2) are equal to the limit 8: whether they count",
+		"NONE (SELECT * FROM log WHERE temp > 8)": "note: 'A': 2 values of temp lie within 1e-9 of the limit 8 and 1 of them differ from it",
+		// of the rows that the rest of the condition leaves
+		"NONE (SELECT * FROM log WHERE logger = 'L1' AND 8 < temp)":                     "note: 'A': 1 value of temp is equal to the limit 8: whether it counts",
+		"NONE (SELECT * FROM log WHERE 8 < temp AND logger = 'L3')":                     "",
+		"NONE (SELECT * FROM log WHERE temp > 100 AND LN(temp - 100) > 1.0)":            "", // fails on its own
+		"NONE (SELECT * FROM log WHERE temp > 100 AND (n = 1 OR LN(temp - 100) > 1.0))": "",
+		// a limit that is a column or was computed
+		"NONE (SELECT * FROM log JOIN (VALUES (8)) AS v (lim) ON TRUE WHERE temp > lim)":     "2 values of temp lie within 1e-9 of the limit lim and 1 of them differ",
+		"NONE (SELECT * FROM log JOIN (VALUES (8)) AS v (lim) ON TRUE WHERE temp > lim + 1)": "",
+		"NONE (SELECT * FROM log WHERE temp + 1 > 9)":                                        "2 values of temp + 1 lie within 1e-9 of the limit 9",
+		"(SELECT MAX(temp) FROM log) <= 8":                                                   "note: 'A': 1 value of (SELECT MAX(temp) FROM log) lies within 1e-9 of the limit 8 and 1 of them differ from it",
+		"(SELECT MIN(temp) FROM log) < (SELECT 7 FROM log LIMIT 1)":                          "note: 'A': 1 value of (SELECT MIN(temp) FROM log) is equal to the limit 7: whether it counts",
+		"NONE (SELECT * FROM log WHERE temp NOT BETWEEN 2 AND 7.5)":                          "note: 'A': 1 value of temp is equal to the limit 7.5: whether it counts",
+		"NONE (SELECT logger FROM log GROUP BY logger HAVING MAX(temp) > 8)":                 "note: 'A': 2 values of \"MAX(temp)\" lie within",
+		"(SELECT COUNT(*) FROM log WHERE temp > 8) < 3":                                      "2 values of temp lie within 1e-9 of the limit 8",
+		"NONE (SELECT * FROM log WHERE temp > 8.1)":                                          "",
+		"NONE (SELECT * FROM log WHERE ROUND(temp, 2) > 8)":                                  "2 values of ROUND(temp, 2) are equal to the limit 8: whether they count",
 	} {
 		s, _, words := requirer(t, Options{})
 		if err := s.Run(context.Background(), "input", "REQUIRE 'A' "+require+";", "."); err != nil {

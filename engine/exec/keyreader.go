@@ -34,6 +34,7 @@ func newKeyReader(t *keyTable) *keyReader {
 func (r *keyReader) put(cols []column.Vector, on []uint64, n int, keys []int32) {
 	t := r.table
 	switch {
+	case n == 0: // a part that nothing came to
 	case len(t.types) == 0:
 		if t.n == 0 && countOn(on, n) > 0 {
 			t.add(nil)

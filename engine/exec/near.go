@@ -13,10 +13,10 @@ import (
 type nearCount struct {
 	limits []expr.Limit
 	rows   []expr.NearRows
+	on     []uint64
 }
 
-// newNearCount is nil where a call compares nothing with a constant. What can fail
-// is left alone: an AND before it may keep it from rows where it would.
+// newNearCount is nil where a call compares nothing.
 func newNearCount(c *plan.Call) *nearCount {
 	n := &nearCount{}
 	from := []expr.Expr{c.Filter}
@@ -25,7 +25,7 @@ func newNearCount(c *plan.Call) *nearCount {
 	}
 	for _, e := range from {
 		for _, l := range expr.Limits(e) {
-			if !l.X.CanFail() && !expr.HasQuery(l.X) {
+			if !expr.HasQuery(l.X) && !expr.HasQuery(l.When) {
 				n.limits = append(n.limits, l)
 			}
 		}
@@ -42,11 +42,28 @@ func (n *nearCount) look(s scope, w *Worker, b *column.Batch) error {
 		return nil
 	}
 	for i, l := range n.limits {
-		v, err := s.eval(w, l.X, b, b.On)
+		on := b.On
+		if l.When != nil {
+			when, err := s.eval(w, l.When, b, on)
+			if err != nil {
+				return err
+			}
+			n.on = trueRows(n.on, &when, b.On, b.N)
+			on = n.on
+		}
+		v, err := s.eval(w, l.X, b, on)
 		if err != nil {
 			return err
 		}
-		n.rows[i].Look(&v, b.On, b.N, l.At)
+		if l.Against == nil {
+			n.rows[i].Look(&v, nil, on, b.N, l.At)
+			continue
+		}
+		against, err := s.eval(w, l.Against, b, on)
+		if err != nil {
+			return err
+		}
+		n.rows[i].Look(&v, &against, on, b.N, 0)
 	}
 	return nil
 }
@@ -65,7 +82,7 @@ func (n *nearCount) say(notes *note.Notes, call *plan.Call) {
 		return
 	}
 	for i, l := range n.limits {
-		if text := function.NearText(call.Text, l.X.String(), l.At, n.rows[i].Near, n.rows[i].Equal); text != "" {
+		if text := function.NearText(call.Text, l.X.String(), l.Text(), n.rows[i].Near, n.rows[i].Equal); text != "" {
 			notes.Add(note.Note, note.Rows, "%s", text)
 		}
 	}

@@ -1,10 +1,6 @@
 package function
 
-import (
-	"fmt"
-
-	"nearcell/catalog/column"
-)
+import "fmt"
 
 // NearLimit is how near to a limit a reading is told of. Readings are decimal
 // numbers of a few digits: what is computed from them and differs by less than this
@@ -12,9 +8,8 @@ import (
 const NearLimit = 1e-9
 
 // NearText says how many readings a limit can hardly tell apart, "" where there is
-// none. x is what is compared, what is where: "SHARE(temp > 8)".
-func NearText(what, x string, limit float64, near, equal int64) string {
-	at := column.FormatReal(limit)
+// none. x is what is compared with at, what is where: "SHARE(temp > 8)".
+func NearText(what, x, at string, near, equal int64) string {
 	switch {
 	case near == 0:
 		return ""
@@ -22,8 +17,12 @@ func NearText(what, x string, limit float64, near, equal int64) string {
 		return fmt.Sprintf("%s: %s of %s %s equal to the limit %s: whether %s hangs on < or <=, on > or >=", what,
 			plural64(near, "value"), x, are64(near), at, counts64(near))
 	}
-	return fmt.Sprintf("%s: %s of %s lie within 1e-9 of the limit %s and %d of them differ from it: on which side is a matter of the last digit (ROUND(…, 6) makes them decimal again)",
-		what, plural64(near, "value"), x, at, near-equal)
+	verb := "lie"
+	if near == 1 {
+		verb = "lies"
+	}
+	return fmt.Sprintf("%s: %s of %s %s within 1e-9 of the limit %s and %d of them differ from it: on which side is a matter of the last digit (ROUND(…, 6) makes them decimal again)",
+		what, plural64(near, "value"), x, verb, at, near-equal)
 }
 
 func plural64(n int64, noun string) string {
