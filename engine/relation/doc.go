@@ -70,6 +70,33 @@
 // relation reads of its input whatever is asked of it is told by Bound.Reads; a clause
 // that names rows of its own (EXPECTING) has them in Bound.Beside.
 //
+// What such a relation holds counts against the limit of the statement: the order of the
+// rows before it opens (Bound.Holds), the readings of a logger and the slabs that wait for
+// their turn while that logger is worked on (Env.Keep, by Env.hold). The log itself is the
+// caller's.
+//
+// Of the columns of a log, SERIES draws those out between two readings that were read at
+// its stamps. Those of a campaign or a register joined to the log (LogClauses.Carried,
+// found by plan.Registers) were not: one value for a logger holds for all of its instants,
+// of several the last one does, up to the next reading.
+//
+// EXTREMES ranks any rows from both ends (extremes.go): values within 1e-9 are tied, ties
+// share a rank and none of them is cut off by NUMBER. Its probabilities are shares of
+// 100,000 draws with a fixed seed over the rows in the order of their values; rows alike
+// share what they win, so that neither threads nor the order of the input matter.
+//
+// REPRESENTATIVES has the readings of all instants in one table (representatives.go). It
+// grows a set greedily on the first half of the instants and exchanges members as long as
+// that helps; the second half has no say in it and judges. With zones an instant is several
+// parts, of one Group, and the mean of all is that of the zones together.
+//
+// # The space that rows speak for
+//
+// Relations whose rows divide a closed space know how (Divider): among how many
+// partitions, and how much of their space no site was given, since a zone has no site or a
+// part of MEASURED IN lies outside the solid. The ledger under weighted answers (package
+// exec) takes what rows add up to from that: the rest was removed on the way.
+//
 // OVERLAY has a second campaign (Bound.Other), whose rows are those of Beside[0] and make
 // parts of their own. Each part of the first is laid over those of the second with its
 // value of FOR EACH, in whatever zones: what two solids do not share is in no row. Its rows
