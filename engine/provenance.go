@@ -194,6 +194,23 @@ func (s *Session) readsVerdicts(tree lang.Node) bool {
 	return reads
 }
 
+// followFrame adds the frame by which an object's coordinates were brought over, where it
+// is still the one that it was then.
+func (s *Session) followFrame(o *catalog.Object, found map[string]*catalog.Object) {
+	if o.System == "" {
+		return
+	}
+	frames, err := s.catalog.List(catalog.Frame)
+	if err != nil {
+		return
+	}
+	for i := range frames {
+		if f, err := s.catalog.Get(frames[i].Key); err == nil && catalog.FrameSystem(f.Name, f.Text) == o.System {
+			found[f.Key] = f
+		}
+	}
+}
+
 // follow collects what a tree names. A name that WITH gave to a query of its own
 // may stand for something of the catalog too; one too many is the lesser evil.
 func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
@@ -206,9 +223,7 @@ func (s *Session) follow(tree lang.Node, found map[string]*catalog.Object) {
 			return
 		}
 		found[n.Key()] = o
-		if frame, err := s.catalog.Get(lang.Name{Text: o.System}.Key()); o.System != "" && err == nil && frame.Kind == catalog.Frame {
-			found[frame.Key] = frame
-		}
+		s.followFrame(o, found)
 		switch o.Kind {
 		case catalog.View, catalog.Table:
 			if o.Text == "" {
