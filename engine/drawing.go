@@ -130,8 +130,11 @@ func (s *Session) pictureFile(st *statement, t *lang.Draw) (func(picture, *draw.
 		return nil, problem.New("file-kind", st.at(t.To), "only CELLS are drawn as a page, '%s' cannot be one", t.To.Value).
 			WithHint("end it with .svg or .png; nearcell run --as html puts all pictures into a report")
 	default:
-		return nil, problem.New("file-kind", st.at(t.To), "the ending of '%s' does not say how to draw it", t.To.Value).
-			WithHint("end it with .svg or .png")
+		p := problem.New("file-kind", st.at(t.To), "the ending of '%s' does not say how to draw it", t.To.Value)
+		if strings.EqualFold(t.Relation.Noun.Text, "CELLS") {
+			return nil, p.WithHint("end it with .html, .svg or .png")
+		}
+		return nil, p.WithHint("end it with .svg or .png")
 	}
 	if _, err := os.Stat(st.path(t.To.Value)); err == nil && !t.Overwrite && !s.checkOnly {
 		return nil, problem.New("file-exists", st.at(t.To), "the file '%s' is there already", t.To.Value).

@@ -267,10 +267,11 @@ SELECT 1;`)
 
 // TestPicturesGolden: the same bytes for any number of threads, and those of the file.
 func TestPicturesGolden(t *testing.T) {
-	const text = "DRAW SECTION OF hall AT z = 1 SHADED BY temp LIMITS (2, 8) TO 'section.svg';\nDRAW COURSE OF log ALONG t SHOWING temp, people LIMITS (8) TO 'course.svg';"
+	const text = "DRAW SECTION OF hall AT z = 1 SHADED BY temp LIMITS (2, 8) TO 'section.svg';\nDRAW COURSE OF log ALONG t SHOWING temp, people LIMITS (8) TO 'course.svg';\n" +
+		"DRAW CELLS OF hall SHADED BY temp LIMITS (2, 8) SEEN FROM (1, 2, 1) TO 'cells.svg';"
 	one, _, _ := drawn(t, 1, text)
 	two, _, _ := drawn(t, 2, text)
-	for _, name := range []string{"section.svg", "course.svg"} {
+	for _, name := range []string{"section.svg", "course.svg", "cells.svg"} {
 		a, err := os.ReadFile(filepath.Join(one, name))
 		if err != nil {
 			t.Fatal(err)

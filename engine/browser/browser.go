@@ -19,6 +19,10 @@ var names = []string{"chromium", "chromium-browser", "google-chrome", "google-ch
 
 // Browser is a running Chromium.
 type Browser struct {
+	// First is a script that runs in pages before their own, to make surroundings that
+	// this Chromium is not.
+	First string
+
 	t testing.TB
 	w *wire
 }
@@ -45,7 +49,7 @@ func Open(t testing.TB, switches ...string) *Browser {
 		t.Skipf("Chromium cannot be started, what a browser makes of the page is not tried: %v", err)
 	}
 	t.Cleanup(w.stop)
-	return &Browser{t, w}
+	return &Browser{t: t, w: w}
 }
 
 // Page is a tab.
@@ -88,6 +92,9 @@ func (b *Browser) Page(file string, width, height int) *Page {
 		p.do(domain+".enable", map[string]any{})
 	}
 	p.do("Emulation.setDeviceMetricsOverride", map[string]any{"width": width, "height": height, "deviceScaleFactor": 1, "mobile": false})
+	if b.First != "" {
+		p.do("Page.addScriptToEvaluateOnNewDocument", map[string]any{"source": b.First})
+	}
 	address := p.address
 	if fragment != "" {
 		address += "#" + fragment

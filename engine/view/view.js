@@ -675,6 +675,7 @@ new ResizeObserver(size).observe(stage);
 window.cells = {
   draw, turn, cut: (axis, at) => setCut('xyz'.indexOf(axis), at), pick: id => pick(byName(id)), show: setShow,
   where: id => { const b = byName(id); look(); return project(sites[3 * b], sites[3 * b + 1], sites[3 * b + 2]); },
+  at: (x, y) => { look(); const b = meet(ray(x, y)); return b < 0 ? '' : nameOf(b); },
   ray: (x, y) => { const r = ray(x, y); return { from: r.from.map((v, k) => v + middle[k]), along: r.along }; },
   get state() {
     return { picked: picked < 0 ? null : nameOf(picked), show, shown: order.filter(b => shown[b]).map(nameOf), cut: { ...cut }, cam: { ...cam }, dist: eye.dist,
