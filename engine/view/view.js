@@ -335,11 +335,26 @@ const rebuild = () => {
   }
   stale = { faces: false, caps: false };
 };
+// Where a picture takes long, as without graphics hardware, it is drawn in half as many dots
+// each way and without the lines within while it moves, and in full once it rests.
+const pace = { last: 0, slow: 0, rest: 0, coarse: false };
+const keepPace = () => {
+  const now = performance.now(), took = now - pace.last;
+  pace.last = now;
+  if (took > 45 && took < 400) pace.slow = Math.min(pace.slow + 1, 3); else if (took <= 45 && !pace.coarse) pace.slow = 0;
+  pace.coarse = pace.slow >= 2;
+  clearTimeout(pace.rest);
+  pace.rest = setTimeout(() => { const again = pace.coarse; pace.slow = 0; pace.coarse = false; if (again) draw(); }, 250);
+};
 const draw = () => {
   waiting = false;
   if (!gl || gl.isContextLost()) return;
-  const dots = Math.min(window.devicePixelRatio || 1, 2), w = Math.max(1, Math.round(wide * dots)), h = Math.max(1, Math.round(high * dots));
-  for (const c of [room, over]) if (c.width !== w || c.height !== h) { c.width = w; c.height = h; }
+  const full = Math.min(window.devicePixelRatio || 1, 2), dots = pace.coarse ? full / 2 : full;
+  const w = Math.max(1, Math.round(wide * dots)), h = Math.max(1, Math.round(high * dots));
+  for (const [c, by] of [[room, dots], [over, full]]) {
+    const cw = Math.max(1, Math.round(wide * by)), ch = Math.max(1, Math.round(high * by));
+    if (c.width !== cw || c.height !== ch) { c.width = cw; c.height = ch; }
+  }
   rebuild();
   look();
   gl.viewport(0, 0, w, h);
@@ -364,7 +379,9 @@ const draw = () => {
   }
   gl.disable(gl.BLEND);
   colour([0, 0, 0], 0);
+  gl.enable(gl.CULL_FACE); // faces are seen from outside alone: caps close what is cut
   clip(true); paintBuffer(gl.TRIANGLES, 'faces', 'colours');
+  gl.disable(gl.CULL_FACE);
   clip(false); paintBuffer(gl.TRIANGLES, 'caps', 'capColours');
   gl.enable(gl.BLEND);
   const shifted = (x, y) => { // by pixels; and a little towards the eye, so that a line is not lost in its own face
@@ -377,8 +394,9 @@ const draw = () => {
   };
   shifted(0, 0);
   colour([0.12, 0.13, 0.14], 0.6);
-  clip(true); paintBuffer(gl.LINES, 'lines');
-  clip(false); paintBuffer(gl.LINES, 'capLines');
+  if (!pace.coarse || buffers.lines.n < 20000) { clip(true); paintBuffer(gl.LINES, 'lines'); }
+  clip(false);
+  paintBuffer(gl.LINES, 'capLines');
   if (wallsOn) {
     gl.depthMask(false);
     colour(theme.ink, 0.9);
@@ -391,7 +409,7 @@ const draw = () => {
     colour(theme.ink, 0.22); paintBuffer(gl.LINES, 'edges');
     gl.depthMask(true);
   }
-  drawOver(dots);
+  drawOver(full);
 };
 // The picked cell's outline, its name and the axes lie over the picture.
 const drawOver = dots => {
@@ -437,7 +455,7 @@ const word = (c, text, x, y) => {
   c.fillStyle = theme.text; c.fillText(text, x, y);
 };
 const again = () => {
-  if (!waiting && gl) { waiting = true; requestAnimationFrame(draw); }
+  if (!waiting && gl) { waiting = true; requestAnimationFrame(() => { keepPace(); draw(); }); }
 };
 
 // ---- What one can do ------------------------------------------------------------------
@@ -679,7 +697,7 @@ window.cells = {
   ray: (x, y) => { const r = ray(x, y); return { from: r.from.map((v, k) => v + middle[k]), along: r.along }; },
   get state() {
     return { picked: picked < 0 ? null : nameOf(picked), show, shown: order.filter(b => shown[b]).map(nameOf), cut: { ...cut }, cam: { ...cam }, dist: eye.dist,
-      faces: (buffers.faces?.n || 0) / 3, view: document.documentElement.dataset.view };
+      faces: (buffers.faces?.n || 0) / 3, coarse: pace.coarse, view: document.documentElement.dataset.view };
   },
   finish: () => { if (gl) gl.readPixels(0, 0, 1, 1, gl.RGBA, gl.UNSIGNED_BYTE, new Uint8Array(4)); },
 };
