@@ -85,10 +85,13 @@ func (s *aggregateSink) Part(chunk int) Part {
 }
 
 func (s *aggregateSink) newPart() *aggregatePart {
-	p := &aggregatePart{sink: s, keys: newKeyTable(s.types), calls: make([]*callState, len(s.node.Calls))}
+	p := &aggregatePart{sink: s, keys: newKeyTable(s.types).until(s.env.stop), calls: make([]*callState, len(s.node.Calls))}
 	p.reader = newKeyReader(p.keys)
 	for i := range s.node.Calls {
 		p.calls[i] = newCallState(&s.node.Calls[i], s.pairs[i])
+		if d := p.calls[i].distinct; d != nil {
+			d.until(s.env.stop)
+		}
 	}
 	if s.watch != nil {
 		for i, cells := range s.cellCounts() {
@@ -302,14 +305,24 @@ func (s *aggregateSink) Finish(ctx context.Context) (Source, error) {
 	}
 	out := &column.Table{Schema: s.node.Fields, N: p.keys.n}
 	for i := range keys {
-		out.Cols = append(out.Cols, gather(&keys[i], order))
+		v, err := gatherUntil(ctx.Err, &keys[i], order, false)
+		if err != nil {
+			return nil, err
+		}
+		out.Cols = append(out.Cols, v)
 	}
 	for _, c := range p.calls {
 		v, err := c.result(s.env, p.keys.n)
+		if err == nil {
+			v, err = gatherUntil(ctx.Err, &v, order, false)
+		}
+		if stopped := ctx.Err(); stopped != nil {
+			return nil, stopped
+		}
 		if err != nil {
 			return nil, s.groupFault(err, c.call)
 		}
-		out.Cols = append(out.Cols, gather(&v, order))
+		out.Cols = append(out.Cols, v)
 	}
 	for i := range out.Cols {
 		out.Cols[i].Unit = s.node.Fields[i].Unit
@@ -343,7 +356,7 @@ func (s *aggregateSink) keyOrder(ctx context.Context, keys []column.Vector, n in
 	for i := range keys {
 		by[i].v = &keys[i]
 	}
-	return argsort(ctx, by, n)
+	return argsort(ctx.Err, by, n)
 }
 
 // result is the values of all groups. The distinct values of a call with
@@ -366,6 +379,9 @@ func (c *callState) result(env *Env, groups int) (column.Vector, error) {
 		}
 		args := make([]column.Vector, len(cols)-1)
 		for lo := 0; lo < len(group); lo += BatchRows {
+			if err := env.stop(); err != nil {
+				return column.Vector{}, err
+			}
 			hi := min(lo+BatchRows, len(group))
 			for i := range args {
 				args[i] = cols[i+1].Slice(lo, hi)
@@ -374,6 +390,9 @@ func (c *callState) result(env *Env, groups int) (column.Vector, error) {
 				return column.Vector{}, err
 			}
 		}
+	}
+	if long, ok := c.acc.(function.Stopping); ok {
+		long.Until(env.stop)
 	}
 	return c.acc.Result(groups)
 }

@@ -33,7 +33,7 @@ type distinctPart struct {
 }
 
 func (s *distinctSink) Part(int) Part {
-	p := &distinctPart{keys: newKeyTable(s.types), rows: newTableBuilder(s.env, s.schema)}
+	p := &distinctPart{keys: newKeyTable(s.types).until(s.env.stop), rows: newTableBuilder(s.env, s.schema)}
 	p.reader = newKeyReader(p.keys)
 	return p
 }

@@ -51,6 +51,15 @@ func (e *Env) release(bytes int64) {
 	e.kept.Add(-bytes)
 }
 
+// stop is asked between stretches of work that many rows share: it gives an error when
+// the run is to end.
+func (e *Env) stop() error {
+	if e.queries == nil {
+		return nil
+	}
+	return e.queries.ctx.Err()
+}
+
 func (e *Env) chunkRows() int {
 	if e.chunk > 0 {
 		return e.chunk

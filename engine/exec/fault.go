@@ -53,6 +53,10 @@ func (s scope) evalAll(w *Worker, dst []column.Vector, list []expr.Expr, b *colu
 // fault turns an error of a kernel into a problem at a place that names the
 // row, unless it has a place already.
 func (s scope) fault(w *Worker, err error, at problem.Place, b *column.Batch) error {
+	var told *problem.Problem // by a query inside, which knows its own row
+	if _, ours := err.(*expr.RowError); !ours && errors.As(err, &told) {
+		return problem.At(err, at)
+	}
 	row := -1
 	var inRow *expr.RowError
 	var kernel *function.RowFault

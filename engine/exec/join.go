@@ -9,6 +9,7 @@ import (
 	"nearcell/catalog/column"
 	"nearcell/engine/expr"
 	"nearcell/engine/plan"
+	"nearcell/engine/problem"
 )
 
 // buildSide is the right side of a join in memory, its rows grouped by key.
@@ -22,10 +23,24 @@ type buildSide struct {
 
 // openBuild is the right side of a join.
 func (r *runner) openBuild(ctx context.Context, n *plan.Join) (*buildSide, error) {
-	if s, ok := n.Right.(*plan.Shared); ok && len(n.RightKeys) > 0 {
+	if s, ok := n.Right.(*plan.Shared); ok && len(n.RightKeys) > 0 && !n.Guarded {
 		return r.commonSide(ctx, s, n.RightKeys, n.LeftKeys)
 	}
-	return r.buildSide(ctx, n)
+	side, err := r.buildSide(ctx, n)
+	if err == nil || !n.Guarded || !ofRow(err) {
+		return side, err
+	}
+	// a key of the right side cannot be computed: whether a pair meets it, the
+	// condition finds out
+	c := *n
+	c.LeftKeys, c.RightKeys = nil, nil
+	return r.buildSide(ctx, &c)
+}
+
+// ofRow reports whether an error is that of a row, and not of the run.
+func ofRow(err error) bool {
+	var p *problem.Problem
+	return errors.As(err, &p) && p.Code != "memory" && p.Code != "too-many-rows"
 }
 
 // buildSide computes the right side with its keys. Key expressions that read a
@@ -88,7 +103,7 @@ func (s *buildSide) index(ctx context.Context, env *Env, at []int, left []expr.E
 			types[i] = column.Integer
 		}
 	}
-	s.keys = newKeyTable(types)
+	s.keys = newKeyTable(types).until(ctx.Err)
 	reader := newKeyReader(s.keys)
 	keyOf := make([]int32, s.table.N)
 	on := make([]uint64, column.Words(BatchRows))
@@ -109,7 +124,9 @@ func (s *buildSide) index(ctx context.Context, env *Env, at []int, left []expr.E
 		}
 		reader.put(cols, mask, b.N, keyOf[lo:lo+b.N])
 	}
-	s.group(keyOf)
+	if err := s.group(ctx, keyOf); err != nil {
+		return err
+	}
 	return env.keep(int64(len(keyOf))*8 + s.keys.bytes())
 }
 
@@ -145,9 +162,12 @@ func maskPresent(mask []uint64, v *column.Vector) {
 }
 
 // group sorts the rows by key, by counting.
-func (s *buildSide) group(keyOf []int32) {
+func (s *buildSide) group(ctx context.Context, keyOf []int32) error {
 	s.start = make([]int32, s.keys.n+1)
-	for _, k := range keyOf {
+	for i, k := range keyOf {
+		if i&(cancelRows-1) == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
 		if k >= 0 {
 			s.start[k+1]++
 		}
@@ -158,11 +178,15 @@ func (s *buildSide) group(keyOf []int32) {
 	s.rows = make([]int32, s.start[s.keys.n])
 	next := append([]int32(nil), s.start...)
 	for row, k := range keyOf {
+		if row&(cancelRows-1) == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
 		if k >= 0 {
 			s.rows[next[k]] = int32(row)
 			next[k]++
 		}
 	}
+	return nil
 }
 
 // joinStep meets the batches of the left side with the right side. Its rows
@@ -170,10 +194,22 @@ func (s *buildSide) group(keyOf []int32) {
 type joinStep struct {
 	kind      plan.JoinKind
 	leftKeys  []expr.Expr
-	rest      expr.Expr
-	restReads []bool // which columns rest reads
+	rest      pairCondition
+	whole     *pairCondition // of batches with a key that fails; nil: no key can
 	leftScope scope
 	right     *buildSide
+}
+
+// pairCondition decides pairs. cond is nil where all match.
+type pairCondition struct {
+	cond  expr.Expr
+	reads []bool // which columns it reads
+}
+
+func conditionOf(n *plan.Join, cond expr.Expr) pairCondition {
+	c := pairCondition{cond, make([]bool, len(n.Both()))}
+	expr.Columns(cond, c.reads)
+	return c
 }
 
 // pairs are rows of the current left batch with rows of the right side; -1
@@ -200,6 +236,8 @@ type joinLocal struct {
 	batch     column.Batch
 	candidate []uint64
 	holds     []uint64
+	rest      *pairCondition
+	keyed     bool // partners are looked up by key
 	current   int32
 	matched   bool
 	wide      []column.Vector // of a unique right side: the left columns as they are, the right ones gathered
@@ -223,17 +261,14 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 	l.current, l.matched = -1, false
 	l.maybe.reset()
 	l.out.reset()
-	if s.right.keys != nil {
-		cols, err := s.leftScope.evalAll(w, l.keyCols, s.leftKeys, b, b.On)
-		if err != nil {
-			return err
+	l.rest, l.keyed = &s.rest, s.right.keys != nil
+	if l.keyed {
+		if err := s.findKeys(w, l, b); err != nil {
+			if s.whole == nil || !ofRow(err) {
+				return err
+			}
+			l.rest, l.keyed = s.whole, false
 		}
-		for i := range cols {
-			cols[i] = keyColumn(&cols[i], s.right.keys.types[i])
-		}
-		l.keyCols = cols
-		l.keys = room(l.keys, b.N)
-		l.reader.find(cols, b.On, b.N, l.keys)
 	}
 	if s.right.near != nil {
 		l.near.begin(s.right.near, s.leftScope, w, b)
@@ -241,7 +276,7 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 	if s.one() {
 		return s.runOne(ctx, w, l, b, emit)
 	}
-	if s.right.keys != nil && s.rest == nil {
+	if l.keyed && l.rest.cond == nil {
 		if done, err := s.runUnique(ctx, w, l, b, emit); done || err != nil {
 			return err
 		}
@@ -252,6 +287,21 @@ func (s *joinStep) Run(ctx context.Context, w *Worker, b *column.Batch, emit Emi
 	}
 	s.finishRow(l)
 	return s.handOn(ctx, w, l, b, emit)
+}
+
+// findKeys finds the keys of the rows of a batch.
+func (s *joinStep) findKeys(w *Worker, l *joinLocal, b *column.Batch) error {
+	cols, err := s.leftScope.evalAll(w, l.keyCols, s.leftKeys, b, b.On)
+	if err != nil {
+		return err
+	}
+	for i := range cols {
+		cols[i] = keyColumn(&cols[i], s.right.keys.types[i])
+	}
+	l.keyCols = cols
+	l.keys = room(l.keys, b.N)
+	l.reader.find(cols, b.On, b.N, l.keys)
+	return nil
 }
 
 // walk decides the pairs of all active left rows.
@@ -275,7 +325,7 @@ func (s *joinStep) one() bool { return s.kind == plan.Semi || s.kind == plan.Ant
 // filter does.
 func (s *joinStep) runOne(ctx context.Context, w *Worker, l *joinLocal, b *column.Batch, emit Emit) error {
 	l.met = bitsFor(l.met, b.N)
-	if s.right.keys != nil && s.rest == nil {
+	if l.keyed && l.rest.cond == nil {
 		forEachOn(b.On, b.N, func(i int) {
 			if l.keys[i] >= 0 {
 				column.SetBit(l.met, i)
@@ -331,7 +381,7 @@ func (s *joinStep) candidates(ctx context.Context, w *Worker, l *joinLocal, b *c
 		if err := s.nearCandidates(ctx, w, l, b, i, known, emit); err != nil {
 			return err
 		}
-	} else if s.right.keys == nil {
+	} else if !l.keyed {
 		if err := s.allCandidates(ctx, w, l, b, i, known, emit); err != nil {
 			return err
 		}
@@ -381,7 +431,7 @@ func (s *joinStep) settle(ctx context.Context, w *Worker, l *joinLocal, b *colum
 			s.finishRow(l)
 			l.current, l.matched = i, false
 		}
-		if r := l.maybe.right[k]; r >= 0 && (s.rest == nil || column.Bit(l.holds, k)) {
+		if r := l.maybe.right[k]; r >= 0 && (l.rest.cond == nil || column.Bit(l.holds, k)) {
 			if s.one() {
 				column.SetBit(l.met, int(i))
 				continue
@@ -400,10 +450,10 @@ func (s *joinStep) settle(ctx context.Context, w *Worker, l *joinLocal, b *colum
 // decide computes the rest of the condition for the candidates into l.holds.
 func (s *joinStep) decide(w *Worker, l *joinLocal, b *column.Batch) error {
 	n := len(l.maybe.left)
-	if s.rest == nil || n == 0 {
+	if l.rest.cond == nil || n == 0 {
 		return nil
 	}
-	s.gather(l, b, &l.maybe, s.restReads)
+	s.gather(l, b, &l.maybe, l.rest.reads)
 	l.candidate = bitsFor(l.candidate, n)
 	for k, r := range l.maybe.right {
 		if r >= 0 {
@@ -411,7 +461,7 @@ func (s *joinStep) decide(w *Worker, l *joinLocal, b *column.Batch) error {
 		}
 	}
 	err := w.deeper(&l.batch, func(joined *column.Batch) error {
-		holds, err := s.rest.Eval(w.Work(), joined, l.candidate)
+		holds, err := l.rest.cond.Eval(w.Work(), joined, l.candidate)
 		if err == nil {
 			l.holds = trueRows(l.holds, &holds, l.candidate, n)
 		}
@@ -425,7 +475,7 @@ func (s *joinStep) decide(w *Worker, l *joinLocal, b *column.Batch) error {
 	if errors.As(err, &inRow) {
 		err = &expr.RowError{Row: int(l.maybe.left[inRow.Row]), Err: inRow.Err}
 	}
-	return s.leftScope.fault(w, err, s.rest.Place(), b)
+	return s.leftScope.fault(w, err, l.rest.cond.Place(), b)
 }
 
 // finishRow closes the current left row: in a left join it stays without a match.

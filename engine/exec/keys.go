@@ -24,6 +24,9 @@ type keyTable struct {
 	// such a table needs no slots.
 	codeKey []int32
 	nullKey int32 // the key of NULL in a table of one text or one word, -1: none
+	// stop is asked while a large table grows, nil: nobody asks. When it gives an error
+	// the table is left as it is and may hold keys twice: nobody wants it any more.
+	stop func() error
 }
 
 const firstSlots = 1 << 10
@@ -60,12 +63,26 @@ func (t *keyTable) resize(size int) {
 	}
 	mask := size - 1
 	for k := 0; k < t.n; k++ {
+		if t.stopped(k) {
+			return
+		}
 		i := int(t.hash(t.words[k*t.width:(k+1)*t.width]) >> t.shift)
 		for t.slots[i] != 0 {
 			i = (i + 1) & mask
 		}
 		t.slots[i] = int32(k) + 1
 	}
+}
+
+// stopped asks whether to leave before key k.
+func (t *keyTable) stopped(k int) bool {
+	return k&(cancelRows-1) == 0 && t.stop != nil && t.stop() != nil
+}
+
+// until sets what a large table asks whether to go on.
+func (t *keyTable) until(stop func() error) *keyTable {
+	t.stop = stop
+	return t
 }
 
 // hash spreads a key's words over the high bits (multiplication by 2^64 over
@@ -221,6 +238,9 @@ func (t *keyTable) columns() []column.Vector {
 			v.Dict = t.texts[c].dict()
 		}
 		for k := 0; k < t.n; k++ {
+			if t.stopped(k) {
+				break
+			}
 			key := t.words[k*t.width : (k+1)*t.width]
 			if marked(key, t.width, len(t.types), c) {
 				v.SetNull(k)

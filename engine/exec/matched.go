@@ -24,7 +24,7 @@ func (r *runner) openMatched(ctx context.Context, n *plan.Matched) (*pipeline, e
 		types[i] = f.Type
 	}
 	env := r.envOf(r.meter(n))
-	m := &matcher{keys: newKeyTable(types), node: n}
+	m := &matcher{keys: newKeyTable(types).until(env.stop), node: n}
 	m.reader = newKeyReader(m.keys)
 	if err := m.each(ctx, right, m.count); err != nil {
 		return nil, err
@@ -36,7 +36,10 @@ func (r *runner) openMatched(ctx context.Context, n *plan.Matched) (*pipeline, e
 	if err := m.each(ctx, left, m.choose); err != nil {
 		return nil, err
 	}
-	out := gatherTable(&column.Table{Schema: n.Schema(), Cols: left.Cols, N: left.N}, m.rows)
+	out, err := gatherTable(ctx.Err, &column.Table{Schema: n.Schema(), Cols: left.Cols, N: left.N}, m.rows)
+	if err != nil {
+		return nil, err
+	}
 	grown := int64(8*m.keys.width)*int64(m.keys.n-known) + int64(out.N)*rowBytes(out.Schema)
 	return sourceOnly(newTableSource(r.env, out)), env.keep(grown)
 }

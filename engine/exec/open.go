@@ -6,7 +6,6 @@ import (
 	"time"
 
 	"nearcell/catalog/column"
-	"nearcell/engine/expr"
 	"nearcell/engine/plan"
 	"nearcell/engine/relation"
 )
@@ -191,9 +190,15 @@ func (r *runner) openJoin(ctx context.Context, n *plan.Join) (*pipeline, error) 
 	if err != nil {
 		return nil, err
 	}
-	step := &joinStep{kind: n.Kind, leftKeys: n.LeftKeys, rest: n.Rest, leftScope: scopeOf(left.schema), right: right}
-	step.restReads = make([]bool, len(n.Both()))
-	expr.Columns(n.Rest, step.restReads)
+	step := &joinStep{kind: n.Kind, leftKeys: n.LeftKeys, leftScope: scopeOf(left.schema), right: right}
+	step.rest = conditionOf(n, n.Rest)
+	if n.Guarded {
+		whole := conditionOf(n, n.Whole)
+		step.whole = &whole
+		if right.keys == nil {
+			step.rest = whole
+		}
+	}
 	return left.with(step, n.Schema()), nil
 }
 

@@ -2,11 +2,11 @@ package exec
 
 import (
 	"cmp"
-	"context"
 	"math"
 	"slices"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/function"
 )
 
 // orderKey is one column to sort by.
@@ -19,7 +19,7 @@ type orderKey struct {
 // argsort is the order of rows 0..n-1 by the keys; rows with equal keys keep
 // their order. Keys become words whose order is that of the values, which are
 // sorted by their bytes from the last key to the first.
-func argsort(ctx context.Context, keys []orderKey, n int) ([]int32, error) {
+func argsort(stop func() error, keys []orderKey, n int) ([]int32, error) {
 	rows := make([]rowWord, n)
 	for i := range rows {
 		rows[i].row = int32(i)
@@ -32,37 +32,74 @@ func argsort(ctx context.Context, keys []orderKey, n int) ([]int32, error) {
 			continue
 		}
 		if key.v.Type == column.Text {
-			ranks = textRanks(key.v)
-		}
-		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
-			if err := ctx.Err(); err != nil {
+			var err error
+			if ranks, err = textRanks(stop, key.v); err != nil {
 				return nil, err
 			}
-			for i := range rows {
-				rows[i].word = 0 // of NULLs, whatever their slot holds
-				if key.v.Valid == nil || column.Bit(key.v.Valid, int(rows[i].row)) {
-					rows[i].word = orderWord(key.v, int(rows[i].row), part, ranks)
+		}
+		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
+			for lo := 0; lo < n; lo += cancelRows {
+				if err := stop(); err != nil {
+					return nil, err
 				}
-				if key.descending {
-					rows[i].word = ^rows[i].word
-				}
+				key.fill(rows[lo:min(lo+cancelRows, n)], part, ranks)
 			}
-			rows, spare = radixSortUntil(ctx, rows, spare)
+			var err error
+			if rows, spare, err = radixSortUntil(stop, rows, spare); err != nil {
+				return nil, err
+			}
 		}
 		if key.v.Valid != nil {
-			rows, spare = nullsToEnd(key, rows, spare)
+			var err error
+			if rows, spare, err = nullsToEnd(stop, key, rows, spare); err != nil {
+				return nil, err
+			}
 		}
 	}
 	order := make([]int32, n)
 	for i, r := range rows {
 		order[i] = r.row
 	}
-	return order, ctx.Err()
+	return order, stop()
 }
 
 type rowWord struct {
 	word uint64
 	row  int32
+}
+
+// cancelRows is after how many rows of a loop over many somebody asks whether to go on:
+// also where each of them is the first one in its page of memory some tens of milliseconds.
+const cancelRows = 1 << 14
+
+// fill gives rows the words of a key, whose order is that of the values; NULLs have one
+// word, whatever their slot holds.
+func (k *orderKey) fill(rows []rowWord, part int, ranks []uint64) {
+	turn := uint64(0)
+	if k.descending {
+		turn = ^turn
+	}
+	switch v := k.v; {
+	case v.Valid != nil:
+		for i := range rows {
+			rows[i].word = turn
+			if column.Bit(v.Valid, int(rows[i].row)) {
+				rows[i].word = orderWord(v, int(rows[i].row), part, ranks) ^ turn
+			}
+		}
+	case v.Type.Counted():
+		for i := range rows {
+			rows[i].word = uint64(v.I[rows[i].row]) ^ 1<<63 ^ turn
+		}
+	case v.Type == column.Real:
+		for i := range rows {
+			rows[i].word = orderedReal(v.F[rows[i].row]) ^ turn
+		}
+	default:
+		for i := range rows {
+			rows[i].word = orderWord(v, int(rows[i].row), part, ranks) ^ turn
+		}
+	}
 }
 
 // orderWord maps a value that is not NULL to a word so that greater values have greater words.
@@ -103,7 +140,7 @@ func fromOrdered(w uint64) float64 {
 // textRanks gives each code that v uses the place of its text; equal texts
 // have equal ranks. Texts are ordered by their bytes, which for UTF-8 is the
 // order of code points.
-func textRanks(v *column.Vector) []uint64 {
+func textRanks(stop func() error, v *column.Vector) ([]uint64, error) {
 	ranks := make([]uint64, len(v.Dict.Texts))
 	used := make([]bool, len(ranks))
 	var codes []uint32
@@ -113,7 +150,10 @@ func textRanks(v *column.Vector) []uint64 {
 			codes = append(codes, c)
 		}
 	}
-	slices.SortFunc(codes, func(a, b uint32) int { return cmp.Compare(v.Dict.Texts[a], v.Dict.Texts[b]) })
+	err := function.SortUntil(stop, codes, func(a, b uint32) int { return cmp.Compare(v.Dict.Texts[a], v.Dict.Texts[b]) })
+	if err != nil {
+		return nil, err
+	}
 	rank := uint64(0)
 	for i, c := range codes {
 		if i > 0 && v.Dict.Texts[c] != v.Dict.Texts[codes[i-1]] {
@@ -121,45 +161,49 @@ func textRanks(v *column.Vector) []uint64 {
 		}
 		ranks[c] = rank
 	}
-	return ranks
+	return ranks, nil
 }
 
 // nullsToEnd moves the rows with a NULL key to one end, all in their order.
-func nullsToEnd(key orderKey, rows, spare []rowWord) (sorted, other []rowWord) {
+func nullsToEnd(stop func() error, key orderKey, rows, spare []rowWord) (sorted, other []rowWord, err error) {
 	spare = room(spare, len(rows))[:0]
 	for pass := range 2 {
 		nulls := (pass == 0) == key.nullsFirst
-		for _, r := range rows {
+		for i, r := range rows {
+			if i&(cancelRows-1) == 0 {
+				if err := stop(); err != nil {
+					return rows, spare, err
+				}
+			}
 			if key.v.IsNull(int(r.row)) == nulls {
 				spare = append(spare, r)
 			}
 		}
 	}
-	return spare, rows
+	return spare, rows, nil
 }
 
-// radixSort sorts rows by their words, stably, a byte at a time from the least;
-// bytes that all rows share cost nothing. It gives back the sorted and the
-// spare slice.
-func radixSort(rows, spare []rowWord) (sorted, other []rowWord) {
-	return radixSortUntil(context.Background(), rows, spare)
-}
-
-// radixSortUntil looks at ctx between two bytes; once it is cancelled the order is
-// any.
-func radixSortUntil(ctx context.Context, rows, spare []rowWord) (sorted, other []rowWord) {
+// radixSortUntil sorts rows by their words, stably, a byte at a time from the least;
+// bytes that all rows share cost nothing. It gives back the sorted and the spare slice.
+// Once stop gives an error it leaves, and the order is any.
+func radixSortUntil(stop func() error, rows, spare []rowWord) (sorted, other []rowWord, err error) {
 	if inOrder(rows) {
-		return rows, spare
+		return rows, spare, nil
 	}
 	if len(rows) < 256 {
 		slices.SortStableFunc(rows, func(a, b rowWord) int { return cmp.Compare(a.word, b.word) })
-		return rows, spare
+		return rows, spare, nil
 	}
 	spare = room(spare, len(rows))
 	var counts [8][256]int32
-	for _, r := range rows {
-		for b := range 8 {
-			counts[b][byte(r.word>>(8*b))]++
+	for lo := 0; lo < len(rows); lo += cancelRows {
+		if err := stop(); err != nil {
+			return rows, spare, err
+		}
+		for _, r := range rows[lo:min(lo+cancelRows, len(rows))] {
+			for b := range 8 {
+				counts[b][byte(r.word>>(8*b))]++
+			}
 		}
 	}
 	for b := range 8 {
@@ -167,22 +211,24 @@ func radixSortUntil(ctx context.Context, rows, spare []rowWord) (sorted, other [
 		if int(next[byte(rows[0].word>>(8*b))]) == len(rows) {
 			continue
 		}
-		if ctx.Err() != nil {
-			return rows, spare
-		}
 		at := int32(0)
 		for d, c := range next {
 			next[d] = at
 			at += c
 		}
-		for _, r := range rows {
-			d := byte(r.word >> (8 * b))
-			spare[next[d]] = r
-			next[d]++
+		for lo := 0; lo < len(rows); lo += cancelRows {
+			if err := stop(); err != nil {
+				return rows, spare, err
+			}
+			for _, r := range rows[lo:min(lo+cancelRows, len(rows))] {
+				d := byte(r.word >> (8 * b))
+				spare[next[d]] = r
+				next[d]++
+			}
 		}
 		rows, spare = spare, rows
 	}
-	return rows, spare
+	return rows, spare, nil
 }
 
 func inOrder(rows []rowWord) bool {

@@ -75,7 +75,10 @@ func (p *sortPart) Consume(w *Worker, b *column.Batch) error {
 		return err
 	}
 	if p.sink.worthCutting(p.rows.n) {
-		first := p.sink.first(p.rows.finish())
+		first, err := p.sink.first(p.rows.finish())
+		if err != nil {
+			return err
+		}
 		p.rows = newTableBuilder(p.sink.env, p.sink.keyed)
 		return p.rows.addAll(first.Cols, first.N)
 	}
@@ -90,25 +93,31 @@ func (s *sortSink) worthCutting(rows int) bool {
 
 // first is the rows of t that are among the first Top ones, in their order.
 // Without a top, and where there are no more, it is t as it is.
-func (s *sortSink) first(t *column.Table) *column.Table {
+func (s *sortSink) first(t *column.Table) (*column.Table, error) {
 	if s.node.Top <= 0 || int64(t.N) <= s.node.Top {
-		return t
+		return t, nil
 	}
 	s.env.release((int64(t.N) - s.node.Top) * rowBytes(s.keyed))
-	order, _ := s.order(context.Background(), t) // of few rows more than the top
-	first := gatherTable(t, order[:s.node.Top])
+	order, err := s.order(s.env.stop, t)
+	if err != nil {
+		return nil, err
+	}
+	first, err := gatherTable(s.env.stop, t, order[:s.node.Top])
+	if err != nil {
+		return nil, err
+	}
 	if s.bound != nil {
 		s.bound.tighten(&first.Cols[s.keyAt[0]], first.N-1)
 	}
-	return first
+	return first, nil
 }
 
-func (s *sortSink) order(ctx context.Context, t *column.Table) ([]int32, error) {
+func (s *sortSink) order(stop func() error, t *column.Table) ([]int32, error) {
 	keys := make([]orderKey, len(s.node.Keys))
 	for i, k := range s.node.Keys {
 		keys[i] = orderKey{&t.Cols[s.keyAt[i]], k.Descending, k.NullsFirst}
 	}
-	return argsort(ctx, keys, t.N)
+	return argsort(stop, keys, t.N)
 }
 
 // Merge appends a part. Parts come in the order of their chunks and the sort is
@@ -118,27 +127,33 @@ func (s *sortSink) Merge(p Part) error {
 	if rows.n == 0 {
 		return nil
 	}
-	part := s.first(rows.finish())
+	part, err := s.first(rows.finish())
+	if err != nil {
+		return err
+	}
 	s.parts = append(s.parts, part)
 	s.rows += part.N
 	if !s.worthCutting(s.rows) {
 		return nil
 	}
-	all, err := joined(s.env, s.keyed, s.parts)
+	all, err := joined(s.env.stop, s.env, s.keyed, s.parts)
 	if err != nil {
 		return err
 	}
-	s.parts = []*column.Table{s.first(all)}
+	if all, err = s.first(all); err != nil {
+		return err
+	}
+	s.parts = []*column.Table{all}
 	s.rows = s.parts[0].N
 	return nil
 }
 
 func (s *sortSink) Finish(ctx context.Context) (Source, error) {
-	all, err := joined(s.env, s.keyed, s.parts)
+	all, err := joined(ctx.Err, s.env, s.keyed, s.parts)
 	if err != nil {
 		return nil, err
 	}
-	idx, err := s.order(ctx, all)
+	idx, err := s.order(ctx.Err, all)
 	if err != nil {
 		return nil, err
 	}
@@ -146,5 +161,9 @@ func (s *sortSink) Finish(ctx context.Context) (Source, error) {
 		idx = idx[:s.node.Top]
 	}
 	visible := &column.Table{Schema: s.schema, Cols: all.Cols[:len(s.schema)], N: all.N}
-	return newTableSource(s.env, gatherTable(visible, idx)), nil
+	out, err := gatherTable(ctx.Err, visible, idx)
+	if err != nil {
+		return nil, err
+	}
+	return newTableSource(s.env, out), nil
 }

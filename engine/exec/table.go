@@ -361,7 +361,7 @@ func (t *tableBuilder) addRows(cols []column.Vector, idx []int32) error {
 
 // joined is the rows of tables one after another; they were counted against
 // the limit of memory when they were gathered.
-func joined(env *Env, schema column.Schema, tables []*column.Table) (*column.Table, error) {
+func joined(stop func() error, env *Env, schema column.Schema, tables []*column.Table) (*column.Table, error) {
 	if len(tables) == 1 {
 		return tables[0], nil
 	}
@@ -374,6 +374,9 @@ func joined(env *Env, schema column.Schema, tables []*column.Table) (*column.Tab
 		g.grow(total)
 	}
 	for _, t := range tables {
+		if err := stop(); err != nil {
+			return nil, err
+		}
 		if err := all.addAll(t.Cols, t.N); err != nil {
 			return nil, err
 		}
@@ -409,12 +412,15 @@ func rowBytes(schema column.Schema) int64 {
 }
 
 // gatherTable is the rows idx of a table, in that order.
-func gatherTable(t *column.Table, idx []int32) *column.Table {
+func gatherTable(stop func() error, t *column.Table, idx []int32) (*column.Table, error) {
 	out := &column.Table{Schema: t.Schema, N: len(idx), Cols: make([]column.Vector, len(t.Cols))}
 	for i := range t.Cols {
-		out.Cols[i] = gather(&t.Cols[i], idx)
+		var err error
+		if out.Cols[i], err = gatherUntil(stop, &t.Cols[i], idx, false); err != nil {
+			return nil, err
+		}
 	}
-	return out
+	return out, nil
 }
 
 // collectSink keeps all rows.
@@ -435,8 +441,8 @@ func (s *collectSink) Merge(p Part) error {
 	return nil
 }
 
-func (s *collectSink) Finish(context.Context) (Source, error) {
-	t, err := joined(s.env, s.schema, s.parts)
+func (s *collectSink) Finish(ctx context.Context) (Source, error) {
+	t, err := joined(ctx.Err, s.env, s.schema, s.parts)
 	if err != nil {
 		return nil, err
 	}

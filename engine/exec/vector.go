@@ -175,6 +175,30 @@ func gather(v *column.Vector, idx []int32) column.Vector {
 	return dst
 }
 
+// gatherUntil is gather for many rows: it leaves with the error of stop soon after that
+// gives one.
+func gatherUntil(stop func() error, v *column.Vector, idx []int32, mayMiss bool) (column.Vector, error) {
+	if len(idx) <= cancelRows || v.Type == column.Null {
+		var dst column.Vector
+		gatherInto(&dst, v, idx, mayMiss)
+		return dst, stop()
+	}
+	dst := column.New(v.Type, v.Unit, len(idx))
+	dst.Dict = v.Dict
+	if v.Valid != nil || mayMiss {
+		dst.Valid = make([]uint64, column.Words(dst.N))
+	}
+	for lo := 0; lo < len(idx); lo += cancelRows {
+		if err := stop(); err != nil {
+			return dst, err
+		}
+		hi := min(lo+cancelRows, len(idx))
+		part := dst.Slice(lo, hi) // whole words, so that it shares all of them
+		gatherInto(&part, v, idx[lo:hi], mayMiss)
+	}
+	return dst, nil
+}
+
 // realWord is the canonical word of a REAL: 0 and -0 are one value.
 func realWord(f float64) uint64 {
 	if f == 0 {

@@ -144,7 +144,7 @@ func (s *windowSink) Merge(p Part) error {
 }
 
 func (s *windowSink) Finish(ctx context.Context) (Source, error) {
-	all, err := joined(s.env, s.keyed, s.parts)
+	all, err := joined(ctx.Err, s.env, s.keyed, s.parts)
 	if err != nil {
 		return nil, err
 	}
@@ -166,7 +166,10 @@ func (s *windowSink) Finish(ctx context.Context) (Source, error) {
 		s.watch.say(s.env.Notes)
 	}
 	for i := range s.node.Calls {
-		v := run.calls[i].vector(all.N)
+		v, err := run.calls[i].vector(ctx.Err, all.N)
+		if err != nil {
+			return nil, err
+		}
 		v.Unit = s.node.Fields[len(s.schema)+i].Unit
 		out.Cols = append(out.Cols, v)
 		if err := s.env.keep(int64(all.N) * rowBytes(s.node.Fields[len(s.schema)+i:len(s.schema)+i+1])); err != nil {
@@ -203,7 +206,7 @@ type windowCall struct {
 }
 
 // vector is the column of the values.
-func (c *windowCall) vector(n int) column.Vector {
+func (c *windowCall) vector(stop func() error, n int) (column.Vector, error) {
 	out := c.out
 	if out.Pick != nil {
 		if c.missing >= 0 {
@@ -213,14 +216,16 @@ func (c *windowCall) vector(n int) column.Vector {
 				}
 			}
 		}
-		var v column.Vector
-		gatherInto(&v, &c.picked, out.Pick, true)
+		v, err := gatherUntil(stop, &c.picked, out.Pick, true)
+		if err != nil {
+			return v, err
+		}
 		if v.Type == column.Real {
 			for i := range v.F {
 				v.F[i] += 0 // -0 is 0, as in MIN without a window
 			}
 		}
-		return v
+		return v, nil
 	}
 	v := column.Vector{Type: out.Type, N: n, I: out.I, F: out.F}
 	for i, null := range out.Null {
@@ -228,5 +233,5 @@ func (c *windowCall) vector(n int) column.Vector {
 			v.SetNull(i)
 		}
 	}
-	return v
+	return v, stop()
 }

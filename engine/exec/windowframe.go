@@ -30,7 +30,7 @@ func rowFrames(lo, hi []int32, f plan.Frame) {
 
 // rangeFrames sets the frames that go by the key of the order. Rows whose key is
 // NULL have each other where others have the rows within the offset.
-func (w *windowWorker) rangeFrames(rows []int32, f plan.Frame) {
+func (w *windowWorker) rangeFrames(rows []int32, f plan.Frame) error {
 	for k := range rows {
 		switch f.Start.Kind {
 		case plan.UnboundedPreceding:
@@ -46,16 +46,19 @@ func (w *windowWorker) rangeFrames(rows []int32, f plan.Frame) {
 		}
 	}
 	if b := f.Start; b.Kind == plan.Preceding || b.Kind == plan.Following {
-		w.offsets(rows, b, w.lo, w.peers, func(c int) bool { return c < 0 })
+		if err := w.offsets(rows, b, w.lo, w.peers, func(c int) bool { return c < 0 }); err != nil {
+			return err
+		}
 	}
 	if b := f.End; b.Kind == plan.Preceding || b.Kind == plan.Following {
-		w.offsets(rows, b, w.hi, w.ends, func(c int) bool { return c <= 0 })
+		return w.offsets(rows, b, w.hi, w.ends, func(c int) bool { return c <= 0 })
 	}
+	return nil
 }
 
 // offsets sets each bound to the first row for which before no longer holds. before
 // is given how a row compares with the key of the current one moved by the offset.
-func (w *windowWorker) offsets(rows []int32, b plan.FrameBound, bound, ofNull []int32, before func(int) bool) {
+func (w *windowWorker) offsets(rows []int32, b plan.FrameBound, bound, ofNull []int32, before func(int) bool) error {
 	key := w.run.order[0]
 	first, end := 0, len(rows)
 	for first < end && key.v.IsNull(int(rows[first])) {
@@ -66,6 +69,11 @@ func (w *windowWorker) offsets(rows []int32, b plan.FrameBound, bound, ofNull []
 	}
 	at := first
 	for k, row := range rows {
+		if k&(cancelRows-1) == 0 {
+			if err := w.stop(); err != nil {
+				return err
+			}
+		}
 		if key.v.IsNull(int(row)) {
 			bound[k] = ofNull[k]
 			continue
@@ -75,6 +83,7 @@ func (w *windowWorker) offsets(rows []int32, b plan.FrameBound, bound, ofNull []
 		}
 		bound[k] = int32(at)
 	}
+	return nil
 }
 
 // compareMoved compares the key of a row with that of another moved by an offset, in

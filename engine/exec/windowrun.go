@@ -23,6 +23,7 @@ type windowRun struct {
 	start []int32 // of each partition in rows, and the end
 	order []orderKey
 	ranks [][]uint64 // of the texts of an order key
+	peers bool       // somebody asks which rows are equal in the order
 	calls []windowCall
 }
 
@@ -36,10 +37,18 @@ func (r *windowRun) prepare(ctx context.Context) error {
 	}
 	for i, k := range s.node.OrderBy {
 		v := &r.all.Cols[s.order[i]]
+		if v.Valid != nil && column.Count(v.Valid) == v.N { // all are there: nobody need look
+			all := *v
+			all.Valid = nil
+			v = &all
+		}
 		r.order = append(r.order, orderKey{v, k.Descending, k.NullsFirst})
 		r.ranks = append(r.ranks, nil)
 		if v.Type == column.Text {
-			r.ranks[i] = textRanks(v)
+			var err error
+			if r.ranks[i], err = textRanks(ctx.Err, v); err != nil {
+				return err
+			}
 		}
 	}
 	r.calls = make([]windowCall, len(s.node.Calls))
@@ -78,6 +87,11 @@ func (r *windowRun) divide(ctx context.Context) error {
 	}
 	next := append([]int32(nil), r.start...)
 	for i, g := range ids {
+		if i&(cancelRows-1) == 0 {
+			if err := ctx.Err(); err != nil {
+				return err
+			}
+		}
 		r.rows[next[g]] = int32(i)
 		next[g]++
 	}
@@ -90,7 +104,7 @@ func (r *windowRun) numbers(ctx context.Context, at []int) ([]int32, int, error)
 	for _, c := range at {
 		types = append(types, r.all.Cols[c].Type)
 	}
-	t := newKeyTable(types)
+	t := newKeyTable(types).until(ctx.Err)
 	read := newKeyReader(t)
 	ids := make([]int32, r.all.N)
 	cols := make([]column.Vector, len(at))
@@ -112,6 +126,7 @@ func (r *windowRun) prepareCall(i int) error {
 	node, at := &s.node.Calls[i], s.calls[i]
 	c := &r.calls[i]
 	*c = windowCall{node: node, missing: -1, by: 1}
+	r.peers = r.peers || asksPeers(node)
 	result := s.node.Fields[len(s.schema)+i].Type
 	if node.Fn != nil {
 		if constant := whichArg(node.Fn.Kind); constant >= 0 && constant < len(node.Args) {
@@ -151,6 +166,15 @@ func (r *windowRun) prepareCall(i int) error {
 		c.picked = rows.Args[0]
 	}
 	return nil
+}
+
+// asksPeers reports whether a call looks at rows that are equal in the order: places
+// among them and frames of RANGE do, LAG and frames of ROWS do not.
+func asksPeers(c *plan.WindowCall) bool {
+	if c.Fn == nil || c.Fn.Framed {
+		return c.Frame.Range
+	}
+	return c.Fn.Kind < function.PickFirst
 }
 
 // whichArg is the argument of a window function that is a number of rows.
@@ -286,12 +310,18 @@ func (w *windowWorker) partition(rows []int32) error {
 	if err := w.stop(); err != nil {
 		return err
 	}
+	sorted := false // by words that are still there
 	if len(r.order) > 0 {
-		if err := w.sort(rows); err != nil {
+		var err error
+		if sorted, err = w.sort(rows); err != nil {
 			return err
 		}
 	}
-	w.findPeers(rows)
+	if r.peers {
+		if err := w.findPeers(rows, sorted); err != nil {
+			return err
+		}
+	}
 	if w.sliders == nil {
 		w.sliders = make([]function.Slider, len(r.calls))
 	}
@@ -305,7 +335,9 @@ func (w *windowWorker) partition(rows []int32) error {
 			}
 			continue
 		}
-		w.frames(rows, c.node.Frame)
+		if err := w.frames(rows, c.node.Frame); err != nil {
+			return err
+		}
 		if c.node.Fn != nil {
 			c.node.Fn.Pick(rows, w.lo, w.hi, c.by, c.out)
 			continue
@@ -320,48 +352,43 @@ func (w *windowWorker) partition(rows []int32) error {
 	return nil
 }
 
-// sort orders the rows of a partition by the keys; equals stay in their order.
-func (w *windowWorker) sort(rows []int32) error {
+// sort orders the rows of a partition by the keys; equals stay in their order. It
+// reports whether w.words holds the words by which they were put in order last.
+func (w *windowWorker) sort(rows []int32) (bool, error) {
 	w.words = room(w.words, len(rows))
 	words, spare := w.words, w.spare
 	for i, row := range rows {
 		words[i].row = row
 	}
+	by := false
 	for k := len(w.run.order) - 1; k >= 0; k-- {
 		key := w.run.order[k]
 		if key.v.Type == column.Null {
 			continue
 		}
+		by = true
 		for part := wordsOf(key.v.Type) - 1; part >= 0; part-- {
 			if err := w.stop(); err != nil {
-				return err
+				return false, err
 			}
-			for i := range words {
-				words[i].word = w.run.word(k, part, words[i].row)
+			key.fill(words, part, w.run.ranks[k])
+			var err error
+			if words, spare, err = radixSortUntil(w.stop, words, spare); err != nil {
+				return false, err
 			}
-			words, spare = radixSort(words, spare)
 		}
 		if key.v.Valid != nil {
-			words, spare = nullsToEnd(key, words, spare)
+			var err error
+			if words, spare, err = nullsToEnd(w.stop, key, words, spare); err != nil {
+				return false, err
+			}
 		}
 	}
 	for i, x := range words {
 		rows[i] = x.row
 	}
 	w.words, w.spare = words, spare
-	return nil
-}
-
-// word is the value of an order key as a word of its order; of NULL it is that of 0.
-func (r *windowRun) word(k, part int, row int32) uint64 {
-	key, word := r.order[k], uint64(0)
-	if key.v.Valid == nil || column.Bit(key.v.Valid, int(row)) {
-		word = orderWord(key.v, int(row), part, r.ranks[k])
-	}
-	if key.descending {
-		return ^word
-	}
-	return word
+	return by, nil
 }
 
 // equal reports whether two rows are equal in the order.
@@ -370,20 +397,40 @@ func (r *windowRun) equal(a, b int32) bool {
 		if key.v.Type == column.Null {
 			continue
 		}
-		if key.v.IsNull(int(a)) != key.v.IsNull(int(b)) || r.word(k, 0, a) != r.word(k, 0, b) {
+		if none := key.v.IsNull(int(a)); none != key.v.IsNull(int(b)) {
 			return false
+		} else if none {
+			continue
+		}
+		for part := range wordsOf(key.v.Type) {
+			if orderWord(key.v, int(a), part, r.ranks[k]) != orderWord(key.v, int(b), part, r.ranks[k]) {
+				return false
+			}
 		}
 	}
 	return true
 }
 
-// findPeers finds the rows that are equal in the order; without one all are.
-func (w *windowWorker) findPeers(rows []int32) {
+// findPeers finds the rows that are equal in the order; without one all are. sorted: the
+// words by which they were put in order last are still there. Most rows differ in them,
+// and the values lie far apart in memory.
+func (w *windowWorker) findPeers(rows []int32, sorted bool) error {
 	n := len(rows)
 	w.peers, w.ends = room(w.peers, n), room(w.ends, n)
+	var words []rowWord
+	if sorted {
+		words = w.words
+	}
+	// of one word without NULLs the words say all
+	all := words != nil && len(w.run.order) == 1 && w.run.order[0].v.Valid == nil && wordsOf(w.run.order[0].v.Type) == 1
 	first := 0
 	for k := 1; k <= n; k++ {
-		if k < n && w.run.equal(rows[k-1], rows[k]) {
+		if k&(cancelRows-1) == 0 {
+			if err := w.stop(); err != nil {
+				return err
+			}
+		}
+		if k < n && (words == nil || words[k-1].word == words[k].word) && (all || w.run.equal(rows[k-1], rows[k])) {
 			continue
 		}
 		for j := first; j < k; j++ {
@@ -391,16 +438,20 @@ func (w *windowWorker) findPeers(rows []int32) {
 		}
 		first = k
 	}
+	return nil
 }
 
-func (w *windowWorker) frames(rows []int32, f plan.Frame) {
+func (w *windowWorker) frames(rows []int32, f plan.Frame) error {
 	w.lo, w.hi = room(w.lo, len(rows)), room(w.hi, len(rows))
 	if f.Range {
-		w.rangeFrames(rows, f)
+		if err := w.rangeFrames(rows, f); err != nil {
+			return err
+		}
 	} else {
 		rowFrames(w.lo, w.hi, f)
 	}
 	for k, lo := range w.lo {
 		w.hi[k] = max(w.hi[k], lo) // an empty frame
 	}
+	return w.stop()
 }

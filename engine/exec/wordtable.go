@@ -87,6 +87,9 @@ func (t *keyTable) rehashWords(size int) {
 		w.shift--
 	}
 	for k := range t.n {
+		if t.stopped(k) {
+			return
+		}
 		if t.words[2*k+1] != 0 {
 			continue // NULL has a place of its own
 		}
@@ -135,7 +138,7 @@ func (t *keyTable) putHashed(word uint64) int32 {
 			k := t.add2(word, 0)
 			*s = wordSlot{word, k + 1}
 			if 2*t.n > len(w.slots) {
-				t.rehashWords(4 * len(w.slots))
+				t.rehashWords(grownSlots(len(w.slots)))
 			}
 			return k
 		}
@@ -157,6 +160,14 @@ func (t *keyTable) putNull() int32 {
 		t.nullKey = t.add2(0, 1)
 	}
 	return t.nullKey
+}
+
+// grownSlots is the next size of a table: large ones, whose memory counts, grow less.
+func grownSlots(n int) int {
+	if n >= 1<<22 {
+		return 2 * n
+	}
+	return 4 * n
 }
 
 // findWord is the key of a word, -1 where it is not there.
@@ -230,6 +241,8 @@ func (r *keyReader) putNear(v *column.Vector, on []uint64, n int, keys []int32) 
 	rows := v.Valid != nil || on != nil
 	if rows {
 		r.order = activeRows(r.order, on, n)
+	} else if putKnown(t.single, v.I[:n], keys) {
+		return true
 	}
 	lo, hi, some := r.span(v, rows, n)
 	if some && !t.covers(lo, hi) {
@@ -262,6 +275,21 @@ func (r *keyReader) putNear(v *column.Vector, on []uint64, n int, keys []int32) 
 			direct[x-least] = k
 		}
 		keys[i] = k - 1
+	}
+	return true
+}
+
+// putKnown gives numbers the keys that they have already, and reports whether all have
+// one.
+func putKnown(t *wordTable, numbers []int64, keys []int32) bool {
+	direct, least := t.direct, uint64(t.least)
+	keys = keys[:len(numbers)]
+	for i, x := range numbers {
+		d := uint64(x) - least
+		if d >= uint64(len(direct)) || direct[d] == 0 {
+			return false
+		}
+		keys[i] = direct[d] - 1
 	}
 	return true
 }

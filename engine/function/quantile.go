@@ -97,35 +97,47 @@ func (a *quantiles) Merge(other Accumulator, to []int32) error {
 func (a *quantiles) Result(groups int) (column.Vector, error) {
 	v := column.New(a.t, nil, groups)
 	start := make([]int, groups+1)
-	for _, g := range a.groups {
+	for i, g := range a.groups {
+		if err := a.stopped(i); err != nil {
+			return v, err
+		}
 		start[g+1]++
 	}
 	for g := range groups {
 		start[g+1] += start[g]
 	}
 	if a.weighted {
-		a.weightedQuantiles(&v, start)
-	} else {
-		a.plainQuantiles(&v, start)
+		return v, a.weightedQuantiles(&v, start)
 	}
-	return v, nil
+	return v, a.plainQuantiles(&v, start)
 }
 
-func (a *quantiles) plainQuantiles(v *column.Vector, start []int) {
+func (a *quantiles) plainQuantiles(v *column.Vector, start []int) error {
 	sorted := make([]int64, len(a.keys))
 	next := slices.Clone(start)
 	for i, g := range a.groups {
+		if err := a.stopped(i); err != nil {
+			return err
+		}
 		sorted[next[g]] = a.keys[i]
 		next[g]++
 	}
+	seen := 0
 	for g := range v.N {
 		part := sorted[start[g]:start[g+1]]
 		if len(part) == 0 {
 			v.SetNull(g)
 			continue
 		}
+		if seen += len(part); seen >= stopRows && a.stop != nil {
+			if err := a.stop(); err != nil {
+				return err
+			}
+			seen = 0
+		}
 		setKey(v, g, selected(part, rankOf(a.p, len(part))-1))
 	}
+	return nil
 }
 
 // rankOf is the smallest rank r >= 1 with r >= p·n, where p counts as the
@@ -167,10 +179,17 @@ type weightedKey struct {
 	w   float64
 }
 
-func (a *quantiles) weightedQuantiles(v *column.Vector, start []int) {
+func (a *quantiles) weightedQuantiles(v *column.Vector, start []int) error {
+	stop := a.stop
+	if stop == nil {
+		stop = func() error { return nil }
+	}
 	sorted := make([]weightedKey, len(a.keys))
 	next := slices.Clone(start)
 	for i, g := range a.groups {
+		if err := a.stopped(i); err != nil {
+			return err
+		}
 		sorted[next[g]] = weightedKey{a.keys[i], a.weights[i]}
 		next[g]++
 	}
@@ -180,11 +199,18 @@ func (a *quantiles) weightedQuantiles(v *column.Vector, start []int) {
 			v.SetNull(g)
 			continue
 		}
-		slices.SortFunc(part, func(x, y weightedKey) int {
+		if err := a.stopped(g); err != nil {
+			return err
+		}
+		err := SortUntil(stop, part, func(x, y weightedKey) int {
 			return cmp.Or(cmp.Compare(x.key, y.key), cmp.Compare(x.w, y.w))
 		})
+		if err != nil {
+			return err
+		}
 		setKey(v, g, weightedQuantile(part, a.p))
 	}
+	return nil
 }
 
 // weightedQuantile is the smallest key up to which lies p of the weight, of

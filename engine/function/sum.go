@@ -185,6 +185,9 @@ func (a *realSums) Result(groups int) (column.Vector, error) {
 	}
 	v := column.New(t, nil, groups)
 	for g := range groups {
+		if err := a.stopped(g); err != nil {
+			return v, err
+		}
 		if g >= len(a.sums) || a.sums[g].n == 0 {
 			v.SetNull(g)
 			continue
@@ -316,6 +319,9 @@ func (a *intSums) Result(groups int) (column.Vector, error) {
 	}
 	v := column.New(t, nil, groups)
 	for g := range groups {
+		if err := a.stopped(g); err != nil {
+			return v, err
+		}
 		if g >= len(a.sums) || a.sums[g].n == 0 {
 			v.SetNull(g)
 			continue

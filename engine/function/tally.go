@@ -13,8 +13,9 @@ type tally struct {
 	weighted bool
 	facts    []weightState
 	identity []int32
-	some     []int32 // scratch of selected
-	heavy    []int32 // scratch of begin
+	some     []int32      // scratch of selected
+	heavy    []int32      // scratch of begin
+	stop     func() error // asked in Result whether to go on; nil: nobody asks
 }
 
 // weightState is WeightFacts in the making.

@@ -168,8 +168,37 @@ func TestJoinKeys(t *testing.T) {
 		compare(col(j.Left, "n"), lang.Equals, col(j.Left, "r")), compare(col(j.Left, "n"), lang.Less, right(j, "n")),
 		compare(arith(num(1), lang.Divide, col(j.Left, "r")), lang.Equals, right(j, "r")))
 	expect(t, "join keys", j, `
-inner join by hash: n = r, s = s; on n = r AND n < n AND 1.0 / r = r
+inner join by hash: n = r, s = s, 1.0 / r = r (row by row where one of these fails); on n = r AND n < n
   read table x: id, n, r, s, b, t, p
+  read table x: id, n, r, s, b, t, p
+`)
+}
+
+// An equality that can fail stays in the condition above a join, and is a key of the
+// join that its sides meet in.
+func TestJoinKeysFromAbove(t *testing.T) {
+	in := &plan.Join{Left: scan(), Right: scan()}
+	j := &plan.Join{Left: in, Right: scan()}
+	f := &plan.Filter{Input: j, Clause: "WHERE", Cond: compare(arith(num(1), lang.Divide, col(in.Left, "r")), lang.Equals, right(in, "r"))}
+	expect(t, "join keys", f, `
+keep where: 1.0 / r = r
+  cross join
+    inner join by hash: 1.0 / r = r (row by row where one of these fails)
+      read table x: id, n, r, s, b, t, p
+      read table x: id, n, r, s, b, t, p
+    read table x: id, n, r, s, b, t, p
+`)
+}
+
+// Of one row on the left all pairs are fewer steps than a table of keys.
+func TestJoinOfOneRowHasNoKeys(t *testing.T) {
+	one := &plan.Aggregate{Input: scan(), Calls: []plan.Call{{Fn: function.LookupAggregate("COUNT"), Text: "COUNT(*)"}}, Fields: column.Schema{{Name: "n", Type: column.Integer}}}
+	j := &plan.Join{Left: one, Right: scan()}
+	j.Rest = compare(col(one, "n"), lang.Equals, right(j, "n"))
+	expect(t, "join keys", j, `
+inner join on n = n
+  aggregate all rows: COUNT(*)
+    read table x: id, n, r, s, b, t, p
   read table x: id, n, r, s, b, t, p
 `)
 }

@@ -101,12 +101,18 @@ const (
 // Join matches rows: where there are key pairs by hash, else by a nested loop.
 // LeftKeys refer to the columns of Left, RightKeys to those of Right, Rest to
 // both. NULL keys match nothing. Near bounds the pairs of a nested loop.
+//
+// Guarded keys can fail: as soon as one of them does, the rows that it was computed
+// with are paired one by one by the condition Whole (nil: all pairs match), as if there
+// were no keys, and fail or not as they do there.
 type Join struct {
 	Kind                JoinKind
 	Left, Right         Node
 	LeftKeys, RightKeys []expr.Expr
 	Rest                expr.Expr
 	Near                *Near // of a nested loop, nil: every pair is looked at
+	Guarded             bool
+	Whole               expr.Expr
 }
 
 // SortKey is one key of ORDER BY. NULLs sort last unless said.

@@ -243,6 +243,9 @@ func joinLine(n *Join) string {
 		}
 		line += fmt.Sprintf("%s = %s", n.LeftKeys[i], n.RightKeys[i])
 	}
+	if n.Guarded {
+		line += " (row by row where one of these fails)"
+	}
 	if n.Near != nil {
 		line += fmt.Sprintf(", pairs by nearest-site search: %s within %s of %s", n.Near.Right, n.Near.Within, n.Near.Left)
 	}

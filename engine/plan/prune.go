@@ -205,6 +205,7 @@ func prunedJoin(n *Join, need []bool) (Node, []int) {
 	both := make([]bool, len(n.Both()))
 	copy(both, need)
 	mark(both, n.Both(), n.Rest)
+	mark(both, n.Both(), n.Whole)
 	left, right := both[:split], both[split:]
 	for i := range n.LeftKeys {
 		mark(left, n.Left.Schema(), n.LeftKeys[i])
@@ -223,7 +224,7 @@ func prunedJoin(n *Join, need []bool) (Node, []int) {
 		}
 		to = append(to, t)
 	}
-	c.Rest = expr.Remap(n.Rest, to)
+	c.Rest, c.Whole = expr.Remap(n.Rest, to), expr.Remap(n.Whole, to)
 	return &c, to[:len(need)]
 }
 

@@ -91,6 +91,13 @@ func Equality(rng *rand.Rand, left, right column.Schema) expr.Expr {
 			continue
 		}
 		l, r := Column(both, i), Column(both, len(left)+j)
+		if a.Numeric() && rng.IntN(4) == 0 { // keys that can fail, and some that do
+			by := expr.NewConst(column.Float(2), Nowhere)
+			if rng.IntN(2) == 0 {
+				l, by = by, l
+			}
+			l = must(expr.NewArith(lang.Divide, l, by, Nowhere))
+		}
 		if rng.IntN(2) == 0 {
 			l, r = r, l
 		}
