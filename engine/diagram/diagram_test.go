@@ -102,7 +102,7 @@ func TestConcurrent(t *testing.T) {
 					some = append(some, (i*7+int32(g))%400)
 				}
 			}
-			c, err := h.Measure(context.Background(), measures, some, nil)
+			c, err := h.Measure(context.Background(), measures, 0, some, nil)
 			if err != nil {
 				t.Error(err)
 				return
@@ -162,12 +162,12 @@ func TestMemory(t *testing.T) {
 			if rapid.IntRange(0, 4).Draw(r, "all") == 0 {
 				list = nil
 			}
-			got, err := h.Measure(context.Background(), m, list, nil)
+			got, err := h.Measure(context.Background(), m, 0, list, nil)
 			if err != nil {
 				r.Fatal(err)
 			}
 			before := s.Stats().Cells
-			if _, err := h.Measure(context.Background(), m, list, nil); err != nil || s.Stats().Cells != before {
+			if _, err := h.Measure(context.Background(), m, 0, list, nil); err != nil || s.Stats().Cells != before {
 				r.Fatalf("asked again, %d cells were computed, %v", s.Stats().Cells-before, err)
 			}
 			if list == nil {
@@ -250,7 +250,7 @@ func TestLimit(t *testing.T) {
 	var held []*Handle
 	for i := range uint64(5) {
 		h := get(t, s, places(1000, i), o)
-		if _, err := h.Measure(context.Background(), voronoi.Volume, nil, nil); err != nil {
+		if _, err := h.Measure(context.Background(), voronoi.Volume, 0, nil, nil); err != nil {
 			t.Fatal(err)
 		}
 		held = append(held, h)
@@ -273,7 +273,7 @@ func TestLimit(t *testing.T) {
 	if s.Stats().Built != 6 {
 		t.Error("the one used least recently was kept")
 	}
-	if c, err := held[1].Measure(context.Background(), voronoi.Volume|voronoi.Area, nil, nil); err != nil || len(c.Area) != 1000 {
+	if c, err := held[1].Measure(context.Background(), voronoi.Volume|voronoi.Area, 0, nil, nil); err != nil || len(c.Area) != 1000 {
 		t.Errorf("a dropped diagram does not go on: %v", err)
 	}
 	if got := s.Stats().Bytes; got > 3*each+each/2 {
@@ -301,11 +301,11 @@ func TestErrors(t *testing.T) {
 	}
 	ctx, cancel := context.WithCancel(context.Background())
 	h := get(t, s, places(3000, 5), voronoi.Options{Solid: unitBox(t), Threads: 1})
-	_, err := h.Measure(ctx, voronoi.Volume, nil, func(done, total int) { cancel() })
+	_, err := h.Measure(ctx, voronoi.Volume, 0, nil, func(done, total int) { cancel() })
 	if !errors.Is(err, context.Canceled) {
 		t.Fatalf("the measures were done before the first progress: %v", err)
 	}
-	c, err := h.Measure(context.Background(), voronoi.Volume, nil, nil)
+	c, err := h.Measure(context.Background(), voronoi.Volume, 0, nil, nil)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -323,11 +323,11 @@ func TestProgress(t *testing.T) {
 	o := voronoi.Options{Solid: unitBox(t), Threads: 2}
 	h := get(t, s, places(2000, 6), o)
 	first, second := 0, 0
-	if _, err := h.Measure(context.Background(), voronoi.Volume, nil, func(done, total int) { first++ }); err != nil {
+	if _, err := h.Measure(context.Background(), voronoi.Volume, 0, nil, func(done, total int) { first++ }); err != nil {
 		t.Fatal(err)
 	}
 	told := first
-	if _, err := h.Measure(context.Background(), voronoi.Area, nil, func(done, total int) { second++ }); err != nil {
+	if _, err := h.Measure(context.Background(), voronoi.Area, 0, nil, func(done, total int) { second++ }); err != nil {
 		t.Fatal(err)
 	}
 	if told == 0 || first != told || second == 0 {

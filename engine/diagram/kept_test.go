@@ -70,7 +70,7 @@ func answer(t *testing.T, s *Store, sites []voronoi.Vec, o voronoi.Options, a as
 	if err != nil {
 		t.Fatal(err)
 	}
-	c, err := h.Measure(context.Background(), a.want, a.sites, nil)
+	c, err := h.Measure(context.Background(), a.want, 0, a.sites, nil)
 	if err != nil {
 		t.Fatal(err)
 	}

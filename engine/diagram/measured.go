@@ -36,8 +36,9 @@ func (h *Handle) set(want voronoi.Measures, sites []int32) (*cellSet, error) {
 // Measure computes the wanted measures of the given sites (nil: all), as far as
 // they are not known. In the answer, entry s of each array belongs to site s of
 // the diagram; only the entries of the sites asked for are to be read, and none
-// is to be changed. Cells.Sites is nil.
-func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int32,
+// is to be changed. Cells.Sites is nil. Cells that have to be made get the measures of
+// also, too, for which somebody will ask next, where those are made in the same way.
+func (h *Handle) Measure(ctx context.Context, want, also voronoi.Measures, sites []int32,
 	progress func(done, total int)) (*voronoi.Cells, error) {
 	if err := h.lock(ctx, progress); err != nil {
 		return nil, err
@@ -48,20 +49,26 @@ func (h *Handle) Measure(ctx context.Context, want voronoi.Measures, sites []int
 		return nil, err
 	}
 	h.recall(set, want)
+	with := want | also
+	if whole, err := h.d.Whole(with, sites); err != nil {
+		return nil, err
+	} else if whole != set.whole {
+		with = want
+	}
 	missing, all := set.missing(want, sites, h.d.Len())
 	if len(missing) > 0 || all {
 		if all {
 			missing = nil
 		}
-		got, went, err := h.d.MeasureWay(ctx, set.whole, want, missing)
+		got, went, err := h.d.MeasureWay(ctx, set.whole, with, missing)
 		if err != nil {
 			return nil, err
 		}
 		set.strays = set.strays || went != set.whole
 		h.store.count(len(got.Sites), 0)
-		h.store.grow(h, set.merge(want, got, h.d.Len()))
+		h.store.grow(h, set.merge(with, got, h.d.Len()))
 		if all || sites == nil {
-			h.retain(ctx, set, want)
+			h.retain(ctx, set, with)
 		}
 		h.grown(ctx)
 	} else if !h.indexed && set.kept != 0 {

@@ -36,6 +36,9 @@ func (r *runner) watch(n *plan.Aggregate) *cellWatch {
 	for _, m := range plan.CellSums(n) {
 		w.shown[m.Relation] = r.countShown(m.Relation)
 	}
+	for _, of := range plan.Repeated(n) {
+		w.shown[of] = r.countShown(of)
+	}
 	for _, m := range plan.Weighings(n) {
 		w.shown[m.Relation] = r.countShown(m.Relation)
 	}

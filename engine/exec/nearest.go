@@ -169,10 +169,10 @@ func (r *runner) openNearest(ctx context.Context, n *plan.Nearest) (*pipeline, e
 	s := nearSearch{node: n, table: t, rows: x.rows, w: w}
 	s.it.Start(tree, from)
 	found, enough, err := s.run(ctx, tree)
-	if err != nil {
+	if err != nil && !ofRow(err) {
 		return nil, err
 	}
-	if !enough { // rows without a place may be among the first ones
+	if err != nil || !enough { // rows without a place may be among the first ones
 		return all, nil
 	}
 	slices.Sort(found)

@@ -5,6 +5,7 @@ import (
 	"slices"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/expr"
 	"nearcell/engine/plan"
 	"nearcell/voronoi/index"
 )
@@ -14,6 +15,7 @@ type nearSide struct {
 	by   *plan.Near
 	tree *index.Tree
 	rows []int32 // of the right side, by place in the tree's input
+	far  float64 // that any right row reaches, where these bound the pairs
 }
 
 // openNear gives the right side its tree; none where a point of it is not finite, or
@@ -25,11 +27,46 @@ func (s *buildSide) openNear(ctx context.Context, env *Env, by *plan.Near) error
 		return nil
 	}
 	x := &nearIndex{point: by.Right}
+	reach := 0.0
+	if by.OfRight {
+		var err error
+		if reach, err = s.farthest(ctx, env, by.Within); err != nil || reach-reach != 0 {
+			return ctx.Err() // all pairs stay
+		}
+	}
 	points, err := x.places(ctx, env, s.table)
 	if err == nil && points != nil {
-		s.near = &nearSide{by, index.New(points), x.rows}
+		s.near = &nearSide{by, index.New(points), x.rows, reach}
 	}
 	return err
+}
+
+// farthest is the largest value of an expression over the right side, -1 without any.
+func (s *buildSide) farthest(ctx context.Context, env *Env, within expr.Expr) (float64, error) {
+	w, in := NewWorker(env), scopeOf(s.table.Schema)
+	far := -1.0
+	for lo := 0; lo < s.table.N; lo += BatchRows {
+		if err := ctx.Err(); err != nil {
+			return 0, err
+		}
+		b := s.table.Batch(lo, min(lo+BatchRows, s.table.N))
+		w.begin(int64(lo))
+		v, err := in.eval(w, within, &b, nil)
+		if err != nil {
+			return 0, err
+		}
+		for i := range b.N {
+			if v.Type == column.Null || v.IsNull(i) {
+				continue
+			}
+			if v.Type == column.Real {
+				far = max(far, v.F[i])
+			} else {
+				far = max(far, float64(v.I[i]))
+			}
+		}
+	}
+	return far, nil
 }
 
 // nearLocal is what a worker knows of the left rows of a batch.
@@ -44,7 +81,7 @@ type nearLocal struct {
 // begin computes the bounds of a batch.
 func (l *nearLocal) begin(s *nearSide, in scope, w *Worker, b *column.Batch) {
 	points, err := in.eval(w, s.by.Left, b, b.On)
-	if err == nil {
+	if err == nil && !s.by.OfRight {
 		l.within, err = in.eval(w, s.by.Within, b, b.On)
 	}
 	l.points, l.all = points, err != nil
@@ -56,14 +93,15 @@ func (l *nearLocal) candidates(s *nearSide, i int32) ([]int32, bool) {
 	if l.all {
 		return nil, false
 	}
-	if l.points.Type == column.Null || l.within.Type == column.Null || l.points.IsNull(int(i)) || l.within.IsNull(int(i)) {
+	if l.points.Type == column.Null || l.points.IsNull(int(i)) {
 		return nil, true
 	}
-	within := 0.0
-	if l.within.Type == column.Real {
-		within = l.within.F[i]
-	} else {
-		within = float64(l.within.I[i])
+	within, some := s.far, true
+	if !s.by.OfRight {
+		within, some = reachOf(&l.within, i)
+	}
+	if !some {
+		return nil, true
 	}
 	p := index.Vec{X: l.points.F[3*i], Y: l.points.F[3*i+1], Z: l.points.F[3*i+2]}
 	if !finite(p) {
@@ -83,6 +121,17 @@ func (l *nearLocal) candidates(s *nearSide, i int32) ([]int32, bool) {
 	}
 	slices.Sort(l.rows)
 	return l.rows, true
+}
+
+// reachOf is the bound of row i; some: there is one.
+func reachOf(within *column.Vector, i int32) (far float64, some bool) {
+	switch {
+	case within.Type == column.Null || within.IsNull(int(i)):
+		return 0, false
+	case within.Type == column.Real:
+		return within.F[i], true
+	}
+	return float64(within.I[i]), true
 }
 
 // nearCandidates hands on the candidates of left row i.

@@ -272,7 +272,7 @@ func (r *runner) openSites(ctx context.Context, n *plan.Relation) (overSites, er
 	}
 	env := r.env.Env
 	env.Keep = r.envOf(r.meter(n)).keep
-	rows, err := n.Bound.Def.Open(n.Bound, &env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside, Most: n.Most})
+	rows, err := n.Bound.Def.Open(n.Bound, &env, sites, relation.Request{Need: need, Wanted: wanted, Beside: beside, Most: n.Most, Also: n.Also})
 	return overSites{rows, sites, wanted}, placed(err, n)
 }
 

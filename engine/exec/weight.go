@@ -11,6 +11,7 @@ import (
 	"nearcell/engine/expr"
 	"nearcell/engine/function"
 	"nearcell/engine/note"
+	"nearcell/engine/plan"
 )
 
 // heaviest is the row with the largest weight among those with a value.
@@ -60,6 +61,7 @@ func (h *heaviest) merge(o *heaviest) {
 // same weights of the same rows say it together.
 func (s *aggregateSink) weightNotes() {
 	said := make([]bool, len(s.node.Calls))
+	repeated := plan.Repeated(s.node)
 	for i, c := range s.all.calls {
 		if said[i] || c.call.Weight == nil {
 			continue
@@ -74,7 +76,11 @@ func (s *aggregateSink) weightNotes() {
 			}
 		}
 		text := strings.Join(names, ", ")
-		if line := effectiveText(facts, &c.largest); line != "" {
+		parts := int64(0)
+		if of := repeated[i]; of != nil && s.watch.shown[of] != nil {
+			parts = s.watch.shown[of].parts.Load()
+		}
+		if line := effectiveText(facts, &c.largest, parts); line != "" {
 			s.env.Notes.Add(note.Note, note.Weights, "%s: %s", text, line)
 		}
 		if line := silentText(facts); line != "" {
@@ -91,8 +97,10 @@ func appendNew(names []string, name string) []string {
 }
 
 // effectiveText is n_eff = (Σw)² / Σw² and the largest share of the weight, as
-// ranges over the groups where there are several; "" where nothing was weighed.
-func effectiveText(facts []function.WeightFacts, largest *heaviest) string {
+// ranges over the groups where there are several; "" where nothing was weighed. Above one
+// partition, the values are those of sites in so many of them: then a site is there many
+// times, and what one partition is worth is said, too.
+func effectiveText(facts []function.WeightFacts, largest *heaviest, parts int64) string {
 	var eff, share, rows span
 	groups := 0
 	for _, f := range facts {
@@ -107,7 +115,14 @@ func effectiveText(facts []function.WeightFacts, largest *heaviest) string {
 	if groups == 0 {
 		return ""
 	}
-	text := fmt.Sprintf("n_eff %s of %s %s, largest weight %s %%", eff.text(short), rows.text(whole), plural(rows.high, "value"), share.text(percent))
+	of := ""
+	switch {
+	case parts > 1 && groups == 1:
+		of = fmt.Sprintf(" (%s in each of %d partitions on average: what one site reads in several is not independent)", short(eff.high/float64(parts)), parts)
+	case parts > 1:
+		of = " (of sites in several partitions: what one site reads in several is not independent)"
+	}
+	text := fmt.Sprintf("n_eff %s of %s %s%s, largest weight %s %%", eff.text(short), rows.text(whole), plural(rows.high, "value"), of, share.text(percent))
 	switch {
 	case groups > 1:
 		return fmt.Sprintf("over %d groups %s", groups, text)

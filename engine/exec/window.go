@@ -164,6 +164,9 @@ func (s *windowSink) Finish(ctx context.Context) (Source, error) {
 	}
 	if s.watch != nil {
 		s.watch.say(s.env.Notes)
+		for i := range run.calls {
+			run.calls[i].weights.say(s.env.Notes, s.node.Calls[i].Text)
+		}
 	}
 	for i := range s.node.Calls {
 		v, err := run.calls[i].vector(ctx.Err, all.N)
@@ -201,8 +204,9 @@ type windowCall struct {
 	out     *function.Slid
 	picked  column.Vector // what Pick gives the rows of
 	sliders function.Sliders
-	by      int64 // the number of LAG, LEAD, NTH_VALUE and NTILE
-	missing int   // of LAG and LEAD: the row of picked that stands for a missing one of row 0, -1: NULL
+	weights *frameWeights // nil: nothing is weighed, or nobody listens
+	by      int64         // the number of LAG, LEAD, NTH_VALUE and NTILE
+	missing int           // of LAG and LEAD: the row of picked that stands for a missing one of row 0, -1: NULL
 }
 
 // vector is the column of the values.

@@ -153,6 +153,12 @@ func (r *windowRun) prepareCall(i int) error {
 	}
 	if at.weight >= 0 {
 		rows.Weight = &r.all.Cols[at.weight]
+		if s.watch != nil {
+			c.weights = &frameWeights{weight: rows.Weight, on: rows.On}
+			for _, a := range at.args {
+				c.weights.args = append(c.weights.args, &r.all.Cols[a])
+			}
+		}
 	}
 	if node.Distinct {
 		r.firstOnes(&rows, at)
@@ -303,6 +309,7 @@ type windowWorker struct {
 	peers, ends []int32
 	lo, hi      []int32
 	sliders     []function.Slider // by call
+	frame       frameScratch
 }
 
 func (w *windowWorker) partition(rows []int32) error {
@@ -341,6 +348,9 @@ func (w *windowWorker) partition(rows []int32) error {
 		if c.node.Fn != nil {
 			c.node.Fn.Pick(rows, w.lo, w.hi, c.by, c.out)
 			continue
+		}
+		if c.weights != nil {
+			c.weights.look(&w.frame, rows, w.lo, w.hi)
 		}
 		if w.sliders[i] == nil {
 			w.sliders[i] = c.sliders.New(c.out)

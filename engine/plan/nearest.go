@@ -39,8 +39,10 @@ func nearestLine(n *Nearest) string {
 // LIMIT k can take. Those of queries that depend on the row outside hoist finds.
 //
 // Safe: the sort above sees all rows that can be among its first ones, in their order,
-// and sorts them as it did. What is computed below the sort, and the distances of rows
-// that are far away, are not computed any more: that can only spare an error.
+// and sorts them as it did. What is computed below the sort, the distances of rows that
+// are far away, and conditions on them, are not computed any more: that can only spare an
+// error. Where a condition fails for a row that is near, all rows are looked at, and the
+// one that is at fault comes out as ever.
 func nearest(n Node) (Node, error) {
 	return rewrite(n, func(n Node) (Node, error) {
 		s, ok := n.(*Sort)
@@ -101,7 +103,7 @@ func nearestRows(n Node, key expr.Expr, most int64, from func(Node) bool) (Node,
 		c.Input = in
 		return &c, true
 	case *Filter:
-		if n.Cond.CanFail() || expr.HasQuery(n.Cond) {
+		if expr.HasQuery(n.Cond) {
 			return n, false
 		}
 		return nearestIn(n.Input, key, n.Cond, most, from)

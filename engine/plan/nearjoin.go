@@ -12,14 +12,17 @@ type Near struct {
 	Left   expr.Expr // a POINT over the columns of the left side
 	Right  expr.Expr // a POINT over those of the right side
 	Within expr.Expr // over those of the left side
+	// OfRight says that Within is over the right side instead: the farthest that any
+	// right row reaches then bounds all pairs.
+	OfRight bool
 }
 
 // nearJoins lets joins without other keys look up by a k-d tree which right rows a
-// bound on their distance lets match: DISTANCE(a, b) <= r, < r or = r, where r does
-// not read the right side.
+// bound on their distance lets match: DISTANCE(a, b) <= r, < r or = r, where r reads one
+// side alone.
 //
 // Safe: what can fail is still decided by the condition, for fewer pairs. Where the
-// bound itself cannot be computed for a left row, all pairs stay.
+// bound itself cannot be computed for a left row, or for any right one, all pairs stay.
 func nearJoins(n Node) (Node, error) {
 	return rewrite(n, func(n Node) (Node, error) {
 		switch n := n.(type) {
@@ -46,7 +49,8 @@ func nearJoin(j *Join, cond expr.Expr) Node {
 	toLeft, toRight := sides(left, right)
 	for _, e := range expr.Conjuncts(cond) {
 		call, within, ok := distanceBound(e)
-		if !ok || !readsNothingBut(within, toLeft) {
+		ofRight := ok && !readsNothingBut(within, toLeft)
+		if !ok || ofRight && !readsNothingBut(within, toRight) {
 			continue
 		}
 		p, q := call.Args[0], call.Args[1]
@@ -57,7 +61,10 @@ func nearJoin(j *Join, cond expr.Expr) Node {
 			continue
 		}
 		c := *j
-		c.Near = &Near{Left: p, Right: expr.Remap(q, toRight), Within: within}
+		c.Near = &Near{Left: p, Right: expr.Remap(q, toRight), Within: within, OfRight: ofRight}
+		if ofRight {
+			c.Near.Within = expr.Remap(within, toRight)
+		}
 		return &c
 	}
 	return j

@@ -6,6 +6,7 @@ import (
 	"nearcell/engine/function"
 	"nearcell/engine/problem"
 	"nearcell/engine/relation"
+	"nearcell/voronoi"
 )
 
 // Node is a step of a plan. Schema lists the columns that it gives; the
@@ -46,7 +47,8 @@ type Relation struct {
 	Beside []Node // the rows of Bound.Beside
 	Need   []bool
 	Wanted expr.Expr
-	Most   int64 // first rows of CELLS that a LIMIT takes, 0: all
+	Most   int64            // first rows of CELLS that a LIMIT takes, 0: all
+	Also   voronoi.Measures // asked for by other uses of the same cells
 	Place  problem.Place
 }
 

@@ -30,6 +30,7 @@ func init() { // inside calls Optimise
 		{"nearest", nearest},
 		{"hoist", hoist},
 		{"near joins", nearJoins},
+		{"shared cells", sharedCells},
 	}
 }
 
@@ -41,10 +42,13 @@ func Optimise(n Node) (Node, error) { return newOptimiser().optimise(n) }
 type optimiser struct {
 	queries map[*Query]*Query
 	commons map[*Common]*Common
+	apply   func(Node) (Node, error) // what becomes of their plans
 }
 
 func newOptimiser() *optimiser {
-	return &optimiser{map[*Query]*Query{}, map[*Common]*Common{}}
+	o := &optimiser{queries: map[*Query]*Query{}, commons: map[*Common]*Common{}}
+	o.apply = o.optimise
+	return o
 }
 
 func (o *optimiser) optimise(n Node) (Node, error) {
@@ -55,7 +59,7 @@ func (o *optimiser) optimise(n Node) (Node, error) {
 	return n, err
 }
 
-// inside optimises the queries in expressions and the common parts of a plan.
+// inside applies it to the queries in expressions and the common parts of a plan.
 func (o *optimiser) inside(n Node) (Node, error) {
 	var failed error
 	return rewrite(n, func(n Node) (Node, error) {
@@ -102,7 +106,7 @@ func (o *optimiser) query(q *Query) (*Query, error) {
 	if better, ok := o.queries[q]; ok {
 		return better, nil
 	}
-	n, err := o.optimise(q.Plan)
+	n, err := o.apply(q.Plan)
 	if err != nil {
 		return nil, err
 	}
@@ -114,7 +118,7 @@ func (o *optimiser) common(c *Common) (*Common, error) {
 	if better, ok := o.commons[c]; ok {
 		return better, nil
 	}
-	n, err := o.optimise(c.Plan)
+	n, err := o.apply(c.Plan)
 	if err != nil {
 		return nil, err
 	}

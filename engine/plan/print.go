@@ -114,6 +114,9 @@ func relationLine(n *Relation) string {
 	if n.Most > 0 {
 		line += fmt.Sprintf("; first %d", n.Most)
 	}
+	if n.Also != 0 {
+		line += fmt.Sprintf("; with them %s, for other uses", strings.Join(n.Bound.Def.Measuring(n.Also), ", "))
+	}
 	return line
 }
 
@@ -247,7 +250,7 @@ func joinLine(n *Join) string {
 		line += " (row by row where one of these fails)"
 	}
 	if n.Near != nil {
-		line += fmt.Sprintf(", pairs by nearest-site search: %s within %s of %s", n.Near.Right, n.Near.Within, n.Near.Left)
+		line += fmt.Sprintf(", pairs by nearest-site search: %s within %s%s of %s", n.Near.Right, farthest(n.Near), n.Near.Within, n.Near.Left)
 	}
 	switch {
 	case n.Rest == nil && n.Near != nil:
@@ -259,6 +262,13 @@ func joinLine(n *Join) string {
 		line = "cross join"
 	}
 	return line
+}
+
+func farthest(n *Near) string {
+	if n.OfRight {
+		return "the farthest "
+	}
+	return ""
 }
 
 func matchedLine(n *Matched) string {

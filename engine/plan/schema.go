@@ -238,7 +238,7 @@ func mapExprs(n Node, f func(expr.Expr) expr.Expr) Node {
 		c.LeftKeys, c.RightKeys, c.Rest = mapList(n.LeftKeys, f), mapList(n.RightKeys, f), mapMaybe(n.Rest, f)
 		c.Whole = mapMaybe(n.Whole, f)
 		if n.Near != nil {
-			c.Near = &Near{f(n.Near.Left), f(n.Near.Right), f(n.Near.Within)}
+			c.Near = &Near{f(n.Near.Left), f(n.Near.Right), f(n.Near.Within), n.Near.OfRight}
 		}
 		return &c
 	case *Interpolate:

@@ -90,7 +90,7 @@ func openCells(b *Bound, env *Env, input *column.Table, r Request) (Rows, error)
 	if err != nil {
 		return nil, err
 	}
-	c := &cellRows{sites: s, own: len(b.Input), want: b.measures(r.Need)}
+	c := &cellRows{sites: s, own: len(b.Input), want: b.Measures(r.Need)}
 	if !b.Closed() && !b.measuredIn() && c.want&(voronoi.Volume|voronoi.Area|voronoi.Centroid|voronoi.Farthest) != 0 {
 		c.want |= voronoi.Bounded // for the note
 	}
@@ -197,7 +197,7 @@ func (c *cellRows) measured(ctx context.Context, p *Part) (*voronoi.Cells, []int
 	if len(ks) == 0 || c.want == 0 {
 		return &voronoi.Cells{}, ks, nil
 	}
-	m, err := h.Measure(ctx, c.want, list, c.progress())
+	m, err := h.Measure(ctx, c.want, c.r.Also, list, c.progress())
 	if err != nil {
 		return nil, nil, c.refused(err, p)
 	}

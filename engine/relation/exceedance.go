@@ -203,7 +203,7 @@ func (e *exceedRows) nearest(ctx context.Context, p *Part, region int32, within 
 			return nil, err
 		}
 	} else {
-		cells, err := from.handle.Measure(ctx, voronoi.Volume, nil, e.progress())
+		cells, err := from.handle.Measure(ctx, voronoi.Volume, 0, nil, e.progress())
 		if err != nil {
 			return nil, err
 		}

@@ -100,7 +100,7 @@ func (b *Bound) Guess(rows, shown, parts float64, need []bool, threads int) *For
 	if b.Def == contacts {
 		f.Rows *= max(0, min(rows/parts-1, typicalContacts))
 	}
-	if b.Def == contacts || b.measures(need) != 0 {
+	if b.Def == contacts || b.Measures(need) != 0 {
 		f.Cost.Cells = int(rows*shown + 0.5)
 		f.Cost.Seconds = rows * shown * typicalCell / float64(threads)
 	}
@@ -125,14 +125,25 @@ func (b *Bound) Work(need []bool) []string {
 	return names
 }
 
-// measures are the measures behind the needed columns of CELLS.
-func (b *Bound) measures(need []bool) (want voronoi.Measures) {
+// Measures are those behind the needed columns of CELLS.
+func (b *Bound) Measures(need []bool) (want voronoi.Measures) {
 	for i, c := range b.Columns {
 		if needed(need, i) {
 			want |= c.Measures
 		}
 	}
 	return want
+}
+
+// Measuring names the columns that measures are behind.
+func (d *Definition) Measuring(m voronoi.Measures) []string {
+	var names []string
+	for _, c := range d.Computed {
+		if c.Measures&m != 0 {
+			names = append(names, c.Name)
+		}
+	}
+	return names
 }
 
 // Forecast counts the rows exactly, unless there are many partitions.

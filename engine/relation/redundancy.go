@@ -231,7 +231,7 @@ func (r *redundancyRows) farthest(ctx context.Context, h *diagram.Handle, p *Par
 		_, far, err := r.inRegion(ctx, h, p, region)
 		return far, err
 	}
-	m, err := h.Measure(ctx, voronoi.Farthest, nil, nil)
+	m, err := h.Measure(ctx, voronoi.Farthest, 0, nil, nil)
 	if err != nil {
 		return nil, err
 	}

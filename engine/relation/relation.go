@@ -241,6 +241,9 @@ type Request struct {
 	// Most is how many first rows of CELLS are wanted, 0: all. Sites that come after
 	// them partition as ever.
 	Most int64
+	// Also are measures that other uses of the same cells in the query ask for: they are
+	// computed with what is wanted here, as a cell is built once for all of them.
+	Also voronoi.Measures
 }
 
 // Env is what a relation may use of the running program.

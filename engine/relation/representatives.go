@@ -200,7 +200,7 @@ func (c *representativeRows) weights(ctx context.Context, p *Part) ([]float64, e
 	if err != nil {
 		return nil, err
 	}
-	m, err := h.Measure(ctx, voronoi.Volume, nil, nil)
+	m, err := h.Measure(ctx, voronoi.Volume, 0, nil, nil)
 	if err != nil {
 		return nil, c.refused(err, p)
 	}

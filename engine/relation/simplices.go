@@ -81,15 +81,16 @@ func openSimplices(k *simplexKind) func(b *Bound, env *Env, input *column.Table,
 }
 
 // Cost is that of the tetrahedralisations, whichever rows are shown.
-func (r *simplexRows) Cost() (voronoi.Cost, error) {
+func (r *simplexRows) Cost() (voronoi.Cost, error) { return r.costOfTetrahedra() }
+
+// costOfTetrahedra is that of the tetrahedralisations of the parts, each diagram once.
+func (s *sites) costOfTetrahedra() (voronoi.Cost, error) {
 	var sum voronoi.Cost
-	for _, p := range r.parts {
-		if !r.wanted(p) {
-			continue
-		}
-		h, err := r.env.Diagrams.Get(context.Background(), p.Sites, r.options(p))
+	for _, g := range s.alike() {
+		p := g.parts[0]
+		h, err := s.env.Diagrams.Get(context.Background(), p.Sites, s.options(p))
 		if err != nil {
-			return sum, r.refused(err, p)
+			return sum, s.refused(err, p)
 		}
 		c := h.CostOfTetrahedra()
 		sum.Seconds += c.Seconds

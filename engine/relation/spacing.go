@@ -146,7 +146,7 @@ func (s *spacingRows) part(ctx context.Context, p *Part, region int32, within so
 	if err != nil {
 		return err
 	}
-	m, err := h.Measure(ctx, voronoi.Farthest|voronoi.NearestFace|voronoi.Volume, nil, s.progress())
+	m, err := h.Measure(ctx, voronoi.Farthest|voronoi.NearestFace|voronoi.Volume, 0, nil, s.progress())
 	if err != nil {
 		return s.refused(err, p)
 	}

@@ -74,3 +74,31 @@ rows  step
    3      sort: "DISTANCE(POINT(x, y, z), POINT(3, 4, 1))" DESC, first 3
   54        compute: id, DISTANCE(POINT(x, y, z), POINT(3, 4, 1))
   54          read campaign hall: id, x, y, z
+
+# A bound of the other side's rows: the farthest that one of them reaches bounds all pairs.
+ask
+EXPLAIN SELECT o.id, s.id FROM hall o JOIN hall s ON DISTANCE(POINT(s.x, s.y, s.z), POINT(o.x, o.y, o.z))
+  = (SELECT MIN(DISTANCE(POINT(t.x, t.y, t.z), POINT(s.x, s.y, s.z))) FROM hall t WHERE t.id <> s.id);
+----
+rows  step
+  ~1  columns: id, id
+  ~1    inner join, pairs by nearest-site search: POINT(x, y, z) within the farthest (query of hall) of POINT(x, y, z) on DISTANCE(POINT(x, y, z), POINT(x, y, z)) = (query of hall)
+  54      read campaign hall: id, x, y, z
+  54      read campaign hall: id, x, y, z
+          (query of hall), computed for each different row outside:
+   1        columns: "MIN(DISTANCE(POINT(t.x, t.y, t.z), POINT(s.x, s.y, s.z)))"
+   1          aggregate all rows: MIN(DISTANCE(POINT(t.x, t.y, t.z), POINT(s.x, s.y, s.z)))
+  ~1            nearest-site search: 1 of hall by DISTANCE(POINT(x, y, z), POINT(outer(x), outer(y), outer(z))), where id <> outer(id)
+  54              read campaign hall: id, x, y, z
+
+# A condition that can fail is asked of rows that are near alone.
+ask
+EXPLAIN SELECT id FROM hall WHERE 1 / x < 2 ORDER BY DISTANCE(POINT(x, y, z), POINT(3, 4, 1)) LIMIT 3;
+----
+rows  step
+  ~3  limit 3
+  ~3    columns: id
+  ~3      sort: "DISTANCE(POINT(x, y, z), POINT(3, 4, 1))", first 3
+  ~3        compute: id, DISTANCE(POINT(x, y, z), POINT(3, 4, 1))
+  ~3          nearest-site search: 3 of hall by DISTANCE(POINT(x, y, z), POINT(3, 4, 1)), where 1 / x < 2
+  54            read campaign hall: id, x, y, z

@@ -256,7 +256,7 @@ EXPLAIN SELECT MAX(radius) FROM GAPS OF readings FOR EACH t WITHIN air WHERE t <
      1  columns: "MAX(radius)"
      1    aggregate all rows: MAX(radius)
 ~10358      gaps of readings within air for each t: radius; only t < TIMESTAMP '2031-04-08 00:00:00'
-                geometry: gaps of about 319 sites in 96 partitions, 6 of them different, one by one, TIME
+                geometry: gaps of about 319 sites in 96 partitions, 6 of them different, all at once, TIME
 ~36010        columns: id, x, y, z, t
 ~36010          inner join by hash: id = logger
     54            compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z

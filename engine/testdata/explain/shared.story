@@ -5,7 +5,7 @@ EXPLAIN MEASURED SELECT a.id, a.volume, b.volume, b.area FROM CELLS OF placed WI
 estimated  rows  seconds     MB  step
       ~54    54   ?.????         columns: id, volume, volume, area
       ~54    54   ?.????  ?.???    inner join by hash: id = id
-       54    54   ?.????  ?.???      cells of placed within air: id, volume
+       54    54   ?.????  ?.???      cells of placed within air: id, volume; with them area, for other uses
                                          geometry: volume of 54 cells, one by one, TIME
        54    54   ?.????               compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
        54    54   ?.????                 read campaign hall: id, x, y, z
@@ -66,3 +66,38 @@ estimated   rows  seconds     MB  step
        54     54   ?.????                     read campaign hall: id, x, y, z
    ~36010  36010   ?.????                   keep where: temp IS NOT NULL
     36047  36047   ?.????                     read table log: t, logger, temp
+
+# Two uses that ask for different measures build each cell once: the first one measures
+# for both.
+ask
+EXPLAIN MEASURED SELECT a.id, a.volume, b.area FROM CELLS OF placed WITHIN air STRETCHED (1, 1, 3) AS a JOIN CELLS OF placed WITHIN air STRETCHED (1, 1, 3) AS b ON b.id = a.id;
+----
+estimated  rows  seconds     MB  step
+      ~54    54   ?.????         columns: id, volume, area
+      ~54    54   ?.????  ?.???    inner join by hash: id = id
+       54    54   ?.????  ?.???      cells of placed within air stretched (1, 1, 3): id, volume; with them area, for other uses
+                                         geometry: volume of 54 cells, one by one, TIME
+       54    54   ?.????               compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+       54    54   ?.????                 read campaign hall: id, x, y, z
+       54    54   ?.????  ?.???      cells of placed within air stretched (1, 1, 3): id, area; with them volume, for other uses
+                                         geometry: area of 54 cells, one by one, TIME; 54 computed
+       54    54   ?.????               compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+       54    54   ?.????                 read campaign hall: id, x, y, z
+
+ask
+EXPLAIN SELECT id, volume FROM CELLS OF placed WITHIN air STRETCHED (1, 1, 4) WHERE id IN (SELECT id FROM CELLS OF placed WITHIN air STRETCHED (1, 1, 4) WHERE farthest > 5);
+----
+rows  step
+ ~18  columns: id, volume
+ ~18    keep where: id IN (query of CELLS OF placed, hall)
+  54      cells of placed within air stretched (1, 1, 4): id, volume; with them farthest, for other uses
+              geometry: volume of 54 cells, one by one, TIME
+  54        compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+  54          read campaign hall: id, x, y, z
+          (query of CELLS OF placed, hall), computed once:
+ ~18        columns: id
+ ~18          keep where: farthest > 5
+  54            cells of placed within air stretched (1, 1, 4): id, farthest; with them volume, for other uses
+                    geometry: farthest of 54 cells, one by one, TIME
+  54              compute: id, CASE WHEN id = 'L17' THEN 13.2 ELSE x END AS x, y, z
+  54                read campaign hall: id, x, y, z
