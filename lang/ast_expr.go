@@ -59,6 +59,17 @@ type In struct {
 	Query   *Query
 }
 
+// Quantified is x > ALL (query), or x > ANY (query): the comparison holds for all rows of
+// the query, or for any. Op is a comparison.
+type Quantified struct {
+	At
+	Op      Op
+	OpSpan  Span
+	All     bool
+	Operand Expr
+	Query   *Query
+}
+
 // Like is x [NOT] LIKE pattern [ESCAPE mark]; Escape is nil when not given.
 type Like struct {
 	At
@@ -252,6 +263,7 @@ func (*Binary) expr()     {}
 func (*Unary) expr()      {}
 func (*Between) expr()    {}
 func (*In) expr()         {}
+func (*Quantified) expr() {}
 func (*Like) expr()       {}
 func (*Is) expr()         {}
 func (*AtTimeZone) expr() {}

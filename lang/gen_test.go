@@ -135,6 +135,9 @@ func (g *gen) atom() Expr {
 }
 
 func (g *gen) in() Expr {
+	if g.rarely() {
+		return &Quantified{Op: pick(g, Equals, NotEquals, Less, LessOrEqual, Greater, GreaterOrEqual), All: g.coin(), Operand: g.expr(), Query: g.query()}
+	}
 	e := &In{Not: g.coin(), Operand: g.expr()}
 	if g.rarely() {
 		e.Query = g.query()

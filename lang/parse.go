@@ -191,6 +191,10 @@ func noStatement(t *lexer.Token) *Error {
 		return lexicalFault(t)
 	}
 	e := &Error{Span: tokenSpan(t), Message: "no statement begins with " + shown(t), Hint: nearHint(t, StatementWords())}
+	switch strings.ToUpper(t.Value) {
+	case "INSERT", "UPDATE", "DELETE", "MERGE":
+		e.Hint = "tables are made of files and of queries and not changed: CREATE OR REPLACE TABLE t AS (SELECT … FROM t UNION ALL VALUES (…))"
+	}
 	if e.Hint == "" {
 		e.Hint = "HELP lists the statements"
 		if t.Value == "/" || t.Value == "." || t.Value == "\\" {

@@ -143,6 +143,9 @@ func (p *parser) weight() Expr {
 
 func (p *parser) window() *Window {
 	start := p.start()
+	if isName(p.kind()) {
+		p.failHint("( after OVER", "each OVER says its window itself: OVER (PARTITION BY … ORDER BY …)")
+	}
 	opened := p.open("( after OVER")
 	w := &Window{}
 	if p.takeBoth(kPartition, kBy) {

@@ -61,6 +61,10 @@ func (p *parser) comparison() Expr {
 		p.refuse("NOT NULL alone is no condition", "write IS NOT NULL")
 	case isComparison(t):
 		op := p.next()
+		if all, is := p.quantifier(); is {
+			left = p.quantified(start, op, all, left)
+			break
+		}
 		right := p.sum()
 		left = &Binary{At: p.since(start), Op: comparisonOps[t], OpSpan: tokenSpan(op), Left: left, Right: right}
 	case t == kBetween:
@@ -81,6 +85,31 @@ func (p *parser) comparison() Expr {
 		p.comparisonChain()
 	}
 	return left
+}
+
+// quantifier tells whether ALL, ANY or SOME and a query follow a comparison.
+func (p *parser) quantifier() (all, is bool) {
+	word := p.tok().Value
+	all = p.is(kAll)
+	if !all && (p.is(tokQuoted) || !strings.EqualFold(word, "ANY") && !strings.EqualFold(word, "SOME")) {
+		return false, false
+	}
+	if p.ahead(1) == tokLeft && p.opensQuery(p.i+1) {
+		return all, true
+	}
+	if all {
+		p.next()
+		p.failHint("a query in brackets", "> ALL (SELECT …) compares with every row of a query")
+	}
+	return false, false
+}
+
+func (p *parser) quantified(start int, op *lexer.Token, all bool, operand Expr) Expr {
+	p.next()
+	e := &Quantified{Op: comparisonOps[op.Type], OpSpan: tokenSpan(op), All: all, Operand: operand}
+	e.Query = p.bracketedQuery()
+	e.At = p.since(start)
+	return e
 }
 
 var comparisonOps = map[lexer.TokenType]Op{tokEquals: Equals, tokNotEquals: NotEquals, tokLess: Less,
@@ -394,6 +423,12 @@ func (p *parser) cast() Expr {
 		p.failHint("AS and a type", "CAST(value AS REAL)")
 	}
 	c.Type = p.word("a type, such as REAL,")
+	if c.Type.Is("DOUBLE") && strings.EqualFold(p.tok().Value, "PRECISION") {
+		p.next()
+	}
+	if p.is(tokLeft) {
+		p.refuse("types have no length and no number of digits here", "a TEXT is as long as it is, and SUBSTRING(x FROM 1 FOR 10) cuts it; ROUND(x, 2) rounds a number")
+	}
 	p.close(opened, "")
 	c.At = p.since(start)
 	return c

@@ -103,6 +103,9 @@ func (p *parser) query() *Query {
 func (p *parser) cte() *CTE {
 	start := p.start()
 	c := &CTE{Name: p.name("a name for a query of WITH")}
+	if c.Name.Is("RECURSIVE") && isName(p.kind()) {
+		p.refuse("there is no WITH RECURSIVE", "a query of WITH uses tables and the queries before it, not itself")
+	}
 	if p.is(tokLeft) {
 		c.Columns = p.names("the name of a column")
 	}
@@ -301,6 +304,9 @@ func (p *parser) optionalAlias() Name {
 // the caller's to say; opened is the bracket around the query, or nil.
 func (p *parser) queryEnd(what string, opened *lexer.Token) {
 	t := p.tok()
+	if t.Type != tokBad {
+		p.wordsOfOthers(t)
+	}
 	switch {
 	case p.alias >= 0 && p.alias == p.i-1, t.Type == tokBad:
 	case isComparison(t.Type):
@@ -329,6 +335,30 @@ func (p *parser) queryEnd(what string, opened *lexer.Token) {
 		}
 	}
 	panic(err)
+}
+
+// wordsOfOthers stops at words that ask elsewhere for what is written differently here.
+// Some have been taken for an alias already.
+func (p *parser) wordsOfOthers(t *lexer.Token) {
+	before := &lexer.Token{}
+	if p.i > 0 {
+		before = &p.toks[p.i-1]
+	}
+	is := func(t *lexer.Token, word string) bool { return t.Type != tokQuoted && strings.EqualFold(t.Value, word) }
+	switch {
+	case is(before, "FETCH") && (is(t, "FIRST") || is(t, "NEXT")):
+		p.refuse("there is no FETCH FIRST", "LIMIT 5 takes the first 5 rows")
+	case is(before, "TOP") && t.Type == tokNumber:
+		p.refuse("there is no TOP", "LIMIT "+t.Value+" stands at the end of the query")
+	case is(before, "DIV") && (t.Type == tokNumber || t.Type == tokLeft || isName(t.Type)):
+		p.refuse("there is no DIV", "FLOOR(a / b) is the whole quotient of positive numbers, and a % b the rest")
+	case is(t, "ILIKE"):
+		p.refuse("there is no ILIKE", "UPPER(x) LIKE 'AB%' does not tell capitals from small letters")
+	case is(t, "SIMILAR"), is(t, "REGEXP"), is(t, "RLIKE"):
+		p.refuse("there are no regular expressions", "LIKE knows % for any text and _ for any one character")
+	case is(before, "GROUPING") && is(t, "SETS"):
+		p.refuse("there are no GROUPING SETS", "UNION ALL puts the groups of several queries one under the other")
+	}
 }
 
 // looksLikeAlias tells whether a stop word stands where an alias was meant: behind an

@@ -39,7 +39,7 @@ func exprLevel(e Expr) int {
 			return levelNot
 		}
 		return levelSign
-	case *Between, *In, *Like, *Is:
+	case *Between, *In, *Quantified, *Like, *Is:
 		return levelComparison
 	case *AtTimeZone:
 		return levelZoned
@@ -58,7 +58,7 @@ func (w *printer) expr(e Expr, level int) {
 		w.binary(e)
 	case *Unary:
 		w.unary(e)
-	case *Between, *In, *Like, *Is:
+	case *Between, *In, *Quantified, *Like, *Is:
 		w.test(e)
 	case *AtTimeZone:
 		w.expr(e.Operand, levelZoned)
@@ -177,6 +177,15 @@ func (w *printer) test(e Expr) {
 		w.put("(")
 		w.exprs(e.List)
 		w.put(")")
+	case *Quantified:
+		w.expr(e.Operand, levelSum)
+		w.put(" " + string(e.Op) + " ")
+		if e.All {
+			w.put("ALL ")
+		} else {
+			w.put("ANY ")
+		}
+		w.bracketedQuery(e.Query)
 	case *Like:
 		w.expr(e.Operand, levelSum)
 		word(e.Not, " LIKE ")

@@ -250,6 +250,9 @@ func (w walker) expr(e Expr) {
 		w.exprs(e.Operand)
 		w.exprs(e.List...)
 		child(w, e.Query)
+	case *Quantified:
+		w.exprs(e.Operand)
+		child(w, e.Query)
 	case *Like:
 		w.exprs(e.Operand, e.Pattern, e.Escape)
 	case *Is:

@@ -58,6 +58,8 @@ func (x *exprs) bind(e lang.Expr) (expr.Expr, error) {
 		return x.scalar(e)
 	case *lang.Exists:
 		return x.exists(e)
+	case *lang.Quantified:
+		return x.quantified(e)
 	case *lang.AtTimeZone:
 		return x.atTimeZone(e)
 	}
@@ -327,19 +329,37 @@ func (x *exprs) caseOf(e *lang.Case) (expr.Expr, error) {
 // castTypes are the types that CAST names.
 var castTypes = []column.Type{column.Integer, column.Real, column.Text, column.Boolean, column.Timestamp, column.Interval, column.Point}
 
+// typeSynonyms are further names that the standard has for these types.
+var typeSynonyms = map[string]string{"int": "integer", "smallint": "integer", "bigint": "integer", "float": "real", "double": "real",
+	"varchar": "text"}
+
 func (x *exprs) cast(e *lang.Cast) (expr.Expr, error) {
 	v, err := x.bind(e.Operand)
 	if err != nil {
 		return nil, err
 	}
 	var names []string
+	called := lang.Fold(e.Type.Text)
+	if name, ok := typeSynonyms[called]; ok {
+		called = name
+	}
 	for _, t := range castTypes {
-		if e.Type.Is(t.String()) {
+		if called == lang.Fold(t.String()) {
 			return x.made(e, v)(expr.NewCast(v, t, x.at(e)))
 		}
 		names = append(names, t.String())
 	}
 	p := problem.New("no-type", x.at(&e.Type), "there is no type '%s'", e.Type.Text)
+	switch called {
+	case "numeric", "decimal", "dec", "number":
+		return nil, p.WithHint("numbers are INTEGER or REAL: ROUND(x, 2) has two decimals")
+	case "signed", "unsigned":
+		return nil, p.WithHint("write INTEGER, which has a sign and 64 bits")
+	case "date", "datetime", "time":
+		return nil, p.WithHint("write TIMESTAMP; FLOOR_TO(t, INTERVAL '1' DAY) is its day")
+	case "char", "character":
+		return nil, p.WithHint("write TEXT; SUBSTRING(x FROM 1 FOR 1) is its first character")
+	}
 	didYouMean(p, e.Type.Text, names)
 	if p.Hint == "" {
 		p.WithHint("the types are INTEGER, REAL, TEXT, BOOLEAN, TIMESTAMP, INTERVAL and POINT")

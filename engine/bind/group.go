@@ -68,6 +68,9 @@ func sameShape(a, b lang.Expr) bool {
 	case *lang.In:
 		_, ok := b.(*lang.In)
 		return ok
+	case *lang.Quantified:
+		b, ok := b.(*lang.Quantified)
+		return ok && a.Op == b.Op && a.All == b.All
 	case *lang.Between:
 		_, ok := b.(*lang.Between)
 		return ok

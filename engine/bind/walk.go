@@ -25,6 +25,8 @@ func walk(e lang.Expr, visit func(lang.Expr)) {
 	case *lang.In:
 		walk(e.Operand, visit)
 		walkAll(e.List, visit)
+	case *lang.Quantified:
+		walk(e.Operand, visit)
 	case *lang.Like:
 		walkAll([]lang.Expr{e.Operand, e.Pattern, e.Escape}, visit)
 	case *lang.Is:

@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"nearcell/catalog/column"
+	"nearcell/engine/expr"
 	"nearcell/engine/plan"
 	"nearcell/engine/relation"
 )
