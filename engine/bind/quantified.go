@@ -36,7 +36,10 @@ func (x *exprs) quantified(e *lang.Quantified) (expr.Expr, error) {
 	}
 	at := x.at(e)
 	value := expr.NewColumn(0, n.Schema()[0], x.at(e.Query))
-	holds, err := x.made(e, operand, value)(expr.NewCompare(op, o.operand(operand), value, at))
+	if _, err := x.made(e, operand, value)(expr.NewCompare(op, operand, value, at)); err != nil {
+		return nil, err // in the words of the query outside
+	}
+	holds, err := expr.NewCompare(op, o.operand(operand), value, at)
 	if err != nil {
 		return nil, err
 	}
