@@ -12,7 +12,8 @@
 // Gen writes three kinds of queries: of everything nested in everything (Random), with
 // windows (Windowed), and in the shapes of collections of test questions, with chains of
 // signs, NOT in front of everything and NULL wherever a value may stand (Corpus). Chains
-// of up to sixty-four tables behind commas must come out in their one row.
+// of up to sixty-four tables behind commas must come out in their one row. Questions are
+// not random: more than a thousand, written from the rules of the standard one by one.
 //
 // Each query runs with and without the rules of the planner, and with 1, 2 and 4
 // threads, whose results must have the same bytes.
@@ -36,6 +37,8 @@
 //     standard; there it does.
 //   - The functions of a row's place take no frame here, as in the standard, and
 //     RANK, LAG and their like need an order.
+//   - ALL, ANY and SOME of a query are unknown there: rows for which the comparison holds,
+//     and is unknown, are counted instead.
 //   - Types are fixed here; there values have types. Columns of one type only are
 //     compared, joined and united.
 //

@@ -3,6 +3,7 @@ package oracle
 import (
 	"context"
 	"database/sql"
+	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -114,6 +115,9 @@ func (b *Bench) Check(q *Query) (refused bool, err error) {
 	var first []string
 	for i, way := range Ways {
 		ours, err := b.ours(q.Ours(), way.Rules, way.Threads)
+		if !way.Rules && errors.Is(err, context.DeadlineExceeded) {
+			continue // tables behind commas: without rules that is every pair of all of them
+		}
 		if err != nil {
 			return false, fmt.Errorf("%s: %s", way.Name, problem.Render(err))
 		}
