@@ -266,3 +266,26 @@ func TestStillIsSafe(t *testing.T) {
 		}
 	}
 }
+
+// TestSeamsAreNoEdges: where a cell goes on from one hull to the next, the opened still draws
+// no line of a room.
+func TestSeamsAreNoEdges(t *testing.T) {
+	x := &Space{Value: "v", Text: Number, Bodies: []Body{{Rows: []BodyRow{{ID: "a", Volume: 8}}, Hulls: []Hull{boxHull(Spot{0, 0, 0}, Spot{2, 4, 1}), boxHull(Spot{2, 0, 0}, Spot{4, 4, 1})}}}}
+	x.Bodies[0].Hulls[0].Faces[1].Other = Seam
+	x.Bodies[0].Hulls[1].Faces[0].Other = Seam
+	g := gazeFrom(Spot{-1, -2, 1.5})
+	p := &stillPanel{x: x, s: newScene("", ""), g: g, v: view{scale: 1}, colours: x.Scale(), tol: x.size() * 1e-9}
+	walls := x.walls()
+	p.opened(walls, roomEdges(walls, x.middle(), x.size()), 1, 2, -2)
+	a, b := p.place(Spot{2, 4, 1}), p.place(Spot{2, 2, 1})
+	for _, shape := range p.s.Shapes {
+		if shape.Class != "wall" && shape.Class != "border" {
+			continue
+		}
+		for _, l := range shape.Paths {
+			if cross := (l[1].X-l[0].X)*(b.Y-a.Y) - (l[1].Y-l[0].Y)*(b.X-a.X); math.Abs(cross) < 1e-6 && math.Hypot((l[0].X+l[1].X-a.X-b.X)/2, (l[0].Y+l[1].Y-a.Y-b.Y)/2) < 0.2 {
+				t.Errorf("a line of the class %s along the seam: %v", shape.Class, l)
+			}
+		}
+	}
+}

@@ -127,7 +127,8 @@ func (p *stillPanel) opened(walls []facet, edges [][2]Spot, axis int, at, side f
 		case lo < -p.tol:
 			_, behind := walls[i].slice(n, d, p.tol)
 			for k, e := range behind.edges {
-				if e == noEdge {
+				a, b := behind.at[k], behind.at[(k+1)%len(behind.at)]
+				if e == noEdge && math.Abs(times(n, a)-d) <= 2*p.tol && math.Abs(times(n, b)-d) <= 2*p.tol {
 					behind.edges[k] = roomEdge // the wall ends at the cut
 				}
 			}
