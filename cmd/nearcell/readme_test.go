@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"context"
 	"os"
+	"path/filepath"
 	"strings"
 	"testing"
 
@@ -69,6 +70,7 @@ func TestReadme(t *testing.T) {
 		written += "\n" + outFence + strings.TrimPrefix(out.String(), "\n") + endFence
 		rest = body[length+len(endFence):]
 	}
+	samePicture(t, filepath.Join(folder, "floor.svg"), filepath.Join("testdata", "floor.svg"))
 	if blocks < 8 {
 		t.Errorf("only %d blocks of statements found", blocks)
 	}
@@ -90,3 +92,20 @@ CREATE VIEW placed AS (SELECT id, CASE WHEN id = 'L17' THEN 13.20 ELSE x END AS 
 CREATE VIEW readings AS (SELECT p.id, p.x, p.y, p.z, p.level, p.place, l.t, l.temp
   FROM placed p JOIN log l ON l.logger = p.id WHERE l.temp IS NOT NULL);
 `
+
+// samePicture holds a picture that the README draws against the one that it shows.
+func samePicture(t *testing.T, drawn, shown string) {
+	t.Helper()
+	got, err := os.ReadFile(drawn)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if *rewrite {
+		if err := os.WriteFile(shown, got, 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if want, err := os.ReadFile(shown); err != nil || !bytes.Equal(got, want) {
+		t.Errorf("the README shows another picture than it draws (%v)", err)
+	}
+}

@@ -72,22 +72,36 @@ func (x *Section) Characters(columns int, plain bool) string {
 	return b.String()
 }
 
-// classes are the bounds of the shades: round numbers, one more than classes.
+// classes are the bounds of the shades: round numbers, one more than classes, as fine as
+// the shades allow. Values beyond limits have signs of their own and need no shade.
 func (x *Section) classes(most int) []float64 {
-	s := NewScale(x.values(), nil)
-	by := step(s.Hi-s.Lo, most-1)
-	lo := math.Floor(s.Lo/by + 1e-9)
-	n := int(math.Ceil(s.Hi/by-1e-9) - lo)
-	if n > most {
-		by = step(s.Hi-s.Lo, max(most-2, 1))
+	var list []float64
+	for _, v := range x.values() {
+		if !over(v, x.Limits) && !under(v, x.Limits) {
+			list = append(list, v)
+		}
+	}
+	s := NewScale(list, nil)
+	if len(list) == 0 && len(x.Limits) > 0 { // all are beyond
+		s.Lo, s.Hi = x.Limits[0], x.Limits[len(x.Limits)-1]
+	}
+	if s.Lo == s.Hi {
+		s.Lo, s.Hi = widened(s.Lo, s.Hi, 0)
+	}
+	by, lo, n := 0.0, 0.0, most+1
+	for fine := 4 * most; n > most; fine-- {
+		by = step(s.Hi-s.Lo, max(fine, 1))
 		lo = math.Floor(s.Lo/by + 1e-9)
 		n = int(math.Ceil(s.Hi/by-1e-9) - lo)
+		if fine < 1 { // a range across a round number
+			n = min(n, most)
+		}
 	}
-	var list []float64
+	bounds := make([]float64, 0, n+1)
 	for k := range n + 1 {
-		list = append(list, (lo+float64(k))*by)
+		bounds = append(bounds, (lo+float64(k))*by)
 	}
-	return list
+	return bounds
 }
 
 // shadeOf is the class of a value; those beyond have the last one.

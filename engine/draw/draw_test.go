@@ -333,3 +333,28 @@ func TestCourseAxes(t *testing.T) {
 		}
 	}
 }
+
+// TestShadeClasses: the shades of the terminal are bounded by round numbers that hold all
+// values within the limits, and are as many as there are characters for, or half as many.
+func TestShadeClasses(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		lo := rapid.Float64Range(-100, 100).Draw(t, "lo")
+		hi := lo + rapid.Float64Range(0.01, 1000).Draw(t, "length")
+		most := rapid.IntRange(4, 9).Draw(t, "most")
+		x := &Section{Panels: []Panel{{Cells: []Cell{{Value: lo}, {Value: hi}, {Value: hi + 1e6}}}}, Limits: []float64{hi}}
+		list := x.classes(most)
+		n := len(list) - 1
+		if n > most || n < 2 || list[0] > lo+1e-6 || list[n] < hi-1e-6 {
+			t.Fatalf("%d classes %v of %v to %v, up to %d wanted", n, list, lo, hi, most)
+		}
+		if by := list[1] - list[0]; by > (hi-lo)*1.01 {
+			t.Fatalf("steps of %v for %v to %v", by, lo, hi)
+		}
+	})
+	for _, limits := range [][]float64{{2, 8}, {8}} {
+		x := &Section{Panels: []Panel{{Cells: []Cell{{Value: 20}}}}, Limits: limits}
+		if n := len(x.classes(5)); n < 2 || n > 6 {
+			t.Errorf("%d bounds where all are over the limit", n)
+		}
+	}
+}

@@ -166,10 +166,11 @@ func (v view) ring(ring []Point) []Point {
 	return out
 }
 
-// columns of panels on the page, by their number.
-func columnsOf(panels int) int {
+// columns of panels on the page, by their number; a few maps much wider than high stand
+// one below the other.
+func columnsOf(panels int, aspect float64) int {
 	switch {
-	case panels == 1:
+	case panels == 1 || panels <= 4 && aspect > 2.5:
 		return 1
 	case panels <= 4:
 		return 2
@@ -192,7 +193,7 @@ func (x *Section) Scene() *Scene {
 	y := s.heading(x.Title, x.Where+", shaded by "+named(x.Value, x.Unit)+x.method())
 	y += 4
 	lo, hi := x.bounds()
-	columns := columnsOf(len(x.Panels))
+	columns := columnsOf(len(x.Panels), (hi.X-lo.X)/(hi.Y-lo.Y))
 	room := (s.Width-2*margin)/float64(columns) - axisLeft - 8
 	size := math.Min(room/(hi.X-lo.X), tallest/float64(columns)/(hi.Y-lo.Y))
 	high := (hi.Y - lo.Y) * size
