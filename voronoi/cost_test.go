@@ -40,13 +40,22 @@ func TestCost(t *testing.T) {
 	}
 }
 
+// Progress never goes back, tells of the sums over the triangles, too, and ends with all.
 func TestProgress(t *testing.T) {
-	last, total := 0, 0
-	d := diagram(t, random(1000, 43), Options{Solid: unitBox, Threads: 3, Progress: func(done, of int) {
-		last, total = max(last, done), of
+	const n = 6000
+	last, calls, early := 0, 0, 0
+	d := diagram(t, random(n, 43), Options{Solid: unitBox, Threads: 3, Progress: func(done, of int) {
+		if done < last || of != n {
+			t.Errorf("%d of %d after %d", done, of, last)
+		}
+		last = done
+		calls++
+		if done > 0 && done <= n-n/restOfSums {
+			early++
+		}
 	}})
 	measure(t, d, Volume)
-	if last != 1000 || total != 1000 {
-		t.Errorf("%d of %d done at the end", last, total)
+	if last != n || early < 3 {
+		t.Errorf("%d of %d done at the end, %d calls, %d of them before the cells", last, n, calls, early)
 	}
 }

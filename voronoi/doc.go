@@ -138,10 +138,6 @@
 // The area that is asked for with the tetrahedralisation at hand includes faces that are
 // too small to count as contacts, and its last bits are not those of one by one.
 //
-// Planes towards two sites that almost coincide almost coincide: how a contact is
-// shared out between such a pair is rounded to about 1e-16 of the cell's size times
-// the size divided by the pair's distance. Volumes are not affected.
-//
 // The middle of a contact that a non-convex solid cuts is right to about 1e-8 of the
 // cell's size; where the face lies partly in walls on both of its sides, it is the
 // middle of what the solid leaves on the smaller side.

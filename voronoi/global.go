@@ -304,7 +304,7 @@ func (d *Diagram) Kept() int64 {
 func (d *Diagram) CostOfTetrahedra() Cost {
 	n := d.tree.Len()
 	return Cost{
-		Seconds: (secondsPerBuild + float64(n)*secondsPerVertex) / float64(max(1, d.threads)),
+		Seconds: (secondsPerBuild + float64(n)*secondsPerDual) / float64(max(1, d.threads)),
 		Bytes:   d.globalBytes(),
 		Cells:   n,
 	}

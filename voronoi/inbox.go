@@ -25,7 +25,7 @@ func CellsInBox(ctx context.Context, t *delaunay.T, lo, hi Vec, want Measures, t
 	if want&^tallied != 0 {
 		g.list()
 	}
-	y, err := g.tally(ctx, want, threads)
+	y, err := g.tally(ctx, want, threads, nil)
 	if err != nil {
 		return nil, err
 	}

@@ -30,15 +30,18 @@ func (d *Diagram) Measure(ctx context.Context, want Measures, sites []int32) (*C
 // fill measures the cells of a request, with g or one by one.
 func (d *Diagram) fill(ctx context.Context, g *dual, r *request, want Measures, out *Cells) (err error) {
 	var y *tallies
+	n := len(r.cells)
+	tell := d.telling(n, 0, n)
 	if g != nil && want&tallied != 0 && !d.stretched {
-		if y, err = g.tally(ctx, want, d.tallyThreads()); err != nil {
+		if y, err = g.tally(ctx, want, d.tallyThreads(), d.telling(n, 0, n-n/restOfSums)); err != nil {
 			return err
 		}
+		tell = d.telling(n, n-n/restOfSums, n)
 	}
 	if g != nil && (want&^tallied != 0 || d.stretched) {
 		g.list()
 	}
-	return d.forEach(ctx, len(r.cells), 0, len(r.cells), func(b *builder, k int) error {
+	return d.forEachTold(ctx, n, tell, func(b *builder, k int) error {
 		b.use(g, y)
 		rows := r.rows[r.start[k]:r.start[k+1]]
 		if err := b.measure(r.cells[k], want, out, rows[0]); err != nil {
@@ -49,6 +52,20 @@ func (d *Diagram) fill(ctx context.Context, g *dual, r *request, want Measures, 
 		}
 		return nil
 	})
+}
+
+// restOfSums: when the sums over the triangles are there, an eighth of the work is left.
+const restOfSums = 8
+
+// telling returns what tells of a part of the work on n cells: as done of its steps are
+// done, cells from to upto-1 are said to be. It is nil where nobody wants to know.
+func (d *Diagram) telling(n, from, upto int) func(done, steps int) {
+	if d.progress == nil {
+		return nil
+	}
+	return func(done, steps int) {
+		d.progress(from+int(int64(upto-from)*int64(done)/int64(max(1, steps))), n)
+	}
 }
 
 // blank is the answer to a request before anything of it is measured.

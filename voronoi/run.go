@@ -16,6 +16,14 @@ const chunkSize = 64
 // position. The error of the lowest chunk that failed is returned, so that it does
 // not depend on timing. base and total are for the progress only.
 func (d *Diagram) forEach(ctx context.Context, n, base, total int, do func(b *builder, i int) error) error {
+	if d.progress == nil {
+		return d.forEachTold(ctx, n, nil, do)
+	}
+	return d.forEachTold(ctx, n, func(done, _ int) { d.progress(base+done, total) }, do)
+}
+
+// forEachTold is forEach that tells of the positions done, from one goroutine at a time.
+func (d *Diagram) forEachTold(ctx context.Context, n int, tell func(done, of int), do func(b *builder, i int) error) error {
 	chunks := (n + chunkSize - 1) / chunkSize
 	workers := min(d.threads, chunks)
 	var next, done atomic.Int64
@@ -42,9 +50,9 @@ func (d *Diagram) forEach(ctx context.Context, n, base, total int, do func(b *bu
 				next.Store(int64(chunks))
 				return
 			}
-			if d.progress != nil {
+			if tell != nil {
 				guard.Lock()
-				d.progress(base+min(n, int(done.Add(1))*chunkSize), total)
+				tell(min(n, int(done.Add(1))*chunkSize), n)
 				guard.Unlock()
 			}
 		}

@@ -3,6 +3,7 @@ package voronoi
 import (
 	"context"
 	"math"
+	"sync"
 
 	"nearcell/voronoi/delaunay"
 )
@@ -106,13 +107,16 @@ func (t *tally) momentSplitter() float64 { return splitter(4*t.size + 5) }
 // tallies of its own.
 const mostTallies = 4
 
-// tally adds up what is wanted of all cells.
-func (g *dual) tally(ctx context.Context, want Measures, threads int) (*tallies, error) {
+// tally adds up what is wanted of all cells. tell, if not nil, is told how many of the
+// tetrahedra are done, from one goroutine at a time.
+func (g *dual) tally(ctx context.Context, want Measures, threads int, tell func(done, of int)) (*tallies, error) {
 	var own [mostTallies]*tallies
 	n := max(1, min(threads, mostTallies, g.t.NumTets()>>13))
 	for i := range n {
 		own[i] = g.newTallies(want, threads)
 	}
+	var guard sync.Mutex // of done and calls of tell
+	done := 0
 	idle := make(chan *tallies, n)
 	for _, one := range own[:n] {
 		idle <- one
@@ -122,6 +126,12 @@ func (g *dual) tally(ctx context.Context, want Measures, threads int) (*tallies,
 			mine := <-idle
 			mine.block(uint32(lo), uint32(hi))
 			idle <- mine
+			if tell != nil {
+				guard.Lock()
+				done += hi - lo
+				tell(done, g.t.NumTets())
+				guard.Unlock()
+			}
 		}
 	})
 	if err := ctx.Err(); err != nil {
@@ -248,12 +258,26 @@ func (s *tallies) whole(v *[4]int32, face int, c, d *centre) {
 	s.edge(i, j, k, Vec{X: sign * e.X, Y: sign * e.Y, Z: sign * e.Z}, add(from, to))
 }
 
+// nearShare2 is the square of the share of another edge below which the normal of a
+// triangle is made with its shortest edge.
+const nearShare2 = 1. / 64
+
+// normal is u×v, where w is v-u and vv and ww are squared lengths. Where w is short it is
+// u×w: then v-u, what the product of u and v lives by, would be rounding, but w, taken
+// between two sites that almost coincide, is exact.
+func normal(u, v, w Vec, vv, ww float64) Vec {
+	if ww < nearShare2*vv {
+		return cross(u, w)
+	}
+	return cross(u, v)
+}
+
 // edge adds a part of the Voronoi edge dual to the triangle of i, j and k. e is that
 // part, along the normal of the triangle, sum twice its middle seen from i.
 func (s *tallies) edge(i, j, k *tally, e, sum Vec) {
 	u, v, w := sub(j.at, i.at), sub(k.at, i.at), sub(k.at, j.at)
-	n := cross(u, v)
 	uu, vv, ww := dot(u, u), dot(v, v), dot(w, w)
+	n := normal(u, v, w, vv, ww)
 	half := 0.5 / dot(n, n)
 	lambda := dot(n, e)
 	// Twelve times the volumes behind the faces i-j, i-k and j-k.

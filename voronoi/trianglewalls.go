@@ -54,7 +54,8 @@ func (s *tallies) clipped(v *[4]int32, face int, c, d *centre) {
 func (s *tallies) ray(v *[4]int32, face int, c *centre) {
 	p, q, r, sign := facing(v, face)
 	at := s.cells[p].at
-	n := cross(sub(s.cells[q].at, at), sub(s.cells[r].at, at))
+	far, side := sub(s.cells[r].at, at), sub(s.cells[r].at, s.cells[q].at)
+	n := normal(sub(s.cells[q].at, at), far, side, dot(far, far), dot(side, side))
 	out := outcode(Vec{X: sign * n.X, Y: sign * n.Y, Z: sign * n.Z}, Vec{}, Vec{})
 	if c.out&out != 0 {
 		return
@@ -73,7 +74,7 @@ func (s *tallies) ray(v *[4]int32, face int, c *centre) {
 func (s *tallies) cut(p, q, r int32, x, y Vec, outX, outY uint8, endless bool) {
 	i, j, k := &s.cells[p], &s.cells[q], &s.cells[r]
 	u, v, w := sub(j.at, i.at), sub(k.at, i.at), sub(k.at, j.at)
-	n := cross(u, v)
+	n := normal(u, v, w, dot(v, v), dot(w, w))
 	most := 2 * dot(n, sub(y, x))
 	if endless {
 		most = math.Inf(1)
