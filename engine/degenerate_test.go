@@ -144,3 +144,15 @@ func TestDegenerate(t *testing.T) {
 		}
 	}
 }
+
+// Two rooms known by their surfaces alone: what they share is counted, and what each has
+// alone is told. A box of 1 is taken out of the one, half of the room out of the other.
+func TestOverlayOfMeshes(t *testing.T) {
+	a := newAsker(t, 2)
+	a.text(`CREATE SOLID drawn AS BOX (0,0,0) TO (4,4,4) MINUS BOX (1.5,1.5,1.5) TO (2.5,2.5,2.5); CREATE SOLID half AS drawn MINUS BOX (0,0,2) TO (4,4,4);
+		CREATE SOLID pierced AS drawn MINUS BOX (0,0,0) TO (1,1,1);
+		CREATE CAMPAIGN one AS (SELECT * FROM (VALUES ('A', 1.2, 1.0, 1.5, 4.0), ('B', 3.0, 3.0, 3.0, 5.0)) AS v (id, x, y, z, temp)) WITHIN pierced;
+		CREATE CAMPAIGN two AS (SELECT * FROM (VALUES ('A', 3.0, 1.0, 1.0, 4.0), ('B', 1.0, 3.0, 1.0, 5.0)) AS v (id, x, y, z, temp)) WITHIN half;`)
+	near(t, "shared", a.number("SELECT SUM(volume) FROM OVERLAY OF one AGAINST two;"), 32-0.5-1, 1e-9)
+	a.says("pierced and half share 30.5 m³: 31.5 m³ of pierced and 1 m³ of half belong to one campaign alone")
+}

@@ -25,7 +25,7 @@ var arrows = map[string][]string{
 	"voronoi/solid/mesh":       {"voronoi/predicate", "voronoi/polyhedron", "voronoi/solid", "voronoi/solid/planar"},
 	"voronoi/delaunay":         {"voronoi/predicate"},
 	"voronoi/coverage":         {"voronoi", "voronoi/index", "voronoi/polyhedron", "voronoi/solid"},
-	"voronoi/overlay":          {"voronoi", "voronoi/polyhedron", "voronoi/solid"},
+	"voronoi/overlay":          {"voronoi", "voronoi/polyhedron", "voronoi/solid", "voronoi/solid/mesh"},
 	"voronoi/field":            {"voronoi", "voronoi/delaunay", "voronoi/polyhedron", "voronoi/predicate", "voronoi/solid", "voronoi/solid/mesh"},
 	"voronoi/section":          {"voronoi", "voronoi/polyhedron", "voronoi/solid"},
 	"voronoi":                  {"voronoi/predicate", "voronoi/polyhedron", "voronoi/index", "voronoi/solid", "voronoi/delaunay"},

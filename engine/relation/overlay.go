@@ -12,7 +12,6 @@ import (
 	"nearcell/engine/problem"
 	"nearcell/voronoi"
 	"nearcell/voronoi/overlay"
-	"nearcell/voronoi/solid"
 )
 
 // overlays is OVERLAY OF c AGAINST c2: one row for each pair of cells that share space.
@@ -306,7 +305,7 @@ func (x *overlayRows) laid(err error, p, q *Part) error {
 			}
 			return b.Clauses.SolidName
 		}
-		return problem.NotThereYet(x.b.Place, "OVERLAY between two different meshes, "+name(x.b, p)+" and "+name(x.other.b, q)+",").
+		return problem.New("failed", x.b.Place, "what %s and %s share cannot be told: their surfaces do not fit together", name(x.b, p), name(x.other.b, q)).
 			WithHint("WITHIN one of them, which then holds for both campaigns")
 	}
 	return x.refused(err, p)
@@ -371,8 +370,8 @@ func (x *overlayRows) tellRemainders() {
 	for _, p := range x.b.spaces() {
 		of.Add(p.Solid.Volume())
 		for _, q := range x.other.b.spaces() {
-			v, ok, err := solid.CommonVolume(p.Solid, q.Solid)
-			known = known && ok && err == nil
+			v, ok := overlay.Common(p.Solid, q.Solid)
+			known = known && ok
 			common.Add(v)
 		}
 	}

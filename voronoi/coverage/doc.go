@@ -92,6 +92,14 @@
 //  4. A site in the place of a gap makes it go and no other grow.
 //  5. The first radius is the largest voronoi.Farthest of all cells.
 //
+// # Parts and stretched distances
+//
+// Options.Within has gaps, places, spacing and redundancy of a part of the solid: all sites
+// divide the space, and what is told is of the part. With stretched distances gaps and
+// places are the peaks of these and cells are theirs; all lengths that are told are true.
+// Ellipsoids, and clearances without a list of places, need plain distances
+// ([ErrStretched]).
+//
 // # Limitations
 //
 // All cells are looked at, even if only the largest gaps are wanted, and nothing is kept.

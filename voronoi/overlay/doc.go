@@ -40,7 +40,7 @@
 // # Limitations
 //
 // Both diagrams need a solid: without one, rims reach to infinity, and so do their pieces.
-// Two different solids of which neither is convex nor knows convex parts of itself
-// (solid.Divided) cannot be laid over one another. All pieces are held in memory, 24 bytes
+// What two different solids share of which neither is convex nor knows convex parts of itself
+// (solid.Divided) is arranged anew for each call. All pieces are held in memory, 24 bytes
 // each.
 package overlay

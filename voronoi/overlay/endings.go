@@ -1,9 +1,12 @@
 package overlay
 
 import (
+	"errors"
+
 	"nearcell/voronoi"
 	"nearcell/voronoi/polyhedron"
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
 
 // endings says how the solids of the two diagrams end the pieces. Cells of a come cut by
@@ -14,6 +17,7 @@ type endings struct {
 	lo, hi  Vec           //
 	divided solid.Divided // the pieces are cut by its convex parts; nil: none has to
 	rough   solid.Solid   // says what of a polyhedron lies inside; nil: all of it
+	nothing bool          // the solids share none
 }
 
 // endingsOf finds out what has to be done about two solids.
@@ -46,7 +50,35 @@ func endingsOf(a, b solid.Solid) (endings, error) {
 		e.divided, e.rough = d, a
 		return e, nil
 	}
-	return e, ErrUndivided
+	// Two solids that are known by their surfaces: what they share is arranged exactly.
+	r, err := mesh.NewRegion(a, b)
+	var fault *mesh.Error
+	switch {
+	case err == nil:
+		e.rough = r
+	case errors.As(err, &fault) && fault.Fault == mesh.NothingLeft:
+		e.nothing = true
+	default:
+		return e, errors.Join(ErrUndivided, err)
+	}
+	return e, nil
+}
+
+// Common is the volume that two solids share; known is false where their surfaces cannot be
+// arranged.
+func Common(a, b solid.Solid) (volume float64, known bool) {
+	if v, known, err := solid.CommonVolume(a, b); known && err == nil {
+		return v, true
+	}
+	r, err := mesh.NewRegion(a, b)
+	var fault *mesh.Error
+	if errors.As(err, &fault) && fault.Fault == mesh.NothingLeft {
+		return 0, true
+	}
+	if err != nil {
+		return 0, false
+	}
+	return r.Volume(), true
 }
 
 // enter cuts a cell of a by what of b's solid is convex: flooding it needs a convex space.

@@ -19,7 +19,8 @@ type Vec = voronoi.Vec
 // ErrOpen is returned for a diagram without a solid.
 var ErrOpen = errors.New("overlay: a diagram without a solid has pieces without an end")
 
-// ErrUndivided is returned for two different solids that cannot be cut by one another.
+// ErrUndivided is returned for two different solids that cannot be cut by one another: they
+// are not convex, have no convex parts, and their surfaces cannot be arranged.
 var ErrUndivided = errors.New("overlay: two different solids, neither of them convex or made of convex parts")
 
 // Piece is space that a cell of the first diagram and one of the second share.
@@ -133,7 +134,7 @@ func (w *work) flood(site int32, at Vec, c *polyhedron.Cell) ([]Piece, error) {
 	w.cell.CopyFrom(c)
 	whole := max(0, w.cell.Volume())
 	x.ends.enter(&w.cell, at)
-	if w.cell.Empty() {
+	if w.cell.Empty() || x.ends.nothing {
 		return nil, nil
 	}
 	w.list = w.list[:0]

@@ -12,6 +12,7 @@ import (
 	"nearcell/voronoi"
 	"nearcell/voronoi/overlay"
 	"nearcell/voronoi/solid"
+	"nearcell/voronoi/solid/mesh"
 )
 
 type vec = voronoi.Vec
@@ -305,6 +306,54 @@ func TestRefused(t *testing.T) {
 	cancel()
 	if _, err := overlay.Pieces(ctx, closed, closed, nil, overlay.Options{}); !errors.Is(err, context.Canceled) {
 		t.Errorf("%v", err)
+	}
+}
+
+// Two rooms that are known by their surfaces alone share what the same rooms share that are
+// known by convex parts; and rooms apart share nothing.
+func TestTwoMeshes(t *testing.T) {
+	prism := func(h float64, at ...solid.Vec2) solid.Solid {
+		p, err := solid.NewPrism(at, nil, 0, h)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return p
+	}
+	bare := func(s solid.Solid) solid.Solid {
+		r, err := mesh.NewRegion(nil, s)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return r
+	}
+	p := prism(3, solid.Vec2{}, solid.Vec2{X: 10}, solid.Vec2{X: 10, Y: 4}, solid.Vec2{X: 4, Y: 4}, solid.Vec2{X: 4, Y: 8}, solid.Vec2{Y: 8})
+	q := prism(2, solid.Vec2{X: 2, Y: 1}, solid.Vec2{X: 12, Y: 1}, solid.Vec2{X: 12, Y: 7}, solid.Vec2{X: 6, Y: 7}, solid.Vec2{X: 6, Y: 3}, solid.Vec2{X: 2, Y: 3})
+	far := prism(2, solid.Vec2{X: 20}, solid.Vec2{X: 22}, solid.Vec2{X: 22, Y: 2}, solid.Vec2{X: 21, Y: 1}, solid.Vec2{X: 20, Y: 2})
+	hi := vec{X: 12, Y: 8, Z: 3}
+	from, to := random(1, 30, vec{}, hi), random(2, 30, vec{}, hi)
+	o := func(s solid.Solid) voronoi.Options { return voronoi.Options{Solid: s} }
+	want := pieces(t, diagram(t, from, o(p)), diagram(t, to, o(q)), overlay.Options{})
+	got := pieces(t, diagram(t, from, o(bare(p))), diagram(t, to, o(bare(q))), overlay.Options{})
+	total := 0.0
+	for s := range want {
+		if len(want[s]) != len(got[s]) {
+			t.Fatalf("site %d: %v of meshes, %v of prisms", s, got[s], want[s])
+		}
+		for i, x := range want[s] {
+			if y := got[s][i]; x.B != y.B || math.Abs(x.Volume-y.Volume) > 1e-9 {
+				t.Errorf("site %d: %v of meshes, %v of prisms", s, y, x)
+			}
+			total += x.Volume
+		}
+	}
+	// They share 8 x 2 less 0 and the strip of 1 that lies above it, from x = 6 to 10: 16 + 4, two high.
+	if math.Abs(total-2*(8*2+4*1)) > 1e-9 {
+		t.Errorf("together they share %v", total)
+	}
+	for _, list := range pieces(t, diagram(t, from, o(bare(p))), diagram(t, []vec{{X: 20.5, Y: 0.5, Z: 1}}, o(bare(far))), overlay.Options{}) {
+		if len(list) > 0 {
+			t.Errorf("rooms apart share %v", list)
+		}
 	}
 }
 
