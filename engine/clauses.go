@@ -24,8 +24,10 @@ type clauses struct {
 	id          *lang.IDReading
 	position    *lang.PositionReading
 	units       *lang.UnitsReading
-	within      string   // canonical text of the solid
-	zones       []string // canonical texts of the solids of WITHIN (a, b)
+	name        lang.Name        // of what is made
+	within      string           // canonical text of the solid
+	solids      []catalog.Object // solids from files, which are kept under names of their own
+	zones       []string         // canonical texts of the solids of WITHIN (a, b)
 	spaces      []relation.Region
 	withinAt    *lang.WithinClause
 	lengthUnit  string
@@ -46,7 +48,7 @@ type clauses struct {
 
 // readClauses looks at every clause; what belongs to a later day is refused by name.
 func (s *Session) readClauses(st *statement, t *lang.CreateData) (*clauses, error) {
-	c := &clauses{s: s, st: st, kind: kindOf(t.Kind)}
+	c := &clauses{s: s, st: st, kind: kindOf(t.Kind), name: t.Name}
 	for _, r := range t.Readings {
 		if err := c.read(r); err != nil {
 			return nil, err
@@ -184,8 +186,10 @@ func (c *clauses) readWithin(r *lang.WithinClause) error {
 		if err != nil {
 			return err
 		}
-		if err := needsName(c.st, tree, kept); err != nil {
-			return err
+		if kept.Table != nil {
+			if text, err = c.named(tree, kept, text); err != nil {
+				return err
+			}
 		}
 		texts = append(texts, text)
 		c.spaces = append(c.spaces, relation.Region{Name: text, Solid: kept.Body})

@@ -57,6 +57,9 @@ func (s *Session) createData(ctx context.Context, st *statement, t *lang.CreateD
 		return err
 	}
 	object.Notes = append(object.Notes, clauses.placedNotes...)
+	if err := clauses.keepSolids(); err != nil {
+		return err
+	}
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
@@ -166,23 +169,25 @@ func (s *Session) createSolid(st *statement, t *lang.CreateSolid) error {
 	if err := s.mayCreate(st, t.Name, catalog.Solid, t.Replace); err != nil {
 		return err
 	}
-	tree, system := t.Solid, ""
+	var kept *bind.KeptSolid
+	text, system := "", ""
 	if !t.Frame.IsZero() {
 		f, k, err := s.frameNamed(st, t.Frame)
 		if err != nil {
 			return err
 		}
-		if tree, err = bind.InFrame(s.bindEnv(st), t.Solid, &k.Similarity, f.Name); err != nil {
+		if kept, err = bind.KeepInFrame(s.bindEnv(st), t.Solid, &k.Similarity, f.Name); err != nil {
 			return err
 		}
+		text = lang.Print(kept.Text)
 		system = catalog.FrameSystem(f.Name, f.Text)
 		st.notes.Add(note.Note, note.Import, "%s is brought from the frame %s to the site's coordinates: %s", t.Name.Text, f.Name, s.frameText(k))
 	}
-	kept, text, err := s.solid(st, tree)
-	if err != nil {
-		return err
-	}
-	if system == "" {
+	if kept == nil {
+		var err error
+		if kept, text, err = s.solid(st, t.Solid); err != nil {
+			return err
+		}
 		own, err := bind.SolidSystem(s.bindEnv(st), t.Solid)
 		if err != nil {
 			return err
@@ -196,6 +201,7 @@ func (s *Session) createSolid(st *statement, t *lang.CreateSolid) error {
 	if err := s.catalog.Put(object, t.Replace); err != nil {
 		return catalogProblem(err, st.at(t.Name))
 	}
+	s.tellFilms(st, t.Name.Text, kept.Body)
 	if !s.checkOnly {
 		s.say("%s: a solid of %s m³", t.Name.Text, s.number(kept.Body.Volume()))
 	}

@@ -216,6 +216,11 @@ func (s *Session) describeSolid(st *statement, t *lang.Describe, o *catalog.Obje
 		realField("z_from", m), realField("z_to", m))
 	r.add(column.String(o.Name), column.Float(body.Volume()), column.Float(body.Area()), column.Int(int64(body.Pieces())), column.Int(int64(body.Facts().Voids)),
 		column.Float(lo.X), column.Float(hi.X), column.Float(lo.Y), column.Float(hi.Y), column.Float(lo.Z), column.Float(hi.Z))
-	st.notes.Add(note.Note, note.Output, "the solid is %s; its lengths are taken as metres", o.Text)
+	came := ""
+	if o.System != "" {
+		came = ", " + strings.TrimSuffix(catalog.SystemText(o.System), ",")
+	}
+	st.notes.Add(note.Note, note.Output, "the solid is %s%s; its lengths are taken as metres", o.Text, came)
+	s.tellFilms(st, o.Name, body)
 	return s.showTable(st, r.table())
 }

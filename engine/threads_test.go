@@ -62,6 +62,23 @@ SELECT t, AVG(temp) WEIGHTED BY volume, SHARE(temp > 8) WEIGHTED BY volume, MKT(
 SELECT a, b, area FROM CONTACTS OF placed WITHIN air ORDER BY area DESC LIMIT 9;
 SELECT id, 1 / (temp - temp) FROM readings;
 `
+	rooms, err := os.ReadFile(filepath.Join("..", "testdata", "demo", "room.ncell"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	list["rooms"] = string(rooms) + `
+CREATE SOLID west AS drawn MINUS BOX (18, 0, 0) TO (30, 18, 7.5);
+CREATE SOLID east AS BOX (18, 0, 0) TO (30, 12, 7.5);
+CREATE SOLID low AS BOX (0, 0, 0) TO (30, 18, 2) MINUS racks;
+SELECT * FROM CELLS OF measured WITHIN aisles;
+SELECT id, volume, hidden FROM CELLS OF measured WITHIN drawn;
+SELECT zone, id, volume, wall_area, farthest FROM CELLS OF measured WITHIN (west, east) STRETCHED (1, 1, 3);
+SELECT zone, a, b, area FROM CONTACTS OF measured WITHIN (west, east);
+SELECT part, id, volume, area, cx, farthest FROM CELLS OF measured WITHIN drawn MEASURED IN (low, racks);
+SELECT part, x, y, z, radius FROM GAPS OF measured WITHIN rooms MEASURED IN (low, racks);
+SELECT id, area FROM SECTION OF measured WITHIN rooms AT z = 1.1;
+SELECT x, y, z, radius FROM GAPS OF measured WITHIN aisles;
+`
 	return list
 }
 

@@ -78,6 +78,11 @@ func Keep(env *Env, s lang.Solid) (*KeptSolid, error) {
 	if err != nil {
 		return nil, err
 	}
+	return b.kept(own, s)
+}
+
+// kept makes the solid of an expression that stands on its own, s as it was written.
+func (b *binder) kept(own, s lang.Solid) (*KeptSolid, error) {
 	body, err := b.make(own, s)
 	if err != nil {
 		return nil, err

@@ -31,6 +31,7 @@ type Content struct {
 
 	single bool         // MESH: the file has coordinates of 32 bits
 	boxes  []solid.Part // BOXES: as the file has them
+	blocks []block      // of each of the boxes, where a frame has turned them
 	points []solid.Vec  // TERRAIN
 	height float64
 	told   []told

@@ -80,6 +80,13 @@ func (b *binder) keep(own lang.Solid) (*column.Table, []catalog.SourceFile) {
 			sources = append(sources, c.Source)
 		}
 		switch {
+		case c.blocks != nil:
+			for i, p := range c.boxes {
+				k := &c.blocks[i]
+				row("block", p.Name, k[0], k[1], k[2])
+				row("block", p.Name, k[3], k[4], k[5])
+				row("block", p.Name, k[6], k[7])
+			}
 		case c.boxes != nil:
 			for _, p := range c.boxes {
 				lo, hi := p.Solid.Bounds()
@@ -155,6 +162,14 @@ func restore(o *catalog.Object, from, to int) (*Content, error) {
 				return nil, err
 			}
 			c.boxes = append(c.boxes, solid.Part{Name: t.Cols[2].Text(r), Solid: box})
+		}
+		c.Body, err = mesh.NewBoxes(c.boxes)
+	case "block":
+		for r := from; r+2 < to; r += 3 {
+			k := block{at(r, 0), at(r, 1), at(r, 2), at(r+1, 0), at(r+1, 1), at(r+1, 2), at(r+2, 0), at(r+2, 1)}
+			if err := c.addBlock(t.Cols[2].Text(r), k); err != nil {
+				return nil, err
+			}
 		}
 		c.Body, err = mesh.NewBoxes(c.boxes)
 	case "height":

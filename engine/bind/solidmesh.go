@@ -122,7 +122,7 @@ func leak(e *mesh.Error, what string) string {
 	if e.Count == 1 {
 		verb = "edge is"
 	}
-	fmt.Fprintf(&out, "%s is not closed: %d %s open, %.6g m in all: ", what, e.Count, verb, e.Length)
+	fmt.Fprintf(&out, "%s is not closed: %d %s open, %.6g m in all, with ends at (in m) ", what, e.Count, verb, e.Length)
 	for i, edge := range e.Edges {
 		if i > 0 {
 			out.WriteString(", ")

@@ -150,12 +150,6 @@ FOR EACH t WITHIN air;`,
 		Example: "CREATE SOLID body AS MESH 'hall.csv';",
 	},
 	{
-		Code:    "solid-name",
-		Meaning: "A campaign's solid that comes from a file has to be a solid with a name: the catalog keeps what the file held with the solid.",
-		WayOut:  "CREATE SOLID first, then WITHIN its name.",
-		Example: "CREATE CAMPAIGN again FROM 'hall.csv' WITHIN BOXES 'racks.csv';",
-	},
-	{
 		Code:    "no-pieces",
 		Meaning: "Cells were wanted as polyhedra, for a file of them, and there are none: without a solid some run to infinity; in a mesh, and in what MINUS and PLUS make, they can be measured but are not known as convex pieces.",
 		WayOut:  "WITHIN a solid closes the cells; a BOX and a PRISM with its HOLEs have convex pieces.",

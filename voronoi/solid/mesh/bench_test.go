@@ -40,7 +40,9 @@ func pebble(n int) ([]solid.Vec, [][3]int32) {
 // BenchmarkCells measures all cells of n sites in a mesh of about t triangles, all
 // measures of them.
 func BenchmarkCells(b *testing.B) {
-	for _, c := range [][2]int{{1000, 1000}, {10000, 1000}, {100000, 1000}, {1000, 10000}, {10000, 10000}, {100000, 10000}} {
+	for _, c := range [][2]int{
+		{1000, 1000}, {10000, 1000}, {100000, 1000}, {1000, 10000}, {10000, 10000}, {100000, 10000}, {1000, 100000}, {10000, 100000}, {100000, 100000},
+	} {
 		v, t := pebble(c[0])
 		m, err := mesh.Restore(v, t, 0)
 		if err != nil {

@@ -319,6 +319,10 @@ func (m *Mesh) Distance(p Vec) float64 { return m.surface.distance(p, inf) }
 // each, counter-clockwise from outside. They are views.
 func (m *Mesh) Triangles() ([]Vec, [][3]int32) { return m.v, m.t }
 
+// Films is the area of what is no wall for being as thin as rounding: of films of the solid
+// and of gaps in it.
+func (m *Mesh) Films() float64 { return m.films }
+
 // Stretched is the mesh with its coordinates multiplied.
 func (m *Mesh) Stretched(k Vec) (solid.Solid, error) {
 	v := make([]Vec, len(m.v))
