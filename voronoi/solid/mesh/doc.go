@@ -52,6 +52,8 @@
 //
 // Faces that coincide but for rounding, as after a rotation, leave films of the solid or of
 // nothing between them, 1e-16 thick. They are found, and are no walls.
+// Far from the origin, where corners are rounded by more than that, the surface may lie in
+// folds there, three times in one place; the area of the middle one is taken off.
 //
 // # Laws
 //
