@@ -20,7 +20,7 @@
 // tetrahedron whose sphere contains the site, collects all of these, which are
 // connected, and replaces them by the star of the site. The order is random in rounds,
 // each eight times as large as the one before, and along a Hilbert curve within a round
-// (Amenta, Choi and Rote 2003). Every tetrahedron keeps its circumcentre and two bounds
+// (Amenta, Choi and Rote 2003), for lattices along a Z-order curve. Every tetrahedron keeps its circumcentre and two bounds
 // on the squared radius; most questions "inside?" are one distance and two comparisons.
 //
 // Several threads share the space in slabs and insert only sites whose tetrahedra lie
