@@ -8,6 +8,10 @@
 // wide as the text of an A4 sheet; SVG and PNG are two ways to write the same Scene, so
 // that they cannot differ. Section has a third way, Characters, for the terminal.
 //
+// Space, cells as convex polyhedra, is laid out as a still: what hides what is found by
+// splitting space along the walls (Fuchs, Kedem and Naylor, 1980), which is right for rooms
+// of any shape, whole and cut open. engine/view makes a page of the same data.
+//
 // A Scene's unit is a quarter of a millimetre. Its paper is white in all surroundings.
 //
 // # Colours and marks
