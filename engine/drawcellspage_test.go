@@ -98,6 +98,8 @@ func nearestOf(d *view.Data, p [3]float64) (id string, body int32, by float64) {
 func pickAll(t *testing.T, p *browser.Page, d *view.Data, top float64) {
 	t.Helper()
 	p.Eval("cells.pick(''), cells.draw(), 0", nil)
+	p.Wait("!cells.state.coarse") // it rests, and is shown in full
+	p.Eval("new Promise(r => setTimeout(() => requestAnimationFrame(() => requestAnimationFrame(() => r(0))), 300))", nil)
 	var stage [4]float64
 	p.Eval("(r => [r.left, r.top, r.width, r.height])(document.getElementById('over').getBoundingClientRect())", &stage)
 	picture, err := png.Decode(bytes.NewReader(p.Picture(false)))
@@ -138,7 +140,7 @@ func pickAll(t *testing.T, p *browser.Page, d *view.Data, top float64) {
 			if paint := d.Paint[4*body:]; paint[3] == 0 && by > 0.4 {
 				coloured++
 				if !coloured9(picture, stage[0]+x, stage[1]+y, paint) {
-					t.Errorf("%s at %v, %v has not its colour %v", id, x, y, paint[:3])
+					t.Errorf("%s at %v, %v has not its colour %v, but %v", id, x, y, paint[:3], picture.At(int(stage[0]+x), int(stage[1]+y)))
 				}
 			}
 		}
