@@ -45,8 +45,11 @@
 // double-double: in another order they are the same to all bits that this holds.
 //
 // Join keys turns equalities between the sides into hash keys. Safe: NULL equals
-// nothing either way, and INTEGER meets REAL exactly either way. A side that can
-// fail stays in Rest, as keys are computed for rows without a partner too.
+// nothing either way, and INTEGER meets REAL exactly either way. Keys that can fail are
+// guarded, as they are computed for rows without a partner too: where one fails, pairs
+// are looked at one by one, by the whole condition. An equality that can fail and so stays
+// above the joins is a key of the one that its sides meet in all the same. Where the left
+// side is known to have so few rows that all pairs are less work, there are no keys.
 //
 // Top tells a Sort how many rows a Limit above it takes. Safe: only projections
 // stand between them, which give one row for each.
@@ -75,9 +78,14 @@
 // the rows that can be among the first ones, by a k-d tree: of stored tables, and in queries
 // that depend on the row outside of whatever does not read it. Near joins looks up by one
 // which right rows DISTANCE(left point, right point) <= bound lets match, where the bound
-// reads the left side alone. Safe: the sort, the aggregate and the condition stay, and see
+// reads one side alone; of bounds of the right side's rows the largest counts. Safe: the sort, the aggregate and the condition stay, and see
 // in the same order whatever can matter to them; distances by rounding equal are never told
-// apart. A condition between search and sort must not be able to fail.
+// apart. A condition that fails for a near row is asked of all rows, so that the row at
+// fault is the one that is told.
+//
+// Shared cells tells each use of CELLS which measures other uses of the same sites in the
+// query ask for, so that each cell is built once. Safe: measures that nobody reads change
+// no row, and no bit of another measure.
 //
 // A Common part (a name of WITH used twice, a side of FULL JOIN) is optimised once
 // and computed once; Shared and Lookup are its uses. Conditions and columns stop at
@@ -105,8 +113,8 @@
 //
 // # Limitations
 //
-// A join whose least distance is that of the right side's rows (DISTANCE(a, b) = (SELECT MIN
-// … of b)) is a nested loop: the other order of the two is the fast one.
+// Statements of a script share diagrams and known measures; a measure that a later one asks
+// for first is computed then.
 //
 // Lineage ends at common parts: what leaves out cells there is not noted. Of a join the right side is the one kept in memory. Conditions
 // do not move through groups to their keys. A measure counts as lost or repeated
