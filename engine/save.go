@@ -158,7 +158,14 @@ func WriteAside(path string, fill func(*os.File) error) (err error) {
 	if err := f.Close(); err != nil {
 		return err
 	}
-	return os.Rename(f.Name(), path)
+	if err := os.Rename(f.Name(), path); err != nil {
+		return err
+	}
+	if d, err := os.Open(folder); err == nil { // the name is to survive a power cut, too
+		_ = d.Sync() // some systems do not know how
+		d.Close()
+	}
+	return nil
 }
 
 // fileProblem words an error of the file system; other errors pass.

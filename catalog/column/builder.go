@@ -38,17 +38,38 @@ func (b *Builder) Grow(n int) {
 	v := &b.v
 	switch v.Type {
 	case Integer, Timestamp, Interval:
-		v.I = slices.Grow(v.I, n)
+		v.I = roomy(v.I, n)
 	case Real:
-		v.F = slices.Grow(v.F, n)
+		v.F = roomy(v.F, n)
 	case Point:
-		v.F = slices.Grow(v.F, 3*n)
+		v.F = roomy(v.F, 3*n)
 	case Text:
-		v.C = slices.Grow(v.C, n)
+		v.C = roomy(v.C, n)
 	case Boolean:
-		v.Bits = slices.Grow(v.Bits, Words(v.N+n)-len(v.Bits))
+		v.Bits = roomy(v.Bits, Words(v.N+n)-len(v.Bits))
 	}
-	v.Valid = slices.Grow(v.Valid, Words(v.N+n)-len(v.Valid))
+	v.Valid = roomy(v.Valid, Words(v.N+n)-len(v.Valid))
+}
+
+// roomy is the slice with room for n more. Unlike slices.Grow it does not go over memory
+// that comes zeroed from the system: of a large column that is its first touch.
+func roomy[T any](s []T, n int) []T {
+	if n <= cap(s)-len(s) {
+		return s
+	}
+	more := make([]T, len(s), len(s)+n)
+	copy(more, s)
+	return more
+}
+
+// Reset empties the builder, which keeps its memory for the next column of its type: what
+// Finish gave before must not be used any longer, but for its dictionary.
+func (b *Builder) Reset() {
+	v := &b.v
+	*b = Builder{v: Vector{Type: v.Type, Unit: v.Unit, I: v.I[:0], F: v.F[:0], C: v.C[:0], Bits: v.Bits[:0], Valid: v.Valid[:0]}}
+	if v.Type == Text {
+		b.v.Dict = &Dict{}
+	}
 }
 
 func (b *Builder) grow(valid bool) {
@@ -152,6 +173,10 @@ func (b *Builder) AppendVector(v *Vector, on []uint64) {
 		b.appendWhole(v)
 		return
 	}
+	if on == nil && v.N > 0 && v.Type == Text && b.v.Type == Text && v.Valid == nil {
+		b.appendTexts(v)
+		return
+	}
 	for i := range v.N {
 		if on == nil || Bit(on, i) {
 			b.AppendRow(v, i)
@@ -177,6 +202,25 @@ func (b *Builder) appendWhole(v *Vector) {
 		b.nulls = b.nulls || v.NullCount() > 0
 	}
 	b.v.N += v.N
+}
+
+// appendTexts adds texts of which none is missing.
+func (b *Builder) appendTexts(v *Vector) {
+	b.v.Valid = appendBits(b.v.Valid, b.v.N, AllOn(v.N), v.N)
+	b.v.N += v.N
+	if v.Dict == b.v.Dict {
+		b.v.C = append(b.v.C, v.C[:v.N]...)
+		return
+	}
+	if v.Dict != b.from {
+		b.from, b.trans = v.Dict, make([]uint32, len(v.Dict.Texts))
+	}
+	for _, c := range v.C[:v.N] {
+		if b.trans[c] == 0 {
+			b.trans[c] = b.codeOf(v.Dict.Texts[c]) + 1
+		}
+		b.v.C = append(b.v.C, b.trans[c]-1)
+	}
 }
 
 // appendBits adds the first m bits of src behind the first n of dst, beyond which dst

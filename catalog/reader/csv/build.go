@@ -33,6 +33,7 @@ type builder struct {
 // build is the second pass: it makes the columns and finds the faults.
 func (im *importer) build() (*column.Table, error) {
 	b := &builder{naive: make([]bool, len(im.columns)), cells: make([]cell, len(im.columns))}
+	im.spare = &spareBuilders{}
 	rows := 0
 	for _, f := range im.files {
 		for _, c := range f.chunks {
@@ -99,6 +100,7 @@ func (im *importer) buildFile(f *file, b *builder) error {
 				b.naive[k] = b.naive[k] || x.naive[k]
 			}
 		}
+		im.spare.give(x.from)
 		return im.progress(f, f.chunks[i].to)
 	})
 }

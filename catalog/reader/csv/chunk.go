@@ -209,6 +209,7 @@ func (s *sample) merge(later sample, base int) {
 // built is what the second pass makes of a chunk.
 type built struct {
 	columns []column.Vector
+	from    []*column.Builder // to be used again once columns are copied
 	naive   []bool
 	rows    int
 	refused []refusedRecord
@@ -223,7 +224,7 @@ type refusedRecord struct {
 
 // part is an importer that reads one chunk: its faults and refused records are its own.
 func (im *importer) part(f *file, out *built) *importer {
-	p := &importer{ctx: im.ctx, o: im.o, mark: im.mark, missing: im.missing, columns: im.columns, types: im.types, files: im.files}
+	p := &importer{ctx: im.ctx, o: im.o, mark: im.mark, missing: im.missing, columns: im.columns, types: im.types, files: im.files, spare: im.spare}
 	p.faults.max = im.o.MaxFaults
 	p.enter(f)
 	if im.o.Refused != nil {
@@ -241,9 +242,13 @@ func (im *importer) makeChunk(f *file, c chunk, constants []cell) *built {
 	p := im.part(f, out)
 	cells := make([]cell, len(im.columns))
 	copy(cells, constants)
-	builders := make([]*column.Builder, len(im.columns))
+	builders := im.spare.take()
+	if builders == nil {
+		for i := range im.columns {
+			builders = append(builders, column.NewBuilder(im.types[i], im.columns[i].unit))
+		}
+	}
 	for i := range builders {
-		builders[i] = column.NewBuilder(im.types[i], im.columns[i].unit)
 		builders[i].Grow(c.records)
 	}
 	s := f.scan(&c)
@@ -267,8 +272,35 @@ func (im *importer) makeChunk(f *file, c chunk, constants []cell) *built {
 	for _, b := range builders {
 		out.columns = append(out.columns, b.Finish())
 	}
-	out.faults = p.faults
+	out.faults, out.from = p.faults, builders
 	return out
+}
+
+// spareBuilders are those of chunks that are copied, to be used for others: fresh memory
+// costs more than what is read into it.
+type spareBuilders struct {
+	mu   sync.Mutex
+	list [][]*column.Builder
+}
+
+func (s *spareBuilders) take() []*column.Builder {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if len(s.list) == 0 {
+		return nil
+	}
+	last := s.list[len(s.list)-1]
+	s.list = s.list[:len(s.list)-1]
+	return last
+}
+
+func (s *spareBuilders) give(builders []*column.Builder) {
+	for _, b := range builders {
+		b.Reset()
+	}
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	s.list = append(s.list, builders)
 }
 
 // merge takes the faults of a later chunk.

@@ -124,6 +124,7 @@ type importer struct {
 
 	columns []tally // those of the files, then those of the preamble
 	types   []column.Type
+	spare   *spareBuilders
 }
 
 // enter makes f the file that faults are in.
