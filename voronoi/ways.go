@@ -48,6 +48,7 @@ func (d *Diagram) MeasureWay(ctx context.Context, whole bool, want Measures, sit
 // Presence is what Cells.Inside and Cells.Multiplicity are of every site.
 func (d *Diagram) Presence() (inside []bool, multiplicity []int32) {
 	inside, multiplicity = make([]bool, len(d.cell)), make([]int32, len(d.cell))
+	delaunay.AdviseHugePages(multiplicity)
 	for s, c := range d.cell {
 		if c >= 0 {
 			inside[s], multiplicity[s] = true, d.count[c]

@@ -126,6 +126,7 @@ func texts(a arrow.ArrayData, t arrow.DataType) (*column.Dict, error) {
 		return nil, fmt.Errorf("unexpected texts %s", t)
 	}
 	d := &column.Dict{Texts: make([]string, a.Len())}
+	advise(d.Texts)
 	total := 0
 	for i := range d.Texts {
 		d.Texts[i] = at(i) // a view, for now

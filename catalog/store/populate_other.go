@@ -2,4 +2,6 @@
 
 package store
 
+func advise([]string) {}
+
 const populate = 0

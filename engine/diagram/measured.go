@@ -5,6 +5,7 @@ import (
 	"slices"
 
 	"nearcell/voronoi"
+	"nearcell/voronoi/delaunay"
 )
 
 // cellSet is what is known of the cells that were made one way: the last bits of measures
@@ -147,6 +148,7 @@ func (c *cellSet) begin(n int) int64 {
 		return 0
 	}
 	c.known = make([]voronoi.Measures, n)
+	delaunay.AdviseHugePages(c.known)
 	return 4 * int64(n)
 }
 

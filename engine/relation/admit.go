@@ -11,6 +11,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
 	"nearcell/lang"
+	"nearcell/voronoi/delaunay"
 )
 
 // admitted are the rows of the input that may partition: those that OMITTING
@@ -23,7 +24,9 @@ func admitted(b *Bound, env *Env, input *column.Table) ([]int32, error) {
 	if err != nil {
 		return nil, err
 	}
-	rows := make([]int32, 0, input.N)
+	rows := make([]int32, input.N)
+	delaunay.AdviseHugePages(rows)
+	rows = rows[:0]
 	missing := make([]int, len(b.Clauses.Each))
 next:
 	for row := range int32(input.N) {

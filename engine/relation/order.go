@@ -7,6 +7,7 @@ import (
 	"slices"
 
 	"nearcell/catalog/column"
+	"nearcell/voronoi/delaunay"
 )
 
 // order compares rows of the input by the values of FOR EACH and by their
@@ -30,6 +31,7 @@ func newOrder(b *Bound, input *column.Table) *order {
 // sortKeys are the keys of a column; those of NULLs mean nothing.
 func sortKeys(v *column.Vector) [][]uint64 {
 	keys := make([]uint64, v.N)
+	delaunay.AdviseHugePages(keys)
 	switch v.Type {
 	case column.Integer, column.Timestamp, column.Interval:
 		for i, x := range v.I[:v.N] {
@@ -111,6 +113,7 @@ func ascending(texts []string) []uint32 {
 		}
 	}
 	rank := make([]uint32, len(texts))
+	delaunay.AdviseHugePages(rank)
 	for i := range rank {
 		rank[i] = uint32(i)
 	}

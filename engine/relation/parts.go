@@ -9,6 +9,7 @@ import (
 	"gonum.org/v1/gonum/spatial/r3"
 
 	"nearcell/catalog/column"
+	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/solid"
 )
 
@@ -81,6 +82,7 @@ func position(b *Bound, input *column.Table, row int32) r3.Vec {
 // placesOf are the positions of rows.
 func placesOf(b *Bound, env *Env, input *column.Table, rows []int32) []r3.Vec {
 	at := make([]r3.Vec, len(rows))
+	delaunay.AdviseHugePages(at)
 	threads := env.Threads
 	if threads <= 0 {
 		threads = runtime.GOMAXPROCS(0)
@@ -111,6 +113,7 @@ func coordinate(v *column.Vector, row int32) float64 {
 // place finds the distinct places of a part's rows.
 func place(b *Bound, env *Env, input *column.Table, p *Part) {
 	p.Site = make([]int32, len(p.Rows))
+	delaunay.AdviseHugePages(p.Site)
 	at := placesOf(b, env, input, p.Rows)
 	if p.Sites = at; env.Diagrams.KnownDistinct(at, optionsOf(b, env, p)) {
 		for k := range p.Site {

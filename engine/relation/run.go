@@ -10,6 +10,7 @@ import (
 	"nearcell/engine/note"
 	"nearcell/engine/problem"
 	"nearcell/voronoi"
+	"nearcell/voronoi/delaunay"
 	"nearcell/voronoi/solid"
 )
 
@@ -195,7 +196,9 @@ func (s *sites) shown(p *Part, f voronoi.Facts) (ks, cells []int32) {
 			out[site] = true
 		}
 	}
-	ks = make([]int32, 0, len(p.Rows))
+	ks = make([]int32, len(p.Rows))
+	delaunay.AdviseHugePages(ks)
+	ks = ks[:0]
 	for k, site := range p.Site {
 		if out != nil && out[site] {
 			continue
