@@ -156,6 +156,6 @@ var ofQueries = []Entry{
 		Code:    "not-yet",
 		Meaning: "The language has this, and this version of the program does not. It is refused by name, never passed over.",
 		WayOut:  "HELP marks what is not there yet; where there is another way, the message names it.",
-		Example: "SELECT * FROM CELLS OF hall STRETCHED (1, 1, 5) DISTANCES (1, 2);",
+		Unshown: "it takes an OVERLAY of two different meshes, or a mesh IN FRAME",
 	},
 }

@@ -30,7 +30,7 @@ var ofSites = []Entry{
 		Code:    "no-solid",
 		Meaning: "What is asked for needs a space with an end, and there is no solid.",
 		WayOut:  "WITHIN a solid, or a campaign that was made WITHIN one.",
-		Example: "SELECT * FROM EXCEEDANCE OF hall FOR temp ABOVE 8 METHOD SIBSON UNCLIPPED;",
+		Example: "DRAW CELLS OF (SELECT * FROM hall) SHADED BY temp TO 'cells.html';",
 	},
 	{
 		Code:    "control-points",
