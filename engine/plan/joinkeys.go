@@ -59,8 +59,8 @@ func joinWithKeys(j *Join) Node {
 		c.Guarded = c.Guarded || e.CanFail()
 	}
 	c.Rest = expr.AndAll(rest)
-	if c.Guarded {
-		c.Whole = j.Rest
+	if c.Guarded && !j.Guarded { // one that is has its whole condition already
+		c.Whole = whole(j)
 	}
 	return &c
 }
