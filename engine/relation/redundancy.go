@@ -76,6 +76,19 @@ func (r *redundancyRows) Cost() (voronoi.Cost, error) {
 	return all.cost(voronoi.Farthest)
 }
 
+// Forecast has one row for each site.
+func (r *redundancyRows) Forecast(ctx context.Context) (*Forecast, error) {
+	all := *r.sites
+	all.r.Wanted = nil
+	f, err := all.forecast(ctx, voronoi.Farthest|voronoi.Volume, false)
+	if err != nil {
+		return nil, err
+	}
+	f.Measures = []string{"redundancy"}
+	f.RowsExact = f.RowsExact && r.r.Wanted == nil
+	return f, nil
+}
+
 func (r *redundancyRows) Run(ctx context.Context, emit func(*column.Batch) error) (err error) {
 	defer func() {
 		r.said.partial = err != nil
