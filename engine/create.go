@@ -97,7 +97,7 @@ func (c *clauses) inSystem(o *catalog.Object) error {
 		return nil
 	}
 	for _, s := range c.withinAt.Solids {
-		if err := bind.InSystem(c.s.bindEnv(c.st), &column.System{Of: o.Name, Text: o.System}, s); err != nil {
+		if err := bind.InSystem(c.s.bindEnv(c.st), &column.System{Of: o.Name, Text: o.System}, o.Options.LengthUnit, s); err != nil {
 			return err
 		}
 	}

@@ -174,14 +174,18 @@ func (b *binder) solidSystem(s lang.Solid) (*column.System, error) {
 	return nil, nil
 }
 
-// InSystem sees that a campaign and a solid count from one place.
-func InSystem(env *Env, sites *column.System, s lang.Solid) error {
+// InSystem sees that a campaign and a solid count from one place, and in one unit: "" is
+// that of what has none.
+func InSystem(env *Env, sites *column.System, unit string, s lang.Solid) error {
 	b := newBinder(env)
 	own, err := b.solidSystem(s)
 	if err != nil {
 		return err
 	}
-	return b.oneSystem(sites, own, b.at(s))
+	if err := b.oneSystem(sites, own, b.at(s)); err != nil {
+		return err
+	}
+	return b.metresMeet(sites.Of, unit, s, b.at(s))
 }
 
 // solidsInSystem sees that the solids of a relation's clauses, and those that a campaign
@@ -214,6 +218,9 @@ func (b *binder) solidsInSystem(rel *relation.Bound, r *lang.Relation, campaign 
 		if err := b.oneSystem(sites, own, b.at(s)); err != nil {
 			return err
 		}
+		if err := b.metresMeet(rel.Name, rel.Clauses.Unit.String(), s, b.at(s)); err != nil {
+			return err
+		}
 	}
 	if within || campaign == nil {
 		return nil
@@ -230,8 +237,39 @@ func (b *binder) solidsInSystem(rel *relation.Bound, r *lang.Relation, campaign 
 		if same, _ := catalog.SameSystem(sites, own); !same {
 			return b.oneSystem(sites, own, rel.Place)
 		}
+		if err := b.metresMeet(rel.Name, rel.Clauses.Unit.String(), s, rel.Place); err != nil {
+			return err
+		}
 	}
 	return nil
+}
+
+// metresMeet refuses sites in feet, say, in a solid that UNIT has brought to metres. Where
+// nothing was brought, a solid's numbers are taken in the unit of the sites.
+func (b *binder) metresMeet(sites, unit string, s lang.Solid, at problem.Place) error {
+	if unit == "" || unit == "m" || !b.inMetres(s) {
+		return nil
+	}
+	return problem.New("units", at, "the sites of %s are in %s, and UNIT has brought %s to metres", sites, unit, lang.Print(s)).
+		WithHint("read the mesh without UNIT, so that its numbers are in %s as those of the sites are; or import the sites in m", unit)
+}
+
+// inMetres tells whether UNIT has brought a solid, or a part of it, to metres.
+func (b *binder) inMetres(s lang.Solid) bool {
+	switch s := s.(type) {
+	case *lang.SolidOp:
+		return b.inMetres(s.Left) || b.inMetres(s.Right)
+	case *lang.MeshSolid:
+		return s.Unit.Text != ""
+	case *lang.SolidName:
+		o, err := b.env.Catalog.Get(s.Name.Key())
+		if err != nil || o.Kind != catalog.Solid {
+			return false
+		}
+		of, err := lang.ParseSolid(o.Text)
+		return err == nil && b.inMetres(of)
+	}
+	return false
 }
 
 // coordinateColumns are the columns of relations that are places.
