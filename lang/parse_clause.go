@@ -289,7 +289,7 @@ func (p *parser) uncertaintyPart() *UncertaintyPart {
 	if isName(p.kind()) && !literal {
 		part.Column = p.anyName()
 	}
-	part.Value = p.value("a number")
+	part.Value = p.value("a number, or a column in parentheses, such as (u),")
 	switch {
 	case p.take(kEach):
 	case p.take(kCommon):

@@ -75,6 +75,7 @@ type callState struct {
 	largest  heaviest
 	cells    *cellCount // what a sum of measures has met, nil: not asked
 	ledger   *ledger    // what a weighted answer speaks for, nil: of no closed space, or not asked
+	spreads  *spreads   // of instruments' uncertainties by column, nil: none or not asked
 	near     *nearCount // what limits can hardly tell apart, nil: none or not asked
 }
 
@@ -99,6 +100,9 @@ func (s *aggregateSink) newPart() *aggregatePart {
 		}
 		for i, book := range s.ledgers() {
 			p.calls[i].ledger = book
+		}
+		for i, of := range s.spreads() {
+			p.calls[i].spreads = of
 		}
 		for _, c := range p.calls {
 			c.near = newNearCount(c.call)
@@ -176,7 +180,7 @@ func (c *callState) bytes() int64 {
 	if acc, ok := c.acc.(function.Sized); ok {
 		n += acc.Bytes()
 	}
-	return n
+	return n + c.spreads.bytes()
 }
 
 func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups []int32) error {
@@ -230,6 +234,9 @@ func (c *callState) consume(s *aggregateSink, w *Worker, b *column.Batch, groups
 		offerEnvelope(err, s.node, c.call.Weight)
 		return s.fault(w, err, at, b)
 	}
+	if k, err := c.spreads.add(b, on, groups, args, weight); err != nil {
+		return s.fault(w, err, c.spreads.by(k).Place, b)
+	}
 	c.cells.add(b, on, groups)
 	c.ledger.add(b, on, &cond, args)
 	if weight != nil && len(s.node.Keys) == 0 && s.id >= 0 {
@@ -272,6 +279,7 @@ func (s *aggregateSink) Merge(part Part) error {
 		}
 		c.largest.merge(&from.largest)
 		c.cells.merge(from.cells, to)
+		c.spreads.merge(from.spreads, to)
 	}
 	s.env.release(p.kept)
 	return s.all.keep()

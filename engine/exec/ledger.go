@@ -36,6 +36,11 @@ func (s *volumeSum) add(x float64) {
 	s.sum = t
 }
 
+func (s *volumeSum) merge(o volumeSum) {
+	s.add(o.sum)
+	s.add(o.rest)
+}
+
 func (s *volumeSum) value() float64 { return s.sum + s.rest }
 
 // ledgers are those that a part keeps, by the number of the call.
@@ -86,8 +91,7 @@ func (l *ledger) merge(o *ledger) {
 	}
 	l.rows += o.rows
 	for _, x := range [...]struct{ to, from *volumeSum }{{&l.answered, &o.answered}, {&l.silent, &o.silent}, {&l.filtered, &o.filtered}, {&l.unsure, &o.unsure}} {
-		x.to.add(x.from.sum)
-		x.to.add(x.from.rest)
+		x.to.merge(*x.from)
 	}
 }
 

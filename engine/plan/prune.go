@@ -175,6 +175,9 @@ func prunedAggregate(n *Aggregate, need []bool) (Node, []int) {
 			below[at] = true
 		}
 	}
+	for _, u := range Uncertainties(&c) {
+		u.mark(below, schema)
+	}
 	in, to := pruned(n.Input, below)
 	c.Input, c.Keys = in, remapAll(n.Keys, to)
 	for i := range c.Calls {

@@ -37,9 +37,11 @@ var clauses = []Clause{
 	{"STRETCHED", "STRETCHED (sx, sy, sz)",
 		"Distances are measured in a stretched space: with (1, 1, 5) a metre up counts as five. All results are in true units.",
 		"SELECT id, volume FROM CELLS OF hall STRETCHED (1, 1, 5);"},
-	{"UNCERTAINTY", "UNCERTAINTY column | UNCERTAINTY (column value EACH, value COMMON)",
-		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share. It says nothing of how well they stand for the space between them. EXTREMES takes the column of each row's standard uncertainty, too.",
-		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON);"},
+	{"UNCERTAINTY", "UNCERTAINTY column | UNCERTAINTY (reading value EACH, (column) COMMON)",
+		"The instruments' part of the uncertainty of a weighted mean, told in a note: EACH is every instrument's own error, COMMON one that all of them share. " +
+			"Each is a number, or the name of a column in parentheses, with the standard uncertainty of each site in the unit of the reading (K goes with °C): independent errors u make √Σw²u² / Σw, shared ones Σwu / Σw. " +
+			"A NULL among them leaves the note untold, a negative one is refused. It says nothing of how well they stand for the space between them. EXTREMES takes the column of each row's standard uncertainty, too.",
+		"SELECT AVG(temp) WEIGHTED BY volume FROM CELLS OF hall UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON);\nSELECT AVG(temp) WEIGHTED BY volume\nFROM CELLS OF (SELECT *, 0.01 * temp AS u FROM hall) WITHIN air UNCERTAINTY (temp (u) EACH);"},
 	{"METHOD", "METHOD SIBSON | LAPLACE | LINEAR | NEAREST | IDW(power) | HOLD | MEAN | MAX | MIN",
 		"How values between the sites are estimated. SIBSON (the rule) weighs each site by what the cell of the place would take from it, LAPLACE by the areas of that cell's faces over the distances, " +
 			"LINEAR by the place in its Delaunay tetrahedron; NEAREST takes the nearest site, IDW the twelve nearest by an inverse power of the distance. In a solid SIBSON and LAPLACE use cells that end at its walls, " +

@@ -152,6 +152,7 @@
 //
 // # Limitations
 //
-// UNCERTAINTY by a column is not there yet. Contacts in parts are not remembered by the
-// diagram, and OVERLAY counts in parts that are solid.Divided only. The whole input is held in memory.
+// UNCERTAINTY of CELLS takes numbers and columns, but nothing computed from columns, and
+// by a column it is not told where DUPLICATES MEAN may have merged instruments. Contacts
+// in parts are not remembered by the diagram, and OVERLAY counts in parts that are solid.Divided only. The whole input is held in memory.
 package relation

@@ -120,10 +120,33 @@ type Clauses struct {
 }
 
 // Uncertain is the standard uncertainty of the instruments behind a column of the input:
-// that of each of them by itself, and that which all of them share.
+// that of each of them by itself, and that which all of them share. Columns give each
+// instrument one of its own; several parts of one kind add up as squares.
 type Uncertain struct {
-	Column       int
-	Each, Common float64
+	Column           int
+	Each, Common     float64
+	EachBy, CommonBy []UncertainBy
+}
+
+// UncertainBy is a column of standard uncertainties, site by site.
+type UncertainBy struct {
+	Column int // of the input, -1: nobody reads it any more
+	Name   string
+	Place  problem.Place
+}
+
+// pruned is u over an input of which column c is now to[c].
+func (u Uncertain) pruned(to []int) Uncertain {
+	u.Column = to[u.Column]
+	for _, list := range [...]*[]UncertainBy{&u.EachBy, &u.CommonBy} {
+		*list = slices.Clone(*list)
+		for i := range *list {
+			if by := &(*list)[i]; by.Column >= 0 {
+				by.Column = to[by.Column]
+			}
+		}
+	}
+	return u
 }
 
 // Bound is a relation in a query after binding: what its rows look like.
@@ -199,7 +222,7 @@ func (b *Bound) Pruned(to []int) *Bound {
 	c.Clauses.Uncertain = nil
 	for _, u := range b.Clauses.Uncertain {
 		if to[u.Column] >= 0 {
-			c.Clauses.Uncertain = append(c.Clauses.Uncertain, Uncertain{to[u.Column], u.Each, u.Common})
+			c.Clauses.Uncertain = append(c.Clauses.Uncertain, u.pruned(to))
 		}
 	}
 	c.Log.Carried = nil

@@ -155,6 +155,13 @@ input:1: CELLS takes no AT (it takes WITHIN, UNCLIPPED, FOR EACH, OMITTING, MEAS
                               ^^^^^^^^^^
 
 plan
+SELECT * FROM CELLS OF hall UNCERTAINTY temp
+----
+input:1: UNCERTAINTY of CELLS says of which reading, and whether of EACH instrument or COMMON to all (UNCERTAINTY (temp (u) EACH): the reading, and in parentheses the column of uncertainties)
+  SELECT * FROM CELLS OF hall UNCERTAINTY temp
+                              ^^^^^^^^^^^^^^^^
+
+plan
 SELECT * FROM CELLS OF hall FOR EACH hour
 ----
 input:1: there is no column 'hour' in hall (it has id, x, y, z, temp, area)

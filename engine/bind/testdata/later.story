@@ -8,13 +8,6 @@ columns: hidden
     read campaign hall: id, x, y, z, temp, area
 
 plan
-SELECT * FROM CELLS OF hall UNCERTAINTY temp
-----
-input:1: UNCERTAINTY of CELLS by a column is not there yet (UNCERTAINTY (temp 0.1 EACH, 0.2 COMMON): one figure for all instruments)
-  SELECT * FROM CELLS OF hall UNCERTAINTY temp
-                              ^^^^^^^^^^^^^^^^
-
-plan
 SELECT * FROM VERDICTS
 ----
 input:1: there is no campaign, table or view 'VERDICTS'
