@@ -57,7 +57,7 @@ func (s *spreads) add(b *column.Batch, on []uint64, groups []int32, args []colum
 			known = known && some
 			if some && !(x >= 0 && x <= math.MaxFloat64) {
 				by, fault = k, &function.RowFault{Row: i, Code: "no-value",
-					Message: fmt.Sprintf("the uncertainty '%s' is %s, and a standard uncertainty is a finite number of 0 or more", s.by(k).Name, column.FormatReal(x)),
+					Message: fmt.Sprintf("a standard uncertainty is a finite number of 0 or more, and '%s' is %s", s.by(k).Name, column.FormatReal(x)),
 					Hint:    "leave the row out with WHERE, or give it another one in OF (SELECT …), with CASE"}
 				return
 			}
