@@ -67,7 +67,7 @@ var degenerateQueries = []struct {
 // sites, of sites in one place or in one plane, with one outside, without one or all of the
 // readings, and with equal ones; without a solid, by groups, zones and parts. What they
 // answer, notes and errors included, stands in a golden file that was read line by line. It
-// is the same for one thread and two.
+// is the same for one thread, two and four.
 func TestDegenerate(t *testing.T) {
 	ask := func(threads int) string {
 		var out, all strings.Builder
@@ -112,8 +112,10 @@ func TestDegenerate(t *testing.T) {
 		return all.String()
 	}
 	got := ask(2)
-	if again := ask(1); again != got {
-		t.Error("one thread gives other bytes than two")
+	for _, threads := range []int{1, 4} {
+		if again := ask(threads); again != got {
+			t.Errorf("%d threads give other bytes than two", threads)
+		}
 	}
 	file := filepath.Join("testdata", "degenerate.txt")
 	if f := flag.Lookup("rewrite"); f != nil && f.Value.String() == "true" {

@@ -271,6 +271,7 @@ func TestPicturesGolden(t *testing.T) {
 		"DRAW CELLS OF hall SHADED BY temp LIMITS (2, 8) SEEN FROM (1, 2, 1) TO 'cells.svg';"
 	one, _, _ := drawn(t, 1, text)
 	two, _, _ := drawn(t, 2, text)
+	four, _, _ := drawn(t, 4, text)
 	for _, name := range []string{"section.svg", "course.svg", "cells.svg"} {
 		a, err := os.ReadFile(filepath.Join(one, name))
 		if err != nil {
@@ -278,6 +279,9 @@ func TestPicturesGolden(t *testing.T) {
 		}
 		if b, err := os.ReadFile(filepath.Join(two, name)); err != nil || !bytes.Equal(a, b) {
 			t.Errorf("%s: other bytes with two threads (%v)", name, err)
+		}
+		if b, err := os.ReadFile(filepath.Join(four, name)); err != nil || !bytes.Equal(a, b) {
+			t.Errorf("%s: other bytes with four threads (%v)", name, err)
 		}
 		golden := filepath.Join("testdata", "pictures", name)
 		if *rewritePictures {

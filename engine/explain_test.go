@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"context"
 	"encoding/csv"
+	"fmt"
 	"os"
 	"path/filepath"
 	"regexp"
@@ -78,10 +79,18 @@ func masked(text string) string {
 }
 
 // TestExplainStories holds plans against what was printed; -rewrite prints anew.
-// Lines are wide, so that no line breaks with the time in it.
+// Lines are wide, so that no line breaks with the time in it. One, two and four threads
+// print the same.
 func TestExplainStories(t *testing.T) {
+	for _, threads := range []int{1, 2, 4} {
+		t.Run(fmt.Sprintf("%d threads", threads), func(t *testing.T) { explainStories(t, threads) })
+	}
+}
+
+func explainStories(t *testing.T, threads int) {
 	datadriven.Walk(t, filepath.Join("testdata", "explain"), func(t *testing.T, path string) {
 		e := newExplainer(t, present.AsTable, 200)
+		e.o.Threads = threads
 		datadriven.RunTest(t, path, func(t *testing.T, d *datadriven.TestData) string {
 			if d.Cmd != "ask" {
 				d.Fatalf(t, "no such command: %s", d.Cmd)

@@ -103,10 +103,15 @@ func cancelled(t testing.TB, c *catalog.Catalog, text string, parts int) (whole,
 			at = time.Now()
 			cancel()
 		})
+		begun := time.Now()
 		err := run(ctx)
 		ended := time.Now()
-		if timer.Stop() || err == nil { // it was quicker this time
+		if timer.Stop() || err == nil { // it was quicker than the first time, which found its memory new
 			cancel()
+			if ended.Sub(begun) < whole {
+				whole = ended.Sub(begun)
+				k--
+			}
 			continue
 		}
 		<-ctx.Done()

@@ -89,7 +89,7 @@ func (s *aggregateSink) newPart() *aggregatePart {
 	p := &aggregatePart{sink: s, keys: newKeyTable(s.types).until(s.env.stop), calls: make([]*callState, len(s.node.Calls))}
 	p.reader = newKeyReader(p.keys)
 	for i := range s.node.Calls {
-		p.calls[i] = newCallState(&s.node.Calls[i], s.pairs[i])
+		p.calls[i] = newCallState(s.env, &s.node.Calls[i], s.pairs[i])
 		if d := p.calls[i].distinct; d != nil {
 			d.until(s.env.stop)
 		}
@@ -111,14 +111,14 @@ func (s *aggregateSink) newPart() *aggregatePart {
 	return p
 }
 
-func newCallState(c *plan.Call, pairs *pairSet) *callState {
+func newCallState(env *Env, c *plan.Call, pairs *pairSet) *callState {
 	setup := newSetup(c)
 	state := &callState{call: c, acc: c.Fn.New(setup)}
 	// the first of ordered values is the same whether or not equals are dropped
 	if pairs != nil {
 		state.pairs = &pairPart{set: pairs}
 	} else if c.Distinct && len(c.OrderBy) == 0 {
-		state.distinct = newKeyTable(append([]column.Type{column.Integer}, setup.Args...))
+		state.distinct = newKeyTable(append([]column.Type{column.Integer}, setup.Args...)).until(env.stop)
 		state.reader = newKeyReader(state.distinct)
 	}
 	return state
@@ -262,6 +262,9 @@ func (s *aggregateSink) Merge(part Part) error {
 		return nil
 	}
 	to := s.all.keys.absorb(p.keys, nil)
+	if err := s.env.stop(); err != nil {
+		return err
+	}
 	p.to = to
 	for i, c := range s.all.calls {
 		from := p.calls[i]
@@ -272,6 +275,9 @@ func (s *aggregateSink) Merge(part Part) error {
 		}
 		if c.distinct != nil {
 			c.distinct.absorb(from.distinct, to)
+			if err := s.env.stop(); err != nil {
+				return err
+			}
 			continue
 		}
 		if err := c.acc.Merge(from.acc, to); err != nil {
@@ -371,7 +377,7 @@ func (s *aggregateSink) keyOrder(ctx context.Context, keys []column.Vector, n in
 // DISTINCT go into its accumulator now that each stands there once.
 func (c *callState) result(env *Env, groups int) (column.Vector, error) {
 	if c.pairs != nil {
-		return c.pairs.set.counts(groups), nil
+		return c.pairs.set.counts(groups)
 	}
 	if acc, ok := c.acc.(function.Sized); ok { // sorting takes as much again
 		if err := env.keep(acc.Bytes()); err != nil {
@@ -382,15 +388,15 @@ func (c *callState) result(env *Env, groups int) (column.Vector, error) {
 	if c.distinct != nil {
 		cols := c.distinct.columns()
 		group := make([]int32, c.distinct.n)
-		for i, g := range cols[0].I {
-			group[i] = int32(g)
-		}
 		args := make([]column.Vector, len(cols)-1)
 		for lo := 0; lo < len(group); lo += BatchRows {
 			if err := env.stop(); err != nil {
 				return column.Vector{}, err
 			}
 			hi := min(lo+BatchRows, len(group))
+			for i, g := range cols[0].I[lo:hi] {
+				group[lo+i] = int32(g)
+			}
 			for i := range args {
 				args[i] = cols[i+1].Slice(lo, hi)
 			}

@@ -68,7 +68,20 @@ func (s *distinctSink) Merge(part Part) error {
 	}
 	t := p.rows.finish()
 	s.env.release(p.kept)
-	return s.all.add(t.Cols, nil, t.N)
+	cols := make([]column.Vector, len(t.Cols))
+	for lo := 0; lo < t.N; lo += freshRows {
+		if err := s.env.stop(); err != nil {
+			return err
+		}
+		hi := min(lo+freshRows, t.N)
+		for i := range cols {
+			cols[i] = t.Cols[i].Slice(lo, hi)
+		}
+		if err := s.all.add(cols, nil, hi-lo); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 func (s *distinctSink) Finish(context.Context) (Source, error) {

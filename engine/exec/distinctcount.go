@@ -182,7 +182,10 @@ func (p *pairPart) settle(to []int32, chunk int) error {
 	for i := range pairShards {
 		s := (i + 7*chunk) % pairShards
 		if of := order[start[s]:start[s+1]]; len(of) > 0 {
-			grown += p.set.shards[s].putAll(p.pairs, hashes, of)
+			if err := p.set.env.stop(); err != nil {
+				return err
+			}
+			grown += p.set.shards[s].putAll(p.pairs, hashes, of, p.set.env.stop)
 		}
 	}
 	p.pairs = nil
@@ -218,8 +221,9 @@ func (p *pairPart) settleCoded(to []int32) int64 {
 	return grown
 }
 
-// putAll adds pairs and gives the bytes by which the shard grew.
-func (s *pairShard) putAll(pairs []pair, hashes []uint64, of []int32) int64 {
+// putAll adds pairs and gives the bytes by which the shard grew. Where stop gives an error
+// the shard is left as it is: nobody wants it any more.
+func (s *pairShard) putAll(pairs []pair, hashes []uint64, of []int32, stop func() error) int64 {
 	s.mu.Lock()
 	defer s.mu.Unlock()
 	before := len(s.slots)
@@ -234,7 +238,9 @@ func (s *pairShard) putAll(pairs []pair, hashes []uint64, of []int32) int64 {
 			if have.group == 0 {
 				*have = x
 				if s.n++; 2*s.n > len(s.slots) {
-					s.grow()
+					if !s.grow(stop) {
+						return int64(16 * (len(s.slots) - before))
+					}
 					mask = len(s.slots) - 1
 				}
 				break
@@ -247,11 +253,15 @@ func (s *pairShard) putAll(pairs []pair, hashes []uint64, of []int32) int64 {
 	return int64(16 * (len(s.slots) - before))
 }
 
-func (s *pairShard) grow() {
+// grow makes room for more pairs, and reports whether it came to the end of it.
+func (s *pairShard) grow(stop func() error) bool {
 	old := s.slots
-	s.slots = make([]pair, 4*len(old))
+	s.slots = large[pair](stop, grownPairs(len(old)))
 	mask := len(s.slots) - 1
-	for _, x := range old {
+	for k, x := range old {
+		if k&(freshRows-1) == 0 && stop() != nil {
+			return false
+		}
 		if x.group == 0 {
 			continue
 		}
@@ -261,10 +271,19 @@ func (s *pairShard) grow() {
 		}
 		s.slots[i] = x
 	}
+	return true
+}
+
+// grownPairs is the next size of a shard: large ones, of which there are many, grow less.
+func grownPairs(n int) int {
+	if n >= 1<<16 {
+		return 2 * n
+	}
+	return 4 * n
 }
 
 // counts is the number of different values of each group.
-func (s *pairSet) counts(groups int) column.Vector {
+func (s *pairSet) counts(groups int) (column.Vector, error) {
 	v := column.New(column.Integer, nil, groups)
 	for _, block := range s.dense.blocks {
 		for g, word := range block {
@@ -274,6 +293,9 @@ func (s *pairSet) counts(groups int) column.Vector {
 		}
 	}
 	for k := range s.shards {
+		if err := s.env.stop(); err != nil {
+			return v, err
+		}
 		for _, x := range s.shards[k].slots {
 			if x.group > 0 {
 				v.I[x.group-1]++
@@ -282,5 +304,5 @@ func (s *pairSet) counts(groups int) column.Vector {
 			}
 		}
 	}
-	return v
+	return v, nil
 }

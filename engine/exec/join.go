@@ -105,7 +105,7 @@ func (s *buildSide) index(ctx context.Context, env *Env, at []int, left []expr.E
 	}
 	s.keys = newKeyTable(types).until(ctx.Err)
 	reader := newKeyReader(s.keys)
-	keyOf := make([]int32, s.table.N)
+	keyOf := large[int32](ctx.Err, s.table.N)
 	on := make([]uint64, column.Words(BatchRows))
 	cols := make([]column.Vector, len(at))
 	for lo := 0; lo < s.table.N; lo += BatchRows {
@@ -163,22 +163,26 @@ func maskPresent(mask []uint64, v *column.Vector) {
 
 // group sorts the rows by key, by counting.
 func (s *buildSide) group(ctx context.Context, keyOf []int32) error {
-	s.start = make([]int32, s.keys.n+1)
+	s.start = large[int32](ctx.Err, s.keys.n+1)
 	for i, k := range keyOf {
-		if i&(cancelRows-1) == 0 && ctx.Err() != nil {
+		if i&(freshRows-1) == 0 && ctx.Err() != nil {
 			return ctx.Err()
 		}
 		if k >= 0 {
 			s.start[k+1]++
 		}
 	}
+	next := large[int32](ctx.Err, len(s.start))
 	for k := 1; k < len(s.start); k++ {
+		if k&(freshRows-1) == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
 		s.start[k] += s.start[k-1]
+		next[k] = s.start[k]
 	}
-	s.rows = make([]int32, s.start[s.keys.n])
-	next := append([]int32(nil), s.start...)
+	s.rows = large[int32](ctx.Err, int(s.start[s.keys.n]))
 	for row, k := range keyOf {
-		if row&(cancelRows-1) == 0 && ctx.Err() != nil {
+		if row&(freshRows-1) == 0 && ctx.Err() != nil {
 			return ctx.Err()
 		}
 		if k >= 0 {

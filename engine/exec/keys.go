@@ -56,7 +56,7 @@ func newKeyTable(types []column.Type) *keyTable {
 func (t *keyTable) oneText() bool { return len(t.types) == 1 && t.types[0] == column.Text }
 
 func (t *keyTable) resize(size int) {
-	t.slots = make([]int32, size)
+	t.slots = large[int32](t.stop, size)
 	t.shift = 64
 	for s := size; s > 1; s >>= 1 {
 		t.shift--
@@ -74,9 +74,13 @@ func (t *keyTable) resize(size int) {
 	}
 }
 
+// freshRows is after how many rows a loop that touches fresh memory in any order asks
+// whether to go on: each of them may cost a page that the system has to find first.
+const freshRows = 1 << 12
+
 // stopped asks whether to leave before key k.
 func (t *keyTable) stopped(k int) bool {
-	return k&(cancelRows-1) == 0 && t.stop != nil && t.stop() != nil
+	return k&(freshRows-1) == 0 && t.stop != nil && t.stop() != nil
 }
 
 // until sets what a large table asks whether to go on.
@@ -121,6 +125,7 @@ func (t *keyTable) put(key []uint64) int32 {
 }
 
 func (t *keyTable) add(key []uint64) int32 {
+	t.words = widened(t.stop, t.words, len(t.words)+t.width)
 	t.words = append(t.words, key...)
 	t.n++
 	return int32(t.n - 1)
@@ -174,12 +179,15 @@ func (t *keyTable) putText(code int32) int32 {
 }
 
 // absorb adds the keys of another table of the same types; key k of it is key
-// to[k] here. Where first is not nil, the first column is a number i that stands
+// to[k] here, unless the run was to end meanwhile. Where first is not nil, the first column is a number i that stands
 // for first[i] here.
 func (t *keyTable) absorb(o *keyTable, first []int32) (to []int32) {
 	to = make([]int32, o.n)
 	key := make([]uint64, t.width)
 	for k := range to {
+		if t.stopped(k) {
+			break
+		}
 		copy(key, o.words[k*o.width:(k+1)*o.width])
 		if first != nil {
 			key[0] = uint64(first[key[0]])

@@ -2,7 +2,6 @@ package exec
 
 import (
 	"context"
-	"slices"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/plan"
@@ -64,8 +63,8 @@ func (m *matcher) each(ctx context.Context, t *column.Table, f func(row, key int
 		b := t.Batch(lo, min(lo+BatchRows, t.N))
 		m.ids = room(m.ids, b.N)
 		m.reader.put(b.Cols, nil, b.N, m.ids)
-		m.right = append(m.right, slices.Repeat([]int64{0}, m.keys.n-len(m.right))...)
-		m.came = append(m.came, slices.Repeat([]bool{false}, m.keys.n-len(m.came))...)
+		m.right = widened(ctx.Err, m.right, m.keys.n)[:m.keys.n]
+		m.came = widened(ctx.Err, m.came, m.keys.n)[:m.keys.n]
 		for i, k := range m.ids[:b.N] {
 			f(int32(lo+i), k)
 		}

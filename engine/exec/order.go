@@ -20,8 +20,13 @@ type orderKey struct {
 // their order. Keys become words whose order is that of the values, which are
 // sorted by their bytes from the last key to the first.
 func argsort(stop func() error, keys []orderKey, n int) ([]int32, error) {
-	rows := make([]rowWord, n)
+	rows := large[rowWord](stop, n)
 	for i := range rows {
+		if i&(cancelRows-1) == 0 {
+			if err := stop(); err != nil {
+				return nil, err
+			}
+		}
 		rows[i].row = int32(i)
 	}
 	var spare []rowWord
@@ -56,11 +61,16 @@ func argsort(stop func() error, keys []orderKey, n int) ([]int32, error) {
 			}
 		}
 	}
-	order := make([]int32, n)
+	order := large[int32](stop, n)
 	for i, r := range rows {
+		if i&(cancelRows-1) == 0 {
+			if err := stop(); err != nil {
+				return nil, err
+			}
+		}
 		order[i] = r.row
 	}
-	return order, stop()
+	return order, nil
 }
 
 type rowWord struct {
@@ -194,7 +204,10 @@ func radixSortUntil(stop func() error, rows, spare []rowWord) (sorted, other []r
 		slices.SortStableFunc(rows, func(a, b rowWord) int { return cmp.Compare(a.word, b.word) })
 		return rows, spare, nil
 	}
-	spare = room(spare, len(rows))
+	if cap(spare) < len(rows) {
+		spare = large[rowWord](stop, len(rows))
+	}
+	spare = spare[:len(rows)]
 	var counts [8][256]int32
 	for lo := 0; lo < len(rows); lo += cancelRows {
 		if err := stop(); err != nil {

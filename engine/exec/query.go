@@ -299,6 +299,7 @@ func (a *answers) rows(env *Env, node plan.Node) answer {
 	}
 	if a.ask.Kind == expr.InQuery {
 		got.set = newValueSet(a.ask.X.Type(), a.query.Field().Type)
+		got.set.keys.until(ctx.Err)
 	}
 	p, err := (&runner{env: env}).open(ctx, node)
 	if err != nil {

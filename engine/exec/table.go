@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"math"
 	"math/bits"
-	"slices"
 
 	"nearcell/catalog/column"
 	"nearcell/engine/problem"
@@ -109,7 +108,7 @@ func (g *gatherer) check(v *column.Vector) {
 }
 
 func appendRows[T any](to, from []T, idx []int32) []T {
-	to = slices.Grow(to, len(idx))
+	to = widened(nil, to, len(to)+len(idx))
 	for _, i := range idx {
 		to = append(to, from[i])
 	}
@@ -164,13 +163,13 @@ func (g *gatherer) copyValid(v *column.Vector, n int) {
 func (g *gatherer) grow(n int) {
 	switch {
 	case g.v.Type.Counted():
-		g.v.I = slices.Grow(g.v.I, n)
+		g.v.I = widened(nil, g.v.I, len(g.v.I)+n)
 	case g.v.Type == column.Real:
-		g.v.F = slices.Grow(g.v.F, n)
+		g.v.F = widened(nil, g.v.F, len(g.v.F)+n)
 	case g.v.Type == column.Point:
-		g.v.F = slices.Grow(g.v.F, 3*n)
+		g.v.F = widened(nil, g.v.F, len(g.v.F)+3*n)
 	case g.v.Type == column.Text:
-		g.v.C = slices.Grow(g.v.C, n)
+		g.v.C = widened(nil, g.v.C, len(g.v.C)+n)
 	}
 }
 

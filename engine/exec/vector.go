@@ -3,8 +3,11 @@ package exec
 import (
 	"math"
 	"math/bits"
+	"slices"
+	"unsafe"
 
 	"nearcell/catalog/column"
+	"nearcell/voronoi/delaunay"
 )
 
 // bitsFor is b with room for n bits, all clear.
@@ -21,9 +24,53 @@ func bitsFor(b []uint64, n int) []uint64 {
 // room is s with n elements of any content.
 func room[T any](s []T, n int) []T {
 	if cap(s) < n {
-		return make([]T, n, n+n/4)
+		return large[T](nil, n+n/4)[:n]
 	}
 	return s[:n]
+}
+
+// large is a slice of n zeros, on large pages where there are many: what they cost is
+// mostly the system's search for small ones. A large page takes its time too, and rows
+// in any order soon want all of them: they are fetched one by one, until stop gives an
+// error (nil: they come as they are wanted).
+func large[T any](stop func() error, n int) []T {
+	s := make([]T, n)
+	if n < stretch {
+		return s
+	}
+	delaunay.AdviseHugePages(s)
+	var zero T
+	step := max(1, (2<<20)/int(unsafe.Sizeof(zero)))
+	for i := 0; i < n && stop != nil && stop() == nil; i += step {
+		s[i] = zero
+	}
+	return s
+}
+
+// stretch is how many elements of a large slice are moved between two questions.
+const stretch = 1 << 18
+
+// widened is s with room for n elements in all. Many are moved in stretches, between
+// which stop is asked (nil: nobody is): when it gives an error the rest is left zero, for
+// nobody wants it any more.
+func widened[T any](stop func() error, s []T, n int) []T {
+	if n <= cap(s) {
+		return s
+	}
+	if n < stretch {
+		return slices.Grow(s, n-len(s))
+	}
+	if len(s) == 0 {
+		return large[T](nil, n)[:0] // as many as there will be
+	}
+	wider := large[T](nil, n+n/2)[:len(s)]
+	for lo := 0; lo < len(s); lo += stretch {
+		if stop != nil && stop() != nil {
+			break
+		}
+		copy(wider[lo:], s[lo:min(lo+stretch, len(s))])
+	}
+	return wider
 }
 
 // forEachOn calls f for the active rows in rising order.

@@ -66,7 +66,7 @@ func (r *windowRun) prepare(ctx context.Context) error {
 // divide puts the rows of each partition together.
 func (r *windowRun) divide(ctx context.Context) error {
 	n := r.all.N
-	r.rows = make([]int32, n)
+	r.rows = large[int32](nil, n)
 	if len(r.sink.part) == 0 {
 		for i := range r.rows {
 			r.rows[i] = int32(i)
@@ -106,7 +106,7 @@ func (r *windowRun) numbers(ctx context.Context, at []int) ([]int32, int, error)
 	}
 	t := newKeyTable(types).until(ctx.Err)
 	read := newKeyReader(t)
-	ids := make([]int32, r.all.N)
+	ids := large[int32](ctx.Err, r.all.N)
 	cols := make([]column.Vector, len(at))
 	for lo := 0; lo < r.all.N; lo += BatchRows {
 		if err := ctx.Err(); err != nil {
@@ -381,7 +381,12 @@ func (w *windowWorker) sort(rows []int32) (bool, error) {
 			if err := w.stop(); err != nil {
 				return false, err
 			}
-			key.fill(words, part, w.run.ranks[k])
+			for lo := 0; lo < len(words); lo += cancelRows {
+				if err := w.stop(); err != nil {
+					return false, err
+				}
+				key.fill(words[lo:min(lo+cancelRows, len(words))], part, w.run.ranks[k])
+			}
 			var err error
 			if words, spare, err = radixSortUntil(w.stop, words, spare); err != nil {
 				return false, err

@@ -81,7 +81,7 @@ func (t *keyTable) hashWords() {
 
 func (t *keyTable) rehashWords(size int) {
 	w := t.single
-	w.slots = make([]wordSlot, size)
+	w.slots = large[wordSlot](t.stop, size)
 	w.shift = 64
 	for s := size; s > 1; s >>= 1 {
 		w.shift--
@@ -149,6 +149,7 @@ func (t *keyTable) putHashed(word uint64) int32 {
 }
 
 func (t *keyTable) add2(a, b uint64) int32 {
+	t.words = widened(t.stop, t.words, len(t.words)+2)
 	t.words = append(t.words, a, b)
 	t.n++
 	return int32(t.n - 1)

@@ -5,6 +5,7 @@ import (
 	"math/bits"
 
 	"nearcell/catalog/column"
+	"nearcell/voronoi/delaunay"
 )
 
 // tally is what accumulators share: which rows count, and their weights.
@@ -25,6 +26,10 @@ type weightState struct {
 	rows               int64
 }
 
+// largeGroups is how many groups' states stand on large pages: finding small ones takes
+// longer than the copy.
+const largeGroups = 1 << 16
+
 // grow makes room for group g.
 func grow[T any](s []T, g int32) []T {
 	if int(g) < len(s) {
@@ -33,6 +38,9 @@ func grow[T any](s []T, g int32) []T {
 	n := int(g) + 1
 	if n > cap(s) {
 		fresh := make([]T, n, max(n, 2*cap(s)))
+		if n > largeGroups {
+			delaunay.AdviseHugePages(fresh[:cap(fresh)])
+		}
 		copy(fresh, s)
 		return fresh
 	}
