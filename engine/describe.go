@@ -97,6 +97,9 @@ func (s *Session) describeOrigin(st *statement, o *catalog.Object) {
 		from = fmt.Sprintf("%d files, %s to %s", n, o.Sources[0].Path, o.Sources[n-1].Path)
 	}
 	st.notes.Add(note.Note, note.Import, "%s of %s from %s", strings.ToLower(o.Kind.String()), plural(o.Rows, thing), from)
+	if text := bind.Changed(st.folder, o); text != "" {
+		st.notes.Add(note.Note, note.Import, "%s", text)
+	}
 	for _, n := range o.Notes {
 		st.notes.Add(note.Note, note.Import+1, "%s", n)
 	}

@@ -21,8 +21,19 @@ func TestMain(m *testing.M) {
 var rewrite = flag.Bool("rewrite", false, "write what the program prints into the scripts")
 
 // TestScripts runs the stories in testdata/script, each in a folder of its own.
-// $DEMO and $REFERENCE are the project's folders of test data.
+// $DEMO and $REFERENCE are the project's folders of test data. Nothing that a story says
+// depends on the number of threads, which is that of the processors that Go uses.
 func TestScripts(t *testing.T) {
+	if *rewrite {
+		scriptsWith(t, "1")
+		return
+	}
+	for _, threads := range []string{"1", "2", "4"} {
+		t.Run(threads+" threads", func(t *testing.T) { scriptsWith(t, threads) })
+	}
+}
+
+func scriptsWith(t *testing.T, threads string) {
 	demo, err := filepath.Abs("../../testdata/demo")
 	if err != nil {
 		t.Fatal(err)
@@ -32,6 +43,7 @@ func TestScripts(t *testing.T) {
 		UpdateScripts: *rewrite,
 		Setup: func(e *testscript.Env) error {
 			e.Setenv("DEMO", demo)
+			e.Setenv("GOMAXPROCS", threads)
 			e.Setenv("REFERENCE", filepath.Join(filepath.Dir(demo), "reference"))
 			return nil
 		},

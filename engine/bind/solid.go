@@ -334,6 +334,7 @@ func (b *binder) namedSolid(s *lang.SolidName) (lang.Solid, error) {
 		}
 		return nil, p
 	}
+	b.sayChanged(o)
 	if o.Kind != catalog.Solid {
 		p := problem.New("wrong-kind", b.at(s), "'%s' is a %s, not a solid", n.Text, lang.Fold(o.Kind.String()))
 		if o.Kind == catalog.Campaign {

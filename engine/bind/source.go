@@ -203,6 +203,7 @@ func (b *binder) bindCTE(c *cte, at lang.Node) (bound, error) {
 func (b *binder) object(n *lang.Name) (*catalog.Object, error) {
 	o, err := b.env.Catalog.Get(n.Key())
 	if err == nil {
+		b.sayChanged(o)
 		return o, nil
 	}
 	var none *catalog.ErrNoSuch
