@@ -98,14 +98,14 @@ func finite(x float64) bool { return !math.IsNaN(x) && !math.IsInf(x, 0) }
 func (h *header) extraRecord(data []byte) ([]byte, *reader.Fault) {
 	le := binary.LittleEndian
 	found := []byte(nil)
-	at := int64(h.size)
+	at, end := int64(h.size), min(h.start, int64(len(data))) // a header may say that they reach beyond the file
 	for range h.records {
-		if at+54 > h.start {
+		if at+54 > end {
 			return nil, &reader.Fault{Kind: reader.Damaged, Text: "header", Detail: "records before the points"}
 		}
 		r := data[at:]
 		length := int64(le.Uint16(r[20:]))
-		if at+54+length > h.start {
+		if at+54+length > end {
 			return nil, &reader.Fault{Kind: reader.Damaged, Text: "header", Detail: "records before the points"}
 		}
 		if isExtra(r) {
@@ -115,6 +115,9 @@ func (h *header) extraRecord(data []byte) ([]byte, *reader.Fault) {
 	}
 	if h.minor < 4 {
 		return found, nil
+	}
+	if len(data) < 247 {
+		return nil, &reader.Fault{Kind: reader.CutShort, Text: "header", Got: len(data), Expected: 375}
 	}
 	start, count := le.Uint64(data[235:]), le.Uint32(data[243:])
 	for range count {
