@@ -1,6 +1,7 @@
 package bind
 
 import (
+	"cmp"
 	"slices"
 
 	"nearcell/catalog"
@@ -244,32 +245,44 @@ func (b *binder) solidsInSystem(rel *relation.Bound, r *lang.Relation, campaign 
 	return nil
 }
 
-// metresMeet refuses sites in feet, say, in a solid that UNIT has brought to metres. Where
-// nothing was brought, a solid's numbers are taken in the unit of the sites.
+// metresMeet refuses sites in feet, say, in a solid that UNIT has brought to metres, or in
+// the envelope of sites in metres. Other numbers are taken in the unit of the sites.
 func (b *binder) metresMeet(sites, unit string, s lang.Solid, at problem.Place) error {
-	if unit == "" || unit == "m" || !b.inMetres(s) {
+	own := b.solidUnit(s)
+	if unit == "" || own == "" || own == unit {
 		return nil
 	}
-	return problem.New("units", at, "the sites of %s are in %s, and UNIT has brought %s to metres", sites, unit, lang.Print(s)).
-		WithHint("read the mesh without UNIT, so that its numbers are in %s as those of the sites are; or import the sites in m", unit)
+	return problem.New("units", at, "the sites of %s are in %s, and %s is in %s", sites, unit, lang.Print(s), own).
+		WithHint("import one of them in the unit of the other; a mesh that is read without UNIT has its numbers in %s, as those of the sites are", unit)
 }
 
-// inMetres tells whether UNIT has brought a solid, or a part of it, to metres.
-func (b *binder) inMetres(s lang.Solid) bool {
+// solidUnit is the unit of a solid, where something tells it: that of the sites in an
+// envelope, metres where UNIT has brought a mesh to them; else "".
+func (b *binder) solidUnit(s lang.Solid) string {
 	switch s := s.(type) {
 	case *lang.SolidOp:
-		return b.inMetres(s.Left) || b.inMetres(s.Right)
+		if left := b.solidUnit(s.Left); left != "" {
+			return left
+		}
+		return b.solidUnit(s.Right)
 	case *lang.MeshSolid:
-		return s.Unit.Text != ""
+		if s.Unit.Text != "" {
+			return "m"
+		}
+	case *lang.EnvelopeSolid:
+		if o, err := b.env.Catalog.Get(s.Of.Key()); err == nil && o.Kind == catalog.Campaign {
+			return cmp.Or(o.Options.LengthUnit, "m")
+		}
 	case *lang.SolidName:
 		o, err := b.env.Catalog.Get(s.Name.Key())
 		if err != nil || o.Kind != catalog.Solid {
-			return false
+			return ""
 		}
-		of, err := lang.ParseSolid(o.Text)
-		return err == nil && b.inMetres(of)
+		if of, err := lang.ParseSolid(o.Text); err == nil {
+			return b.solidUnit(of)
+		}
 	}
-	return false
+	return ""
 }
 
 // coordinateColumns are the columns of relations that are places.
